@@ -1,0 +1,82 @@
+"""A coefficient file made ready: fields, compiled terms and lines of every equation."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from clinicalc.assessment.fields import Field, NumberField, QuestionField, fields_of
+from clinicalc.coefficients.reader import ReadFile
+from clinicalc.coefficients.schema import Equation, ModelContent, Recalibration
+from clinicalc.coefficients.spans import Span, span_of
+from clinicalc.covariates.design import DesignTerm, compile_terms
+from clinicalc.prediction.line import Line, lines_of
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class ModelEquation:
+    """One equation with its place in the file, its terms and a line for each horizon."""
+
+    place: int
+    content: Equation
+    terms: tuple[DesignTerm, ...]
+    lines: tuple[Line, ...]
+
+    @property
+    def uses(self) -> frozenset[str]:
+        """Ids of the predictors and derived values that its terms are made of."""
+        return frozenset(factor.of for term in self.terms for factor in term.factors)
+
+    def line_at(self, span: Span) -> Line:
+        """The line for one of the model's horizons."""
+        return next(line for line in self.lines if line.span == span)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Model:
+    """A coefficient file ready to be used; made by `prepare_model`, proved by `load_model`."""
+
+    name: str
+    fingerprint: str
+    content: ModelContent
+    fields: tuple[Field, ...]
+    equations: tuple[ModelEquation, ...]
+
+    @property
+    def spans(self) -> tuple[Span, ...]:
+        """The horizons, in file order; every equation has the same."""
+        return tuple(line.span for line in self.equations[0].lines)
+
+    @property
+    def by_id(self) -> Mapping[str, Field]:
+        """Every field by its id."""
+        return {field.id: field for field in self.fields}
+
+    @property
+    def exclusions(self) -> tuple[QuestionField, ...]:
+        """The questions that stop the model when answered yes."""
+        return tuple(f for f in self.fields if isinstance(f, QuestionField) and f.excludes)
+
+    @property
+    def derived(self) -> tuple[NumberField, ...]:
+        """The values that can be worked out, in file order."""
+        ids = [derived.id for derived in self.content.derived]
+        known = {f.id: f for f in self.fields if isinstance(f, NumberField) and f.formula}
+        return tuple(known[id] for id in ids)
+
+    def recalibrations_at(self, span: Span) -> tuple[Recalibration, ...]:
+        """The recalibrations that the file offers for one horizon."""
+        return tuple(r for r in self.content.recalibrations if span_of(r) == span)
+
+
+def prepare_model(read: ReadFile) -> Model:
+    """The model of a file that has passed the rules."""
+    content = read.content.model
+    return Model(
+        name=read.name,
+        fingerprint=read.fingerprint,
+        content=content,
+        fields=fields_of(content),
+        equations=tuple(
+            ModelEquation(place, equation, compile_terms(content, equation), lines_of(equation))
+            for place, equation in enumerate(content.equations)
+        ),
+    )

@@ -1,0 +1,65 @@
+"""The assessment as one JSON object: for programs, and attached to every print. Probabilities are 0 to 1."""
+
+import json
+
+from clinicalc.assessment.result import Assessment, ValueLine
+
+JsonObject = dict[str, object]
+
+
+def record_of(assessment: Assessment) -> JsonObject:
+    """The record, numbers unrounded, units as UCUM codes, without the patient label; null numbers after a stop."""
+    model, estimate = assessment.model, assessment.estimate
+    band = None if estimate is None else estimate.band
+    return {
+        "model": {
+            "id": model.content.id,
+            "version": model.content.version,
+            "title": model.content.title,
+            "fingerprint": model.fingerprint,
+        },
+        "vetting": None,
+        **_horizon(assessment),
+        "level": assessment.level,
+        "probability": None if estimate is None else estimate.probability,
+        "complement": None if estimate is None else estimate.complement,
+        "eta": None if estimate is None else estimate.eta,
+        "band": None
+        if band is None
+        else {"level": band.level, "lower": band.lower, "upper": band.upper, "basis": band.basis},
+        "band_absent_because": estimate.band_absent_because or None if estimate is not None else None,
+        "recalibration": assessment.recalibration,
+        "values": [_value(line) for line in assessment.values if not line.derived and line.typed],
+        "derived": [_derived(line) for line in assessment.values if line.derived and (line.typed or line.worked_out)],
+        "findings": [
+            {"grade": f.grade.value, "code": f.code.value, "field": f.field or None, "message": f.message}
+            for f in assessment.findings
+        ],
+    }
+
+
+def write_record(assessment: Assessment) -> str:
+    """The record as JSON text, indented by 2, shortest decimals, one newline at the end."""
+    return json.dumps(record_of(assessment), ensure_ascii=False, indent=2, allow_nan=False) + "\n"
+
+
+def _horizon(assessment: Assessment) -> JsonObject:
+    span = assessment.span
+    if span is None:
+        return {"years": None}
+    time = int(span.time) if span.time.is_integer() else span.time
+    return {"years": time} if span.unit == "a" else {"years": None, "time": time, "unit": span.unit}
+
+
+def _value(line: ValueLine) -> JsonObject:
+    return {
+        "id": line.id,
+        "typed": line.typed,
+        "value": line.answer if line.number is None else line.number,
+        "unit": line.unit,
+        "dated": None if line.dated is None else line.dated.isoformat(),
+    }
+
+
+def _derived(line: ValueLine) -> JsonObject:
+    return {"id": line.id, "value": line.number, "unit": line.unit, "typed": line.typed or None}

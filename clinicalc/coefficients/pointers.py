@@ -1,0 +1,67 @@
+"""JSON Pointers (RFC 6901) to places in a coefficient file, and the words for what stands there."""
+
+import difflib
+import re
+from collections.abc import Iterable
+
+REFUSED_CHARACTERS = re.compile(
+    "[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028\u2029\u202a-\u202e\u2066-\u2069\ud800-\udfff]"
+)
+"""Control, line-separating and bidirectional-control characters and lone surrogates: they make a text look like another."""
+
+
+def point(base: str, *parts: str | int) -> str:
+    """The pointer to a place below `base`: point("/model", "equations", 0) is "/model/equations/0"."""
+    return base + "".join("/" + visible(str(part)).replace("~", "~0").replace("/", "~1") for part in parts)
+
+
+def find_at(root: object, pointer: str) -> object:
+    """What a JSON Pointer leads to below `root` (dicts and lists). Raises LookupError where it leads nowhere."""
+    if not pointer:
+        return root
+    if not pointer.startswith("/"):
+        raise LookupError(pointer)
+    place = root
+    for part in pointer[1:].split("/"):
+        key = part.replace("~1", "/").replace("~0", "~")
+        if isinstance(place, dict):
+            place = place[key]
+        elif isinstance(place, list) and re.fullmatch("0|[1-9][0-9]{0,8}", key):
+            place = place[int(key)]
+        else:
+            raise LookupError(pointer)
+    return place
+
+
+def visible(text: str) -> str:
+    """The text with each refused character written as its code point, so that it can be shown safely."""
+    return REFUSED_CHARACTERS.sub(lambda match: f"<U+{ord(match[0]):04X}>", text)
+
+
+def quoted(value: object) -> str:
+    """A value from a file as it can stand in a sentence: texts in quotes, everything cut after 60 characters."""
+    if value is None:
+        return "null"
+    if isinstance(value, bool):
+        return "true" if value else "false"
+    if isinstance(value, int | float):
+        return f"{value:.15g}"
+    text = visible(str(value))
+    return f'"{text if len(text) <= 60 else text[:59] + "…"}"'
+
+
+def listed(words: Iterable[str], last: str = "and") -> str:
+    """Words as a list in a sentence: "a, b and c"."""
+    items = list(words)
+    return items[0] if len(items) == 1 else f"{', '.join(items[:-1])} {last} {items[-1]}" if items else "none"
+
+
+def suggest(word: str, known: Iterable[str]) -> str:
+    """A sentence that offers the closest known word, the whole choice where it is small, or nothing."""
+    words = sorted(set(known))
+    close = difflib.get_close_matches(word, words, n=1, cutoff=0.6) if len(word) <= 200 else []
+    if close:
+        return f" Did you mean {quoted(close[0])}?"
+    if 0 < len(words) <= 8:
+        return f" Known here: {listed((quoted(item) for item in words), 'or')}."
+    return ""

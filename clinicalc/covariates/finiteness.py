@@ -1,0 +1,95 @@
+"""Which steps have no finite value somewhere in the range for which a model gives a number.
+
+The range goes through the steps as an interval. Every step is monotone, or has its only turn at nought, so the ends
+of the interval (and nought where the interval holds it) bound every value in between.
+"""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from math import inf, isfinite
+
+import numpy as np
+from msgspec import UnsetType
+
+from clinicalc.coefficients.schema import ModelContent
+from clinicalc.covariates.design import answer_codes, products_of
+from clinicalc.covariates.transforms import CUTS, StepKind, Transform, apply_transform, compile_step
+from clinicalc.errors import Problem
+
+
+@dataclass(frozen=True, slots=True)
+class Interval:
+    """All values from `low` to `high`, both included."""
+
+    low: float
+    high: float
+
+    def __contains__(self, value: float) -> bool:
+        return self.low <= value <= self.high
+
+
+EVERYTHING = Interval(-inf, inf)
+
+
+def find_nonfinite(model: ModelContent, ranges: Mapping[str, Interval]) -> tuple[Problem, ...]:
+    """A problem for each step that is not finite everywhere in its range.
+
+    `ranges` maps each number and derived id to the values for which the model gives a number, in the file's unit.
+    """
+    return tuple(_walk(model, ranges))
+
+
+def _walk(model: ModelContent, ranges: Mapping[str, Interval]) -> Iterator[Problem]:
+    codes = answer_codes(model)
+    for e, equation in enumerate(model.equations):
+        for t, term in enumerate(equation.terms):
+            for p, product in enumerate(products_of(term)):
+                place = f"sum/{p}" if isinstance(term.product, UnsetType) else "product"
+                for f, factor in enumerate(product):
+                    steps = () if isinstance(factor.steps, UnsetType) else factor.steps
+                    known = codes.get(factor.of, {})
+                    interval = ranges.get(factor.of, Interval(0, max(len(known) - 1, 1)))
+                    for s, step in enumerate(steps):
+                        transform = compile_step(step, known)
+                        try:
+                            interval = advance(transform, interval)
+                        except ValueError as fault:
+                            yield Problem(
+                                f"/equations/{e}/terms/{t}/{place}/{f}/steps/{s}",
+                                f"{transform.kind.value} {fault} while {factor.of} may lie anywhere from"
+                                f" {interval_words(ranges.get(factor.of, EVERYTHING))}. State a narrower `possible`"
+                                " or `derivation` that stops, or change the step.",
+                            )
+                            break
+
+
+def interval_words(interval: Interval) -> str:
+    """The interval as it stands in a sentence."""
+    low = f"{interval.low:g}" if isfinite(interval.low) else "without a lower limit"
+    high = f"{interval.high:g}" if isfinite(interval.high) else "without an upper limit"
+    return f"{low} to {high}"
+
+
+def advance(transform: Transform, interval: Interval) -> Interval:
+    """The interval after one step. Raises ValueError, saying why, where the step has no finite value in it."""
+    kind, c = transform.kind, transform.number
+    if kind in CUTS or kind is StepKind.IS:
+        return Interval(0, 1)
+    if kind is StepKind.LOG and interval.low <= 0:
+        raise ValueError("has no value at or below 0")
+    if kind is StepKind.POWER:
+        if c < 0 and 0 in interval:
+            raise ValueError("of a negative exponent has no value at 0")
+        if c != int(c) and interval.low < 0:
+            raise ValueError("of a broken exponent has no value below 0")
+    corners = [interval.low, interval.high, *([0.0] if 0 in interval and kind is not StepKind.LOG else [])]
+    with np.errstate(all="ignore"):
+        # a side that is open stays open through every step but a clip
+        ends = [float(apply_transform(transform, np.array([corner]))[0]) for corner in corners]
+    overflown = any(isfinite(corner) and not isfinite(end) for corner, end in zip(corners, ends, strict=True))
+    if overflown:
+        raise ValueError("is not finite")
+    known = [end for end in ends if end == end]
+    if kind is StepKind.SPLINE and not all(isfinite(corner) for corner in corners):
+        return EVERYTHING
+    return Interval(min(known), max(known)) if known else EVERYTHING

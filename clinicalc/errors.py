@@ -1,0 +1,79 @@
+"""Every error this program raises on purpose, in one tree.
+
+    ClinicalcError
+    ├── UsageError              a key, option, recalibration or horizon that does not exist        exit 2
+    ├── CoefficientFileRefused  a coefficient file that may not be used; carries all its problems   exit 4
+    ├── UnitError               a unit or quantity that the table does not have, or that does not convert
+    ├── PrintRefused            a text that cannot be printed faithfully
+    ├── FileNotWritten          an output file that could not be written; nothing half-written is left
+    └── ShippedFileMissing      an installation that lacks a file it needs
+
+What a person types about a patient never raises: it becomes a finding (room `assessment`).
+"""
+
+from dataclasses import dataclass
+
+
+class ClinicalcError(Exception):
+    """What happened, where, why, and what to do next; the parts read as one text in that order."""
+
+    exit_status = 5
+
+    def __init__(self, what: str, *, where: str = "", why: str = "", do: str = "") -> None:
+        self.what = what
+        self.where = where
+        self.why = why
+        self.do = do
+        super().__init__(what, where, why, do)
+
+    def __str__(self) -> str:
+        head = f"{self.where}: {self.what}" if self.where else self.what
+        return " ".join(part for part in (head, self.why, self.do) if part)
+
+
+class UsageError(ClinicalcError):
+    """The words of a call name something that is not there."""
+
+    exit_status = 2
+
+
+@dataclass(frozen=True, slots=True)
+class Problem:
+    """One fault of a coefficient file: `path` is a JSON Pointer into it ("" for the file itself)."""
+
+    path: str
+    message: str
+
+    def __str__(self) -> str:
+        return f"{self.path}: {self.message}" if self.path else self.message
+
+
+class CoefficientFileRefused(ClinicalcError):
+    """A coefficient file that may not be used, with every problem found in it."""
+
+    exit_status = 4
+
+    def __init__(self, name: str, problems: tuple[Problem, ...]) -> None:
+        self.name = name
+        self.problems = problems
+        count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
+        super().__init__(f"this coefficient file is refused ({count}).", where=name)
+
+    def __str__(self) -> str:
+        return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
+class UnitError(ClinicalcError):
+    """A unit or quantity that is not in the table, or two units that do not convert into each other."""
+
+
+class PrintRefused(ClinicalcError):
+    """A text that the print could only show wrongly."""
+
+
+class FileNotWritten(ClinicalcError):
+    """An output file that could not be written."""
+
+
+class ShippedFileMissing(ClinicalcError):
+    """A file that belongs to the program is not where the program is installed."""
