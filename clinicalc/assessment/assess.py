@@ -17,6 +17,7 @@ from clinicalc.assessment.questions import TakenAnswer, take_answer
 from clinicalc.assessment.relations import check_relations
 from clinicalc.assessment.requirements import find_missing, possible_equations
 from clinicalc.assessment.result import Assessment, Band, Estimate
+from clinicalc.assessment.unconfirmed import Basis
 from clinicalc.assessment.value_lines import value_lines
 from clinicalc.assessment.worked_out import check_worked_out, work_out
 from clinicalc.coefficients.schema import Recalibration
@@ -72,7 +73,8 @@ def assess(
     equation = equations[0] if len(equations) == 1 else None
     estimate = None
     if equation is not None and span is not None:
-        taken.findings += equation_cautions(model, equation, span, chosen, taken.numbers)
+        basis = Basis(equation, span, chosen, taken.numbers, taken.answers)
+        taken.findings += equation_cautions(model, basis)
         if not any(finding.grade is Grade.STOP for finding in taken.findings):
             estimate = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
     order = (*(field.id for field in model.fields), "horizon", "recalibration")

@@ -7,7 +7,7 @@ from collections.abc import Iterable
 REFUSED_CHARACTERS = re.compile(
     "[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028\u2029\u202a-\u202e\u2066-\u2069\ud800-\udfff]"
 )
-"""Control, line-separating and bidirectional-control characters and lone surrogates: they make a text look like another."""
+"""Control, line-separating and bidirectional-control characters and lone surrogates: they disguise a text."""
 
 
 def point(base: str, *parts: str | int) -> str:
@@ -16,7 +16,7 @@ def point(base: str, *parts: str | int) -> str:
 
 
 def find_at(root: object, pointer: str) -> object:
-    """What a JSON Pointer leads to below `root` (dicts and lists). Raises LookupError where it leads nowhere."""
+    """What a JSON Pointer leads to below `root` (dicts, lists and tuples). Raises LookupError where that is nothing."""
     if not pointer:
         return root
     if not pointer.startswith("/"):
@@ -26,7 +26,7 @@ def find_at(root: object, pointer: str) -> object:
         key = part.replace("~1", "/").replace("~0", "~")
         if isinstance(place, dict):
             place = place[key]
-        elif isinstance(place, list) and re.fullmatch("0|[1-9][0-9]{0,8}", key):
+        elif isinstance(place, list | tuple) and re.fullmatch("0|[1-9][0-9]{0,8}", key):
             place = place[int(key)]
         else:
             raise LookupError(pointer)

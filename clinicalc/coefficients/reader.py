@@ -1,5 +1,6 @@
 """Reading a coefficient file: bytes in, a checked and fingerprinted file out, or every problem at once."""
 
+import errno
 import os
 import stat
 from dataclasses import dataclass
@@ -91,12 +92,12 @@ def _read_once(path: Path) -> bytes:
 def _why_unreadable(path: Path, fault: OSError | ValueError) -> str:
     if isinstance(fault, FileNotFoundError):
         return "there is no such file. Check the name and the folder."
-    if path.is_dir():
+    if os.path.isdir(path):  # unlike Path.is_dir it has an answer for every name
         return "this is a folder, not a coefficient file."
     if isinstance(fault, PermissionError):
         return "this file may not be read by you. Ask who looks after the computer for permission."
-    if isinstance(fault, OSError) and path.is_socket():
-        return "this is a socket, not a coefficient file."
+    if getattr(fault, "errno", None) == errno.ENXIO:
+        return "this is a socket or a device without a driver, not a coefficient file."
     return f"the file could not be opened: {getattr(fault, 'strerror', None) or 'its name cannot be a file name'}."
 
 

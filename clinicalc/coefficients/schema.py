@@ -7,7 +7,6 @@ fields is in `rules`.
 
 from typing import Annotated, Literal
 
-import msgspec
 from msgspec import UNSET, Meta, Struct, UnsetType, field
 
 FORMAT = "clinicalc.coefficients/1"
@@ -467,8 +466,3 @@ class CoefficientFile(FileStruct, frozen=True):
 def given(value: object) -> bool:
     """Whether an optional field stands in the file."""
     return value is not UNSET
-
-
-def shape_of_file() -> dict[str, object]:
-    """The JSON Schema (2020-12) that the structs above emit."""
-    return msgspec.json.schema(CoefficientFile)

@@ -5,6 +5,7 @@ Schema cannot drift apart. msgspec itself stops at the first problem; an author 
 """
 
 import functools
+import operator
 import re
 from collections.abc import Iterator, Mapping
 
@@ -77,7 +78,7 @@ def _walk_struct(value: object, shape: inspect.StructType, path: str) -> Iterato
 
 
 def _walk_union(value: object, shape: inspect.UnionType, path: str) -> Iterator[Problem]:
-    tagged = {kind.tag: kind for kind in shape.types if isinstance(kind, inspect.StructType) and kind.tag_field}
+    tagged = {str(kind.tag): kind for kind in shape.types if isinstance(kind, inspect.StructType) and kind.tag_field}
     if tagged:
         yield from _walk_tagged(value, tagged, path)
         return
@@ -88,12 +89,12 @@ def _walk_union(value: object, shape: inspect.UnionType, path: str) -> Iterator[
         yield _wrong_type(value, shape, path)
 
 
-def _walk_tagged(value: object, tagged: Mapping[object, inspect.StructType], path: str) -> Iterator[Problem]:
+def _walk_tagged(value: object, tagged: Mapping[str, inspect.StructType], path: str) -> Iterator[Problem]:
     first = next(iter(tagged.values()))
     if not isinstance(value, dict):
         yield _wrong_type(value, first, path)
         return
-    words, name = [str(tag) for tag in tagged], str(first.tag_field)
+    words, name = list(tagged), str(first.tag_field)
     tag = value.get(name)
     choice = listed(map(quoted, words), "or")
     if name not in value:
@@ -143,7 +144,9 @@ def _check_literal(value: object, shape: inspect.LiteralType, path: str) -> Iter
         yield _wrong_type(value, shape, path)
     elif value not in shape.values:
         words = [str(word) for word in shape.values]
-        must = f"must be {quoted(words[0])}." if len(words) == 1 else f"is not one of {listed(map(quoted, words), 'or')}."
+        must = (
+            f"must be {quoted(words[0])}." if len(words) == 1 else f"is not one of {listed(map(quoted, words), 'or')}."
+        )
         hint = suggest(value, words) if len(words) > 1 else ""
         yield Problem(path, f"{quoted(value)} {must}{hint if 'Did you' in hint else ''}")
 
@@ -167,13 +170,13 @@ def _check_number(value: object, shape: inspect.FloatType | inspect.IntType, pat
     if isinstance(shape, inspect.IntType) and value != int(value):
         yield Problem(path, f"{quoted(value)} must be a whole number.")
     bounds = (
-        (shape.ge, "at least", lambda limit: value >= limit),
-        (shape.gt, "more than", lambda limit: value > limit),
-        (shape.le, "at most", lambda limit: value <= limit),
-        (shape.lt, "less than", lambda limit: value < limit),
+        (shape.ge, "at least", operator.ge),
+        (shape.gt, "more than", operator.gt),
+        (shape.le, "at most", operator.le),
+        (shape.lt, "less than", operator.lt),
     )
     for limit, words, holds in bounds:
-        if limit is not None and not holds(limit):
+        if limit is not None and not holds(value, limit):
             yield Problem(path, f"{quoted(value)} must be {words} {quoted(limit)}.")
 
 

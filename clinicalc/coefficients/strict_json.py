@@ -1,4 +1,4 @@
-"""JSON read strictly: one value, UTF-8, no duplicate keys, finite numbers, shallow, and no character that hides another."""
+"""JSON read strictly: one value, UTF-8, no duplicate keys, finite numbers, shallow, no character that hides others."""
 
 import json
 import math

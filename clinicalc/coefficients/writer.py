@@ -1,4 +1,4 @@
-"""Writing a coefficient file: one layout for every content, so that two versions of a file can be compared line by line."""
+"""Writing a coefficient file: one layout for every content, so that two versions can be compared line by line."""
 
 import contextlib
 import json
@@ -89,6 +89,8 @@ def _lay_out_list(items: list[object] | tuple[object, ...], column: int, depth: 
 def _spell(value: object) -> str:
     if isinstance(value, float):
         if not math.isfinite(value):
-            raise FileNotWritten(f"the number {value} cannot stand in a coefficient file.", do="Look where it came from.")
+            raise FileNotWritten(
+                f"the number {value} cannot stand in a coefficient file.", do="Look where it came from."
+            )
         return str(int(value)) if value.is_integer() and abs(value) < 2**53 else repr(value)
     return json.dumps(value, ensure_ascii=False)

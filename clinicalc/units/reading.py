@@ -21,7 +21,7 @@ _DATE = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}")
 _LINE_ENDS = "\n\r\v\f\x85\u2028\u2029"
 _LIMIT_SIGNS = "<>≤≥~≈≲≳="
 _WORDS_FOR_NO_NUMBER = frozenset({"nan", "inf", "infinity", "na", "n/a", "none", "null", "unknown", "∞"})
-# patterns of refusals stay strings: compiling them at start costs 3 ms that a readable text never needs
+# patterns of refusals stay strings: a readable text never needs them, and compiling them would slow every start
 _EXPONENT = r"[eE][-+−]?[0-9]|\s*(?:[x×*·]\s*)?10\s*(?:\^|\*\*)|\s*[x×*·]\s*10"
 _GROUPED = r"[-+−]?[0-9]{1,3}(?:[.,'’ ][0-9]{3})+(?![0-9])"
 _NUMBERLESS_MARK = r"[-+−]?[.,][0-9]+"

@@ -105,6 +105,16 @@ def test_a_files_own_factor_replaces_the_tables() -> None:
     assert conversion(quantity("glucose"), "mg/dL", "mg/dL", 0.0555) == Conversion(1.0, 0.0)
 
 
+@pytest.mark.parametrize("id", [entry.id for entry in all_quantities() if entry.molar])
+def test_the_tables_factor_given_by_a_file_changes_no_bit(id: str) -> None:
+    # 1 / 0.05551 rounds differently when 0.05551 is taken as its nearest double instead of as the decimals that stand
+    entry = quantity(id)
+    assert entry.molar is not None
+    factor = float(entry.molar.factor)
+    for one, other in permutations(entry.units, 2):
+        assert conversion(entry, one, other, factor) == conversion(entry, one, other)
+
+
 @pytest.mark.parametrize("factor", [0.0, -0.02586, float("nan"), float("inf")])
 def test_a_factor_must_be_positive_and_finite(factor: float) -> None:
     with pytest.raises(UnitError, match=r"0\.02586"):

@@ -2,9 +2,7 @@
 
 from collections.abc import Iterator
 
-from msgspec import UnsetType
-
-from clinicalc.coefficients.pointers import point, quoted
+from clinicalc.coefficients.pointers import point
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.horizons import check_span, spans_of
 from clinicalc.coefficients.rules.matrices import judge_matrix
@@ -37,19 +35,6 @@ def check_bands(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
                 pass
 
 
-def check_recalibrations(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
-    """Where a file demands a recalibration it has one; each covers every equation at one of the horizons."""
-    del names
-    from clinicalc.coefficients.rules.recalibrations import check_recalibration
-
-    if model.recalibration_required and not model.recalibrations:
-        yield Problem(
-            at("recalibration_required"), "a recalibration is required and none stands in the file: nobody could use it."
-        )
-    for index, recalibration in enumerate(model.recalibrations):
-        yield from check_recalibration(recalibration, at("recalibrations", index), model)
-
-
 def count_estimated(equation: Equation) -> int:
     """The number of terms whose coefficient was estimated."""
     return sum(term.fixed is not True for term in equation.terms)
@@ -71,7 +56,8 @@ def _check_covariance(
         yield from check_span(centre, here)
         if len(centre.centre) != size:
             yield Problem(
-                point(here, "centre"), f"the centre has {len(centre.centre)} entries, and there are {size} estimated terms."
+                point(here, "centre"),
+                f"the centre has {len(centre.centre)} entries, and there are {size} estimated terms.",
             )
         seen.append(span_of(centre))
     for span in spans_of(equation):
@@ -89,7 +75,8 @@ def _check_draws(band: DrawsBand, equation: Equation, base: str) -> Iterator[Pro
     size, horizons, count = count_estimated(equation), len(equation.horizons), len(band.coefficients)
     if not FEWEST_DRAWS <= count <= MOST_DRAWS:
         yield Problem(
-            point(base, "coefficients"), f"there are {count} draws; from {FEWEST_DRAWS} to {MOST_DRAWS} must stand here."
+            point(base, "coefficients"),
+            f"there are {count} draws; from {FEWEST_DRAWS} to {MOST_DRAWS} must stand here.",
         )
     if len(band.baselines) != count:
         yield Problem(
@@ -101,5 +88,7 @@ def _check_draws(band: DrawsBand, equation: Equation, base: str) -> Iterator[Pro
     ):
         for place, row in enumerate(rows):
             if len(row) != width:
-                yield Problem(point(base, name, place), f"this row has {len(row)} entries, and there are {width} {what}.")
+                yield Problem(
+                    point(base, name, place), f"this row has {len(row)} entries, and there are {width} {what}."
+                )
                 break  # one row tells; five thousand of the same would bury the rest

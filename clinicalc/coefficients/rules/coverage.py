@@ -26,8 +26,8 @@ def check_coverage(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
     if gap is not None:
         yield Problem(
             at("equations"),
-            f"no equation applies to {_spell(gap)}. Exactly one must apply to any patient; a group for which the source has no "
-            "equation is not offered as an answer, or is made an exclusion.",
+            f"no equation applies to {_spell(gap)}. Exactly one must apply to any patient; a group for which the "
+            "source has no equation is not offered as an answer, or is made an exclusion.",
         )
 
 

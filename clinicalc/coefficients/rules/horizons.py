@@ -2,6 +2,7 @@
 
 import math
 from collections.abc import Iterator
+from itertools import pairwise
 
 from msgspec import UNSET, UnsetType
 
@@ -59,7 +60,7 @@ def check_span_known(part: HasSpan, path: str, model: ModelContent) -> Iterator[
 
 
 def log_cumulative_hazard(horizon: Horizon) -> float | None:
-    """log H0 with every term at zero: as given, or log(-log S0) less the mean linear predictor; None where incomplete."""
+    """log H0 with every term at zero: as given, or log(-log S0) less the mean; None where that is incomplete."""
     if not isinstance(horizon.log_cumulative_hazard, UnsetType):
         return horizon.log_cumulative_hazard
     survival, mean = horizon.baseline_survival, horizon.mean_linear_predictor
@@ -72,7 +73,9 @@ def _check_baseline(horizon: Horizon, link: str, path: str) -> Iterator[Problem]
     found = {name for name in _BASELINE if getattr(horizon, name) is not UNSET}
     if link == "logit":
         if found != {"intercept"}:
-            yield Problem(path, f'with the link "logit" a horizon has "intercept" and no other baseline; found {_list(found)}.')
+            yield Problem(
+                path, f'with the link "logit" a horizon has "intercept" and no other baseline; found {_list(found)}.'
+            )
         return
     if found not in ({"baseline_survival", "mean_linear_predictor"}, {"log_cumulative_hazard"}):
         yield Problem(
@@ -108,7 +111,7 @@ def _check_order(equation: Equation, base: str) -> Iterator[Problem]:
         if (span := span_of(horizon)) is not None and span.unit in TIME_UNITS
     ]
     timed.sort(key=lambda entry: entry[:2])
-    for (days, _, before, early), (later, place, after, late) in zip(timed, timed[1:], strict=False):
+    for (days, _, before, early), (later, place, after, late) in pairwise(timed):
         here = point(base, place)
         if later == days:
             yield Problem(here, f"{late.words} stands twice. Each horizon stands once.")
@@ -117,9 +120,13 @@ def _check_order(equation: Equation, base: str) -> Iterator[Problem]:
         if low is None or high is None:
             continue
         if equation.link == "cloglog" and high <= low:
-            yield Problem(here, f"the cumulative hazard must rise with time, and at {late.words} it is not above {early.words}.")
+            yield Problem(
+                here, f"the cumulative hazard must rise with time, and at {late.words} it is not above {early.words}."
+            )
         if equation.link == "logit" and high < low:
-            yield Problem(here, f"the intercept must not fall with time, and at {late.words} it is below that of {early.words}.")
+            yield Problem(
+                here, f"the intercept must not fall with time, and at {late.words} it is below that of {early.words}."
+            )
 
 
 def _height(horizon: Horizon, link: str) -> float | None:

@@ -10,12 +10,12 @@ SYMMETRY = 1e-8
 
 
 def judge_matrix(matrix: Matrix, size: int, rows: str) -> str:
-    """What is wrong with a covariance of `size` rows, one for each of the `rows` ("estimated terms"); "" if nothing is."""
+    """What is wrong with a covariance of `size` rows, which stand for `rows` ("estimated terms"); "" if nothing is."""
     if len(matrix) != size:
         return f"the matrix has {len(matrix)} rows, and there are {size} {rows}."
     for index, row in enumerate(matrix):
         if len(row) != size:
-            return f"row {index + 1} of the matrix has {len(row)} entries; it must have {size}, one for each of the {rows}."
+            return f"row {index + 1} of the matrix has {len(row)} entries, and there are {size} {rows}."
     return _judge_numbers(np.array(matrix, dtype=np.float64))
 
 
@@ -38,7 +38,7 @@ def _judge_numbers(values: NDArray[np.float64]) -> str:
     smallest = float(np.linalg.eigvalsh((scaled + scaled.T) / 2)[0])
     if smallest <= len(values) * np.finfo(np.float64).eps:
         return (
-            f"the matrix is not positive definite (smallest eigenvalue on the correlation scale {smallest:.3g}). Was it rounded "
-            "too much, or are two terms the same?"
+            f"the matrix is not positive definite (smallest eigenvalue on the correlation scale {smallest:.3g}). Was "
+            "it rounded too much, or are two terms the same?"
         )
     return ""

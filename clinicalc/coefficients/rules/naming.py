@@ -19,7 +19,11 @@ def check_names(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
         yield Problem(at("id"), f"{quoted(model.id)} is the name of a device on some computers. Choose another id.")
     shared = [
         (at(kind, index, "id"), part.id)
-        for kind, parts in (("predictors", model.predictors), ("derived", model.derived), ("exclusions", model.exclusions))
+        for kind, parts in (
+            ("predictors", model.predictors),
+            ("derived", model.derived),
+            ("exclusions", model.exclusions),
+        )
         for index, part in enumerate(parts)
     ]
     yield from _check_unique(shared, "predictors, derived values and exclusions share one set of names")
@@ -43,7 +47,8 @@ def check_sex(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
     for index, predictor in enumerate(model.predictors):
         if predictor.id == "sex" and set(names.answers_of("sex")) != SEXES:
             yield Problem(
-                at("predictors", index), 'the predictor "sex" must be a choice of exactly two answers, "female" and "male".'
+                at("predictors", index),
+                'the predictor "sex" must be a choice of exactly two answers, "female" and "male".',
             )
 
 
@@ -111,8 +116,8 @@ def check_flags(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
         if predictor.treatment is True and predictor.modifiable is True:
             yield Problem(
                 point(base, "modifiable"),
-                f"{quoted(predictor.id)} is a treatment and may not be modifiable: its coefficient says who is treated, not "
-                "what treating does. Leave one of the two away.",
+                f"{quoted(predictor.id)} is a treatment and may not be modifiable: its coefficient says who is "
+                "treated, not what treating does. Leave one of the two away.",
             )
         if predictor.may_be_missing is True and (predictor.id in ("sex", "age") or _is_age(predictor)):
             yield Problem(

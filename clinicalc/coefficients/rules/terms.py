@@ -1,6 +1,7 @@
 """Terms and the steps that turn a value into what a coefficient multiplies."""
 
 from collections.abc import Iterator
+from itertools import pairwise
 
 from msgspec import UNSET, UnsetType
 
@@ -26,7 +27,9 @@ def check_terms(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
     """Every term of every equation."""
     total = sum(len(equation.terms) for equation in model.equations)
     if total > MOST_TERMS:
-        yield Problem(at("equations"), f"the equations have {total} terms together; at most {MOST_TERMS} may stand in a file.")
+        yield Problem(
+            at("equations"), f"the equations have {total} terms together; at most {MOST_TERMS} may stand in a file."
+        )
     for index, equation in enumerate(model.equations):
         for place, term in enumerate(equation.terms):
             yield from _check_term(term, at("equations", index, "terms", place), names)
@@ -62,14 +65,17 @@ def _check_interval(interval: Interval, path: str) -> Iterator[Problem]:
     if interval.lower >= interval.upper:
         yield Problem(path, f"lower ({quoted(interval.lower)}) must be less than upper ({quoted(interval.upper)}).")
     if interval.scale == "ratio" and interval.lower <= 0:
-        yield Problem(point(path, "lower"), 'a ratio is more than 0. If these are limits of the coefficient, say "link".')
+        yield Problem(
+            point(path, "lower"), 'a ratio is more than 0. If these are limits of the coefficient, say "link".'
+        )
 
 
 def _check_factor(factor: Factor, path: str, names: Catalogue) -> Iterator[Problem]:
     part = names.find(factor.of)
     if part is None:
         yield Problem(
-            point(path, "of"), f"there is no predictor or derived value {quoted(factor.of)}.{suggest(factor.of, names.values)}"
+            point(path, "of"),
+            f"there is no predictor or derived value {quoted(factor.of)}.{suggest(factor.of, names.values)}",
         )
     steps = () if isinstance(factor.steps, UnsetType) else factor.steps
     chosen = bool(steps) and not isinstance(steps[0].is_, UnsetType)
@@ -86,7 +92,9 @@ def _check_factor(factor: Factor, path: str, names: Catalogue) -> Iterator[Probl
             yield from _check_answers(factor.of, step.is_, index, here, names)
         low, high = _clips(step, low, high)
         if low is not None and high is not None and low >= high:
-            yield Problem(here, f"clip_low {quoted(low)} and clip_high {quoted(high)} leave one value only; look which is which.")
+            yield Problem(
+                here, f"clip_low {quoted(low)} and clip_high {quoted(high)} leave one value only; look which is which."
+            )
             low = high = None
 
 
@@ -116,13 +124,13 @@ def _check_step(step: Step, path: str) -> Iterator[Problem]:
 
 def _check_spline(spline: Spline, path: str) -> Iterator[Problem]:
     count = len(spline.knots)
-    if any(later <= earlier for earlier, later in zip(spline.knots, spline.knots[1:], strict=False)):
+    if any(later <= earlier for earlier, later in pairwise(spline.knots)):
         yield Problem(point(path, "knots"), "knots must rise strictly from left to right.")
     if spline.basis > count - 2:
         yield Problem(
             point(path, "basis"),
-            f"{spline.basis} is too high: {count} knots have the basis functions 1 to {count - 2}; the linear term is a term "
-            "of its own.",
+            f"{spline.basis} is too high: {count} knots have the basis functions 1 to {count - 2}; the linear term "
+            "is a term of its own.",
         )
 
 
@@ -137,6 +145,8 @@ def _check_answers(name: str, answers: tuple[str, ...], index: int, path: str, n
         return
     for place, answer in enumerate(answers):
         if answer not in known:
-            yield Problem(point(base, place), f"{quoted(answer)} is no answer to {quoted(name)}.{suggest(answer, known)}")
+            yield Problem(
+                point(base, place), f"{quoted(answer)} is no answer to {quoted(name)}.{suggest(answer, known)}"
+            )
     if known and set(known) <= set(answers):
         yield Problem(base, f"this is true of every answer to {quoted(name)}.")

@@ -1,0 +1,90 @@
+"""The commands: assess, report, inspect, demo."""
+
+from collections.abc import Callable, Sequence
+from pathlib import Path
+
+import click
+
+from clinicalc import __version__
+from clinicalc.assessment.record import write_record
+from clinicalc.cli.case import CaseWords, assess_case, case_options
+from clinicalc.cli.outcome import ExitStatus, run_guarded
+from clinicalc.operations.bedside import assess_patient, open_model
+from clinicalc.operations.demonstration import DemoCase, demo_case
+from clinicalc.operations.documents import save_pdf
+from clinicalc.operations.inspection import inspect_model, write_sections
+from clinicalc.operations.summary import summarise
+
+OpenWindow = Callable[[DemoCase], int]
+"""Opens the window on a case and returns when it is closed; does nothing where there is no screen."""
+
+
+@click.group(
+    context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
+    epilog="Without a command the window opens. For qualified clinicians: supports judgement, does not replace it.",
+)
+@click.version_option(__version__, prog_name="clinicalc")
+def clinicalc() -> None:
+    """One coefficient file, one patient, one probability with its band."""
+
+
+@clinicalc.command()
+@case_options
+@click.option("--json", "as_json", is_flag=True, help="Print one JSON object and nothing else.")
+def assess(as_json: bool, **words: object) -> int:
+    """Assess one patient with a coefficient file.
+
+    Give each value as FIELD=VALUE, with its unit where it is not the file's own and its date where it has one:
+    age=61 "total_cholesterol=5.2 mmol/L" "glucose=110 mg/dL on 2026-10-02". `clinicalc inspect FILE` lists the fields.
+    """
+    assessment = assess_case(CaseWords(**words))  # type: ignore[arg-type]
+    click.echo(write_record(assessment) if as_json else summarise(assessment), nl=False)
+    return ExitStatus.STOPPED if assessment.estimate is None else ExitStatus.ASSESSED
+
+
+@clinicalc.command()
+@case_options
+@click.option("--out", required=True, metavar="FILE.pdf", help="The PDF to write.")
+@click.option("--label", default="", help="Name or number of the patient, for the print only.")
+def report(out: str, **words: object) -> int:
+    """Assess one patient and write the print as a PDF. No number, no print."""
+    assessment = assess_case(CaseWords(**words))  # type: ignore[arg-type]
+    if assessment.estimate is None:
+        click.echo(summarise(assessment), nl=False)
+        click.echo(f"\nNo print was made: there is no number to print. {out} was not written.")
+        return ExitStatus.STOPPED
+    save_pdf(Path(out), assessment)
+    click.echo(f"{summarise(assessment)}\nPrint written to {out}")
+    return ExitStatus.ASSESSED
+
+
+@clinicalc.command()
+@click.argument("file", metavar="FILE")
+def inspect(file: str) -> int:
+    """Print everything a coefficient file says, with its worked examples recomputed."""
+    click.echo(write_sections(inspect_model(open_model(Path(file)))), nl=False)
+    return ExitStatus.ASSESSED
+
+
+@clinicalc.command()
+@click.option("--out", default="clinicalc-demo.pdf", show_default=True, metavar="FILE.pdf", help="The PDF to write.")
+@click.option("--no-window", is_flag=True, help="Do not open the window afterwards.")
+@click.pass_obj
+def demo(open_window: OpenWindow, out: str, no_window: bool) -> int:
+    """Assess an invented patient with a shipped file, print the result, write the PDF, open the window."""
+    case = demo_case()
+    assessment = assess_patient(case.model, case.entry)
+    save_pdf(Path(out), assessment)
+    click.echo(f"{summarise(assessment)}\nPrint written to {out}")
+    return ExitStatus.ASSESSED if no_window else open_window(case)
+
+
+def run_command(words: Sequence[str], open_window: OpenWindow) -> int:
+    """Run the command that the words name and return its exit status; never raises, never shows a traceback."""
+
+    def command() -> int:
+        # not standalone: click returns what the command returned instead of leaving the process
+        status = clinicalc.main(list(words), prog_name="clinicalc", standalone_mode=False, obj=open_window)
+        return status if isinstance(status, int) else ExitStatus.ASSESSED
+
+    return run_guarded(command)

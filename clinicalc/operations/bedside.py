@@ -1,0 +1,120 @@
+"""One model and one patient: open the file, take the entries, choose horizon and recalibration, assess."""
+
+from collections.abc import Iterable
+from datetime import datetime
+from difflib import get_close_matches
+from pathlib import Path
+
+from clinicalc.assessment.assess import DEFAULT_LEVEL, assess
+from clinicalc.assessment.entry import PatientEntry, entry_from_texts
+from clinicalc.assessment.model import Model
+from clinicalc.assessment.proof import load_model, load_model_bytes
+from clinicalc.assessment.questions import quote
+from clinicalc.assessment.result import Assessment
+from clinicalc.coefficients.spans import Span
+from clinicalc.errors import UsageError
+from clinicalc.resources import read_shipped
+from clinicalc.units.reading import Reading, read_value
+
+LEVELS = (0.5, 0.999)
+"""The narrowest and the widest band that may be asked for."""
+
+
+def open_model(path: Path) -> Model:
+    """The proved model of a coefficient file. Raises CoefficientFileRefused with every problem found."""
+    return load_model(path)
+
+
+def open_example(name: str) -> Model:
+    """The proved model of a shipped coefficient file, such as "tarnwick-cvd-10y.json"."""
+    return load_model_bytes(read_shipped(f"example_models/{name}"), name)
+
+
+def assess_patient(
+    model: Model,
+    entry: PatientEntry,
+    *,
+    span: Span | None = None,
+    recalibration: str | None = None,
+    level: float = DEFAULT_LEVEL,
+    at: datetime | None = None,
+) -> Assessment:
+    """The assessment of one entry; never raises on what a person typed about the patient."""
+    return assess(model, entry, span=span, recalibration=recalibration, level=level, at=at)
+
+
+def take_texts(model: Model, texts: Iterable[str], label: str = "") -> PatientEntry:
+    """The entry from words such as "age=61". Raises UsageError for an unknown or repeated key, or no "="."""
+    known = [field.id for field in model.fields]
+    taken: dict[str, str] = {}
+    for word in texts:
+        id, mark, text = word.partition("=")
+        id = id.strip()
+        if not mark:
+            raise UsageError(
+                f"{quote(word)} is not a value.", do="Write the field, an equals sign and the value: age=61."
+            )
+        if id not in known:
+            raise UsageError(
+                f"{quote(id)} is not a field of this model.",
+                why=_hint(id, known),
+                do=f"Its fields are {', '.join(known)}.",
+            )
+        if id in taken:
+            raise UsageError(f"{id} is given twice.", do="Give each field once.")
+        taken[id] = text
+    return entry_from_texts(taken, label)
+
+
+def choose_span(model: Model, *, years: float | None = None, time: str | None = None) -> Span:
+    """The model's horizon that was asked for, or its only one. Raises UsageError where it has no such horizon."""
+    offered = ", ".join(span.words for span in model.spans)
+    if years is not None and time is not None:
+        raise UsageError("a horizon is given both in years and as a time.", do="Give one of the two.")
+    if years is None and time is None:
+        if len(model.spans) == 1:
+            return model.spans[0]
+        raise UsageError(
+            f"this model answers for several time spans ({offered}).", do="Say which, with --years or --time."
+        )
+    asked = Span(years) if years is not None else _read_span(time or "")
+    if asked not in model.spans:
+        raise UsageError(f"this model has no horizon of {asked.words}.", why=f"It answers for {offered}.")
+    return asked
+
+
+def choose_recalibration(model: Model, span: Span, id: str | None) -> str | None:
+    """The id of a recalibration that the model offers at this horizon. Raises UsageError for an unknown one."""
+    if id is None:
+        return None
+    offered = [recalibration.id for recalibration in model.recalibrations_at(span)]
+    if id in offered:
+        return id
+    if not offered:
+        raise UsageError(f"this model offers no recalibrations for {span.words}.", do="Leave the option out.")
+    raise UsageError(
+        f"{quote(id)} is not a recalibration of this model.",
+        why=_hint(id, offered),
+        do=f"It offers {', '.join(offered)}.",
+    )
+
+
+def check_level(level: float) -> float:
+    """The level of the band, if one can be made of it. Raises UsageError, with the likely slip, where not."""
+    low, high = LEVELS
+    if low <= level <= high:
+        return level
+    slip = f" Did you mean {level / 100:g}?" if low <= level / 100 <= high else ""
+    raise UsageError(f"a band cannot be made at the level {level:g}.", why=f"Levels go from {low:g} to {high:g}.{slip}")
+
+
+def _read_span(text: str) -> Span:
+    reading = read_value(text)
+    if not isinstance(reading, Reading) or reading.unit is None:
+        raise UsageError(f"{quote(text)} is not a time span.", do='Write a number and a unit of time, such as "90 d".')
+    return Span(reading.number, reading.unit)
+
+
+def _hint(word: str, known: list[str]) -> str:
+    close = get_close_matches(word, known, n=1)
+    return f"Did you mean {close[0]}?" if close else ""

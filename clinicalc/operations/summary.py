@@ -1,0 +1,112 @@
+"""The assessment as plain text: for the command line, and for copying."""
+
+from clinicalc.assessment.findings import Finding
+from clinicalc.assessment.numerals import NARROW_SPACE, of_people, percent, percent_range
+from clinicalc.assessment.result import Assessment, ValueLine
+from clinicalc.coefficients.fingerprint import group_fingerprint
+
+BAND_WORDS = (
+    "The band says how precisely the model’s coefficients are known for people with these values. It is not this"
+    " patient’s range and covers no other population."
+)
+NOT_VETTED = "Not vetted: for trying out, not for a patient."
+
+
+def summarise(assessment: Assessment) -> str:
+    """The whole assessment in reading order, ending in a newline."""
+    model = assessment.model
+    blocks = [
+        [
+            f"{model.content.title}, version {model.content.version}",
+            f"Fingerprint {group_fingerprint(model.fingerprint, 3)}",
+        ],
+        [NOT_VETTED],
+        _number(assessment),
+        _findings(assessment.findings),
+        _values(assessment.values),
+    ]
+    return "\n\n".join("\n".join(block) for block in blocks if block) + "\n"
+
+
+def people_sentence(assessment: Assessment) -> str:
+    """The probability as a count of people with these values; "" where there is no number."""
+    estimate, span = assessment.estimate, assessment.span
+    if estimate is None or span is None:
+        return ""
+    count, whole = of_people(estimate.probability)
+    if count is None and estimate.probability < 0.5:
+        return f"Of {whole} people with these values, fewer than 1 has the event within {span.words}."
+    if count is None:
+        return f"Of {whole} people with these values, nearly all have the event within {span.words}."
+    have = "has" if count == 1 else "have"
+    equation = next(e for e in assessment.model.equations if e.content.id == assessment.equation)
+    censored = equation.content.competing_events.handled == "censored"
+    condition = ", if no other cause of death comes first" if censored else ""
+    return (
+        f"Of {whole} people with these values, about {count} {have} the event within {span.words}"
+        f" and about {whole - count} do not{condition}."
+    )
+
+
+def band_sentence(assessment: Assessment) -> str:
+    """The band with its level, or the reason why there is none; "" where there is no number."""
+    estimate = assessment.estimate
+    if estimate is None:
+        return ""
+    if estimate.band is None:
+        return f"No band: {estimate.band_absent_because}"
+    return (
+        f"{100 * estimate.band.level:g}{NARROW_SPACE}% band {percent_range(estimate.band.lower, estimate.band.upper)}."
+    )
+
+
+def recalibration_label(assessment: Assessment) -> str:
+    """The label of the recalibration that was used, "" for none."""
+    chosen = [r.label for r in assessment.model.content.recalibrations if r.id == assessment.recalibration]
+    return chosen[0] if chosen else ""
+
+
+def progress_sentence(assessment: Assessment) -> str:
+    """Why there is no number: what stops it, or how many entries are still to go and which comes next."""
+    if assessment.stops:
+        labels = {field.id: field.label.rstrip("?") for field in assessment.model.fields}
+        first = assessment.stops[0]
+        return f"{labels.get(first.field, first.field.capitalize())} stops it."
+    count = len(assessment.missing)
+    labels = {field.id: field.label for field in assessment.model.fields}
+    if not count:
+        return ""
+    entries = "1 entry" if count == 1 else f"{count} entries"
+    return f"{entries} to go. Next: {labels[assessment.missing[0].field]}"
+
+
+def _number(assessment: Assessment) -> list[str]:
+    estimate, span = assessment.estimate, assessment.span
+    outcome = assessment.model.content.outcome
+    within = "" if span is None else f" within {span.words}"
+    if estimate is None:
+        return [outcome, f"No number. {progress_sentence(assessment)}"]
+    lines = [outcome, f"{percent(estimate.probability, estimate.complement)}{within}", people_sentence(assessment)]
+    label = recalibration_label(assessment)
+    if label:
+        lines.append(f"Recalibration: {label}.")
+    lines.append(band_sentence(assessment))
+    if estimate.band is not None:
+        lines.append(BAND_WORDS)
+    return lines
+
+
+def _findings(findings: tuple[Finding, ...]) -> list[str]:
+    return [f"{finding.grade.value.capitalize()}: {finding.message}" for finding in findings]
+
+
+def _values(values: tuple[ValueLine, ...]) -> list[str]:
+    rows = [line for line in values if line.typed or line.worked_out]
+    width = max((len(line.label) for line in rows if not line.exclusion), default=0)
+    lines = []
+    for line in rows:
+        shown = line.shown or f"{line.used} (worked out)"
+        used = f"  used as {line.used}" if line.shown and line.used and line.used != line.shown else ""
+        dated = f"  of {line.dated.isoformat()}" if line.dated else ""
+        lines.append(f"{line.label} {shown}" if line.exclusion else f"{line.label:<{width}}  {shown}{used}{dated}")
+    return lines

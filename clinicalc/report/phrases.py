@@ -1,0 +1,89 @@
+"""The sentences of a print that do not come from the coefficient file."""
+
+from datetime import datetime
+
+from clinicalc.assessment.numerals import NARROW_SPACE, of_people, percent_range
+from clinicalc.assessment.result import Band
+
+NOT_VETTED = "Not vetted: for trying out, not for a patient"
+
+NO_LABEL = "no patient label"
+
+BAND_MEANING = (
+    "Band: how precisely the model’s coefficients are known for people with these values. It is not this patient’s"
+    " range and covers no other population. Errors of measurement are not in it."
+)
+
+NO_NUMBER = (
+    "This sheet records that the model gave no number for these values. The findings below say why; nothing here is"
+    " an estimate, high or low."
+)
+
+STANDING_CAUTIONS = (
+    "For qualified clinicians only. The number supports their judgement and never takes its place. It is not for"
+    " emergencies.",
+    "Local rules, current guidance and licensed practice come first. The program advises nothing, makes no diagnosis"
+    " and claims no approval by any authority.",
+    "The practice answers for the coefficient file it chose and for the values it typed. Check the values above"
+    " against the patient’s notes before relying on the number.",
+)
+
+_BASES = {
+    "covariance": "From the model’s own covariance of its coefficients.",
+    "robust": "From a robust covariance of the model’s coefficients.",
+    "reconstructed": "Approximate: the covariance was rebuilt from printed intervals.",
+    "draws": "From the model’s bootstrap draws.",
+}
+
+_MONTHS = (
+    "January February March April May June July August September October November December"
+).split()  # not from the locale: a print reads the same everywhere
+
+
+def level_words(level: float) -> str:
+    """A confidence level as a percentage: "95 %"."""
+    return f"{100 * level:g}{NARROW_SPACE}%"
+
+
+def band_words(band: Band) -> tuple[str, str]:
+    """The band's figures, and what they were made from."""
+    return percent_range(band.lower, band.upper), _BASES[band.basis]
+
+
+def people_sentence(probability: float, span: str, *, others_censored: bool) -> str:
+    """The probability in people; says so where the fit left other causes of death out of account."""
+    count, whole = of_people(probability)
+    condition = ", if no other cause of death came first" if others_censored else ""
+    within = f"within {span}"
+    opening = f"Of {whole} people with these values,"
+    if count is not None:
+        has = "has" if count == 1 else "have"
+        rest = whole - count
+        return (
+            f"{opening} about {count} {has} the event {within} and about {rest} {'does' if rest == 1 else 'do'} not"
+            f"{condition}."
+        )
+    if probability < 0.5:
+        return f"{opening} fewer than 1 has the event {within}{condition}."
+    return f"{opening} all but fewer than 1 have the event {within}{condition}."
+
+
+def day_words(moment: datetime) -> str:
+    """A day in words: "1 December 2026"."""
+    return f"{moment.day} {_MONTHS[moment.month - 1]} {moment.year}"
+
+
+def moment_words(moment: datetime) -> str:
+    """A day and a time: "1 December 2026, 14:20"."""
+    return f"{day_words(moment)}, {moment:%H:%M}"
+
+
+def zone_words(moment: datetime) -> str:
+    """How the clock of a moment differs from universal time: "UTC+01:00"; "" where it is not known."""
+    text = f"{moment:%z}"
+    return f"UTC{text[:3]}:{text[3:5]}".replace("-", "−") if text else ""
+
+
+def count_words(count: int, one: str, many: str = "") -> str:
+    """A count with its noun: "1 finding", "2 findings", "2 entries"."""
+    return f"{count} {one if count == 1 else many or f'{one}s'}"
