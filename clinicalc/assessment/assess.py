@@ -72,11 +72,10 @@ def assess(
     taken.findings += _unsettled(model, span, chosen)
     equation = equations[0] if len(equations) == 1 else None
     estimate = None
-    if equation is not None and span is not None:
-        basis = Basis(equation, span, chosen, taken.numbers, taken.answers)
-        taken.findings += equation_cautions(model, basis)
-        if not any(finding.grade is Grade.STOP for finding in taken.findings):
-            estimate = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
+    stopped = any(finding.grade is Grade.STOP for finding in taken.findings)
+    if equation is not None and span is not None and not stopped:
+        estimate = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
+        taken.findings += equation_cautions(model, Basis(equation, span, chosen, taken.numbers, taken.answers))
     order = (*(field.id for field in model.fields), "horizon", "recalibration")
     return Assessment(
         model=model,

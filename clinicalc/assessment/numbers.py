@@ -87,7 +87,10 @@ def check_ranges(
     if not _within(value, field.possible):
         limits = _in_unit(field.possible, back, code)
         yield _stop(
-            field, FindingCode.IMPOSSIBLE, f"{named} is not possible: {limits} is.{_remedy(shown, offer)}", offer
+            field,
+            FindingCode.IMPOSSIBLE,
+            f"{named} is not possible; the possible range is {limits}.{_remedy(shown, offer)}",
+            offer,
         )
     elif not _within(value, field.derivation) and field.derivation_stops:
         limits = _in_unit(field.derivation, back, code)
@@ -102,7 +105,7 @@ def check_ranges(
             Grade.CAUTION,
             FindingCode.UNUSUAL,
             field.id,
-            f"{named} is unusual: {limits} is usual.{_remedy(shown, offer) or ' Check that it was typed correctly.'}",
+            f"{named} is unusual; the usual range is {limits}.{_remedy(shown, offer) or ' Check that it was typed correctly.'}",
             offer,
         )
     elif not _within(value, field.derivation):

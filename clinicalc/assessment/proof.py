@@ -67,7 +67,7 @@ def recompute(model: Model, example: WorkedExample) -> Assessment:
 
 def _failed_examples(model: Model) -> Iterator[Problem]:
     for place, example in enumerate(model.content.worked_examples):
-        path = f"/worked_examples/{place}"
+        path = f"/model/worked_examples/{place}"
         estimate = (result := recompute(model, example)).estimate
         if estimate is None:
             reasons = " ".join(finding.message for finding in (*result.stops, *result.missing))

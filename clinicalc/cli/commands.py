@@ -28,7 +28,7 @@ def clinicalc() -> None:
     """One coefficient file, one patient, one probability with its band."""
 
 
-@clinicalc.command()
+@clinicalc.command(short_help="Assess one patient with a coefficient file.")
 @case_options
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object and nothing else.")
 def assess(as_json: bool, **words: object) -> int:
@@ -42,7 +42,7 @@ def assess(as_json: bool, **words: object) -> int:
     return ExitStatus.STOPPED if assessment.estimate is None else ExitStatus.ASSESSED
 
 
-@clinicalc.command()
+@clinicalc.command(short_help="Assess one patient and write the PDF.")
 @case_options
 @click.option("--out", required=True, metavar="FILE.pdf", help="The PDF to write.")
 @click.option("--label", default="", help="Name or number of the patient, for the print only.")
@@ -58,7 +58,7 @@ def report(out: str, **words: object) -> int:
     return ExitStatus.ASSESSED
 
 
-@clinicalc.command()
+@clinicalc.command(short_help="Print everything a coefficient file says.")
 @click.argument("file", metavar="FILE")
 def inspect(file: str) -> int:
     """Print everything a coefficient file says, with its worked examples recomputed."""
@@ -66,7 +66,7 @@ def inspect(file: str) -> int:
     return ExitStatus.ASSESSED
 
 
-@clinicalc.command()
+@clinicalc.command(short_help="Show the whole job on an invented patient.")
 @click.option("--out", default="clinicalc-demo.pdf", show_default=True, metavar="FILE.pdf", help="The PDF to write.")
 @click.option("--no-window", is_flag=True, help="Do not open the window afterwards.")
 @click.pass_obj

@@ -1,7 +1,8 @@
 """Which steps have no finite value somewhere in the range for which a model gives a number.
 
 The range goes through the steps as an interval. Every step is monotone, or has its only turn at nought, so the ends
-of the interval (and nought where the interval holds it) bound every value in between.
+of the interval (and nought where the interval holds it) bound every value in between. An open side is taken as far as
+any number can be typed, and further.
 """
 
 from collections.abc import Iterator, Mapping
@@ -30,6 +31,9 @@ class Interval:
 
 EVERYTHING = Interval(-inf, inf)
 
+# a typed number has at most 32 characters, and no conversion of units multiplies it by a hundred million
+_FARTHEST = 1e40
+
 
 def find_nonfinite(model: ModelContent, ranges: Mapping[str, Interval]) -> tuple[Problem, ...]:
     """A problem for each step that is not finite everywhere in its range.
@@ -48,15 +52,15 @@ def _walk(model: ModelContent, ranges: Mapping[str, Interval]) -> Iterator[Probl
                 for f, factor in enumerate(product):
                     steps = () if isinstance(factor.steps, UnsetType) else factor.steps
                     known = codes.get(factor.of, {})
-                    interval = ranges.get(factor.of, Interval(0, max(len(known) - 1, 1)))
+                    interval = _closed(ranges.get(factor.of, Interval(0, max(len(known) - 1, 1))))
                     for s, step in enumerate(steps):
                         transform = compile_step(step, known)
                         try:
                             interval = advance(transform, interval)
                         except ValueError as fault:
                             yield Problem(
-                                f"/equations/{e}/terms/{t}/{place}/{f}/steps/{s}",
-                                f"{transform.kind.value} {fault} while {factor.of} may lie anywhere from"
+                                f"/model/equations/{e}/terms/{t}/{place}/{f}/steps/{s}",
+                                f"{transform.kind.value} {fault} while {factor.of} may be"
                                 f" {interval_words(ranges.get(factor.of, EVERYTHING))}. State a narrower `possible`"
                                 " or `derivation` that stops, or change the step.",
                             )
@@ -65,9 +69,10 @@ def _walk(model: ModelContent, ranges: Mapping[str, Interval]) -> Iterator[Probl
 
 def interval_words(interval: Interval) -> str:
     """The interval as it stands in a sentence."""
-    low = f"{interval.low:g}" if isfinite(interval.low) else "without a lower limit"
-    high = f"{interval.high:g}" if isfinite(interval.high) else "without an upper limit"
-    return f"{low} to {high}"
+    low, high = f"{interval.low:g}", f"{interval.high:g}"
+    if isfinite(interval.low):
+        return f"anything from {low} to {high}" if isfinite(interval.high) else f"anything from {low} upwards"
+    return f"anything up to {high}" if isfinite(interval.high) else "anything"
 
 
 def advance(transform: Transform, interval: Interval) -> Interval:
@@ -81,15 +86,14 @@ def advance(transform: Transform, interval: Interval) -> Interval:
         if c < 0 and 0 in interval:
             raise ValueError("of a negative exponent has no value at 0")
         if c != int(c) and interval.low < 0:
-            raise ValueError("of a broken exponent has no value below 0")
+            raise ValueError("of a fractional exponent has no value below 0")
     corners = [interval.low, interval.high, *([0.0] if 0 in interval and kind is not StepKind.LOG else [])]
     with np.errstate(all="ignore"):
-        # a side that is open stays open through every step but a clip
         ends = [float(apply_transform(transform, np.array([corner]))[0]) for corner in corners]
-    overflown = any(isfinite(corner) and not isfinite(end) for corner, end in zip(corners, ends, strict=True))
-    if overflown:
+    if not all(isfinite(end) for end in ends):
         raise ValueError("is not finite")
-    known = [end for end in ends if end == end]
-    if kind is StepKind.SPLINE and not all(isfinite(corner) for corner in corners):
-        return EVERYTHING
-    return Interval(min(known), max(known)) if known else EVERYTHING
+    return Interval(min(ends), max(ends))
+
+
+def _closed(interval: Interval) -> Interval:
+    return Interval(max(interval.low, -_FARTHEST), min(interval.high, _FARTHEST))

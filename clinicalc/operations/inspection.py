@@ -11,6 +11,7 @@ from clinicalc.assessment.proof import recompute
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.coefficients.schema import Derivation, WorkedExample
 from clinicalc.coefficients.spans import span_of
+from clinicalc.operations.folding import fold
 from clinicalc.operations.inspection_equations import equation_sections
 from clinicalc.operations.inspection_fields import field_sections
 
@@ -30,7 +31,8 @@ def inspect_model(model: Model) -> tuple[Section, ...]:
 
 def write_sections(sections: tuple[Section, ...]) -> str:
     """The sections as plain text, ending in a newline."""
-    return "\n\n".join("\n".join([s.title, *(f"  {line}" for line in s.lines)]) for s in sections) + "\n"
+    blocks = ([s.title, *(part for line in s.lines for part in fold(f"  {line}"))] for s in sections)
+    return "\n\n".join("\n".join(block) for block in blocks) + "\n"
 
 
 def count_examples(model: Model) -> str:
@@ -97,7 +99,8 @@ def _examples(model: Model) -> Iterator[str]:
     for example in model.content.worked_examples:
         estimate = recompute(model, example).estimate
         assert estimate is not None  # a file whose example gives no number was refused
-        values = ", ".join(f"{id} {text}" for id, text in example.values.items())
+        typed = [(field.id, example.values[field.id]) for field in model.fields if field.id in example.values]
+        values = ", ".join(f"{id} {text}" for id, text in typed)
         span = span_of(example)
         after = f", recalibration {example.recalibration}" if isinstance(example.recalibration, str) else ""
         yield f"{values} ({'' if span is None else span.words}{after})"

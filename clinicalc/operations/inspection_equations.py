@@ -6,7 +6,6 @@ from msgspec import UnsetType
 
 from clinicalc.assessment.model import Model
 from clinicalc.coefficients.schema import (
-    AtCentre,
     DrawsBand,
     Equation,
     Factor,
@@ -58,11 +57,14 @@ def _equation(equation: Equation) -> Iterator[str]:
     which = "" if isinstance(competing.which, UnsetType) else f" ({competing.which})"
     yield f"link {equation.link}; competing events: {competing.handled.replace('_', ' ')}{which}"
     for term in equation.terms:
-        yield f"{term.coefficient!r} x {_term(term)}{_term_remarks(term)}"
+        yield f"{_figure(term.coefficient)} x {_term(term)}{_term_remarks(term)}"
     for horizon in equation.horizons:
         yield f"{_span(horizon)}: {_baseline(horizon)}"
     if not isinstance(equation.reference_person, UnsetType):
-        person = ", ".join(f"{id} {value}" for id, value in equation.reference_person.items())
+        person = ", ".join(
+            f"{id} {_figure(value) if isinstance(value, float) else value}"
+            for id, value in equation.reference_person.items()
+        )
         yield f"reference person: {person}"
     yield from _uncertainty(equation)
 
@@ -81,14 +83,14 @@ def _factor(factor: Factor) -> str:
 def _step(step: Step) -> str:
     kind = kind_of(step)
     if not isinstance(step.spline, UnsetType):
-        knots = " ".join(f"{knot!r}" for knot in step.spline.knots)
+        knots = _figures(step.spline.knots)
         return f"restricted cubic spline basis {step.spline.basis}, knots {knots}"
     if not isinstance(step.is_, UnsetType):
         return f"is {' or '.join(step.is_)}"
     if kind is StepKind.LOG:
         return "natural logarithm"
     value = getattr(step, "from_" if kind is StepKind.FROM else kind.value)
-    return _WORDS[kind].format(repr(value))
+    return _WORDS[kind].format(_figure(value))
 
 
 def _term_remarks(term: Term) -> str:
@@ -102,7 +104,7 @@ def _term_remarks(term: Term) -> str:
 
 def _baseline(horizon: Horizon) -> str:
     parts = [
-        f"{words} {value!r}"
+        f"{words} {_figure(value)}"
         for words, value in (
             ("intercept", horizon.intercept),
             ("baseline survival", horizon.baseline_survival),
@@ -131,13 +133,18 @@ def _uncertainty(equation: Equation) -> Iterator[str]:
         return
     estimated = [term.id for term in equation.terms if term.fixed is not True]
     for id, row in zip(estimated, band.covariance, strict=True):
-        yield f"    covariance of {id}: {' '.join(repr(value) for value in row)}"
+        yield f"    covariance of {id}: {_figures(row)}"
     for at in band.at_centre:
-        yield f"    {_span(at)}: variance {at.variance!r} at {_centre(at)}"
+        yield f"    {_span(at)}: variance {_figure(at.variance)} at {_figures(at.centre)}"
 
 
-def _centre(at: AtCentre) -> str:
-    return " ".join(repr(value) for value in at.centre)
+def _figure(value: float) -> str:
+    """A figure of the file as the shortest decimal that reads back to it."""
+    return repr(value).removesuffix(".0")
+
+
+def _figures(values: tuple[float, ...]) -> str:
+    return " ".join(_figure(value) for value in values)
 
 
 def _span(part: HasSpan) -> str:

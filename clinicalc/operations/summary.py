@@ -4,6 +4,7 @@ from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.numerals import NARROW_SPACE, of_people, percent, percent_range
 from clinicalc.assessment.result import Assessment, ValueLine
 from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.operations.folding import fold
 
 BAND_WORDS = (
     "The band says how precisely the model’s coefficients are known for people with these values. It is not this"
@@ -25,7 +26,8 @@ def summarise(assessment: Assessment) -> str:
         _findings(assessment.findings),
         _values(assessment.values),
     ]
-    return "\n\n".join("\n".join(block) for block in blocks if block) + "\n"
+    folded = ([part for line in block for part in fold(line)] for block in blocks if block)
+    return "\n\n".join("\n".join(lines) for lines in folded) + "\n"
 
 
 def people_sentence(assessment: Assessment) -> str:

@@ -102,11 +102,17 @@ def _variance(band: Precision, columns: Sequence[Column], eta: Column, adjustmen
 
 
 def _adjustment_variance(adjustment: Adjustment, eta: Column) -> Column:
-    """[1, eta] C [1, eta]' with C the covariance of intercept and slope; nought where it is not known."""
+    """[1, eta] C [1, eta]' with C the covariance of intercept and slope; nought where it is not known.
+
+    The square is completed, so that rounding cannot make it negative.
+    """
     if adjustment.covariance is None:
         return np.zeros(eta.size)
     v00, v01, v11 = adjustment.covariance
-    return v00 + 2.0 * v01 * eta + v11 * eta * eta
+    if v11 == 0.0:
+        return np.full(eta.size, v00)
+    away = eta + v01 / v11
+    return max(v00 - v01 * v01 / v11, 0.0) + v11 * (away * away)
 
 
 def _draw_limits(

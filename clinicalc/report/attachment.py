@@ -17,7 +17,7 @@ def attach_record(document: Any, record: str) -> None:
         PDFDictionary(
             {
                 "Type": PDFName("EmbeddedFile"),
-                "Subtype": PDFName("application/json"),
+                "Subtype": "/application#2Fjson",  # PDFName would write the slash as it is
                 "Params": PDFDictionary({"Size": len(content)}),
             }
         ),

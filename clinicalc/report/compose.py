@@ -54,7 +54,7 @@ def compose(assessment: Assessment, *, practice: str, printed_at: datetime) -> S
         person=_person(assessment),
         assessed=f"assessed {phrases.moment_words(assessment.at)}{f' {zone}' if zone else ''}",
         result=_result(assessment),
-        facts=FactList(tuple(_result_facts(assessment))),
+        facts=FactList(tuple(_result_facts(assessment)), key=True),
         sections=(
             _findings(assessment),
             *_values(assessment),
@@ -72,7 +72,7 @@ def _person(assessment: Assessment) -> str:
     sexes = [line for line in assessment.values if line.id == "sex"]
     parts = [_said(line) for line in (*ages[:1], *sexes)]
     absent = [name for name, lines in (("Age", ages), ("Sex", sexes)) if not lines]
-    return ", ".join([*parts, *(f"{name}: not asked by this model" for name in absent)])
+    return " · ".join([*parts, *(f"{name} not asked by this model" for name in absent)])
 
 
 def _is_age(field: object) -> bool:
@@ -81,10 +81,10 @@ def _is_age(field: object) -> bool:
 
 def _said(line: ValueLine) -> str:
     if not line.typed and not line.worked_out:
-        return f"{line.label}: {_NOT_GIVEN}"
+        return f"{line.label} {_NOT_GIVEN}"
     if not line.used:
-        return f"{line.label}: {line.shown} (not usable)"
-    return f"{line.label}: {line.shown or line.used}"
+        return f"{line.label} {line.shown} (not used)"
+    return f"{line.label} {line.shown or line.used}"
 
 
 def _result(assessment: Assessment) -> Result:
@@ -96,7 +96,7 @@ def _result(assessment: Assessment) -> Result:
             *([phrases.count_words(stops, "stop")] if stops else []),
             *([f"{phrases.count_words(missing, 'entry', 'entries')} still to be made"] if missing else []),
         ]
-        return Result("No number", "", outcome, (phrases.NO_NUMBER, f"Reason: {join_words(reasons)}."))
+        return Result("No number", "", outcome, (phrases.NO_NUMBER, f"{join_words(reasons)}."))
     figure, sign = percent(estimate.probability, estimate.complement).rsplit("%", 1)[0], "%"
     sentence = phrases.people_sentence(
         estimate.probability, span.words, others_censored=_handled(assessment) == "censored"
@@ -199,7 +199,7 @@ def _model(assessment: Assessment) -> Section:
         Fact("Does not use", (_listed(use.not_used),)),
         Fact("Its own cautions", use.cautions or ("none stated",)),
     ]
-    return Section("The model", (FactList(tuple(facts)),))
+    return Section("The model", (FactList(tuple(facts)),), whole=True)
 
 
 def _listed(parts: tuple[str, ...]) -> str:

@@ -25,9 +25,10 @@ class Fact:
 
 @dataclass(frozen=True, slots=True)
 class FactList:
-    """Statements below each other, names at the left."""
+    """Statements below each other, names at the left; `key` facts stand in line with the result."""
 
     facts: tuple[Fact, ...]
+    key: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,7 +97,7 @@ class Section:
     heading: str
     blocks: tuple[Block, ...]
     whole: bool = False
-    """Whether it may not be parted by a page break."""
+    """Whether it is held together, unless it is too long for that."""
 
 
 @dataclass(frozen=True, slots=True)

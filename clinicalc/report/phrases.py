@@ -15,8 +15,8 @@ BAND_MEANING = (
 )
 
 NO_NUMBER = (
-    "This sheet records that the model gave no number for these values. The findings below say why; nothing here is"
-    " an estimate, high or low."
+    "This sheet records that the model gave no number for these values. The findings say why. Nothing on it is an"
+    " estimate."
 )
 
 STANDING_CAUTIONS = (

@@ -29,7 +29,12 @@ CLOGLOG = tree_of(tiny_cloglog_model())
         ("/model/equations/0/horizons/0/years", 0, "/model/equations/0/horizons/0/years", "must be more than 0"),
         ("/model/equations/0/horizons/0/events", 1.5, "/model/equations/0/horizons/0/events", "a whole number"),
         ("/model/equations/0/horizons/0/events", -1, "/model/equations/0/horizons/0/events", "must be at least 0"),
-        ("/model/predictors/1/modifiable", 1, "/model/predictors/1/modifiable", "true or false must stand here; found 1"),
+        (
+            "/model/predictors/1/modifiable",
+            1,
+            "/model/predictors/1/modifiable",
+            "true or false must stand here; found 1",
+        ),
         ("/model/predictors/0/derivation", [30], "/model/predictors/0/derivation", "two entries must stand here"),
         ("/model/predictors/0/derivation", [30, "75"], "/model/predictors/0/derivation/1", "a number or null must"),
         ("/model/predictors/0/label", "x" * 121, "/model/predictors/0/label", "121 characters; at most 120"),

@@ -16,7 +16,7 @@ VALID = json.dumps(tree_of(tiny_logit_model()), indent=2).encode()
     [
         (b"", "is empty"),
         (b" \n\t ", "is empty"),
-        (VALID[:400], "breaks off at line 20, column"),
+        (VALID[:400], "breaks off at line 15, column"),
         (VALID.rstrip()[:-1], "breaks off at line"),
         (b'{"format": "clin', "breaks off at line 1, column 16"),
         (VALID.replace(b"Tiny", b"T\xefny"), "is not UTF-8 text: byte"),

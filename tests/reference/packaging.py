@@ -1,7 +1,7 @@
 """Turns the figures of a fit into a coefficient file and back into a proved model, as a packaging tool would."""
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from decimal import Decimal
 from statistics import NormalDist
 

@@ -66,14 +66,23 @@ def _find_gap(boxes: Sequence[Box], asked: Mapping[str, Sequence[str]]) -> dict[
         return None
     for name, answers in asked.items():
         fixed[name] = next(answer for answer in answers if _has_gap(boxes, asked, {**fixed, name: answer}))
+    for name in tuple(fixed):  # name no more answers than it takes
+        fewer = {other: answer for other, answer in fixed.items() if other != name}
+        if _count_covered(boxes, asked, fewer) == 0:
+            fixed = fewer
     return fixed
 
 
 def _has_gap(boxes: Sequence[Box], asked: Mapping[str, Sequence[str]], fixed: Mapping[str, str]) -> bool:
+    total = math.prod(len(set(answers)) for name, answers in asked.items() if name not in fixed)
+    return _count_covered(boxes, asked, fixed) < total
+
+
+def _count_covered(boxes: Sequence[Box], asked: Mapping[str, Sequence[str]], fixed: Mapping[str, str]) -> int:
+    """How many combinations of the answers not yet fixed lie in a box."""
     free = [name for name in asked if name not in fixed]
     inside = [box for box in boxes if all(fixed[name] in box[name] for name in fixed)]
-    covered = sum(math.prod(len(box[name]) for name in free) for box in inside)
-    return covered < math.prod(len(set(asked[name])) for name in free)
+    return sum(math.prod(len(box[name]) for name in free) for box in inside)
 
 
 def _spell(answers: Mapping[str, str]) -> str:

@@ -124,7 +124,7 @@ def _judge_limits(example: WorkedExample, equation: Equation) -> str:
         return 'give both "lower" and "upper", or neither.'
     if isinstance(equation.uncertainty, NoBand):
         return f"the equation {quoted(equation.id)} has no band, so no limits can be recomputed. Leave them out."
-    if not lower < example.probability < upper:
+    if 0 < example.probability < 1 and not lower < example.probability < upper:
         return "the limits must stand on the two sides of the probability."
     return ""
 

@@ -1,0 +1,112 @@
+"""What is on screen as values, and the one assessment that belongs to them."""
+
+from collections.abc import Mapping
+from types import MappingProxyType
+from typing import Protocol
+
+from PySide6.QtCore import QObject, Signal
+
+from clinicalc.assessment.entry import PatientEntry, Typed
+from clinicalc.assessment.model import Model
+from clinicalc.assessment.result import Assessment
+from clinicalc.coefficients.spans import Span
+from clinicalc.operations.bedside import assess_patient
+
+
+class Assess(Protocol):
+    """The verb that answers for one entry."""
+
+    def __call__(
+        self, model: Model, entry: PatientEntry, *, span: Span | None, recalibration: str | None
+    ) -> Assessment: ...
+
+
+class EntryState(QObject):
+    """Model, choices and entry; each change makes one assessment and one signal.
+
+    Listeners read `assessment` when they are told: between `blanked` and the next change it is None, and then nothing
+    may show a number.
+    """
+
+    model_changed = Signal()
+    """Another model, or another patient's entry: every field is to be filled anew."""
+    assessed = Signal(object)
+    """The new Assessment."""
+    blanked = Signal(str)
+    """There is no assessment any more; the sentence says why."""
+
+    def __init__(self, assess: Assess = assess_patient) -> None:
+        super().__init__()
+        self._assess = assess
+        self._entry = PatientEntry()
+        self.model: Model | None = None
+        self.span: Span | None = None
+        self.recalibration: str | None = None
+        self.assessment: Assessment | None = None
+
+    @property
+    def entry(self) -> PatientEntry:
+        """Everything typed about the patient."""
+        return self._entry
+
+    def use_model(self, model: Model, entry: PatientEntry | None = None) -> None:
+        """Take another model, with nothing typed or with a whole entry. Open choices stay open."""
+        self.assessment = None
+        self.model = model
+        self.span = model.spans[0] if len(model.spans) == 1 else None
+        self.recalibration = None
+        self._entry = entry or PatientEntry()
+        self.model_changed.emit()
+        self.reassess()
+
+    def choose_span(self, span: Span | None) -> None:
+        """Choose a horizon, or leave it open; a recalibration that is not offered there is let go."""
+        self.span = span
+        offered = () if self.model is None or span is None else self.model.recalibrations_at(span)
+        if self.recalibration not in [recalibration.id for recalibration in offered]:
+            self.recalibration = None
+        self.reassess()
+
+    def choose_recalibration(self, id: str | None) -> None:
+        """Choose one of the recalibrations offered, or none."""
+        self.recalibration = id
+        self.reassess()
+
+    def type_value(self, id: str, typed: Typed | None) -> None:
+        """A field was changed, or emptied (None)."""
+        self._entry = self._entry.with_typed(id, typed)
+        self.reassess()
+
+    def replace_values(self, typed: Mapping[str, Typed]) -> None:
+        """Take the same values in the form in which the fields show them; no new assessment."""
+        self._entry = PatientEntry(MappingProxyType(dict(typed)), self._entry.label)
+
+    def type_label(self, label: str) -> None:
+        """The name or number for the print was changed."""
+        self._entry = PatientEntry(self._entry.typed, label)
+        self.reassess()
+
+    def begin_new_patient(self) -> None:
+        """Forget everything typed; the model and the choices about it stay."""
+        self.assessment = None
+        self._entry = PatientEntry()
+        self.model_changed.emit()
+        self.reassess()
+
+    def reassess(self) -> None:
+        """Assess what is on screen. An exception leaves no assessment behind, and goes on to whoever explains it."""
+        if self.model is None:
+            return
+        self.assessment = None
+        try:
+            assessment = self._assess(self.model, self._entry, span=self.span, recalibration=self.recalibration)
+        except BaseException:
+            self.blank("")
+            raise
+        self.assessment = assessment
+        self.assessed.emit(assessment)
+
+    def blank(self, sentence: str) -> None:
+        """Take every number off the screen, then say why."""
+        self.assessment = None
+        self.blanked.emit(sentence)

@@ -1,0 +1,127 @@
+"""The text and the unit of one number field: what was typed stays the truth, whatever unit it is shown in."""
+
+import re
+from dataclasses import dataclass, replace
+from datetime import date
+from math import ceil, log10
+
+from clinicalc.assessment.entry import Typed
+from clinicalc.assessment.fields import NumberField
+from clinicalc.assessment.numbers import shown_number, take_number
+from clinicalc.errors import UnitError
+from clinicalc.units.conversion import conversion
+from clinicalc.units.reading import Reading, read_value
+from clinicalc.units.unit import unit as unit_of
+
+_MOST_DECIMALS = 6
+_NUMBER = re.compile(r"\s*[-+−]?[0-9]+(?:[.,][0-9]+)?")
+
+
+@dataclass(frozen=True, slots=True)
+class HeldValue:
+    """One number field at one moment.
+
+    `typed` is the truth that is assessed; `by_hand` the last keystrokes with the unit that stood beside them; `text`
+    and `unit` are what the field shows; `remark` says how the two differ, "" where they do not.
+    """
+
+    typed: Typed
+    by_hand: Typed
+    text: str
+    unit: str
+    remark: str = ""
+
+
+def choosable_units(field: NumberField) -> tuple[str, ...]:
+    """The units in which a value of this field can be shown and typed, in screen order, by UCUM code."""
+    found = []
+    for code in field.quantity.units:
+        try:
+            conversion(field.quantity, code, field.unit, field.factor)
+        except UnitError:
+            continue
+        found.append(code)
+    return tuple(found)
+
+
+def hold(field: NumberField, text: str, unit: str) -> HeldValue:
+    """What was typed, with the unit chosen beside it; a unit typed after the number goes before the chosen one."""
+    reading = read_value(text)
+    if isinstance(reading, Reading) and reading.unit in choosable_units(field):
+        unit = reading.unit or unit
+    typed = Typed(text, unit)
+    return HeldValue(typed, typed, text, unit)
+
+
+def hold_entry(field: NumberField, typed: Typed | None) -> HeldValue:
+    """A value from an entry made elsewhere."""
+    if typed is None:
+        return hold(field, "", field.unit)
+    text = typed.text if typed.dated is None else f"{typed.text} on {typed.dated.isoformat()}"
+    return settle(field, hold(field, text, typed.unit or field.unit))
+
+
+def settle(field: NumberField, held: HeldValue) -> HeldValue:
+    """The same value when its field is left: a unit typed after the number stands in the chooser only."""
+    reading = read_value(held.text)
+    if not isinstance(reading, Reading) or reading.unit is None or reading.unit not in choosable_units(field):
+        return held
+    number = _NUMBER.match(held.text)
+    assert number is not None  # read_value has found one there
+    day = "" if reading.dated is None else f" on {reading.dated.isoformat()}"
+    return hold(field, f"{number.group().strip()}{day}", reading.unit)
+
+
+def switch_unit(field: NumberField, held: HeldValue, unit: str, today: date) -> HeldValue:
+    """The value shown in another unit.
+
+    It is converted, except where its digits were not believable in the old unit and are in the new one: then the
+    digits stay. In the unit it was typed in, every character stands again as it was typed.
+    """
+    if unit == held.by_hand.unit:
+        return HeldValue(held.by_hand, held.by_hand, held.by_hand.text, unit)
+    _, findings = take_number(field, held.typed, today)
+    if any(unit in finding.offer for finding in findings):
+        return read_as(field, held, unit)
+    if unit == held.typed.unit:
+        return replace(held, text=held.typed.text, unit=unit, remark=_read_as_words(held.typed.text, unit))
+    return _show_in(field, held, unit) or hold(field, held.typed.text, unit)
+
+
+def read_as(field: NumberField, held: HeldValue, unit: str) -> HeldValue:
+    """The same digits taken in another unit, as an offer proposes."""
+    reading = read_value(held.typed.text)
+    if not isinstance(reading, Reading):
+        return replace(hold(field, held.typed.text, unit), by_hand=held.by_hand)
+    number = _NUMBER.match(held.typed.text)
+    assert number is not None
+    text = number.group().strip()
+    remark = _read_as_words(text, unit)
+    if reading.dated is not None:
+        text = f"{text} on {reading.dated.isoformat()}"
+    return HeldValue(Typed(text, unit), held.by_hand, text, unit, remark)
+
+
+def _read_as_words(text: str, unit: str) -> str:
+    return f"read as {text} {unit_of(unit).spelling}"
+
+
+def _show_in(field: NumberField, held: HeldValue, unit: str) -> HeldValue | None:
+    """The typed value converted for the screen; None where it cannot be read as one of this field's values."""
+    reading = read_value(held.typed.text)
+    if not isinstance(reading, Reading):
+        return None
+    code = reading.unit or held.typed.unit or field.unit
+    try:
+        into = conversion(field.quantity, code, unit, field.factor)
+    except UnitError:
+        return None
+    text = _written(into.apply(reading.number), abs(into.scale) * 10.0**-reading.decimals)
+    day = "" if reading.dated is None else f" on {reading.dated.isoformat()}"
+    return replace(held, text=f"{text}{day}", unit=unit, remark=f"{shown_number(reading, code)} as typed")
+
+
+def _written(value: float, step: float) -> str:
+    """A converted value with no more decimals than the last typed digit, `step` in the new unit, is worth."""
+    decimals = min(max(0, ceil(-log10(step))), _MOST_DECIMALS)
+    return f"{value:.{decimals}f}"

@@ -1,0 +1,73 @@
+"""The one place where labels, buttons and headings are made: plain text, one typeface, two inks."""
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
+
+from clinicalc.gui.typeface import BASE, CAPTION, face
+
+
+def make_label(text: str = "", pixels: int = BASE, *, semibold: bool = False, soft: bool = False) -> QLabel:
+    """A label that wraps and shows its text letter for letter, whatever stands in it."""
+    label = QLabel()
+    label.setTextFormat(Qt.TextFormat.PlainText)
+    label.setFont(face(pixels, semibold=semibold))
+    label.setWordWrap(True)
+    if soft:
+        label.setProperty("ink", "soft")
+    label.setText(text)
+    return label
+
+
+def make_line(text: str = "", pixels: int = BASE, *, semibold: bool = False, soft: bool = False) -> QLabel:
+    """A label of one line."""
+    label = make_label(text, pixels, semibold=semibold, soft=soft)
+    label.setWordWrap(False)
+    return label
+
+
+def make_field_label(text: str, name: str, buddy: QWidget) -> QLabel:
+    """The label of a field: `text` may hold one access mark (`access_keys`), `name` is what a screen reader says."""
+    label = make_label(text)
+    label.setBuddy(buddy)
+    label.setAccessibleName(name)
+    return label
+
+
+def make_button(text: str, *, name: str = "", pixels: int = BASE) -> QPushButton:
+    """A push button; `name` picks a style ("primary", "offer")."""
+    button = QPushButton(text)
+    button.setFont(face(pixels))
+    button.setAutoDefault(False)
+    if name:
+        button.setObjectName(name)
+    return button
+
+
+def make_rule() -> QFrame:
+    """A thin line between parts; decoration, never the only sign of anything."""
+    rule = QFrame()
+    rule.setObjectName("rule")
+    rule.setFixedHeight(1)
+    rule.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
+    return rule
+
+
+class Heading(QWidget):
+    """A small heading with a rule to the right edge, and room for a caption at the very right."""
+
+    def __init__(self, text: str, caption: str = "") -> None:
+        super().__init__()
+        self.label = make_line(text, CAPTION, semibold=True)
+        self._caption = make_line(caption, CAPTION, soft=True)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(0, 0, 0, 0)
+        row.setSpacing(10)
+        row.addWidget(self.label)
+        row.addWidget(make_rule(), 1)
+        row.addWidget(self._caption)
+        self._caption.setVisible(bool(caption))
+        self.setFixedHeight(24)
+
+    def show_caption(self, shown: bool) -> None:
+        """Show or hide the caption, if there is one."""
+        self._caption.setVisible(shown and bool(self._caption.text()))

@@ -1,0 +1,231 @@
+"""The row of a measured value: number and unit in one frame, a remark or an offer beside it."""
+
+from collections.abc import Sequence
+from datetime import date
+
+from PySide6.QtCore import QRectF, Qt, Signal
+from PySide6.QtGui import QColor, QFocusEvent, QPainter, QPen
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLineEdit, QWidget
+
+from clinicalc.assessment.entry import Typed
+from clinicalc.assessment.fields import NumberField
+from clinicalc.assessment.findings import Finding, Grade
+from clinicalc.assessment.numerals import plain_range
+from clinicalc.assessment.result import ValueLine
+from clinicalc.gui.access_keys import show_ampersands
+from clinicalc.gui.chooser import Chooser
+from clinicalc.gui.frames import FieldFrame
+from clinicalc.gui.held_value import HeldValue, choosable_units, hold, hold_entry, read_as, settle, switch_unit
+from clinicalc.gui.labels import make_button, make_field_label, make_label, make_line
+from clinicalc.gui.rows import FieldRow
+from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, LIGHT, RING, VALUE_WIDTH
+from clinicalc.gui.typeface import CAPTION, UNIT, VALUE, face
+from clinicalc.units.conversion import conversion
+from clinicalc.units.unit import unit as unit_of
+
+
+class ValueEdit(QLineEdit):
+    """The line a number is typed in."""
+
+    left = Signal()
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setFont(face(VALUE, semibold=True))
+        self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
+        self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:  # noqa: N802 (Qt's name)
+        """Tell that the field was left, for whatever reason but a menu."""
+        super().focusOutEvent(event)
+        if event.reason() != Qt.FocusReason.PopupFocusReason:
+            self.left.emit()
+
+
+class ValueFrame(FieldFrame):
+    """Number, thin line, unit: a number never stands outside its unit's frame."""
+
+    def __init__(self, units: tuple[str, ...], unit: str) -> None:
+        super().__init__()
+        self.edit = ValueEdit()
+        self.chooser = Chooser() if len(units) > 1 else None
+        row = QHBoxLayout(self)
+        row.setContentsMargins(RING + 2, RING + 1, RING + 1, RING + 1)
+        row.setSpacing(0)
+        self.watch(self.edit)
+        if self.chooser is not None:
+            for code in units:
+                self.chooser.addItem(unit_of(code).spelling, code)
+            self.watch(self.chooser)
+            self.edit.setFixedWidth(VALUE_WIDTH - 4)
+            row.addWidget(self.edit)
+            row.addSpacing(4)
+            row.addWidget(self.chooser, 1)
+        else:
+            spelling = unit_of(unit).spelling
+            label = make_line(spelling, UNIT, soft=True)
+            row.addWidget(self.edit, 1)
+            row.addSpacing(10)
+            row.addWidget(label)
+            row.addSpacing(6)
+            room = 108 if label.sizeHint().width() + 16 <= 108 else label.sizeHint().width() + 16
+            self.edit.setMaximumWidth(max(46, 166 - room))
+            label.setFixedWidth(room - 14)
+        self.setFocusProxy(self.edit)
+
+    def paint_inside(self, painter: QPainter, body: QRectF) -> None:
+        """The thin line between number and unit."""
+        x = self.edit.geometry().right() + 4.5
+        painter.setPen(QPen(QColor(LIGHT.rule), 1))
+        painter.drawLine(int(x), int(body.top()) + 7, int(x), int(body.bottom()) - 7)
+
+
+class NumberRow(FieldRow):
+    """Label, frame, remark. Holds what was typed and shows it in the chosen unit."""
+
+    def __init__(self, field: NumberField, marked_label: str) -> None:
+        super().__init__(field.id)
+        self._field = field
+        self._held: HeldValue = hold(field, "", field.unit)
+        self._offer = ""
+        self.frame = ValueFrame(choosable_units(field), field.unit)
+        self.edit = self.frame.edit
+        self.edit.setAccessibleName(field.label)
+        self.label = make_field_label(marked_label, field.label, self.edit)
+        self.remark = make_label("", CAPTION, soft=True)
+        self.offer = make_button("", name="offer", pixels=UNIT)
+        self.offer.hide()
+        if field.meaning:
+            self.edit.setAccessibleDescription(field.meaning)
+        self._lay_out()
+        self._connect()
+
+    @property
+    def held(self) -> HeldValue:
+        """What the field holds and how it is shown."""
+        return self._held
+
+    def fill(self, typed: Typed | None) -> Typed | None:
+        """Show a value or none in its unit (the file's own for none)."""
+        self._held = hold_entry(self._field, typed)
+        self._show_held()
+        return self._held.typed if self._held.typed.text.strip() else None
+
+    def show_remarks(self, line: ValueLine | None, findings: Sequence[Finding]) -> None:
+        """The offer of a likely unit, or how the value is to be read, or what was worked out, or the range."""
+        self.frame.set_stopped(any(f.grade is Grade.STOP and f.code != "missing" for f in findings))
+        offers = [code for finding in findings for code in finding.offer if code in choosable_units(self._field)]
+        self._offer = offers[0] if offers else ""
+        if self._offer:
+            digits = read_as(self._field, self._held, self._offer).text.partition(" on ")[0]
+            words = show_ampersands(f"{digits} {unit_of(self._offer).spelling}")
+            self.offer.setText(f"&Use {words}")
+            self.offer.setAccessibleName(f"{self._field.label}: use {words}")
+        had_focus = self.offer.hasFocus()
+        self.offer.setVisible(bool(self._offer))
+        if had_focus and not self._offer:
+            self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
+        self.remark.setText("" if self._offer else self._remark_words(line))
+        self._show_remark()
+
+    def fit(self, room: int, *, compact: bool) -> None:
+        """Compact: remark or offer under the frame, and no range."""
+        self._compact = compact
+        for widget in (self.remark, self.offer):
+            self._grid.removeWidget(widget)
+            self._grid.addWidget(widget, 1 if compact else 0, 1 if compact else 2, 1, 2 if compact else 1)
+        self._show_remark()
+
+    def tab_stops(self) -> tuple[QWidget, ...]:
+        """Value, unit, offer."""
+        chooser = () if self.frame.chooser is None else (self.frame.chooser,)
+        return (self.edit, *chooser, self.offer)
+
+    def _lay_out(self) -> None:
+        self._compact = False
+        self.label.setFixedWidth(LABEL_WIDTH)
+        self._grid = QGridLayout(self)
+        self._grid.setContentsMargins(0, 0, 0, 0)
+        self._grid.setHorizontalSpacing(COLUMN_GAP)
+        self._grid.setVerticalSpacing(2)
+        self._grid.setColumnStretch(2, 1)
+        self._grid.addWidget(self.label, 0, 0)
+        self._grid.addWidget(self.frame, 0, 1)
+        self._grid.addWidget(self.remark, 0, 2)
+        self._grid.addWidget(self.offer, 0, 2, Qt.AlignmentFlag.AlignLeft)
+
+    def _connect(self) -> None:
+        self.edit.textChanged.connect(self._take_text)
+        self.edit.returnPressed.connect(self.entered)
+        self.edit.left.connect(self._settle)
+        self.offer.clicked.connect(self._take_offer)
+        if self.frame.chooser is not None:
+            self.frame.chooser.setAccessibleName(f"{self._field.label}, unit")
+            self.frame.chooser.activated.connect(self._take_unit)
+            self.frame.chooser.entered.connect(self.entered)
+
+    def _take_text(self, text: str) -> None:
+        self._held = hold(self._field, text, self._held.unit)
+        self._show_unit()
+        self._tell()
+
+    def _take_unit(self, place: int) -> None:
+        chooser = self.frame.chooser
+        assert chooser is not None
+        unit = str(chooser.itemData(place))
+        if unit == self._held.unit:
+            return
+        self._held = switch_unit(self._field, self._held, unit, date.today())
+        self._show_held()
+        self._tell()
+
+    def _take_offer(self) -> None:
+        if not self._offer:
+            return
+        self._held = read_as(self._field, self._held, self._offer)
+        self._show_held()
+        self._tell()
+        self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
+
+    def _settle(self) -> None:
+        settled = settle(self._field, self._held)
+        if settled is not self._held:
+            self._held = settled
+            self._show_held()
+            self._tell()
+
+    def _tell(self) -> None:
+        typed = self._held.typed
+        self.typed.emit(self.field_id, typed if typed.text.strip() else None)
+
+    def _show_held(self) -> None:
+        if self.edit.text() != self._held.text or self.edit.isUndoAvailable() or self.edit.isRedoAvailable():
+            blocked = self.edit.blockSignals(True)
+            self.edit.setText(self._held.text)  # forgets the undo history too
+            self.edit.blockSignals(blocked)
+        if not self.edit.hasFocus():
+            self.edit.setCursorPosition(0)
+        self._show_unit()
+
+    def _show_unit(self) -> None:
+        if self.frame.chooser is not None:
+            self.frame.chooser.setCurrentIndex(self.frame.chooser.findData(self._held.unit))
+
+    def _remark_words(self, line: ValueLine | None) -> str:
+        if self._held.remark:
+            return self._held.remark
+        if line is not None and line.worked_out:
+            return f"{line.used} worked out"
+        if line is not None and line.dated is not None:
+            return f"of {line.dated.isoformat()}"
+        return "" if self._compact else self._range_words()
+
+    def _range_words(self) -> str:
+        low, high = self._field.derivation
+        if low is None and high is None:
+            return ""
+        back = conversion(self._field.quantity, self._field.unit, self._held.unit, self._field.factor)
+        return plain_range(*(None if end is None else back.apply(end) for end in (low, high)))
+
+    def _show_remark(self) -> None:
+        self.remark.setVisible(not self._offer and bool(self.remark.text() or not self._compact))

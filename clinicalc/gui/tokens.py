@@ -1,0 +1,112 @@
+"""Colours and measures of the window, in one place; every widget and painter reads them here."""
+
+from dataclasses import dataclass
+
+from PySide6.QtGui import QColor, QPalette
+
+
+@dataclass(frozen=True, slots=True)
+class Tokens:
+    """One theme. Each pair of text and ground stands at 4.5:1 or better, control edges at 3:1."""
+
+    ground: str
+    sheet: str
+    field: str
+    ink: str
+    soft: str
+    rule: str
+    edge: str
+    accent: str
+    on_accent: str
+    tint: str
+    wash: str
+    sel: str
+    hatch: str
+
+
+LIGHT = Tokens(
+    ground="#EDEFF2",
+    sheet="#FFFFFF",
+    field="#FFFFFF",
+    ink="#171B2B",
+    soft="#505869",
+    rule="#D3D7DE",
+    edge="#7E8696",
+    accent="#47378F",
+    on_accent="#FFFFFF",
+    tint="#CDC5EC",
+    wash="#F3F1FA",
+    sel="#E7E3F6",
+    hatch="#8D93A3",
+)
+
+RING = 3
+"""Room round a frame for its focus ring, in pixels."""
+FRAME_HEIGHT = 30
+ROW_PITCH = FRAME_HEIGHT + 2 * RING
+LABEL_WIDTH = 128
+FRAME_WIDTH = 172
+VALUE_WIDTH = 62
+COLUMN_GAP = 6
+SIDE_MARGIN = 24
+SHEET_MARGIN = 32
+SHEET_MARGIN_RIGHT = 28
+FIGURE_COLUMN = 248
+"""Width of the label and figure columns of the sheet; text, and later charts, begin 24 px further right."""
+PANE_WIDTH = 512
+PANE_WIDTH_COMPACT = 392
+COMPACT_BELOW = 1180
+"""Window width under which the values pane is the narrow one and remarks go on a line of their own."""
+
+
+def make_palette(tokens: Tokens) -> QPalette:
+    """The palette roles that stock widgets read."""
+    palette = QPalette()
+    roles = {
+        QPalette.ColorRole.Window: tokens.ground,
+        QPalette.ColorRole.WindowText: tokens.ink,
+        QPalette.ColorRole.Base: tokens.field,
+        QPalette.ColorRole.AlternateBase: tokens.wash,
+        QPalette.ColorRole.Text: tokens.ink,
+        QPalette.ColorRole.Button: tokens.field,
+        QPalette.ColorRole.ButtonText: tokens.ink,
+        QPalette.ColorRole.Highlight: tokens.accent,
+        QPalette.ColorRole.HighlightedText: tokens.on_accent,
+        QPalette.ColorRole.ToolTipBase: tokens.sheet,
+        QPalette.ColorRole.ToolTipText: tokens.ink,
+        QPalette.ColorRole.PlaceholderText: tokens.soft,
+    }
+    for role, colour in roles.items():
+        palette.setColor(role, QColor(colour))
+    return palette
+
+
+def make_style_sheet(tokens: Tokens) -> str:
+    """The few rules that a palette cannot express. Label roles and grades are set as properties by `labels`."""
+    t = tokens
+    return f"""
+    QLabel {{ color: {t.ink}; background: transparent; }}
+    QLabel[ink="soft"] {{ color: {t.soft}; }}
+    QLabel[grade="stop"] {{ background: {t.ink}; color: {t.sheet}; border-radius: 2px; }}
+    QLabel[grade="caution"] {{ border: 2px solid {t.ink}; border-radius: 2px; }}
+    QLabel[grade="note"] {{ border-bottom: 1px solid {t.ink}; }}
+    QFrame#stop {{ border: 2px solid {t.ink}; border-radius: 3px; background: {t.sheet}; }}
+    QFrame#rule {{ background: {t.rule}; border: none; }}
+    QLineEdit {{ border: none; background: transparent; color: {t.ink}; }}
+    QPlainTextEdit {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; padding: 8px; }}
+    QPlainTextEdit:focus {{ border: 2px solid {t.accent}; padding: 7px; }}
+    QScrollArea {{ border: none; background: transparent; }}
+    QWidget#ground {{ background: {t.ground}; }}
+    QWidget#sheet {{ background: {t.sheet}; }}
+    QPushButton {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; color: {t.ink};
+                   padding: 0 14px; min-height: 30px; margin: 1px; }}
+    QPushButton:pressed {{ background: {t.sel}; }}
+    QPushButton:focus {{ border: 2px solid {t.accent}; padding: 0 13px; min-height: 28px; }}
+    QPushButton:disabled {{ color: {t.soft}; background: {t.ground}; border-color: {t.rule}; }}
+    QPushButton#primary:enabled {{ background: {t.accent}; color: {t.on_accent}; border-color: {t.accent}; }}
+    QPushButton#primary:enabled:focus {{ border: 2px solid {t.ink}; }}
+    QPushButton#offer {{ padding: 0 8px; min-height: 26px; border-color: {t.ink}; }}
+    QPushButton#offer:focus {{ border: 2px solid {t.accent}; padding: 0 7px; min-height: 24px; }}
+    QComboBox QAbstractItemView {{ background: {t.field}; color: {t.ink}; border: 1px solid {t.edge};
+                   selection-background-color: {t.sel}; selection-color: {t.ink}; padding: 2px; }}
+    """

@@ -1,0 +1,189 @@
+"""The values pane: exclusions, then the groups of the file, then the name for the print."""
+
+from itertools import groupby
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import QHBoxLayout, QLineEdit, QScrollArea, QVBoxLayout, QWidget
+
+from clinicalc.assessment.fields import Field, NumberField
+from clinicalc.assessment.model import Model
+from clinicalc.assessment.result import Assessment
+from clinicalc.gui.access_keys import mark_letters
+from clinicalc.gui.entry_state import EntryState
+from clinicalc.gui.frames import FieldFrame
+from clinicalc.gui.labels import Heading, make_field_label
+from clinicalc.gui.number_row import NumberRow
+from clinicalc.gui.question_row import QuestionRow
+from clinicalc.gui.rows import FieldRow
+from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, PANE_WIDTH, PANE_WIDTH_COMPACT, RING, SIDE_MARGIN
+from clinicalc.gui.typeface import BASE, face
+
+PRINT_LABEL = "Name or number"
+_SCROLL_BAR = 10
+
+
+class LabelRow(QWidget):
+    """The name or number that stands on the print and nowhere else."""
+
+    def __init__(self, marked_label: str) -> None:
+        super().__init__()
+        self.frame = FieldFrame()
+        self.edit = QLineEdit()
+        self.edit.setFont(face(BASE))
+        self.edit.setMaxLength(200)
+        self.edit.setAccessibleName(PRINT_LABEL)
+        inside = QHBoxLayout(self.frame)
+        inside.setContentsMargins(RING + 7, RING + 1, RING + 7, RING + 1)
+        inside.addWidget(self.edit)
+        self.frame.watch(self.edit)
+        self.label = make_field_label(marked_label, PRINT_LABEL, self.edit)
+        self.label.setFixedWidth(LABEL_WIDTH)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(0, 0, 0, 0)
+        row.setSpacing(COLUMN_GAP)
+        row.addWidget(self.label)
+        row.addWidget(self.frame)
+        row.addStretch(1)
+
+    def fill(self, label: str) -> None:
+        """Show a label without history and without telling anybody."""
+        blocked = self.edit.blockSignals(True)
+        self.edit.setText(label)
+        self.edit.blockSignals(blocked)
+
+
+class ValuesPane(QScrollArea):
+    """Every field of the model in page order; built anew for another model, filled anew for another patient."""
+
+    rebuilt = Signal()
+    left_last = Signal()
+    """Enter was pressed in the last field."""
+
+    def __init__(self, state: EntryState) -> None:
+        super().__init__()
+        self._state = state
+        self._model: Model | None = None
+        self._compact = False
+        self._age_heading: list[Heading] = []
+        self.rows: dict[str, FieldRow] = {}
+        self.label_row: LabelRow | None = None
+        self.setWidgetResizable(True)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        self.setFixedWidth(PANE_WIDTH)
+        self._set_body()
+        state.model_changed.connect(self._take_model)
+        state.assessed.connect(self._show_assessment)
+        state.blanked.connect(self._show_nothing)
+
+    def tab_stops(self) -> tuple[QWidget, ...]:
+        """Every tab stop of the pane, in order."""
+        stops = [stop for row in self.rows.values() for stop in row.tab_stops()]
+        return (*stops, *([] if self.label_row is None else [self.label_row.edit]))
+
+    def focus_first(self) -> None:
+        """Put the cursor where typing begins."""
+        for row in self.rows.values():
+            row.tab_stops()[0].setFocus(Qt.FocusReason.OtherFocusReason)
+            self.ensureWidgetVisible(row)
+            return
+
+    def set_compact(self, compact: bool) -> None:
+        """The narrow form of the pane, for small windows."""
+        self._compact = compact
+        self.setFixedWidth(PANE_WIDTH_COMPACT if compact else PANE_WIDTH)
+        self._fit()
+
+    def _fit(self) -> None:
+        room = self.width() - 2 * SIDE_MARGIN + RING
+        for row in self.rows.values():
+            row.fit(room, compact=self._compact)
+        for heading in self._age_heading:
+            heading.show_caption(not self._compact)
+        if self.label_row is not None:
+            wide = room - LABEL_WIDTH - COLUMN_GAP
+            self.label_row.frame.setFixedWidth(wide)
+
+    def _take_model(self) -> None:
+        if self._state.model is not self._model:
+            self._model = self._state.model
+            self._build()
+        typed = self._state.entry.typed
+        shown = {id: row.fill(typed.get(id)) for id, row in self.rows.items()}
+        self._state.replace_values({id: value for id, value in shown.items() if value is not None})
+        if self.label_row is not None:
+            self.label_row.fill(self._state.entry.label)
+        self._show_nothing()
+
+    def _set_body(self) -> QVBoxLayout:
+        body = QWidget()
+        body.setObjectName("ground")
+        column = QVBoxLayout(body)
+        column.setContentsMargins(SIDE_MARGIN, 12, SIDE_MARGIN - RING, 12)
+        column.setSpacing(0)
+        self.setWidget(body)
+        return column
+
+    def _build(self) -> None:
+        self.rows, self._age_heading, self.label_row = {}, [], None
+        column = self._set_body()
+        if self._model is None:
+            return
+        fields = self._model.fields
+        marked = mark_letters([*("" if _excludes(f) else f.label for f in fields), PRINT_LABEL])
+        labels = {field.id: mark or field.label.replace("&", "&&") for field, mark in zip(fields, marked, strict=False)}
+        for group, members in groupby(fields, key=lambda field: field.group):
+            content = list(members)
+            if group:
+                ranged = any(isinstance(f, NumberField) and f.derivation != (None, None) for f in content)
+                heading = Heading(group, "derivation range" if ranged and not self._age_heading else "")
+                self._age_heading += [heading] if ranged else []
+                column.addSpacing(6)
+                column.addWidget(heading)
+            for field in content:
+                column.addWidget(self._add_row(field, labels[field.id]))
+        column.addSpacing(6)
+        column.addWidget(Heading("For the print only"))
+        self.label_row = LabelRow(marked[-1])
+        self.label_row.edit.textChanged.connect(self._state.type_label)
+        self.label_row.edit.returnPressed.connect(self.left_last)
+        column.addWidget(self.label_row)
+        column.addStretch(1)
+        self._fit()
+        self.rebuilt.emit()
+
+    def _add_row(self, field: Field, label: str) -> FieldRow:
+        row: FieldRow = NumberRow(field, label) if isinstance(field, NumberField) else QuestionRow(field, label)
+        row.typed.connect(self._state.type_value)
+        row.entered.connect(lambda id=field.id: self._go_on_from(id))
+        self.rows[field.id] = row
+        return row
+
+    def _go_on_from(self, id: str) -> None:
+        ids = list(self.rows)
+        place = ids.index(id) + 1
+        if place < len(ids):
+            row = self.rows[ids[place]]
+            target: QWidget = next((w for w in row.tab_stops() if _is_tab_stop(w)), row)
+        else:
+            assert self.label_row is not None  # built together with the rows
+            target = self.label_row.edit
+        target.setFocus(Qt.FocusReason.TabFocusReason)
+        self.ensureWidgetVisible(target)
+
+    def _show_assessment(self, assessment: Assessment) -> None:
+        lines = {line.id: line for line in assessment.values}
+        for id, row in self.rows.items():
+            row.show_remarks(lines.get(id), [finding for finding in assessment.findings if finding.field == id])
+
+    def _show_nothing(self, _: str = "") -> None:
+        for row in self.rows.values():
+            row.show_remarks(None, ())
+
+
+def _excludes(field: Field) -> bool:
+    return not isinstance(field, NumberField) and bool(field.excludes)
+
+
+def _is_tab_stop(widget: QWidget) -> bool:
+    return bool(widget.focusPolicy() & Qt.FocusPolicy.TabFocus)

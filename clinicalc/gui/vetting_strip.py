@@ -1,0 +1,35 @@
+"""The hatched strip over the sheet of a file that nobody has vetted."""
+
+from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
+from PySide6.QtWidgets import QHBoxLayout, QWidget
+
+from clinicalc.gui.labels import make_line
+from clinicalc.gui.tokens import LIGHT, SHEET_MARGIN
+from clinicalc.gui.typeface import BASE
+
+_HEIGHT = 30
+_STEP = 6
+
+
+class VettingStrip(QWidget):
+    """Says in words, on a clear plate, that the file is not vetted; the hatching carries no meaning of its own."""
+
+    def __init__(self, words: str) -> None:
+        super().__init__()
+        self.setFixedHeight(_HEIGHT)
+        self.label = make_line(words, BASE, semibold=True)
+        self.label.setStyleSheet(f"background: {LIGHT.sheet}; padding: 0 10px;")
+        row = QHBoxLayout(self)
+        row.setContentsMargins(SHEET_MARGIN - 10, 3, 0, 3)
+        row.addWidget(self.label)
+        row.addStretch(1)
+
+    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802 (Qt's name)
+        """Slanted lines over the whole width."""
+        painter = QPainter(self)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.fillRect(self.rect(), QColor(LIGHT.sheet))
+        painter.setPen(QPen(QColor(LIGHT.hatch), 1))
+        for x in range(-_HEIGHT, self.width() + _HEIGHT, _STEP):
+            painter.drawLine(x, _HEIGHT, x + _HEIGHT, 0)
+        painter.end()

@@ -1,0 +1,64 @@
+"""The sentences of the result sheet that no print needs: what is still to be entered, and what stops the number."""
+
+from clinicalc.assessment.fields import QuestionField
+from clinicalc.assessment.findings import Finding, FindingCode, Grade
+from clinicalc.assessment.model import Model
+from clinicalc.assessment.numerals import join_words
+from clinicalc.assessment.result import Assessment
+from clinicalc.coefficients.spans import Span
+from clinicalc.report.phrases import count_words
+
+_CHOICES = {FindingCode.HORIZON: "horizon", FindingCode.RECALIBRATION: "recalibration"}
+_NOT_MADE_FOR = (FindingCode.EXCLUDED, FindingCode.OUTSIDE_DERIVATION)
+
+
+def is_open_choice(finding: Finding) -> bool:
+    """Whether a stop only says that a choice about the model is still to be made."""
+    return finding.grade is Grade.STOP and finding.code in _CHOICES
+
+
+def shown_findings(assessment: Assessment) -> tuple[Finding, ...]:
+    """The findings that are listed: all but the entries and choices still to be made, which the headline counts."""
+    return tuple(f for f in assessment.findings if f.code is not FindingCode.MISSING and not is_open_choice(f))
+
+
+def event_heading(model: Model, span: Span | None) -> str:
+    """The outcome in its first words, with the horizon."""
+    outcome = model.content.outcome.partition(":")[0].strip().rstrip(".")
+    if span is None or f"within {span.words}" in outcome:
+        return outcome
+    return f"{outcome} within {span.words}"
+
+
+def explain_no_number(assessment: Assessment) -> tuple[str, str]:
+    """Headline and sentence for a sheet without a number."""
+    stops = [finding for finding in assessment.stops if not is_open_choice(finding)]
+    if stops:
+        return "No number", _say_stops(assessment.model, stops)
+    to_go = [*assessment.missing, *(f for f in assessment.stops if is_open_choice(f))]
+    if not to_go:
+        return "No number", "The findings below say why."
+    entries = count_words(len(to_go), "entry", "entries")
+    return "No number yet", f"{entries} to go. Next: {_name_in_sentence(assessment.model, to_go[0])}."
+
+
+def _say_stops(model: Model, stops: list[Finding]) -> str:
+    not_made_for = [finding for finding in stops if finding.code in _NOT_MADE_FOR]
+    if not_made_for:
+        return "This model does not answer for this patient. The stop below says why."
+    labels = {field.id: field.label for field in model.fields}
+    names = list(dict.fromkeys(labels.get(finding.field, "A finding below") for finding in stops))
+    what = "its unit or its value" if len(names) == 1 and stops[0].offer else "its value"
+    if len(names) > 1:
+        return f"{join_words(names)} stop it. Change these values and the number comes back."
+    return f"{names[0]} stops it. Change {what} and the number comes back."
+
+
+def _name_in_sentence(model: Model, finding: Finding) -> str:
+    if finding.code in _CHOICES:
+        return f"the {_CHOICES[finding.code]}, above"
+    field = model.by_id[finding.field]
+    if isinstance(field, QuestionField) and field.excludes:
+        return "the question at the top" if len(model.exclusions) == 1 else "the questions at the top"
+    label = field.label
+    return label if label[1:2].isupper() else label[:1].lower() + label[1:]

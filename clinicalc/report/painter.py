@@ -1,0 +1,44 @@
+"""Paints shapes into a PDF: the only place that talks to the PDF library's canvas about drawing."""
+
+from collections.abc import Sequence
+from typing import Any, assert_never
+
+from clinicalc.report.pages import PAGE_HEIGHT, Page
+from clinicalc.report.shapes import Line, Rect, Shape, Text, Tone
+
+
+def paint_pages(canvas: Any, pages: Sequence[Page]) -> None:
+    """Every page, in order, shapes in the order in which they are to be read."""
+    for page in pages:
+        for shape in page.shapes:
+            _paint(canvas, shape)
+        canvas.showPage()
+
+
+def _paint(canvas: Any, shape: Shape) -> None:
+    match shape:
+        case Text():
+            canvas.setFillColor(_colour(shape.tone))
+            canvas.setFont(shape.weight.value, shape.size)
+            canvas.drawString(shape.x, PAGE_HEIGHT - shape.y, shape.text)
+        case Line():
+            canvas.setStrokeColor(_colour(shape.tone))
+            canvas.setLineWidth(shape.width)
+            canvas.line(shape.x, PAGE_HEIGHT - shape.y, shape.to_x, PAGE_HEIGHT - shape.to_y)
+        case Rect():
+            if shape.fill is not None:
+                canvas.setFillColor(_colour(shape.fill))
+            if shape.outline is not None:
+                canvas.setStrokeColor(_colour(shape.outline))
+                canvas.setLineWidth(shape.line)
+            bottom = PAGE_HEIGHT - shape.y - shape.height
+            filled, stroked = int(shape.fill is not None), int(shape.outline is not None)
+            canvas.rect(shape.x, bottom, shape.width, shape.height, fill=filled, stroke=stroked)
+        case _:
+            assert_never(shape)
+
+
+def _colour(tone: Tone) -> Any:
+    from reportlab.lib.colors import HexColor
+
+    return HexColor(tone.value)

@@ -1,0 +1,143 @@
+"""The PDF of an assessment, as bytes or as a file."""
+
+import os
+import tempfile
+from collections.abc import Iterator
+from contextlib import suppress
+from dataclasses import fields, is_dataclass
+from datetime import UTC, datetime
+from pathlib import Path
+from typing import Any
+
+from clinicalc.assessment.record import write_record
+from clinicalc.assessment.result import Assessment
+from clinicalc.errors import FileNotWritten, PrintRefused, UsageError
+from clinicalc.report.attachment import attach_record
+from clinicalc.report.compose import compose
+from clinicalc.report.contents import Sheet
+from clinicalc.report.fonts import Lettering, Weight, check_text, read_fonts, read_lettering
+from clinicalc.report.pages import PAGE_HEIGHT, PAGE_WIDTH, lay_out
+from clinicalc.report.painter import paint_pages
+
+LONGEST_NAME = 120
+"""Characters of a patient label or a practice name; more would push the result off its page."""
+
+
+def make_report(assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None) -> bytes:
+    """The PDF (1.7, A4) of an assessment, its record attached.
+
+    `printed_at` stands in the foot and in the file's dates; left out, it is the time in SOURCE_DATE_EPOCH (seconds) or
+    else now. The same assessment, practice and time give the same bytes. Raises PrintRefused for a text that could
+    only be shown wrongly.
+    """
+    lettering = read_lettering()
+    _check_name(lettering, assessment.label.strip(), "The patient label")
+    _check_name(lettering, practice.strip(), "The practice name")
+    moment = printed_at or _time_of_printing()
+    sheet = compose(assessment, practice=practice, printed_at=moment)
+    for text in _texts(sheet):
+        check_text(lettering, text, f"A text on the print, from {assessment.model.name} or as typed,")
+    return _write_pdf(lettering, sheet, moment, write_record(assessment))
+
+
+def save_report(
+    path: Path, assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None
+) -> None:
+    """Writes the PDF to `path`, whole or not at all; an older file stays untouched until the new one is complete.
+
+    Raises FileNotWritten when the place cannot be written, PrintRefused as `make_report` does.
+    """
+    content = make_report(assessment, practice=practice, printed_at=printed_at)
+    try:
+        _replace_file(path, content)
+    except OSError as error:
+        raise FileNotWritten(
+            "the print could not be saved.",
+            where=str(path),
+            why=f"The system says: {error.strerror or error}.",
+            do="Choose a folder that exists and that you may write to, and close the file where it is open.",
+        ) from error
+
+
+def _replace_file(path: Path, content: bytes) -> None:
+    """A temporary file beside the target, on the disk before it takes the target's name."""
+    handle, name = tempfile.mkstemp(prefix=".clinicalc-", suffix=".part", dir=path.parent)
+    try:
+        with os.fdopen(handle, "wb") as file:
+            file.write(content)
+            file.flush()
+            os.fsync(file.fileno())
+        os.replace(name, path)
+    except BaseException:
+        with suppress(OSError):
+            os.unlink(name)
+        raise
+
+
+def _check_name(lettering: Lettering, text: str, what: str) -> None:
+    check_text(lettering, text, what)
+    if len(text) > LONGEST_NAME:
+        raise PrintRefused(
+            f"{what} has {len(text)} characters; a print takes at most {LONGEST_NAME}.", do="Shorten it."
+        )
+
+
+def _time_of_printing() -> datetime:
+    stated = os.environ.get("SOURCE_DATE_EPOCH", "").strip()
+    if not stated:
+        return datetime.now().astimezone()
+    try:
+        return datetime.fromtimestamp(int(stated), UTC)
+    except (ValueError, OverflowError, OSError) as error:
+        raise UsageError(
+            f"the environment variable SOURCE_DATE_EPOCH is {stated!r}, which is not a time in whole seconds.",
+            do="Correct it or leave it out.",
+        ) from error
+
+
+def _texts(node: object) -> Iterator[str]:
+    """Every text in the contents, however deep."""
+    if isinstance(node, str):
+        yield node
+    elif isinstance(node, tuple):
+        for part in node:
+            yield from _texts(part)
+    elif is_dataclass(node):
+        for field in fields(node):
+            yield from _texts(getattr(node, field.name))
+
+
+def _write_pdf(lettering: Lettering, sheet: Sheet, moment: datetime, record: str) -> bytes:
+    from io import BytesIO
+
+    from reportlab.pdfbase import pdfmetrics
+    from reportlab.pdfgen.canvas import Canvas
+
+    for font in read_fonts().values():
+        pdfmetrics.registerFont(font)
+    target = BytesIO()
+    canvas: Any = Canvas(
+        target,
+        pagesize=(PAGE_WIDTH, PAGE_HEIGHT),
+        invariant=1,
+        pageCompression=1,
+        pdfVersion=(1, 7),
+        initialFontName=Weight.REGULAR.value,  # else a standard font is referenced without being embedded
+        lang="en-GB",
+    )
+    canvas.setTitle(sheet.title)
+    canvas.setAuthor(sheet.furniture.practice or sheet.furniture.program)
+    canvas.setCreator(sheet.furniture.program)
+    canvas.setSubject("Assessment of one patient with a clinical risk model")
+    canvas.setViewerPreference("DisplayDocTitle", "true")
+    canvas.setDateFormatter(lambda *_: _pdf_date(moment))
+    paint_pages(canvas, lay_out(lettering, sheet))
+    attach_record(canvas._doc, record)
+    canvas.save()
+    return target.getvalue()
+
+
+def _pdf_date(moment: datetime) -> str:
+    """A moment as PDF writes it (ISO 32000-1, 7.9.4): D:20261201142000+01'00'."""
+    zone = f"{moment:%z}"[:5]
+    return f"D:{moment:%Y%m%d%H%M%S}" + (f"{zone[:3]}'{zone[3:]}'" if zone else "")

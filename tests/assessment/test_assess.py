@@ -1,0 +1,73 @@
+"""The whole assessment: choices that are open, levels, and that nothing typed ever raises."""
+
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from clinicalc.assessment.assess import assess
+from clinicalc.assessment.entry import PatientEntry, Typed, entry_from_texts
+from clinicalc.assessment.findings import FindingCode, Grade
+from clinicalc.assessment.record import write_record
+from tests.assessment.cases import MAN_50, NOW, WOMAN_61, about, run, shipped
+
+texts = st.one_of(
+    st.text(max_size=40),
+    st.from_regex(r"[-+−]?[0-9]{1,6}([.,][0-9]{1,4})?( ?(mg/dL|mmol/L|mmHg|kPa|years|%))?", fullmatch=True),
+    st.sampled_from(["yes", "no", "female", "male", "", "nan", "1,234", "<5", "180 mg/dL on 2026-13-45"]),
+)
+
+
+@settings(max_examples=150, deadline=None)
+@given(st.dictionaries(st.sampled_from(sorted(WOMAN_61)), texts), st.sampled_from([0.5, 0.95, 0.999]))
+def test_nothing_typed_raises(typed: dict[str, str], level: float) -> None:
+    result = assess(shipped("general-cvd-2008-lipids"), entry_from_texts(WOMAN_61 | typed), level=level, at=NOW)
+    stopped = any(finding.grade is Grade.STOP for finding in result.findings)
+    assert (result.estimate is None) == stopped
+    write_record(result)
+    if result.estimate is not None:
+        assert 0 < result.estimate.probability < 1
+
+
+def test_a_required_recalibration_is_asked_for() -> None:
+    result = run("cvd-2021-regional", MAN_50)
+    (stop,) = about(result, FindingCode.RECALIBRATION)
+    assert stop.grade is Grade.STOP
+    for id in ("low", "moderate", "high", "very-high"):
+        assert id in stop.message
+
+
+def test_a_unit_chosen_beside_the_field_counts_and_a_typed_one_counts_more() -> None:
+    entry = entry_from_texts(WOMAN_61)
+    chosen = entry.with_typed("total_cholesterol", Typed("4.655", unit="mmol/L"))
+    both = entry.with_typed("total_cholesterol", Typed("180 mg/dL", unit="mmol/L"))
+    model = shipped("general-cvd-2008-lipids")
+    first, second = (assess(model, e, at=NOW).estimate for e in (chosen, both))
+    assert first is not None
+    assert second is not None
+    assert round(first.probability, 4) == 0.1048
+    assert second.probability == pytest.approx(0.10484, abs=5e-6)
+
+
+def test_an_entry_is_never_changed() -> None:
+    entry = entry_from_texts(WOMAN_61, label="A")
+    changed = entry.with_typed("age", Typed("62"))
+    assert entry.typed["age"] == Typed("61")
+    assert changed.typed["age"] == Typed("62")
+    assert changed.label == "A"
+    assert PatientEntry().typed == {}
+
+
+def test_without_a_covariance_the_reason_stands_in_place_of_the_band() -> None:
+    estimate = run("general-cvd-2008-lipids", WOMAN_61).estimate
+    assert estimate is not None
+    assert estimate.band is None
+    assert "covariance" in estimate.band_absent_because
+
+
+def test_findings_stand_in_reading_order() -> None:
+    result = run("general-cvd-2008-lipids", WOMAN_61, prior_cvd="yes", age="29", systolic_bp="240")
+    assert [(f.grade, f.field) for f in result.findings] == [
+        (Grade.STOP, "prior_cvd"),
+        (Grade.STOP, "age"),
+        (Grade.CAUTION, "systolic_bp"),
+    ]

@@ -1,0 +1,56 @@
+"""Cautions that come with the equation: unconfirmed figures that were used, and competing events."""
+
+from clinicalc.assessment.findings import FindingCode, Grade
+from tests.assessment.cases import MAN_50, WOMAN_61, WOMAN_EGFR_90, about, run
+
+LIPIDS = "general-cvd-2008-lipids"
+REGIONAL = "cvd-2021-regional"
+
+
+def test_only_the_unconfirmed_figures_of_the_equation_that_answered_are_named() -> None:
+    (woman,) = about(run(LIPIDS, WOMAN_61), FindingCode.UNCONFIRMED)
+    (man,) = about(run(LIPIDS, WOMAN_61, sex="male"), FindingCode.UNCONFIRMED)
+    assert woman.grade is Grade.CAUTION
+    assert "26.191 for women" in woman.message
+    assert "23.983 for men" in man.message
+    assert "23.983" not in woman.message
+
+
+def test_an_interval_that_no_number_rests_on_is_not_named() -> None:
+    (woman,) = about(run(LIPIDS, WOMAN_61), FindingCode.UNCONFIRMED)
+    assert "interval" not in woman.message
+
+
+def test_only_the_chosen_recalibration_is_named() -> None:
+    (low,) = about(run(REGIONAL, MAN_50, recalibration="low"), FindingCode.UNCONFIRMED)
+    (high,) = about(run(REGIONAL, MAN_50, recalibration="high"), FindingCode.UNCONFIRMED)
+    assert "untested" not in low.message
+    assert "untested" in high.message
+
+
+def test_a_conversion_factor_is_named_only_when_it_was_used() -> None:
+    molar = WOMAN_EGFR_90 | {"total_cholesterol": "5.17 mmol/L", "hdl_cholesterol": "1.16 mmol/L"}
+    (mass,) = about(run("total-cvd-2024-base", WOMAN_EGFR_90), FindingCode.UNCONFIRMED)
+    (unconverted,) = about(run("total-cvd-2024-base", molar), FindingCode.UNCONFIRMED)
+    assert "0.02586" in mass.message
+    assert "0.02586" not in unconverted.message
+
+
+def test_a_file_whose_figures_are_confirmed_says_nothing() -> None:
+    result = run("diabetes-2007-clinical", {})
+    assert about(result, FindingCode.UNCONFIRMED) == []
+
+
+def test_censored_competing_events_are_cautioned_above_70() -> None:
+    assert about(run(LIPIDS, WOMAN_61, age="70"), FindingCode.COMPETING_EVENTS) == []
+    (caution,) = about(run(LIPIDS, WOMAN_61, age="71"), FindingCode.COMPETING_EVENTS)
+    assert caution.field == "age"
+    assert "makes the number higher" in caution.message
+
+
+def test_a_subdistribution_fit_needs_no_such_caution() -> None:
+    assert about(run("total-cvd-2024-base", WOMAN_EGFR_90, age="75"), FindingCode.COMPETING_EVENTS) == []
+
+
+def test_no_caution_about_a_number_that_is_not_there() -> None:
+    assert about(run(LIPIDS, WOMAN_61, age="abc"), FindingCode.UNCONFIRMED) == []

@@ -1,0 +1,91 @@
+"""What is typed into a number field: limits, units, dates, each answered in a sentence."""
+
+import pytest
+
+from clinicalc.assessment.findings import FindingCode, Grade
+from tests.assessment.cases import WOMAN_55_AT_RISK, WOMAN_61, about, probability, run
+
+LIPIDS = "general-cvd-2008-lipids"
+DIABETES = "diabetes-2007-clinical"
+
+
+@pytest.mark.parametrize(
+    ("field", "text", "code", "words"),
+    [
+        ("age", "abc", FindingCode.UNREADABLE, "“abc” is not a number"),
+        ("age", "-3", FindingCode.IMPOSSIBLE, "Age −3 years is not possible; the possible range is 0–120 years."),
+        ("age", "200", FindingCode.IMPOSSIBLE, "Age 200 years is not possible"),
+        ("age", "29", FindingCode.OUTSIDE_DERIVATION, "Age 29 years lies outside 30–74 years"),
+        ("age", "75", FindingCode.OUTSIDE_DERIVATION, "gives no number for them"),
+        ("age", "732 mo", FindingCode.WRONG_UNIT, "Age"),
+        ("total_cholesterol", "5.2", FindingCode.IMPOSSIBLE, "5.2 mmol/L would be. Use that unit"),
+        ("total_cholesterol", "1,234", FindingCode.UNREADABLE, "1.234"),
+        ("total_cholesterol", "nan", FindingCode.UNREADABLE, "Total cholesterol"),
+        ("total_cholesterol", "<0.1", FindingCode.UNREADABLE, "Total cholesterol"),
+        ("total_cholesterol", "1e3", FindingCode.UNREADABLE, "Total cholesterol"),
+        ("total_cholesterol", "9" * 5000, FindingCode.UNREADABLE, "32"),
+        ("total_cholesterol", "١٨٠", FindingCode.UNREADABLE, "Total cholesterol"),
+        ("total_cholesterol", "180 mmHg", FindingCode.WRONG_UNIT, "mmHg"),
+        ("systolic_bp", "124 mg/dL", FindingCode.WRONG_UNIT, "mg/dL"),
+        ("systolic_bp", "124 bananas", FindingCode.UNREADABLE, "bananas"),
+        ("systolic_bp", "16 kPa", None, ""),
+        ("total_cholesterol", "4.655 mmol/l", None, ""),
+        ("total_cholesterol", "180,0", None, ""),
+    ],
+)
+def test_a_typed_number_is_answered_in_words(field: str, text: str, code: FindingCode | None, words: str) -> None:
+    result = run(LIPIDS, WOMAN_61, changed=(field, text))
+    stops = [finding for finding in result.findings if finding.grade is Grade.STOP]
+    if code is None:
+        assert stops == []
+        assert result.estimate is not None
+        return
+    assert result.estimate is None
+    assert [(stop.code, stop.field) for stop in stops] == [(code, field)]
+    assert words in stops[0].message
+    assert len(stops[0].message) < 400
+
+
+def test_the_stop_for_mass_digits_of_a_molar_value_offers_the_molar_unit() -> None:
+    (stop,) = about(run(LIPIDS, WOMAN_61, total_cholesterol="5.2"), FindingCode.IMPOSSIBLE)
+    assert stop.offer == ("mmol/L",)
+
+
+def test_an_unusual_value_that_is_usual_in_another_unit_is_a_caution_with_the_offer() -> None:
+    """Glucose of 21 mg/dL is possible and unusual; 21 mmol/L is within what is seen."""
+    (caution,) = about(run(DIABETES, WOMAN_55_AT_RISK, glucose="21 mg/dL"), FindingCode.UNUSUAL)
+    assert caution.grade is Grade.CAUTION
+    assert caution.offer == ("mmol/L",)
+    assert "21 mmol/L would be" in caution.message
+
+
+def test_glucose_above_126_stops_the_diabetes_model_and_126_does_not() -> None:
+    assert run(DIABETES, WOMAN_55_AT_RISK, glucose="126").estimate is not None
+    (stop,) = about(run(DIABETES, WOMAN_55_AT_RISK, glucose="127"), FindingCode.OUTSIDE_DERIVATION)
+    assert stop.grade is Grade.STOP
+    assert "up to 126 mg/dL" in stop.message
+
+
+def test_a_limit_met_exactly_in_another_unit_is_met() -> None:
+    """126 mg/dL x 0.05551 = 6.99426 mmol/L; the way back is a bit off 126 in binary."""
+    assert run(DIABETES, WOMAN_55_AT_RISK, glucose="6.99426 mmol/L").estimate is not None
+
+
+def test_a_value_may_carry_its_date() -> None:
+    fresh = run(LIPIDS, WOMAN_61, total_cholesterol="180 mg/dL on 2026-10-02")
+    assert about(fresh, FindingCode.OUT_OF_DATE) == []
+    line = next(line for line in fresh.values if line.id == "total_cholesterol")
+    assert line.dated is not None
+    assert line.dated.isoformat() == "2026-10-02"
+    (old,) = about(run(LIPIDS, WOMAN_61, total_cholesterol="180 mg/dL on 2025-11-01"), FindingCode.OUT_OF_DATE)
+    assert old.grade is Grade.CAUTION
+    assert "395 days old" in old.message
+    (future,) = about(run(LIPIDS, WOMAN_61, total_cholesterol="180 on 2027-01-01"), FindingCode.FUTURE_DATE)
+    assert future.grade is Grade.STOP
+
+
+def test_the_unit_typed_with_the_number_counts() -> None:
+    """The 2008 worked example in mmol/L: 4.655 and 1.215 give 0.1049 where 180 and 47 mg/dL give 0.1048."""
+    molar = run(LIPIDS, WOMAN_61, total_cholesterol="4.655 mmol/L", hdl_cholesterol="1.215 mmol/L")
+    assert round(probability(run(LIPIDS, WOMAN_61)), 4) == 0.1048
+    assert round(probability(molar), 4) == 0.1049
