@@ -13,7 +13,7 @@ from typing import Any
 import numpy as np
 import pandas as pd
 import statsmodels
-from numpy.typing import NDArray
+from msgspec import UNSET
 
 from clinicalc.assessment.proof import prove_model
 from clinicalc.coefficients import schema as s
@@ -26,10 +26,12 @@ from example_models.tarnwick_cohort import (
     TRUTH,
     Array,
     Fit,
+    concordance,
     draw_cohort,
     fit_model,
     maximise,
     true_probability,
+    widest_gap,
 )
 
 FILE_NAME = "tarnwick-cvd-10y.json"
@@ -87,7 +89,7 @@ def build_file(fit: Fit) -> s.CoefficientFile:
         id="tarnwick-cvd-10y",
         version="1.0.0",
         title="Tarnwick cardiovascular disease, invented example",
-        outcome="First heart attack or stroke, fatal or not, within 10 years (invented)",
+        outcome="First heart attack or stroke, fatal or not (invented)",
         source=_source(int(fit.cohort["event"].sum())),
         unconfirmed=(),
         use=_use(),
@@ -149,20 +151,11 @@ def _use() -> s.Use:
 
 
 def _predictors(cohort: pd.DataFrame) -> tuple[s.Predictor, ...]:
-    def measured(id: str, label: str, unit: str, group: str, **rest: Any) -> s.NumberPredictor:
-        ends = (float(cohort[id].min()), float(cohort[id].max()))
-        return s.NumberPredictor(id=id, label=label, quantity=id, unit=unit, group=group, derivation=ends, **rest)
-
-    blood: dict[str, Any] = {
-        "outside_derivation": "caution",
-        "factor": FACTOR,
-        "modifiable": True,
-        "valid_for": s.ValidFor(days=365),
-    }
     return (
-        measured("age", "Age", "a", "Person", outside_derivation="stop"),
+        _measured(cohort, "age", "Age", "a", "Person", outside_derivation="stop"),
         s.ChoicePredictor("sex", "Sex", "Person", (s.Choice("female", "Female"), s.Choice("male", "Male"))),
-        measured(
+        _measured(
+            cohort,
             "systolic_bp",
             "Systolic blood pressure",
             "mm[Hg]",
@@ -173,27 +166,32 @@ def _predictors(cohort: pd.DataFrame) -> tuple[s.Predictor, ...]:
             loinc=("8480-6",),
         ),
         BP_TREATED,
-        measured(
-            "total_cholesterol",
-            "Total cholesterol",
-            "mmol/L",
-            "Blood tests",
-            within_person=s.WithinPerson(LIPID_SPREAD, cv=0.061),
-            loinc=("14647-2", "2093-3"),
-            **blood,
-        ),
-        measured(
-            "hdl_cholesterol",
-            "HDL cholesterol",
-            "mmol/L",
-            "Blood tests",
-            within_person=s.WithinPerson(LIPID_SPREAD, cv=0.074),
-            loinc=("14646-4", "2085-9"),
-            **blood,
-        ),
+        _lipid(cohort, "total_cholesterol", "Total cholesterol", 0.061, ("14647-2", "2093-3")),
+        _lipid(cohort, "hdl_cholesterol", "HDL cholesterol", 0.074, ("14646-4", "2085-9")),
         SMOKER,
         DIABETES,
     )
+
+
+def _lipid(cohort: pd.DataFrame, id: str, label: str, cv: float, loinc: tuple[str, ...]) -> s.NumberPredictor:
+    return _measured(
+        cohort,
+        id,
+        label,
+        "mmol/L",
+        "Blood tests",
+        factor=FACTOR,
+        outside_derivation="caution",
+        modifiable=True,
+        valid_for=s.ValidFor(days=365),
+        within_person=s.WithinPerson(LIPID_SPREAD, cv=cv),
+        loinc=loinc,
+    )
+
+
+def _measured(cohort: pd.DataFrame, id: str, label: str, unit: str, group: str, **rest: Any) -> s.NumberPredictor:
+    ends = (float(cohort[id].min()), float(cohort[id].max()))
+    return s.NumberPredictor(id=id, label=label, quantity=id, unit=unit, group=group, derivation=ends, **rest)
 
 
 def _products(knots: tuple[float, ...]) -> dict[str, tuple[s.Factor, ...]]:
@@ -280,17 +278,21 @@ def _population(cohort: pd.DataFrame) -> s.Population:
         slopes = {other: float(row.params[other]) for other in given.columns}
         answers.append(s.PopulationAnswer(name, float(row.params["intercept"]), slopes))
         given[name] = cohort[name]
+    correlations = np.corrcoef(scale.to_numpy(), rowvar=False)
+    np.fill_diagonal(correlations, 1.0)
     share = float(cohort["male"].mean())
-    rest: dict[str, Any] = {"log": "natural"}
     return s.Population(
         source="The invented cohort itself; nobody's values.",
         numbers=tuple(
             s.PopulationNumber(
-                name, float(scale[name].mean()), float(scale[name].std()), **(rest if name in logged else {})
+                name,
+                float(scale[name].mean()),
+                float(scale[name].std()),
+                log="natural" if name in logged else UNSET,
             )
             for name in numbers
         ),
-        correlations=_rows(np.corrcoef(scale.to_numpy(), rowvar=False)),
+        correlations=_rows(correlations),
         yes_no=tuple(answers),
         choices=(s.PopulationChoice("sex", {"female": 1.0 - share, "male": share}),),
     )
@@ -342,22 +344,6 @@ def _document_performance(fit: Fit) -> dict[str, str]:
         "limitations": "Everything is invented, and but for age the model has the very form of the true rule: it does"
         " better here than any real model can.",
     }
-
-
-def concordance(fit: Fit, among: NDArray[np.bool_] | None = None) -> float:
-    """The C statistic: of all pairs with and without the event, the share in which the former has the higher figure."""
-    people = np.full(PEOPLE, True) if among is None else among
-    rank = pd.Series(fit.fitted[people]).rank().to_numpy()
-    event = fit.cohort["event"].to_numpy()[people] == 1.0
-    cases, others = int(event.sum()), int((~event).sum())
-    return float((rank[event].sum() - cases * (cases + 1) / 2) / (cases * others))
-
-
-def widest_gap(fit: Fit) -> float:
-    """The largest difference of observed and mean fitted share over tenths of the fitted probability."""
-    order = np.argsort(fit.fitted, kind="stable")
-    event = fit.cohort["event"].to_numpy()
-    return max(abs(float(event[part].mean() - fit.fitted[part].mean())) for part in np.array_split(order, 10))
 
 
 def main(folder: Path) -> Path:

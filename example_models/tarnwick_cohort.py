@@ -127,6 +127,22 @@ def maximise(answer: pd.Series, design: pd.DataFrame) -> Any:
     return result
 
 
+def concordance(fit: Fit, among: NDArray[np.bool_] | None = None) -> float:
+    """The C statistic: of all pairs with and without the event, the share in which the former has the higher figure."""
+    people = np.full(PEOPLE, True) if among is None else among
+    rank = pd.Series(fit.fitted[people]).rank().to_numpy()
+    event = fit.cohort["event"].to_numpy()[people] == 1.0
+    cases, others = int(event.sum()), int((~event).sum())
+    return float((rank[event].sum() - cases * (cases + 1) / 2) / (cases * others))
+
+
+def widest_gap(fit: Fit) -> float:
+    """The largest difference of observed and mean fitted share over tenths of the fitted probability."""
+    order = np.argsort(fit.fitted, kind="stable")
+    event = fit.cohort["event"].to_numpy()
+    return max(abs(float(event[part].mean() - fit.fitted[part].mean())) for part in np.array_split(order, 10))
+
+
 def design_frame(people: pd.DataFrame, knots: Knots) -> pd.DataFrame:
     """The design terms in file order, one column each, without the intercept."""
     design, years = _plain_terms(people), people["age"].to_numpy(dtype=np.float64)

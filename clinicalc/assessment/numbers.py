@@ -101,13 +101,9 @@ def check_ranges(
         )
     elif not _within(value, field.usual) and number is not None:
         limits = _in_unit(field.usual, back, code)
-        yield Finding(
-            Grade.CAUTION,
-            FindingCode.UNUSUAL,
-            field.id,
-            f"{named} is unusual; the usual range is {limits}.{_remedy(shown, offer) or ' Check that it was typed correctly.'}",
-            offer,
-        )
+        remedy = _remedy(shown, offer) or " Check that it was typed correctly."
+        message = f"{named} is unusual; the usual range is {limits}.{remedy}"
+        yield Finding(Grade.CAUTION, FindingCode.UNUSUAL, field.id, message, offer)
     elif not _within(value, field.derivation):
         limits = _in_unit(field.derivation, back, code)
         yield Finding(

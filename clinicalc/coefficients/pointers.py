@@ -12,7 +12,7 @@ REFUSED_CHARACTERS = re.compile(
 
 def point(base: str, *parts: str | int) -> str:
     """The pointer to a place below `base`: point("/model", "equations", 0) is "/model/equations/0"."""
-    return base + "".join("/" + visible(str(part)).replace("~", "~0").replace("/", "~1") for part in parts)
+    return base + "".join("/" + _shorten(visible(str(part))).replace("~", "~0").replace("/", "~1") for part in parts)
 
 
 def find_at(root: object, pointer: str) -> object:
@@ -45,9 +45,12 @@ def quoted(value: object) -> str:
     if isinstance(value, bool):
         return "true" if value else "false"
     if isinstance(value, int | float):
-        return f"{value:.15g}"
-    text = visible(str(value))
-    return f'"{text if len(text) <= 60 else text[:59] + "…"}"'
+        return f"{value:.15g}".replace("-", "−")
+    return f'"{_shorten(visible(str(value)), 60)}"'
+
+
+def _shorten(text: str, most: int = 130) -> str:
+    return text if len(text) <= most else text[: most - 1] + "…"
 
 
 def listed(words: Iterable[str], last: str = "and") -> str:

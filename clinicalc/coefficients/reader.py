@@ -4,6 +4,7 @@ import errno
 import os
 import stat
 from dataclasses import dataclass
+from itertools import islice
 from pathlib import Path
 
 import msgspec
@@ -16,6 +17,8 @@ from clinicalc.coefficients.strict_json import parse
 from clinicalc.errors import CoefficientFileRefused, Problem
 
 MOST_BYTES = 4_000_000
+MOST_PROBLEMS = 500
+"""More would not help an author, and each costs a search for the word that was meant."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,14 +47,14 @@ def read_bytes(data: bytes, name: str) -> ReadFile:
     parsed = parse(data)
     problems = list(parsed.problems)
     if parsed.readable:
-        problems += find_shape_problems(parsed.value)
+        problems += islice(find_shape_problems(parsed.value), MOST_PROBLEMS)
     if problems or not isinstance(parsed.value, dict):
-        raise CoefficientFileRefused(name, tuple(problems))
+        raise CoefficientFileRefused(name, _cut(problems))
     canonical = canonical_bytes_of(parsed.value)
     content = _build(canonical, parsed.value["signatures"])
-    semantic = check_model(content.model)
-    if semantic:
-        raise CoefficientFileRefused(name, semantic)
+    problems += islice(check_model(content.model), MOST_PROBLEMS)
+    if problems:
+        raise CoefficientFileRefused(name, _cut(problems))
     return ReadFile(name, content, canonical, fingerprint_of(canonical))
 
 
@@ -110,6 +113,13 @@ def _name_kind(mode: int) -> str:
         stat.S_IFSOCK: "a socket",
     }
     return kinds.get(stat.S_IFMT(mode), "something else than a regular file")
+
+
+def _cut(problems: list[Problem]) -> tuple[Problem, ...]:
+    if len(problems) < MOST_PROBLEMS:
+        return tuple(problems)
+    more = Problem("", f"there may be more problems; these are the first {MOST_PROBLEMS}.")
+    return (*problems[:MOST_PROBLEMS], more)
 
 
 def _refused(name: str, message: str) -> CoefficientFileRefused:

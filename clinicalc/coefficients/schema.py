@@ -131,7 +131,7 @@ class ChoicePredictor(FileStruct, frozen=True, tag_field="kind", tag="choice"):
     id: Id
     label: Label
     group: Label
-    choices: Annotated[tuple[Choice, ...], Meta(min_length=2)]
+    choices: Annotated[tuple[Choice, ...], Meta(min_length=2, max_length=200)]
     modifiable: bool | UnsetType = UNSET
     treatment: bool | UnsetType = UNSET
     may_be_missing: bool | UnsetType = UNSET
@@ -332,7 +332,7 @@ class Equation(FileStruct, frozen=True):
     link: Literal["logit", "cloglog"]
     competing_events: CompetingEvents
     terms: Annotated[tuple[Term, ...], Meta(min_length=1)]
-    horizons: Annotated[tuple[Horizon, ...], Meta(min_length=1)]
+    horizons: Annotated[tuple[Horizon, ...], Meta(min_length=1, max_length=100)]
     uncertainty: Uncertainty
     reference_person: dict[Id, float | str] | UnsetType = UNSET
 

@@ -24,9 +24,9 @@ _PATTERN_WORDS = {
 }
 
 
-def find_shape_problems(parsed: object) -> tuple[Problem, ...]:
-    """Every place where the parsed value does not have the shape of a coefficient file; empty when it has."""
-    return tuple(_walk(parsed, _shape_of_file(), ""))
+def find_shape_problems(parsed: object) -> Iterator[Problem]:
+    """Every place where the parsed value does not have the shape of a coefficient file; none when it has."""
+    return _walk(parsed, _shape_of_file(), "")
 
 
 @functools.cache
@@ -114,9 +114,10 @@ def _walk_list(value: object, shape: inspect.VarTupleType, path: str) -> Iterato
         yield Problem(path, f"this list has {len(value)} entries; at least {shape.min_length} must stand in it.")
     if shape.max_length is not None and len(value) > shape.max_length:
         yield Problem(path, f"this list has {len(value)} entries; at most {shape.max_length} may stand in it.")
+    unbounded = shape.item_type == inspect.FloatType()
     for index, item in enumerate(value):
-        if type(item) is float and isinstance(shape.item_type, inspect.FloatType):
-            continue  # the rows of a covariance are most of a file
+        if unbounded and type(item) in (float, int):
+            continue  # rows of a covariance and of draws are most of a file
         yield from _walk(item, shape.item_type, point(path, index))
 
 

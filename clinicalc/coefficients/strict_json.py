@@ -13,6 +13,8 @@ from clinicalc.errors import Problem
 DEEPEST = 64
 LARGEST = 2**53 - 1
 """The largest number a file may hold: beyond it neighbouring whole numbers can no longer be told apart (RFC 8785)."""
+LONGEST_NUMBER = 400
+"""Characters of the longest number: no figure needs as many, and few enough are read in no time."""
 
 _BRACKETS_OR_STRING = re.compile(r'"[^"\\]*+(?:\\.[^"\\]*+)*+(?:"|\\?\Z)|[\[\]{}]', re.DOTALL)
 _REMARKS = {
@@ -115,12 +117,14 @@ def _read(text: str) -> object:
 
 
 def _to_float(letters: str) -> float | _BadNumber:
+    if len(letters) > LONGEST_NUMBER:
+        return _BadNumber(letters)
     number = float(letters)
     return number if abs(number) <= LARGEST else _BadNumber(letters)
 
 
 def _to_int(letters: str) -> int | _BadNumber:
-    if len(letters) > 20:
+    if len(letters) > LONGEST_NUMBER:
         return _BadNumber(letters)
     number = int(letters)
     return number if abs(number) <= LARGEST else _BadNumber(letters)
@@ -148,7 +152,10 @@ def _plain(tree: object, path: str, problems: list[Problem]) -> object:
     if isinstance(tree, _Pairs):
         return _plain_object(tree, path, problems)
     if isinstance(tree, list):
-        return [_plain(item, point(path, index), problems) for index, item in enumerate(tree)]
+        return [
+            item if type(item) in (float, int) else _plain(item, point(path, index), problems)
+            for index, item in enumerate(tree)
+        ]
     if isinstance(tree, _BadNumber):
         problems.append(Problem(path, _refuse_number(tree)))
         return Unusable.NUMBER
@@ -184,9 +191,7 @@ def _check_text(text: str, path: str, what: str, problems: list[Problem]) -> Non
 def _refuse_number(letters: str) -> str:
     if letters in ("NaN", "Infinity", "-Infinity"):
         return f"{letters} is not a number JSON knows, and no coefficient can be it. Write the figure the source gives."
-    size = "too large to be a number at all" if _overflows(letters) else "beyond 9007199254740991 (2^53 − 1)"
+    if len(letters) > LONGEST_NUMBER:
+        return f"this number has {len(letters)} characters; at most {LONGEST_NUMBER} are read. Write fewer decimals."
+    size = "beyond 9007199254740991 (2^53 − 1)" if math.isfinite(float(letters)) else "too large to be a number at all"
     return f"{quoted(letters)[1:-1]} is {size}. Write the figure the source gives."
-
-
-def _overflows(letters: str) -> bool:
-    return not math.isfinite(float(letters))

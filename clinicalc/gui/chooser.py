@@ -24,18 +24,18 @@ class Chooser(QComboBox):
         self.setMinimumContentsLength(1)
         self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
 
-    def wheelEvent(self, event: QWheelEvent) -> None:  # noqa: N802 (Qt's name)
+    def wheelEvent(self, event: QWheelEvent) -> None:
         """Leave the wheel to the pane."""
         event.ignore()
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:  # noqa: N802
+    def keyPressEvent(self, event: QKeyEvent) -> None:
         """Enter goes on to the next field."""
         if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
             self.entered.emit()
             return
         super().keyPressEvent(event)
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, event: QPaintEvent) -> None:
         """Text and a small chevron."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)

@@ -31,13 +31,13 @@ class FieldFrame(QWidget):
         """Whether the heavy frame is shown."""
         return self._stopped
 
-    def eventFilter(self, watched: QObject, event: QEvent) -> bool:  # noqa: N802 (Qt's name)
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
         """Qt hands every event of a watched control here first."""
         if event.type() in (QEvent.Type.FocusIn, QEvent.Type.FocusOut):
             self.update()
         return False
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, event: QPaintEvent) -> None:
         """Ring, edge and ground."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)

@@ -3,7 +3,8 @@
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
 
-from clinicalc.gui.typeface import BASE, CAPTION, face
+from clinicalc.gui.tokens import LABEL_WIDTH
+from clinicalc.gui.typeface import BASE, CAPTION, UNIT, face
 
 
 def make_label(text: str = "", pixels: int = BASE, *, semibold: bool = False, soft: bool = False) -> QLabel:
@@ -27,9 +28,28 @@ def make_line(text: str = "", pixels: int = BASE, *, semibold: bool = False, sof
 
 def make_field_label(text: str, name: str, buddy: QWidget) -> QLabel:
     """The label of a field: `text` may hold one access mark (`access_keys`), `name` is what a screen reader says."""
+    label = make_row_label(text)
+    label.setBuddy(buddy)
+    label.setAccessibleName(name)
+    return label
+
+
+def make_question_label(text: str, name: str, buddy: QWidget) -> QLabel:
+    """A question of any length whose first line stands level with its answers."""
     label = make_label(text)
     label.setBuddy(buddy)
     label.setAccessibleName(name)
+    label.setContentsMargins(0, 8, 0, 4)
+    return label
+
+
+def make_row_label(text: str) -> QLabel:
+    """The label at the left of a row; a long one takes two smaller lines."""
+    label = make_label(text)
+    label.setFixedWidth(LABEL_WIDTH)
+    label.setContentsMargins(0, 2, 0, 2)
+    if label.fontMetrics().horizontalAdvance(text.replace("&", "")) > LABEL_WIDTH:
+        label.setFont(face(UNIT))
     return label
 
 

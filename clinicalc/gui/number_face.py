@@ -40,7 +40,7 @@ class NumberFace(QWidget):
         self.setAccessibleName("No number")
         self.update()
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802 (Qt's name)
+    def paintEvent(self, event: QPaintEvent) -> None:
         """Figure and sign on one baseline, or seats and a faint sign."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)

@@ -18,7 +18,7 @@ from clinicalc.gui.frames import FieldFrame
 from clinicalc.gui.held_value import HeldValue, choosable_units, hold, hold_entry, read_as, settle, switch_unit
 from clinicalc.gui.labels import make_button, make_field_label, make_label, make_line
 from clinicalc.gui.rows import FieldRow
-from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, LIGHT, RING, VALUE_WIDTH
+from clinicalc.gui.tokens import COLUMN_GAP, FRAME_WIDTH, LIGHT, RING, VALUE_WIDTH
 from clinicalc.gui.typeface import CAPTION, UNIT, VALUE, face
 from clinicalc.units.conversion import conversion
 from clinicalc.units.unit import unit as unit_of
@@ -35,7 +35,7 @@ class ValueEdit(QLineEdit):
         self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
 
-    def focusOutEvent(self, event: QFocusEvent) -> None:  # noqa: N802 (Qt's name)
+    def focusOutEvent(self, event: QFocusEvent) -> None:
         """Tell that the field was left, for whatever reason but a menu."""
         super().focusOutEvent(event)
         if event.reason() != Qt.FocusReason.PopupFocusReason:
@@ -88,6 +88,7 @@ class NumberRow(FieldRow):
         self._field = field
         self._held: HeldValue = hold(field, "", field.unit)
         self._offer = ""
+        self._line: ValueLine | None = None
         self.frame = ValueFrame(choosable_units(field), field.unit)
         self.edit = self.frame.edit
         self.edit.setAccessibleName(field.label)
@@ -125,15 +126,19 @@ class NumberRow(FieldRow):
         self.offer.setVisible(bool(self._offer))
         if had_focus and not self._offer:
             self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
-        self.remark.setText("" if self._offer else self._remark_words(line))
+        self._line = line
         self._show_remark()
 
     def fit(self, room: int, *, compact: bool) -> None:
         """Compact: remark or offer under the frame, and no range."""
         self._compact = compact
+        self.remark.setContentsMargins(RING if compact else 0, 0, 0, 0)
+        self.offer.setMinimumWidth(FRAME_WIDTH if compact else 0)
         for widget in (self.remark, self.offer):
             self._grid.removeWidget(widget)
-            self._grid.addWidget(widget, 1 if compact else 0, 1 if compact else 2, 1, 2 if compact else 1)
+        place = (1, 1, 1, 2) if compact else (0, 2, 1, 1)
+        self._grid.addWidget(self.remark, *place)
+        self._grid.addWidget(self.offer, *place, Qt.AlignmentFlag.AlignLeft)
         self._show_remark()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
@@ -143,7 +148,6 @@ class NumberRow(FieldRow):
 
     def _lay_out(self) -> None:
         self._compact = False
-        self.label.setFixedWidth(LABEL_WIDTH)
         self._grid = QGridLayout(self)
         self._grid.setContentsMargins(0, 0, 0, 0)
         self._grid.setHorizontalSpacing(COLUMN_GAP)
@@ -225,7 +229,8 @@ class NumberRow(FieldRow):
         if low is None and high is None:
             return ""
         back = conversion(self._field.quantity, self._field.unit, self._held.unit, self._field.factor)
-        return plain_range(*(None if end is None else back.apply(end) for end in (low, high)))
+        return plain_range(None if low is None else back.apply(low), None if high is None else back.apply(high))
 
     def _show_remark(self) -> None:
+        self.remark.setText("" if self._offer else self._remark_words(self._line))
         self.remark.setVisible(not self._offer and bool(self.remark.text() or not self._compact))

@@ -9,7 +9,7 @@ from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import QuestionField
 from clinicalc.assessment.findings import Finding, Grade
 from clinicalc.assessment.result import ValueLine
-from clinicalc.gui.labels import make_field_label
+from clinicalc.gui.labels import make_field_label, make_question_label
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.segments import Segments
 from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, RING
@@ -27,18 +27,17 @@ class QuestionRow(FieldRow):
         self.segments = (
             Segments(field.options, field.label, _EXCLUSION_WIDTH) if excludes else Segments(field.options, field.label)
         )
-        self.label = make_field_label(marked_label, field.label, self.segments)
+        self.label = (make_question_label if excludes else make_field_label)(marked_label, field.label, self.segments)
         if field.meaning:
             self.segments.setAccessibleDescription(field.meaning)
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         if excludes:
             row.setSpacing(16)
-            row.addWidget(self.label, 1)
+            row.addWidget(self.label, 1, Qt.AlignmentFlag.AlignTop)
             row.addWidget(self.segments, 0, Qt.AlignmentFlag.AlignTop)
         else:
             row.setSpacing(COLUMN_GAP)
-            self.label.setFixedWidth(LABEL_WIDTH)
             row.addWidget(self.label)
             row.addWidget(self.segments)
             row.addStretch(1)

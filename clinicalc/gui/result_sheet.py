@@ -12,7 +12,7 @@ from clinicalc.gui.number_face import NumberFace
 from clinicalc.gui.tokens import FIGURE_COLUMN, SHEET_MARGIN, SHEET_MARGIN_RIGHT
 from clinicalc.gui.typeface import CAPTION, HEADLINE
 from clinicalc.gui.vetting_strip import VettingStrip
-from clinicalc.gui.wording import event_heading, explain_no_number, shown_findings
+from clinicalc.gui.wording import event_heading, event_in_full, explain_no_number, shown_findings
 from clinicalc.operations.summary import people_sentence
 from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED, level_words
 
@@ -35,7 +35,7 @@ class ResultSheet(QWidget):
         self.band_figure = make_line("", semibold=True)
         self.band_reason = make_label("", soft=True)
         self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
-        self.event = make_label("", CAPTION, soft=True)
+        self.outcome = make_label("", CAPTION, soft=True)
         self.findings = FindingsList()
         self._lay_out()
         self._show_no_model()
@@ -75,10 +75,10 @@ class ResultSheet(QWidget):
         band.addWidget(self.band_figure, 0, 1, Qt.AlignmentFlag.AlignRight)
         grid.addLayout(band, 1, 0, Qt.AlignmentFlag.AlignTop)
         grid.addWidget(self.band_reason, 1, 1, Qt.AlignmentFlag.AlignTop)
-        grid.setRowMinimumHeight(1, 48)
+        grid.setRowMinimumHeight(1, 68)
         grid.addWidget(self.meaning, 2, 0, 1, 2)
         grid.setRowMinimumHeight(3, 6)
-        grid.addWidget(self.event, 4, 0, 1, 2)
+        grid.addWidget(self.outcome, 4, 0, 1, 2)
         grid.setRowMinimumHeight(5, 10)
         grid.addWidget(self.findings, 6, 0, 1, 2)
         grid.setRowStretch(7, 1)
@@ -108,7 +108,7 @@ class ResultSheet(QWidget):
         self.strip.show()
         self.meaning.show()
         self.findings.show()
-        self.event.setText(f"Event: {model.content.outcome.rstrip('.')}.")
+        self.outcome.setText(f"Event: {event_in_full(model)}.")
 
     def _show_current(self) -> None:
         assessment = self._state.assessment

@@ -27,11 +27,11 @@ class Segment(QRadioButton):
         self.setAccessibleName(f"{question}: {option.label}")
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
 
-    def hitButton(self, pos: QPoint) -> bool:  # noqa: N802 (Qt's name)
+    def hitButton(self, pos: QPoint) -> bool:
         """The whole segment can be clicked."""
         return self.rect().contains(pos)
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:  # noqa: N802
+    def keyPressEvent(self, event: QKeyEvent) -> None:
         """Arrows choose, first letters choose, Enter goes on; the space bar is the button's own."""
         if event.key() in _BACK or event.key() in _ON:
             self.stepped.emit(-1 if event.key() in _BACK else 1)
@@ -45,7 +45,7 @@ class Segment(QRadioButton):
         else:
             super().keyPressEvent(event)
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, event: QPaintEvent) -> None:
         """Chosen: ground, frame and weight; not chosen: soft text only."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
@@ -70,7 +70,7 @@ class Segments(FieldFrame):
         self._narrowest = width
         self._group = QButtonGroup(self)
         self._row = QBoxLayout(QBoxLayout.Direction.LeftToRight, self)
-        self._row.setContentsMargins(RING, RING, RING, RING)
+        self._row.setContentsMargins(RING + 1, RING + 1, RING + 1, RING + 1)
         self._row.setSpacing(0)
         self.segments = tuple(Segment(option, question) for option in options)
         for place, segment in enumerate(self.segments):
@@ -117,6 +117,8 @@ class Segments(FieldFrame):
         else:
             self._row.setDirection(QBoxLayout.Direction.TopToBottom)
             width, lines = max(self._narrowest, min(widest, room)), count
+            for place in range(count):
+                self._row.setStretch(place, 1)
         self.setFixedSize(width + 2 * RING, FRAME_HEIGHT * lines + 2 * RING)
 
     def paint_inside(self, painter: QPainter, body: QRectF) -> None:

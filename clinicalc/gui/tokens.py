@@ -99,7 +99,7 @@ def make_style_sheet(tokens: Tokens) -> str:
     QWidget#ground {{ background: {t.ground}; }}
     QWidget#sheet {{ background: {t.sheet}; }}
     QPushButton {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; color: {t.ink};
-                   padding: 0 14px; min-height: 30px; margin: 1px; }}
+                   padding: 0 14px; min-height: 30px; }}
     QPushButton:pressed {{ background: {t.sel}; }}
     QPushButton:focus {{ border: 2px solid {t.accent}; padding: 0 13px; min-height: 28px; }}
     QPushButton:disabled {{ color: {t.soft}; background: {t.ground}; border-color: {t.rule}; }}
@@ -107,6 +107,10 @@ def make_style_sheet(tokens: Tokens) -> str:
     QPushButton#primary:enabled:focus {{ border: 2px solid {t.ink}; }}
     QPushButton#offer {{ padding: 0 8px; min-height: 26px; border-color: {t.ink}; }}
     QPushButton#offer:focus {{ border: 2px solid {t.accent}; padding: 0 7px; min-height: 24px; }}
+    QScrollBar:vertical {{ background: transparent; width: 12px; margin: 0; }}
+    QScrollBar::handle:vertical {{ background: {t.edge}; border-radius: 3px; min-height: 32px; margin: 2px 3px; }}
+    QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page
+                   {{ background: none; border: none; height: 0; }}
     QComboBox QAbstractItemView {{ background: {t.field}; color: {t.ink}; border: 1px solid {t.edge};
                    selection-background-color: {t.sel}; selection-color: {t.ink}; padding: 2px; }}
     """

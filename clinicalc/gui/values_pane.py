@@ -17,9 +17,9 @@ from clinicalc.gui.question_row import QuestionRow
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, PANE_WIDTH, PANE_WIDTH_COMPACT, RING, SIDE_MARGIN
 from clinicalc.gui.typeface import BASE, face
+from clinicalc.gui.worked_out_row import WorkedOutRow
 
 PRINT_LABEL = "Name or number"
-_SCROLL_BAR = 10
 
 
 class LabelRow(QWidget):
@@ -37,7 +37,6 @@ class LabelRow(QWidget):
         inside.addWidget(self.edit)
         self.frame.watch(self.edit)
         self.label = make_field_label(marked_label, PRINT_LABEL, self.edit)
-        self.label.setFixedWidth(LABEL_WIDTH)
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         row.setSpacing(COLUMN_GAP)
@@ -83,10 +82,10 @@ class ValuesPane(QScrollArea):
 
     def focus_first(self) -> None:
         """Put the cursor where typing begins."""
-        for row in self.rows.values():
-            row.tab_stops()[0].setFocus(Qt.FocusReason.OtherFocusReason)
-            self.ensureWidgetVisible(row)
-            return
+        first = next((stop for stop in self.tab_stops() if _is_tab_stop(stop)), None)
+        if first is not None:
+            first.setFocus(Qt.FocusReason.OtherFocusReason)
+            self.ensureWidgetVisible(first)
 
     def set_compact(self, compact: bool) -> None:
         """The narrow form of the pane, for small windows."""
@@ -130,7 +129,7 @@ class ValuesPane(QScrollArea):
         if self._model is None:
             return
         fields = self._model.fields
-        marked = mark_letters([*("" if _excludes(f) else f.label for f in fields), PRINT_LABEL])
+        marked = mark_letters([*("" if _has_no_letter(f) else f.label for f in fields), PRINT_LABEL])
         labels = {field.id: mark or field.label.replace("&", "&&") for field, mark in zip(fields, marked, strict=False)}
         for group, members in groupby(fields, key=lambda field: field.group):
             content = list(members)
@@ -153,21 +152,17 @@ class ValuesPane(QScrollArea):
         self.rebuilt.emit()
 
     def _add_row(self, field: Field, label: str) -> FieldRow:
-        row: FieldRow = NumberRow(field, label) if isinstance(field, NumberField) else QuestionRow(field, label)
+        row = _make_row(field, label)
         row.typed.connect(self._state.type_value)
         row.entered.connect(lambda id=field.id: self._go_on_from(id))
         self.rows[field.id] = row
         return row
 
     def _go_on_from(self, id: str) -> None:
+        assert self.label_row is not None  # built together with the rows
         ids = list(self.rows)
-        place = ids.index(id) + 1
-        if place < len(ids):
-            row = self.rows[ids[place]]
-            target: QWidget = next((w for w in row.tab_stops() if _is_tab_stop(w)), row)
-        else:
-            assert self.label_row is not None  # built together with the rows
-            target = self.label_row.edit
+        later = [stop for next_id in ids[ids.index(id) + 1 :] for stop in self.rows[next_id].tab_stops()]
+        target = next((stop for stop in later if _is_tab_stop(stop)), self.label_row.edit)
         target.setFocus(Qt.FocusReason.TabFocusReason)
         self.ensureWidgetVisible(target)
 
@@ -181,8 +176,15 @@ class ValuesPane(QScrollArea):
             row.show_remarks(None, ())
 
 
-def _excludes(field: Field) -> bool:
-    return not isinstance(field, NumberField) and bool(field.excludes)
+def _make_row(field: Field, label: str) -> FieldRow:
+    if not isinstance(field, NumberField):
+        return QuestionRow(field, label)
+    return NumberRow(field, label) if field.may_be_typed else WorkedOutRow(field)
+
+
+def _has_no_letter(field: Field) -> bool:
+    """Exclusions stand first and are whole sentences; what is never typed is never gone to."""
+    return not field.may_be_typed if isinstance(field, NumberField) else bool(field.excludes)
 
 
 def _is_tab_stop(widget: QWidget) -> bool:

@@ -19,12 +19,13 @@ class VettingStrip(QWidget):
         self.setFixedHeight(_HEIGHT)
         self.label = make_line(words, BASE, semibold=True)
         self.label.setStyleSheet(f"background: {LIGHT.sheet}; padding: 0 10px;")
+        self.label.setIndent(0)
         row = QHBoxLayout(self)
         row.setContentsMargins(SHEET_MARGIN - 10, 3, 0, 3)
         row.addWidget(self.label)
         row.addStretch(1)
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802 (Qt's name)
+    def paintEvent(self, event: QPaintEvent) -> None:
         """Slanted lines over the whole width."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)

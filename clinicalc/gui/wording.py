@@ -30,6 +30,12 @@ def event_heading(model: Model, span: Span | None) -> str:
     return f"{outcome} within {span.words}"
 
 
+def event_in_full(model: Model) -> str:
+    """What counts as the event: the outcome after its first words, or all of it."""
+    first, _, rest = model.content.outcome.rstrip(". ").partition(":")
+    return rest.strip() or first
+
+
 def explain_no_number(assessment: Assessment) -> tuple[str, str]:
     """Headline and sentence for a sheet without a number."""
     stops = [finding for finding in assessment.stops if not is_open_choice(finding)]

@@ -1,4 +1,4 @@
-"""The record inside the print: the assessment as JSON, as an embedded file called assessment.json, without the label."""
+"""The record inside the print: the assessment as JSON, as an embedded file, without the patient label."""
 
 from typing import Any
 

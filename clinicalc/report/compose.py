@@ -31,6 +31,7 @@ from clinicalc.report.contents import (
 _WEIGHT = {Grade.STOP: 0, Grade.CAUTION: 1, Grade.NOTE: 2}
 _NOT_GIVEN = "not given"
 _NOTHING = "–"
+_SIGNATURE = SignatureLine(("Practitioner’s signature", "Name", "Date"))
 
 
 def compose(assessment: Assessment, *, practice: str, printed_at: datetime) -> Sheet:
@@ -59,8 +60,7 @@ def compose(assessment: Assessment, *, practice: str, printed_at: datetime) -> S
             _findings(assessment),
             *_values(assessment),
             _model(assessment),
-            Section("Before you rely on it", (Prose(phrases.STANDING_CAUTIONS),), whole=True),
-            Section("Practitioner", (SignatureLine(("Signature", "Name", "Date")),), whole=True),
+            Section("Before you rely on it", (Prose(phrases.STANDING_CAUTIONS), _SIGNATURE), whole=True),
         ),
     )
 
@@ -114,8 +114,14 @@ def _result_facts(assessment: Assessment) -> list[Fact]:
     span = assessment.span
     facts = [Fact("Horizon", (span.words if span else "not chosen",), strong=span is not None)]
     if assessment.estimate is not None:
+        facts.insert(0, _probability(assessment.estimate))
         facts.append(_band(assessment.level, assessment.estimate))
     return [*facts, _recalibration(assessment)]
+
+
+def _probability(estimate: Estimate) -> Fact:
+    """The large number again in the size of the text: its name, and what a program reads back as one word."""
+    return Fact("Probability", (percent(estimate.probability, estimate.complement),), strong=True)
 
 
 def _band(level: float, estimate: Estimate) -> Fact:
@@ -175,7 +181,9 @@ def _typed(line: ValueLine) -> str:
     if not line.typed:
         return _NOT_GIVEN
     origin = " (typed)" if line.derived else ""
-    dated = f", of {phrases.day_words(datetime(line.dated.year, line.dated.month, line.dated.day))}" if line.dated else ""
+    dated = (
+        f", of {phrases.day_words(datetime(line.dated.year, line.dated.month, line.dated.day))}" if line.dated else ""
+    )
     unused = "" if line.used else " (not used)"
     return f"{line.shown}{origin}{dated}{unused}"
 
@@ -204,4 +212,3 @@ def _model(assessment: Assessment) -> Section:
 
 def _listed(parts: tuple[str, ...]) -> str:
     return "; ".join(parts) if parts else "nothing stated"
-

@@ -1,13 +1,14 @@
 """The print's typeface: which characters it has, how wide they are, and what may not be printed with it."""
 
 import unicodedata
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from enum import StrEnum
 from functools import cache
 from typing import Any
 
 from clinicalc.errors import PrintRefused
+from clinicalc.report.outlines import Box, read_boxes
 from clinicalc.resources import read_shipped
 from clinicalc.units.quoting import quote
 
@@ -22,11 +23,30 @@ class Weight(StrEnum):
     SEMIBOLD = "SourceSans3-Semibold"
 
 
+X_HEIGHT = 486.0
+"""Thousandths of the type size: the height of small letters in this typeface, over which its accents are drawn."""
+_STACKED_GAP = 50.0
+_ABOVE, _BELOW = 230, 220  # Unicode's canonical combining classes
+
+
+_NO_INK = Box(0.0, 0.0, 0.0, 0.0)
+
+
+@dataclass(frozen=True, slots=True)
+class Piece:
+    """A part of a line: `space` follows each of its characters, `rise` lifts it; in thousandths of the type size."""
+
+    text: str
+    space: float = 0.0
+    rise: float = 0.0
+
+
 @dataclass(frozen=True, slots=True)
 class Lettering:
-    """Advance widths by character and weight, in thousandths of the type size."""
+    """Advance widths and boxes by weight and character, in thousandths of the type size."""
 
     advances: Mapping[Weight, Mapping[int, float]]
+    boxes: Mapping[Weight, Mapping[int, Box]]
 
     def width(self, text: str, size: float, weight: Weight = Weight.REGULAR) -> float:
         """The width of a line of text in points; no kerning, as it is painted."""
@@ -51,6 +71,41 @@ class Lettering:
             line = word
         return (*lines, line)
 
+    def pieces(self, text: str, weight: Weight) -> Iterator[Piece]:
+        """The line in parts that are painted one after the other, each accent apart, over the middle of its letter.
+
+        The accents of this typeface have no width and are drawn around 0; one drawn wholly to the left of 0 strikes
+        through the letter before it and stands where the letter ends.
+        """
+        run = ""
+        for letter, accents in _clusters(text):
+            if not accents:
+                run += letter
+                continue
+            if run:
+                yield Piece(run)
+                run = ""
+            yield from self._cluster(letter, accents, weight)
+        if run:
+            yield Piece(run)
+
+    def _cluster(self, letter: str, accents: str, weight: Weight) -> Iterator[Piece]:
+        """A letter and its accents; the spaces after them lead from each to the next and back to the letter's end."""
+        wide, under = self.advances[weight][ord(letter)], self.boxes[weight].get(ord(letter), _NO_INK)
+        middle, top, bottom = under.middle if under is not _NO_INK else wide / 2, under.top, under.bottom
+        boxes = [self.boxes[weight].get(ord(accent), _NO_INK) for accent in accents]
+        starts = [wide if box.right < 0.0 else middle for box in boxes]
+        yield Piece(letter, starts[0] - wide)
+        for accent, box, start, following in zip(accents, boxes, starts, [*starts[1:], wide], strict=True):
+            kind, rise = unicodedata.combining(accent), 0.0
+            if kind == _ABOVE:
+                rise = max(0.0, top - X_HEIGHT)
+                top = max(top, X_HEIGHT) + box.top - box.bottom + _STACKED_GAP
+            elif kind == _BELOW:
+                rise = min(0.0, bottom)
+                bottom -= box.top - box.bottom + _STACKED_GAP
+            yield Piece(accent, following - start - self.advances[weight][ord(accent)], rise)
+
     def lacks(self, character: str) -> bool:
         """Whether one of the weights has no picture of the character."""
         return any(ord(character) not in advances for advances in self.advances.values())
@@ -66,6 +121,15 @@ class Lettering:
         while fits > 1 and fits < len(word) and unicodedata.combining(word[fits]):
             fits -= 1
         return max(fits, 1)
+
+
+def _clusters(text: str) -> Iterator[tuple[str, str]]:
+    """Each letter with the accents after it; an accent with nothing before it is a letter of its own."""
+    start = 0
+    for place in range(1, len(text) + 1):
+        if place == len(text) or not unicodedata.combining(text[place]):
+            yield text[start], text[start + 1 : place]
+            start = place
 
 
 def check_text(lettering: Lettering, text: str, what: str) -> None:
@@ -94,16 +158,21 @@ def read_fonts() -> Mapping[Weight, Any]:
 
     from reportlab.pdfbase.ttfonts import TTFont
 
-    return {weight: TTFont(weight.value, BytesIO(read_shipped(f"resources/fonts/{weight.value}.ttf"))) for weight in Weight}
+    return {weight: TTFont(weight.value, BytesIO(_read_font(weight))) for weight in Weight}
 
 
 @cache
 def read_lettering() -> Lettering:
     """The widths of both weights; a character without a width is one the typeface lacks."""
-    fonts = read_fonts()
+    glyphs = {weight: font.face.charToGlyph for weight, font in read_fonts().items()}
     return Lettering(
-        {
-            weight: {code: font.face.getCharWidth(code) for code in font.face.charToGlyph}
-            for weight, font in fonts.items()
-        }
+        advances={
+            weight: {code: font.face.getCharWidth(code) for code in glyphs[weight]}
+            for weight, font in read_fonts().items()
+        },
+        boxes={weight: read_boxes(_read_font(weight), glyphs[weight]) for weight in Weight},
     )
+
+
+def _read_font(weight: Weight) -> bytes:
+    return read_shipped(f"resources/fonts/{weight.value}.ttf")

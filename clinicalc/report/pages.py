@@ -34,7 +34,7 @@ def lay_out(lettering: Lettering, sheet: Sheet) -> tuple[Page, ...]:
     heights = _head(lettering, furniture, 1, 1)[1], _head(lettering, furniture, 2, 2)[1]
     foot = _foot(lettering, furniture)
     bottom = BOTTOM - foot[1] - 8
-    parts = list(break_pages(strips, [bottom - heights[0], bottom - heights[1]]))
+    parts = list(break_pages(strips, (bottom - heights[0], bottom - heights[1])))
     pages = []
     for number, part in enumerate(parts, 1):
         head, y = _head(lettering, furniture, number, len(parts))
@@ -47,32 +47,27 @@ def lay_out(lettering: Lettering, sheet: Sheet) -> tuple[Page, ...]:
     return tuple(pages)
 
 
-def break_pages(strips: Sequence[Strip], rooms: Sequence[float]) -> Iterator[list[Strip]]:
-    """The strips page by page. `rooms`: the height of the first page and of every later one, in points."""
+def break_pages(strips: Sequence[Strip], rooms: tuple[float, float]) -> Iterator[list[Strip]]:
+    """The strips page by page; `rooms` are the heights of the first page and of every later one, in points."""
     page: list[Strip] = []
-    used, room, later = 0.0, rooms[0], rooms[-1]
+    room, later = rooms
     for group in _groups(strips):
-        height = sum(strip.height for strip in group)
-        if used + height > room and page:
-            if height <= later:  # goes over whole
-                yield page
-                page, used, room = [*_repeated(group[0])], 0.0, later
-                used = sum(strip.height for strip in page)
+        height = _height(group)
+        if page and _height(page) + height > room and height <= later:  # goes over whole
+            yield page
+            page, room = list(group[0].head), later
         for strip in group:  # a group higher than a page is parted where the page ends
-            if used + strip.height > room and page:
+            if page and _height(page) + strip.height > room:
                 yield page
-                page, room = [*_repeated(strip)], later
-                used = sum(s.height for s in page)
-            if not page and not strip.shapes:
-                continue  # no white at the top of a page
-            page.append(strip)
-            used += strip.height
+                page, room = list(strip.head), later
+            if page or strip.shapes:  # no white at the top of a page
+                page.append(strip)
     if page:
         yield page
 
 
-def _repeated(strip: Strip) -> tuple[Strip, ...]:
-    return strip.head
+def _height(strips: Sequence[Strip]) -> float:
+    return sum(strip.height for strip in strips)
 
 
 def _groups(strips: Sequence[Strip]) -> Iterator[list[Strip]]:

@@ -40,21 +40,22 @@ def make_report(assessment: Assessment, *, practice: str = "", printed_at: datet
     return _write_pdf(lettering, sheet, moment, write_record(assessment))
 
 
-def save_report(
-    path: Path, assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None
-) -> None:
+def save_report(path: Path, assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None) -> None:
     """Writes the PDF to `path`, whole or not at all; an older file stays untouched until the new one is complete.
+
+    The new file can be read by the person who saved it, and by others only where the folder's own rules say so.
 
     Raises FileNotWritten when the place cannot be written, PrintRefused as `make_report` does.
     """
     content = make_report(assessment, practice=practice, printed_at=printed_at)
     try:
         _replace_file(path, content)
-    except OSError as error:
+    except (OSError, ValueError) as error:  # ValueError: a file name with a null character
+        said = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
         raise FileNotWritten(
             "the print could not be saved.",
             where=str(path),
-            why=f"The system says: {error.strerror or error}.",
+            why=f"The system says: {said.rstrip('.')}.",
             do="Choose a folder that exists and that you may write to, and close the file where it is open.",
         ) from error
 
@@ -131,7 +132,7 @@ def _write_pdf(lettering: Lettering, sheet: Sheet, moment: datetime, record: str
     canvas.setSubject("Assessment of one patient with a clinical risk model")
     canvas.setViewerPreference("DisplayDocTitle", "true")
     canvas.setDateFormatter(lambda *_: _pdf_date(moment))
-    paint_pages(canvas, lay_out(lettering, sheet))
+    paint_pages(canvas, lettering, lay_out(lettering, sheet))
     attach_record(canvas._doc, record)
     canvas.save()
     return target.getvalue()

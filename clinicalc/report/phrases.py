@@ -35,9 +35,21 @@ _BASES = {
     "draws": "From the model’s bootstrap draws.",
 }
 
+# not from the locale: a print reads the same everywhere
 _MONTHS = (
-    "January February March April May June July August September October November December"
-).split()  # not from the locale: a print reads the same everywhere
+    "January",
+    "February",
+    "March",
+    "April",
+    "May",
+    "June",
+    "July",
+    "August",
+    "September",
+    "October",
+    "November",
+    "December",
+)
 
 
 def level_words(level: float) -> str:

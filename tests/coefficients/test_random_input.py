@@ -125,7 +125,7 @@ def test_the_walk_over_the_shape_agrees_with_msgspec_and_with_the_json_schema(tr
     parsed = parse(json.dumps(tree).encode())
     if parsed.problems:
         return
-    ours = not find_shape_problems(parsed.value)
+    ours = not list(find_shape_problems(parsed.value))
     try:
         msgspec.json.decode(json.dumps(tree["model"]).encode(), type=ModelContent) if "model" in tree else None
         theirs = True

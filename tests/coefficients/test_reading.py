@@ -5,6 +5,7 @@ import json
 import os
 import socket
 import sys
+import time
 from pathlib import Path
 
 import pytest
@@ -136,3 +137,13 @@ def test_problems_of_different_kinds_come_all_at_once() -> None:
         "/model/predictors/1/label",
         "/model/documentation",
     }
+
+
+def test_a_file_full_of_problems_is_answered_soon_and_with_the_first_of_them() -> None:
+    tree = tree_of(tiny_logit_model())
+    tree["model"].update({f"titel{number}": number for number in range(150_000)})
+    begun = time.perf_counter()
+    found = refusals(tree)
+    assert time.perf_counter() - begun < 20
+    assert len(found) == 501
+    assert "these are the first 500" in found[""]

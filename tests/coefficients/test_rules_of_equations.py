@@ -43,6 +43,9 @@ def test_a_printed_interval_is_in_order_and_on_its_scale() -> None:
     interval = {"scale": "ratio", "level": 0.95, "lower": -0.5, "upper": 2}
     only_said(LOGIT, f"{path}/lower", "a ratio is more than 0", (path, interval))
     only_said(LOGIT, path, "must be less than upper", (path, {**interval, "lower": 3}))
+    only_said(LOGIT, path, "lies outside its own interval", (path, {**interval, "lower": 1.1}))  # exp(0.06) is 1.06
+    assert refusals(changed(LOGIT, (path, {**interval, "lower": 1.01}))) == {}
+    assert refusals(changed(LOGIT, (path, {**interval, "scale": "link"}))) == {}
 
 
 def test_there_are_at_most_five_hundred_terms() -> None:

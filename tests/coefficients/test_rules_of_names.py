@@ -155,6 +155,7 @@ def test_problems_of_several_rules_come_all_at_once() -> None:
         f"{E0}/terms/0/product/0/of",
         f"{E1}/horizons/0/baseline_survival",
         "/model/recalibrations/0",
+        "/model/worked_examples/1",  # it is for the 10 years that the recalibration was
         f"{W0}/probability",
     }
 

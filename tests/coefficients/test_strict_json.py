@@ -68,7 +68,9 @@ def test_numbers_that_json_does_not_know_are_refused_where_they_stand(letters: s
         ("1e999", "1e999 is too large to be a number at all"),
         ("-1e999", "too large to be a number at all"),
         ("9007199254740992", "beyond 9007199254740991 (2^53 − 1)"),
-        ("9" * 5000, "too large to be a number at all"),
+        ("9" * 400, "too large to be a number at all"),
+        ("9" * 5000, "has 5000 characters; at most 400"),
+        ("0." + "1" * 1_000_000, "has 1000002 characters; at most 400"),
         ("1e16", "beyond 9007199254740991"),
     ],
 )

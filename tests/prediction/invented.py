@@ -24,7 +24,8 @@ def invent_precision(terms: int, seed: int = 2, estimated: tuple[int, ...] | Non
     rng = np.random.default_rng(seed)
     over = tuple(range(terms)) if estimated is None else estimated
     a = rng.normal(size=(len(over), len(over) + 3))
-    return Precision(over, np.linalg.cholesky(a @ a.T / 100), 0.01, tuple(rng.normal(size=len(over))))
+    root = np.asarray(np.linalg.cholesky(a @ a.T / 100), dtype=np.float64)
+    return Precision(over, root, 0.01, tuple(float(c) for c in rng.normal(size=len(over))))
 
 
 def invent_line(link: Link, terms: int, band: Precision | Draws | None = None, lp0: float = -2.0) -> Line:

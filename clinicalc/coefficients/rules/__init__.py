@@ -50,7 +50,8 @@ RULES: tuple[Rule, ...] = (
 )
 
 
-def check_model(model: ModelContent) -> tuple[Problem, ...]:
-    """Every problem of a model whose shape is right, in the order of the rules; empty when it may be used."""
+def check_model(model: ModelContent) -> Iterator[Problem]:
+    """Every problem of a model whose shape is right, in the order of the rules; none when it may be used."""
     names = list_names(model)
-    return tuple(problem for rule in RULES for problem in rule(model, names))
+    for rule in RULES:
+        yield from rule(model, names)

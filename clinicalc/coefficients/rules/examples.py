@@ -12,6 +12,7 @@ from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.coverage import select_equations
 from clinicalc.coefficients.rules.horizons import check_span_known
 from clinicalc.coefficients.schema import ChoicePredictor, Equation, ModelContent, NoBand, WorkedExample
+from clinicalc.coefficients.spans import span_of
 from clinicalc.errors import Problem
 
 WIDEST_TOLERANCE = 0.02
@@ -134,5 +135,8 @@ def _check_recalibration(example: WorkedExample, base: str, model: ModelContent)
     known = [recalibration.id for recalibration in model.recalibrations]
     if isinstance(name, str) and name not in known:
         yield Problem(point(base, "recalibration"), f"there is no recalibration {quoted(name)}.{suggest(name, known)}")
+    for recalibration in model.recalibrations:
+        if recalibration.id == name and span_of(recalibration) != span_of(example):
+            yield Problem(base, f"the recalibration {quoted(name)} is for another time span than this example.")
     if not isinstance(name, str) and model.recalibration_required and known:
         yield Problem(base, "the model gives no number without a recalibration, so its examples must name one.")

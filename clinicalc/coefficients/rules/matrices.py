@@ -3,6 +3,7 @@
 import numpy as np
 from numpy.typing import NDArray
 
+from clinicalc.coefficients.pointers import quoted
 from clinicalc.coefficients.schema import Matrix
 
 SYMMETRY = 1e-8
@@ -38,7 +39,7 @@ def _judge_numbers(values: NDArray[np.float64]) -> str:
     smallest = float(np.linalg.eigvalsh((scaled + scaled.T) / 2)[0])
     if smallest <= len(values) * np.finfo(np.float64).eps:
         return (
-            f"the matrix is not positive definite (smallest eigenvalue on the correlation scale {smallest:.3g}). Was "
-            "it rounded too much, or are two terms the same?"
+            "the matrix is not positive definite: its smallest eigenvalue on the correlation scale is "
+            f"{quoted(round(smallest, 12))}. Was it rounded too much, or are two terms the same?"
         )
     return ""

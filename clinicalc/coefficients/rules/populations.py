@@ -87,7 +87,7 @@ def _check_correlations(population: Population, path: str) -> Iterator[Problem]:
 
 
 def _check_answers(population: Population, base: str) -> Iterator[Problem]:
-    known = [number.id for number in population.numbers]
+    known = {number.id for number in population.numbers}
     for index, row in enumerate(population.yes_no):
         for name in row.coefficients:
             if name not in known:
@@ -95,7 +95,7 @@ def _check_answers(population: Population, base: str) -> Iterator[Problem]:
                     point(base, index, "coefficients", name),
                     f"{quoted(name)} is no number of the population nor a question before this.{suggest(name, known)}",
                 )
-        known.append(row.id)
+        known.add(row.id)
 
 
 def _judge_shares(choice: PopulationChoice, names: Catalogue) -> str:

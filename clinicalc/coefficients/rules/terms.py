@@ -1,5 +1,6 @@
 """Terms and the steps that turn a value into what a coefficient multiplies."""
 
+import math
 from collections.abc import Iterator
 from itertools import pairwise
 
@@ -55,18 +56,28 @@ def _check_term(term: Term, base: str, names: Catalogue) -> Iterator[Problem]:
         both = "both stand here" if not isinstance(term.product, UnsetType) else "neither stands here"
         yield Problem(base, f'a term has either "product" or "sum"; {both}.')
     if not isinstance(term.interval, UnsetType):
-        yield from _check_interval(term.interval, point(base, "interval"))
+        yield from _check_interval(term.interval, term.coefficient, point(base, "interval"))
     for path, product in products_of(term, base):
         for index, factor in enumerate(product):
             yield from _check_factor(factor, point(path, index), names)
 
 
-def _check_interval(interval: Interval, path: str) -> Iterator[Problem]:
-    if interval.lower >= interval.upper:
-        yield Problem(path, f"lower ({quoted(interval.lower)}) must be less than upper ({quoted(interval.upper)}).")
-    if interval.scale == "ratio" and interval.lower <= 0:
+def _check_interval(interval: Interval, coefficient: float, path: str) -> Iterator[Problem]:
+    low, high = interval.lower, interval.upper
+    if low >= high:
+        yield Problem(path, f"lower ({quoted(low)}) must be less than upper ({quoted(high)}).")
+        return
+    if interval.scale == "ratio":
+        if low <= 0:
+            slip = 'a ratio is more than 0. If these are limits of the coefficient, say "link".'
+            yield Problem(point(path, "lower"), slip)
+            return
+        low, high = math.log(low), math.log(high)
+    if not low <= coefficient <= high:
         yield Problem(
-            point(path, "lower"), 'a ratio is more than 0. If these are limits of the coefficient, say "link".'
+            path,
+            f"the coefficient {quoted(coefficient)} lies outside its own interval, {low:.4g} to {high:.4g} on the link "
+            "scale. One of the three figures is mistyped, or the scale is the other one.".replace("-", "−"),
         )
 
 

@@ -1,0 +1,111 @@
+"""The bar that says which model answers: title, version, fingerprint, state, and the choices the file offers."""
+
+from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
+
+from clinicalc.assessment.model import Model
+from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.gui.chooser import FramedChooser
+from clinicalc.gui.entry_state import EntryState
+from clinicalc.gui.labels import make_button, make_label, make_line
+from clinicalc.gui.tokens import RING, SIDE_MARGIN
+from clinicalc.gui.typeface import CAPTION, VALUE
+
+_HEIGHT = 62
+_TITLE_WIDTH = 322
+_NOT_CHOSEN = "Choose…"
+_AS_PUBLISHED = "None: as published"
+
+
+class Cell(QWidget):
+    """A caption and, under it, one line or one chooser."""
+
+    def __init__(self, caption: str, inside: QWidget | None = None) -> None:
+        super().__init__()
+        self.value = make_line()
+        self.caption = make_line(caption, CAPTION, soft=True)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 10, 0, 0)
+        column.setSpacing(2 if inside is None else -2)
+        column.addWidget(self.caption)
+        column.addWidget(inside or self.value)
+        column.addStretch(1)
+        if inside is not None:
+            self.caption.setContentsMargins(RING, 0, 0, 0)
+
+
+class ModelBar(QWidget):
+    """Reads the model from the state, and writes the choices about it back; a choice is never made for anybody."""
+
+    def __init__(self, state: EntryState) -> None:
+        super().__init__()
+        self._state = state
+        self.setFixedHeight(_HEIGHT)
+        self.setObjectName("ground")
+        self.open_button = make_button("&Open file…")
+        self.title = make_label("", VALUE, semibold=True)
+        self.version, self.fingerprint, self.vetting = Cell("Version"), Cell("Fingerprint"), Cell("State")
+        self.horizon, self.recalibration = FramedChooser(104), FramedChooser(176)
+        self.horizon_cell = Cell("Horizon", self.horizon)
+        self.recalibration_cell = Cell("Recalibration", self.recalibration)
+        self.horizon.chooser.setAccessibleName("Horizon")
+        self.recalibration.chooser.setAccessibleName("Recalibration")
+        self._cells = (self.version, self.fingerprint, self.vetting, self.horizon_cell, self.recalibration_cell)
+        row = QHBoxLayout(self)
+        row.setContentsMargins(SIDE_MARGIN, 0, SIDE_MARGIN, 0)
+        row.setSpacing(24)
+        self.title.setMaximumWidth(_TITLE_WIDTH)
+        row.addWidget(self.title, 20)
+        for cell in self._cells:
+            row.addWidget(cell)
+            cell.hide()
+        row.addStretch(1)
+        row.addWidget(self.open_button)
+        self.horizon.chooser.activated.connect(self._choose_horizon)
+        self.recalibration.chooser.activated.connect(self._choose_recalibration)
+        self.horizon.chooser.entered.connect(self.focusNextChild)
+        self.recalibration.chooser.entered.connect(self.focusNextChild)
+        state.model_changed.connect(self._take_model)
+
+    def _take_model(self) -> None:
+        model = self._state.model
+        if model is None:
+            return
+        self.title.setText(model.content.title)
+        self.version.value.setText(model.content.version)
+        self.fingerprint.value.setText(group_fingerprint(model.fingerprint, 3))
+        self.vetting.value.setText("Not vetted")
+        for cell in (self.version, self.fingerprint, self.vetting):
+            cell.show()
+        self._offer_horizons(model)
+        self._offer_recalibrations(model)
+
+    def _offer_horizons(self, model: Model) -> None:
+        chooser = self.horizon.chooser
+        chooser.clear()
+        chooser.addItem(_NOT_CHOSEN)
+        for span in model.spans:
+            chooser.addItem(span.words)
+        chooser.setCurrentIndex(0 if self._state.span is None else model.spans.index(self._state.span) + 1)
+        self.horizon_cell.setVisible(len(model.spans) > 1)
+
+    def _offer_recalibrations(self, model: Model) -> None:
+        span = self._state.span
+        offered = () if span is None else model.recalibrations_at(span)
+        chooser = self.recalibration.chooser
+        chooser.clear()
+        chooser.addItem(_NOT_CHOSEN if model.content.recalibration_required else _AS_PUBLISHED)
+        for recalibration in offered:
+            chooser.addItem(recalibration.label, recalibration.id)
+        chooser.setCurrentIndex(max(0, chooser.findData(self._state.recalibration) if self._state.recalibration else 0))
+        self.recalibration_cell.setVisible(bool(offered))
+
+    def _choose_horizon(self, place: int) -> None:
+        model = self._state.model
+        if model is None:
+            return
+        self._state.choose_span(None if place == 0 else model.spans[place - 1])
+        self._offer_recalibrations(model)
+
+    def _choose_recalibration(self, place: int) -> None:
+        id = self.recalibration.chooser.itemData(place)
+        self._state.choose_recalibration(None if id is None else str(id))

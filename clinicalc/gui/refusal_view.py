@@ -1,0 +1,50 @@
+"""A coefficient file that is refused: every problem as plain text that can be copied."""
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import QHBoxLayout, QPlainTextEdit, QVBoxLayout, QWidget
+
+from clinicalc.errors import ClinicalcError, CoefficientFileRefused
+from clinicalc.gui.labels import make_button, make_label
+from clinicalc.gui.typeface import BASE, TITLE, face
+
+
+class RefusalView(QWidget):
+    """Covers the patient page, so that no number stands beside a file that it does not belong to."""
+
+    closed = Signal()
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setObjectName("sheet")
+        self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
+        self.title = make_label("", TITLE, semibold=True)
+        self.explanation = make_label("Nothing was taken from it. Correct the file or open another one.")
+        self.problems = QPlainTextEdit()
+        self.problems.setReadOnly(True)
+        self.problems.setFont(face(BASE))
+        self.problems.setTabChangesFocus(True)
+        self.problems.setAccessibleName("Problems of the file")
+        self.problems.setTextInteractionFlags(
+            Qt.TextInteractionFlag.TextSelectableByMouse | Qt.TextInteractionFlag.TextSelectableByKeyboard
+        )
+        self.back = make_button("&Back")
+        self.back.clicked.connect(self.closed)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(32, 24, 28, 20)
+        column.setSpacing(12)
+        column.addWidget(self.title)
+        column.addWidget(self.explanation)
+        column.addWidget(self.problems, 1)
+        row = QHBoxLayout()
+        row.addWidget(self.back)
+        row.addStretch(1)
+        column.addLayout(row)
+
+    def show_refusal(self, name: str, error: ClinicalcError) -> None:
+        """Show why the file called `name` was not opened."""
+        self.title.setText(f"{name} was not opened")
+        if isinstance(error, CoefficientFileRefused):
+            self.problems.setPlainText("\n\n".join(str(problem) for problem in error.problems))
+        else:
+            self.problems.setPlainText(str(error))
+        self.problems.setFocus(Qt.FocusReason.OtherFocusReason)
