@@ -2,6 +2,7 @@
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from datetime import datetime
 from pathlib import Path
 from typing import TypeVar
 
@@ -47,11 +48,11 @@ def case_options(command: _Command) -> _Command:
     return command
 
 
-def assess_case(words: CaseWords) -> Assessment:
-    """The assessment asked for. Raises UsageError or CoefficientFileRefused."""
+def assess_case(words: CaseWords, at: datetime | None = None) -> Assessment:
+    """The assessment asked for, as of `at` or now. Raises UsageError or CoefficientFileRefused."""
     level = check_level(words.level)
     model = open_model(Path(words.file))
     span = choose_span(model, years=words.years, time=words.time)
     recalibration = choose_recalibration(model, span, words.recalibration)
     entry = take_texts(model, words.values, words.label)
-    return assess_patient(model, entry, span=span, recalibration=recalibration, level=level)
+    return assess_patient(model, entry, span=span, recalibration=recalibration, level=level, at=at)

@@ -96,4 +96,5 @@ def advance(transform: Transform, interval: Interval) -> Interval:
 
 
 def _closed(interval: Interval) -> Interval:
-    return Interval(max(interval.low, -_FARTHEST), min(interval.high, _FARTHEST))
+    low = interval.low if isfinite(interval.low) else -_FARTHEST
+    return Interval(low, interval.high if isfinite(interval.high) else _FARTHEST)

@@ -101,13 +101,16 @@ def restricted_cubic(x: Column, knots: tuple[float, ...], basis: int) -> Column:
     first, inner, last = knots[0], knots[-2], knots[-1]
     at = knots[basis - 1]
     scale = (last - first) * (last - first)
+    # a straight line from the last knot on, written as one: as a difference of cubes it would lose its digits far out
+    slope = 3.0 * (last - at) * (inner - at) / scale
+    within = np.minimum(x, last)
 
     def cubed(knot: float) -> Column:
-        over = np.maximum(x - knot, 0.0)
+        over = np.maximum(within - knot, 0.0)
         return over * over * over
 
-    tail = cubed(inner) * ((last - at) / (last - inner)) - cubed(last) * ((inner - at) / (last - inner))
-    return _as_column((cubed(at) - tail) / scale)
+    curve = (cubed(at) - cubed(inner) * ((last - at) / (last - inner))) / scale
+    return _as_column(curve + slope * np.maximum(x - last, 0.0))
 
 
 def round_significant(x: Column, digits: int = CUT_DIGITS) -> Column:

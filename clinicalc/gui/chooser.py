@@ -1,5 +1,7 @@
 """A flat drop-down chooser that stands inside a field frame."""
 
+from collections.abc import Sequence
+
 from PySide6.QtCore import QPointF, QRect, Qt, Signal
 from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen, QWheelEvent
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QSizePolicy
@@ -23,6 +25,22 @@ class Chooser(QComboBox):
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.setMinimumContentsLength(1)
         self.setSizeAdjustPolicy(QComboBox.SizeAdjustPolicy.AdjustToMinimumContentsLengthWithIcon)
+
+    def show_place(self, place: int) -> None:
+        """Show an entry without telling anybody; every other change of the entry is somebody's choice."""
+        blocked = self.blockSignals(True)
+        self.setCurrentIndex(place)
+        self.blockSignals(blocked)
+        self.update()
+
+    def offer(self, entries: Sequence[tuple[str, str | None]], place: int) -> None:
+        """Replace all entries (text, data) and show one of them, without telling anybody."""
+        blocked = self.blockSignals(True)
+        self.clear()
+        for text, data in entries:
+            self.addItem(text, data)
+        self.blockSignals(blocked)
+        self.show_place(place)
 
     def wheelEvent(self, event: QWheelEvent) -> None:
         """Leave the wheel to the pane."""

@@ -75,12 +75,12 @@ def make_rule() -> QFrame:
 class Heading(QWidget):
     """A small heading with a rule to the right edge, and room for a caption at the very right."""
 
-    def __init__(self, text: str, caption: str = "") -> None:
+    def __init__(self, text: str, caption: str = "", *, inset: int = 0) -> None:
         super().__init__()
         self.label = make_line(text, CAPTION, semibold=True)
         self._caption = make_line(caption, CAPTION, soft=True)
         row = QHBoxLayout(self)
-        row.setContentsMargins(0, 0, 0, 0)
+        row.setContentsMargins(0, 0, inset, 0)
         row.setSpacing(10)
         row.addWidget(self.label)
         row.addWidget(make_rule(), 1)

@@ -11,6 +11,7 @@ from clinicalc.gui.tokens import RING, SIDE_MARGIN
 from clinicalc.gui.typeface import CAPTION, VALUE
 
 _HEIGHT = 62
+_TIGHT_CAPTION = 15
 _TITLE_WIDTH = 322
 _NOT_CHOSEN = "Choose…"
 _AS_PUBLISHED = "None: as published"
@@ -25,12 +26,13 @@ class Cell(QWidget):
         self.caption = make_line(caption, CAPTION, soft=True)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 10, 0, 0)
-        column.setSpacing(2 if inside is None else -2)
+        column.setSpacing(2 if inside is None else 0)
         column.addWidget(self.caption)
         column.addWidget(inside or self.value)
         column.addStretch(1)
         if inside is not None:
             self.caption.setContentsMargins(RING, 0, 0, 0)
+            self.caption.setFixedHeight(_TIGHT_CAPTION)
 
 
 class ModelBar(QWidget):
@@ -60,8 +62,8 @@ class ModelBar(QWidget):
             cell.hide()
         row.addStretch(1)
         row.addWidget(self.open_button)
-        self.horizon.chooser.activated.connect(self._choose_horizon)
-        self.recalibration.chooser.activated.connect(self._choose_recalibration)
+        self.horizon.chooser.currentIndexChanged.connect(self._choose_horizon)
+        self.recalibration.chooser.currentIndexChanged.connect(self._choose_recalibration)
         self.horizon.chooser.entered.connect(self.focusNextChild)
         self.recalibration.chooser.entered.connect(self.focusNextChild)
         state.model_changed.connect(self._take_model)
@@ -80,23 +82,19 @@ class ModelBar(QWidget):
         self._offer_recalibrations(model)
 
     def _offer_horizons(self, model: Model) -> None:
-        chooser = self.horizon.chooser
-        chooser.clear()
-        chooser.addItem(_NOT_CHOSEN)
-        for span in model.spans:
-            chooser.addItem(span.words)
-        chooser.setCurrentIndex(0 if self._state.span is None else model.spans.index(self._state.span) + 1)
+        entries = [(_NOT_CHOSEN, None), *((span.words, None) for span in model.spans)]
+        place = 0 if self._state.span is None else model.spans.index(self._state.span) + 1
+        self.horizon.chooser.offer(entries, place)
         self.horizon_cell.setVisible(len(model.spans) > 1)
 
     def _offer_recalibrations(self, model: Model) -> None:
         span = self._state.span
         offered = () if span is None else model.recalibrations_at(span)
-        chooser = self.recalibration.chooser
-        chooser.clear()
-        chooser.addItem(_NOT_CHOSEN if model.content.recalibration_required else _AS_PUBLISHED)
-        for recalibration in offered:
-            chooser.addItem(recalibration.label, recalibration.id)
-        chooser.setCurrentIndex(max(0, chooser.findData(self._state.recalibration) if self._state.recalibration else 0))
+        nothing = _NOT_CHOSEN if model.content.recalibration_required else _AS_PUBLISHED
+        ids = [None, *(recalibration.id for recalibration in offered)]
+        words = [nothing, *(recalibration.label for recalibration in offered)]
+        place = ids.index(self._state.recalibration) if self._state.recalibration in ids else 0
+        self.recalibration.chooser.offer(list(zip(words, ids, strict=True)), place)
         self.recalibration_cell.setVisible(bool(offered))
 
     def _choose_horizon(self, place: int) -> None:

@@ -36,6 +36,8 @@ class NumberFace(QWidget):
 
     def clear(self) -> None:
         """Show the empty seats."""
+        if not self._figure:  # painted so already; a paint that failed must not ask for the next one
+            return
         self._figure = ""
         self.setAccessibleName("No number")
         self.update()

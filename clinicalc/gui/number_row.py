@@ -54,8 +54,7 @@ class ValueFrame(FieldFrame):
         row.setSpacing(0)
         self.watch(self.edit)
         if self.chooser is not None:
-            for code in units:
-                self.chooser.addItem(unit_of(code).spelling, code)
+            self.chooser.offer([(unit_of(code).spelling, code) for code in units], units.index(unit))
             self.watch(self.chooser)
             self.edit.setFixedWidth(VALUE_WIDTH - 4)
             row.addWidget(self.edit)
@@ -95,7 +94,8 @@ class NumberRow(FieldRow):
         self.label = make_field_label(marked_label, field.label, self.edit)
         self.remark = make_label("", CAPTION, soft=True)
         self.offer = make_button("", name="offer", pixels=UNIT)
-        self.offer.hide()
+        self._offer_place = QWidget()
+        self._offer_place.hide()
         if field.meaning:
             self.edit.setAccessibleDescription(field.meaning)
         self._lay_out()
@@ -123,7 +123,7 @@ class NumberRow(FieldRow):
             self.offer.setText(f"&Use {words}")
             self.offer.setAccessibleName(f"{self._field.label}: use {words}")
         had_focus = self.offer.hasFocus()
-        self.offer.setVisible(bool(self._offer))
+        self._offer_place.setVisible(bool(self._offer))
         if had_focus and not self._offer:
             self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
         self._line = line
@@ -132,13 +132,14 @@ class NumberRow(FieldRow):
     def fit(self, room: int, *, compact: bool) -> None:
         """Compact: remark or offer under the frame, and no range."""
         self._compact = compact
-        self.remark.setContentsMargins(RING if compact else 0, 0, 0, 0)
+        for widget in (self.remark, self._offer_place):
+            widget.setContentsMargins(RING if compact else 0, 0, 0, 0)
         self.offer.setMinimumWidth(FRAME_WIDTH if compact else 0)
-        for widget in (self.remark, self.offer):
+        for widget in (self.remark, self._offer_place):
             self._grid.removeWidget(widget)
         place = (1, 1, 1, 2) if compact else (0, 2, 1, 1)
         self._grid.addWidget(self.remark, *place)
-        self._grid.addWidget(self.offer, *place, Qt.AlignmentFlag.AlignLeft)
+        self._grid.addWidget(self._offer_place, *place, Qt.AlignmentFlag.AlignLeft)
         self._show_remark()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
@@ -148,6 +149,9 @@ class NumberRow(FieldRow):
 
     def _lay_out(self) -> None:
         self._compact = False
+        beside = QHBoxLayout(self._offer_place)
+        beside.setContentsMargins(0, 0, 0, 0)
+        beside.addWidget(self.offer)
         self._grid = QGridLayout(self)
         self._grid.setContentsMargins(0, 0, 0, 0)
         self._grid.setHorizontalSpacing(COLUMN_GAP)
@@ -156,7 +160,7 @@ class NumberRow(FieldRow):
         self._grid.addWidget(self.label, 0, 0)
         self._grid.addWidget(self.frame, 0, 1)
         self._grid.addWidget(self.remark, 0, 2)
-        self._grid.addWidget(self.offer, 0, 2, Qt.AlignmentFlag.AlignLeft)
+        self._grid.addWidget(self._offer_place, 0, 2, Qt.AlignmentFlag.AlignLeft)
 
     def _connect(self) -> None:
         self.edit.textChanged.connect(self._take_text)
@@ -165,7 +169,7 @@ class NumberRow(FieldRow):
         self.offer.clicked.connect(self._take_offer)
         if self.frame.chooser is not None:
             self.frame.chooser.setAccessibleName(f"{self._field.label}, unit")
-            self.frame.chooser.activated.connect(self._take_unit)
+            self.frame.chooser.currentIndexChanged.connect(self._take_unit)
             self.frame.chooser.entered.connect(self.entered)
 
     def _take_text(self, text: str) -> None:
@@ -213,7 +217,7 @@ class NumberRow(FieldRow):
 
     def _show_unit(self) -> None:
         if self.frame.chooser is not None:
-            self.frame.chooser.setCurrentIndex(self.frame.chooser.findData(self._held.unit))
+            self.frame.chooser.show_place(self.frame.chooser.findData(self._held.unit))
 
     def _remark_words(self, line: ValueLine | None) -> str:
         if self._held.remark:

@@ -107,8 +107,8 @@ def make_style_sheet(tokens: Tokens) -> str:
     QPushButton#primary:enabled:focus {{ border: 2px solid {t.ink}; }}
     QPushButton#offer {{ padding: 0 8px; min-height: 26px; border-color: {t.ink}; }}
     QPushButton#offer:focus {{ border: 2px solid {t.accent}; padding: 0 7px; min-height: 24px; }}
-    QScrollBar:vertical {{ background: transparent; width: 12px; margin: 0; }}
-    QScrollBar::handle:vertical {{ background: {t.edge}; border-radius: 3px; min-height: 32px; margin: 2px 3px; }}
+    QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
+    QScrollBar::handle:vertical {{ background: {t.edge}; border-radius: 2px; min-height: 32px; margin: 3px; }}
     QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page
                    {{ background: none; border: none; height: 0; }}
     QComboBox QAbstractItemView {{ background: {t.field}; color: {t.ink}; border: 1px solid {t.edge};

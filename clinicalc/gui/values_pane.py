@@ -135,14 +135,14 @@ class ValuesPane(QScrollArea):
             content = list(members)
             if group:
                 ranged = any(isinstance(f, NumberField) and f.derivation != (None, None) for f in content)
-                heading = Heading(group, "derivation range" if ranged and not self._age_heading else "")
+                heading = Heading(group, "derivation range" if ranged and not self._age_heading else "", inset=RING)
                 self._age_heading += [heading] if ranged else []
                 column.addSpacing(6)
                 column.addWidget(heading)
             for field in content:
                 column.addWidget(self._add_row(field, labels[field.id]))
         column.addSpacing(6)
-        column.addWidget(Heading("For the print only"))
+        column.addWidget(Heading("For the print only", inset=RING))
         self.label_row = LabelRow(marked[-1])
         self.label_row.edit.textChanged.connect(self._state.type_label)
         self.label_row.edit.returnPressed.connect(self.left_last)

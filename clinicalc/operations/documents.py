@@ -3,7 +3,9 @@
 from pathlib import Path
 
 from clinicalc.assessment.result import Assessment
-from clinicalc.report import save_report
+from clinicalc.report import save_report, time_of_printing
+
+__all__ = ["save_pdf", "suggest_pdf_name", "time_of_printing"]
 
 
 def save_pdf(path: Path, assessment: Assessment, *, practice: str = "") -> None:

@@ -6,6 +6,6 @@ control character) instead of printing a box, and it leaves no half-written file
 """
 
 from clinicalc.report.attachment import read_attached_record
-from clinicalc.report.pdf import make_report, save_report
+from clinicalc.report.pdf import make_report, save_report, time_of_printing
 
-__all__ = ["make_report", "read_attached_record", "save_report"]
+__all__ = ["make_report", "read_attached_record", "save_report", "time_of_printing"]

@@ -111,17 +111,18 @@ def _handled(assessment: Assessment) -> str:
 
 
 def _result_facts(assessment: Assessment) -> list[Fact]:
-    span = assessment.span
-    facts = [Fact("Horizon", (span.words if span else "not chosen",), strong=span is not None)]
-    if assessment.estimate is not None:
-        facts.insert(0, _probability(assessment.estimate))
-        facts.append(_band(assessment.level, assessment.estimate))
-    return [*facts, _recalibration(assessment)]
-
-
-def _probability(estimate: Estimate) -> Fact:
-    """The large number again in the size of the text: its name, and what a program reads back as one word."""
-    return Fact("Probability", (percent(estimate.probability, estimate.complement),), strong=True)
+    """The number in words, its band and its recalibration; the horizon alone where there is no number."""
+    estimate, span = assessment.estimate, assessment.span
+    if estimate is None or span is None:
+        horizon = Fact("Horizon", (span.words if span else "not chosen",), strong=span is not None)
+        return [horizon, _recalibration(assessment)]
+    # the large number is two texts to a program that reads the page; here it is one, with its horizon
+    number = f"{percent(estimate.probability, estimate.complement)} within {span.words}"
+    return [
+        Fact("Probability", (number,), strong=True),
+        _band(assessment.level, estimate),
+        _recalibration(assessment),
+    ]
 
 
 def _band(level: float, estimate: Estimate) -> Fact:

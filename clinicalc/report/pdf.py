@@ -33,7 +33,8 @@ def make_report(assessment: Assessment, *, practice: str = "", printed_at: datet
     lettering = read_lettering()
     _check_name(lettering, assessment.label.strip(), "The patient label")
     _check_name(lettering, practice.strip(), "The practice name")
-    moment = printed_at or _time_of_printing()
+    now = time_of_printing()  # asked for in any case: the PDF library reads the same variable
+    moment = printed_at or now
     sheet = compose(assessment, practice=practice, printed_at=moment)
     for text in _texts(sheet):
         check_text(lettering, text, f"A text on the print, from {assessment.model.name} or as typed,")
@@ -83,7 +84,11 @@ def _check_name(lettering: Lettering, text: str, what: str) -> None:
         )
 
 
-def _time_of_printing() -> datetime:
+def time_of_printing() -> datetime:
+    """Now, or the time in SOURCE_DATE_EPOCH (seconds) for prints that must come out the same again.
+
+    Raises UsageError when that is not a time.
+    """
     stated = os.environ.get("SOURCE_DATE_EPOCH", "").strip()
     if not stated:
         return datetime.now().astimezone()

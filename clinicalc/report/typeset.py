@@ -122,13 +122,14 @@ def _section(lettering: Lettering, section: Section) -> list[Strip]:
         ),
         keep=True,
     )
-    body = [strip for block in section.blocks for strip in _block(lettering, block)]
+    body = [strip for block in section.blocks for strip in set_block(lettering, block)]
     strips = [Strip(14, keep=True), heading, *body]
     whole = section.whole and sum(strip.height for strip in strips) <= HIGHEST_WHOLE
     return [*(replace(strip, keep=True) for strip in strips[:-1]), strips[-1]] if whole else strips
 
 
-def _block(lettering: Lettering, block: Block) -> list[Strip]:
+def set_block(lettering: Lettering, block: Block) -> list[Strip]:
+    """One block as strips."""
     match block:
         case FactList():
             return _facts(lettering, block)
@@ -179,7 +180,7 @@ def _table(lettering: Lettering, table: Table) -> list[Strip]:
     captions = [set_lines(lettering, c.heading, c.left, c.width, CAPTION) for c in table.columns]
     head = [*_beside(captions), Strip(2.5, (_ruled(1.0),))]
     head = [replace(strip, keep=True) for strip in head]
-    strips = list(head)
+    strips, ends = list(head), []
     for row in table.rows:
         cells = [
             set_lines(lettering, cell, column.left, column.width, STRONG if column.strong else PLAIN)
@@ -187,6 +188,9 @@ def _table(lettering: Lettering, table: Table) -> list[Strip]:
         ]
         lines = [Strip(2.5), *_beside(cells), Strip(3.0, (_ruled(2.5),))]
         strips += [replace(strip, head=tuple(head)) for strip in _whole(lines)]
+        ends.append(len(strips) - 1)
+    if len(ends) > 2:
+        strips[ends[-2]] = replace(strips[ends[-2]], keep=True)  # the last row never goes over alone
     return strips
 
 
@@ -205,13 +209,24 @@ def _signature(block: Signature) -> Strip:
 
 
 def _beside(columns: Sequence[Sequence[Strip]]) -> list[Strip]:
-    """Columns of strips laid side by side, line by line; the highest strip gives the height."""
-    merged = []
-    for place in range(max(len(column) for column in columns)):
-        across = [column[place] for column in columns if place < len(column)]
-        shapes = tuple(shape for strip in across for shape in strip.shapes if not _is_empty(shape))
-        merged.append(Strip(max(strip.height for strip in across), shapes))
-    return merged
+    """Columns side by side: one strip that is read column by column, or where they are long one strip a line."""
+    rows = max(len(column) for column in columns)
+    if rows <= LONGEST_WHOLE:
+        return [_joined(columns)]
+    return [_joined([column[place : place + 1] for column in columns]) for place in range(rows)]
+
+
+def _joined(columns: Sequence[Sequence[Strip]]) -> Strip:
+    """All strips of all columns as one, the highest column giving the height."""
+    shapes: list[Shape] = []
+    height = 0.0
+    for column in columns:
+        y = 0.0
+        for strip in column:
+            shapes += [shape.moved(0, y) for shape in strip.shapes if not _is_empty(shape)]
+            y += strip.height
+        height = max(height, y)
+    return Strip(height, tuple(shapes))
 
 
 def _is_empty(shape: Shape) -> bool:

@@ -82,3 +82,18 @@ def test_the_entry_point_leaves_with_the_status_and_clean_streams(tmp_path: Path
     assert run.returncode == 3
     assert run.stderr == ""
     assert '"probability": null' in run.stdout
+
+
+def test_prints_come_out_the_same_again_under_a_stated_time(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setenv("SOURCE_DATE_EPOCH", "1790000000")
+    prints = [tmp_path / "first.pdf", tmp_path / "second.pdf"]
+    for pdf in prints:
+        assert call("report", LIPIDS, *WOMAN_61, "--out", str(pdf)).status == 0
+    assert prints[0].read_bytes() == prints[1].read_bytes()
+
+
+def test_a_stated_time_that_is_none_is_refused(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setenv("SOURCE_DATE_EPOCH", "yesterday")
+    ended = call("report", LIPIDS, *WOMAN_61, "--out", str(tmp_path / "print.pdf"))
+    assert (ended.status, ended.out) == (2, "")
+    assert "SOURCE_DATE_EPOCH" in ended.err

@@ -29,9 +29,10 @@ LEAVES = st.one_of(
     st.text(max_size=20),
     st.sampled_from(["age", "sex", "female", "yes", "logit", "number", "10", "", "1", "mg/dL", "\ud800", "\u202e"]),
 )
+KEYS = st.text(st.characters(exclude_characters="/"), max_size=8)  # places are named by pointers here
 JSON = st.recursive(
     LEAVES,
-    lambda inner: st.lists(inner, max_size=4) | st.dictionaries(st.text(max_size=8), inner, max_size=4),
+    lambda inner: st.lists(inner, max_size=4) | st.dictionaries(KEYS, inner, max_size=4),
     max_leaves=20,
 )
 

@@ -61,6 +61,17 @@ def test_straight_outside_the_knots() -> None:
         assert above == pytest.approx(above[0] + slope * np.array([0, 1, 2, 100]), rel=1e-11)
 
 
+def test_far_outside_no_digit_is_lost() -> None:
+    """The slope beyond the last knot kK is 3 (kK - kj) (kK-1 - kj) / (kK - k1)^2.
+
+    As a difference of cubes the two come out as 4e18 and 0 in place of 1.5e12 and 8.3e11.
+    """
+    for basis, slope in ((1, 3 * 6 * 3 / 36), (2, 3 * 5 * 2 / 36)):
+        assert restricted_cubic(np.array([1e12]), (1.0, 2.0, 4.0, 7.0), basis)[0] == pytest.approx(
+            1e12 * slope, rel=1e-11
+        )
+
+
 def test_in_the_unit_of_its_variable() -> None:
     """Knots and values a thousand times larger give a column a thousand times larger."""
     x, knots = np.linspace(0, 10, 41), (1.0, 3.0, 6.0, 9.0)

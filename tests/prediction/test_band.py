@@ -163,6 +163,21 @@ def test_recalibration_adds_to_the_models_variance() -> None:
     assert half_width(unknown) == pytest.approx(PIMA.slope * half_width(predict(line, columns)), rel=1e-12)
 
 
+def test_rounding_cannot_make_the_variance_negative() -> None:
+    """Intercept and slope all but the same figure, at the linear predictor where their errors cancel."""
+    rng = np.random.default_rng(6)
+    negative = 0
+    for s0, s1 in rng.uniform(0.01, 3, size=(300, 2)):
+        v00, v01, v11 = s0 * s0, -s0 * s1, s1 * s1
+        eta = s0 / s1
+        negative += v00 + 2 * v01 * eta + v11 * eta * eta < 0
+        known = Precision((0,), np.array([[1.0]]), 0.0, (eta,))
+        line = Line(TEN_YEARS, "logit", 0.0, (1.0,), known, "covariance")
+        width = half_width(predict(line, (np.array([eta]),), adjustment=Adjustment(0.0, 1.0, (v00, v01, v11))))
+        assert 0 <= width[0] < 1e-6
+    assert negative > 0  # the plain form does go below nought here
+
+
 # ---------------------------------------------------------------- whatever the figures
 
 FIGURE = st.floats(-1e3, 1e3)

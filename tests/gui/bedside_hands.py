@@ -1,0 +1,71 @@
+"""Typing and clicking as a person does, by field id."""
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QComboBox
+from pytestqt.qtbot import QtBot
+
+from clinicalc.gui.main_window import MainWindow
+from clinicalc.gui.number_row import NumberRow
+from clinicalc.gui.question_row import QuestionRow
+
+# the woman of 61 of D'Agostino et al., Circulation 2008;117:743-753 (case in the text; printed 10.5 %, from memory)
+NUMBERS_2008 = {"age": "61", "total_cholesterol": "180", "hdl_cholesterol": "47", "systolic_bp": "124"}
+ANSWERS_2008 = {"prior_cvd": "no", "sex": "female", "bp_treated": "no", "smoker": "yes", "diabetes": "no"}
+
+
+def number_row(window: MainWindow, id: str) -> NumberRow:
+    """The row of a value."""
+    row = window.values.rows[id]
+    assert isinstance(row, NumberRow)
+    return row
+
+
+def question_row(window: MainWindow, id: str) -> QuestionRow:
+    """The row of a question."""
+    row = window.values.rows[id]
+    assert isinstance(row, QuestionRow)
+    return row
+
+
+def type_number(qtbot: QtBot, window: MainWindow, id: str, text: str) -> None:
+    """Type after what stands in the field."""
+    edit = number_row(window, id).edit
+    edit.setFocus()
+    edit.end(False)
+    qtbot.keyClicks(edit, text)
+
+
+def retype_number(qtbot: QtBot, window: MainWindow, id: str, text: str) -> None:
+    """Replace what stands in the field, key by key."""
+    edit = number_row(window, id).edit
+    edit.setFocus()
+    qtbot.keyClick(edit, Qt.Key.Key_A, Qt.KeyboardModifier.ControlModifier)
+    qtbot.keyClick(edit, Qt.Key.Key_Delete)
+    qtbot.keyClicks(edit, text)
+
+
+def answer(qtbot: QtBot, window: MainWindow, id: str, option: str) -> None:
+    """Click one of the answers."""
+    segments = question_row(window, id).segments.segments
+    qtbot.mouseClick(next(s for s in segments if s.option.id == option), Qt.MouseButton.LeftButton)
+
+
+def choose_unit(window: MainWindow, id: str, code: str) -> None:
+    """Choose a unit in the chooser beside the value."""
+    chooser = unit_chooser(window, id)
+    chooser.setCurrentIndex(chooser.findData(code))
+
+
+def unit_chooser(window: MainWindow, id: str) -> QComboBox:
+    """The unit chooser of a value."""
+    chooser = number_row(window, id).frame.chooser
+    assert chooser is not None
+    return chooser
+
+
+def fill_2008(qtbot: QtBot, window: MainWindow) -> None:
+    """Every value and answer of the printed case."""
+    for id, text in NUMBERS_2008.items():
+        type_number(qtbot, window, id, text)
+    for id, option in ANSWERS_2008.items():
+        answer(qtbot, window, id, option)

@@ -1,0 +1,55 @@
+"""What every window test starts from: Qt without a screen, our typeface and colours, a model, a window."""
+
+import os
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+from pytestqt.qtbot import QtBot
+
+os.environ["QT_QPA_PLATFORM"] = "offscreen"
+
+from PySide6.QtWidgets import QApplication
+
+from clinicalc.assessment.model import Model
+from clinicalc.gui.application import dress
+from clinicalc.gui.main_window import MainWindow
+from clinicalc.operations.bedside import open_example
+
+
+@pytest.fixture(scope="session", autouse=True)
+def _dressed(qapp: QApplication) -> None:
+    dress(qapp)
+
+
+@pytest.fixture(scope="session")
+def lipids() -> Model:
+    """The shipped lipid form of 2008: mg/dL, one horizon, no band."""
+    return open_example("general-cvd-2008-lipids.json")
+
+
+@pytest.fixture
+def open_window(qtbot: QtBot) -> Callable[[Model | None], MainWindow]:
+    """Opens a window on a model, shown and exposed."""
+
+    def open_(model: Model | None) -> MainWindow:
+        def choose_nothing(*_: object) -> Path | None:
+            return None
+
+        window = MainWindow(choose_open=choose_nothing, choose_save=choose_nothing)
+        qtbot.addWidget(window)
+        window.resize(1280, 800)
+        if model is not None:
+            window.use_model(model)
+        with qtbot.waitExposed(window):
+            window.show()
+        window.activateWindow()
+        return window
+
+    return open_
+
+
+@pytest.fixture
+def window(open_window: Callable[[Model | None], MainWindow], lipids: Model) -> MainWindow:
+    """A window on the lipid form with empty fields."""
+    return open_window(lipids)
