@@ -7,6 +7,7 @@ here first. This module loads without PySide6.
 import ctypes
 import os
 import sys
+from collections.abc import Mapping
 
 BASE_PACKAGES = ("libglib2.0-0", "libgl1", "libegl1", "libxkbcommon0", "libdbus-1-3", "libfontconfig1")
 """Debian packages that PySide6 needs to be imported at all; measured on bare Debian 12 and 13."""
@@ -19,6 +20,7 @@ _XCB_LIBRARIES = {
     "libxcb-shape.so.0": "libxcb-shape0",
 }
 _WITHOUT_SCREEN = ("offscreen", "minimal")
+_NEED_DISPLAY = ("", "xcb", "wayland", "wayland-egl")
 
 
 def has_screen() -> bool:
@@ -27,7 +29,9 @@ def has_screen() -> bool:
         return False
     if not sys.platform.startswith("linux"):
         return True
-    return bool(_platform() or os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
+    if _platform() not in _NEED_DISPLAY:
+        return True  # drawn straight to the machine's own screen, or to a viewer
+    return bool(os.environ.get("DISPLAY") or os.environ.get("WAYLAND_DISPLAY"))
 
 
 def check_platform() -> str | None:
@@ -35,7 +39,7 @@ def check_platform() -> str | None:
     try:
         import PySide6.QtWidgets  # noqa: F401
     except ImportError as error:
-        return _explain_import(error)
+        return explain_import(error, sys.platform)
     if _platform() in _WITHOUT_SCREEN:
         return None
     if not has_screen():
@@ -43,7 +47,7 @@ def check_platform() -> str | None:
             "There is no screen to open the window on: neither DISPLAY nor WAYLAND_DISPLAY is set. Start the program"
             " in a desktop session, or use its commands, which need no screen: clinicalc --help."
         )
-    missing = _missing_xcb() if _uses_xcb() else ()
+    missing = missing_packages(_XCB_LIBRARIES) if _uses_xcb() else ()
     if missing:
         return f"The window needs system libraries that are missing. Install them with: {_apt(missing)}"
     _listen_to_qt()
@@ -60,9 +64,10 @@ def _uses_xcb() -> bool:
     return _platform() == "xcb" or (not _platform() and not os.environ.get("WAYLAND_DISPLAY"))
 
 
-def _missing_xcb() -> tuple[str, ...]:
+def missing_packages(libraries: Mapping[str, str]) -> tuple[str, ...]:
+    """The packages of those libraries (package by library name) that this system cannot load."""
     missing = []
-    for library, package in _XCB_LIBRARIES.items():
+    for library, package in libraries.items():
         try:
             ctypes.CDLL(library)
         except OSError:
@@ -70,12 +75,13 @@ def _missing_xcb() -> tuple[str, ...]:
     return tuple(missing)
 
 
-def _explain_import(error: ImportError) -> str:
+def explain_import(error: ImportError, system: str) -> str:
+    """Why PySide6 could not be imported on this system (as `sys.platform` names it), with what to install."""
     if isinstance(error, ModuleNotFoundError):
         return "The window needs PySide6, which is not installed. Install clinicalc again with its dependencies."
-    if not sys.platform.startswith("linux"):
+    if not system.startswith("linux"):
         return f"The window cannot be opened: {error}. Install clinicalc again with its dependencies."
-    packages = (*BASE_PACKAGES, *(() if _platform() in _WITHOUT_SCREEN else _missing_xcb()))
+    packages = (*BASE_PACKAGES, *(() if _platform() in _WITHOUT_SCREEN else missing_packages(_XCB_LIBRARIES)))
     return f"The window needs system libraries that are missing ({error}). Install them with: {_apt(packages)}"
 
 

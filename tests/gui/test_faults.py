@@ -25,9 +25,7 @@ pytestmark = pytest.mark.gui
 SECRET = "Ottilie Fenn"
 
 
-def break_at_77(
-    model: Model, entry: PatientEntry, *, span: Span | None, recalibration: str | None
-) -> Assessment:
+def break_at_77(model: Model, entry: PatientEntry, *, span: Span | None, recalibration: str | None) -> Assessment:
     """The real verb, but for one age."""
     age = entry.typed.get("age")
     if age is not None and age.text == "77":

@@ -20,7 +20,7 @@ from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.coefficients.reader import ReadFile
-from clinicalc.coefficients.schema import NumberPredictor
+from clinicalc.coefficients.schema import FORMAT, CoefficientFile, NumberPredictor
 from clinicalc.gui.access_keys import mark_letters
 from clinicalc.gui.main_window import MainWindow
 from tests.gui.bedside_hands import fill_2008, number_row, retype_number
@@ -38,13 +38,7 @@ def marked_up(lipids: Model) -> Model:
     assert isinstance(first, NumberPredictor)
     predictors = (msgspec.structs.replace(first, label="<i>Age</i> & more", group=MARKUP), *content.predictors[1:])
     changed = msgspec.structs.replace(content, title=MARKUP, outcome=MARKUP, predictors=predictors)
-    from clinicalc.coefficients.schema import CoefficientFile
-
-    return prepare_model(ReadFile(lipids.name, lipids.fingerprint, _file_of(CoefficientFile, changed)))
-
-
-def _file_of(kind: type, content: object) -> object:
-    return kind(format="clinicalc.coefficients/1", model=content)
+    return prepare_model(ReadFile(lipids.name, CoefficientFile(FORMAT, changed, ()), b"", lipids.fingerprint))
 
 
 def test_every_label_is_plain_text(qtbot: QtBot, window: MainWindow) -> None:

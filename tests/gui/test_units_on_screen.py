@@ -109,9 +109,7 @@ def test_wheel_over_a_unit_changes_nothing(qtbot: QtBot, window: MainWindow) -> 
 
 
 def _fields() -> list[NumberField]:
-    models: list[Model] = [
-        open_example(name) for name in ("total-cvd-2024-base.json", "diabetes-2007-clinical.json")
-    ]
+    models: list[Model] = [open_example(name) for name in ("total-cvd-2024-base.json", "diabetes-2007-clinical.json")]
     return [
         f
         for model in models
