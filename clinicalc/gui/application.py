@@ -26,7 +26,6 @@ def run_window(model: Model | None = None, entry: PatientEntry | None = None) ->
     running = QApplication.instance()
     application = running if isinstance(running, QApplication) else QApplication(sys.argv[:1])
     application.setApplicationName("clinicalc")
-    application.setApplicationDisplayName("")
     dress(application)
     window = MainWindow()
     ExceptionHook(window.state).install()

@@ -43,10 +43,6 @@ class FindingsList(QWidget):
         self._list.deleteLater()
         self._list = fresh
 
-    def clear(self) -> None:
-        """No findings, because there is no assessment."""
-        self.show_findings(())
-
 
 def _make_entry(number: int, finding: Finding) -> QFrame:
     entry = QFrame()

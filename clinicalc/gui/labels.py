@@ -1,6 +1,7 @@
 """The one place where labels, buttons and headings are made: plain text, one typeface, two inks."""
 
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QKeyEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QWidget
 
 from clinicalc.gui.tokens import LABEL_WIDTH
@@ -53,9 +54,20 @@ def make_row_label(text: str) -> QLabel:
     return label
 
 
-def make_button(text: str, *, name: str = "", pixels: int = BASE) -> QPushButton:
+class CommandButton(QPushButton):
+    """A push button that Enter presses too, in any window."""
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Enter like the space bar."""
+        if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            self.click()
+            return
+        super().keyPressEvent(event)
+
+
+def make_button(text: str, *, name: str = "", pixels: int = BASE) -> CommandButton:
     """A push button; `name` picks a style ("primary", "offer")."""
-    button = QPushButton(text)
+    button = CommandButton(text)
     button.setFont(face(pixels))
     button.setAutoDefault(False)
     if name:

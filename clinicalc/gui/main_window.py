@@ -5,7 +5,7 @@ from itertools import pairwise
 from pathlib import Path
 
 from PySide6.QtCore import QSize, Qt
-from PySide6.QtGui import QResizeEvent
+from PySide6.QtGui import QKeySequence, QResizeEvent, QShortcut
 from PySide6.QtWidgets import QFileDialog, QFrame, QHBoxLayout, QStackedWidget, QVBoxLayout, QWidget
 
 from clinicalc.assessment.entry import PatientEntry
@@ -36,10 +36,13 @@ def ask_which_file(parent: QWidget) -> Path | None:
 
 def ask_where_to_save(parent: QWidget, suggestion: str) -> Path | None:
     """Where to save the print, or None; the suggestion holds nothing about the patient."""
-    name, _ = QFileDialog.getSaveFileName(parent, "Save the print", suggestion, "PDF (*.pdf)")
-    if not name:
-        return None
-    return Path(name) if name.lower().endswith(".pdf") else Path(f"{name}.pdf")
+    dialog = QFileDialog(parent, "Save the print", "", "PDF (*.pdf)")
+    dialog.setAcceptMode(QFileDialog.AcceptMode.AcceptSave)
+    dialog.setDefaultSuffix("pdf")  # added before the dialog asks whether to replace a file
+    dialog.selectFile(suggestion)
+    chosen = dialog.selectedFiles() if dialog.exec() else []
+    dialog.deleteLater()
+    return Path(chosen[0]) if chosen else None
 
 
 class MainWindow(QWidget):
@@ -54,6 +57,7 @@ class MainWindow(QWidget):
     ) -> None:
         super().__init__()
         self.state = state or EntryState()
+        self._left_field: QWidget | None = None
         self._choose_open, self._choose_save = choose_open, choose_save
         self.setObjectName("ground")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
@@ -143,6 +147,7 @@ class MainWindow(QWidget):
         self.foot.new_patient.clicked.connect(self.begin_new_patient)
         self.foot.save_pdf.clicked.connect(self.save_print)
         self.refusal.closed.connect(self._close_refusal)
+        QShortcut(QKeySequence(Qt.Key.Key_F6), self).activated.connect(self._go_across)
         self.values.rebuilt.connect(self._order_tabs)
         self.values.left_last.connect(self._leave_values)
         self.state.assessed.connect(self._settle)
@@ -162,6 +167,17 @@ class MainWindow(QWidget):
         self.pages.setCurrentIndex(0)
         self._allow_saving()
         self.values.focus_first()
+
+    def _go_across(self) -> None:
+        """Between the values and the result, where the arrow keys scroll; back to the field that was left."""
+        focused = self.focusWidget()
+        if focused is not None and self.values.isAncestorOf(focused):
+            self._left_field = focused
+            self.sheet.scroll.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        elif self._left_field is not None and self._left_field in self.values.tab_stops():
+            self._left_field.setFocus(Qt.FocusReason.ShortcutFocusReason)
+        else:
+            self.values.focus_first()
 
     def _leave_values(self) -> None:
         target = self.foot.save_pdf if self.foot.save_pdf.isEnabled() else self.foot.new_patient

@@ -3,9 +3,8 @@
 from collections.abc import Sequence
 from datetime import date
 
-from PySide6.QtCore import QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QPainter, QPen
-from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QLineEdit, QWidget
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QWidget
 
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
@@ -13,70 +12,14 @@ from clinicalc.assessment.findings import Finding, Grade
 from clinicalc.assessment.numerals import plain_range
 from clinicalc.assessment.result import ValueLine
 from clinicalc.gui.access_keys import show_ampersands
-from clinicalc.gui.chooser import Chooser
-from clinicalc.gui.frames import FieldFrame
 from clinicalc.gui.held_value import HeldValue, choosable_units, hold, hold_entry, read_as, settle, switch_unit
-from clinicalc.gui.labels import make_button, make_field_label, make_label, make_line
+from clinicalc.gui.labels import make_button, make_field_label, make_label
 from clinicalc.gui.rows import FieldRow
-from clinicalc.gui.tokens import COLUMN_GAP, FRAME_WIDTH, LIGHT, RING, VALUE_WIDTH
-from clinicalc.gui.typeface import CAPTION, UNIT, VALUE, face
+from clinicalc.gui.tokens import COLUMN_GAP, FRAME_WIDTH, RING
+from clinicalc.gui.typeface import CAPTION, UNIT
+from clinicalc.gui.value_frame import ValueFrame
 from clinicalc.units.conversion import conversion
 from clinicalc.units.unit import unit as unit_of
-
-
-class ValueEdit(QLineEdit):
-    """The line a number is typed in."""
-
-    left = Signal()
-
-    def __init__(self) -> None:
-        super().__init__()
-        self.setFont(face(VALUE, semibold=True))
-        self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
-        self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
-
-    def focusOutEvent(self, event: QFocusEvent) -> None:
-        """Tell that the field was left, for whatever reason but a menu."""
-        super().focusOutEvent(event)
-        if event.reason() != Qt.FocusReason.PopupFocusReason:
-            self.left.emit()
-
-
-class ValueFrame(FieldFrame):
-    """Number, thin line, unit: a number never stands outside its unit's frame."""
-
-    def __init__(self, units: tuple[str, ...], unit: str) -> None:
-        super().__init__()
-        self.edit = ValueEdit()
-        self.chooser = Chooser() if len(units) > 1 else None
-        row = QHBoxLayout(self)
-        row.setContentsMargins(RING + 2, RING + 1, RING + 1, RING + 1)
-        row.setSpacing(0)
-        self.watch(self.edit)
-        if self.chooser is not None:
-            self.chooser.offer([(unit_of(code).spelling, code) for code in units], units.index(unit))
-            self.watch(self.chooser)
-            self.edit.setFixedWidth(VALUE_WIDTH - 4)
-            row.addWidget(self.edit)
-            row.addSpacing(4)
-            row.addWidget(self.chooser, 1)
-        else:
-            spelling = unit_of(unit).spelling
-            label = make_line(spelling, UNIT, soft=True)
-            row.addWidget(self.edit, 1)
-            row.addSpacing(10)
-            row.addWidget(label)
-            row.addSpacing(6)
-            room = 108 if label.sizeHint().width() + 16 <= 108 else label.sizeHint().width() + 16
-            self.edit.setMaximumWidth(max(46, 166 - room))
-            label.setFixedWidth(room - 14)
-        self.setFocusProxy(self.edit)
-
-    def paint_inside(self, painter: QPainter, body: QRectF) -> None:
-        """The thin line between number and unit."""
-        x = self.edit.geometry().right() + 4.5
-        painter.setPen(QPen(QColor(LIGHT.rule), 1))
-        painter.drawLine(int(x), int(body.top()) + 7, int(x), int(body.bottom()) - 7)
 
 
 class NumberRow(FieldRow):
@@ -120,7 +63,7 @@ class NumberRow(FieldRow):
         if self._offer:
             digits = read_as(self._field, self._held, self._offer).text.partition(" on ")[0]
             words = show_ampersands(f"{digits} {unit_of(self._offer).spelling}")
-            self.offer.setText(f"&Use {words}")
+            self.offer.setText(f"Use {words}")
             self.offer.setAccessibleName(f"{self._field.label}: use {words}")
         had_focus = self.offer.hasFocus()
         self._offer_place.setVisible(bool(self._offer))
@@ -128,6 +71,15 @@ class NumberRow(FieldRow):
             self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
         self._line = line
         self._show_remark()
+
+    @property
+    def has_offer(self) -> bool:
+        """Whether a likely unit is offered."""
+        return bool(self._offer)
+
+    def give_offer_its_letter(self) -> None:
+        """Let the access letter of offers press this one."""
+        self.offer.setText(f"&{self.offer.text()}")
 
     def fit(self, room: int, *, compact: bool) -> None:
         """Compact: remark or offer under the frame, and no range."""

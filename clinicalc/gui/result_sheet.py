@@ -17,6 +17,7 @@ from clinicalc.operations.summary import people_sentence
 from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED, level_words
 
 _NOTHING = "–"
+_RING = 2
 
 
 class ResultSheet(QWidget):
@@ -37,6 +38,7 @@ class ResultSheet(QWidget):
         self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
         self.outcome = make_label("", CAPTION, soft=True)
         self.findings = FindingsList()
+        self.scroll = QScrollArea()
         self._lay_out()
         self._show_no_model()
         state.model_changed.connect(self._take_model)
@@ -49,13 +51,13 @@ class ResultSheet(QWidget):
         self._show_estimate(None)
         self.headline.setText("No number")
         self.sentence.setText(sentence)
-        self.findings.clear()
+        self.findings.hide()
 
     def _lay_out(self) -> None:
         body = QWidget()
         body.setObjectName("sheet")
         grid = QGridLayout(body)
-        grid.setContentsMargins(SHEET_MARGIN, 18, SHEET_MARGIN_RIGHT, 20)
+        grid.setContentsMargins(SHEET_MARGIN - _RING, 16, SHEET_MARGIN_RIGHT - _RING, 20)
         grid.setHorizontalSpacing(24)
         grid.setVerticalSpacing(0)
         grid.setColumnMinimumWidth(0, FIGURE_COLUMN)
@@ -82,15 +84,17 @@ class ResultSheet(QWidget):
         grid.setRowMinimumHeight(5, 10)
         grid.addWidget(self.findings, 6, 0, 1, 2)
         grid.setRowStretch(7, 1)
-        scroll = QScrollArea()
-        scroll.setWidgetResizable(True)
-        scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        scroll.setWidget(body)
+        self.scroll.setObjectName("sheet_scroll")
+        self.scroll.setAccessibleName("Result")
+        self.scroll.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
+        self.scroll.setWidgetResizable(True)
+        self.scroll.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.scroll.setWidget(body)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
         column.addWidget(self.strip)
-        column.addWidget(scroll, 1)
+        column.addWidget(self.scroll, 1)
 
     def _show_no_model(self) -> None:
         self.strip.hide()
@@ -107,8 +111,8 @@ class ResultSheet(QWidget):
         # until there is a model library, every file is opened by its name, and nobody has vetted it
         self.strip.show()
         self.meaning.show()
-        self.findings.show()
-        self.outcome.setText(f"Event: {event_in_full(model)}.")
+        event = event_in_full(model)
+        self.outcome.setText(f"Event: {event}." if event else "")
 
     def _show_current(self) -> None:
         assessment = self._state.assessment
@@ -127,6 +131,7 @@ class ResultSheet(QWidget):
         self.sentence.setText(sentence)
         self._show_estimate(estimate, assessment)
         self.findings.show_findings(shown_findings(assessment))
+        self.findings.show()
 
     def _show_estimate(self, estimate: Estimate | None, assessment: Assessment | None = None) -> None:
         band = None if estimate is None else estimate.band

@@ -96,6 +96,8 @@ def make_style_sheet(tokens: Tokens) -> str:
     QPlainTextEdit {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; padding: 8px; }}
     QPlainTextEdit:focus {{ border: 2px solid {t.accent}; padding: 7px; }}
     QScrollArea {{ border: none; background: transparent; }}
+    QScrollArea#sheet_scroll {{ border: 2px solid {t.sheet}; }}
+    QScrollArea#sheet_scroll:focus {{ border: 2px solid {t.accent}; }}
     QWidget#ground {{ background: {t.ground}; }}
     QWidget#sheet {{ background: {t.sheet}; }}
     QPushButton {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; color: {t.ink};

@@ -170,6 +170,9 @@ class ValuesPane(QScrollArea):
         lines = {line.id: line for line in assessment.values}
         for id, row in self.rows.items():
             row.show_remarks(lines.get(id), [finding for finding in assessment.findings if finding.field == id])
+        offering = [row for row in self.rows.values() if isinstance(row, NumberRow) and row.has_offer]
+        for row in offering[:1]:
+            row.give_offer_its_letter()
 
     def _show_nothing(self, _: str = "") -> None:
         for row in self.rows.values():

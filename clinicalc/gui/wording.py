@@ -31,9 +31,8 @@ def event_heading(model: Model, span: Span | None) -> str:
 
 
 def event_in_full(model: Model) -> str:
-    """What counts as the event: the outcome after its first words, or all of it."""
-    first, _, rest = model.content.outcome.rstrip(". ").partition(":")
-    return rest.strip() or first
+    """What counts as the event: the outcome after its first words; "" where those are all."""
+    return model.content.outcome.rstrip(". ").partition(":")[2].strip()
 
 
 def explain_no_number(assessment: Assessment) -> tuple[str, str]:
@@ -51,7 +50,8 @@ def explain_no_number(assessment: Assessment) -> tuple[str, str]:
 def _say_stops(model: Model, stops: list[Finding]) -> str:
     not_made_for = [finding for finding in stops if finding.code in _NOT_MADE_FOR]
     if not_made_for:
-        return "This model does not answer for this patient. The stop below says why."
+        why = "The stop below says why." if len(stops) == 1 else "The stops below say why."
+        return f"This model does not answer for this patient. {why}"
     labels = {field.id: field.label for field in model.fields}
     names = list(dict.fromkeys(labels.get(finding.field, "A finding below") for finding in stops))
     what = "its unit or its value" if len(names) == 1 and stops[0].offer else "its value"

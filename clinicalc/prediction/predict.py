@@ -19,6 +19,9 @@ from clinicalc.prediction.links import complement, probability
 BLOCK = 8192
 """Rows worked on at a time: small enough that the running columns stay in the processor's cache."""
 
+DRAWN_FIGURES = 1 << 17
+"""Linear predictors worked out at a time for a band of draws, patients times draws: 1 MB."""
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Prediction:
@@ -129,15 +132,12 @@ def _draw_limits(
     An adjustment's own imprecision is independent of the draws; the two are joined as distances from the estimate,
     square root of the sum of squares on each side (Zou & Donner, Stat Med 2008;27:1693).
     """
-    fixed = [term for term in range(len(columns)) if term not in band.estimated]
     lower, upper = np.empty_like(eta), np.empty_like(eta)
-    for i in range(eta.size):
-        rows = band.baselines.copy()
-        for k, term in enumerate(band.estimated):
-            rows += band.coefficients[k] * columns[term][i]
-        for term in fixed:
-            rows += line.coefficients[term] * columns[term][i]
-        lower[i], upper[i] = np.quantile(rows, [0.5 - level / 2.0, 0.5 + level / 2.0])
+    together = max(1, DRAWN_FIGURES // band.baselines.size)
+    for start in range(0, eta.size, together):
+        here = slice(start, start + together)
+        drawn = _drawn_predictors(band, line, [column[here] for column in columns])
+        lower[here], upper[here] = np.quantile(drawn, [0.5 - level / 2.0, 0.5 + level / 2.0], axis=1)
     if adjustment is None:
         return lower, upper
     moved = adjustment.intercept + adjustment.slope * eta
@@ -149,3 +149,14 @@ def _draw_limits(
         moved - np.copysign(np.sqrt(below * below + extra), below),
         moved + np.copysign(np.sqrt(above * above + extra), above),
     )
+
+
+def _drawn_predictors(band: Draws, line: Line, columns: Sequence[Column]) -> Column:
+    """The linear predictor of each patient under each draw, shape (n, K); fixed terms keep the file's coefficient."""
+    drawn = np.tile(band.baselines, (columns[0].size, 1))
+    for k, term in enumerate(band.estimated):
+        drawn += band.coefficients[k] * columns[term][:, np.newaxis]
+    for term in range(len(columns)):
+        if term not in band.estimated:
+            drawn += (line.coefficients[term] * columns[term])[:, np.newaxis]
+    return drawn

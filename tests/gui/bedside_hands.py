@@ -1,8 +1,8 @@
 """Typing and clicking as a person does, by field id."""
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QComboBox
-from pytestqt.qtbot import QtBot
+from PySide6.QtTest import QTest
+from PySide6.QtWidgets import QComboBox, QWidget
 
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.number_row import NumberRow
@@ -11,6 +11,21 @@ from clinicalc.gui.question_row import QuestionRow
 # the woman of 61 of D'Agostino et al., Circulation 2008;117:743-753 (case in the text; printed 10.5 %, from memory)
 NUMBERS_2008 = {"age": "61", "total_cholesterol": "180", "hdl_cholesterol": "47", "systolic_bp": "124"}
 ANSWERS_2008 = {"prior_cvd": "no", "sex": "female", "bp_treated": "no", "smoker": "yes", "diabetes": "no"}
+
+
+def click(widget: QWidget) -> None:
+    """Press and release the left button in the middle of a widget."""
+    QTest.mouseClick(widget, Qt.MouseButton.LeftButton)
+
+
+def press(widget: QWidget, key: Qt.Key, modifier: Qt.KeyboardModifier = Qt.KeyboardModifier.NoModifier) -> None:
+    """Press and release one key."""
+    QTest.keyClick(widget, key, modifier)
+
+
+def type_text(widget: QWidget, text: str) -> None:
+    """Press the keys of a text one after the other."""
+    QTest.keyClicks(widget, text)
 
 
 def number_row(window: MainWindow, id: str) -> NumberRow:
@@ -27,27 +42,27 @@ def question_row(window: MainWindow, id: str) -> QuestionRow:
     return row
 
 
-def type_number(qtbot: QtBot, window: MainWindow, id: str, text: str) -> None:
+def type_number(window: MainWindow, id: str, text: str) -> None:
     """Type after what stands in the field."""
     edit = number_row(window, id).edit
     edit.setFocus()
     edit.end(False)
-    qtbot.keyClicks(edit, text)
+    type_text(edit, text)
 
 
-def retype_number(qtbot: QtBot, window: MainWindow, id: str, text: str) -> None:
+def retype_number(window: MainWindow, id: str, text: str) -> None:
     """Replace what stands in the field, key by key."""
     edit = number_row(window, id).edit
     edit.setFocus()
-    qtbot.keyClick(edit, Qt.Key.Key_A, Qt.KeyboardModifier.ControlModifier)
-    qtbot.keyClick(edit, Qt.Key.Key_Delete)
-    qtbot.keyClicks(edit, text)
+    press(edit, Qt.Key.Key_A, Qt.KeyboardModifier.ControlModifier)
+    press(edit, Qt.Key.Key_Delete)
+    type_text(edit, text)
 
 
-def answer(qtbot: QtBot, window: MainWindow, id: str, option: str) -> None:
+def answer(window: MainWindow, id: str, option: str) -> None:
     """Click one of the answers."""
     segments = question_row(window, id).segments.segments
-    qtbot.mouseClick(next(s for s in segments if s.option.id == option), Qt.MouseButton.LeftButton)
+    click(next(s for s in segments if s.option.id == option))
 
 
 def choose_unit(window: MainWindow, id: str, code: str) -> None:
@@ -63,9 +78,9 @@ def unit_chooser(window: MainWindow, id: str) -> QComboBox:
     return chooser
 
 
-def fill_2008(qtbot: QtBot, window: MainWindow) -> None:
+def fill_2008(window: MainWindow) -> None:
     """Every value and answer of the printed case."""
     for id, text in NUMBERS_2008.items():
-        type_number(qtbot, window, id, text)
+        type_number(window, id, text)
     for id, option in ANSWERS_2008.items():
-        answer(qtbot, window, id, option)
+        answer(window, id, option)

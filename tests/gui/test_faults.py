@@ -56,14 +56,14 @@ def assert_blank(window: MainWindow) -> None:
 
 
 def test_fault_inside_an_assessment(qtbot: QtBot, hooked: MainWindow, capsys: pytest.CaptureFixture[str]) -> None:
-    retype_number(qtbot, hooked, "age", "77")
+    retype_number(hooked, "age", "77")
     assert_blank(hooked)
     assert "ZeroDivisionError" in hooked.sheet.sentence.text()
     said = capsys.readouterr().err
     assert "ZeroDivisionError" in said
     assert SECRET not in said
     assert SECRET not in hooked.sheet.sentence.text()
-    retype_number(qtbot, hooked, "age", "61")
+    retype_number(hooked, "age", "61")
     assert hooked.sheet.number.figure == "10.5"
 
 
@@ -72,7 +72,7 @@ def test_fault_in_a_slot_that_hears_of_the_assessment(qtbot: QtBot, hooked: Main
         raise KeyError("a listener")
 
     hooked.state.assessed.connect(break_down)
-    retype_number(qtbot, hooked, "age", "62")
+    retype_number(hooked, "age", "62")
     assert_blank(hooked)
     assert "KeyError" in hooked.sheet.sentence.text()
 
@@ -117,7 +117,7 @@ def test_fault_while_opening_a_file(qtbot: QtBot, hooked: MainWindow, tmp_path: 
 
 
 def test_values_stay_after_a_fault(qtbot: QtBot, hooked: MainWindow) -> None:
-    retype_number(qtbot, hooked, "age", "77")
+    retype_number(hooked, "age", "77")
     assert number_row(hooked, "age").edit.text() == "77"
     assert number_row(hooked, "total_cholesterol").edit.text() == "180"
 

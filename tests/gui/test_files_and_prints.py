@@ -11,7 +11,7 @@ from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.resources import read_shipped
-from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008
+from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click
 
 pytestmark = pytest.mark.gui
 
@@ -47,10 +47,6 @@ def with_number(qtbot: QtBot, lipids: Model, dialogs: Dialogs) -> MainWindow:
     return window
 
 
-def click(qtbot: QtBot, button: QWidget) -> None:
-    qtbot.mouseClick(button, Qt.MouseButton.LeftButton)
-
-
 def test_window_without_a_file(qtbot: QtBot) -> None:
     window = MainWindow()
     qtbot.addWidget(window)
@@ -65,7 +61,7 @@ def test_opening_another_file_leaves_nothing_of_the_last_patient(
 ) -> None:
     dialogs.open = tmp_path / "regional.json"
     dialogs.open.write_bytes(read_shipped("example_models/cvd-2021-regional.json"))
-    click(qtbot, with_number.model_bar.open_button)
+    click(with_number.model_bar.open_button)
     assert with_number.model_bar.title.text() == "Cardiovascular disease, regional form"
     assert with_number.sheet.number.figure == ""
     assert dict(with_number.state.entry.typed) == {}
@@ -78,7 +74,7 @@ def test_refused_file_is_explained_and_covers_the_number(
 ) -> None:
     dialogs.open = tmp_path / "broken.json"
     dialogs.open.write_text('{"format": "<b>x</b>", "model": {"id": "A"}}')
-    click(qtbot, with_number.model_bar.open_button)
+    click(with_number.model_bar.open_button)
     assert with_number.refusal.isVisible()
     assert not with_number.sheet.isVisible()
     assert not with_number.foot.save_pdf.isEnabled()
@@ -88,7 +84,7 @@ def test_refused_file_is_explained_and_covers_the_number(
     assert "/model" in problems.toPlainText()
     assert problems.textInteractionFlags() & Qt.TextInteractionFlag.TextSelectableByKeyboard
     assert with_number.refusal.title.text() == "broken.json was not opened"
-    click(qtbot, with_number.refusal.back)
+    click(with_number.refusal.back)
     assert with_number.sheet.isVisible()
     assert with_number.sheet.number.figure == "10.5"
     assert with_number.model_bar.title.text() == "General cardiovascular disease, lipid form"
@@ -96,7 +92,7 @@ def test_refused_file_is_explained_and_covers_the_number(
 
 def test_file_that_is_not_there(qtbot: QtBot, with_number: MainWindow, dialogs: Dialogs, tmp_path: Path) -> None:
     dialogs.open = tmp_path / "nowhere.json"
-    click(qtbot, with_number.model_bar.open_button)
+    click(with_number.model_bar.open_button)
     assert with_number.refusal.isVisible()
     assert with_number.refusal.problems.toPlainText() != ""
 
@@ -105,13 +101,13 @@ def test_saving_writes_the_print_and_suggests_no_patient_data(
     qtbot: QtBot, with_number: MainWindow, dialogs: Dialogs, tmp_path: Path
 ) -> None:
     dialogs.save = tmp_path / "print.pdf"
-    click(qtbot, with_number.foot.save_pdf)
+    click(with_number.foot.save_pdf)
     assert dialogs.save.read_bytes()[:5] == b"%PDF-"
     assert with_number.foot.message.text() == "Saved as print.pdf."
     assert "general-cvd-2008-lipids" in dialogs.suggested
     for word in ("Ottilie", "Fenn", "female", "10.5"):
         assert word not in dialogs.suggested
-    click(qtbot, with_number.foot.new_patient)
+    click(with_number.foot.new_patient)
     assert with_number.foot.message.text() == ""
 
 
@@ -119,7 +115,7 @@ def test_print_that_cannot_be_written_is_said_in_words(
     qtbot: QtBot, with_number: MainWindow, dialogs: Dialogs, tmp_path: Path
 ) -> None:
     dialogs.save = tmp_path / "no such folder" / "print.pdf"
-    click(qtbot, with_number.foot.save_pdf)
+    click(with_number.foot.save_pdf)
     assert with_number.foot.message.isVisible()
     assert with_number.foot.message.text().startswith("Not saved: ")
     assert with_number.sheet.number.figure == "10.5"
@@ -131,6 +127,6 @@ def test_print_refused_for_a_character_is_said_in_words(
     assert with_number.values.label_row is not None
     with_number.values.label_row.edit.setText("\N{HIRAGANA LETTER A}")
     dialogs.save = tmp_path / "print.pdf"
-    click(qtbot, with_number.foot.save_pdf)
+    click(with_number.foot.save_pdf)
     assert with_number.foot.message.text().startswith("Not saved: ")
     assert not dialogs.save.exists()

@@ -20,7 +20,7 @@ from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.coefficients.reader import ReadFile
-from clinicalc.coefficients.schema import FORMAT, CoefficientFile, NumberPredictor
+from clinicalc.coefficients.schema import CoefficientFile, NumberPredictor
 from clinicalc.gui.access_keys import mark_letters
 from clinicalc.gui.main_window import MainWindow
 from tests.gui.bedside_hands import fill_2008, number_row, retype_number
@@ -37,13 +37,15 @@ def marked_up(lipids: Model) -> Model:
     first = content.predictors[0]
     assert isinstance(first, NumberPredictor)
     predictors = (msgspec.structs.replace(first, label="<i>Age</i> & more", group=MARKUP), *content.predictors[1:])
-    changed = msgspec.structs.replace(content, title=MARKUP, outcome=MARKUP, predictors=predictors)
-    return prepare_model(ReadFile(lipids.name, CoefficientFile(FORMAT, changed, ()), b"", lipids.fingerprint))
+    changed = msgspec.structs.replace(content, title=MARKUP, outcome=f"First event: {MARKUP}", predictors=predictors)
+    return prepare_model(
+        ReadFile(lipids.name, CoefficientFile("clinicalc.coefficients/1", changed, ()), b"", lipids.fingerprint)
+    )
 
 
 def test_every_label_is_plain_text(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    retype_number(qtbot, window, "total_cholesterol", "<b>5</b>")
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", "<b>5</b>")
     labels = window.findChildren(QLabel)
     assert len(labels) > 30
     assert {label.textFormat() for label in labels} == {Qt.TextFormat.PlainText}
@@ -61,12 +63,13 @@ def test_markup_is_shown_letter_for_letter(
     window = open_window(marked_up)
     assert window.model_bar.title.text() == MARKUP
     assert window.model_bar.title.textFormat() is Qt.TextFormat.PlainText
-    assert MARKUP in window.sheet.outcome.text()
+    assert window.sheet.headline.text() == "No number yet"
+    assert window.sheet.outcome.text() == f"Event: {MARKUP}."
     assert MARKUP in [label.text() for label in window.values.findChildren(QLabel)]
     row = number_row(window, "age")
-    assert row.label.text() == "<i>&Age</i> && more"  # one access mark; the ampersand of the label is doubled
+    assert row.label.text() == "<&i>Age</i> && more"  # one access mark; the ampersand of the label is doubled
     assert row.edit.accessibleName() == "<i>Age</i> & more"
-    retype_number(qtbot, window, "age", "<b>5")
+    retype_number(window, "age", "<b>5")
     assert "“<b>5”" in " ".join(label.text() for label in window.sheet.findings.findChildren(QLabel))
 
 

@@ -12,11 +12,14 @@ from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
 from tests.gui.bedside_hands import (
     answer,
+    click,
     fill_2008,
     number_row,
+    press,
     question_row,
     retype_number,
     type_number,
+    type_text,
 )
 
 pytestmark = pytest.mark.gui
@@ -27,7 +30,7 @@ def figure(window: MainWindow) -> str:
 
 
 def test_printed_case_gives_its_number(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
+    fill_2008(window)
     # D'Agostino et al., Circulation 2008;117:743-753, woman of 61: printed 10.5 % (from memory)
     assert figure(window) == "10.5"
     assert window.sheet.headline.text() == "First cardiovascular event within 10 years"
@@ -49,43 +52,43 @@ def test_nothing_is_answered_or_typed_at_first(window: MainWindow) -> None:
 
 
 def test_one_unanswered_question_means_no_number(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
+    fill_2008(window)
     window.begin_new_patient()
     for id, text in {"age": "61", "total_cholesterol": "180", "hdl_cholesterol": "47", "systolic_bp": "124"}.items():
-        type_number(qtbot, window, id, text)
+        type_number(window, id, text)
     for id, option in {"prior_cvd": "no", "sex": "female", "bp_treated": "no", "smoker": "yes"}.items():
-        answer(qtbot, window, id, option)
+        answer(window, id, option)
     assert figure(window) == ""
     assert window.sheet.sentence.text() == "1 entry to go. Next: has diabetes."
 
 
 def test_each_keystroke_changes_or_blanks_the_number(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
+    fill_2008(window)
     edit = number_row(window, "systolic_bp").edit
     seen = []
     with qtbot.waitSignals([window.state.assessed] * 2):
         for _ in "24":
-            qtbot.keyClick(edit, Qt.Key.Key_Backspace)
+            press(edit, Qt.Key.Key_Backspace)
             seen.append(figure(window))
     assert edit.text() == "1"
     assert seen == ["", ""]  # 12 and 1 mmHg are not possible
-    qtbot.keyClicks(edit, "44")
+    type_text(edit, "44")
     assert figure(window) not in ("", "10.5")
-    retype_number(qtbot, window, "systolic_bp", "124")
+    retype_number(window, "systolic_bp", "124")
     assert figure(window) == "10.5"
 
 
 def test_one_keystroke_makes_one_assessment(qtbot: QtBot, window: MainWindow) -> None:
     assessed: list[object] = []
     window.state.assessed.connect(assessed.append)
-    type_number(qtbot, window, "age", "61")
+    type_number(window, "age", "61")
     assert len(assessed) == 2
     assert assessed[-1] is window.state.assessment
 
 
 def test_undo_is_a_keystroke_like_any_other(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    retype_number(qtbot, window, "age", "70")
+    fill_2008(window)
+    retype_number(window, "age", "70")
     assert figure(window) != "10.5"
     edit = number_row(window, "age").edit
     while edit.isUndoAvailable() and edit.text() != "61":
@@ -94,8 +97,8 @@ def test_undo_is_a_keystroke_like_any_other(qtbot: QtBot, window: MainWindow) ->
 
 
 def test_excluded_patient_gets_no_number_and_no_word_of_its_coming_back(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    answer(qtbot, window, "prior_cvd", "yes")
+    fill_2008(window)
+    answer(window, "prior_cvd", "yes")
     assert figure(window) == ""
     assert window.sheet.headline.text() == "No number"
     assert "does not answer for this patient" in window.sheet.sentence.text()
@@ -104,13 +107,13 @@ def test_excluded_patient_gets_no_number_and_no_word_of_its_coming_back(qtbot: Q
 
 
 def test_new_patient_clears_everything(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
+    fill_2008(window)
     assert window.values.label_row is not None
-    qtbot.keyClicks(window.values.label_row.edit, "Ottilie Fenn")
+    type_text(window.values.label_row.edit, "Ottilie Fenn")
     chooser = number_row(window, "total_cholesterol").frame.chooser
     assert chooser is not None
     chooser.setCurrentIndex(chooser.findData("mmol/L"))
-    qtbot.mouseClick(window.foot.new_patient, Qt.MouseButton.LeftButton)
+    click(window.foot.new_patient)
     assert figure(window) == ""
     assert dict(window.state.entry.typed) == {}
     assert window.state.entry.label == ""
@@ -130,29 +133,29 @@ def test_new_patient_clears_everything(qtbot: QtBot, window: MainWindow) -> None
 def test_whole_patient_by_keyboard_alone(qtbot: QtBot, window: MainWindow) -> None:
     """Enter goes on; arrows and first letters answer; page order is exclusion, groups of the file."""
 
-    def press(*keys: Qt.Key | str) -> None:
+    def go(*keys: Qt.Key | str) -> None:
         for key in keys:
             focused = QApplication.focusWidget()
             assert focused is not None
             if isinstance(key, str):
-                qtbot.keyClicks(focused, key)
+                type_text(focused, key)
             else:
-                qtbot.keyClick(focused, key)
+                press(focused, key)
 
     enter = Qt.Key.Key_Return
-    press("n", enter, "61", enter, Qt.Key.Key_Left, enter)
-    press("180", enter, "47", enter, "124", enter)
-    press("n", enter, Qt.Key.Key_Right, enter, "n", enter)
+    go("n", enter, "61", enter, Qt.Key.Key_Left, enter)
+    go("180", enter, "47", enter, "124", enter)
+    go("n", enter, Qt.Key.Key_Right, enter, "n", enter)
     assert figure(window) == "10.5"
     assert window.values.label_row is not None
     assert window.values.label_row.edit.hasFocus()
-    press("Ottilie Fenn", enter)
+    go("Ottilie Fenn", enter)
     assert window.state.entry.label == "Ottilie Fenn"
     assert window.foot.save_pdf.hasFocus()
 
 
 def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
+    fill_2008(window)
     window.values.focus_first()
     names = []
     for _ in range(20):
@@ -161,7 +164,7 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
         names.append(focused.accessibleName() or getattr(focused, "text", str)())
         if focused is window.foot.save_pdf:
             break
-        qtbot.keyClick(focused, Qt.Key.Key_Tab)
+        press(focused, Qt.Key.Key_Tab)
     assert names[1:] == [
         "Age",
         "Sex: Female",
@@ -180,6 +183,15 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
     ]
 
 
+def test_f6_goes_to_the_result_and_back(window: MainWindow) -> None:
+    edit = number_row(window, "age").edit
+    edit.setFocus()
+    press(edit, Qt.Key.Key_F6)
+    assert window.sheet.scroll.hasFocus()
+    press(window.sheet.scroll, Qt.Key.Key_F6)
+    assert edit.hasFocus()
+
+
 def test_recalibration_is_open_until_somebody_chooses(
     qtbot: QtBot, open_window: Callable[[Model | None], MainWindow]
 ) -> None:
@@ -187,9 +199,9 @@ def test_recalibration_is_open_until_somebody_chooses(
     # the printed example of the 2021 paper: man of 50, smoker, 140 mmHg, 5.5 and 1.3 mmol/L; low-risk region 5.9 %
     # (SCORE2 working group, Eur Heart J 2021;42:2439-2454, supplement; from memory)
     for id, text in {"age": "50", "total_cholesterol": "5.5", "hdl_cholesterol": "1.3", "systolic_bp": "140"}.items():
-        type_number(qtbot, window, id, text)
+        type_number(window, id, text)
     for id, option in {"prior_cvd": "no", "diabetes": "no", "sex": "male", "smoker": "yes"}.items():
-        answer(qtbot, window, id, option)
+        answer(window, id, option)
     chooser = window.model_bar.recalibration.chooser
     assert chooser.isVisible()
     assert chooser.currentText() == "Choose…"

@@ -15,8 +15,10 @@ from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
 from tests.gui.bedside_hands import (
     choose_unit,
+    click,
     fill_2008,
     number_row,
+    press,
     retype_number,
     type_number,
     unit_chooser,
@@ -28,26 +30,33 @@ TODAY = date(2026, 12, 1)
 
 
 def test_unit_slip_stops_and_the_offer_brings_the_number(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    retype_number(qtbot, window, "total_cholesterol", "5.2")
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", "5.2")
     row = number_row(window, "total_cholesterol")
     assert window.sheet.number.figure == ""
     assert "Total cholesterol stops it" in window.sheet.sentence.text()
     assert row.frame.is_stopped
     assert row.offer.isVisible()
     assert row.offer.text() == "&Use 5.2 mmol/L"
-    qtbot.mouseClick(row.offer, Qt.MouseButton.LeftButton)
+    click(row.offer)
     assert window.sheet.number.figure != ""
     assert (row.edit.text(), unit_chooser(window, "total_cholesterol").currentText()) == ("5.2", "mmol/L")
     assert row.remark.text() == "read as 5.2 mmol/L"
     assert not row.offer.isVisible()
-    assert not row.frame.is_stopped
+    assert not number_row(window, "total_cholesterol").frame.is_stopped
     assert row.edit.hasFocus()
 
 
+def test_only_one_offer_has_the_access_letter(window: MainWindow) -> None:
+    for id in ("total_cholesterol", "hdl_cholesterol"):
+        type_number(window, id, "1.2" if id == "hdl_cholesterol" else "5.2")
+    offers = [number_row(window, id).offer.text() for id in ("total_cholesterol", "hdl_cholesterol")]
+    assert offers == ["&Use 5.2 mmol/L", "Use 1.2 mmol/L"]
+
+
 def test_switching_there_and_back_restores_every_character(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    retype_number(qtbot, window, "total_cholesterol", "180,50")
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", "180,50")
     row, before = number_row(window, "total_cholesterol"), window.sheet.number.figure
     choose_unit(window, "total_cholesterol", "mmol/L")
     assert row.edit.text() == "4.6677"  # 180.50 * 0.02586, to what the last typed digit is worth
@@ -58,7 +67,7 @@ def test_switching_there_and_back_restores_every_character(qtbot: QtBot, window:
 
 
 def test_digits_stay_where_only_the_new_unit_makes_them_believable(qtbot: QtBot, window: MainWindow) -> None:
-    type_number(qtbot, window, "total_cholesterol", "5.2")
+    type_number(window, "total_cholesterol", "5.2")
     choose_unit(window, "total_cholesterol", "mmol/L")
     row = number_row(window, "total_cholesterol")
     assert (row.edit.text(), row.remark.text()) == ("5.2", "read as 5.2 mmol/L")
@@ -68,16 +77,16 @@ def test_digits_stay_where_only_the_new_unit_makes_them_believable(qtbot: QtBot,
 
 
 def test_editing_a_converted_value_makes_it_the_truth(qtbot: QtBot, window: MainWindow) -> None:
-    type_number(qtbot, window, "total_cholesterol", "180")
+    type_number(window, "total_cholesterol", "180")
     choose_unit(window, "total_cholesterol", "mmol/L")
-    qtbot.keyClick(number_row(window, "total_cholesterol").edit, Qt.Key.Key_Backspace)
+    press(number_row(window, "total_cholesterol").edit, Qt.Key.Key_Backspace)
     held = number_row(window, "total_cholesterol").held
     assert (held.typed.text, held.typed.unit, held.remark) == ("4.6", "mmol/L", "")
 
 
 def test_unit_typed_in_the_field_counts(qtbot: QtBot, window: MainWindow) -> None:
-    fill_2008(qtbot, window)
-    retype_number(qtbot, window, "total_cholesterol", "4.655 mmol/l")
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", "4.655 mmol/l")
     assert unit_chooser(window, "total_cholesterol").currentText() == "mmol/L"
     # the same patient with 4.655 mmol/L: 0.1049 instead of 0.1048 at 180 mg/dL, both printed as 10.5 %
     assert window.sheet.number.figure == "10.5"

@@ -80,7 +80,7 @@ AGE_CHD = (
     (69, 1, 1),
 )
 
-# printed output on these data in a public university lecture script: coefficients, then the covariance
+# printed R output on these data in a public university course script: coefficients, then the covariance
 PRINTED = ((-5.30945, 0.11092), ((1.28517284, -0.02667702), (-0.02667702, 0.0005788757)))
 # the same script: P(CHD) by age
 PRINTED_PROBABILITIES = {42: 0.3428, 44: 0.3944, 46: 0.4484, 48: 0.5037, 50: 0.5589}

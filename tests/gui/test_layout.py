@@ -1,0 +1,56 @@
+"""Nothing is cut off, at the usual size and at the smallest, for every shipped file."""
+
+from collections.abc import Callable
+
+import pytest
+from PySide6.QtCore import QSize
+from PySide6.QtWidgets import QApplication, QLabel, QWidget
+
+from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.assessment.model import Model
+from clinicalc.gui.main_window import SMALLEST, MainWindow
+from clinicalc.gui.segments import Segment
+from clinicalc.operations.bedside import open_example
+from clinicalc.resources import list_example_models
+
+pytestmark = pytest.mark.gui
+
+
+def cut_labels(window: MainWindow) -> list[str]:
+    """The texts of visible labels that have less room than their text takes."""
+    cut = []
+    for label in window.findChildren(QLabel):
+        if not label.isVisible() or not label.text():
+            continue
+        if label.wordWrap():
+            fits = label.height() >= label.heightForWidth(label.width())
+        else:
+            fits = label.width() >= label.fontMetrics().horizontalAdvance(label.text())
+        if not fits:
+            cut.append(label.text())
+    return cut
+
+
+def overhanging(inner: QWidget, outer: QWidget) -> bool:
+    place = inner.mapTo(outer, inner.rect().bottomRight())
+    return place.x() >= outer.width()
+
+
+@pytest.mark.parametrize("size", [QSize(1280, 800), SMALLEST], ids=["usual", "smallest"])
+@pytest.mark.parametrize("name", list_example_models())
+def test_nothing_is_cut_off(open_window: Callable[[Model | None], MainWindow], name: str, size: QSize) -> None:
+    window = open_window(open_example(name))
+    window.resize(size)
+    # a patient of whom much is to be said: a stop in every number field, and every question answered
+    typed = dict.fromkeys(window.values.rows, "5.2") | {"sex": "female", "smoker": "yes", "prior_cvd": "yes"}
+    assert window.state.model is not None
+    window.use_model(window.state.model, entry_from_texts(typed, "Ottilie Fenn"))
+    QApplication.processEvents()
+    QApplication.processEvents()
+    assert window.size() == size
+    assert cut_labels(window) == []
+    body = window.values.widget()
+    assert [id for id, row in window.values.rows.items() if overhanging(row, body)] == []
+    for segment in window.findChildren(Segment):
+        assert segment.width() >= segment.fontMetrics().horizontalAdvance(segment.option.label), segment.option
+        assert segment.height() >= 24
