@@ -173,7 +173,7 @@ class MainWindow(QWidget):
         focused = self.focusWidget()
         if focused is not None and self.values.isAncestorOf(focused):
             self._left_field = focused
-            self.sheet.scroll.setFocus(Qt.FocusReason.ShortcutFocusReason)
+            self.sheet.scroller.setFocus(Qt.FocusReason.ShortcutFocusReason)
         elif self._left_field is not None and self._left_field in self.values.tab_stops():
             self._left_field.setFocus(Qt.FocusReason.ShortcutFocusReason)
         else:

@@ -50,6 +50,7 @@ def test_nothing_is_cut_off(open_window: Callable[[Model | None], MainWindow], n
     assert window.size() == size
     assert cut_labels(window) == []
     body = window.values.widget()
+    assert body is not None
     assert [id for id, row in window.values.rows.items() if overhanging(row, body)] == []
     for segment in window.findChildren(Segment):
         assert segment.width() >= segment.fontMetrics().horizontalAdvance(segment.option.label), segment.option

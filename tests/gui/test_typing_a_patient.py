@@ -187,8 +187,8 @@ def test_f6_goes_to_the_result_and_back(window: MainWindow) -> None:
     edit = number_row(window, "age").edit
     edit.setFocus()
     press(edit, Qt.Key.Key_F6)
-    assert window.sheet.scroll.hasFocus()
-    press(window.sheet.scroll, Qt.Key.Key_F6)
+    assert window.sheet.scroller.hasFocus()
+    press(window.sheet.scroller, Qt.Key.Key_F6)
     assert edit.hasFocus()
 
 
