@@ -89,7 +89,7 @@ def build_file(fit: Fit) -> s.CoefficientFile:
         id="tarnwick-cvd-10y",
         version="1.0.0",
         title="Tarnwick cardiovascular disease, invented example",
-        outcome="First heart attack or stroke, fatal or not (invented)",
+        outcome="First heart attack or stroke: fatal or not, in invented people",
         source=_source(int(fit.cohort["event"].sum())),
         unconfirmed=(),
         use=_use(),

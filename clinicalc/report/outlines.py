@@ -24,11 +24,14 @@ class Box:
         return (self.left + self.right) / 2
 
 
-def read_boxes(font: bytes, glyphs: Mapping[int, int]) -> Mapping[int, Box]:
-    """The box of each character of `glyphs` (code point to glyph number); a character without ink has none."""
+def read_boxes(font: bytes, glyphs: Mapping[int, int], em: float = 1000.0) -> Mapping[int, Box]:
+    """The box of each character of `glyphs` (code point to glyph number); a character without ink has none.
+
+    `em` is what the font's own size counts in the boxes.
+    """
     tables = _tables(font)
     head = tables["head"]
-    scale = 1000.0 / struct.unpack_from(">H", font, head + 18)[0]
+    scale = em / struct.unpack_from(">H", font, head + 18)[0]
     long_offsets = struct.unpack_from(">h", font, head + 50)[0] == 1
     boxes = {}
     for code, glyph in glyphs.items():

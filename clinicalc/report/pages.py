@@ -4,8 +4,9 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from clinicalc.report.contents import Furniture, Sheet
-from clinicalc.report.fonts import Lettering, Weight
+from clinicalc.report.fonts import Lettering
 from clinicalc.report.shapes import Line, Rect, Shape, Text, Tone, hatch
+from clinicalc.report.typefaces import Weight
 from clinicalc.report.typeset import SMALL, WIDTH, Strip, Style, set_lines, set_sheet
 
 PAGE_WIDTH, PAGE_HEIGHT = 595.28, 841.89

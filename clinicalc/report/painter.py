@@ -20,7 +20,6 @@ def _paint(canvas: Any, lettering: Lettering, shape: Shape) -> None:
     match shape:
         case Text():
             canvas.setFillColor(_colour(shape.tone))
-            canvas.setFont(shape.weight.value, shape.size)
             _write(canvas, lettering, shape)
         case Line():
             canvas.setStrokeColor(_colour(shape.tone))
@@ -41,14 +40,21 @@ def _paint(canvas: Any, lettering: Lettering, shape: Shape) -> None:
 
 def _write(canvas: Any, lettering: Lettering, text: Text) -> None:
     """One text object for the whole line, so that it is read back as one; accents set over their letters."""
+    pieces = list(lettering.pieces(text.text, text.weight))
+    if not pieces:
+        return
+    font = pieces[0].font
+    canvas.setFont(font.name, text.size * font.scale)
     written = canvas.beginText(text.x, PAGE_HEIGHT - text.y)
     space = rise = 0.0
-    for piece in lettering.pieces(text.text, text.weight):
+    for piece in pieces:
+        if piece.font is not font:
+            written.setFont(piece.font.name, text.size * piece.font.scale)
         if piece.space != space:
             written.setCharSpace(piece.space * text.size / 1000.0)
         if piece.rise != rise:
             written.setRise(piece.rise * text.size / 1000.0)
-        space, rise = piece.space, piece.rise
+        font, space, rise = piece.font, piece.space, piece.rise
         written.textOut(piece.text)
     if space:
         written.setCharSpace(0)  # both would hold for the next text

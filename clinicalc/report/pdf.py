@@ -15,9 +15,10 @@ from clinicalc.errors import FileNotWritten, PrintRefused, UsageError
 from clinicalc.report.attachment import attach_record
 from clinicalc.report.compose import compose
 from clinicalc.report.contents import Sheet
-from clinicalc.report.fonts import Lettering, Weight, check_text, read_fonts, read_lettering
+from clinicalc.report.fonts import Lettering, check_text, read_lettering
 from clinicalc.report.pages import PAGE_HEIGHT, PAGE_WIDTH, lay_out
 from clinicalc.report.painter import paint_pages
+from clinicalc.report.typefaces import Weight
 
 LONGEST_NAME = 120
 """Characters of a patient label or a practice name; more would push the result off its page."""
@@ -116,11 +117,8 @@ def _texts(node: object) -> Iterator[str]:
 def _write_pdf(lettering: Lettering, sheet: Sheet, moment: datetime, record: str) -> bytes:
     from io import BytesIO
 
-    from reportlab.pdfbase import pdfmetrics
     from reportlab.pdfgen.canvas import Canvas
 
-    for font in read_fonts().values():
-        pdfmetrics.registerFont(font)
     target = BytesIO()
     canvas: Any = Canvas(
         target,

@@ -4,7 +4,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from enum import StrEnum
 
-from clinicalc.report.fonts import Weight
+from clinicalc.report.typefaces import Weight
 
 
 class Tone(StrEnum):

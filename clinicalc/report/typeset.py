@@ -5,8 +5,9 @@ from dataclasses import dataclass, replace
 
 from clinicalc.report.contents import Block, Fact, FactList, Prose, Remark, RemarkList, Result, Section, Sheet, Table
 from clinicalc.report.contents import SignatureLine as Signature
-from clinicalc.report.fonts import Lettering, Weight
+from clinicalc.report.fonts import Lettering
 from clinicalc.report.shapes import Line, Rect, Shape, Text, Tone
+from clinicalc.report.typefaces import Weight
 
 WIDTH = 510.0
 """Points between the margins of a page."""

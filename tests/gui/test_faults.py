@@ -14,7 +14,7 @@ from clinicalc.assessment.entry import PatientEntry, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
-from clinicalc.errors import UnitError
+from clinicalc.errors import ClinicalcError, UnitError
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.exceptions import ExceptionHook, explain
 from clinicalc.gui.main_window import MainWindow
@@ -120,6 +120,19 @@ def test_values_stay_after_a_fault(qtbot: QtBot, hooked: MainWindow) -> None:
     retype_number(hooked, "age", "77")
     assert number_row(hooked, "age").edit.text() == "77"
     assert number_row(hooked, "total_cholesterol").edit.text() == "180"
+
+
+class Unspeakable(ClinicalcError):
+    """An error that fails again when it is asked for its words."""
+
+    def __str__(self) -> str:
+        raise ValueError("no words")
+
+
+def test_fault_that_cannot_be_explained_leaves_no_number_either(hooked: MainWindow) -> None:
+    with pytest.raises(ValueError, match="no words"):
+        sys.excepthook(Unspeakable, Unspeakable("x"), None)
+    assert_blank(hooked)
 
 
 def test_our_own_errors_are_given_in_their_words() -> None:

@@ -121,8 +121,9 @@ def test_new_patient_clears_everything(qtbot: QtBot, window: MainWindow) -> None
     edits = [number_row(window, id).edit for id in ("age", "total_cholesterol", "hdl_cholesterol", "systolic_bp")]
     for edit in (*edits, window.values.label_row.edit):
         assert edit.text() == ""
+        assert not edit.isUndoAvailable()
+        assert not edit.isRedoAvailable()
         edit.undo()
-        edit.redo()
         assert edit.text() == ""
     assert chooser.currentData() == "mg/dL"
     answers = [question_row(window, id).segments.answer for id in ("prior_cvd", "sex", "smoker", "diabetes")]

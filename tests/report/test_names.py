@@ -5,7 +5,8 @@ import unicodedata
 import pytest
 
 from clinicalc.errors import PrintRefused
-from clinicalc.report.fonts import Weight, read_lettering
+from clinicalc.report.fonts import read_lettering
+from clinicalc.report.typefaces import Weight
 from tests.report.printing import printed, text_of, with_band
 
 WHOLE = [
@@ -67,7 +68,7 @@ def test_an_accent_is_painted_over_the_middle_of_its_letter_and_above_it() -> No
     lettering = read_lettering()
     letter, accent, rest = lettering.pieces("X\u030ca", Weight.REGULAR)
     wide = lettering.width("X", 1000.0)
-    middle = lettering.boxes[Weight.REGULAR][ord("X")].middle
+    middle = lettering.first[Weight.REGULAR].boxes[ord("X")].middle
     assert (letter.text, accent.text, rest.text) == ("X", "\u030c", "a")
     assert wide + letter.space == pytest.approx(middle)
     assert letter.space + accent.space == pytest.approx(0.0)  # the next letter stands where it would without accent
