@@ -30,7 +30,7 @@ def take_answer(field: QuestionField, typed: Typed) -> tuple[TakenAnswer | None,
                         Grade.STOP,
                         FindingCode.EXCLUDED,
                         field.id,
-                        f"This model does not answer for this patient ({field.label} Yes): {field.excludes}",
+                        f"Answered yes: this model does not answer for this patient. {field.excludes}",
                     ),
                 )
             return taken, _cautions(field, option)

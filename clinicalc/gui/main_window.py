@@ -118,7 +118,9 @@ class MainWindow(QWidget):
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Small windows take the narrow pane."""
         super().resizeEvent(event)
-        self.values.set_compact(event.size().width() < COMPACT_BELOW)
+        compact = event.size().width() < COMPACT_BELOW
+        self.values.set_compact(compact)
+        self.sheet.set_compact(compact)
 
     def _lay_out(self) -> None:
         page = QWidget()

@@ -1,6 +1,6 @@
 """The bar that says which model answers: title, version, fingerprint, state, and the choices the file offers."""
 
-from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QVBoxLayout, QWidget
 
 from clinicalc.assessment.model import Model
 from clinicalc.coefficients.fingerprint import group_fingerprint
@@ -20,19 +20,19 @@ _AS_PUBLISHED = "None: as published"
 class Cell(QWidget):
     """A caption and, under it, one line or one chooser."""
 
-    def __init__(self, caption: str, inside: QWidget | None = None) -> None:
+    def __init__(self, caption: str, inside: QLabel | FramedChooser) -> None:
         super().__init__()
-        self.value = make_line()
-        self.caption = make_line(caption, CAPTION, soft=True)
+        head = make_line(caption, CAPTION, soft=True)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 10, 0, 0)
-        column.setSpacing(2 if inside is None else 0)
-        column.addWidget(self.caption)
-        column.addWidget(inside or self.value)
+        column.setSpacing(2)
+        column.addWidget(head)
+        column.addWidget(inside)
         column.addStretch(1)
-        if inside is not None:
-            self.caption.setContentsMargins(RING, 0, 0, 0)
-            self.caption.setFixedHeight(_TIGHT_CAPTION)
+        if isinstance(inside, FramedChooser):
+            column.setSpacing(0)
+            head.setContentsMargins(RING, 0, 0, 0)
+            head.setFixedHeight(_TIGHT_CAPTION)
 
 
 class ModelBar(QWidget):
@@ -45,19 +45,23 @@ class ModelBar(QWidget):
         self.setObjectName("ground")
         self.open_button = make_button("&Open file…")
         self.title = make_label("", VALUE, semibold=True)
-        self.version, self.fingerprint, self.vetting = Cell("Version"), Cell("Fingerprint"), Cell("State")
+        self.version, self.fingerprint, self.vetting = make_line(), make_line(), make_line()
         self.horizon, self.recalibration = FramedChooser(104), FramedChooser(176)
         self.horizon_cell = Cell("Horizon", self.horizon)
         self.recalibration_cell = Cell("Recalibration", self.recalibration)
         self.horizon.chooser.setAccessibleName("Horizon")
         self.recalibration.chooser.setAccessibleName("Recalibration")
-        self._cells = (self.version, self.fingerprint, self.vetting, self.horizon_cell, self.recalibration_cell)
+        self._facts = (
+            Cell("Version", self.version),
+            Cell("Fingerprint", self.fingerprint),
+            Cell("State", self.vetting),
+        )
         row = QHBoxLayout(self)
         row.setContentsMargins(SIDE_MARGIN, 0, SIDE_MARGIN, 0)
         row.setSpacing(24)
         self.title.setMaximumWidth(_TITLE_WIDTH)
         row.addWidget(self.title, 20)
-        for cell in self._cells:
+        for cell in (*self._facts, self.horizon_cell, self.recalibration_cell):
             row.addWidget(cell)
             cell.hide()
         row.addStretch(1)
@@ -73,10 +77,10 @@ class ModelBar(QWidget):
         if model is None:
             return
         self.title.setText(model.content.title)
-        self.version.value.setText(model.content.version)
-        self.fingerprint.value.setText(group_fingerprint(model.fingerprint, 3))
-        self.vetting.value.setText("Not vetted")
-        for cell in (self.version, self.fingerprint, self.vetting):
+        self.version.setText(model.content.version)
+        self.fingerprint.setText(group_fingerprint(model.fingerprint, 3))
+        self.vetting.setText("Not vetted")
+        for cell in self._facts:
             cell.show()
         self._offer_horizons(model)
         self._offer_recalibrations(model)

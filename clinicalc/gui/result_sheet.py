@@ -18,6 +18,8 @@ from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED, level_words
 
 _NOTHING = "–"
 _RING = 2
+_ROOM = (110, 72)
+_ROOM_COMPACT = (134, 92)
 
 
 class ResultSheet(QWidget):
@@ -35,11 +37,13 @@ class ResultSheet(QWidget):
         self.band_name = make_line()
         self.band_figure = make_line("", semibold=True)
         self.band_reason = make_label("", soft=True)
+        self.band_reason.setContentsMargins(0, 0, 0, 10)
         self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
         self.outcome = make_label("", CAPTION, soft=True)
         self.findings = FindingsList()
         self.scroller = QScrollArea()
         self._lay_out()
+        self.set_compact(False)
         self._show_no_model()
         state.model_changed.connect(self._take_model)
         state.assessed.connect(self._show_current)
@@ -53,31 +57,35 @@ class ResultSheet(QWidget):
         self.sentence.setText(sentence)
         self.findings.hide()
 
+    def set_compact(self, compact: bool) -> None:
+        """Keep as much room as words take in a narrow sheet, so that nothing moves when they come or go."""
+        for row, height in enumerate(_ROOM_COMPACT if compact else _ROOM):
+            self._grid.setRowMinimumHeight(row, height)
+
     def _lay_out(self) -> None:
         body = QWidget()
         body.setObjectName("sheet")
         grid = QGridLayout(body)
         grid.setContentsMargins(SHEET_MARGIN - _RING, 16, SHEET_MARGIN_RIGHT - _RING, 20)
+        self._grid = grid
         grid.setHorizontalSpacing(24)
         grid.setVerticalSpacing(0)
         grid.setColumnMinimumWidth(0, FIGURE_COLUMN)
         grid.setColumnStretch(1, 1)
         words = QVBoxLayout()
         words.setSpacing(5)
-        words.setContentsMargins(0, 6, 0, 0)
+        words.setContentsMargins(0, 6, 0, 10)
         words.addWidget(self.headline)
         words.addWidget(self.sentence)
         words.addStretch(1)
         grid.addWidget(self.number, 0, 0, Qt.AlignmentFlag.AlignTop | Qt.AlignmentFlag.AlignLeft)
         grid.addLayout(words, 0, 1)
-        grid.setRowMinimumHeight(0, 108)
         band = QGridLayout()
         band.setContentsMargins(0, 0, 0, 0)
         band.addWidget(self.band_name, 0, 0, Qt.AlignmentFlag.AlignLeft)
         band.addWidget(self.band_figure, 0, 1, Qt.AlignmentFlag.AlignRight)
         grid.addLayout(band, 1, 0, Qt.AlignmentFlag.AlignTop)
         grid.addWidget(self.band_reason, 1, 1, Qt.AlignmentFlag.AlignTop)
-        grid.setRowMinimumHeight(1, 68)
         grid.addWidget(self.meaning, 2, 0, 1, 2)
         grid.setRowMinimumHeight(3, 6)
         grid.addWidget(self.outcome, 4, 0, 1, 2)

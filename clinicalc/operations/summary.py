@@ -1,16 +1,11 @@
 """The assessment as plain text: for the command line, and for copying."""
 
-from clinicalc.assessment.findings import Finding
-from clinicalc.assessment.numerals import NARROW_SPACE, of_people, percent, percent_range
+from clinicalc.assessment.findings import Finding, FindingCode
+from clinicalc.assessment.numerals import percent, percent_range
 from clinicalc.assessment.result import Assessment, ValueLine
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.operations.folding import fold
-
-BAND_WORDS = (
-    "The band says how precisely the model’s coefficients are known for people with these values. It is not this"
-    " patient’s range and covers no other population."
-)
-NOT_VETTED = "Not vetted: for trying out, not for a patient."
+from clinicalc.report import phrases
 
 
 def summarise(assessment: Assessment) -> str:
@@ -21,7 +16,7 @@ def summarise(assessment: Assessment) -> str:
             f"{model.content.title}, version {model.content.version}",
             f"Fingerprint {group_fingerprint(model.fingerprint, 3)}",
         ],
-        [NOT_VETTED],
+        [f"{phrases.NOT_VETTED}."],
         _number(assessment),
         _findings(assessment.findings),
         _values(assessment.values),
@@ -35,19 +30,9 @@ def people_sentence(assessment: Assessment) -> str:
     estimate, span = assessment.estimate, assessment.span
     if estimate is None or span is None:
         return ""
-    count, whole = of_people(estimate.probability)
-    if count is None and estimate.probability < 0.5:
-        return f"Of {whole} people with these values, fewer than 1 has the event within {span.words}."
-    if count is None:
-        return f"Of {whole} people with these values, nearly all have the event within {span.words}."
-    have = "has" if count == 1 else "have"
     equation = next(e for e in assessment.model.equations if e.content.id == assessment.equation)
     censored = equation.content.competing_events.handled == "censored"
-    condition = ", if no other cause of death comes first" if censored else ""
-    return (
-        f"Of {whole} people with these values, about {count} {have} the event within {span.words}"
-        f" and about {whole - count} do not{condition}."
-    )
+    return phrases.people_sentence(estimate.probability, span.words, others_censored=censored)
 
 
 def band_sentence(assessment: Assessment) -> str:
@@ -57,9 +42,7 @@ def band_sentence(assessment: Assessment) -> str:
         return ""
     if estimate.band is None:
         return f"No band: {estimate.band_absent_because}"
-    return (
-        f"{100 * estimate.band.level:g}{NARROW_SPACE}% band {percent_range(estimate.band.lower, estimate.band.upper)}."
-    )
+    return f"{phrases.level_words(estimate.band.level)} band {percent_range(estimate.band.lower, estimate.band.upper)}."
 
 
 def recalibration_label(assessment: Assessment) -> str:
@@ -70,15 +53,15 @@ def recalibration_label(assessment: Assessment) -> str:
 
 def progress_sentence(assessment: Assessment) -> str:
     """Why there is no number: what stops it, or how many entries are still to go and which comes next."""
-    if assessment.stops:
-        labels = {field.id: field.label.rstrip("?") for field in assessment.model.fields}
-        first = assessment.stops[0]
-        return f"{labels.get(first.field, first.field.capitalize())} stops it."
-    count = len(assessment.missing)
     labels = {field.id: field.label for field in assessment.model.fields}
-    if not count:
+    if any(stop.code in (FindingCode.EXCLUDED, FindingCode.OUTSIDE_DERIVATION) for stop in assessment.stops):
+        return "This model does not answer for this patient."
+    if assessment.stops:
+        first = assessment.stops[0].field
+        return f"{labels.get(first, first.capitalize())} stops it."
+    if not assessment.missing:
         return ""
-    entries = "1 entry" if count == 1 else f"{count} entries"
+    entries = phrases.count_words(len(assessment.missing), "entry", "entries")
     return f"{entries} to go. Next: {labels[assessment.missing[0].field]}"
 
 
@@ -94,7 +77,7 @@ def _number(assessment: Assessment) -> list[str]:
         lines.append(f"Recalibration: {label}.")
     lines.append(band_sentence(assessment))
     if estimate.band is not None:
-        lines.append(BAND_WORDS)
+        lines.append(phrases.BAND_MEANING)
     return lines
 
 

@@ -1,5 +1,6 @@
 """The lettering of a print: which typeface a line is set in, how wide it is, and what may not be printed at all."""
 
+import re
 import unicodedata
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
@@ -45,17 +46,28 @@ class Lettering:
             return sum(font.width(part) for font, part in self.runs(text, weight)) * size / 1000.0
 
     def runs(self, text: str, weight: Weight) -> Iterator[tuple[Font, str]]:
-        """The line in runs of one font: the whole of it in one typeface, where one has it all; else by letters."""
-        first = self.first[weight]
-        if first.has(text):
-            yield first, text
+        """The line in runs of one font, each in a typeface that has the whole of it.
+
+        In regular both typefaces look alike, and a word changes alone. In semibold, in which names stand, the second is
+        much the heavier, and the whole line changes.
+        """
+        if self.first[weight].has(text):
+            yield self.first[weight], text
             return
-        second = self.second()[weight]
-        if second.has(text):
-            yield second, text
-            return
-        for letter, accents in _clusters(text):
-            yield first if first.has(letter + accents) else second, letter + accents
+        parts = [text] if weight is Weight.SEMIBOLD else re.findall("[^ ]+ *| +", text)
+        for part in parts:
+            whole = self._font_for(part, weight)
+            if whole is not None:
+                yield whole, part
+                continue
+            for letter, accents in _clusters(part):
+                yield self._font_for(letter + accents, weight) or self.first[weight], letter + accents
+
+    def _font_for(self, text: str, weight: Weight) -> Font | None:
+        """The first font that has all of the text; None where neither has."""
+        if self.first[weight].has(text):
+            return self.first[weight]
+        return second if (second := self.second()[weight]).has(text) else None
 
     def wrap(self, text: str, width: float, size: float, weight: Weight = Weight.REGULAR) -> tuple[str, ...]:
         """The text in lines no wider than `width` points; a word wider than a line is broken anywhere."""
@@ -91,7 +103,7 @@ class Lettering:
                 yield Piece(plain, font)
 
     def lacks(self, text: str) -> bool:
-        """Whether, in one of the weights, neither typeface has the whole of this letter with its accents."""
+        """Whether, in one of the weights, neither typeface has all of this text, such as a letter with its accents."""
         short = [weight for weight, font in self.first.items() if not font.has(text)]
         if not short:
             return False
@@ -146,19 +158,25 @@ def _clusters(text: str) -> Iterator[tuple[str, str]]:
 
 def check_text(lettering: Lettering, text: str, what: str) -> None:
     """Raises PrintRefused when the print could only show `text` wrongly; `what` names it in the sentence."""
-    for letter, accents in _clusters(unicodedata.normalize("NFC", text)):
+    composed = unicodedata.normalize("NFC", text)
+    if not any(map(_is_hidden, composed)) and not lettering.lacks(composed):
+        return
+    for letter, accents in _clusters(composed):
         cluster = letter + accents
-        for place, character in enumerate(cluster):
-            hidden = unicodedata.category(character) in _DISGUISING
-            if hidden or lettering.lacks(cluster[: place + 1]):
-                raise _refused(text, what, character, hidden)
+        for end, character in enumerate(cluster, 1):
+            if _is_hidden(character) or lettering.lacks(cluster[:end]):
+                raise _refused(text, what, character)
 
 
-def _refused(text: str, what: str, character: str, hidden: bool) -> PrintRefused:
+def _is_hidden(character: str) -> bool:
+    return unicodedata.category(character) in _DISGUISING
+
+
+def _refused(text: str, what: str, character: str) -> PrintRefused:
     name = unicodedata.name(character, "")
     why = (
         "a hidden control character, which can make a text look like another."
-        if hidden
+        if _is_hidden(character)
         else "and the typefaces of the print have no such character. They have Latin, Greek and Cyrillic letters."
     )
     return PrintRefused(

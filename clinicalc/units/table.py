@@ -17,6 +17,8 @@ class _Row(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
 
 
 class UnitRow(_Row, frozen=True):
+    """One unit as the file has it; scale and offset are exact decimals."""
+
     code: str
     spelling: str
     dimension: str
@@ -26,11 +28,15 @@ class UnitRow(_Row, frozen=True):
 
 
 class UnitTable(_Row, frozen=True):
+    """The file of units."""
+
     notice: str
     units: tuple[UnitRow, ...]
 
 
 class MolarRow(_Row, frozen=True):
+    """An analyte's factor from a mass unit to a molar one."""
+
     mass_unit: str
     molar_unit: str
     factor: str
@@ -38,6 +44,8 @@ class MolarRow(_Row, frozen=True):
 
 
 class EquationRow(_Row, frozen=True):
+    """A named affine equation between two units."""
+
     name: str
     from_unit: str
     to_unit: str
@@ -47,17 +55,23 @@ class EquationRow(_Row, frozen=True):
 
 
 class ApartRow(_Row, frozen=True):
+    """Ranges of a unit that never converts into the others."""
+
     unit: str
     possible: tuple[float, float]
     usual: tuple[float, float]
 
 
 class RefusedRow(_Row, frozen=True):
+    """A unit that looks right and is refused, with the sentence why."""
+
     unit: str
     why: str
 
 
 class QuantityRow(_Row, frozen=True):
+    """One quantity as the file has it."""
+
     id: str
     label: str
     unit: str
@@ -73,6 +87,8 @@ class QuantityRow(_Row, frozen=True):
 
 
 class CrossCheckRow(_Row, frozen=True):
+    """Two quantities of which the first may not exceed the second."""
+
     lower: str
     upper: str
     grade: Literal["stop", "caution"]
@@ -81,6 +97,8 @@ class CrossCheckRow(_Row, frozen=True):
 
 
 class QuantityTable(_Row, frozen=True):
+    """The file of quantities."""
+
     notice: str
     quantities: tuple[QuantityRow, ...]
     cross_checks: tuple[CrossCheckRow, ...]

@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.assess import assess
-from clinicalc.assessment.entry import PatientEntry, entry_from_texts
+from clinicalc.assessment.entry import PatientEntry, Typed, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
@@ -65,6 +65,12 @@ def test_fault_inside_an_assessment(qtbot: QtBot, hooked: MainWindow, capsys: py
     assert SECRET not in hooked.sheet.sentence.text()
     retype_number(hooked, "age", "61")
     assert hooked.sheet.number.figure == "10.5"
+
+
+def test_fault_inside_an_assessment_needs_no_hook_to_blank(hooked: MainWindow) -> None:
+    with pytest.raises(ZeroDivisionError):
+        hooked.state.type_value("age", Typed("77"))
+    assert_blank(hooked)
 
 
 def test_fault_in_a_slot_that_hears_of_the_assessment(qtbot: QtBot, hooked: MainWindow) -> None:

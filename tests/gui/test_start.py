@@ -48,6 +48,29 @@ print(window.sheet.number.figure, [m for m in {HEAVY!r} if m in sys.modules])
     assert run_python(program).stdout.strip() == "10.5 []"
 
 
+def test_window_opens_on_a_patient_and_closes() -> None:
+    program = """
+import sys
+from PySide6.QtCore import QTimer
+from PySide6.QtWidgets import QApplication
+from clinicalc.gui.application import run_window
+from clinicalc.gui.main_window import MainWindow
+from clinicalc.operations.demonstration import demo_case
+application = QApplication([])
+def look():
+    QTimer.singleShot(0, application.quit)
+    window = next(w for w in application.topLevelWidgets() if isinstance(w, MainWindow) and w.isVisible())
+    print(window.windowTitle(), "|", window.sheet.number.figure != "", type(sys.excepthook).__name__)
+QTimer.singleShot(100, look)
+case = demo_case()
+print(run_window(case.model, case.entry))
+"""
+    done = run_python(program)
+    title, _, rest = done.stdout.partition("|")
+    assert title.startswith("Patient: ")
+    assert rest.split() == ["True", "ExceptionHook", "0"]
+
+
 def test_preflight_loads_without_qt() -> None:
     """Where PySide6 is not installed the module still loads and says so."""
     program = """

@@ -2,12 +2,15 @@
 
 from collections.abc import Callable
 
+import msgspec
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
-from clinicalc.assessment.model import Model
+from clinicalc.assessment.model import Model, prepare_model
+from clinicalc.coefficients.reader import ReadFile
+from clinicalc.coefficients.schema import CoefficientFile
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
 from tests.gui.bedside_hands import (
@@ -191,6 +194,26 @@ def test_f6_goes_to_the_result_and_back(window: MainWindow) -> None:
     assert window.sheet.scroller.hasFocus()
     press(window.sheet.scroller, Qt.Key.Key_F6)
     assert edit.hasFocus()
+
+
+def test_horizon_is_open_until_somebody_chooses(
+    open_window: Callable[[Model | None], MainWindow], lipids: Model
+) -> None:
+    replace = msgspec.structs.replace
+    equations = tuple(
+        replace(e, horizons=(*e.horizons, replace(e.horizons[0], years=12.0))) for e in lipids.content.equations
+    )
+    file = CoefficientFile("clinicalc.coefficients/1", replace(lipids.content, equations=equations), ())
+    window = open_window(prepare_model(ReadFile(lipids.name, file, b"", lipids.fingerprint)))
+    fill_2008(window)
+    chooser = window.model_bar.horizon.chooser
+    assert chooser.isVisible()
+    assert [chooser.itemText(place) for place in range(chooser.count())] == ["Choose…", "10 years", "12 years"]
+    assert (figure(window), window.sheet.sentence.text()) == ("", "1 entry to go. Next: the horizon, above.")
+    chooser.setCurrentIndex(1)
+    assert figure(window) == "10.5"
+    chooser.setCurrentIndex(0)
+    assert figure(window) == ""
 
 
 def test_recalibration_is_open_until_somebody_chooses(

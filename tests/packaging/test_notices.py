@@ -31,7 +31,10 @@ def test_every_font_is_named_and_its_licence_ships(notices: str) -> None:
     fonts = {entry.name for entry in find_shipped("resources/fonts").iterdir()}
     assert "SourceSans3-OFL.md" in fonts
     assert "SIL Open Font License, Version 1.1" in read_shipped("resources/fonts/SourceSans3-OFL.md").decode("utf-8")
-    assert {name for name in fonts if PurePath(name).suffix == ".ttf" and name not in notices} == set()
+    assert {name for name in fonts if PurePath(name).suffix == ".ttf" and f"{name}`" not in notices} == set()
+    families = {name.partition("-")[0].removesuffix(".ttf") for name in fonts}
+    terms = {name.partition("-")[0] for name in fonts if PurePath(name).suffix in {".md", ".txt"}}
+    assert terms == families
 
 
 def _loinc_codes(node: Any) -> set[str]:

@@ -14,6 +14,9 @@ WHOLE = [
     "Ελένη Παπαδοπούλου Ὀδυσσεύς",
     "Жанна Щукина-Ґалаґан Їжак",
     "Nguyễn Thị Hường",
+    "Аԥсҳа Ҩынҭҟа, Ԓоӄэ",  # letters of Abkhaz and Chukchi that the first typeface lacks
+    "Ɓala Ƙwarai, Nǃxau ǂOma, Ŋ́ma Ӄо̄ Ɓ̣́a",
+    "Ϝάναξ Ϟ",
     "e\u0301lodie",  # comes back as é
     "x\u030c Ж\u0301у \u1ecd\u0301la m\u0323n",  # letters that have no accented letter of their own
     "<b>Fenn</b> &amp; <font size=40>Co</font> {0} %s \\n (x))",
@@ -40,6 +43,18 @@ def test_a_character_the_typeface_lacks_is_refused_by_name(name: str, code: str)
     assert "The patient label" in str(label.value)
     with pytest.raises(PrintRefused, match="The practice name"):
         printed(with_band(), practice=name)
+
+
+def test_a_mark_that_leaves_no_mark_is_refused() -> None:
+    with pytest.raises(PrintRefused, match="COMBINING GRAPHEME JOINER"):
+        printed(with_band("Ottilie\u034f Fenn"))
+
+
+def test_a_letter_is_refused_with_an_accent_of_another_typeface() -> None:
+    # U+A75B is in the first typeface alone, U+0346 in the second alone
+    with pytest.raises(PrintRefused, match=r"U\+0346"):
+        printed(with_band("Fenn \ua75b\u0346"))
+    assert "\ua75b \u0411\u0346" in text_of(printed(with_band("\ua75b \u0411\u0346")))
 
 
 @pytest.mark.parametrize("hidden", ["\u202e", "\u2066", "\u200b", "\x07", "\n", "\x00", "\u2028", "\ud800", "\ufeff"])
