@@ -102,8 +102,13 @@ def test_every_figure_that_was_not_read_in_a_source_is_listed() -> None:
             *(f"/equations/{index}/{part}" for index in range(2) for part in ("terms", "horizons/0")),
             *(f"/recalibrations/{index}" for index in range(4)),
         },
-        # an erratum not read; the factor for the two cholesterols
-        "total-cvd-2024-base": {"/equations", "/predictors/2/factor", "/predictors/3/factor"},
+        # an erratum not read; how competing deaths were handled; the factor for the two cholesterols
+        "total-cvd-2024-base": {
+            "/equations",
+            *(f"/equations/{index}/competing_events" for index in range(2)),
+            "/predictors/2/factor",
+            "/predictors/3/factor",
+        },
         "diabetes-2007-clinical": set(),
     }
     general, pooled = MODELS["general-cvd-2008-lipids"], MODELS["ascvd-2013-pooled-cohort"]
