@@ -21,7 +21,13 @@ def main() -> None:
         if hasattr(stream, "reconfigure"):
             stream.reconfigure(encoding="utf-8", errors="backslashreplace")
     words = sys.argv[1:]
-    sys.exit(_run_command(words) if words else _open_window())
+    try:
+        status = _run_command(words) if words else _open_window()
+    except ImportError as error:
+        # a damaged installation; no room could be loaded that would say so more kindly
+        sys.stderr.write(f"clinicalc: a part of the program could not be loaded ({error}). Install it again.\n")
+        status = 5
+    sys.exit(status)
 
 
 def _run_command(words: list[str]) -> int:

@@ -26,9 +26,20 @@ class ClinicalcError(Exception):
         self.do = do
         super().__init__(what, where, why, do)
 
+    def __reduce__(self) -> tuple[object, ...]:
+        return _rebuild, (type(self), self.args, self.__dict__)
+
     def __str__(self) -> str:
         head = f"{self.where}: {self.what}" if self.where else self.what
         return " ".join(part for part in (head, self.why, self.do) if part)
+
+
+def _rebuild(kind: type[ClinicalcError], args: tuple[object, ...], state: dict[str, object]) -> ClinicalcError:
+    """The error again in another process; its parts are keywords, which pickling alone would lose."""
+    error = kind.__new__(kind, *args)
+    error.args = args
+    error.__dict__.update(state)
+    return error
 
 
 class UsageError(ClinicalcError):

@@ -1,15 +1,18 @@
 """One assessment: read, check, require, predict. Never raises on what a person typed."""
 
+from collections.abc import Iterable, Set
 from dataclasses import dataclass
 from datetime import datetime
 
 import numpy as np
 
 from clinicalc.assessment.cautions import equation_cautions
+from clinicalc.assessment.choices import DEFAULT_LEVEL, check_level, settle_choices
 from clinicalc.assessment.cut_points import find_near_cuts
 from clinicalc.assessment.entry import PatientEntry
 from clinicalc.assessment.fields import NumberField, QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade, in_reading_order
+from clinicalc.assessment.limits import clamp, giving_limits
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber, take_number
 from clinicalc.assessment.numerals import NARROW_SPACE
@@ -26,8 +29,6 @@ from clinicalc.covariates.design import design_columns
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.line import Adjustment, Draws, Line, adjustment_of
 from clinicalc.prediction.predict import predict
-
-DEFAULT_LEVEL = 0.95
 
 
 @dataclass(slots=True)
@@ -58,24 +59,26 @@ def assess(
     """The assessment of one patient's entry.
 
     `span` may stay None where the model has one horizon; `recalibration` is the id of one that the file offers at that
-    horizon. What is missing or cannot be used leaves `estimate` None and says why in a finding.
+    horizon. What is missing, not offered or cannot be used leaves `estimate` None and says why in a finding. Raises
+    UsageError for a level of which no band can be made; never for anything typed about the patient.
     """
+    check_level(level)
     at = at or datetime.now().astimezone()
     if span is None and len(model.spans) == 1:
         span = model.spans[0]
     taken = read_entry(model, entry, at)
     equations = possible_equations(model, taken.answers)
     typed = {id for id, value in entry.typed.items() if value.text.strip()}
+    _work_out_all(model, equations, taken, typed)
     available = {*taken.numbers, *taken.answers, *taken.worked_out}
     taken.findings += find_missing(model, equations, available, typed)
-    chosen = None if span is None else _choose_recalibration(model, span, recalibration)
-    taken.findings += _unsettled(model, span, chosen)
+    chosen, unsettled = settle_choices(model, span, recalibration)
+    taken.findings += unsettled
     equation = equations[0] if len(equations) == 1 else None
     estimate = None
-    stopped = any(finding.grade is Grade.STOP for finding in taken.findings)
-    if equation is not None and span is not None and not stopped:
-        estimate = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
-        taken.findings += equation_cautions(model, Basis(equation, span, chosen, taken.numbers, taken.answers))
+    if equation is not None and span is not None and not _stopped(taken.findings):
+        estimate, more = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
+        taken.findings += more
     order = (*(field.id for field in model.fields), "horizon", "recalibration")
     return Assessment(
         model=model,
@@ -92,7 +95,10 @@ def assess(
 
 
 def read_entry(model: Model, entry: PatientEntry, at: datetime) -> Taken:
-    """Every field of the entry read and checked, derived values worked out, values set against each other."""
+    """Every field of the entry read and checked, and the typed values set against each other.
+
+    Contradicting values stop even where the equation uses only one of them: one of the two is a slip.
+    """
     taken = Taken({}, {}, {}, [])
     for field in model.fields:
         typed = entry.typed.get(field.id)
@@ -109,44 +115,34 @@ def read_entry(model: Model, entry: PatientEntry, at: datetime) -> Taken:
             if number is not None:
                 taken.numbers[field.id] = number
         taken.findings += findings
-    _work_out_all(model, taken)
-    taken.findings += check_relations(model, taken.numbers)
+    taken.findings += check_relations(taken.numbers)
     return taken
 
 
-def _work_out_all(model: Model, taken: Taken) -> None:
+def _work_out_all(model: Model, equations: tuple[ModelEquation, ...], taken: Taken, typed: Set[str]) -> None:
+    """Derived values that an equation still possible needs, or that stand beside a typed one."""
     columns = taken.columns
+    needed = {id for equation in equations for id in equation.uses}
     for field in model.derived:
+        if field.id not in needed and field.id not in typed:
+            continue
         column = work_out(model, field, columns)
         if column is None:
             continue
-        value, typed = float(column[0]), taken.numbers.get(field.id)
-        findings = check_worked_out(model, field, value, typed)
+        beside = taken.numbers.get(field.id)
+        findings = check_worked_out(model, field, float(column[0]), beside)
         taken.findings += findings
-        if typed is None and not any(finding.grade is Grade.STOP for finding in findings):
-            taken.worked_out[field.id] = value
+        if beside is None and not _stopped(findings):
+            taken.worked_out[field.id] = clamp(float(column[0]), giving_limits(field))
+
+
+def _stopped(findings: Iterable[Finding]) -> bool:
+    return any(finding.grade is Grade.STOP for finding in findings)
 
 
 def _not_to_be_typed(field: NumberField) -> Finding:
     message = f"{field.label} is worked out from other values and is not typed for this model. Leave it empty."
     return Finding(Grade.STOP, FindingCode.UNREADABLE, field.id, message)
-
-
-def _choose_recalibration(model: Model, span: Span, id: str | None) -> Recalibration | None:
-    return next((r for r in model.recalibrations_at(span) if r.id == id), None)
-
-
-def _unsettled(model: Model, span: Span | None, chosen: Recalibration | None) -> tuple[Finding, ...]:
-    """Stops for choices about the model that are still open."""
-    if span is None:
-        spans = ", ".join(span.words for span in model.spans)
-        message = f"This model answers for several time spans ({spans}): choose one."
-        return (Finding(Grade.STOP, FindingCode.HORIZON, "horizon", message),)
-    if chosen is None and model.content.recalibration_required:
-        offered = ", ".join(f"{r.id} ({r.label})" for r in model.recalibrations_at(span))
-        message = f"This model gives no number without one of its recalibrations: choose one of {offered}."
-        return (Finding(Grade.STOP, FindingCode.RECALIBRATION, "recalibration", message),)
-    return ()
 
 
 def _estimate(
@@ -156,25 +152,46 @@ def _estimate(
     recalibration: Recalibration | None,
     level: float,
     taken: Taken,
-) -> Estimate:
-    """The number and its band; adds what depends on them to the findings."""
+) -> tuple[Estimate | None, list[Finding]]:
+    """The number with its band, and the findings that come with it."""
     typed = taken.columns
     columns = typed | {id: np.array([value]) for id, value in taken.worked_out.items()}
     adjustment = None if recalibration is None else adjustment_of(recalibration.equations[equation.content.id])
-    result = predict(line, design_columns(equation.terms, columns), adjustment=adjustment, level=level)
-    taken.findings += find_near_cuts(model, equation, line, adjustment, typed, taken.numbers)
+    design = design_columns(equation.terms, columns)
+    result = predict(line, design, adjustment=adjustment, level=level)
+    figures = (result.eta, *(end for end in (result.eta_lower, result.eta_upper) if end is not None))
+    if not all(np.isfinite(figure[0]) for figure in figures):
+        return None, [_not_computable()]
     band = None
     if result.lower is not None and result.upper is not None:
         band = Band(level, float(result.lower[0]), float(result.upper[0]), line.basis)
-        if adjustment is not None and adjustment.covariance is None:
-            taken.findings.append(_imprecise_recalibration())
-    return Estimate(
+    basis = Basis(
+        equation=equation,
+        span=line.span,
+        recalibration=recalibration,
+        numbers=taken.numbers,
+        answers=taken.answers,
+        terms=frozenset(place for place, column in enumerate(design) if column[0] != 0),
+        worked_out=frozenset(taken.worked_out) & equation.uses,
+    )
+    findings = [
+        *find_near_cuts(model, equation, line, adjustment, typed, taken.numbers),
+        *equation_cautions(model, basis),
+        *([_imprecise_recalibration()] if band and adjustment and adjustment.covariance is None else []),
+    ]
+    estimate = Estimate(
         eta=float(result.eta[0]),
         probability=float(result.probability[0]),
         complement=float(result.complement[0]),
         band=band,
         band_absent_because="" if band else _no_band_because(line, level, adjustment),
     )
+    return estimate, findings
+
+
+def _not_computable() -> Finding:
+    message = "The model’s equation has no finite result for these values, so there is no number. Tell its author."
+    return Finding(Grade.STOP, FindingCode.NOT_COMPUTABLE, "", message)
 
 
 def _imprecise_recalibration() -> Finding:

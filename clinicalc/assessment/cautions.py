@@ -11,7 +11,7 @@ COMPETING_AGE = 70.0
 
 
 def equation_cautions(model: Model, basis: Basis) -> Iterator[Finding]:
-    """Unconfirmed figures that were used, and competing events that the fit censored in an old patient."""
+    """Unconfirmed figures, competing events that the fit censored in an old patient, and what the file itself says."""
     yield from find_unconfirmed(model, basis)
     competing = basis.equation.content.competing_events
     ages = [n for n in basis.numbers.values() if n.field.quantity.id == "age" and n.value > COMPETING_AGE]
@@ -21,6 +21,8 @@ def equation_cautions(model: Model, basis: Basis) -> Iterator[Finding]:
             Grade.CAUTION,
             FindingCode.COMPETING_EVENTS,
             ages[0].field.id,
-            f"{ages[0].field.label} {ages[0].shown}: the model was fitted as if nobody had {which}. Above"
+            f"{ages[0].field.label} {ages[0].shown}: the fit censored other events ({which}). Above"
             f" {COMPETING_AGE:g} years that makes the number higher than the share of people who have the event.",
         )
+    for caution in model.content.use.cautions:
+        yield Finding(Grade.NOTE, FindingCode.MODEL, "", f"This model: {caution}")

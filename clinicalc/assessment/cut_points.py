@@ -1,10 +1,14 @@
-"""Values so close to a cut of the model that their rounding decides the side."""
+"""Values so close to a cut or a limit of the model that their rounding decides the side."""
 
 from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
+from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
+from clinicalc.assessment.limits import clamp, giving_limits, is_within
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber
 from clinicalc.assessment.numerals import percent, plain
@@ -14,20 +18,30 @@ from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.line import Adjustment, Line
 from clinicalc.prediction.predict import predict
 from clinicalc.units.conversion import conversion
+from clinicalc.units.unit import unit
 
 # the rounded-up end itself is no longer what was typed; far enough inside for comparing at 9 significant digits
 _INSIDE = 0.9999
 
+Rows = NDArray[np.bool_]
 
-def columns_with(model: Model, columns: Mapping[str, Column], typed_derived: frozenset[str]) -> dict[str, Column]:
-    """The columns with every derived value added that can be worked out and was not typed, shape (n,) each."""
-    full = dict(columns)
-    for field in model.derived:
-        if field.id not in typed_derived:
-            column = work_out(model, field, columns)
-            if column is not None:
-                full[field.id] = column
-    return full
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Shifted:
+    """The values as used in row 0, then for each number in `near` a row with it lowered and a row with it raised.
+
+    `outside` says in which rows a value left the limits within which the model gives a number; in `columns` it was
+    moved back onto them, since the steps have a value only inside.
+    """
+
+    near: tuple[TakenNumber, ...]
+    moved: tuple[tuple[float, float], ...]
+    columns: Mapping[str, Column]
+    outside: Rows
+
+    def rows_of(self, place: int) -> tuple[int, int]:
+        """The two rows in which the number at this place was moved."""
+        return 1 + 2 * place, 2 + 2 * place
 
 
 def find_near_cuts(
@@ -38,52 +52,72 @@ def find_near_cuts(
     columns: Mapping[str, Column],
     numbers: Mapping[str, TakenNumber],
 ) -> Iterator[Finding]:
-    """A caution for each typed number whose rounding reaches across a cut, naming the result on the other side.
+    """A caution for each typed number whose rounding reaches across a cut or a limit, saying what lies beyond.
 
     `columns` holds one row: the values as used, without those that were worked out.
     """
-    if not any(factor.cuts for term in equation.terms for factor in term.factors):
-        return
-    # completed years are not rounded years: a person of 49 is not possibly 50
-    near = [n for n in numbers.values() if not (n.field.quantity.id == "age" and n.reading.decimals == 0)]
-    rows = 1 + 2 * len(near)
-    wide = {id: np.full(rows, column[0]) for id, column in columns.items()}
-    for place, number in enumerate(near):
-        wide[number.field.id][1 + 2 * place] -= _INSIDE * number.half
-        wide[number.field.id][2 + 2 * place] += _INSIDE * number.half
-    typed_derived = frozenset(n.field.id for n in numbers.values() if n.field.formula is not None)
-    full = columns_with(model, wide, typed_derived)
-    crossed = _crossed(equation, full, rows)
-    result = predict(line, design_columns(equation.terms, full), adjustment=adjustment)
-    for place, number in enumerate(near):
-        row = next((row for row in (1 + 2 * place, 2 + 2 * place) if crossed[row]), None)
-        if row is not None:
-            yield Finding(
-                Grade.CAUTION,
-                FindingCode.NEAR_CUT,
-                number.field.id,
-                f"{number.field.label} {number.shown} lies within its rounding of a cut of this model: at"
-                f" {_in_typed_unit(number, float(wide[number.field.id][row]))} the result would be"
-                f" {percent(float(result.probability[row]), float(result.complement[row]))}.",
-            )
+    shifted = _shift(model, equation, columns, tuple(n for n in numbers.values() if not n.counts_completed_years))
+    crossed = _crossed(equation, shifted.columns)
+    result = predict(line, design_columns(equation.terms, shifted.columns), adjustment=adjustment, band=False)
+    for place, number in enumerate(shifted.near):
+        named = f"{number.field.label} {number.shown} lies within its rounding of a"
+        said: dict[str, None] = {}
+        for row, value in zip(shifted.rows_of(place), shifted.moved[place], strict=True):
+            at = _in_typed_unit(number, value)
+            if shifted.outside[row]:
+                said[f"{named} limit of this model: at {at} it would give no number."] = None
+            elif crossed[row]:
+                there = percent(float(result.probability[row]), float(result.complement[row]))
+                said[f"{named} cut of this model: at {at} the result would be {there}."] = None
+        yield from (_near(number, message) for message in said)
 
 
-def _crossed(
-    equation: ModelEquation, columns: Mapping[str, Column], rows: int
-) -> np.ndarray[tuple[int], np.dtype[np.bool_]]:
+def _near(number: TakenNumber, message: str) -> Finding:
+    return Finding(Grade.CAUTION, FindingCode.NEAR_CUT, number.field.id, message)
+
+
+def _shift(
+    model: Model, equation: ModelEquation, columns: Mapping[str, Column], near: tuple[TakenNumber, ...]
+) -> _Shifted:
+    wide = {id: np.full(1 + 2 * len(near), column[0]) for id, column in columns.items()}
+    moved = []
+    for place, number in enumerate(near):
+        low, high = number.value - _INSIDE * number.half, number.value + _INSIDE * number.half
+        wide[number.field.id][1 + 2 * place], wide[number.field.id][2 + 2 * place] = low, high
+        moved.append((low, high))
+    outside = np.zeros(1 + 2 * len(near), dtype=np.bool_)
+    for number in near:
+        wide[number.field.id] = _keep_inside(number.field, wide[number.field.id], outside)
+    for field in model.derived:
+        # a worked-out value that this equation does not use stops nobody
+        if field.id in equation.uses and field.id not in wide:
+            with np.errstate(all="ignore"):
+                column = work_out(model, field, wide)
+            if column is not None:
+                wide[field.id] = _keep_inside(field, column, outside)
+    return _Shifted(near, tuple(moved), wide, outside)
+
+
+def _keep_inside(field: NumberField, column: Column, outside: Rows) -> Column:
+    """The column clamped to the limits of its field; marks the rows that lay outside them, or had no value at all."""
+    limits = giving_limits(field)
+    values = column.tolist()
+    outside |= np.array([not is_within(value, limits) for value in values])
+    return np.array([clamp(value, limits) if value == value else column[0] for value in values])
+
+
+def _crossed(equation: ModelEquation, columns: Mapping[str, Column]) -> Rows:
     """For each row, whether a cut that counts falls otherwise than in the first row, shape (rows,)."""
-    crossed = np.zeros(rows, dtype=np.bool_)
+    crossed = np.zeros(next(iter(columns.values())).size, dtype=np.bool_)
     for term in equation.terms:
-        value = term.values(columns)
         for factor in term.factors:
             if factor.cuts:
-                side = factor.values(columns)
+                side, value = factor.values(columns), term.values(columns)
                 crossed |= (side != side[0]) & (value != value[0])
     return crossed
 
 
 def _in_typed_unit(number: TakenNumber, value: float) -> str:
     back = conversion(number.field.quantity, number.field.unit, number.unit, number.field.factor)
-    shifted = round(back.apply(value), number.reading.decimals + 2)
-    text = plain(shifted, 6)
-    return text if number.unit == "1" else f"{text} {number.shown.split(' ', 1)[1]}"
+    text = plain(round(back.apply(value), number.reading.decimals + 2), 6)
+    return text if number.unit == "1" else f"{text} {unit(number.unit).spelling}"

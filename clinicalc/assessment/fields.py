@@ -79,10 +79,6 @@ class QuestionField:
     meaning: str = ""
     excludes: str = ""
 
-    def option(self, id: str) -> AnswerOption:
-        """The option with this id."""
-        return next(option for option in self.options if option.id == id)
-
 
 Field = NumberField | QuestionField
 

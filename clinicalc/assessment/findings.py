@@ -35,6 +35,7 @@ class FindingCode(StrEnum):
     HORIZON = "horizon"
     RECALIBRATION = "recalibration"
     RECALIBRATION_PRECISION = "recalibration_precision"
+    MODEL = "model"
 
 
 @dataclass(frozen=True, slots=True)

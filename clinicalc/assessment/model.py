@@ -38,17 +38,13 @@ class Model:
     fingerprint: str
     content: ModelContent
     fields: tuple[Field, ...]
+    by_id: Mapping[str, Field]
     equations: tuple[ModelEquation, ...]
 
     @property
     def spans(self) -> tuple[Span, ...]:
         """The horizons, in file order; every equation has the same."""
         return tuple(line.span for line in self.equations[0].lines)
-
-    @property
-    def by_id(self) -> Mapping[str, Field]:
-        """Every field by its id."""
-        return {field.id: field for field in self.fields}
 
     @property
     def exclusions(self) -> tuple[QuestionField, ...]:
@@ -59,8 +55,8 @@ class Model:
     def derived(self) -> tuple[NumberField, ...]:
         """The values that can be worked out, in file order."""
         ids = [derived.id for derived in self.content.derived]
-        known = {f.id: f for f in self.fields if isinstance(f, NumberField) and f.formula}
-        return tuple(known[id] for id in ids)
+        found = (self.by_id[id] for id in ids)
+        return tuple(field for field in found if isinstance(field, NumberField))
 
     def recalibrations_at(self, span: Span) -> tuple[Recalibration, ...]:
         """The recalibrations that the file offers for one horizon."""
@@ -70,11 +66,13 @@ class Model:
 def prepare_model(read: ReadFile) -> Model:
     """The model of a file that has passed the rules."""
     content = read.content.model
+    fields = fields_of(content)
     return Model(
         name=read.name,
         fingerprint=read.fingerprint,
         content=content,
-        fields=fields_of(content),
+        fields=fields,
+        by_id={field.id: field for field in fields},
         equations=tuple(
             ModelEquation(place, equation, compile_terms(content, equation), lines_of(equation))
             for place, equation in enumerate(content.equations)

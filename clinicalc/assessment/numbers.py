@@ -7,10 +7,10 @@ from datetime import date
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
-from clinicalc.assessment.numerals import join_words, plain_range
-from clinicalc.coefficients.schema import Limits
+from clinicalc.assessment.limits import clamp, giving_limits, is_within, place_of, words_for
+from clinicalc.assessment.numerals import MINUS, join_words
 from clinicalc.errors import UnitError
-from clinicalc.units.conversion import Conversion, conversion
+from clinicalc.units.conversion import conversion
 from clinicalc.units.fitting import fitting_units
 from clinicalc.units.reading import Reading, Unreadable, read_value
 from clinicalc.units.unit import unit
@@ -32,21 +32,29 @@ class TakenNumber:
 
     @property
     def typed(self) -> str:
-        """The text with its unit as a UCUM code, ready to be typed again."""
-        if self.reading.unit is not None or self.unit == "1":
-            return self.reading.text
-        number, mark, day = self.reading.text.partition(" on ")
-        return f"{number} {self.unit}{mark}{day}"
+        """What can be typed again for the same value: the text where it names its unit, else digits, unit and date."""
+        return typed_again(self.reading, self.unit, self.dated)
 
     @property
     def shown(self) -> str:
         """The number as typed with the trade spelling of its unit."""
         return shown_number(self.reading, self.unit)
 
+    @property
+    def counts_completed_years(self) -> bool:
+        """Whether it is an age in whole years, which are completed, not rounded: 49 is not possibly 50."""
+        return self.field.quantity.id == "age" and self.reading.decimals == 0
+
+
+def typed_again(reading: Reading, code: str, dated: date | None) -> str:
+    """The digits of a reading with the UCUM code of its unit and its date."""
+    with_unit = reading.digits if code == "1" else f"{reading.digits} {code}"
+    return with_unit if dated is None else f"{with_unit} on {dated.isoformat()}"
+
 
 def shown_number(reading: Reading, code: str) -> str:
-    """The number as typed, a decimal point and a true minus throughout, with the trade spelling of a unit."""
-    number = f"{reading.number:.{reading.decimals}f}".replace("-", "−")
+    """Every digit as typed, a decimal point and a true minus throughout, with the trade spelling of a unit."""
+    number = reading.digits.replace("-", MINUS)
     return number if code == "1" else f"{number} {unit(code).spelling}"
 
 
@@ -59,80 +67,61 @@ def take_number(field: NumberField, typed: Typed, today: date) -> tuple[TakenNum
     try:
         into = conversion(field.quantity, code, field.unit, field.factor)
     except UnitError as refusal:
-        return None, (_stop(field, FindingCode.WRONG_UNIT, f"{field.label}: {refusal}"),)
+        words = str(refusal)
+        message = words if words.startswith(field.label) else f"{field.label}: {words}"
+        return None, (_stop(field, FindingCode.WRONG_UNIT, message),)
     taken = TakenNumber(
         field=field,
         reading=reading,
         unit=code,
-        value=into.apply(reading.number),
+        value=clamp(into.apply(reading.number), giving_limits(field)),
         half=abs(into.scale) * 0.5 * float(f"1e-{reading.decimals}"),
         dated=reading.dated or typed.dated,
     )
-    findings = (*check_ranges(field, taken.value, taken.shown, reading.number, code), *_check_date(taken, today))
+    findings = (*check_ranges(field, into.apply(reading.number), taken.shown, typed=taken), *_check_date(taken, today))
     stopped = any(finding.grade is Grade.STOP for finding in findings)
     return (None if stopped else taken), findings
 
 
 def check_ranges(
-    field: NumberField, value: float, shown: str, number: float | None = None, code: str | None = None
+    field: NumberField, value: float, shown: str, *, typed: TakenNumber | None = None
 ) -> Iterator[Finding]:
-    """What a value's place among its ranges gives rise to: at most one finding.
-
-    `number` and `code` are the digits as typed and their unit, None for a value that was worked out.
-    """
-    code = field.unit if code is None else code
-    back = conversion(field.quantity, field.unit, code, field.factor)
-    offer = () if number is None else fitting_units(field.quantity, number, code, field.factor)
+    """What a value's place among its ranges gives rise to: one stop, or cautions; `typed` is None if worked out."""
+    code = field.unit if typed is None else typed.unit
     named = f"{field.label} {shown}"
-    if not _within(value, field.possible):
-        limits = _in_unit(field.possible, back, code)
-        yield _stop(
-            field,
-            FindingCode.IMPOSSIBLE,
-            f"{named} is not possible; the possible range is {limits}.{_remedy(shown, offer)}",
-            offer,
-        )
-    elif not _within(value, field.derivation) and field.derivation_stops:
-        limits = _in_unit(field.derivation, back, code)
-        yield _stop(
-            field,
-            FindingCode.OUTSIDE_DERIVATION,
-            f"{named} lies outside {limits}. This model was not made for such values and gives no number for them.",
-        )
-    elif not _within(value, field.usual) and number is not None:
-        limits = _in_unit(field.usual, back, code)
-        remedy = _remedy(shown, offer) or " Check that it was typed correctly."
-        message = f"{named} is unusual; the usual range is {limits}.{remedy}"
+    if not is_within(value, field.possible):
+        offer, remedy = _remedy(typed)
+        limits = words_for(field, field.possible, code)
+        message = f"{named} is not possible; the possible range is {limits}.{remedy}"
+        yield _stop(field, FindingCode.IMPOSSIBLE, message, offer)
+        return
+    inside = is_within(value, field.derivation)
+    lies = "" if inside else f"{named} lies {place_of(field, value, field.derivation, code)}"
+    if not inside and field.derivation_stops:
+        years = typed is not None and field.quantity.id == "age" and typed.reading.decimals > 0
+        slip = " Age counts in completed years: type it without decimals." if years else ""
+        message = f"{lies}. This model was not made for such values and gives no number for them.{slip}"
+        yield _stop(field, FindingCode.OUTSIDE_DERIVATION, message)
+        return
+    if not is_within(value, field.usual):
+        offer, remedy = _remedy(typed)
+        remedy = remedy or " Check that it was typed correctly."
+        message = f"{named} is unusual; the usual range is {words_for(field, field.usual, code)}.{remedy}"
         yield Finding(Grade.CAUTION, FindingCode.UNUSUAL, field.id, message, offer)
-    elif not _within(value, field.derivation):
-        limits = _in_unit(field.derivation, back, code)
-        yield Finding(
-            Grade.CAUTION,
-            FindingCode.OUTSIDE_DERIVATION,
-            field.id,
-            f"{named} lies outside {limits}, the values this model was made from."
-            " The number carries the model’s line beyond its data.",
-        )
+    if not inside:
+        message = f"{lies}, the values this model was made from. The number carries the model’s line beyond its data."
+        yield Finding(Grade.CAUTION, FindingCode.OUTSIDE_DERIVATION, field.id, message)
 
 
-def _within(value: float, limits: Limits) -> bool:
-    low, high = limits
-    # compared to 9 significant digits, as cuts are: a limit met exactly in another unit is met
-    rounded = float(f"{value:.9g}")
-    return (low is None or rounded >= float(f"{low:.9g}")) and (high is None or rounded <= float(f"{high:.9g}"))
-
-
-def _in_unit(limits: Limits, back: Conversion, code: str) -> str:
-    low, high = (None if end is None else back.apply(end) for end in limits)
-    return plain_range(low, high, "" if code == "1" else unit(code).spelling)
-
-
-def _remedy(shown: str, offer: tuple[str, ...]) -> str:
+def _remedy(typed: TakenNumber | None) -> tuple[tuple[str, ...], str]:
+    """The units in which the same digits would be believable, and the sentence that offers them."""
+    if typed is None:
+        return (), " Check the values it was worked out from."
+    offer = fitting_units(typed.field.quantity, typed.reading.number, typed.unit, typed.field.factor)
     if not offer:
-        return ""
-    digits = shown.split(" ")[0]
-    others = join_words([f"{digits} {unit(code).spelling}" for code in offer], "or")
-    return f" {others} would be. Use that unit, or type the value again."
+        return (), ""
+    others = join_words([shown_number(typed.reading, code) for code in offer], "or")
+    return offer, f" {others} would be believable: use that unit, or type the value again."
 
 
 def _check_date(taken: TakenNumber, today: date) -> Iterator[Finding]:

@@ -13,11 +13,12 @@ def percent(probability: float, complement: float | None = None) -> str:
     `complement` is 1 - probability where that is known more precisely than by subtracting.
     """
     rest = 1.0 - probability if complement is None else complement
-    if probability < 0.0005:
+    text = f"{100.0 * probability:.1f}"
+    if text == "0.0":
         return f"<0.1{NARROW_SPACE}%"
-    if rest < 0.0005:
+    if text == "100.0" or rest < 0.0005:
         return f">99.9{NARROW_SPACE}%"
-    return f"{100.0 * probability:.1f}{NARROW_SPACE}%"
+    return f"{text}{NARROW_SPACE}%"
 
 
 def percent_range(lower: float, upper: float) -> str:
@@ -55,6 +56,8 @@ def plain_range(low: float | None, high: float | None, unit: str = "") -> str:
         return f"up to {plain(high or 0.0)}{after}"
     if high is None:
         return f"{plain(low)}{after} and above"
+    if low == high:
+        return f"{plain(low)}{after}"
     dash = f" {EN_DASH} " if low < 0 else EN_DASH
     return f"{plain(low)}{dash}{plain(high)}{after}"
 

@@ -9,10 +9,11 @@ from msgspec import UnsetType
 from clinicalc.assessment.assess import assess
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.fields import NumberField
+from clinicalc.assessment.limits import giving_limits
 from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.reader import ReadFile, read_bytes, read_file
-from clinicalc.coefficients.schema import Limits, WorkedExample
+from clinicalc.coefficients.schema import WorkedExample
 from clinicalc.coefficients.spans import span_of
 from clinicalc.covariates.finiteness import Interval, find_nonfinite
 from clinicalc.errors import CoefficientFileRefused, Problem
@@ -47,9 +48,7 @@ def number_ranges(model: Model) -> dict[str, Interval]:
     ranges = {}
     for field in model.fields:
         if isinstance(field, NumberField):
-            low, high = field.possible
-            if field.derivation_stops:
-                low, high = _tighter(field.possible, field.derivation)
+            low, high = giving_limits(field)
             ranges[field.id] = Interval(float("-inf") if low is None else low, float("inf") if high is None else high)
     return ranges
 
@@ -61,7 +60,7 @@ def recompute(model: Model, example: WorkedExample) -> Assessment:
         entry_from_texts(example.values),
         span=span_of(example),
         recalibration=None if isinstance(example.recalibration, UnsetType) else example.recalibration,
-        at=datetime(2000, 1, 1, tzinfo=UTC),
+        at=datetime(9999, 12, 31, tzinfo=UTC),
     )
 
 
@@ -89,9 +88,3 @@ def _failed_examples(model: Model) -> Iterator[Problem]:
                     f"the worked example misses: it states {stated:g}, recomputed it is {computed:.6g}, and the"
                     f" tolerance is {example.tolerance:g}. A coefficient or the example is mistyped.",
                 )
-
-
-def _tighter(one: Limits, other: Limits) -> Limits:
-    lows = [end for end in (one[0], other[0]) if end is not None]
-    highs = [end for end in (one[1], other[1]) if end is not None]
-    return (max(lows) if lows else None), (min(highs) if highs else None)

@@ -7,6 +7,8 @@ from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import AnswerOption, QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.numerals import join_words
+from clinicalc.coefficients.answers import find_answer
+from clinicalc.units.quoting import quote
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,40 +22,27 @@ class TakenAnswer:
 
 def take_answer(field: QuestionField, typed: Typed) -> tuple[TakenAnswer | None, tuple[Finding, ...]]:
     """The answer to use (None where there is none) and the findings about it."""
-    said = typed.text.strip().casefold()
-    for place, option in enumerate(field.options):
-        if said in (option.id.casefold(), option.label.casefold()):
-            taken = TakenAnswer(field, option, float(place))
-            if field.excludes and option.id == "yes":
-                return taken, (
-                    Finding(
-                        Grade.STOP,
-                        FindingCode.EXCLUDED,
-                        field.id,
-                        f"Answered yes: this model does not answer for this patient. {field.excludes}",
-                    ),
-                )
-            return taken, _cautions(field, option)
+    place = find_answer(typed.text, ((option.id, option.label) for option in field.options))
+    if place is None:
+        return None, (_unknown_answer(field, typed.text),)
+    option = field.options[place]
+    return TakenAnswer(field, option, float(place)), _remarks(field, option)
+
+
+def _remarks(field: QuestionField, option: AnswerOption) -> tuple[Finding, ...]:
+    if field.excludes and option.id == "yes":
+        message = f"Answered yes: this model does not answer for this patient. {field.excludes}"
+        return (Finding(Grade.STOP, FindingCode.EXCLUDED, field.id, message),)
+    if option.caution:
+        message = f"{field.label}, {option.label}: {option.caution}"
+        return (Finding(Grade.CAUTION, FindingCode.GROUP, field.id, message),)
+    return ()
+
+
+def _unknown_answer(field: QuestionField, text: str) -> Finding:
     ids = [option.id for option in field.options]
-    close = get_close_matches(said, ids, n=1)
+    close = get_close_matches(text.strip().casefold()[:100], ids, n=1)
     hint = f" Did you mean {close[0]}?" if close else ""
-    return None, (
-        Finding(
-            Grade.STOP,
-            FindingCode.UNKNOWN_ANSWER,
-            field.id,
-            f"{field.label}: {quote(typed.text)} is not one of the answers, which are {join_words(ids)}.{hint}",
-        ),
-    )
-
-
-def quote(text: str, longest: int = 40) -> str:
-    """Typed text as it may stand in a sentence: in quotation marks, cut short, control characters made visible."""
-    shown = "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in text.strip())
-    return f"“{shown[:longest]}…”" if len(shown) > longest else f"“{shown}”"
-
-
-def _cautions(field: QuestionField, option: AnswerOption) -> tuple[Finding, ...]:
-    if not option.caution:
-        return ()
-    return (Finding(Grade.CAUTION, FindingCode.GROUP, field.id, f"{field.label}, {option.label}: {option.caution}"),)
+    mark = "" if field.label.endswith("?") else ":"
+    message = f"{field.label}{mark} {quote(text.strip())} is not one of the answers, which are {join_words(ids)}.{hint}"
+    return Finding(Grade.STOP, FindingCode.UNKNOWN_ANSWER, field.id, message)

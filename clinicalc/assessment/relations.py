@@ -3,14 +3,13 @@
 from collections.abc import Iterator, Mapping
 
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
-from clinicalc.assessment.model import Model
 from clinicalc.assessment.numbers import TakenNumber
 from clinicalc.errors import UnitError
 from clinicalc.units.conversion import conversion
 from clinicalc.units.quantity import cross_checks
 
 
-def check_relations(model: Model, numbers: Mapping[str, TakenNumber]) -> Iterator[Finding]:
+def check_relations(numbers: Mapping[str, TakenNumber]) -> Iterator[Finding]:
     """A finding for each pair of typed values of which the first may not exceed the second."""
     by_quantity: dict[str, list[TakenNumber]] = {}
     for number in numbers.values():

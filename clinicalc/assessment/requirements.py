@@ -53,7 +53,8 @@ def _is_derived(field: Field) -> bool:
 
 def _say_missing(field: Field) -> str:
     if isinstance(field, NumberField):
-        unit = "" if field.is_bare else f", in {field.spelling} or another unit of it"
+        others = " or another unit of it" if len(field.quantity.units) > 1 else ""
+        unit = "" if field.unit == "1" else f", in {field.spelling}{others}"
         return f"{field.label} is missing: type a value{unit}."
     answers = join_words([option.label.lower() for option in field.options], "or")
     return f"Not answered: {field.label.rstrip('?')}? Answer {answers}."

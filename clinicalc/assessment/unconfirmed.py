@@ -3,16 +3,15 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber
 from clinicalc.assessment.questions import TakenAnswer
+from clinicalc.coefficients.roles import ROLES
 from clinicalc.coefficients.schema import ChoicePredictor, Recalibration, Unconfirmed
 from clinicalc.coefficients.spans import Span, span_of
-
-_NOT_BEHIND_A_NUMBER = frozenset(
-    {"worked_examples", "decision_points", "population", "documentation", "use", "source", "title", "outcome"}
-)
+from clinicalc.units.unit import unit
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -24,6 +23,10 @@ class Basis:
     recalibration: Recalibration | None
     numbers: Mapping[str, TakenNumber]
     answers: Mapping[str, TakenAnswer]
+    terms: frozenset[int]
+    """Places of the terms that are not nought for this patient."""
+    worked_out: frozenset[str]
+    """Ids of the derived values that were worked out and used."""
 
 
 def unconfirmed_behind(model: Model, basis: Basis) -> tuple[Unconfirmed, ...]:
@@ -33,46 +36,83 @@ def unconfirmed_behind(model: Model, basis: Basis) -> tuple[Unconfirmed, ...]:
 
 def find_unconfirmed(model: Model, basis: Basis) -> tuple[Finding, ...]:
     """One caution that names every unconfirmed figure a result rests on, or nothing."""
-    used = unconfirmed_behind(model, basis)
-    reasons = dict.fromkeys(f"{_sentence(entry.why)} Compare with {_sentence(entry.check_against)}" for entry in used)
-    if not reasons:
+    by_source: dict[str, list[str]] = {}
+    for entry in unconfirmed_behind(model, basis):
+        reasons = by_source.setdefault(_sentence(entry.check_against), [])
+        if _sentence(entry.why) not in reasons:
+            reasons.append(_sentence(entry.why))
+    if not by_source:
         return ()
-    message = f"Figures behind this number were not checked against the source. {' '.join(reasons)}"
+    said = " ".join(f"{' '.join(reasons)} Compare with {source}" for source, reasons in by_source.items())
+    message = f"Figures behind this number were not checked against the source. {said}"
     return (Finding(Grade.CAUTION, FindingCode.UNCONFIRMED, "", message),)
 
 
 def _is_behind(model: Model, path: list[str], basis: Basis) -> bool:
-    equation, recalibration = basis.equation, basis.recalibration
+    """Whether a figure enters the result; a place that no number rests on, such as a worked example, does not."""
     match path:
-        case ["equations", place, "horizons", horizon, *_]:
-            return int(place) == equation.place and span_of(equation.content.horizons[int(horizon)]) == basis.span
-        case ["equations", _, "terms", _, "interval", *_]:
-            return False
-        case ["equations", place, *_]:
-            return int(place) == equation.place
-        case ["recalibrations", place, "equations", id, *_]:
-            return recalibration is model.content.recalibrations[int(place)] and id == equation.content.id
-        case ["recalibrations", place, *_]:
-            return recalibration is model.content.recalibrations[int(place)]
-        case ["recalibrations"]:
-            return recalibration is not None
-        case ["predictors", place, "choices", option, *_]:
-            predictor = model.content.predictors[int(place)]
-            answer = basis.answers.get(predictor.id)
-            return (
-                isinstance(predictor, ChoicePredictor)
-                and answer is not None
-                and answer.option.id == predictor.choices[int(option)].id
-            )
-        case ["predictors", place, "factor"]:
-            number = basis.numbers.get(model.content.predictors[int(place)].id)
-            return number is not None and number.unit != number.field.unit
-        case ["predictors", place, "within_person" | "valid_for" | "loinc", *_]:
-            return False
-        case [first, *_]:
-            return first not in _NOT_BEHIND_A_NUMBER
-        case _:
+        case [] | ["equations"] | ["predictors"] | ["derived"]:
             return True
+        case ["equations", place, *rest]:
+            return int(place) == basis.equation.place and _is_in_equation(rest, basis)
+        case ["recalibrations"]:
+            return basis.recalibration is not None
+        case ["recalibrations", place, *rest]:
+            chosen = basis.recalibration is model.content.recalibrations[int(place)]
+            return chosen and (rest[:1] != ["equations"] or rest[1:2] in ([], [basis.equation.content.id]))
+        case ["predictors", place, *rest]:
+            return _is_in_predictor(model, int(place), rest, basis)
+        case ["derived", place, *_]:
+            return model.content.derived[int(place)].id in basis.worked_out
+        case _:
+            return False
+
+
+def _is_in_equation(rest: list[str], basis: Basis) -> bool:
+    match rest:
+        case [] | ["terms"] | ["horizons"] | ["link"] | ["competing_events", *_]:
+            return True
+        case ["terms", _, "interval", *_]:
+            return False
+        case ["terms", place, *_]:
+            return int(place) in basis.terms
+        case ["horizons", place, *figure]:
+            used = not figure or figure[0] not in ("survival_interval", "events", "people", "still_at_risk")
+            return used and span_of(basis.equation.content.horizons[int(place)]) == basis.span
+        case ["uncertainty", *_]:
+            return basis.equation.line_at(basis.span).band is not None
+        case _:
+            return False
+
+
+def _is_in_predictor(model: Model, place: int, rest: list[str], basis: Basis) -> bool:
+    predictor = model.content.predictors[place]
+    match rest:
+        case []:
+            return predictor.id in basis.numbers or predictor.id in basis.answers
+        case ["choices", option, *_] if isinstance(predictor, ChoicePredictor):
+            answer = basis.answers.get(predictor.id)
+            return answer is not None and answer.option.id == predictor.choices[int(option)].id
+        case ["factor"]:
+            number = basis.numbers.get(predictor.id)
+            return number is not None and (
+                number.unit != number.field.unit or _is_converted_further(model, number.field, basis)
+            )
+        case _:
+            return False
+
+
+def _is_converted_further(model: Model, field: NumberField, basis: Basis) -> bool:
+    """Whether a worked-out value takes this one in a unit of another dimension, by way of its factor."""
+    own = unit(field.unit).dimension
+    for derived in model.derived:
+        if derived.id in basis.worked_out and derived.formula is not None:
+            inputs = dict(derived.formula.inputs)
+            for role in ROLES[derived.formula.equation]:
+                named = role.unit not in ("", "sex", "numerator")
+                if inputs[role.name] == field.id and named and unit(role.unit).dimension != own:
+                    return True
+    return False
 
 
 def _sentence(text: str) -> str:

@@ -1,17 +1,18 @@
 """The values of an assessment line by line, as typed and as used."""
 
 from collections.abc import Mapping
+from datetime import date
 
 from clinicalc.assessment.entry import PatientEntry, Typed
-from clinicalc.assessment.fields import Field, NumberField, QuestionField
+from clinicalc.assessment.fields import NumberField, QuestionField
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numbers import TakenNumber, shown_number
+from clinicalc.assessment.numbers import TakenNumber, shown_number, typed_again
 from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.questions import TakenAnswer
 from clinicalc.assessment.result import ValueLine
+from clinicalc.units.quoting import visible
 from clinicalc.units.reading import Reading, read_value
-
-LONGEST_SHOWN = 80
+from clinicalc.units.unit import find_unit
 
 
 def value_lines(
@@ -36,8 +37,8 @@ def _answer_line(field: QuestionField, typed: Typed, taken: TakenAnswer | None) 
     return ValueLine(
         id=field.id,
         label=field.label,
-        typed=_visible(typed.text),
-        shown=_visible(typed.text) if taken is None else taken.option.label,
+        typed=visible(typed.text),
+        shown=visible(typed.text) if taken is None else taken.option.label,
         used="" if taken is None else taken.option.label,
         number=None,
         answer=None if taken is None else taken.option.id,
@@ -65,24 +66,22 @@ def _number_line(field: NumberField, typed: Typed, taken: TakenNumber | None, wo
     )
 
 
-def _typed_with_unit(field: Field, typed: Typed) -> str:
+def _typed_with_unit(field: NumberField, typed: Typed) -> str:
     """Text that could not be used, with the unit that stood beside it."""
-    text = _visible(typed.text)
-    reading = read_value(typed.text)
-    if not text or not isinstance(field, NumberField) or not isinstance(reading, Reading) or reading.unit is not None:
-        return text
-    code = typed.unit or field.unit
-    return text if code == "1" else f"{text} {code}"
+    reading = _reading(field, typed)
+    return visible(typed.text) if reading is None else typed_again(*reading)
 
 
 def _shown_unused(field: NumberField, typed: Typed) -> str:
-    reading = read_value(typed.text)
-    if isinstance(reading, Reading):
-        return shown_number(reading, reading.unit or typed.unit or field.unit)
-    return _visible(typed.text)
+    reading = _reading(field, typed)
+    return visible(typed.text) if reading is None else shown_number(reading[0], reading[1])
 
 
-def _visible(text: str) -> str:
-    """Typed text cut short, with control characters made visible."""
-    shown = "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in text.strip())
-    return f"{shown[:LONGEST_SHOWN]}…" if len(shown) > LONGEST_SHOWN else shown
+def _reading(field: NumberField, typed: Typed) -> tuple[Reading, str, date | None] | None:
+    """A number that was read and not used, with its unit and date; None where there is none, or the unit is unknown."""
+    reading = read_value(typed.text, ask_about_comma=not field.is_bare)
+    if not isinstance(reading, Reading):
+        return None
+    code = reading.unit or typed.unit or field.unit
+    known = find_unit(code)
+    return None if known is None else (reading, code, reading.dated or typed.dated)

@@ -1,7 +1,7 @@
 """Derived values: worked out where their inputs are there, and set beside a typed one."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from math import isfinite
 
 import numpy as np
 
@@ -9,21 +9,14 @@ from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.numbers import TakenNumber, check_ranges
-from clinicalc.assessment.numerals import join_words, percent, plain
-from clinicalc.covariates.derived import RESULT_UNIT, ROLES, derive
+from clinicalc.assessment.numerals import NARROW_SPACE, join_words, plain
+from clinicalc.coefficients.roles import RESULT_UNIT, ROLES
+from clinicalc.covariates.derived import derive
 from clinicalc.covariates.transforms import Column
 from clinicalc.units.conversion import conversion
 
 APART = 0.05
 """Typed and worked-out values further apart than this share of the typed one are pointed out."""
-
-
-@dataclass(frozen=True, slots=True)
-class WorkedOut:
-    """A derived value in the file's unit."""
-
-    field: NumberField
-    value: float
 
 
 def work_out(model: Model, field: NumberField, columns: Mapping[str, Column]) -> Column | None:
@@ -58,19 +51,19 @@ def check_worked_out(model: Model, field: NumberField, value: float, typed: Take
     assert field.formula is not None
     fields = model.by_id
     sources = join_words([fields[id].label for _, id in field.formula.inputs])
-    if not np.isfinite(value):
+    if not isfinite(value):
         if typed is not None:
             return ()
         remedy = " Type a measured value instead." if field.may_be_typed else ""
         message = f"{field.label} cannot be worked out from {sources} as they stand.{remedy}"
         return (Finding(Grade.STOP, FindingCode.NOT_COMPUTABLE, field.id, message),)
-    shown = f"{plain(value)} {field.spelling}".removesuffix(" 1")
+    shown = plain(value) if field.unit == "1" else f"{plain(value)} {field.spelling}"
     if typed is None:
         return tuple(check_ranges(field, value, f"{shown} (worked out from {sources})"))
     if abs(value - typed.value) > APART * abs(typed.value):
         message = (
             f"{field.label} typed is {typed.shown}, worked out from {sources} it is {shown}: more than"
-            f" {percent(APART)} apart. The typed value counts. Check both."
+            f" {100 * APART:g}{NARROW_SPACE}% apart. The typed value counts. Check both."
         )
         return (Finding(Grade.CAUTION, FindingCode.TYPED_AND_COMPUTED, field.id, message),)
     return ()

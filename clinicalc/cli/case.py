@@ -8,10 +8,10 @@ from typing import TypeVar
 
 import click
 
+from clinicalc.assessment.choices import check_level
 from clinicalc.assessment.result import Assessment
 from clinicalc.operations.bedside import (
     assess_patient,
-    check_level,
     choose_recalibration,
     choose_span,
     open_model,
@@ -50,9 +50,9 @@ def case_options(command: _Command) -> _Command:
 
 def assess_case(words: CaseWords, at: datetime | None = None) -> Assessment:
     """The assessment asked for, as of `at` or now. Raises UsageError or CoefficientFileRefused."""
-    level = check_level(words.level)
+    check_level(words.level)
     model = open_model(Path(words.file))
     span = choose_span(model, years=words.years, time=words.time)
     recalibration = choose_recalibration(model, span, words.recalibration)
     entry = take_texts(model, words.values, words.label)
-    return assess_patient(model, entry, span=span, recalibration=recalibration, level=level, at=at)
+    return assess_patient(model, entry, span=span, recalibration=recalibration, level=words.level, at=at)

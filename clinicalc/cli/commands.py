@@ -7,11 +7,12 @@ import click
 
 from clinicalc import __version__
 from clinicalc.assessment.record import write_record
+from clinicalc.assessment.result import Assessment
 from clinicalc.cli.case import CaseWords, assess_case, case_options
 from clinicalc.cli.outcome import ExitStatus, run_guarded
 from clinicalc.operations.bedside import assess_patient, open_model
 from clinicalc.operations.demonstration import DemoCase, demo_case
-from clinicalc.operations.documents import save_pdf, time_of_printing
+from clinicalc.operations.documents import save_pdf, stated_time
 from clinicalc.operations.inspection import inspect_model, write_sections
 from clinicalc.operations.summary import summarise
 
@@ -48,13 +49,12 @@ def assess(as_json: bool, **words: object) -> int:
 @click.option("--label", default="", help="Name or number of the patient, for the print only.")
 def report(out: str, **words: object) -> int:
     """Assess one patient and write the print as a PDF. No number, no print."""
-    assessment = assess_case(CaseWords(**words), at=time_of_printing())  # type: ignore[arg-type]
+    assessment = assess_case(CaseWords(**words), at=stated_time())  # type: ignore[arg-type]
     if assessment.estimate is None:
         click.echo(summarise(assessment), nl=False)
         click.echo(f"\nNo print was made: there is no number to print. {out} was not written.")
         return ExitStatus.STOPPED
-    save_pdf(Path(out), assessment)
-    click.echo(f"{summarise(assessment)}\nPrint written to {out}")
+    _write_print(out, assessment)
     return ExitStatus.ASSESSED
 
 
@@ -73,10 +73,16 @@ def inspect(file: str) -> int:
 def demo(open_window: OpenWindow, out: str, no_window: bool) -> int:
     """Assess an invented patient with a shipped file, print the result, write the PDF, open the window."""
     case = demo_case()
-    assessment = assess_patient(case.model, case.entry, at=time_of_printing())
-    save_pdf(Path(out), assessment)
-    click.echo(f"{summarise(assessment)}\nPrint written to {out}")
+    assessment = assess_patient(case.model, case.entry, at=stated_time())
+    _write_print(out, assessment)
     return ExitStatus.ASSESSED if no_window else open_window(case)
+
+
+def _write_print(out: str, assessment: Assessment) -> None:
+    save_pdf(Path(out), assessment)
+    stated = stated_time()
+    dated = "" if stated is None else f", dated {stated:%Y-%m-%d %H:%M} by SOURCE_DATE_EPOCH"
+    click.echo(f"{summarise(assessment)}\nPrint written to {out}{dated}")
 
 
 def run_command(words: Sequence[str], open_window: OpenWindow) -> int:

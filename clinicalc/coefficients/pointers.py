@@ -4,10 +4,24 @@ import difflib
 import re
 from collections.abc import Iterable
 
-REFUSED_CHARACTERS = re.compile(
-    "[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028\u2029\u202a-\u202e\u2066-\u2069\ud800-\udfff]"
+_REFUSED = (
+    "0-1f 7f-9f 2028-2029"  # controls and separators of lines and paragraphs
+    # format characters (category Cf), bidirectional controls, zero-width signs and soft hyphens among them
+    " ad 600-605 61c 6dd 70f 890-891 8e2 180e 200b-200f 202a-202e 2060-206f feff fff9-fffb 110bd 110cd 13430-1343f"
+    " 1bca0-1bca3 1d173-1d17a e0001 e0020-e007f"
+    # what else a program may leave out in showing a text (Default_Ignorable_Code_Point), variation selectors among them
+    " 34f 115f-1160 17b4-17b5 180b-180d 180f 3164 fe00-fe0f ffa0 fff0-fff8 e0000-e0fff"
+    " 2800 fffc"  # the blank Braille pattern, and the stand-in for an object
+    # lone surrogates, private use, and code points that are no characters
+    " d800-dfff e000-f8ff f0000-10ffff fdd0-fdef "
+    + " ".join(f"{plane + 0xFFFE:x}-{plane + 0xFFFF:x}" for plane in range(0, 0xF0000, 0x10000))
 )
-"""Control, line-separating and bidirectional-control characters and lone surrogates: they disguise a text."""
+# written out, not looked up: what a file may hold must not depend on the Unicode tables of one machine's Python
+
+REFUSED_CHARACTERS = re.compile(
+    f"[{''.join('-'.join(chr(int(end, 16)) for end in part.split('-')) for part in _REFUSED.split())}]"
+)
+"""Characters that are not seen, are seen differently by different programs, or turn a text around: they disguise it."""
 
 
 def point(base: str, *parts: str | int) -> str:

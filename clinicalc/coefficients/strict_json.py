@@ -161,6 +161,8 @@ def _plain(tree: object, path: str, problems: list[Problem]) -> object:
         return Unusable.NUMBER
     if isinstance(tree, str):
         _check_text(tree, path, "this text", problems)
+        if tree.isspace():
+            problems.append(Problem(path, "this text is blank: nothing but spaces stands in it. Write the words."))
     return tree
 
 
@@ -182,7 +184,7 @@ def _check_text(text: str, path: str, what: str, problems: list[Problem]) -> Non
         problems.append(
             Problem(
                 path,
-                f"{what} ({quoted(text)}) holds {codes}: control and bidirectional-control characters can make a text "
+                f"{what} ({quoted(text)}) holds {codes}: invisible, control and private characters can make a text "
                 "look like another and are refused. Type it again.",
             )
         )

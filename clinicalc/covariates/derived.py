@@ -1,43 +1,11 @@
 """Values worked out from other values by published, named equations. All work on columns, shape (n,)."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 import numpy as np
 
 from clinicalc.coefficients.schema import DerivedEquation
 from clinicalc.covariates.transforms import Column
-
-
-@dataclass(frozen=True, slots=True)
-class Role:
-    """One input of an equation and the unit it needs; "" is the derived value's own unit, "sex" a 0/1 for female."""
-
-    name: str
-    unit: str
-
-
-ROLES: Mapping[DerivedEquation, tuple[Role, ...]] = {
-    "body_mass_index": (Role("weight", "kg"), Role("height", "m")),
-    "non_hdl_cholesterol": (Role("total_cholesterol", ""), Role("hdl_cholesterol", "")),
-    "ckd_epi_2021": (Role("creatinine", "mg/dL"), Role("age", "a"), Role("sex", "sex")),
-    "friedewald_ldl": (
-        Role("total_cholesterol", "mg/dL"),
-        Role("hdl_cholesterol", "mg/dL"),
-        Role("triglycerides", "mg/dL"),
-    ),
-    "difference": (Role("minuend", ""), Role("subtrahend", "")),
-    "ratio": (Role("numerator", "numerator"), Role("denominator", "numerator")),
-}
-"""What each equation takes. A unit of "numerator" means: whatever unit the numerator has."""
-
-RESULT_UNIT: Mapping[DerivedEquation, str] = {
-    "body_mass_index": "kg/m2",
-    "ckd_epi_2021": "mL/min/{1.73_m2}",
-    "friedewald_ldl": "mg/dL",
-    "ratio": "1",
-}
-"""The unit in which an equation answers, where it is not the unit of its inputs."""
 
 FRIEDEWALD_LIMIT = 400.0
 """mg/dL of triglycerides above which the Friedewald equation does not hold (4.5 mmol/L)."""

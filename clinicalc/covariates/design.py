@@ -6,7 +6,8 @@ from dataclasses import dataclass
 import numpy as np
 from msgspec import UnsetType
 
-from clinicalc.coefficients.schema import ChoicePredictor, Equation, ModelContent, Product, Term, YesNoPredictor
+from clinicalc.coefficients.products import products_of
+from clinicalc.coefficients.schema import ChoicePredictor, Equation, ModelContent, Product, YesNoPredictor
 from clinicalc.covariates.transforms import CUTS, Column, Transform, apply_transform, compile_step
 
 Columns = Mapping[str, Column]
@@ -82,13 +83,6 @@ def compile_terms(model: ModelContent, equation: Equation) -> tuple[DesignTerm, 
         )
         for term in equation.terms
     )
-
-
-def products_of(term: Term) -> tuple[Product, ...]:
-    """The products that a term adds up: one, or those of its `sum`."""
-    if not isinstance(term.sum, UnsetType):
-        return term.sum
-    return () if isinstance(term.product, UnsetType) else (term.product,)
 
 
 def design_columns(terms: tuple[DesignTerm, ...], columns: Columns) -> tuple[Column, ...]:

@@ -5,19 +5,17 @@ from datetime import datetime
 from difflib import get_close_matches
 from pathlib import Path
 
-from clinicalc.assessment.assess import DEFAULT_LEVEL, assess
+from clinicalc.assessment.assess import assess
+from clinicalc.assessment.choices import DEFAULT_LEVEL
 from clinicalc.assessment.entry import PatientEntry, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.proof import load_model, load_model_bytes
-from clinicalc.assessment.questions import quote
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
 from clinicalc.errors import UsageError
 from clinicalc.resources import read_shipped
+from clinicalc.units.quoting import quote
 from clinicalc.units.reading import Reading, read_value
-
-LEVELS = (0.5, 0.999)
-"""The narrowest and the widest band that may be asked for."""
 
 
 def open_model(path: Path) -> Model:
@@ -79,7 +77,9 @@ def choose_span(model: Model, *, years: float | None = None, time: str | None = 
         )
     asked = Span(years) if years is not None else _read_span(time or "")
     if asked not in model.spans:
-        raise UsageError(f"this model has no horizon of {asked.words}.", why=f"It answers for {offered}.")
+        same = [span.words for span in model.spans if abs(span.days - asked.days) < 1]
+        hint = f"Write it as the file does: {same[0]}." if same else ""
+        raise UsageError(f"this model has no horizon of {asked.words}.", why=f"It answers for {offered}.", do=hint)
     return asked
 
 
@@ -97,15 +97,6 @@ def choose_recalibration(model: Model, span: Span, id: str | None) -> str | None
         why=_hint(id, offered),
         do=f"It offers {', '.join(offered)}.",
     )
-
-
-def check_level(level: float) -> float:
-    """The level of the band, if one can be made of it. Raises UsageError, with the likely slip, where not."""
-    low, high = LEVELS
-    if low <= level <= high:
-        return level
-    slip = f" Did you mean {level / 100:g}?" if low <= level / 100 <= high else ""
-    raise UsageError(f"a band cannot be made at the level {level:g}.", why=f"Levels go from {low:g} to {high:g}.{slip}")
 
 
 def _read_span(text: str) -> Span:

@@ -1,16 +1,24 @@
 """Saving the print."""
 
+import os
+from datetime import datetime
 from pathlib import Path
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.report import save_report, time_of_printing
 
-__all__ = ["save_pdf", "suggest_pdf_name", "time_of_printing"]
-
 
 def save_pdf(path: Path, assessment: Assessment, *, practice: str = "") -> None:
     """Write the print of an assessment. Raises PrintRefused or FileNotWritten; nothing half-written is left."""
     save_report(path, assessment, practice=practice)
+
+
+def stated_time() -> datetime | None:
+    """The time in SOURCE_DATE_EPOCH, for prints that must come out the same again; None where none is stated.
+
+    Raises UsageError when that is not a time. Only the command line asks: at the bedside today is today.
+    """
+    return time_of_printing() if os.environ.get("SOURCE_DATE_EPOCH", "").strip() else None
 
 
 def suggest_pdf_name(assessment: Assessment) -> str:

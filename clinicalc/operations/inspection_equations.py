@@ -5,6 +5,7 @@ from collections.abc import Iterator
 from msgspec import UnsetType
 
 from clinicalc.assessment.model import Model
+from clinicalc.coefficients.products import products_of
 from clinicalc.coefficients.schema import (
     DrawsBand,
     Equation,
@@ -17,7 +18,6 @@ from clinicalc.coefficients.schema import (
     Term,
 )
 from clinicalc.coefficients.spans import HasSpan, span_of
-from clinicalc.covariates.design import products_of
 from clinicalc.covariates.transforms import StepKind, kind_of
 
 _WORDS = {

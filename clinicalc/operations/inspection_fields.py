@@ -68,7 +68,7 @@ def _remarks(predictor: Predictor) -> Iterator[str]:
         for word, flag in (
             ("may be modified", predictor.modifiable),
             ("a treatment", predictor.treatment),
-            ("may be left unmeasured", predictor.may_be_missing),
+            ("may be left unmeasured (this version asks for it all the same)", predictor.may_be_missing),
         )
         if flag is True
     ]

@@ -82,7 +82,10 @@ def _number(assessment: Assessment) -> list[str]:
 
 
 def _findings(findings: tuple[Finding, ...]) -> list[str]:
-    return [f"{finding.grade.value.capitalize()}: {finding.message}" for finding in findings]
+    # what is still to be typed does not matter for a patient whom the model does not answer for
+    excluded = any(finding.code is FindingCode.EXCLUDED for finding in findings)
+    shown = [f for f in findings if not (excluded and f.code is FindingCode.MISSING)]
+    return [f"{finding.grade.value.capitalize()}: {finding.message}" for finding in shown]
 
 
 def _values(values: tuple[ValueLine, ...]) -> list[str]:

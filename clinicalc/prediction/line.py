@@ -6,6 +6,7 @@ import numpy as np
 from msgspec import UnsetType
 from numpy.typing import NDArray
 
+from clinicalc.coefficients.baselines import baseline
 from clinicalc.coefficients.schema import DrawsBand, Equation, Horizon, NoBand, RecalibrationLine
 from clinicalc.coefficients.spans import Span, span_of
 from clinicalc.prediction.links import Link
@@ -76,20 +77,10 @@ def lines_of(equation: Equation) -> tuple[Line, ...]:
     return tuple(_line_at(equation, place, horizon) for place, horizon in enumerate(equation.horizons))
 
 
-def baseline(horizon: Horizon) -> float:
-    """lp0: the intercept, or the log cumulative hazard with every term at zero, log(-log S0) - mean if printed so."""
-    if not isinstance(horizon.intercept, UnsetType):
-        return horizon.intercept
-    if not isinstance(horizon.log_cumulative_hazard, UnsetType):
-        return horizon.log_cumulative_hazard
-    assert not isinstance(horizon.baseline_survival, UnsetType)
-    assert not isinstance(horizon.mean_linear_predictor, UnsetType)
-    return float(np.log(-np.log(horizon.baseline_survival))) - horizon.mean_linear_predictor
-
-
 def _line_at(equation: Equation, place: int, horizon: Horizon) -> Line:
-    span = span_of(horizon)
+    span, lp0 = span_of(horizon), baseline(horizon, equation.link)
     assert span is not None
+    assert lp0 is not None
     uncertainty = equation.uncertainty
     estimated = tuple(t for t, term in enumerate(equation.terms) if term.fixed is not True)
     band: Precision | Draws | None = None
@@ -110,7 +101,7 @@ def _line_at(equation: Equation, place: int, horizon: Horizon) -> Line:
     return Line(
         span=span,
         link=equation.link,
-        lp0=baseline(horizon),
+        lp0=lp0,
         coefficients=tuple(term.coefficient for term in equation.terms),
         band=band,
         basis=uncertainty.__struct_config__.tag if isinstance(uncertainty.__struct_config__.tag, str) else "",

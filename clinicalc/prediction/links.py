@@ -24,10 +24,3 @@ def complement(link: Link, eta: Column) -> Column:
     if link == "logit":
         return 1.0 / (1.0 + np.exp(np.minimum(eta, _LARGEST)))
     return np.exp(-np.exp(np.minimum(eta, _LARGEST)))
-
-
-def link_value(link: Link, p: Column) -> Column:
-    """The linear predictor at which the probability is p, 0 < p < 1."""
-    if link == "logit":
-        return np.log(p) - np.log1p(-p)
-    return np.log(-np.log1p(-p))

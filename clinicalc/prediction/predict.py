@@ -37,16 +37,21 @@ class Prediction:
 
 
 def predict(
-    line: Line, design: Sequence[Column], *, adjustment: Adjustment | None = None, level: float = 0.95
+    line: Line,
+    design: Sequence[Column],
+    *,
+    adjustment: Adjustment | None = None,
+    level: float = 0.95,
+    band: bool = True,
 ) -> Prediction:
     """The prediction from design columns, one a term in file order, each of shape (n,).
 
-    A line without a band, or with too few draws for the level, gives none. With an adjustment that carries no
-    covariance the band is that of the model alone, moved and stretched.
+    A line without a band, or with too few draws for the level, gives none; `band=False` spares the work where nobody
+    asks for it. With an adjustment that carries no covariance the band is that of the model alone, moved and stretched.
     """
     n = design[0].size
-    band = line.band if not isinstance(line.band, Draws) or line.band.enough_for(level) else None
-    rows = 2 if band is None else 6
+    basis = line.band if band and not (isinstance(line.band, Draws) and not line.band.enough_for(level)) else None
+    rows = 2 if basis is None else 6
     out = np.empty((rows, n))
     quantile = NormalDist().inv_cdf(0.5 + level / 2.0)
     for start in range(0, n, BLOCK):
@@ -55,11 +60,11 @@ def predict(
         eta = linear_predictor(line, columns)
         moved = eta if adjustment is None else adjustment.intercept + adjustment.slope * eta
         ends: tuple[Column, Column] | None = None
-        if isinstance(band, Precision):
-            half = quantile * np.sqrt(_variance(band, columns, eta, adjustment))
+        if isinstance(basis, Precision):
+            half = quantile * np.sqrt(_variance(basis, columns, eta, adjustment))
             ends = moved - half, moved + half
-        elif band is not None:
-            ends = _draw_limits(band, line, columns, eta, adjustment, level, quantile)
+        elif basis is not None:
+            ends = _draw_limits(basis, line, columns, eta, adjustment, level, quantile)
         out[0, here] = moved
         out[1, here] = probability(line.link, moved)
         if ends is not None:
@@ -69,10 +74,10 @@ def predict(
         eta=out[0],
         probability=out[1],
         complement=complement(line.link, out[0]),
-        eta_lower=out[2] if band is not None else None,
-        eta_upper=out[3] if band is not None else None,
-        lower=out[4] if band is not None else None,
-        upper=out[5] if band is not None else None,
+        eta_lower=out[2] if basis is not None else None,
+        eta_upper=out[3] if basis is not None else None,
+        lower=out[4] if basis is not None else None,
+        upper=out[5] if basis is not None else None,
     )
 
 
@@ -114,8 +119,9 @@ def _adjustment_variance(adjustment: Adjustment, eta: Column) -> Column:
     v00, v01, v11 = adjustment.covariance
     if v11 == 0.0:
         return np.full(eta.size, v00)
-    away = eta + v01 / v11
-    return max(v00 - v01 * v01 / v11, 0.0) + v11 * (away * away)
+    # the root first: a tiny v11 makes a distance too large to be squared alone
+    away = float(np.sqrt(v11)) * (eta + v01 / v11)
+    return max(v00 - v01 * v01 / v11, 0.0) + away * away
 
 
 def _draw_limits(
@@ -129,26 +135,24 @@ def _draw_limits(
 ) -> tuple[Column, Column]:
     """Percentiles (type 7) of the linear predictor over the draws, each of shape (n,).
 
-    An adjustment's own imprecision is independent of the draws; the two are joined as distances from the estimate,
-    square root of the sum of squares on each side (Zou & Donner, Stat Med 2008;27:1693).
+    An adjustment's own imprecision is independent of the draws; the two are joined as distances from the middle, square
+    root of the sum of squares on each side (Zou & Donner, Stat Med 2008;27:1693). The middle is the median of the
+    draws: the percentiles lie on its two sides always, and need not lie on those of the estimate.
     """
-    lower, upper = np.empty_like(eta), np.empty_like(eta)
+    shares = [0.5 - level / 2.0, 0.5, 0.5 + level / 2.0]
+    lower, middle, upper = (np.empty_like(eta) for _ in shares)
     together = max(1, DRAWN_FIGURES // band.baselines.size)
     for start in range(0, eta.size, together):
         here = slice(start, start + together)
         drawn = _drawn_predictors(band, line, [column[here] for column in columns])
-        lower[here], upper[here] = np.quantile(drawn, [0.5 - level / 2.0, 0.5 + level / 2.0], axis=1)
+        lower[here], middle[here], upper[here] = np.quantile(drawn, shares, axis=1)
     if adjustment is None:
         return lower, upper
-    moved = adjustment.intercept + adjustment.slope * eta
+    moved = adjustment.intercept + adjustment.slope * middle
     extra = quantile * quantile * _adjustment_variance(adjustment, eta)
-    below = adjustment.slope * (eta - lower)
-    above = adjustment.slope * (upper - eta)
-    # a percentile interval may lie wholly on one side of the estimate; keep the side's sign then
-    return (
-        moved - np.copysign(np.sqrt(below * below + extra), below),
-        moved + np.copysign(np.sqrt(above * above + extra), above),
-    )
+    below = adjustment.slope * (middle - lower)
+    above = adjustment.slope * (upper - middle)
+    return moved - np.sqrt(below * below + extra), moved + np.sqrt(above * above + extra)
 
 
 def _drawn_predictors(band: Draws, line: Line, columns: Sequence[Column]) -> Column:

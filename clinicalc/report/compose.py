@@ -6,7 +6,7 @@ from msgspec import UnsetType
 
 from clinicalc import __version__
 from clinicalc.assessment.fields import NumberField
-from clinicalc.assessment.findings import Grade
+from clinicalc.assessment.findings import FindingCode, Grade
 from clinicalc.assessment.numerals import join_words, percent
 from clinicalc.assessment.result import Assessment, Estimate, ValueLine
 from clinicalc.coefficients.fingerprint import group_fingerprint
@@ -206,9 +206,14 @@ def _model(assessment: Assessment) -> Section:
         Fact("Made for", (use.population, use.setting)),
         Fact("Not for", (_listed(use.not_for),)),
         Fact("Does not use", (_listed(use.not_used),)),
-        Fact("Its own cautions", use.cautions or ("none stated",)),
+        # beside a number they stand among the findings
+        *(() if _says_model_cautions(assessment) else (Fact("Its own cautions", use.cautions or ("none stated",)),)),
     ]
     return Section("The model", (FactList(tuple(facts)),), whole=True)
+
+
+def _says_model_cautions(assessment: Assessment) -> bool:
+    return any(finding.code is FindingCode.MODEL for finding in assessment.findings)
 
 
 def _listed(parts: tuple[str, ...]) -> str:

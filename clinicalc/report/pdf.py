@@ -1,6 +1,7 @@
 """The PDF of an assessment, as bytes or as a file."""
 
 import os
+import stat
 import tempfile
 from collections.abc import Iterator
 from contextlib import suppress
@@ -22,6 +23,16 @@ from clinicalc.report.typefaces import Weight
 
 LONGEST_NAME = 120
 """Characters of a patient label or a practice name; more would push the result off its page."""
+
+_PDF_BEGINS = b"%PDF-"
+_KINDS = {
+    stat.S_IFDIR: "a folder",
+    stat.S_IFLNK: "a symbolic link",
+    stat.S_IFCHR: "a device",
+    stat.S_IFBLK: "a device",
+    stat.S_IFIFO: "a pipe (FIFO)",
+    stat.S_IFSOCK: "a socket",
+}
 
 
 def make_report(assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None) -> bytes:
@@ -47,10 +58,16 @@ def save_report(path: Path, assessment: Assessment, *, practice: str = "", print
 
     The new file can be read by the person who saved it, and by others only where the folder's own rules say so.
 
-    Raises FileNotWritten when the place cannot be written, PrintRefused as `make_report` does.
+    Raises FileNotWritten when the place cannot be written, when the name does not end in .pdf, and when anything but a
+    PDF stands there already (a folder, a device, a link, a file of another kind); PrintRefused as `make_report` does.
     """
     content = make_report(assessment, practice=practice, printed_at=printed_at)
     try:
+        fault = _judge_target(path)
+        if fault:
+            raise FileNotWritten(
+                "the print was not saved.", where=str(path), why=fault, do="Choose another name. Nothing was changed."
+            )
         _replace_file(path, content)
     except (OSError, ValueError) as error:  # ValueError: a file name with a null character
         said = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
@@ -60,6 +77,27 @@ def save_report(path: Path, assessment: Assessment, *, practice: str = "", print
             why=f"The system says: {said.rstrip('.')}.",
             do="Choose a folder that exists and that you may write to, and close the file where it is open.",
         ) from error
+
+
+def _judge_target(path: Path) -> str:
+    """Why the print may not take this name ("" where it may): what stands there is only replaced if it is a PDF."""
+    try:
+        mode = os.lstat(path).st_mode
+    except FileNotFoundError:
+        mode = 0
+    if mode and not stat.S_ISREG(mode):
+        return f"This is {_KINDS.get(stat.S_IFMT(mode), 'no regular file')}, not a PDF."
+    if path.suffix.casefold() != ".pdf":
+        return "The name of a print ends in .pdf, and this one does not."
+    if mode:
+        with open(path, "rb", opener=_open_waiting_for_nothing) as file:
+            if file.read(len(_PDF_BEGINS)) != _PDF_BEGINS:
+                return "A file of this name is there already, and it is not a PDF."
+    return ""
+
+
+def _open_waiting_for_nothing(name: str, flags: int) -> int:
+    return os.open(name, flags | getattr(os, "O_NONBLOCK", 0) | getattr(os, "O_NOFOLLOW", 0))
 
 
 def _replace_file(path: Path, content: bytes) -> None:

@@ -124,7 +124,7 @@ def _refuse_foreign(quantity: Quantity, code: str) -> None:
     spellings = " or ".join(permitted_unit.spelling or "a bare number" for permitted_unit in permitted)
     name = entry.spelling or "a bare number"
     other_kind = all(permitted_unit.dimension != entry.dimension for permitted_unit in permitted)
-    general = f"{name} measures {entry.dimension}." if other_kind else f"{name} is not in use for this quantity."
+    general = f"{name} measures {entry.dimension}." if other_kind else f"{name} is not offered for this quantity."
     raise UnitError(
         f"{quantity.label} is not given in {name}.", why=known[0] if known else general, do=f"Use {spellings}."
     )

@@ -46,10 +46,12 @@ class UnreadableReason(StrEnum):
 class Reading:
     """A typed value. `text` is what was typed, trimmed; `decimals` counts the digits typed after the mark.
 
+    `digits` is the number as typed, every digit kept, with a decimal point and "-" for a minus.
     `unit` is the UCUM code of the unit typed after the number, None when there was none; `dated` the day it holds for.
     """
 
     text: str
+    digits: str
     number: float
     decimals: int
     unit: str | None
@@ -118,9 +120,9 @@ def _read(text: str, ask_about_comma: bool) -> Reading:
             f"{quote(number[0])} can be read in two ways: "
             f"type {sign}{whole}.{decimals} or {sign}{whole}{decimals}, whichever is meant.",
         )
-    digits = f"{sign.replace('−', '-')}{whole}.{decimals or '0'}"
+    digits = f"{'-' if sign in ('-', '−') else ''}{whole}{f'.{decimals}' if decimals else ''}"
     # adding zero turns a typed -0 into 0
-    return Reading(text, float(digits) + 0.0, len(decimals), code, dated)
+    return Reading(text, digits, float(digits) + 0.0, len(decimals), code, dated)
 
 
 def _refuse_control(text: str) -> None:

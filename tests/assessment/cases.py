@@ -69,6 +69,43 @@ WOMAN_55_AT_RISK = {
 }
 """A full entry for the 2007 clinical form: parent, BMI of 30 or more, glucose of 100 to 126 mg/dL."""
 
+DEMO = {
+    "prior_cvd": "no",
+    "age": "61",
+    "sex": "female",
+    "systolic_bp": "142",
+    "bp_treated": "no",
+    "total_cholesterol": "5.2",
+    "hdl_cholesterol": "1.3",
+    "smoker": "yes",
+    "diabetes": "no",
+}
+"""A full entry for the invented Tarnwick model, which has a band."""
+
+PERSON_55 = {
+    "prior_cvd": "no",
+    "sex": "female",
+    "age": "55",
+    "total_cholesterol": "213",
+    "hdl_cholesterol": "50",
+    "systolic_bp": "120",
+    "bp_treated": "no",
+    "smoker": "no",
+    "diabetes": "no",
+    "ethnic_group": "white",
+}
+"""A full entry for the 2013 pooled cohort equations: the person of the printed worked examples."""
+
+FULL = {
+    "general-cvd-2008-lipids": WOMAN_61,
+    "ascvd-2013-pooled-cohort": PERSON_55,
+    "cvd-2021-regional": MAN_50,
+    "total-cvd-2024-base": WOMAN_EGFR_90,
+    "diabetes-2007-clinical": WOMAN_55_AT_RISK,
+    "tarnwick-cvd-10y": DEMO,
+}
+"""A full entry for every shipped file."""
+
 
 @cache
 def shipped(id: str) -> Model:

@@ -1,7 +1,9 @@
 """Cautions that come with the equation: unconfirmed figures that were used, and competing events."""
 
+import pytest
+
 from clinicalc.assessment.findings import FindingCode, Grade
-from tests.assessment.cases import MAN_50, WOMAN_61, WOMAN_EGFR_90, about, run
+from tests.assessment.cases import FULL, MAN_50, PERSON_55, WOMAN_55_AT_RISK, WOMAN_61, WOMAN_EGFR_90, about, run
 
 LIPIDS = "general-cvd-2008-lipids"
 REGIONAL = "cvd-2021-regional"
@@ -37,8 +39,31 @@ def test_a_conversion_factor_is_named_only_when_it_was_used() -> None:
 
 
 def test_a_file_whose_figures_are_confirmed_says_nothing() -> None:
-    result = run("diabetes-2007-clinical", {})
+    result = run("diabetes-2007-clinical", WOMAN_55_AT_RISK)
+    assert result.estimate is not None
     assert about(result, FindingCode.UNCONFIRMED) == []
+
+
+def test_a_coefficient_that_is_multiplied_with_nought_is_not_named() -> None:
+    """1.957 for untreated blood pressure in white women is from memory; nobody under treatment rests on it."""
+    pooled = "ascvd-2013-pooled-cohort"
+    (untreated,) = about(run(pooled, PERSON_55), FindingCode.UNCONFIRMED)
+    (treated,) = about(run(pooled, PERSON_55, bp_treated="yes"), FindingCode.UNCONFIRMED)
+    assert "1.857" in untreated.message
+    assert "1.857" not in treated.message
+
+
+@pytest.mark.parametrize("id", sorted(FULL))
+def test_what_the_file_itself_says_stands_beside_every_number(id: str) -> None:
+    result = run(id, FULL[id], recalibration="low" if id == "cvd-2021-regional" else None)
+    said = [finding.message for finding in about(result, FindingCode.MODEL)]
+    assert said == [f"This model: {caution}" for caution in result.model.content.use.cautions]
+    assert result.estimate is not None
+
+
+def test_the_diabetes_model_says_that_no_age_range_is_stated() -> None:
+    said = " ".join(f.message for f in about(run("diabetes-2007-clinical", WOMAN_55_AT_RISK), FindingCode.MODEL))
+    assert "age" in said
 
 
 def test_censored_competing_events_are_cautioned_above_70() -> None:

@@ -54,3 +54,17 @@ def test_a_cut_met_by_way_of_another_unit_is_met(typed: str) -> None:
     assert probability(run(DIABETES, WOMAN_55_AT_RISK, glucose=typed)) == probability(
         run(DIABETES, WOMAN_55_AT_RISK, glucose="110")
     )
+
+
+@pytest.mark.parametrize("typed", ["126", "6.99 mmol/L"])
+def test_a_value_at_the_limit_says_that_beyond_it_there_is_no_number(typed: str) -> None:
+    (caution,) = about(run(DIABETES, WOMAN_55_AT_RISK, glucose=typed), FindingCode.NEAR_CUT)
+    assert caution.field == "glucose"
+    assert caution.message.endswith("it would give no number.")
+
+
+def test_a_worked_out_value_at_its_limit_speaks_for_what_was_typed() -> None:
+    """8 kg/m² is the least possible BMI: 20.5 kg at 1.60 m is 8.0078, and 20.45 kg is 7.988."""
+    rest = {id: text for id, text in WOMAN_55_AT_RISK.items() if id != "bmi"}
+    result = run(DIABETES, rest, weight="20.5 kg", height="160 cm")
+    assert {finding.field for finding in about(result, FindingCode.NEAR_CUT)} == {"weight", "height"}

@@ -3,7 +3,7 @@
 import pytest
 
 from clinicalc.assessment.findings import FindingCode, Grade
-from tests.assessment.cases import WOMAN_55_AT_RISK, WOMAN_61, about, probability, run
+from tests.assessment.cases import DEMO, WOMAN_55_AT_RISK, WOMAN_61, about, probability, run
 
 LIPIDS = "general-cvd-2008-lipids"
 DIABETES = "diabetes-2007-clinical"
@@ -15,10 +15,10 @@ DIABETES = "diabetes-2007-clinical"
         ("age", "abc", FindingCode.UNREADABLE, "“abc” is not a number"),
         ("age", "-3", FindingCode.IMPOSSIBLE, "Age −3 years is not possible; the possible range is 0–120 years."),
         ("age", "200", FindingCode.IMPOSSIBLE, "Age 200 years is not possible"),
-        ("age", "29", FindingCode.OUTSIDE_DERIVATION, "Age 29 years lies outside 30–74 years"),
+        ("age", "29", FindingCode.OUTSIDE_DERIVATION, "Age 29 years lies below 30–74 years"),
         ("age", "75", FindingCode.OUTSIDE_DERIVATION, "gives no number for them"),
         ("age", "732 mo", FindingCode.WRONG_UNIT, "Age"),
-        ("total_cholesterol", "5.2", FindingCode.IMPOSSIBLE, "5.2 mmol/L would be. Use that unit"),
+        ("total_cholesterol", "5.2", FindingCode.IMPOSSIBLE, "5.2 mmol/L would be believable: use that unit"),
         ("total_cholesterol", "1,234", FindingCode.UNREADABLE, "1.234"),
         ("total_cholesterol", "nan", FindingCode.UNREADABLE, "Total cholesterol"),
         ("total_cholesterol", "<0.1", FindingCode.UNREADABLE, "Total cholesterol"),
@@ -63,7 +63,7 @@ def test_glucose_above_126_stops_the_diabetes_model_and_126_does_not() -> None:
     assert run(DIABETES, WOMAN_55_AT_RISK, glucose="126").estimate is not None
     (stop,) = about(run(DIABETES, WOMAN_55_AT_RISK, glucose="127"), FindingCode.OUTSIDE_DERIVATION)
     assert stop.grade is Grade.STOP
-    assert "up to 126 mg/dL" in stop.message
+    assert "lies above 126 mg/dL" in stop.message
 
 
 def test_a_limit_met_exactly_in_another_unit_is_met() -> None:
@@ -89,3 +89,46 @@ def test_the_unit_typed_with_the_number_counts() -> None:
     molar = run(LIPIDS, WOMAN_61, total_cholesterol="4.655 mmol/L", hdl_cholesterol="1.215 mmol/L")
     assert round(probability(run(LIPIDS, WOMAN_61)), 4) == 0.1048
     assert round(probability(molar), 4) == 0.1049
+
+
+@pytest.mark.parametrize("typed", ["1.03 mmol/L", "20.69 mmol/L"])
+def test_the_range_beside_a_refused_value_does_not_hold_it(typed: str) -> None:
+    """40 and 800 mg/dL are 1.0344 and 20.688 mmol/L; written inwards they are 1.04 and 20.6."""
+    (stop,) = about(run(LIPIDS, WOMAN_61, total_cholesterol=typed), FindingCode.IMPOSSIBLE)
+    assert "1.04–20.6 mmol/L" in stop.message
+
+
+def test_every_digit_typed_is_shown() -> None:
+    result = run(DIABETES, WOMAN_55_AT_RISK, glucose="110.20000000000000000000000000")
+    line = next(line for line in result.values if line.id == "glucose")
+    assert line.shown == "110.20000000000000000000000000 mg/dL"
+
+
+@pytest.mark.parametrize("typed", ["110 ON 2026-10-02", "110\ton 2026-10-02", "110,0 mg/dl on 2026-10-02"])
+def test_what_was_typed_can_be_typed_again(typed: str) -> None:
+    first = run(DIABETES, WOMAN_55_AT_RISK, glucose=typed)
+    line = next(line for line in first.values if line.id == "glucose")
+    second = run(DIABETES, WOMAN_55_AT_RISK, glucose=line.typed)
+    assert next(line for line in second.values if line.id == "glucose") == line
+    assert line.dated is not None
+
+
+def test_a_broken_age_names_the_slip() -> None:
+    (stop,) = about(run(LIPIDS, WOMAN_61, age="74.9"), FindingCode.OUTSIDE_DERIVATION)
+    assert "completed years" in stop.message
+
+
+def test_the_label_is_said_once() -> None:
+    (stop,) = about(run(LIPIDS, WOMAN_61, age="732 mo"), FindingCode.WRONG_UNIT)
+    assert "Age: Age" not in stop.message
+
+
+def test_a_value_may_be_both_unusual_and_outside_the_derivation() -> None:
+    result = run("tarnwick-cvd-10y", DEMO, total_cholesterol="12 mmol/L")
+    codes = [finding.code for finding in result.findings if finding.field == "total_cholesterol"]
+    assert codes == [FindingCode.UNUSUAL, FindingCode.OUTSIDE_DERIVATION]
+
+
+def test_the_offer_reads_as_what_would_be_believable() -> None:
+    (caution,) = about(run(DIABETES, WOMAN_55_AT_RISK, glucose="21"), FindingCode.UNUSUAL)
+    assert caution.message.endswith("21 mmol/L would be believable: use that unit, or type the value again.")

@@ -62,3 +62,10 @@ def test_an_example_far_out_of_tolerance_in_one_limit_is_caught() -> None:
     with pytest.raises(CoefficientFileRefused) as refused:
         load_model_bytes(json.dumps(tree).encode(), name)
     assert [problem.path for problem in refused.value.problems] == ["/model/worked_examples/0/upper"]
+
+
+def test_an_example_may_carry_dates() -> None:
+    tree = json.loads(LIPIDS)
+    values = tree["model"]["worked_examples"][0]["values"]
+    values["total_cholesterol"] = "180 mg/dL on 2015-01-01"
+    assert load_model_bytes(json.dumps(tree).encode(), "dated.json").content.worked_examples

@@ -65,3 +65,15 @@ def test_an_impossible_worked_out_value_is_a_stop_on_it() -> None:
     (stop,) = about(result, FindingCode.IMPOSSIBLE)
     assert stop.field == "bmi"
     assert "worked out from" in stop.message
+
+
+def test_an_unusual_worked_out_value_is_a_caution_on_it() -> None:
+    rest = {id: text for id, text in WOMAN_55_AT_RISK.items() if id != "bmi"}
+    result = run(DIABETES, rest, weight="190 kg", height="140 cm")
+    (caution,) = [finding for finding in about(result, FindingCode.UNUSUAL) if finding.field == "bmi"]
+    assert "Check the values it was worked out from" in caution.message
+
+
+def test_apart_is_said_without_decimals_it_does_not_have() -> None:
+    (caution,) = about(run(BASE, WOMAN_EGFR_90, creatinine="1.0 mg/dL"), FindingCode.TYPED_AND_COMPUTED)
+    assert "more than 5\u202f% apart" in caution.message

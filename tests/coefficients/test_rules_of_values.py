@@ -183,6 +183,18 @@ def test_worked_examples_are_believable(path: str, words: str, change: Change) -
     only_said(LOGIT, path, words, change)
 
 
+def test_a_required_recalibration_is_there_for_every_horizon() -> None:
+    required = ("/model/recalibration_required", True)
+    path = f"{E0}/horizons/0"
+    said(CLOGLOG, path, "none stands in the file for 5 years: nobody could get a number there", required)
+    twin = {**CLOGLOG["model"]["recalibrations"][0], "id": "north-5", "years": 5}
+    assert path not in refusals(changed(CLOGLOG, required, ("/model/recalibrations/-", twin)))
+    # the same length in another unit is another horizon
+    months = {**twin, "time": 60, "unit": "mo"}
+    del months["years"]
+    assert path in refusals(changed(CLOGLOG, required, ("/model/recalibrations/-", months)))
+
+
 def test_there_is_an_example_for_every_equation_and_recalibration() -> None:
     path = "/model/worked_examples"
     only_said(CLOGLOG, path, 'no worked example for the equation "men"', (f"{path}/2", DROP))
@@ -198,7 +210,7 @@ def test_there_is_an_example_for_every_equation_and_recalibration() -> None:
     only_said(LOGIT, path, 'no worked example for the equation "all" has "lower" and "upper"', *without)
     said(CLOGLOG, f"{path}/1", "another time span", (f"{path}/1/years", 5))
     found = refusals(changed(CLOGLOG, ("/model/recalibration_required", True)))
-    assert set(found) == {f"{path}/0", f"{path}/2"}
+    assert set(found) == {f"{path}/0", f"{path}/2", f"{E0}/horizons/0"}
     assert refusals(changed(CLOGLOG, (f"{path}/2/values/sex", " MALE "))) == {}
 
 

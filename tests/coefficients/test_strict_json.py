@@ -2,9 +2,11 @@
 
 import json
 import time
+import unicodedata
 
 import pytest
 
+from clinicalc.coefficients.pointers import REFUSED_CHARACTERS
 from clinicalc.coefficients.strict_json import parse
 from tests.coefficients.tiny_model import refusals_of_bytes, tiny_logit_model, tree_of
 
@@ -92,13 +94,56 @@ def test_characters_that_disguise_a_text_are_refused_with_their_code_point(code:
     assert chr(code) not in message
 
 
+@pytest.mark.parametrize(
+    "code",
+    [
+        *(0x00AD, 0x034F, 0x115F, 0x1160, 0x17B4, 0x17B5, 0x180B, 0x180D, 0x180E, 0x180F, 0x200B, 0x200D),
+        *(0x2060, 0x2065, 0x2800, 0x3164, 0xFE00, 0xFE0F, 0xFEFF, 0xFFA0, 0xFFFC, 0xE000, 0xF8FF, 0xFDD0),
+        *(0xFDEF, 0xFFFE, 0xFFFF),
+        *(0x1FFFE, 0xE0001, 0xE0041, 0xE007F, 0xE0100, 0xE01EF, 0xF0000, 0xFFFFD, 0x10FFFF),
+    ],
+)
+def test_characters_that_are_not_seen_are_refused_with_their_code_point(code: int) -> None:
+    tree = tree_of(tiny_logit_model())
+    tree["model"]["predictors"][1]["label"] = f"Smokes{chr(code)} now"
+    found = refusals_of_bytes(json.dumps(tree).encode())
+    assert list(found) == ["/model/predictors/1/label"]
+    assert f"holds U+{code:04X}: invisible" in found["/model/predictors/1/label"]
+    assert chr(code) not in found["/model/predictors/1/label"]
+
+
+def test_every_character_that_this_python_calls_format_control_or_private_is_refused() -> None:
+    """And none that it calls a letter, a mark, a number, a sign or a space, but for those that are not seen."""
+    unseen = {0x034F, 0x115F, 0x1160, 0x17B4, 0x17B5, 0x180B, 0x180C, 0x180D, 0x180F, 0x2800, 0x3164, 0xFFA0, 0xFFFC}
+    unseen |= {*range(0xFE00, 0xFE10), *range(0xE0100, 0xE01F0)}  # variation selectors
+    for code in range(0x110000):
+        kind = unicodedata.category(chr(code))
+        refused = REFUSED_CHARACTERS.fullmatch(chr(code)) is not None
+        if kind in ("Cc", "Cf", "Cs", "Co", "Zl", "Zp") or code in unseen:
+            assert refused, f"U+{code:04X}"
+        elif kind != "Cn":
+            assert not refused, f"U+{code:04X}"
+
+
+@pytest.mark.parametrize("blank", [" ", "\u00a0", "\u202f", "\u3000 \u2003"])
+def test_a_text_of_spaces_alone_is_refused(blank: str) -> None:
+    for field in ("label", "group"):
+        tree = tree_of(tiny_logit_model())
+        tree["model"]["predictors"][1][field] = blank
+        found = refusals_of_bytes(json.dumps(tree).encode())
+        assert list(found) == [f"/model/predictors/1/{field}"]
+        assert "this text is blank" in found[f"/model/predictors/1/{field}"]
+
+
 def test_a_disguised_name_is_refused_and_shown_safely() -> None:
     found = refusals_of_bytes(VALID.replace(b'"title"', b'"ti\\u202etle"', 1))
     assert any("U+202E" in message for message in found.values())
     assert not any("\u202e" in path + message for path, message in found.items())
 
 
-@pytest.mark.parametrize("text", ["<b>Smokes</b>", "Ünïcode ≥ 3 µmol/L", "Ράγια Ф 中", "🙂", "a\u202f%"])
+@pytest.mark.parametrize(
+    "text", ["<b>Smokes</b>", "Ünïcode ≥ 3 µmol/L", "Ράγια Ф 中", "🙂", "a\u202f%", "a\u00a0b", "e\u0301te\u0301"]
+)
 def test_markup_and_other_scripts_are_letters_like_any(text: str) -> None:
     tree = tree_of(tiny_logit_model())
     tree["model"]["predictors"][1]["label"] = text

@@ -3,8 +3,9 @@
 import numpy as np
 import pytest
 
+from clinicalc.coefficients.roles import ROLES
 from clinicalc.coefficients.schema import DerivedEquation
-from clinicalc.covariates.derived import ROLES, derive
+from clinicalc.covariates.derived import derive
 
 # CKD-EPI 2021 creatinine (Inker, N Engl J Med 2021;385:1737): computed from the equation, no authoritative printed
 # check values were found. female, age, mg/dL, mL/min/1.73 m2

@@ -8,7 +8,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from clinicalc.coefficients.schema import (
+    AtCentre,
     CompetingEvents,
+    CovarianceBand,
+    DrawsBand,
     Equation,
     Factor,
     Horizon,
@@ -17,11 +20,14 @@ from clinicalc.coefficients.schema import (
     Spline,
     Step,
     Term,
+    Uncertainty,
     WorkedExample,
     YesNoPredictor,
 )
 from clinicalc.covariates.design import compile_terms, design_columns
 from clinicalc.covariates.finiteness import Interval, find_nonfinite
+from clinicalc.prediction.line import Adjustment, lines_of
+from clinicalc.prediction.predict import predict
 from tests.reference.packaging import content, numbers
 
 FREE = Interval(-inf, inf)
@@ -94,7 +100,7 @@ ACCEPTED = [
     ("root from 0", Interval(0, 9), (Step(power=0.5),)),
     ("cuts of an open range", FREE, (Step(from_=5.0),)),
     ("spline of an open range", FREE, (Step(spline=Spline((2, 3, 4), 1)),)),
-    ("overflow that a clip prevents", Interval(0, 1e5), (Step(clip_high=100.0), Step(power=100.0))),
+    ("overflow that a clip prevents", Interval(0, 1e5), (Step(clip_high=5.0), Step(power=100.0))),
     ("plain steps", FREE, (Step(subtract=5.0), Step(divide=3.0), Step(multiply=-2.0))),
 ]
 
@@ -148,6 +154,99 @@ def test_every_product_of_every_term_is_walked() -> None:
         "/model/equations/1/terms/0/product/1/steps/1",
         "/model/equations/1/terms/1/sum/1/0/steps/0",
     ]
+
+
+# ---------------------------------------------------------------- products, sums and what comes after them
+
+
+def model_of_terms(*terms: Term, uncertainty: Uncertainty | None = None, intercept: float = 0.0) -> ModelContent:
+    """A model in x, y and the question asked."""
+    equation = Equation(
+        id="all",
+        applies_when={},
+        link="logit",
+        competing_events=CompetingEvents(handled="not_applicable"),
+        terms=terms,
+        horizons=(Horizon(years=1.0, intercept=intercept),),
+        uncertainty=NoBand("Not needed here.") if uncertainty is None else uncertainty,
+    )
+    example = WorkedExample(values={"x": "1"}, probability=0.5, tolerance=0.01, source="None.", years=1.0)
+    predictors = (*numbers(("x", "y")), YesNoPredictor(id="asked", label="Asked", group="Values"))
+    return content("Invented.", predictors, (equation,), (example,))
+
+
+def raised(power: float, of: str = "x") -> Factor:
+    return Factor(of=of, steps=(Step(power=power),))
+
+
+ADULTS = {"x": Interval(30, 75), "y": Interval(-9, 4)}
+
+
+@pytest.mark.parametrize(
+    ("term", "size"),
+    [
+        # 75^150 is 1.8e281: each factor finite, the product not
+        (Term("t", 1.0, product=(Factor(of="asked"), raised(150.0), raised(150.0))), "is not finite"),
+        (Term("t", 1.0, product=(Factor(of="asked"), raised(80.0))), "can reach 1.0e+150"),
+        (Term("t", 1.0, product=(Factor(of="x"), raised(106.0, "y"))), "can reach 1.1e+103"),
+        # what is 1 at the end may be beyond all bounds on the way
+        (Term("t", 1.0, product=(raised(150.0), raised(150.0), raised(-300.0))), "is not finite"),
+    ],
+)
+def test_a_term_that_grows_beyond_use(term: Term, size: str) -> None:
+    (problem,) = find_nonfinite(model_of_terms(term), ADULTS)
+    assert problem.path == "/model/equations/0/terms/0"
+    assert problem.message.startswith(f'the term "t" {size} while ')
+    assert "at most 1e+100 can be reckoned with" in problem.message
+
+
+def test_the_sentence_of_a_term_names_every_range() -> None:
+    term = Term("t", 1.0, product=(Factor(of="asked"), raised(60.0), raised(60.0, "y")))
+    (problem,) = find_nonfinite(model_of_terms(term), ADULTS)
+    assert (
+        "while asked may be anything from 0 to 1, x may be anything from 30 to 75 and y may be anything from -9 to 4;"
+        in problem.message
+    )
+
+
+def test_the_products_of_a_sum_are_added() -> None:
+    """75^53 is 2.4e99: four of them are within the limit, five are not."""
+    four, five = (Term("t", 1.0, sum=((raised(53.0),),) * count) for count in (4, 5))
+    assert find_nonfinite(model_of_terms(four), ADULTS) == ()
+    (problem,) = find_nonfinite(model_of_terms(five), ADULTS)
+    assert 'the term "t" can reach 1.2e+100' in problem.message
+
+
+def test_a_step_that_fails_is_named_and_its_term_is_not_named_again() -> None:
+    term = Term("t", 1.0, product=(Factor(of="y", steps=(LOG,)), raised(150.0), raised(150.0)))
+    assert [p.path for p in find_nonfinite(model_of_terms(term), ADULTS)] == [
+        "/model/equations/0/terms/0/product/0/steps/0"
+    ]
+
+
+@pytest.mark.parametrize("bare", [True, False])
+def test_what_passes_is_finite_to_the_end_of_the_band(bare: bool) -> None:
+    """Every number of the file at the largest a file may hold, and every term at its limit."""
+    top = float(2**53 - 1)
+    terms = tuple(Term(f"t{k}", top, product=(Factor(of="x"),)) for k in range(20))
+    limits = {"x": Interval(-1e100, 1e100), "y": Interval(0, 1)}
+    covariance = tuple(tuple(top if i == j else 0.999 * top for j in range(20)) for i in range(20))
+    draws = tuple((top * (-1) ** k,) * 20 for k in range(200))
+    for band in (
+        CovarianceBand(covariance, (AtCentre(top, (-top,) * 20, years=1.0),)),
+        DrawsBand(draws, tuple((top * (-1) ** k,) for k in range(200))),
+    ):
+        model = model_of_terms(*terms, uncertainty=band, intercept=top)
+        assert find_nonfinite(model, limits) == ()
+        (line,) = lines_of(model.equations[0])
+        columns = {"x": np.array([-1e100, 0.0, 1.0, 1e100])}
+        design = design_columns(compile_terms(model, model.equations[0]), columns)
+        for spread in ((top, 0.0, top), (top, 0.0, 5e-324), (top, -1e-154, 5e-324)):
+            adjustment = None if bare else Adjustment(-top, top, spread)
+            result = predict(line, design, adjustment=adjustment)
+            for column in (result.eta, result.eta_lower, result.eta_upper, result.probability, result.lower):
+                assert column is not None
+                assert np.isfinite(column).all()
 
 
 # ---------------------------------------------------------------- silent means finite

@@ -20,10 +20,10 @@ from clinicalc.coefficients.schema import (
     Uncertainty,
 )
 from clinicalc.coefficients.spans import Span
-from clinicalc.prediction.line import Adjustment, Line, Precision, lines_of
+from clinicalc.prediction.line import Adjustment, Draws, Line, Precision, lines_of
 from clinicalc.prediction.links import Link, probability
 from clinicalc.prediction.predict import Prediction, predict
-from tests.prediction.invented import TEN_YEARS, Array, invent_columns, invent_line, invent_precision
+from tests.prediction.invented import TEN_YEARS, Array, invent_columns, invent_draws, invent_line, invent_precision
 
 LEVELS = (0.5, 0.8, 0.9, 0.95, 0.99, 0.999)
 
@@ -58,6 +58,19 @@ def test_level(link: Link, level: float) -> None:
 def test_level_moves_only_the_band() -> None:
     line, columns = invent_line("logit", 5, invent_precision(5)), invent_columns(50, 5)
     assert np.array_equal(predict(line, columns, level=0.5).eta, predict(line, columns, level=0.99).eta)
+
+
+@pytest.mark.parametrize("basis", [invent_precision(3), invent_draws(200, 3)], ids=["covariance", "draws"])
+def test_no_band_is_made_where_none_is_asked_for(basis: Precision | Draws) -> None:
+    line, columns = invent_line("logit", 3, basis), invent_columns(40, 3)
+    adjustment = Adjustment(0.2, 0.9, (0.01, 0.0, 0.01))
+    asked = predict(line, columns, adjustment=adjustment)
+    spared = predict(line, columns, adjustment=adjustment, band=False)
+    assert asked.lower is not None
+    assert (spared.lower, spared.upper, spared.eta_lower, spared.eta_upper) == (None, None, None, None)
+    assert np.array_equal(spared.eta, asked.eta)
+    assert np.array_equal(spared.probability, asked.probability)
+    assert np.array_equal(spared.complement, asked.complement)
 
 
 def test_fixed_terms_bring_no_variance() -> None:

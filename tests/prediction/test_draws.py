@@ -79,18 +79,59 @@ def test_estimate_is_the_files_own_not_the_draws() -> None:
 
 
 def test_recalibrated_draws() -> None:
-    """Distances from the estimate are joined side by side: Zou & Donner, Stat Med 2008;27:1693."""
+    """Distances from the median of the draws are joined side by side: Zou & Donner, Stat Med 2008;27:1693."""
     line, columns = invent_line("logit", 2, invent_draws(400, 2)), invent_columns(1, 2)
     eta = float(predict(line, columns).eta[0])
     low, high = limits(line, columns, 0.95)
-    assert low < eta < high
+    assert isinstance(line.band, Draws)
+    x = [float(column[0]) for column in columns]
+    median = type_7(
+        [
+            float(line.band.baselines[k]) + sum(float(line.band.coefficients[j, k]) * x[j] for j in range(2))
+            for k in range(400)
+        ],
+        0.5,
+    )
+    assert low < median < high
+    assert median != pytest.approx(eta, abs=1e-4)
     bare = Adjustment(-0.3, 0.8, None)
     assert limits(line, columns, 0.95, bare) == pytest.approx((-0.3 + 0.8 * low, -0.3 + 0.8 * high), rel=1e-12)
     v00, v01, v11 = 0.02, -0.004, 0.01
     extra = 1.959963984540054**2 * (v00 + 2 * v01 * eta + v11 * eta * eta)
-    middle = -0.3 + 0.8 * eta
+    middle = -0.3 + 0.8 * median
     expected = (
-        middle - np.sqrt((0.8 * (eta - low)) ** 2 + extra),
-        middle + np.sqrt((0.8 * (high - eta)) ** 2 + extra),
+        middle - np.sqrt((0.8 * (median - low)) ** 2 + extra),
+        middle + np.sqrt((0.8 * (high - median)) ** 2 + extra),
     )
     assert limits(line, columns, 0.95, Adjustment(-0.3, 0.8, (v00, v01, v11))) == pytest.approx(expected, rel=1e-12)
+
+
+def lopsided(lp0: float) -> Line:
+    """An estimate anywhere beside 2000 draws of a baseline, normal with a standard deviation of 0.5."""
+    rng = np.random.default_rng(11)
+    return Line(TEN_YEARS, "logit", lp0, (0.0,), Draws((0,), np.zeros((1, 2000)), rng.normal(size=2000) * 0.5), "draws")
+
+
+@pytest.mark.parametrize("v00", [0.0625, 0.25, 1.0])
+def test_imprecision_only_widens_wherever_the_estimate_lies(v00: float) -> None:
+    column = (np.array([1.0]),)
+    for lp0 in np.linspace(-3, 3, 61):
+        low, high = limits(lopsided(float(lp0)), column, 0.95, Adjustment(0.0, 1.0, None))
+        lower, upper = limits(lopsided(float(lp0)), column, 0.95, Adjustment(0.0, 1.0, (v00, 0.0, 1e-6)))
+        assert lower < low < high < upper
+
+
+def test_the_band_has_no_jump_where_the_estimate_leaves_it() -> None:
+    adjustment = Adjustment(0.0, 1.0, (0.25, 0.0, 1e-6))
+    ends = np.array(
+        [limits(lopsided(float(lp0)), (np.array([1.0]),), 0.95, adjustment) for lp0 in np.linspace(-1.5, 1.5, 301)]
+    )
+    assert np.abs(np.diff(ends, axis=0)).max() < 1e-4
+    # two independent spreads of 0.5: 1.96 x sqrt(0.25 + 0.25), as far as 2000 draws can tell
+    assert ends == pytest.approx(np.array([[-1.386, 1.386]] * 301), abs=0.06)
+
+
+def test_imprecision_of_nought_changes_nothing() -> None:
+    line, columns = lopsided(-2.0), (np.array([1.0]),)
+    bare = limits(line, columns, 0.95, Adjustment(0.1, 0.9, None))
+    assert limits(line, columns, 0.95, Adjustment(0.1, 0.9, (1e-24, 0.0, 1e-30))) == pytest.approx(bare, rel=1e-9)

@@ -5,7 +5,7 @@ from decimal import Decimal, localcontext
 import numpy as np
 import pytest
 
-from clinicalc.prediction.links import Link, complement, link_value, probability
+from clinicalc.prediction.links import Link, complement, probability
 
 EPS = float(np.finfo(np.float64).eps)
 LINKS: tuple[Link, ...] = ("logit", "cloglog")
@@ -88,10 +88,3 @@ def test_beyond_the_range_of_a_double() -> None:
     assert rest[0] == 1
     assert list(probability("cloglog", far)) == [0, 1]
     assert list(complement("cloglog", far)) == [1, 0]
-
-
-@pytest.mark.parametrize("link", LINKS)
-def test_link_value_is_the_way_back(link: Link) -> None:
-    # the upper end is where 1 - p still has digits
-    eta = np.linspace(-600, 2.0, 2000)
-    assert link_value(link, probability(link, eta)) == pytest.approx(eta, rel=1e-13, abs=1e-13)

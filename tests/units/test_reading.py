@@ -43,13 +43,33 @@ from clinicalc.units import Reading, Unit, Unreadable, UnreadableReason, all_uni
     ],
 )
 def test_readable(typed: str, number: float, decimals: int, code: str | None) -> None:
-    assert read_value(typed) == Reading(typed.strip(), number, decimals, code, None)
+    reading = read_value(typed)
+    assert isinstance(reading, Reading)
+    assert (reading.text, reading.number, reading.decimals) == (typed.strip(), number, decimals)
+    assert (reading.unit, reading.dated) == (code, None)
+
+
+@pytest.mark.parametrize(
+    ("typed", "digits"),
+    [
+        ("5,20 mmol/l", "5.20"),
+        ("−3", "-3"),
+        ("+3", "3"),
+        ("110.20000000000000000000000000", "110.20000000000000000000000000"),
+        ("12345678901234567890", "12345678901234567890"),
+        ("007", "007"),
+    ],
+)
+def test_every_digit_typed_is_kept(typed: str, digits: str) -> None:
+    reading = read_value(typed)
+    assert isinstance(reading, Reading)
+    assert reading.digits == digits
 
 
 def test_a_value_may_carry_its_date() -> None:
     typed = "110 mg/dL on 2026-10-02"
-    assert read_value(typed) == Reading(typed, 110.0, 0, "mg/dL", date(2026, 10, 2))
-    assert read_value("110 on 2026-10-02") == Reading("110 on 2026-10-02", 110.0, 0, None, date(2026, 10, 2))
+    assert read_value(typed) == Reading(typed, "110", 110.0, 0, "mg/dL", date(2026, 10, 2))
+    assert read_value("110 on 2026-10-02") == Reading("110 on 2026-10-02", "110", 110.0, 0, None, date(2026, 10, 2))
 
 
 def test_a_typed_minus_zero_is_zero() -> None:
@@ -127,7 +147,7 @@ def test_unreadable_in_its_own_words(typed: str, reason: str, words: str) -> Non
 
 
 def test_a_bare_number_is_not_asked_about_its_comma() -> None:
-    assert read_value("1,234", ask_about_comma=False) == Reading("1,234", 1.234, 3, None, None)
+    assert read_value("1,234", ask_about_comma=False) == Reading("1,234", "1.234", 1.234, 3, None, None)
 
 
 @given(st.text() | st.text(alphabet="0123456789.,-+−<eE /%mgdLonx^*' \u00a0\u202e٣²½"))

@@ -11,6 +11,7 @@ from clinicalc.coefficients.rules.coverage import check_coverage
 from clinicalc.coefficients.rules.derivations import check_derived
 from clinicalc.coefficients.rules.examples import check_examples
 from clinicalc.coefficients.rules.horizons import check_horizons
+from clinicalc.coefficients.rules.labels import check_labels
 from clinicalc.coefficients.rules.naming import (
     check_applies_when,
     check_flags,
@@ -30,6 +31,7 @@ Rule = Callable[[ModelContent, Catalogue], Iterator[Problem]]
 
 RULES: tuple[Rule, ...] = (
     check_names,
+    check_labels,
     check_sex,
     check_flags,
     check_counts,

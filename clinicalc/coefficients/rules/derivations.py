@@ -1,46 +1,28 @@
 """Derived values: the roles their named equation needs, filled by predictors of fitting quantities."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
+from clinicalc.coefficients.roles import RESULT_QUANTITY, SEX, role_names
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.naming import SEXES
 from clinicalc.coefficients.rules.quantities import factor_of, fits_table
-from clinicalc.coefficients.schema import Derived, DerivedEquation, ModelContent, NumberPredictor
+from clinicalc.coefficients.schema import Derived, ModelContent, NumberPredictor
 from clinicalc.errors import Problem, UnitError
 from clinicalc.units import conversion, quantity
-
-SEX = "sex"
-ROLES: Mapping[DerivedEquation, tuple[str, ...]] = {
-    "body_mass_index": ("weight", "height"),
-    "non_hdl_cholesterol": ("total_cholesterol", "hdl_cholesterol"),
-    "ckd_epi_2021": ("creatinine", "age", SEX),
-    "friedewald_ldl": ("total_cholesterol", "hdl_cholesterol", "triglycerides"),
-    "difference": ("minuend", "subtrahend"),
-    "ratio": ("numerator", "denominator"),
-}
-"""The inputs of each equation. Where the role is a quantity's id, the input must be of that quantity."""
-
-RESULTS: Mapping[DerivedEquation, str] = {
-    "body_mass_index": "body_mass_index",
-    "non_hdl_cholesterol": "non_hdl_cholesterol",
-    "ckd_epi_2021": "egfr_indexed",
-    "friedewald_ldl": "ldl_cholesterol",
-}
-"""The quantity that comes out, where the equation fixes it."""
 
 
 def check_derived(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
     """Every derived value."""
     for index, derived in enumerate(model.derived):
         base = at("derived", index)
-        result = RESULTS.get(derived.equation, derived.quantity)
+        result = RESULT_QUANTITY.get(derived.equation, derived.quantity)
         if derived.quantity != result:
             yield Problem(
                 point(base, "quantity"), f"{derived.equation} gives {quoted(result)}, not {quoted(derived.quantity)}."
             )
         yield from _check_roles(derived, point(base, "inputs"))
-        for role in ROLES[derived.equation]:
+        for role in role_names(derived.equation):
             if role in derived.inputs:
                 fault = _judge_input(role, derived, names)
                 if fault:
@@ -51,7 +33,7 @@ def check_derived(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
 
 
 def _check_roles(derived: Derived, base: str) -> Iterator[Problem]:
-    roles = ROLES[derived.equation]
+    roles = role_names(derived.equation)
     absent = [role for role in roles if role not in derived.inputs]
     if absent:
         yield Problem(base, f"{derived.equation} also needs {listed(map(quoted, absent))}.")
@@ -77,7 +59,7 @@ def _judge_input(role: str, derived: Derived, names: Catalogue) -> str:
         return "" if fits else f'{quoted(name)} must be a choice of exactly two answers, "female" and "male".'
     if not isinstance(predictor, NumberPredictor):
         return f"{quoted(name)} is not a number."
-    if derived.equation in RESULTS and predictor.quantity != role:
+    if derived.equation in RESULT_QUANTITY and predictor.quantity != role:
         return f"{quoted(name)} is of the quantity {quoted(predictor.quantity)}; {quoted(role)} must stand here."
     return ""
 
@@ -86,7 +68,7 @@ def _judge_units(derived: Derived, names: Catalogue) -> str:
     """A difference is taken in the result's unit, a ratio in the numerator's; what does not convert has neither."""
     if derived.equation not in ("difference", "ratio") or not fits_table(derived):
         return ""
-    found = [names.predictors.get(derived.inputs.get(role, "")) for role in ROLES[derived.equation]]
+    found = [names.predictors.get(derived.inputs.get(role, "")) for role in role_names(derived.equation)]
     inputs = [part for part in found if isinstance(part, NumberPredictor) and fits_table(part)]
     if len(inputs) < len(found):
         return ""

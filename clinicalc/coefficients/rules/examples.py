@@ -7,6 +7,7 @@ from collections.abc import Iterator, Mapping
 
 from msgspec import UnsetType
 
+from clinicalc.coefficients.answers import find_answer
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.coverage import select_equations
@@ -50,16 +51,16 @@ def check_examples(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
 
 
 def read_answers(values: Mapping[str, str], names: Catalogue) -> dict[str, str]:
-    """The answer ids that typed answers stand for, by id or by label, capital or small; others are left out."""
+    """The answer ids that typed answers stand for (`find_answer`); what is no answer is left out."""
     answers: dict[str, str] = {}
     for name, text in values.items():
-        typed = text.strip().casefold()
         predictor = names.predictors.get(name)
-        spelled = {answer: answer for answer in names.answers_of(name)}
+        known = [(answer, answer) for answer in names.answers_of(name)]
         if isinstance(predictor, ChoicePredictor):
-            spelled = {choice.label.strip().casefold(): choice.id for choice in predictor.choices} | spelled
-        if typed in spelled:
-            answers[name] = spelled[typed]
+            known = [(choice.id, choice.label) for choice in predictor.choices]
+        place = find_answer(text, known)
+        if place is not None:
+            answers[name] = known[place][0]
     return answers
 
 

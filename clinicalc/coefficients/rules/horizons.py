@@ -1,11 +1,11 @@
 """Horizons: a time given once, the baseline the link needs, and hazards that rise with time."""
 
-import math
 from collections.abc import Iterator
 from itertools import pairwise
 
 from msgspec import UNSET, UnsetType
 
+from clinicalc.coefficients.baselines import baseline
 from clinicalc.coefficients.pointers import listed, point, quoted
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.schema import Equation, Horizon, ModelContent
@@ -59,16 +59,6 @@ def check_span_known(part: HasSpan, path: str, model: ModelContent) -> Iterator[
         yield Problem(path, f"the model has no horizon of {span.words}; it has {words}.")
 
 
-def log_cumulative_hazard(horizon: Horizon) -> float | None:
-    """log H0 with every term at zero: as given, or log(-log S0) less the mean; None where that is incomplete."""
-    if not isinstance(horizon.log_cumulative_hazard, UnsetType):
-        return horizon.log_cumulative_hazard
-    survival, mean = horizon.baseline_survival, horizon.mean_linear_predictor
-    if isinstance(survival, UnsetType) or isinstance(mean, UnsetType) or not 0 < survival < 1:
-        return None
-    return math.log(-math.log(survival)) - mean
-
-
 def _check_baseline(horizon: Horizon, link: str, path: str) -> Iterator[Problem]:
     found = {name for name in _BASELINE if getattr(horizon, name) is not UNSET}
     if link == "logit":
@@ -116,7 +106,7 @@ def _check_order(equation: Equation, base: str) -> Iterator[Problem]:
         if later == days:
             yield Problem(here, f"{late.words} stands twice. Each horizon stands once.")
             continue
-        low, high = _height(before, equation.link), _height(after, equation.link)
+        low, high = baseline(before, equation.link), baseline(after, equation.link)
         if low is None or high is None:
             continue
         if equation.link == "cloglog" and high <= low:
@@ -127,12 +117,6 @@ def _check_order(equation: Equation, base: str) -> Iterator[Problem]:
             yield Problem(
                 here, f"the intercept must not fall with time, and at {late.words} it is below that of {early.words}."
             )
-
-
-def _height(horizon: Horizon, link: str) -> float | None:
-    if link == "cloglog":
-        return log_cumulative_hazard(horizon)
-    return None if isinstance(horizon.intercept, UnsetType) else horizon.intercept
 
 
 def _spell(equation: Equation) -> str:

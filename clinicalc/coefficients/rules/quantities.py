@@ -5,8 +5,8 @@ from collections.abc import Iterator
 from msgspec import UnsetType
 
 from clinicalc.coefficients.pointers import listed, point, quoted
+from clinicalc.coefficients.products import products_of
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
-from clinicalc.coefficients.rules.terms import products_of
 from clinicalc.coefficients.schema import Derived, Limits, ModelContent, NumberPredictor
 from clinicalc.errors import Problem, UnitError
 from clinicalc.units import Quantity, Range, conversion, possible_in, quantity, unit, usual_in
@@ -160,7 +160,7 @@ def _list_bent(model: ModelContent) -> Iterator[str]:
             yield derived.inputs["denominator"]
     for equation in model.equations:
         for term in equation.terms:
-            for _, product in products_of(term, ""):
+            for product in products_of(term):
                 for factor in product:
                     steps = () if isinstance(factor.steps, UnsetType) else factor.steps
                     if any(

@@ -9,6 +9,7 @@ from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.horizons import check_span_known
 from clinicalc.coefficients.rules.matrices import judge_matrix
 from clinicalc.coefficients.schema import ModelContent, Recalibration
+from clinicalc.coefficients.spans import span_of
 from clinicalc.errors import Problem
 
 
@@ -20,10 +21,26 @@ def check_recalibrations(model: ModelContent, names: Catalogue) -> Iterator[Prob
             at("recalibration_required"),
             "a recalibration is required and none stands in the file: nobody could use it.",
         )
+    yield from _check_every_horizon(model)
     for index, recalibration in enumerate(model.recalibrations):
         base = at("recalibrations", index)
         yield from check_span_known(recalibration, base, model)
         yield from _check_equations(recalibration, point(base, "equations"), model)
+
+
+def _check_every_horizon(model: ModelContent) -> Iterator[Problem]:
+    """Where a recalibration is required, each horizon has one."""
+    if not model.recalibration_required or not model.recalibrations:
+        return
+    served = {span_of(recalibration) for recalibration in model.recalibrations}
+    for place, horizon in enumerate(model.equations[0].horizons):
+        span = span_of(horizon)
+        if span is not None and span not in served:
+            yield Problem(
+                at("equations", 0, "horizons", place),
+                f"a recalibration is required and none stands in the file for {span.words}: nobody could get a number "
+                "there. Add one, or leave the horizon out.",
+            )
 
 
 def _check_equations(recalibration: Recalibration, base: str, model: ModelContent) -> Iterator[Problem]:

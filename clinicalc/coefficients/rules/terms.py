@@ -7,6 +7,7 @@ from itertools import pairwise
 from msgspec import UNSET, UnsetType
 
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
+from clinicalc.coefficients.products import place_products
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.schema import (
     ChoicePredictor,
@@ -14,7 +15,6 @@ from clinicalc.coefficients.schema import (
     Interval,
     ModelContent,
     NumberPredictor,
-    Product,
     Spline,
     Step,
     Term,
@@ -36,15 +36,6 @@ def check_terms(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
             yield from _check_term(term, at("equations", index, "terms", place), names)
 
 
-def products_of(term: Term, base: str) -> Iterator[tuple[str, Product]]:
-    """The products of a term, each with its pointer."""
-    if not isinstance(term.product, UnsetType):
-        yield point(base, "product"), term.product
-    if not isinstance(term.sum, UnsetType):
-        for index, product in enumerate(term.sum):
-            yield point(base, "sum", index), product
-
-
 def fields_of(step: Step) -> tuple[str, ...]:
     """The names, as the file spells them, of the fields that stand in a step."""
     spelled = zip(step.__struct_fields__, step.__struct_encode_fields__, strict=True)
@@ -57,7 +48,7 @@ def _check_term(term: Term, base: str, names: Catalogue) -> Iterator[Problem]:
         yield Problem(base, f'a term has either "product" or "sum"; {both}.')
     if not isinstance(term.interval, UnsetType):
         yield from _check_interval(term.interval, term.coefficient, point(base, "interval"))
-    for path, product in products_of(term, base):
+    for path, product in place_products(term, base):
         for index, factor in enumerate(product):
             yield from _check_factor(factor, point(path, index), names)
 

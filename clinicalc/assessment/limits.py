@@ -1,0 +1,74 @@
+"""Where a value lies among its limits, and how limits are written beside a value that was typed."""
+
+from collections.abc import Callable
+from math import ceil, floor, log10
+
+from clinicalc.assessment.fields import OPEN, NumberField
+from clinicalc.assessment.numerals import plain_range
+from clinicalc.coefficients.schema import Limits
+from clinicalc.units.conversion import conversion
+from clinicalc.units.unit import unit
+
+_DIGITS = 9
+"""Significant digits to which a value and a limit are compared: a limit met exactly in another unit is met."""
+
+_SHOWN_DIGITS = 3
+
+
+def is_within(value: float, limits: Limits) -> bool:
+    """Whether a value lies inside, both ends included, compared to 9 significant digits; an open side always holds."""
+    low, high = limits
+    rounded = _round(value)
+    return (low is None or rounded >= _round(low)) and (high is None or rounded <= _round(high))
+
+
+def clamp(value: float, limits: Limits) -> float:
+    """The value moved onto a limit that it misses by the last bits only."""
+    low, high = limits
+    value = value if low is None else max(value, low)
+    return value if high is None else min(value, high)
+
+
+def giving_limits(field: NumberField) -> Limits:
+    """The values for which the model gives a number: the possible ones, and of those the derivation's if that stops."""
+    return _tighter(field.possible, field.derivation if field.derivation_stops else OPEN)
+
+
+def words_for(field: NumberField, limits: Limits, code: str) -> str:
+    """The limits in a unit as they stand in a sentence, rounded inwards so that they never hold a refused value."""
+    back = conversion(field.quantity, field.unit, code, field.factor)
+    low, high = (None if end is None else back.apply(end) for end in limits)
+    inner = (
+        (None if low is None else _round_inwards(low, ceil)),
+        (None if high is None else _round_inwards(high, floor)),
+    )
+    return plain_range(*inner, "" if code == "1" else unit(code).spelling)
+
+
+def place_of(field: NumberField, value: float, limits: Limits, code: str) -> str:
+    """Where a value outside the limits lies: "below 30–74 years", or "above 126 mg/dL" where one side is open."""
+    low, high = limits
+    side = "below" if low is not None and _round(value) < _round(low) else "above"
+    if low is not None and high is not None:
+        return f"{side} {words_for(field, limits, code)}"
+    end = high if low is None else low
+    return f"{side} {words_for(field, (end, end), code)}"
+
+
+def _tighter(one: Limits, other: Limits) -> Limits:
+    lows = [end for end in (one[0], other[0]) if end is not None]
+    highs = [end for end in (one[1], other[1]) if end is not None]
+    return (max(lows) if lows else None), (min(highs) if highs else None)
+
+
+def _round(value: float) -> float:
+    return float(f"{value:.{_DIGITS}g}")
+
+
+def _round_inwards(value: float, direction: Callable[[float], int]) -> float:
+    value = _round(value)
+    if value == 0:
+        return 0.0
+    decimals = max(0, _SHOWN_DIGITS - 1 - floor(log10(abs(value))))
+    scale = float(f"1e{decimals}")
+    return float(direction(_round(value * scale)) / scale)
