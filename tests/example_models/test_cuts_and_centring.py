@@ -1,4 +1,4 @@
-"""Each cut, knot and centring value of the shipped transcriptions, on both sides, as the papers print them."""
+"""Each cut, knot and centring value of the shipped published models, on both sides, as the papers print them."""
 
 from pathlib import Path
 

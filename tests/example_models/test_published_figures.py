@@ -1,7 +1,7 @@
-"""The shipped transcriptions against the figures their papers print, by an evaluator apart from the program.
+"""The shipped published models against the figures their papers print, by an evaluator apart from the program.
 
 "printed" was read in the source, "from memory" was not, "computed" is arithmetic on the same coefficients and proves
-no transcription. A tolerance is half the last printed digit unless a comment says otherwise.
+no copying of figures. A tolerance is half the last printed digit unless a comment says otherwise.
 """
 
 import math

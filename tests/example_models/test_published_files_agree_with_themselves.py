@@ -1,4 +1,4 @@
-"""What must hold inside each shipped transcription: intervals, worked examples, conditions, unconfirmed figures."""
+"""What must hold inside each shipped published model: intervals, worked examples, conditions, unconfirmed figures."""
 
 import math
 from pathlib import Path
