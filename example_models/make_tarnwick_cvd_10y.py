@@ -140,7 +140,7 @@ def _use() -> s.Use:
         setting="Demonstration and tests",
         not_for=("any patient", "people who already have cardiovascular disease", "emergencies", "pregnancy"),
         not_used=("family history", "kidney function", "body weight", "ethnic group", "lipid-lowering treatment"),
-        cautions=("This model is invented. Its numbers are true of nobody and must not guide any decision.",),
+        cautions=("It is invented; its numbers are true of nobody and must not guide any decision.",),
         plain=s.Plain(
             outcome="a first heart attack or stroke",
             cautions=(

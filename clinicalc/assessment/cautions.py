@@ -25,4 +25,4 @@ def equation_cautions(model: Model, basis: Basis) -> Iterator[Finding]:
             f" {COMPETING_AGE:g} years that makes the number higher than the share of people who have the event.",
         )
     for caution in model.content.use.cautions:
-        yield Finding(Grade.NOTE, FindingCode.MODEL, "", f"This model: {caution}")
+        yield Finding(Grade.NOTE, FindingCode.MODEL, "", f"About this model: {caution}")

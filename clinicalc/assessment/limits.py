@@ -36,13 +36,17 @@ def giving_limits(field: NumberField) -> Limits:
 
 def words_for(field: NumberField, limits: Limits, code: str) -> str:
     """The limits in a unit as they stand in a sentence, rounded inwards so that they never hold a refused value."""
+    return plain_range(*shown_limits(field, limits, code), "" if code == "1" else unit(code).spelling)
+
+
+def shown_limits(field: NumberField, limits: Limits, code: str) -> Limits:
+    """The limits in a unit as they are shown, in sentences and beside a range line: rounded inwards."""
     back = conversion(field.quantity, field.unit, code, field.factor)
     low, high = (None if end is None else back.apply(end) for end in limits)
-    inner = (
-        (None if low is None else _round_inwards(low, ceil)),
-        (None if high is None else _round_inwards(high, floor)),
+    return (
+        None if low is None else _round_inwards(low, ceil),
+        None if high is None else _round_inwards(high, floor),
     )
-    return plain_range(*inner, "" if code == "1" else unit(code).spelling)
 
 
 def place_of(field: NumberField, value: float, limits: Limits, code: str) -> str:

@@ -34,15 +34,15 @@ class CaseWords:
     label: str = ""
 
 
-def case_options(command: _Command) -> _Command:
-    """Give a command the arguments and options of a case."""
+def case_options(command: _Command, *, file_required: bool = True) -> _Command:
+    """Give a command the arguments and options of a case; `file_required` is False where a call may have none."""
     for decorate in (
         click.option("--level", type=float, default=0.95, show_default=True, help="Level of the band, 0.5 to 0.999."),
         click.option("--recalibration", metavar="ID", help="A recalibration that the file offers."),
         click.option("--time", metavar="SPAN", help='Horizon in another unit of time, such as "90 d".'),
         click.option("--years", type=float, metavar="N", help="Horizon in years, where the file has several."),
         click.argument("values", nargs=-1, metavar="[FIELD=VALUE]..."),
-        click.argument("file", metavar="FILE"),
+        click.argument("file", metavar="FILE", required=file_required),
     ):
         command = decorate(command)
     return command

@@ -1,6 +1,7 @@
 """The commands: assess, report, inspect, demo."""
 
 from collections.abc import Callable, Sequence
+from functools import partial
 from pathlib import Path
 
 import click
@@ -9,12 +10,14 @@ from clinicalc import __version__
 from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
 from clinicalc.cli.case import CaseWords, assess_case, case_options
+from clinicalc.cli.checking import check_print, require_print
 from clinicalc.cli.outcome import ExitStatus, run_guarded
 from clinicalc.operations.bedside import assess_patient, open_model
 from clinicalc.operations.demonstration import DemoCase, demo_case
 from clinicalc.operations.documents import save_pdf, stated_time
 from clinicalc.operations.inspection import inspect_model, write_sections
 from clinicalc.operations.summary import summarise
+from clinicalc.settings import Paper
 
 OpenWindow = Callable[[DemoCase], int]
 """Opens the window on a case and returns when it is closed; does nothing where there is no screen."""
@@ -43,18 +46,40 @@ def assess(as_json: bool, **words: object) -> int:
     return ExitStatus.STOPPED if assessment.estimate is None else ExitStatus.ASSESSED
 
 
-@clinicalc.command(short_help="Assess one patient and write the PDF.")
-@case_options
-@click.option("--out", required=True, metavar="FILE.pdf", help="The PDF to write.")
+@clinicalc.command(short_help="Assess one patient and write the PDF, or check an old one.")
+@partial(case_options, file_required=False)
+@click.option("--out", metavar="FILE.pdf", help="The PDF to write.")
 @click.option("--label", default="", help="Name or number of the patient, for the print only.")
-def report(out: str, **words: object) -> int:
-    """Assess one patient and write the print as a PDF. No number, no print."""
+@click.option(
+    "--paper",
+    type=click.Choice([paper.value.lower() for paper in Paper], case_sensitive=False),
+    default=Paper.A4.value.lower(),
+    show_default=True,
+    help="The sheet to lay it out for.",
+)
+@click.option("--no-patient-page", is_flag=True, help="Leave out the page for the patient.")
+@click.option("--check", metavar="FILE.pdf", help="A print to work out again, with --model and nothing else.")
+@click.option("--model", metavar="FILE.json", help="The coefficient file to check the print against.")
+def report(
+    out: str | None, check: str | None, model: str | None, paper: str, no_patient_page: bool, **words: object
+) -> int:
+    """Assess one patient and write the print as a PDF: pages for the clinician, and a last one for the patient.
+
+    No number, no print.
+
+    With --check and --model an old print is worked out again from the record attached to it: exit status 0 when
+    number, band, values and findings agree, 3 when they do not.
+    """
+    if check is not None or model is not None:
+        return check_print(check, model)
+    out = require_print(words["file"], out)
     assessment = assess_case(CaseWords(**words), at=stated_time())  # type: ignore[arg-type]
     if assessment.estimate is None:
         click.echo(summarise(assessment), nl=False)
         click.echo(f"\nNo print was made: there is no number to print. {out} was not written.")
         return ExitStatus.STOPPED
-    _write_print(out, assessment)
+    sheet = next(sheet for sheet in Paper if sheet.value.lower() == paper)
+    _write_print(out, assessment, paper=sheet, patient_page=not no_patient_page)
     return ExitStatus.ASSESSED
 
 
@@ -78,8 +103,8 @@ def demo(open_window: OpenWindow, out: str, no_window: bool) -> int:
     return ExitStatus.ASSESSED if no_window else open_window(case)
 
 
-def _write_print(out: str, assessment: Assessment) -> None:
-    save_pdf(Path(out), assessment)
+def _write_print(out: str, assessment: Assessment, *, paper: Paper = Paper.A4, patient_page: bool = True) -> None:
+    save_pdf(Path(out), assessment, paper=paper, patient_page=patient_page)
     stated = stated_time()
     dated = "" if stated is None else f", dated {stated:%Y-%m-%d %H:%M} by SOURCE_DATE_EPOCH"
     click.echo(f"{summarise(assessment)}\nPrint written to {out}{dated}")

@@ -6,8 +6,9 @@ from PySide6.QtCore import QPointF, QRect, Qt, Signal
 from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen, QWheelEvent
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QSizePolicy
 
+from clinicalc.gui import theme
 from clinicalc.gui.frames import FieldFrame
-from clinicalc.gui.tokens import LIGHT, RING
+from clinicalc.gui.tokens import RING
 from clinicalc.gui.typeface import UNIT, face
 
 _ARROW_ROOM = 24
@@ -20,7 +21,7 @@ class Chooser(QComboBox):
 
     def __init__(self, *, soft: bool = True) -> None:
         super().__init__()
-        self._ink = LIGHT.soft if soft else LIGHT.ink
+        self._soft = soft
         self.setFont(face(UNIT))
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.setMinimumContentsLength(1)
@@ -58,11 +59,11 @@ class Chooser(QComboBox):
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         painter.setFont(self.font())
-        painter.setPen(QColor(self._ink))
+        painter.setPen(QColor(theme.tokens().soft if self._soft else theme.tokens().ink))
         room = QRect(7, 0, self.width() - _ARROW_ROOM - 7, self.height())
         text = painter.fontMetrics().elidedText(self.currentText(), Qt.TextElideMode.ElideRight, room.width())
         painter.drawText(room, Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine, text)
-        painter.setPen(QPen(QColor(LIGHT.ink), 1.5))
+        painter.setPen(QPen(QColor(theme.tokens().ink), 1.5))
         x, y = self.width() - 13.0, self.height() / 2 - 2
         painter.drawPolyline([QPointF(x - 4, y), QPointF(x, y + 4), QPointF(x + 4, y)])
         painter.end()

@@ -1,4 +1,4 @@
-"""The foot: New patient, what is kept, Save PDF; and the message line over it."""
+"""The foot: New patient, what is kept, Copy, Print, Save PDF; and what was just done."""
 
 from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
@@ -15,26 +15,47 @@ class FootBar(QWidget):
         super().__init__()
         self.setObjectName("ground")
         self.message = make_label("", UNIT, semibold=True)
-        self.message.setContentsMargins(SIDE_MARGIN, 8, SIDE_MARGIN, 8)
         self.message.hide()
+        self.promise = make_line("Nothing is kept unless you save or print it.", UNIT, soft=True)
+        self._program = make_line(f"clinicalc {__version__}", CAPTION, soft=True)
+        self._is_narrow = False
         self.new_patient = make_button("&New patient")
+        self.copy = make_button("Copy")
+        self.copy.setAccessibleDescription("Key: Ctrl+Shift+C")
+        self.print = make_button("P&rint…")
         self.save_pdf = make_button("Sa&ve PDF…", name="primary")
         row = QHBoxLayout()
         row.setContentsMargins(SIDE_MARGIN, 8, SIDE_MARGIN, 8)
-        row.setSpacing(16)
+        row.setSpacing(10)
         row.addWidget(self.new_patient)
-        row.addWidget(make_line("Nothing is kept unless you save or print it.", UNIT, soft=True))
-        row.addStretch(1)
-        row.addWidget(make_line(f"clinicalc {__version__}", CAPTION, soft=True))
+        row.addSpacing(8)
+        row.addWidget(self.promise)
+        row.addWidget(self.message, 1)
+        row.addStretch(0)
+        row.addWidget(self._program)
+        row.addSpacing(6)
+        row.addWidget(self.copy)
+        row.addWidget(self.print)
         row.addWidget(self.save_pdf)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
         column.addWidget(make_rule())
-        column.addWidget(self.message)
         column.addLayout(row)
 
+    def allow_output(self, allowed: bool) -> None:
+        """Whether there is a number that may be copied, printed and saved."""
+        for button in (self.copy, self.print, self.save_pdf):
+            button.setEnabled(allowed)
+
     def say(self, message: str) -> None:
-        """Show a message, or none."""
+        """Show a message in place of the promise, so that nothing else moves for it; or none."""
         self.message.setText(message)
         self.message.setVisible(bool(message))
+        self.promise.setVisible(not message and not self._is_narrow)
+
+    def set_narrow(self, narrow: bool) -> None:
+        """Narrow: the commands, and messages when there are any."""
+        self._is_narrow = narrow
+        self._program.setVisible(not narrow)
+        self.say(self.message.text())

@@ -4,7 +4,8 @@ from PySide6.QtCore import QEvent, QObject, QRectF
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QApplication, QWidget
 
-from clinicalc.gui.tokens import FRAME_WIDTH, LIGHT, RING, ROW_PITCH
+from clinicalc.gui import theme
+from clinicalc.gui.tokens import FRAME_WIDTH, RING, ROW_PITCH
 
 
 class FieldFrame(QWidget):
@@ -43,14 +44,14 @@ class FieldFrame(QWidget):
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         body = QRectF(self.rect()).adjusted(RING, RING, -RING, -RING)
         if self._has_focus():
-            painter.setPen(QPen(QColor(LIGHT.accent), 2))
+            painter.setPen(QPen(QColor(theme.tokens().accent), 2))
             painter.drawRoundedRect(body.adjusted(-2, -2, 2, 2), 5, 5)
-        painter.setBrush(QColor(LIGHT.field))
+        painter.setBrush(QColor(theme.tokens().field))
         if self._stopped:
-            painter.setPen(QPen(QColor(LIGHT.ink), 2))
+            painter.setPen(QPen(QColor(theme.tokens().ink), 2))
             painter.drawRoundedRect(body.adjusted(1, 1, -1, -1), 3, 3)
         else:
-            painter.setPen(QPen(QColor(LIGHT.edge), 1))
+            painter.setPen(QPen(QColor(theme.tokens().edge), 1))
             painter.drawRoundedRect(body.adjusted(0.5, 0.5, -0.5, -0.5), 3, 3)
         self.paint_inside(painter, body)
         painter.end()

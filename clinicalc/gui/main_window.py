@@ -1,113 +1,106 @@
-"""The window: model bar, values and result side by side, foot; opens files and saves prints."""
+"""The window: page bar, model line, values and result side by side, foot."""
 
-from collections.abc import Callable
+from dataclasses import replace
 from itertools import pairwise
 from pathlib import Path
 
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QKeySequence, QResizeEvent, QShortcut
-from PySide6.QtWidgets import QFileDialog, QFrame, QHBoxLayout, QStackedWidget, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QDialog, QStackedWidget, QVBoxLayout, QWidget
 
 from clinicalc.assessment.entry import PatientEntry
 from clinicalc.assessment.model import Model
 from clinicalc.errors import ClinicalcError
+from clinicalc.gui import theme
+from clinicalc.gui.about_view import AboutView
 from clinicalc.gui.entry_state import EntryState
+from clinicalc.gui.file_dialogs import ChooseOpen, ChooseSave, ask_where_to_save, ask_which_file
 from clinicalc.gui.foot_bar import FootBar
+from clinicalc.gui.guide_view import GuideView
 from clinicalc.gui.labels import make_rule
 from clinicalc.gui.model_bar import ModelBar
+from clinicalc.gui.outputs import Outputs, ShowPreview, show_print_preview
+from clinicalc.gui.page_bar import PageBar, page_name
+from clinicalc.gui.patient_page import PatientPage
+from clinicalc.gui.preferences import Preferences
 from clinicalc.gui.refusal_view import RefusalView
-from clinicalc.gui.result_sheet import ResultSheet
-from clinicalc.gui.tokens import COMPACT_BELOW
-from clinicalc.gui.values_pane import ValuesPane
+from clinicalc.gui.rows import FieldRow
 from clinicalc.operations.bedside import open_model
-from clinicalc.operations.documents import save_pdf, suggest_pdf_name
+from clinicalc.operations.recent_titles import name_recent_files
+from clinicalc.settings import ThemeChoice
 
 SMALLEST = QSize(1024, 640)
-
-ChooseOpen = Callable[[QWidget], Path | None]
-ChooseSave = Callable[[QWidget, str], Path | None]
-
-
-def ask_which_file(parent: QWidget) -> Path | None:
-    """The coefficient file somebody points to in the system's dialog, or None."""
-    name, _ = QFileDialog.getOpenFileName(parent, "Open a coefficient file", "", "Coefficient files (*.json)")
-    return Path(name) if name else None
-
-
-def ask_where_to_save(parent: QWidget, suggestion: str) -> Path | None:
-    """Where to save the print, or None; the suggestion holds nothing about the patient."""
-    dialog = QFileDialog(parent, "Save the print", "", "PDF (*.pdf)")
-    dialog.setAcceptMode(QFileDialog.AcceptMode.AcceptSave)
-    dialog.setDefaultSuffix("pdf")  # added before the dialog asks whether to replace a file
-    dialog.selectFile(suggestion)
-    chosen = dialog.selectedFiles() if dialog.exec() else []
-    dialog.deleteLater()
-    return Path(chosen[0]) if chosen else None
+"""The smallest window with two panes."""
+NARROWEST = QSize(640, 400)
+"""The smallest window, in one column: the usual one at 200 % text."""
 
 
 class MainWindow(QWidget):
-    """One patient, one model. `state` may come with an assess verb of its own; the dialogs may be replaced."""
+    """One patient, one model; `number` tells it from other windows of the program.
+
+    `state` may come with an assess verb of its own; the dialogs and the preview may be replaced.
+    """
 
     def __init__(
         self,
         state: EntryState | None = None,
         *,
+        preferences: Preferences | None = None,
+        number: int = 1,
         choose_open: ChooseOpen = ask_which_file,
         choose_save: ChooseSave = ask_where_to_save,
+        show_preview: ShowPreview = show_print_preview,
     ) -> None:
         super().__init__()
         self.state = state or EntryState()
+        self.preferences = preferences or Preferences()
+        self._number = number
         self._left_field: QWidget | None = None
-        self._choose_open, self._choose_save = choose_open, choose_save
+        self._choose_open = choose_open
+        self._beside: dict[type[QDialog], QDialog] = {}
         self.setObjectName("ground")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
-        self.setWindowTitle("Patient")
-        self.setMinimumSize(SMALLEST)
+        self.setMinimumSize(NARROWEST)
+        self.page_bar = PageBar(self.preferences.settings.theme)
         self.model_bar = ModelBar(self.state)
-        self.values = ValuesPane(self.state)
-        self.sheet = ResultSheet(self.state)
+        self.patient = PatientPage(self.state, self.model_bar)
+        self.values, self.sheet, self.field_note = self.patient.values, self.patient.sheet, self.patient.field_note
         self.refusal = RefusalView()
         self.foot = FootBar()
+        self.outputs = Outputs(self, self.state, self.foot, self.preferences, choose_save, show_preview)
         self._lay_out()
         self._connect()
-        self._allow_saving()
+        self._listen_for_keys()
+        self.page_bar.tab.show_number(number)
+        self._show_title()
+        self._show_settings()
+        self._allow_output()
 
     def use_model(self, model: Model, entry: PatientEntry | None = None) -> None:
         """Show a model, with a patient's entry or with empty fields."""
         self.pages.setCurrentIndex(0)
         self.state.use_model(model, entry)
-        self.setWindowTitle(f"Patient: {model.content.title}")
+        self._show_title()
         self.values.focus_first()
 
     def open_file(self) -> None:
         """Ask for a coefficient file and use it; one that is refused is explained, and the model in use stays."""
         path = self._choose_open(self)
-        if path is None:
-            return
+        if path is not None:
+            self.open_path(path)
+
+    def open_path(self, path: Path) -> None:
+        """Use the coefficient file at a path; one that is missing or refused is explained, and the model stays."""
         try:
             model = open_model(path)
         except ClinicalcError as error:
             self.refusal.show_refusal(path.name, error)
             self.pages.setCurrentWidget(self.refusal)
-            self._allow_saving()
+            self._allow_output()
             self.refusal.problems.setFocus(Qt.FocusReason.OtherFocusReason)
             return
         self.use_model(model)
-
-    def save_print(self) -> None:
-        """Save the assessment on screen as a PDF, and say where, or why not."""
-        assessment = self.state.assessment
-        if assessment is None or assessment.estimate is None:
-            return
-        path = self._choose_save(self, suggest_pdf_name(assessment))
-        if path is None:
-            return
-        try:
-            save_pdf(path, assessment)
-        except ClinicalcError as error:
-            self.foot.say(f"Not saved: {error}")
-            return
-        self.foot.say(f"Saved as {path.name}.")
+        self.preferences.remember_file(path)
 
     def begin_new_patient(self) -> None:
         """Clear every field and begin at the first."""
@@ -116,58 +109,114 @@ class MainWindow(QWidget):
         self.values.focus_first()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        """Small windows take the narrow pane."""
+        """Small windows take the compact pane, narrow ones one column; the focus stays where it is."""
         super().resizeEvent(event)
-        compact = event.size().width() < COMPACT_BELOW
-        self.values.set_compact(compact)
-        self.sheet.set_compact(compact)
+        focused = self.focusWidget()
+        if not self.patient.fit(event.size().width()):
+            return
+        narrow = self.patient.is_narrow
+        if not narrow:
+            self._column.insertWidget(2, self.model_bar)
+        self.model_bar.show()
+        self.model_bar.set_narrow(narrow)
+        self.foot.set_narrow(narrow)
+        self._order_tabs()
+        if focused is not None:
+            focused.setFocus(Qt.FocusReason.OtherFocusReason)
 
     def _lay_out(self) -> None:
-        page = QWidget()
-        panes = QHBoxLayout(page)
-        panes.setContentsMargins(0, 0, 0, 0)
-        panes.setSpacing(0)
-        border = QFrame()
-        border.setObjectName("rule")
-        border.setFixedWidth(1)
-        panes.addWidget(self.values)
-        panes.addWidget(border)
-        panes.addWidget(self.sheet, 1)
         self.pages = QStackedWidget()
-        self.pages.addWidget(page)
+        self.pages.addWidget(self.patient)
         self.pages.addWidget(self.refusal)
-        column = QVBoxLayout(self)
-        column.setContentsMargins(0, 0, 0, 0)
-        column.setSpacing(0)
-        column.addWidget(self.model_bar)
-        column.addWidget(make_rule())
-        column.addWidget(self.pages, 1)
-        column.addWidget(self.foot)
+        self._column = QVBoxLayout(self)
+        self._column.setContentsMargins(0, 0, 0, 0)
+        self._column.setSpacing(0)
+        for bar in (self.page_bar, self.model_bar):
+            self._column.addWidget(bar)
+            self._column.addWidget(make_rule())
+        self._column.addWidget(self.pages, 1)
+        self._column.addWidget(self.foot)
 
     def _connect(self) -> None:
-        self.model_bar.open_button.clicked.connect(self.open_file)
+        chooser = self.model_bar.chooser
+        chooser.open_action.triggered.connect(self.open_file)
+        chooser.file_chosen.connect(self.open_path)
+        chooser.about_to_open.connect(lambda: chooser.offer(name_recent_files(self.preferences.settings.recent_files)))
         self.foot.new_patient.clicked.connect(self.begin_new_patient)
-        self.foot.save_pdf.clicked.connect(self.save_print)
         self.refusal.closed.connect(self._close_refusal)
-        QShortcut(QKeySequence(Qt.Key.Key_F6), self).activated.connect(self._go_across)
-        self.values.rebuilt.connect(self._order_tabs)
+        self.page_bar.theme_chosen.connect(self._choose_theme)
+        self.page_bar.about.triggered.connect(lambda: self._open_beside(AboutView))
+        self.page_bar.guide.clicked.connect(lambda: self._open_beside(GuideView))
+        self.preferences.changed.connect(self._show_settings)
+        self.preferences.refused.connect(self.foot.say)
+        self.values.rebuilt.connect(self._take_rows)
+        self.values.row_entered.connect(self._note_field)
         self.values.left_last.connect(self._leave_values)
+        self.values.mark_pressed.connect(self._go_to_finding)
+        self.patient.pinned.field_asked.connect(self.values.focus_field)
+        self.sheet.field_asked.connect(self.values.focus_field)
+        self.sheet.stops_changed.connect(self._order_tabs)
         self.state.assessed.connect(self._settle)
         self.state.blanked.connect(self._settle)
 
+    def _listen_for_keys(self) -> None:
+        self.addAction(self.model_bar.chooser.open_action)
+        for keys, verb in (
+            ("F6", self._go_across),
+            ("Shift+F6", self._go_across),
+            ("F1", self.page_bar.guide.click),
+            ("F10", self.page_bar.open_menu),
+            ("Ctrl+Shift+C", self.foot.copy.click),
+        ):
+            QShortcut(QKeySequence(keys), self).activated.connect(verb)
+
+    def _show_title(self) -> None:
+        model = self.state.model
+        name = page_name(self._number)
+        self.setWindowTitle(name if model is None else f"{name}: {model.content.title}")
+
+    def _show_settings(self) -> None:
+        self.page_bar.practice.setText(self.preferences.settings.practice)
+
+    def _choose_theme(self, choice: ThemeChoice) -> None:
+        theme.choose(choice)
+        self.preferences.take(replace(self.preferences.settings, theme=choice))
+
+    def _open_beside(self, kind: type[AboutView] | type[GuideView]) -> None:
+        """Guide and notices open beside the window, each once."""
+        if kind not in self._beside:
+            self._beside[kind] = kind(self)
+        view = self._beside[kind]
+        view.show()
+        view.raise_()
+        view.activateWindow()
+
+    def _note_field(self, row: FieldRow | None) -> None:
+        if row is None:
+            self.field_note.clear()
+        else:
+            self.field_note.show_row(row)
+
+    def _go_to_finding(self, number: int) -> None:
+        """From the mark at a field to its finding in the list; from there Enter leads back."""
+        for mark in self.sheet.findings.tab_stops():
+            if mark.number == number:
+                mark.setFocus(Qt.FocusReason.ShortcutFocusReason)
+                self.sheet.scroller.ensureWidgetVisible(mark.parentWidget() or mark)
+
     def _settle(self, _: object = None) -> None:
         self.foot.say("")
-        self._allow_saving()
+        self._allow_output()
 
-    def _allow_saving(self) -> None:
+    def _allow_output(self) -> None:
         assessment = self.state.assessment
         has_number = assessment is not None and assessment.estimate is not None
-        self.foot.save_pdf.setEnabled(has_number and self.pages.currentWidget() is not self.refusal)
+        self.foot.allow_output(has_number and self.pages.currentWidget() is not self.refusal)
         self.foot.new_patient.setEnabled(self.state.model is not None)
 
     def _close_refusal(self) -> None:
         self.pages.setCurrentIndex(0)
-        self._allow_saving()
+        self._allow_output()
         self.values.focus_first()
 
     def _go_across(self) -> None:
@@ -185,15 +234,24 @@ class MainWindow(QWidget):
         target = self.foot.save_pdf if self.foot.save_pdf.isEnabled() else self.foot.new_patient
         target.setFocus(Qt.FocusReason.TabFocusReason)
 
+    def _take_rows(self) -> None:
+        self.patient.take_rows()
+        self._order_tabs()
+
     def _order_tabs(self) -> None:
-        bar = self.model_bar
+        bar, foot = self.model_bar, self.foot
         chain: list[QWidget] = [
-            bar.open_button,
+            bar.chooser,
             bar.horizon.chooser,
             bar.recalibration.chooser,
             *self.values.tab_stops(),
-            self.foot.new_patient,
-            self.foot.save_pdf,
+            *self.sheet.tab_stops(),
+            foot.new_patient,
+            foot.copy,
+            foot.print,
+            foot.save_pdf,
+            self.page_bar.menu_button,
+            self.page_bar.guide,
         ]
         for before, after in pairwise(chain):
             QWidget.setTabOrder(before, after)

@@ -6,13 +6,15 @@ from clinicalc.assessment.model import Model
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.gui.chooser import FramedChooser
 from clinicalc.gui.entry_state import EntryState
-from clinicalc.gui.labels import make_button, make_label, make_line
+from clinicalc.gui.labels import make_line
+from clinicalc.gui.model_chooser import ModelChooser
 from clinicalc.gui.tokens import RING, SIDE_MARGIN
-from clinicalc.gui.typeface import CAPTION, VALUE
+from clinicalc.gui.typeface import CAPTION
 
-_HEIGHT = 62
+_HEIGHT = 57
 _TIGHT_CAPTION = 15
-_TITLE_WIDTH = 322
+_GAP = 28
+_CHOOSER_HEIGHT = 32
 _NOT_CHOSEN = "Choose…"
 _AS_PUBLISHED = "None: as published"
 
@@ -31,6 +33,7 @@ class Cell(QWidget):
         column.addStretch(1)
         if isinstance(inside, FramedChooser):
             column.setSpacing(0)
+            inside.setFixedHeight(_CHOOSER_HEIGHT)
             head.setContentsMargins(RING, 0, 0, 0)
             head.setFixedHeight(_TIGHT_CAPTION)
 
@@ -43,8 +46,8 @@ class ModelBar(QWidget):
         self._state = state
         self.setFixedHeight(_HEIGHT)
         self.setObjectName("ground")
-        self.open_button = make_button("&Open file…")
-        self.title = make_label("", VALUE, semibold=True)
+        self._is_narrow = False
+        self.chooser = ModelChooser()
         self.version, self.fingerprint, self.vetting = make_line(), make_line(), make_line()
         self.horizon, self.recalibration = FramedChooser(104), FramedChooser(176)
         self.horizon_cell = Cell("Horizon", self.horizon)
@@ -57,31 +60,37 @@ class ModelBar(QWidget):
             Cell("State", self.vetting),
         )
         row = QHBoxLayout(self)
-        row.setContentsMargins(SIDE_MARGIN, 0, SIDE_MARGIN, 0)
-        row.setSpacing(24)
-        self.title.setMaximumWidth(_TITLE_WIDTH)
-        row.addWidget(self.title, 20)
+        row.setContentsMargins(SIDE_MARGIN - RING, 0, SIDE_MARGIN, 0)
+        row.setSpacing(_GAP)
+        row.addWidget(self.chooser, 20)
         for cell in (*self._facts, self.horizon_cell, self.recalibration_cell):
             row.addWidget(cell)
             cell.hide()
         row.addStretch(1)
-        row.addWidget(self.open_button)
         self.horizon.chooser.currentIndexChanged.connect(self._choose_horizon)
         self.recalibration.chooser.currentIndexChanged.connect(self._choose_recalibration)
         self.horizon.chooser.entered.connect(self.focusNextChild)
         self.recalibration.chooser.entered.connect(self.focusNextChild)
         state.model_changed.connect(self._take_model)
 
+    def set_narrow(self, narrow: bool) -> None:
+        """Narrow: the choices only; what the model is stands elsewhere."""
+        self._is_narrow = narrow
+        self._show_facts()
+
+    def _show_facts(self) -> None:
+        for cell in self._facts:
+            cell.setVisible(self._state.model is not None and not self._is_narrow)
+
     def _take_model(self) -> None:
         model = self._state.model
         if model is None:
             return
-        self.title.setText(model.content.title)
+        self.chooser.show_title(model.content.title)
         self.version.setText(model.content.version)
         self.fingerprint.setText(group_fingerprint(model.fingerprint, 3))
         self.vetting.setText("Not vetted")
-        for cell in self._facts:
-            cell.show()
+        self._show_facts()
         self._offer_horizons(model)
         self._offer_recalibrations(model)
 

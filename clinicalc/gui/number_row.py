@@ -1,32 +1,43 @@
 """The row of a measured value: number and unit in one frame, a remark or an offer beside it."""
 
+import re
 from collections.abc import Sequence
+from dataclasses import replace
 from datetime import date
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QWidget
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QVBoxLayout, QWidget
 
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
-from clinicalc.assessment.findings import Finding, Grade
-from clinicalc.assessment.numerals import plain_range
+from clinicalc.assessment.findings import Finding, FindingCode, Grade
+from clinicalc.assessment.numerals import plain, plain_range
 from clinicalc.assessment.result import ValueLine
 from clinicalc.gui.access_keys import show_ampersands
+from clinicalc.gui.dated_entry import DatedEntry
 from clinicalc.gui.held_value import HeldValue, choosable_units, hold, hold_entry, read_as, settle, switch_unit
 from clinicalc.gui.labels import make_button, make_field_label, make_label
+from clinicalc.gui.range_remark import RangeRemark
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.tokens import COLUMN_GAP, FRAME_WIDTH, RING
 from clinicalc.gui.typeface import CAPTION, UNIT
 from clinicalc.gui.value_frame import ValueFrame
+from clinicalc.report.range_line import WIDTH, RangeOfValues
 from clinicalc.units.conversion import conversion
+from clinicalc.units.reading import Reading, read_value
 from clinicalc.units.unit import unit as unit_of
+
+_GAP_BEFORE_FRAME, _FRAME, _GAP_BEFORE_REMARK, _REMARK, _MARK = range(1, 6)
+"""Columns of the row; the label is the first."""
+_DATE_AFTER = re.compile(r"\s+on\s.*$", re.IGNORECASE)
+"""A date typed after a number, as the reader of values knows it."""
 
 
 class NumberRow(FieldRow):
     """Label, frame, remark. Holds what was typed and shows it in the chosen unit."""
 
     def __init__(self, field: NumberField, marked_label: str) -> None:
-        super().__init__(field.id)
+        super().__init__(field.id, field.meaning)
         self._field = field
         self._held: HeldValue = hold(field, "", field.unit)
         self._offer = ""
@@ -37,7 +48,11 @@ class NumberRow(FieldRow):
         self.label = make_field_label(marked_label, field.label, self.edit)
         self.remark = make_label("", CAPTION, soft=True)
         self.offer = make_button("", name="offer", pixels=UNIT)
-        self._offer_place = QWidget()
+        self.range = RangeRemark()
+        self.dated = DatedEntry(field.label) if field.valid_days is not None else None
+        self._inside = True
+        self._under: dict[QWidget, bool] = {}
+        self._offer_place = QWidget(self)
         self._offer_place.hide()
         if field.meaning:
             self.edit.setAccessibleDescription(field.meaning)
@@ -51,9 +66,13 @@ class NumberRow(FieldRow):
 
     def fill(self, typed: Typed | None) -> Typed | None:
         """Show a value or none in its unit (the file's own for none)."""
+        if self.dated is not None:
+            self.dated.fill(None if typed is None else typed.dated)
+            typed = None if typed is None else replace(typed, dated=None)
         self._held = hold_entry(self._field, typed)
+        self._part_from_date()
         self._show_held()
-        return self._held.typed if self._held.typed.text.strip() else None
+        return self._as_typed()
 
     def show_remarks(self, line: ValueLine | None, findings: Sequence[Finding]) -> None:
         """The offer of a likely unit, or how the value is to be read, or what was worked out, or the range."""
@@ -70,7 +89,8 @@ class NumberRow(FieldRow):
         if had_focus and not self._offer:
             self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
         self._line = line
-        self._show_remark()
+        self._inside = all(f.code is not FindingCode.OUTSIDE_DERIVATION for f in findings)
+        self._place_remarks()
 
     @property
     def has_offer(self) -> bool:
@@ -84,41 +104,56 @@ class NumberRow(FieldRow):
     def fit(self, room: int, *, compact: bool) -> None:
         """Compact: remark or offer under the frame, and no range."""
         self._compact = compact
-        for widget in (self.remark, self._offer_place):
-            widget.setContentsMargins(RING if compact else 0, 0, 0, 0)
-        self.offer.setMinimumWidth(FRAME_WIDTH if compact else 0)
-        for widget in (self.remark, self._offer_place):
-            self._grid.removeWidget(widget)
-        place = (1, 1, 1, 2) if compact else (0, 2, 1, 1)
-        self._grid.addWidget(self.remark, *place)
-        self._grid.addWidget(self._offer_place, *place, Qt.AlignmentFlag.AlignLeft)
-        self._show_remark()
+        if self.dated is not None:
+            self.dated.set_compact(compact)
+        self._place_remarks()
+
+    def note(self) -> str:
+        """What the file means by the field; where ranges do not stand beside values, the range as well."""
+        low, high = self._field.derivation
+        if not self._compact or (low is None and high is None):
+            return super().note()
+        words = plain_range(self._on_screen(low), self._on_screen(high), unit_of(self._held.unit).spelling)
+        return f"{super().note()} Derivation range {words}.".strip()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
-        """Value, unit, offer."""
+        """Value, unit, date, offer, mark."""
         chooser = () if self.frame.chooser is None else (self.frame.chooser,)
-        return (self.edit, *chooser, self.offer)
+        dated = () if self.dated is None else (self.dated.edit,)
+        return (self.edit, *chooser, *dated, self.offer, self.mark)
 
     def _lay_out(self) -> None:
         self._compact = False
         beside = QHBoxLayout(self._offer_place)
         beside.setContentsMargins(0, 0, 0, 0)
         beside.addWidget(self.offer)
+        beside.addStretch(1)
+        self._aside = QWidget(self)  # shown without a parent it would be a window of its own
+        aside = QVBoxLayout(self._aside)
+        aside.setContentsMargins(0, 0, 0, 0)
+        aside.setSpacing(0)
+        aside.addWidget(self.range)
+        aside.addWidget(self.remark)
         self._grid = QGridLayout(self)
         self._grid.setContentsMargins(0, 0, 0, 0)
-        self._grid.setHorizontalSpacing(COLUMN_GAP)
-        self._grid.setVerticalSpacing(2)
-        self._grid.setColumnStretch(2, 1)
+        self._grid.setHorizontalSpacing(0)
+        self._grid.setVerticalSpacing(0)
+        self._grid.setColumnMinimumWidth(_GAP_BEFORE_FRAME, COLUMN_GAP)
+        self._grid.setColumnMinimumWidth(_GAP_BEFORE_REMARK, RING)
+        self._grid.setColumnStretch(_REMARK, 1)
         self._grid.addWidget(self.label, 0, 0)
-        self._grid.addWidget(self.frame, 0, 1)
-        self._grid.addWidget(self.remark, 0, 2)
-        self._grid.addWidget(self._offer_place, 0, 2, Qt.AlignmentFlag.AlignLeft)
+        self._grid.addWidget(self.frame, 0, _FRAME)
+        self._grid.addWidget(self.mark, 0, _MARK, Qt.AlignmentFlag.AlignVCenter)
+        self._place_remarks()
 
     def _connect(self) -> None:
         self.edit.textChanged.connect(self._take_text)
         self.edit.returnPressed.connect(self.entered)
         self.edit.left.connect(self._settle)
         self.offer.clicked.connect(self._take_offer)
+        if self.dated is not None:
+            self.dated.changed.connect(self._tell)
+            self.dated.entered.connect(self.entered)
         if self.frame.chooser is not None:
             self.frame.chooser.setAccessibleName(f"{self._field.label}, unit")
             self.frame.chooser.currentIndexChanged.connect(self._take_unit)
@@ -148,15 +183,36 @@ class NumberRow(FieldRow):
         self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
 
     def _settle(self) -> None:
-        settled = settle(self._field, self._held)
-        if settled is not self._held:
-            self._held = settled
+        before = self._held
+        self._held = settle(self._field, self._held)
+        self._part_from_date()
+        if self._held is not before:
             self._show_held()
             self._tell()
 
+    def _part_from_date(self) -> None:
+        """A date typed after the number goes to the date field, where there is one."""
+        reading = read_value(self._held.typed.text)
+        if self.dated is None or not isinstance(reading, Reading) or reading.dated is None:
+            return
+        self.dated.fill(reading.dated)
+        held = self._held
+        typed, by_hand = (replace(t, text=_without_date(t.text)) for t in (held.typed, held.by_hand))
+        self._held = replace(held, typed=typed, by_hand=by_hand, text=_without_date(held.text))
+
     def _tell(self) -> None:
+        self.typed.emit(self.field_id, self._as_typed())
+
+    def _as_typed(self) -> Typed | None:
+        """The value with its date. What is no date is put after the number, where it is refused in words."""
         typed = self._held.typed
-        self.typed.emit(self.field_id, typed if typed.text.strip() else None)
+        if not typed.text.strip():
+            return None
+        if self.dated is None or not self.dated.text:
+            return typed
+        if self.dated.day is None:
+            return replace(typed, text=f"{typed.text} on {self.dated.text}")
+        return replace(typed, dated=self.dated.day)
 
     def _show_held(self) -> None:
         if self.edit.text() != self._held.text or self.edit.isUndoAvailable() or self.edit.isRedoAvailable():
@@ -171,22 +227,64 @@ class NumberRow(FieldRow):
         if self.frame.chooser is not None:
             self.frame.chooser.show_place(self.frame.chooser.findData(self._held.unit))
 
-    def _remark_words(self, line: ValueLine | None) -> str:
+    def _remark_words(self) -> str:
+        """What is to be said in words: how the value is read, or what was worked out, or of which day it is."""
+        line = self._line
         if self._held.remark:
             return self._held.remark
         if line is not None and line.worked_out:
             return f"{line.used} worked out"
-        if line is not None and line.dated is not None:
-            return f"of {line.dated.isoformat()}"
-        return "" if self._compact else self._range_words()
+        return "" if line is None or line.dated is None else f"of {line.dated.isoformat()}"
 
-    def _range_words(self) -> str:
+    def _range_on_screen(self) -> RangeOfValues | None:
         low, high = self._field.derivation
         if low is None and high is None:
-            return ""
-        back = conversion(self._field.quantity, self._field.unit, self._held.unit, self._field.factor)
-        return plain_range(None if low is None else back.apply(low), None if high is None else back.apply(high))
+            return None
+        low, high = self._on_screen(low), self._on_screen(high)
+        return RangeOfValues(low, high, "" if low is None else plain(low), "" if high is None else plain(high))
 
-    def _show_remark(self) -> None:
-        self.remark.setText("" if self._offer else self._remark_words(self._line))
-        self.remark.setVisible(not self._offer and bool(self.remark.text() or not self._compact))
+    def _on_screen(self, value: float | None) -> float | None:
+        """A value of the file's unit in the unit on screen."""
+        if value is None:
+            return None
+        return conversion(self._field.quantity, self._field.unit, self._held.unit, self._field.factor).apply(value)
+
+    def _number_on_screen(self) -> float | None:
+        """The value in the unit on screen; where the model refuses it for its range, as it was typed."""
+        if self._line is not None and self._line.number is not None:
+            return self._on_screen(self._line.number)
+        reading = None if self._inside else read_value(self._held.typed.text)
+        if not isinstance(reading, Reading):
+            return None
+        code = reading.unit or self._held.typed.unit or self._field.unit
+        return conversion(self._field.quantity, code, self._held.unit, self._field.factor).apply(reading.number)
+
+    def _place_remarks(self) -> None:
+        """One of offer, words and range; only a date stands under the range, since both fit."""
+        words = "" if self._offer else self._remark_words()
+        only_dated = not self._held.remark and not (self._line is not None and self._line.worked_out)
+        ranged = not self._compact and not self._offer and (only_dated or not self._inside)
+        span = self._range_on_screen() if ranged else None
+        number = self._number_on_screen()
+        self.range.show_range(span, number, inside=self._inside)
+        self.remark.setText(words)
+        self.remark.setVisible(bool(words))
+        self._aside.setVisible(span is not None or bool(words))
+        self._place(self._aside, under=self._compact)
+        self._place(self._offer_place, under=self._compact or self.offer.sizeHint().width() > WIDTH)
+
+    def _place(self, widget: QWidget, *, under: bool) -> None:
+        """Beside the frame, or on a line of its own under it."""
+        if self._under.get(widget) == under:
+            return
+        self._under[widget] = under
+        place = (1, _FRAME, 1, _MARK - _FRAME + 1) if under else (0, _REMARK, 1, 1)
+        self._grid.removeWidget(widget)
+        self._grid.addWidget(widget, *place, Qt.AlignmentFlag.AlignVCenter if not under else Qt.AlignmentFlag(0))
+        widget.setContentsMargins(RING if under else 0, 0, 0, 2 if under else 0)
+        if widget is self._offer_place:
+            self.offer.setMinimumWidth(FRAME_WIDTH if under else 0)
+
+
+def _without_date(text: str) -> str:
+    return _DATE_AFTER.sub("", text)

@@ -3,16 +3,17 @@
 from collections.abc import Sequence
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QHBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import QuestionField
 from clinicalc.assessment.findings import Finding, Grade
 from clinicalc.assessment.result import ValueLine
+from clinicalc.gui.index_mark import SIDE
 from clinicalc.gui.labels import make_field_label, make_question_label
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.segments import Segments
-from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, RING
+from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, RING, ROW_PITCH
 
 _EXCLUSION_WIDTH = 104
 
@@ -21,7 +22,7 @@ class QuestionRow(FieldRow):
     """A question with its answers; unanswered until somebody answers."""
 
     def __init__(self, field: QuestionField, marked_label: str) -> None:
-        super().__init__(field.id)
+        super().__init__(field.id, field.meaning)
         self._field = field
         excludes = bool(field.excludes)
         self.segments = (
@@ -33,14 +34,17 @@ class QuestionRow(FieldRow):
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, 0, 0)
         if excludes:
-            row.setSpacing(16)
+            row.setSpacing(0)
             row.addWidget(self.label, 1, Qt.AlignmentFlag.AlignTop)
+            row.addSpacing(4)
+            row.addLayout(self._stand_level(), 0)
             row.addWidget(self.segments, 0, Qt.AlignmentFlag.AlignTop)
         else:
             row.setSpacing(COLUMN_GAP)
             row.addWidget(self.label)
             row.addWidget(self.segments)
             row.addStretch(1)
+            row.addLayout(self._stand_level())
         self.segments.chosen.connect(lambda id: self.typed.emit(self.field_id, Typed(id)))
         self.segments.entered.connect(self.entered)
 
@@ -58,9 +62,17 @@ class QuestionRow(FieldRow):
     def fit(self, room: int, *, compact: bool) -> None:
         """The answers take what the label leaves."""
         self.segments.fit(
-            _EXCLUSION_WIDTH if self._field.excludes else room - LABEL_WIDTH - COLUMN_GAP - 2 * RING,
+            _EXCLUSION_WIDTH if self._field.excludes else room - LABEL_WIDTH - 2 * COLUMN_GAP - 2 * RING - SIDE,
         )
 
     def tab_stops(self) -> tuple[QWidget, ...]:
-        """All answers: one of them at a time is the stop."""
-        return self.segments.segments
+        """All answers, of which one at a time is the stop; the mark of a finding."""
+        return (*self.segments.segments, self.mark)
+
+    def _stand_level(self) -> QVBoxLayout:
+        """The mark level with the first line of answers."""
+        column = QVBoxLayout()
+        column.setContentsMargins(0, (ROW_PITCH - SIDE) // 2, 0, 0)
+        column.addWidget(self.mark)
+        column.addStretch(1)
+        return column

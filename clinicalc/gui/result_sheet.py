@@ -1,97 +1,140 @@
-"""The sheet: the number, whom it is about, its band, and every reason to doubt it."""
+"""The sheet: the number, whom it is about, where it lies, and every reason to doubt it."""
 
-from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QGridLayout, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QAccessible, QAccessibleAnnouncementEvent, QKeySequence, QResizeEvent, QShortcut
+from PySide6.QtWidgets import QScrollArea, QVBoxLayout, QWidget
 
-from clinicalc.assessment.numerals import percent, percent_range
-from clinicalc.assessment.result import Assessment, Estimate
+from clinicalc.assessment.numerals import percent
+from clinicalc.assessment.result import Assessment
+from clinicalc.gui.crown import Crown, height_of
 from clinicalc.gui.entry_state import EntryState
-from clinicalc.gui.findings_list import FindingsList
-from clinicalc.gui.labels import make_label, make_line
-from clinicalc.gui.number_face import NumberFace
-from clinicalc.gui.tokens import FIGURE_COLUMN, SHEET_MARGIN, SHEET_MARGIN_RIGHT
-from clinicalc.gui.typeface import CAPTION, HEADLINE
+from clinicalc.gui.findings_list import OVERHANG, FindingsList
+from clinicalc.gui.labels import make_label
+from clinicalc.gui.lanes import Lanes, measure_assessment, overhang
+from clinicalc.gui.people_view import PeopleView
+from clinicalc.gui.pinned_summary import PinnedMark, PinnedSummary
+from clinicalc.gui.tokens import SHEET_MARGIN, SHEET_MARGIN_RIGHT
+from clinicalc.gui.typeface import CAPTION
 from clinicalc.gui.vetting_strip import VettingStrip
-from clinicalc.gui.wording import event_heading, event_in_full, explain_no_number, shown_findings
+from clinicalc.gui.wording import (
+    GRADE_WORDS,
+    event_heading,
+    event_in_full,
+    explain_no_number,
+    grades_in_words,
+    longest_sentence,
+    not_used_sentence,
+    numbered_findings,
+)
 from clinicalc.operations.summary import people_sentence
-from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED, level_words
+from clinicalc.report.measured import Measured
+from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED
 
-_NOTHING = "–"
+_VETTED = False
+"""Until there is a model library, every file is opened by its name, and nobody has vetted it."""
 _RING = 2
-_ROOM = (110, 72)
-_ROOM_COMPACT = (134, 92)
+_TOP = 10
+
+
+class SheetScroller(QScrollArea):
+    """Tells when its room has changed, be it by a scroll bar that came or went."""
+
+    resized = Signal()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """The room for the sheet is another one."""
+        super().resizeEvent(event)
+        self.resized.emit()
 
 
 class ResultSheet(QWidget):
     """Shows the state's assessment, and nothing where there is none."""
 
+    field_asked = Signal(str)
+    """The mark of a finding about this field was pressed."""
+    stops_changed = Signal()
+    """`tab_stops` may be others now."""
+
     def __init__(self, state: EntryState) -> None:
         super().__init__()
         self._state = state
+        self._announced: tuple[bool, tuple[object, ...]] = (False, ())
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.strip = VettingStrip(NOT_VETTED)
-        self.number = NumberFace()
-        self.headline = make_label("", HEADLINE, semibold=True)
-        self.sentence = make_label()
-        self.band_name = make_line()
-        self.band_figure = make_line("", semibold=True)
-        self.band_reason = make_label("", soft=True)
-        self.band_reason.setContentsMargins(0, 0, 0, 10)
+        self.crown = Crown()
+        self.number, self.small_grid = self.crown.number, self.crown.small_grid
+        self.headline, self.sentence = self.crown.headline, self.crown.sentence
+        self.lanes = Lanes()
+        self.band_name, self.band_figure = self.lanes.name, self.lanes.figures
+        self.band_reason = make_label("", CAPTION)
         self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
-        self.outcome = make_label("", CAPTION, soft=True)
         self.findings = FindingsList()
-        self.scroller = QScrollArea()
+        self.people = PeopleView()
+        self.outcome = make_label("", CAPTION, soft=True)
+        self.not_used = make_label("", CAPTION, soft=True)
+        self.scroller = SheetScroller()
         self._lay_out()
-        self.set_compact(False)
         self._show_no_model()
+        self.scroller.resized.connect(self._fit)
+        self.findings.field_asked.connect(self.field_asked)
+        table = QShortcut(QKeySequence(Qt.Key.Key_T), self)
+        table.setContext(Qt.ShortcutContext.WidgetWithChildrenShortcut)
+        table.activated.connect(self.people.toggle_text)
         state.model_changed.connect(self._take_model)
         state.assessed.connect(self._show_current)
         state.blanked.connect(self.blank)
 
     def blank(self, sentence: str) -> None:
-        """Take the number off first, then say why."""
+        """Take the number off first, then everything that was drawn from it, then say why."""
         self.number.clear()
-        self._show_estimate(None)
+        self._show_charts(None)
         self.headline.setText("No number")
         self.sentence.setText(sentence)
         self.findings.hide()
+        self._announce(None)
 
     def set_compact(self, compact: bool) -> None:
-        """Keep as much room as words take in a narrow sheet, so that nothing moves when they come or go."""
-        for row, height in enumerate(_ROOM_COMPACT if compact else _ROOM):
-            self._grid.setRowMinimumHeight(row, height)
+        """Nothing depends on the window's size but what follows from the sheet's own width."""
+        self._fit()
+
+    def tab_stops(self) -> tuple[QWidget, ...]:
+        """Where the tab key stops, in order: the view, then the marks that lead to a field."""
+        view = (self.people.as_text, self.people.text) if self.people.isVisibleTo(self) else ()
+        marks = self.findings.tab_stops() if self.findings.isVisibleTo(self) else ()
+        return (*view, *marks)
+
+    def pinned_summary(self) -> PinnedSummary:
+        """What is on the sheet now, in short."""
+        shown = self.findings.shown if not self.findings.isHidden() else ()
+        return PinnedSummary(
+            percentage=self.number.percentage,
+            headline=self.headline.text(),
+            sentence=self.sentence.text(),
+            band_name=self.band_name.text(),
+            band_figures=self.band_figure.text(),
+            marks=tuple(PinnedMark(n, f.grade, GRADE_WORDS[f.grade], f.field) for n, f in shown),
+            vetted=_VETTED,
+        )
 
     def _lay_out(self) -> None:
         body = QWidget()
         body.setObjectName("sheet")
-        grid = QGridLayout(body)
-        grid.setContentsMargins(SHEET_MARGIN - _RING, 16, SHEET_MARGIN_RIGHT - _RING, 20)
-        self._grid = grid
-        grid.setHorizontalSpacing(24)
-        grid.setVerticalSpacing(0)
-        grid.setColumnMinimumWidth(0, FIGURE_COLUMN)
-        grid.setColumnStretch(1, 1)
-        words = QVBoxLayout()
-        words.setSpacing(5)
-        words.setContentsMargins(0, 6, 0, 10)
-        words.addWidget(self.headline)
-        words.addWidget(self.sentence)
-        words.addStretch(1)
-        grid.addWidget(self.number, 0, 0, Qt.AlignmentFlag.AlignTop | Qt.AlignmentFlag.AlignLeft)
-        grid.addLayout(words, 0, 1)
-        band = QGridLayout()
-        band.setContentsMargins(0, 0, 0, 0)
-        band.addWidget(self.band_name, 0, 0, Qt.AlignmentFlag.AlignLeft)
-        band.addWidget(self.band_figure, 0, 1, Qt.AlignmentFlag.AlignRight)
-        grid.addLayout(band, 1, 0, Qt.AlignmentFlag.AlignTop)
-        grid.addWidget(self.band_reason, 1, 1, Qt.AlignmentFlag.AlignTop)
-        grid.addWidget(self.meaning, 2, 0, 1, 2)
-        grid.setRowMinimumHeight(3, 6)
-        grid.addWidget(self.outcome, 4, 0, 1, 2)
-        grid.setRowMinimumHeight(5, 10)
-        grid.addWidget(self.findings, 6, 0, 1, 2)
-        grid.setRowStretch(7, 1)
+        self._column = QVBoxLayout(body)
+        self._column.setSpacing(0)
+        self._column.addLayout(_inset(OVERHANG, overhang(), self.crown))
+        self._column.addLayout(_inset(OVERHANG, 0, self.lanes))
+        # a box of its own keeps the room: a label that is empty clings to the least height it once had
+        self._reason = QWidget()
+        self._reason.setLayout(_inset(0, 0, self.band_reason))
+        self._column.addLayout(_inset(OVERHANG, overhang(), self._reason, self.meaning))
+        self._column.addSpacing(6)
+        self._column.addLayout(_inset(0, overhang(), self.findings))
+        self._column.addSpacing(8)
+        self._column.addLayout(_inset(OVERHANG, overhang(), self.people))
+        self._column.addSpacing(14)
+        self._column.addLayout(_inset(OVERHANG, overhang(), self.outcome, self.not_used))
+        self._column.addStretch(1)
         self.scroller.setObjectName("sheet_scroll")
         self.scroller.setAccessibleName("Result")
         self.scroller.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
@@ -104,10 +147,32 @@ class ResultSheet(QWidget):
         column.addWidget(self.strip)
         column.addWidget(self.scroller, 1)
 
+    def _fit(self) -> None:
+        """Margins that leave the ruler where it is when a scroll bar comes, and room for the longest words."""
+        bar = self.scroller.width() - 2 * _RING - self.scroller.viewport().width()
+        right = max(0, SHEET_MARGIN_RIGHT - _RING - bar - overhang())
+        top = _TOP if self.strip.isVisibleTo(self) else _TOP + 8
+        self._column.setContentsMargins(SHEET_MARGIN - _RING - OVERHANG, top, right, 20)
+        self._keep_room()
+
+    def _keep_room(self) -> None:
+        """Reserve what the model's words take at this width, so that nothing moves when they come or go."""
+        model = self._state.model
+        if model is None:
+            return
+        width = self.scroller.width() - SHEET_MARGIN - SHEET_MARGIN_RIGHT
+        spans = [self._state.span] if self._state.span is not None else list(model.spans)
+        headings = [event_heading(model, span) for span in spans]
+        sentences = [longest_sentence(model, span) for span in spans]
+        self.crown.keep_room(headings, sentences, width)
+        because = {line.no_band_because for equation in model.equations for line in equation.lines} - {""}
+        reasons = [_no_band(reason) for reason in because]
+        self._reason.setMinimumHeight(height_of(self.band_reason, reasons, width))
+
     def _show_no_model(self) -> None:
-        self.strip.hide()
-        self.meaning.hide()
-        self.findings.hide()
+        for widget in (self.strip, self.band_reason, self.meaning, self.findings, self.people):
+            widget.hide()
+        self.lanes.show_measured(None)
         self.headline.setText("No coefficient file is open")
         self.sentence.setText("Open one to begin: a coefficient file holds one risk model, its units and its limits.")
 
@@ -116,11 +181,12 @@ class ResultSheet(QWidget):
         self.blank("")
         if model is None:
             return
-        # until there is a model library, every file is opened by its name, and nobody has vetted it
-        self.strip.show()
-        self.meaning.show()
+        for widget in (self.strip, self.meaning, self.people):
+            widget.show()
         event = event_in_full(model)
         self.outcome.setText(f"Event: {event}." if event else "")
+        self.not_used.setText(not_used_sentence(model))
+        self._fit()
 
     def _show_current(self) -> None:
         assessment = self._state.assessment
@@ -134,21 +200,57 @@ class ResultSheet(QWidget):
             headline = event_heading(assessment.model, assessment.span)
             sentence = people_sentence(assessment)
             percentage = percent(estimate.probability, estimate.complement)
-            self.number.show_percentage(percentage, f"{headline}. {sentence}", vetted=False)
+            self.number.show_percentage(percentage, f"{headline}. {sentence}", vetted=_VETTED)
         self.headline.setText(headline)
         self.sentence.setText(sentence)
-        self._show_estimate(estimate, assessment)
-        self.findings.show_findings(shown_findings(assessment))
+        self._show_charts(assessment)
+        labels = {field.id: field.label for field in assessment.model.fields}
+        self.findings.show_findings(numbered_findings(assessment), labels)
         self.findings.show()
+        self._announce(assessment)
 
-    def _show_estimate(self, estimate: Estimate | None, assessment: Assessment | None = None) -> None:
-        band = None if estimate is None else estimate.band
-        level = "" if assessment is None else f"{level_words(assessment.level)} "
-        self.band_name.setText(f"{level}band".capitalize() if self._state.model is not None else "")
-        if band is not None:
-            self.band_figure.setText(percent_range(band.lower, band.upper))
-        elif estimate is not None:
-            self.band_figure.setText("no band")
+    def _show_charts(self, assessment: Assessment | None) -> None:
+        """Small grid, ruler and people of an assessment; their empty places where there is no number."""
+        model = self._state.model
+        estimate = None if assessment is None else assessment.estimate
+        self.small_grid.show_probability(None if estimate is None else estimate.probability)
+        span = self._state.span
+        within = "" if span is None else span.words
+        if assessment is not None:
+            self.lanes.show_measured(measure_assessment(assessment), within)
         else:
-            self.band_figure.setText(_NOTHING if self._state.model is not None else "")
-        self.band_reason.setText("" if estimate is None else estimate.band_absent_because)
+            measured = None if model is None else Measured(model.equations[0].content.link)
+            self.lanes.show_measured(measured, within)
+        no_band = estimate is not None and estimate.band is None
+        reason = estimate.band_absent_because if estimate is not None and no_band else ""
+        self.band_reason.setText(_no_band(reason) if reason else "")
+        self.band_reason.setVisible(bool(reason))
+        others = [] if self.lanes.figure is None else [self.lanes.figure]
+        self.people.show_assessment(assessment, others, vetted=_VETTED)
+
+    def _announce(self, assessment: Assessment | None) -> None:
+        """Tell a screen reader when a number comes or goes, or a grade of finding; not at every key."""
+        listed = [] if assessment is None else [finding for _, finding in numbered_findings(assessment)]
+        grades = tuple(sorted({finding.grade for finding in listed}))
+        due = (bool(self.number.figure), grades)
+        if due == self._announced:
+            return
+        self._announced = due
+        what = self.number.percentage or self.headline.text()
+        words = f"{what}, {grades_in_words(listed)}" if assessment is not None else what
+        QAccessible.updateAccessibility(QAccessibleAnnouncementEvent(self, words))
+        self.stops_changed.emit()
+
+
+def _inset(left: int, right: int, *widgets: QWidget) -> QVBoxLayout:
+    """Widgets under each other between these margins."""
+    column = QVBoxLayout()
+    column.setContentsMargins(left, 0, right, 0)
+    column.setSpacing(0)
+    for widget in widgets:
+        column.addWidget(widget)
+    return column
+
+
+def _no_band(reason: str) -> str:
+    return f"No band: {reason}"

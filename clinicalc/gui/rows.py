@@ -8,6 +8,8 @@ from PySide6.QtWidgets import QWidget
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.result import ValueLine
+from clinicalc.gui.dated_entry import DatedEntry
+from clinicalc.gui.index_mark import IndexMark
 
 
 class FieldRow(QWidget):
@@ -18,9 +20,18 @@ class FieldRow(QWidget):
     entered = Signal()
     """Enter was pressed: on to the next field."""
 
-    def __init__(self, id: str) -> None:
+    def __init__(self, id: str, meaning: str = "") -> None:
         super().__init__()
         self.field_id = id
+        self._meaning = meaning.strip()
+        self.mark = IndexMark()
+        self.dated: DatedEntry | None = None
+        """The day of the value, where the file says how old it may be; it stands elsewhere than the row."""
+
+    def note(self) -> str:
+        """What the file means by the field, as a sentence; "" where it does not say."""
+        text = self._meaning
+        return f"{text[:1].upper()}{text[1:]}{'' if text.endswith(('.', '?', '!')) else '.'}" if text else ""
 
     def fill(self, typed: Typed | None) -> Typed | None:
         """Show a value or none, without history; returns it in the form in which it now stands."""

@@ -5,8 +5,9 @@ from PySide6.QtGui import QColor, QFontMetrics, QKeyEvent, QPainter, QPaintEvent
 from PySide6.QtWidgets import QBoxLayout, QButtonGroup, QRadioButton, QSizePolicy
 
 from clinicalc.assessment.fields import AnswerOption
+from clinicalc.gui import theme
 from clinicalc.gui.frames import FieldFrame
-from clinicalc.gui.tokens import FRAME_HEIGHT, FRAME_WIDTH, LIGHT, RING
+from clinicalc.gui.tokens import FRAME_HEIGHT, FRAME_WIDTH, RING
 from clinicalc.gui.typeface import BASE, face
 
 _BACK = (Qt.Key.Key_Left, Qt.Key.Key_Up)
@@ -50,11 +51,11 @@ class Segment(QRadioButton):
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         if self.isChecked():
-            painter.setBrush(QColor(LIGHT.sel))
-            painter.setPen(QPen(QColor(LIGHT.accent), 1.5))
+            painter.setBrush(QColor(theme.tokens().sel))
+            painter.setPen(QPen(QColor(theme.tokens().accent), 1.5))
             painter.drawRoundedRect(QRectF(self.rect()).adjusted(1.75, 1.75, -1.75, -1.75), 2, 2)
         painter.setFont(face(BASE, semibold=self.isChecked()))
-        painter.setPen(QColor(LIGHT.ink if self.isChecked() else LIGHT.soft))
+        painter.setPen(QColor(theme.tokens().ink if self.isChecked() else theme.tokens().soft))
         painter.drawText(self.rect(), Qt.AlignmentFlag.AlignCenter | Qt.TextFlag.TextSingleLine, self.option.label)
         painter.end()
 
@@ -123,7 +124,7 @@ class Segments(FieldFrame):
 
     def paint_inside(self, painter: QPainter, body: QRectF) -> None:
         """Thin lines between answers while none beside them is chosen."""
-        painter.setPen(QPen(QColor(LIGHT.rule), 1))
+        painter.setPen(QPen(QColor(theme.tokens().rule), 1))
         for left, right in zip(self.segments, self.segments[1:], strict=False):
             if left.isChecked() or right.isChecked():
                 continue

@@ -40,6 +40,22 @@ LIGHT = Tokens(
     hatch="#8D93A3",
 )
 
+DARK = Tokens(
+    ground="#12141B",
+    sheet="#1A1D26",
+    field="#0F1117",
+    ink="#E9EBF1",
+    soft="#A7AEBE",
+    rule="#343946",
+    edge="#788094",
+    accent="#B9AEF6",
+    on_accent="#15122B",
+    tint="#453D7C",
+    wash="#1F222F",
+    sel="#2F2B4A",
+    hatch="#6C7488",
+)
+
 RING = 3
 """Room round a frame for its focus ring, in pixels."""
 FRAME_HEIGHT = 30
@@ -60,9 +76,18 @@ COMPACT_BELOW = 1180
 
 
 def make_palette(tokens: Tokens) -> QPalette:
-    """The palette roles that stock widgets read."""
+    """The palette roles that stock widgets read, every one of them: one left to the system would be of its theme."""
     palette = QPalette()
     roles = {
+        QPalette.ColorRole.Light: tokens.sheet,
+        QPalette.ColorRole.Midlight: tokens.wash,
+        QPalette.ColorRole.Mid: tokens.rule,
+        QPalette.ColorRole.Dark: tokens.edge,
+        QPalette.ColorRole.Shadow: tokens.edge,
+        QPalette.ColorRole.BrightText: tokens.ink,
+        QPalette.ColorRole.Link: tokens.accent,
+        QPalette.ColorRole.LinkVisited: tokens.accent,
+        QPalette.ColorRole.Accent: tokens.accent,
         QPalette.ColorRole.Window: tokens.ground,
         QPalette.ColorRole.WindowText: tokens.ink,
         QPalette.ColorRole.Base: tokens.field,
@@ -78,21 +103,24 @@ def make_palette(tokens: Tokens) -> QPalette:
     }
     for role, colour in roles.items():
         palette.setColor(role, QColor(colour))
+    for role in (QPalette.ColorRole.WindowText, QPalette.ColorRole.Text, QPalette.ColorRole.ButtonText):
+        palette.setColor(QPalette.ColorGroup.Disabled, role, QColor(tokens.soft))
     return palette
 
 
 def make_style_sheet(tokens: Tokens) -> str:
-    """The few rules that a palette cannot express. Label roles and grades are set as properties by `labels`."""
-    t = tokens
+    """The few rules that a palette cannot express. The ink of a label is set as its property by `labels`."""
+    return _words_and_panes(tokens) + _buttons(tokens) + _parts_of_qt(tokens)
+
+
+def _words_and_panes(t: Tokens) -> str:
     return f"""
     QLabel {{ color: {t.ink}; background: transparent; }}
     QLabel[ink="soft"] {{ color: {t.soft}; }}
-    QLabel[grade="stop"] {{ background: {t.ink}; color: {t.sheet}; border-radius: 2px; }}
-    QLabel[grade="caution"] {{ border: 2px solid {t.ink}; border-radius: 2px; }}
-    QLabel[grade="note"] {{ border-bottom: 1px solid {t.ink}; }}
-    QFrame#stop {{ border: 2px solid {t.ink}; border-radius: 3px; background: {t.sheet}; }}
+    QLabel[ink="accent"] {{ color: {t.accent}; }}
+    QLabel#plate {{ background: {t.sheet}; padding: 0 10px; }}
     QFrame#rule {{ background: {t.rule}; border: none; }}
-    QLineEdit {{ border: none; background: transparent; color: {t.ink}; }}
+    QLineEdit {{ border: none; background: transparent; color: {t.ink}; placeholder-text-color: {t.soft}; }}
     QPlainTextEdit {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; padding: 8px; }}
     QPlainTextEdit:focus {{ border: 2px solid {t.accent}; padding: 7px; }}
     QScrollArea {{ border: none; background: transparent; }}
@@ -100,6 +128,11 @@ def make_style_sheet(tokens: Tokens) -> str:
     QScrollArea#sheet_scroll:focus {{ border: 2px solid {t.accent}; }}
     QWidget#ground {{ background: {t.ground}; }}
     QWidget#sheet {{ background: {t.sheet}; }}
+    """
+
+
+def _buttons(t: Tokens) -> str:
+    return f"""
     QPushButton {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; color: {t.ink};
                    padding: 0 14px; min-height: 30px; }}
     QPushButton:pressed {{ background: {t.sel}; }}
@@ -109,6 +142,21 @@ def make_style_sheet(tokens: Tokens) -> str:
     QPushButton#primary:enabled:focus {{ border: 2px solid {t.ink}; }}
     QPushButton#offer {{ padding: 0 8px; min-height: 26px; border-color: {t.ink}; }}
     QPushButton#offer:focus {{ border: 2px solid {t.accent}; padding: 0 7px; min-height: 24px; }}
+    """
+
+
+def _parts_of_qt(t: Tokens) -> str:
+    """What Qt brings along: its file and print dialogs, tips, menus, scroll bars, lists of choosers."""
+    return f"""
+    QToolTip {{ background: {t.sheet}; color: {t.ink}; border: 1px solid {t.edge}; padding: 4px; }}
+    QMenu {{ background: {t.field}; color: {t.ink}; border: 1px solid {t.edge}; padding: 4px; }}
+    QMenu::item {{ padding: 5px 24px; }}
+    QMenu::item:selected {{ background: {t.sel}; }}
+    QMenu::item:disabled {{ color: {t.soft}; }}
+    QMenu::separator {{ height: 1px; background: {t.rule}; margin: 4px 0; }}
+    QFileDialog QLineEdit, QPrintDialog QLineEdit {{ border: 1px solid {t.edge}; border-radius: 3px;
+                   background: {t.field}; min-height: 24px; padding: 0 4px; }}
+    QFileDialog QLineEdit:focus, QPrintDialog QLineEdit:focus {{ border: 2px solid {t.accent}; padding: 0 3px; }}
     QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
     QScrollBar::handle:vertical {{ background: {t.edge}; border-radius: 2px; min-height: 32px; margin: 3px; }}
     QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page

@@ -2,12 +2,13 @@
 
 from PySide6.QtCore import QRectF, Qt, Signal
 from PySide6.QtGui import QColor, QFocusEvent, QPainter, QPen
-from PySide6.QtWidgets import QHBoxLayout, QLineEdit
+from PySide6.QtWidgets import QHBoxLayout, QLineEdit, QSizePolicy
 
+from clinicalc.gui import theme
 from clinicalc.gui.chooser import Chooser
 from clinicalc.gui.frames import FieldFrame
 from clinicalc.gui.labels import make_line
-from clinicalc.gui.tokens import LIGHT, RING, VALUE_WIDTH
+from clinicalc.gui.tokens import RING, VALUE_WIDTH
 from clinicalc.gui.typeface import UNIT, VALUE, face
 from clinicalc.units.unit import unit as unit_of
 
@@ -20,6 +21,7 @@ class ValueEdit(QLineEdit):
     def __init__(self) -> None:
         super().__init__()
         self.setFont(face(VALUE, semibold=True))
+        self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)  # the whole frame takes clicks
         self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
 
@@ -63,5 +65,5 @@ class ValueFrame(FieldFrame):
     def paint_inside(self, painter: QPainter, body: QRectF) -> None:
         """The thin line between number and unit."""
         x = self.edit.geometry().right() + 4.5
-        painter.setPen(QPen(QColor(LIGHT.rule), 1))
+        painter.setPen(QPen(QColor(theme.tokens().rule), 1))
         painter.drawLine(int(x), int(body.top()) + 7, int(x), int(body.bottom()) - 7)

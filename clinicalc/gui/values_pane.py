@@ -3,7 +3,7 @@
 from itertools import groupby
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QHBoxLayout, QLineEdit, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QApplication, QHBoxLayout, QLineEdit, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
 
 from clinicalc.assessment.fields import Field, NumberField
 from clinicalc.assessment.model import Model
@@ -11,12 +11,14 @@ from clinicalc.assessment.result import Assessment
 from clinicalc.gui.access_keys import mark_letters
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.frames import FieldFrame
+from clinicalc.gui.index_mark import IndexMark
 from clinicalc.gui.labels import Heading, make_field_label
 from clinicalc.gui.number_row import NumberRow
 from clinicalc.gui.question_row import QuestionRow
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, PANE_WIDTH, PANE_WIDTH_COMPACT, RING, SIDE_MARGIN
 from clinicalc.gui.typeface import BASE, face
+from clinicalc.gui.wording import numbered_findings
 from clinicalc.gui.worked_out_row import WorkedOutRow
 
 PRINT_LABEL = "Name or number"
@@ -30,6 +32,7 @@ class LabelRow(QWidget):
         self.frame = FieldFrame()
         self.edit = QLineEdit()
         self.edit.setFont(face(BASE))
+        self.edit.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
         self.edit.setMaxLength(200)
         self.edit.setAccessibleName(PRINT_LABEL)
         inside = QHBoxLayout(self.frame)
@@ -55,6 +58,10 @@ class ValuesPane(QScrollArea):
     """Every field of the model in page order; built anew for another model, filled anew for another patient."""
 
     rebuilt = Signal()
+    row_entered = Signal(object)
+    """The focus came into this FieldRow or its date, or went elsewhere (None)."""
+    mark_pressed = Signal(int)
+    """The number of the finding whose mark at a field was pressed."""
     left_last = Signal()
     """Enter was pressed in the last field."""
 
@@ -71,6 +78,9 @@ class ValuesPane(QScrollArea):
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         self.setFixedWidth(PANE_WIDTH)
         self._set_body()
+        application = QApplication.instance()
+        if isinstance(application, QApplication):
+            application.focusChanged.connect(self._follow_focus)
         state.model_changed.connect(self._take_model)
         state.assessed.connect(self._show_assessment)
         state.blanked.connect(self._show_nothing)
@@ -82,15 +92,24 @@ class ValuesPane(QScrollArea):
 
     def focus_first(self) -> None:
         """Put the cursor where typing begins."""
-        first = next((stop for stop in self.tab_stops() if _is_tab_stop(stop)), None)
+        first = next((stop for stop in self.tab_stops() if _takes_entries(stop)), None)
         if first is not None:
             first.setFocus(Qt.FocusReason.OtherFocusReason)
             self.ensureWidgetVisible(first)
 
-    def set_compact(self, compact: bool) -> None:
-        """The narrow form of the pane, for small windows."""
+    def focus_field(self, id: str) -> None:
+        """Put the cursor in a field and bring it into view; an id that is no field changes nothing."""
+        row = self.rows.get(id)
+        stops = () if row is None else row.tab_stops()
+        stop = next((stop for stop in stops if _takes_entries(stop)), None)
+        if stop is not None:
+            stop.setFocus(Qt.FocusReason.ShortcutFocusReason)
+            self.ensureWidgetVisible(stop)
+
+    def set_compact(self, compact: bool, width: int | None = None) -> None:
+        """The narrow form of the pane, for small windows; a width of its own where it stands in one column."""
         self._compact = compact
-        self.setFixedWidth(PANE_WIDTH_COMPACT if compact else PANE_WIDTH)
+        self.setFixedWidth(width or (PANE_WIDTH_COMPACT if compact else PANE_WIDTH))
         self._fit()
 
     def _fit(self) -> None:
@@ -154,6 +173,7 @@ class ValuesPane(QScrollArea):
     def _add_row(self, field: Field, label: str) -> FieldRow:
         row = _make_row(field, label)
         row.typed.connect(self._state.type_value)
+        row.mark.pressed_for.connect(self.mark_pressed)
         row.entered.connect(lambda id=field.id: self._go_on_from(id))
         self.rows[field.id] = row
         return row
@@ -162,14 +182,26 @@ class ValuesPane(QScrollArea):
         assert self.label_row is not None  # built together with the rows
         ids = list(self.rows)
         later = [stop for next_id in ids[ids.index(id) + 1 :] for stop in self.rows[next_id].tab_stops()]
-        target = next((stop for stop in later if _is_tab_stop(stop)), self.label_row.edit)
+        target = next((stop for stop in later if _takes_entries(stop)), self.label_row.edit)
         target.setFocus(Qt.FocusReason.TabFocusReason)
         self.ensureWidgetVisible(target)
 
+    def _follow_focus(self, _: QWidget | None, now: QWidget | None) -> None:
+        if now is None:  # another window, or a menu of this one: what is shown stays
+            return
+        for row in self.rows.values():
+            if row.isAncestorOf(now) or (row.dated is not None and row.dated.isAncestorOf(now)):
+                self.row_entered.emit(row)
+                return
+        if self.window().isAncestorOf(now):
+            self.row_entered.emit(None)
+
     def _show_assessment(self, assessment: Assessment) -> None:
         lines = {line.id: line for line in assessment.values}
+        numbered = numbered_findings(assessment)
         for id, row in self.rows.items():
             row.show_remarks(lines.get(id), [finding for finding in assessment.findings if finding.field == id])
+            row.mark.show_findings([(number, finding) for number, finding in numbered if finding.field == id])
         offering = [row for row in self.rows.values() if isinstance(row, NumberRow) and row.has_offer]
         for row in offering[:1]:
             row.give_offer_its_letter()
@@ -177,6 +209,7 @@ class ValuesPane(QScrollArea):
     def _show_nothing(self, _: str = "") -> None:
         for row in self.rows.values():
             row.show_remarks(None, ())
+            row.mark.show_findings(())
 
 
 def _make_row(field: Field, label: str) -> FieldRow:
@@ -192,3 +225,7 @@ def _has_no_letter(field: Field) -> bool:
 
 def _is_tab_stop(widget: QWidget) -> bool:
     return bool(widget.focusPolicy() & Qt.FocusPolicy.TabFocus)
+
+
+def _takes_entries(widget: QWidget) -> bool:
+    return _is_tab_stop(widget) and not isinstance(widget, IndexMark)

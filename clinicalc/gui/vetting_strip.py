@@ -3,8 +3,10 @@
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QHBoxLayout, QWidget
 
+from clinicalc.gui import theme
+from clinicalc.gui.figure_view import text_part
 from clinicalc.gui.labels import make_line
-from clinicalc.gui.tokens import LIGHT, SHEET_MARGIN
+from clinicalc.gui.tokens import SHEET_MARGIN
 from clinicalc.gui.typeface import BASE
 
 _HEIGHT = 30
@@ -16,9 +18,9 @@ class VettingStrip(QWidget):
 
     def __init__(self, words: str) -> None:
         super().__init__()
-        self.setFixedHeight(_HEIGHT)
+        self.setFixedHeight(round(_HEIGHT * text_part()))
         self.label = make_line(words, BASE, semibold=True)
-        self.label.setStyleSheet(f"background: {LIGHT.sheet}; padding: 0 10px;")
+        self.label.setObjectName("plate")
         self.label.setIndent(0)
         row = QHBoxLayout(self)
         row.setContentsMargins(SHEET_MARGIN - 10, 3, 0, 3)
@@ -29,8 +31,9 @@ class VettingStrip(QWidget):
         """Slanted lines over the whole width."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.fillRect(self.rect(), QColor(LIGHT.sheet))
-        painter.setPen(QPen(QColor(LIGHT.hatch), 1))
-        for x in range(-_HEIGHT, self.width() + _HEIGHT, _STEP):
-            painter.drawLine(x, _HEIGHT, x + _HEIGHT, 0)
+        painter.fillRect(self.rect(), QColor(theme.tokens().sheet))
+        painter.setPen(QPen(QColor(theme.tokens().hatch), 1.5))
+        height = self.height()
+        for x in range(-height, self.width() + height, _STEP):
+            painter.drawLine(x, height, x + height, 0)
         painter.end()

@@ -1,14 +1,19 @@
 """The sentences of the result sheet that no print needs: what is still to be entered, and what stops the number."""
 
+from collections.abc import Sequence
+
 from clinicalc.assessment.fields import QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import join_words
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
-from clinicalc.report.phrases import count_words
+from clinicalc.report.phrases import count_words, people_sentence
 
 _CHOICES = {FindingCode.HORIZON: "horizon", FindingCode.RECALIBRATION: "recalibration"}
+GRADE_WORDS = {Grade.STOP: "Stop", Grade.CAUTION: "Caution", Grade.NOTE: "Note"}
+_NAMED = 2
+"""How many stopped values are named: more would need more room than the sheet keeps free."""
 _NOT_MADE_FOR = (FindingCode.EXCLUDED, FindingCode.OUTSIDE_DERIVATION)
 
 
@@ -22,12 +27,40 @@ def shown_findings(assessment: Assessment) -> tuple[Finding, ...]:
     return tuple(f for f in assessment.findings if f.code is not FindingCode.MISSING and not is_open_choice(f))
 
 
+def numbered_findings(assessment: Assessment) -> tuple[tuple[int, Finding], ...]:
+    """The listed findings with the numbers they have in the list and at the values."""
+    return tuple(enumerate(shown_findings(assessment), 1))
+
+
+def findings_heading(findings: Sequence[object]) -> str:
+    """How many findings there are: "2 findings", "1 finding", "No findings so far"."""
+    return count_words(len(findings), "finding") if findings else "No findings so far"
+
+
+def grades_in_words(findings: Sequence[Finding]) -> str:
+    """How many findings of each grade: "1 caution, 2 notes"; "no findings"."""
+    counts = [(grade, sum(finding.grade is grade for finding in findings)) for grade in Grade]
+    return ", ".join(count_words(count, grade.value) for grade, count in counts if count) or "no findings"
+
+
+def not_used_sentence(model: Model) -> str:
+    """What the model takes no account of, "" where the file says nothing about it."""
+    left_out = model.content.use.not_used
+    return f"Not used by this model: {', '.join(left_out)}." if left_out else ""
+
+
 def event_heading(model: Model, span: Span | None) -> str:
     """The outcome in its first words, with the horizon."""
     outcome = model.content.outcome.partition(":")[0].strip().rstrip(".")
     if span is None or f"within {span.words}" in outcome:
         return outcome
     return f"{outcome} within {span.words}"
+
+
+def longest_sentence(model: Model, span: Span) -> str:
+    """A sentence about people as long as this model's sentences get, for the room that is kept free."""
+    censored = any(e.content.competing_events.handled == "censored" for e in model.equations)
+    return people_sentence(0.0044, span.words, others_censored=censored)
 
 
 def event_in_full(model: Model) -> str:
@@ -56,6 +89,8 @@ def _say_stops(model: Model, stops: list[Finding]) -> str:
     names = list(dict.fromkeys(labels.get(finding.field, "A finding below") for finding in stops))
     what = "its unit or its value" if len(names) == 1 and stops[0].offer else "its value"
     if len(names) > 1:
+        rest = len(names) - _NAMED
+        names = [*names[:_NAMED], count_words(rest, "other value")] if rest > 0 else names
         return f"{join_words(names)} stop it. Change these values and the number comes back."
     return f"{names[0]} stops it. Change {what} and the number comes back."
 

@@ -20,7 +20,7 @@ class WorkedOutRow(FieldRow):
     """Label and figure, no field."""
 
     def __init__(self, field: NumberField) -> None:
-        super().__init__(field.id)
+        super().__init__(field.id, field.meaning)
         self.value = make_label(_NOTHING, UNIT, soft=True)
         self.value.setAccessibleName(field.label)
         self.setMinimumHeight(ROW_PITCH)
@@ -29,6 +29,7 @@ class WorkedOutRow(FieldRow):
         row.setSpacing(COLUMN_GAP + RING)
         row.addWidget(make_row_label(field.label))
         row.addWidget(self.value, 1)
+        row.addWidget(self.mark)
 
     def fill(self, typed: Typed | None) -> Typed | None:
         """Nothing can be typed here; text from elsewhere is kept, so that its finding is seen."""
@@ -42,5 +43,5 @@ class WorkedOutRow(FieldRow):
         """Takes any room."""
 
     def tab_stops(self) -> tuple[QWidget, ...]:
-        """None."""
-        return ()
+        """Only the mark of a finding."""
+        return (self.mark,)

@@ -1,16 +1,39 @@
-"""Saving the print."""
+"""The print: saving it, and laying out its pages for a printer or a preview."""
 
 import os
 from datetime import datetime
 from pathlib import Path
 
 from clinicalc.assessment.result import Assessment
-from clinicalc.report import save_report, time_of_printing
+from clinicalc.report import Document, make_document, save_report, time_of_printing
+from clinicalc.report import Paper as Sheet
+from clinicalc.settings import Paper
 
 
-def save_pdf(path: Path, assessment: Assessment, *, practice: str = "") -> None:
+def save_pdf(
+    path: Path,
+    assessment: Assessment,
+    *,
+    practice: str = "",
+    patient_page: bool = True,
+    paper: Paper = Paper.A4,
+) -> None:
     """Write the print of an assessment. Raises PrintRefused or FileNotWritten; nothing half-written is left."""
-    save_report(path, assessment, practice=practice)
+    save_report(path, assessment, practice=practice, patient_page=patient_page, paper=Sheet(paper.value))
+
+
+def lay_out_print(
+    assessment: Assessment,
+    *,
+    practice: str = "",
+    patient_page: bool = True,
+    paper: Paper = Paper.A4,
+    printed_at: datetime | None = None,
+) -> Document:
+    """The same print as pages to be painted; `printed_at` is now where it is left out. Raises PrintRefused."""
+    return make_document(
+        assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=Sheet(paper.value)
+    )
 
 
 def stated_time() -> datetime | None:

@@ -17,8 +17,8 @@ def summarise(assessment: Assessment) -> str:
             f"Fingerprint {group_fingerprint(model.fingerprint, 3)}",
         ],
         [f"{phrases.NOT_VETTED}."],
-        _number(assessment),
-        _findings(assessment.findings),
+        number_lines(assessment),
+        finding_lines(assessment.findings),
         _values(assessment.values),
     ]
     folded = ([part for line in block for part in fold(line)] for block in blocks if block)
@@ -65,7 +65,8 @@ def progress_sentence(assessment: Assessment) -> str:
     return f"{entries} to go. Next: {labels[assessment.missing[0].field]}"
 
 
-def _number(assessment: Assessment) -> list[str]:
+def number_lines(assessment: Assessment) -> list[str]:
+    """Outcome, number at its horizon, people, recalibration and band; or why there is no number."""
     estimate, span = assessment.estimate, assessment.span
     outcome = assessment.model.content.outcome
     within = "" if span is None else f" within {span.words}"
@@ -81,7 +82,8 @@ def _number(assessment: Assessment) -> list[str]:
     return lines
 
 
-def _findings(findings: tuple[Finding, ...]) -> list[str]:
+def finding_lines(findings: tuple[Finding, ...]) -> list[str]:
+    """Each finding with its grade, in reading order; what is missing only where the model may still answer."""
     # what is still to be typed does not matter for a patient whom the model does not answer for
     excluded = any(finding.code is FindingCode.EXCLUDED for finding in findings)
     shown = [f for f in findings if not (excluded and f.code is FindingCode.MISSING)]

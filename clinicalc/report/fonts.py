@@ -90,6 +90,9 @@ class Lettering:
     def pieces(self, text: str, weight: Weight) -> Iterator[Piece]:
         """The line in parts that are painted one after the other, each accent apart, over the middle of its letter."""
         for font, part in self.runs(text, weight):
+            if part.isascii():  # without accents that stand apart
+                yield Piece(part, font)
+                continue
             plain = ""
             for letter, accents in _clusters(part):
                 if not accents:

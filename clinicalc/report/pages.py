@@ -1,74 +1,105 @@
-"""From strips to pages of A4: where a page ends, and what stands at its head and foot."""
+"""From strips to pages of paper: where a page ends, and what stands at its head and foot."""
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from clinicalc.report.contents import Furniture, Sheet
 from clinicalc.report.fonts import Lettering
-from clinicalc.report.shapes import Line, Rect, Shape, Text, Tone, hatch
-from clinicalc.report.typefaces import Weight
-from clinicalc.report.typeset import SMALL, WIDTH, Strip, Style, set_lines, set_sheet
+from clinicalc.report.headpiece import set_sheet
+from clinicalc.report.paper import Paper
+from clinicalc.report.patient_page import set_patient
+from clinicalc.report.shapes import Anchor, Line, Rect, Shape, Text, Tone, hatch, move
+from clinicalc.report.strips import CAPTION, SEMIBOLD, SMALL, WIDTH, Strip, Style, height_of, set_lines
 
-PAGE_WIDTH, PAGE_HEIGHT = 595.28, 841.89
-"""A4 in points."""
+PAGE_WIDTH, PAGE_HEIGHT = Paper.A4.width, Paper.A4.height
 MARGIN = (PAGE_WIDTH - WIDTH) / 2
-"""15 mm."""
-TOP, BOTTOM = 36.0, PAGE_HEIGHT - 34.0
-HEAD_STYLE = Style(BASE_HEAD := 10.5, Weight.SEMIBOLD)
-FOOT_STYLE, FOOT_SOFT = Style(SMALL, Weight.SEMIBOLD), Style(SMALL, tone=Tone.SOFT)
+"""15 mm at the sides of A4."""
+TOP, BOTTOM = 36.0, 34.0
+"""From the edge of the paper to the head and to the end of the foot."""
+HEAD_STYLE = Style(BASE_HEAD := 10.5, SEMIBOLD)
+FOOT_STYLE, FOOT_SOFT = Style(SMALL, SEMIBOLD), CAPTION
 SIDE = 150.0
 """Points kept free for the short text at the right of head and foot."""
 STRIP_HEIGHT = 19.0
+_WHITE_OVER_FOOT = 8.0
+_FOR_CLINICIAN, _FOR_PATIENT = "For the clinician", "For the patient"
 
 
 @dataclass(frozen=True, slots=True)
 class Page:
-    """One page, ready to be painted."""
+    """One page of the given width and height in points, ready to be painted."""
 
     shapes: tuple[Shape, ...]
+    width: float = PAGE_WIDTH
+    height: float = PAGE_HEIGHT
 
 
-def lay_out(lettering: Lettering, sheet: Sheet) -> tuple[Page, ...]:
-    """The pages of a sheet."""
-    furniture = sheet.furniture
-    strips = set_sheet(lettering, sheet)
-    heights = _head(lettering, furniture, 1, 1)[1], _head(lettering, furniture, 2, 2)[1]
-    foot = _foot(lettering, furniture)
-    bottom = BOTTOM - foot[1] - 8
-    parts = list(break_pages(strips, (bottom - heights[0], bottom - heights[1])))
+@dataclass(frozen=True, slots=True)
+class _Part:
+    """What stands between head and foot of one page."""
+
+    reader: str
+    name: str
+    strips: Sequence[Strip]
+    foot: tuple[tuple[Shape, ...], float]
+
+
+def lay_out(lettering: Lettering, sheet: Sheet, paper: Paper = Paper.A4) -> tuple[Page, ...]:
+    """The pages of a sheet: the clinician's, then the patient's where there is one."""
+    parts = list(_parts(lettering, sheet, paper))
     pages = []
+    left = (paper.width - WIDTH) / 2
     for number, part in enumerate(parts, 1):
-        head, y = _head(lettering, furniture, number, len(parts))
-        shapes = list(head)
-        for strip in part:
-            shapes += [shape.moved(MARGIN, y) for shape in strip.shapes]
+        side = f"{part.reader}, page {number} of {len(parts)}"
+        head, y = _head(lettering, part.name, side, sheet.furniture.strip)
+        shapes = list(move(head, left, 0))
+        for strip in part.strips:
+            shapes += move(strip.shapes, left, y)
             y += strip.height
-        shapes += [shape.moved(0, BOTTOM - foot[1]) for shape in foot[0]]
-        pages.append(Page(tuple(shapes)))
+        shapes += move(part.foot[0], left, paper.height - BOTTOM - part.foot[1])
+        pages.append(Page(tuple(shapes), paper.width, paper.height))
     return tuple(pages)
+
+
+def _parts(lettering: Lettering, sheet: Sheet, paper: Paper) -> Iterator[_Part]:
+    """The pages without their heads, which count all of them."""
+    furniture = sheet.furniture
+    first, later = _foot(lettering, furniture, furniture.notes), _foot(lettering, furniture)
+    practice = furniture.practice or "no practice name"
+    below = paper.height - BOTTOM - _WHITE_OVER_FOOT
+
+    def room(name: str, foot: tuple[tuple[Shape, ...], float]) -> float:
+        return below - foot[1] - _head(lettering, name, "", furniture.strip)[1]
+
+    rooms = room(practice, first), room(furniture.label, later)
+    for place, strips in enumerate(break_pages(set_sheet(lettering, sheet), rooms)):
+        name, foot = (furniture.label, later) if place else (practice, first)
+        yield _Part(_FOR_CLINICIAN, name, strips, foot)
+    if sheet.patient is not None:
+        free = room(practice, later)
+        for strips in break_pages(set_patient(lettering, sheet.patient, free), (free, free)):
+            yield _Part(_FOR_PATIENT, practice, strips, later)
 
 
 def break_pages(strips: Sequence[Strip], rooms: tuple[float, float]) -> Iterator[list[Strip]]:
     """The strips page by page; `rooms` are the heights of the first page and of every later one, in points."""
     page: list[Strip] = []
     room, later = rooms
+    first = True
     for group in _groups(strips):
-        height = _height(group)
-        if page and _height(page) + height > room and height <= later:  # goes over whole
+        height = height_of(group)
+        goes_over = height_of(page) + height > room and height <= later  # whole
+        if page and (goes_over or (first and group[0].off_first)):
             yield page
-            page, room = list(group[0].head), later
+            page, room, first = list(group[0].head), later, False
         for strip in group:  # a group higher than a page is parted where the page ends
-            if page and _height(page) + strip.height > room:
+            if page and height_of(page) + strip.height > room:
                 yield page
-                page, room = list(strip.head), later
+                page, room, first = list(strip.head), later, False
             if page or strip.shapes:  # no white at the top of a page
                 page.append(strip)
     if page:
         yield page
-
-
-def _height(strips: Sequence[Strip]) -> float:
-    return sum(strip.height for strip in strips)
 
 
 def _groups(strips: Sequence[Strip]) -> Iterator[list[Strip]]:
@@ -83,53 +114,55 @@ def _groups(strips: Sequence[Strip]) -> Iterator[list[Strip]]:
         yield group
 
 
-def _head(lettering: Lettering, furniture: Furniture, number: int, total: int) -> tuple[list[Shape], float]:
-    """The head of a page and the y below it: practice and page, a rule, the strip; the label on every later page."""
-    side = f"{furniture.reader}, page {number} of {total}"
-    name = furniture.practice if number == 1 else furniture.label
-    lines = set_lines(lettering, name or "no practice name", 0, WIDTH - SIDE, HEAD_STYLE)
-    shapes, y = _stacked(lines, TOP)
-    right = MARGIN + WIDTH - lettering.width(side, FOOT_SOFT.size)
-    shapes.append(Text(right, TOP + HEAD_STYLE.baseline, side, FOOT_SOFT.size, tone=Tone.SOFT))
+def _head(lettering: Lettering, name: str, side: str, strip: str) -> tuple[list[Shape], float]:
+    """The head of a page and the y below it: whose it is, which page, a rule, and the strip where there is one."""
+    shapes, y = _stacked(set_lines(lettering, name, 0, WIDTH - SIDE, HEAD_STYLE), TOP)
+    baseline = TOP + HEAD_STYLE.baseline
+    shapes.append(Text(WIDTH, baseline, side, FOOT_SOFT.size, tone=Tone.SOFT, anchor=Anchor.END))
     y += 4
-    shapes.append(Line(MARGIN, y, MARGIN + WIDTH, y, 1.0, Tone.INK))
+    shapes.append(Line(0, y, WIDTH, y, 1.0, Tone.INK))
     y += 6
-    shapes += _strip(lettering, furniture.strip, y)
+    if not strip:
+        return shapes, y + 4
+    shapes += _strip(lettering, strip, y)
     return shapes, y + STRIP_HEIGHT + 10
 
 
 def _strip(lettering: Lettering, words: str, y: float) -> list[Shape]:
     """The hatched strip with its words on a clear plate."""
-    style = Style(BASE_HEAD, Weight.SEMIBOLD)
+    style = Style(BASE_HEAD, SEMIBOLD)
     wide = lettering.width(words, style.size, style.weight) + 20
-    left = MARGIN + (WIDTH - wide) / 2
+    left = (WIDTH - wide) / 2
     baseline = y + (STRIP_HEIGHT + 0.66 * style.size) / 2
     return [
-        *hatch(MARGIN, y, WIDTH, STRIP_HEIGHT),
-        Rect(left, y, wide, STRIP_HEIGHT, fill=Tone.PAPER),
-        Rect(MARGIN, y, WIDTH, STRIP_HEIGHT, outline=Tone.HATCH, line=0.6),
+        *hatch(0, y, WIDTH, STRIP_HEIGHT),
+        Rect(left, y, wide, STRIP_HEIGHT, fill=Tone.SHEET),
+        Rect(0, y, WIDTH, STRIP_HEIGHT, outline=Tone.HATCH, line=0.6),
         Text(left + 10, baseline, words, style.size, style.weight),
     ]
 
 
-def _foot(lettering: Lettering, furniture: Furniture) -> tuple[list[Shape], float]:
-    """The foot from its rule down, and its height: which model, which file, which program, when."""
-    shapes, y = _stacked(set_lines(lettering, furniture.model, 0, WIDTH - SIDE, FOOT_STYLE), 6)
-    shapes.insert(0, Line(MARGIN, 0, MARGIN + WIDTH, 0, 1.0, Tone.INK))
-    end = MARGIN + WIDTH
-    wide = lettering.width(furniture.fingerprint, FOOT_STYLE.size, FOOT_STYLE.weight)
-    shapes.append(Text(end - wide, 6 + FOOT_STYLE.baseline, furniture.fingerprint, SMALL, Weight.SEMIBOLD))
-    for text, left in (
-        (furniture.program, MARGIN),
-        (furniture.printed, end - lettering.width(furniture.printed, FOOT_SOFT.size)),
-    ):
-        shapes.append(Text(left, y + FOOT_SOFT.baseline, text, FOOT_SOFT.size, tone=Tone.SOFT))
-    return shapes, y + FOOT_SOFT.height
+def _foot(lettering: Lettering, furniture: Furniture, notes: tuple[str, ...] = ()) -> tuple[tuple[Shape, ...], float]:
+    """The foot and its height: notes, a rule, which model, which file, which program, when."""
+    shapes: list[Shape] = []
+    y = 0.0
+    for note in notes:
+        lines, y = _stacked(set_lines(lettering, note, 0, WIDTH, FOOT_SOFT), y)
+        shapes += lines
+    y += 5 if notes else 0
+    shapes.append(Line(0, y, WIDTH, y, 1.0, Tone.INK))
+    y += 6
+    end = Text(WIDTH, y + FOOT_STYLE.baseline, furniture.fingerprint, SMALL, FOOT_STYLE.weight, anchor=Anchor.END)
+    lines, y = _stacked(set_lines(lettering, furniture.model, 0, WIDTH - SIDE, FOOT_STYLE), y)
+    shapes += [*lines, end]
+    for text, x, anchor in ((furniture.program, 0.0, Anchor.START), (furniture.printed, WIDTH, Anchor.END)):
+        shapes.append(Text(x, y + FOOT_SOFT.baseline, text, FOOT_SOFT.size, tone=Tone.SOFT, anchor=anchor))
+    return tuple(shapes), y + FOOT_SOFT.height
 
 
-def _stacked(lines: list[Strip], y: float) -> tuple[list[Shape], float]:
+def _stacked(lines: Sequence[Strip], y: float) -> tuple[list[Shape], float]:
     shapes: list[Shape] = []
     for line in lines:
-        shapes += [shape.moved(MARGIN, y) for shape in line.shapes]
+        shapes += move(line.shapes, 0, y)
         y += line.height
     return shapes, y

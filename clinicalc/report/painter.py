@@ -1,51 +1,160 @@
-"""Paints shapes into a PDF: the only place that talks to the PDF library's canvas about drawing."""
+"""Paints shapes into a PDF: the only place that talks to the PDF library's canvas about drawing.
 
-from collections.abc import Sequence
+Lines, boxes, dots and outlines are written as operators of the page (ISO 32000-1, 8.5), each colour and line width only
+where it changes; texts go through the library, which keeps the fonts.
+"""
+
+from collections.abc import Iterable, Iterator, Sequence
+from functools import cache
+from itertools import groupby
 from typing import Any, assert_never
 
 from clinicalc.report.fonts import Lettering
-from clinicalc.report.pages import PAGE_HEIGHT, Page
-from clinicalc.report.shapes import Line, Rect, Shape, Text, Tone
+from clinicalc.report.pages import Page
+from clinicalc.report.palette import PAPER
+from clinicalc.report.shapes import Anchor, Dot, Line, Poly, Rect, Shape, Text, Tone
+from clinicalc.report.typefaces import make_known
+
+_ROUND = 0.5522847498
+"""How far the handles of a curve stand from its ends so that four of them make a circle, in radii: 4/3 (√2 - 1)."""
 
 
 def paint_pages(canvas: Any, lettering: Lettering, pages: Sequence[Page]) -> None:
     """Every page, in order, shapes in the order in which they are to be read."""
     for page in pages:
-        for shape in page.shapes:
-            _paint(canvas, lettering, shape)
+        canvas.setPageSize((page.width, page.height))
+        paint_shapes(canvas, lettering, page.shapes, page.height)
         canvas.showPage()
 
 
-def _paint(canvas: Any, lettering: Lettering, shape: Shape) -> None:
-    match shape:
-        case Text():
-            canvas.setFillColor(_colour(shape.tone))
-            _write(canvas, lettering, shape)
-        case Line():
-            canvas.setStrokeColor(_colour(shape.tone))
-            canvas.setLineWidth(shape.width)
-            canvas.line(shape.x, PAGE_HEIGHT - shape.y, shape.to_x, PAGE_HEIGHT - shape.to_y)
-        case Rect():
-            if shape.fill is not None:
-                canvas.setFillColor(_colour(shape.fill))
-            if shape.outline is not None:
-                canvas.setStrokeColor(_colour(shape.outline))
-                canvas.setLineWidth(shape.line)
-            bottom = PAGE_HEIGHT - shape.y - shape.height
-            filled, stroked = int(shape.fill is not None), int(shape.outline is not None)
-            canvas.rect(shape.x, bottom, shape.width, shape.height, fill=filled, stroke=stroked)
-        case _:
-            assert_never(shape)
+def paint_shapes(canvas: Any, lettering: Lettering, shapes: Iterable[Shape], height: float) -> None:
+    """Shapes measured in points from the top left corner of a page that is `height` points high."""
+    inks = _Inks(canvas)
+    for style, run in groupby(shapes, key=_style):
+        if style is not None:
+            _stroke(canvas, inks, list(run), height)
+            continue
+        for shape in run:
+            match shape:
+                case Text():
+                    _write(canvas, inks, lettering, shape, height)
+                case Rect():
+                    _paint(canvas, inks, shape, _box(shape, height))
+                case Dot():
+                    _paint(canvas, inks, shape, _circle(shape, height))
+                case Poly():
+                    _paint(canvas, inks, shape, _corners(shape, height))
+                case Line():
+                    _stroke(canvas, inks, [shape], height)
+                case _:
+                    assert_never(shape)
 
 
-def _write(canvas: Any, lettering: Lettering, text: Text) -> None:
+class _Inks:
+    """The colours, the line width and the font that the page has now."""
+
+    def __init__(self, canvas: Any) -> None:
+        self._canvas = canvas
+        self._now: dict[str, str] = {}
+        self.font: tuple[str, float] | None = None
+
+    def fill(self, tone: Tone) -> None:
+        """Areas and letters in this ink from here on."""
+        self._set("rg", _colour(tone))
+
+    def stroke(self, tone: Tone, width: float) -> None:
+        """Lines in this ink and width from here on."""
+        self._set("RG", _colour(tone))
+        self._set("w", f"{width:.3f}")
+
+    def _set(self, operator: str, operands: str) -> None:
+        if self._now.get(operator) != operands:
+            self._now[operator] = operands
+            self._canvas.addLiteral(f"{operands} {operator}")
+
+
+def _style(shape: Shape) -> tuple[Tone, float, float] | None:
+    """What lines have in common that are painted in one go; None for anything else."""
+    return (shape.tone, shape.width, shape.dash) if isinstance(shape, Line) else None
+
+
+def _stroke(canvas: Any, inks: _Inks, lines: Sequence[Shape], height: float) -> None:
+    """Lines of one style as one path."""
+    plain = [line for line in lines if isinstance(line, Line)]
+    inks.stroke(plain[0].tone, plain[0].width)
+    dash = plain[0].dash
+    path = " ".join(
+        f"{line.x:.3f} {height - line.y:.3f} m {line.to_x:.3f} {height - line.to_y:.3f} l" for line in plain
+    )
+    before, after = (f"[{dash:.3f} {dash:.3f}] 0 d ", " [] 0 d") if dash else ("", "")  # it would hold for the next
+    canvas.addLiteral(f"{before}{path} S{after}")
+
+
+def _paint(canvas: Any, inks: _Inks, shape: Rect | Dot | Poly, path: str) -> None:
+    """Fills the path, strokes it, or both."""
+    if shape.fill is not None:
+        inks.fill(shape.fill)
+    if shape.outline is not None:
+        inks.stroke(shape.outline, shape.line)
+    operators = {(True, True): "B", (True, False): "f", (False, True): "S", (False, False): "n"}
+    canvas.addLiteral(f"{path} {operators[shape.fill is not None, shape.outline is not None]}")
+
+
+def _box(rect: Rect, height: float) -> str:
+    bottom = height - rect.y - rect.height
+    if not rect.radius:
+        return f"{rect.x:.3f} {bottom:.3f} {rect.width:.3f} {rect.height:.3f} re"
+    left, right, top, radius = rect.x, rect.x + rect.width, bottom + rect.height, rect.radius
+    corners = (
+        (right - radius, bottom + radius, 0, -1),
+        (right - radius, top - radius, 1, 0),
+        (left + radius, top - radius, 0, 1),
+        (left + radius, bottom + radius, -1, 0),
+    )
+    return _rounded(corners, radius)
+
+
+def _circle(dot: Dot, height: float) -> str:
+    x, y = dot.x, height - dot.y
+    return _rounded(((x, y, 0, -1), (x, y, 1, 0), (x, y, 0, 1), (x, y, -1, 0)), dot.radius)
+
+
+def _rounded(corners: Iterable[tuple[float, float, int, int]], radius: float) -> str:
+    """Quarters of circles, anticlockwise, joined by straight lines; each by its middle and the direction it begins."""
+    return " ".join(_quarters(corners, radius)) + " h"
+
+
+def _quarters(corners: Iterable[tuple[float, float, int, int]], radius: float) -> Iterator[str]:
+    handle = radius * _ROUND
+    for place, (x, y, dx, dy) in enumerate(corners):
+        # from (dx, dy) a quarter further on to (-dy, dx)
+        start_x, start_y, end_x, end_y = x + radius * dx, y + radius * dy, x - radius * dy, y + radius * dx
+        yield f"{start_x:.3f} {start_y:.3f} {'l' if place else 'm'}"
+        yield (
+            f"{start_x - handle * dy:.3f} {start_y + handle * dx:.3f} {end_x + handle * dx:.3f}"
+            f" {end_y + handle * dy:.3f} {end_x:.3f} {end_y:.3f} c"
+        )
+
+
+def _corners(poly: Poly, height: float) -> str:
+    strokes = (f"{x:.3f} {height - y:.3f} {'l' if place else 'm'}" for place, (x, y) in enumerate(poly.points))
+    return " ".join(strokes) + (" h" if poly.fill is not None else "")
+
+
+def _write(canvas: Any, inks: _Inks, lettering: Lettering, text: Text, height: float) -> None:
     """One text object for the whole line, so that it is read back as one; accents set over their letters."""
     pieces = list(lettering.pieces(text.text, text.weight))
     if not pieces:
         return
+    for name in {piece.font.name for piece in pieces}:
+        make_known(name)
+    inks.fill(text.tone)
     font = pieces[0].font
-    canvas.setFont(font.name, text.size * font.scale)
-    written = canvas.beginText(text.x, PAGE_HEIGHT - text.y)
+    if inks.font != (font.name, text.size):
+        canvas.setFont(font.name, text.size * font.scale)
+        inks.font = (font.name, text.size)
+    left = text.x if text.anchor is Anchor.START else text.left(lettering.width(text.text, text.size, text.weight))
+    written = canvas.beginText(left, height - text.y)
     space = rise = 0.0
     for piece in pieces:
         if piece.font is not font:
@@ -63,7 +172,8 @@ def _write(canvas: Any, lettering: Lettering, text: Text) -> None:
     canvas.drawText(written)
 
 
-def _colour(tone: Tone) -> Any:
-    from reportlab.lib.colors import HexColor
-
-    return HexColor(tone.value)
+@cache
+def _colour(tone: Tone) -> str:
+    """Red, green and blue from 0 to 1, as the operators of a page take them."""
+    digits = PAPER[tone].removeprefix("#")
+    return " ".join(f"{int(digits[place : place + 2], 16) / 255:.4f}" for place in (0, 2, 4))

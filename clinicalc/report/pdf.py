@@ -4,25 +4,19 @@ import os
 import stat
 import tempfile
 from collections.abc import Iterator
-from contextlib import suppress
-from dataclasses import fields, is_dataclass
-from datetime import UTC, datetime
+from contextlib import contextmanager, suppress
+from datetime import datetime
 from pathlib import Path
 from typing import Any
 
 from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
-from clinicalc.errors import FileNotWritten, PrintRefused, UsageError
+from clinicalc.errors import FileNotWritten
 from clinicalc.report.attachment import attach_record
-from clinicalc.report.compose import compose
-from clinicalc.report.contents import Sheet
-from clinicalc.report.fonts import Lettering, check_text, read_lettering
-from clinicalc.report.pages import PAGE_HEIGHT, PAGE_WIDTH, lay_out
+from clinicalc.report.document import Document, make_document
 from clinicalc.report.painter import paint_pages
-from clinicalc.report.typefaces import Weight
-
-LONGEST_NAME = 120
-"""Characters of a patient label or a practice name; more would push the result off its page."""
+from clinicalc.report.paper import Paper
+from clinicalc.report.typefaces import Weight, make_known
 
 _PDF_BEGINS = b"%PDF-"
 _KINDS = {
@@ -35,25 +29,35 @@ _KINDS = {
 }
 
 
-def make_report(assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None) -> bytes:
-    """The PDF (1.7, A4) of an assessment, its record attached.
+def make_report(
+    assessment: Assessment,
+    *,
+    practice: str = "",
+    printed_at: datetime | None = None,
+    patient_page: bool = True,
+    paper: Paper = Paper.A4,
+) -> bytes:
+    """The PDF (1.7) of an assessment, its record attached; `patient_page` adds a page in plain words at its end.
 
     `printed_at` stands in the foot and in the file's dates; left out, it is the time in SOURCE_DATE_EPOCH (seconds) or
-    else now. The same assessment, practice and time give the same bytes. Raises PrintRefused for a text that could
-    only be shown wrongly.
+    else now. The same assessment, practice, time and choices give the same bytes. Raises PrintRefused for a text that
+    could only be shown wrongly.
     """
-    lettering = read_lettering()
-    _check_name(lettering, assessment.label.strip(), "The patient label")
-    _check_name(lettering, practice.strip(), "The practice name")
-    now = time_of_printing()  # asked for in any case: the PDF library reads the same variable
-    moment = printed_at or now
-    sheet = compose(assessment, practice=practice, printed_at=moment)
-    for text in _texts(sheet):
-        check_text(lettering, text, f"A text on the print, from {assessment.model.name} or as typed,")
-    return _write_pdf(lettering, sheet, moment, write_record(assessment))
+    document = make_document(
+        assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=paper
+    )
+    return _write_pdf(document, write_record(assessment))
 
 
-def save_report(path: Path, assessment: Assessment, *, practice: str = "", printed_at: datetime | None = None) -> None:
+def save_report(
+    path: Path,
+    assessment: Assessment,
+    *,
+    practice: str = "",
+    printed_at: datetime | None = None,
+    patient_page: bool = True,
+    paper: Paper = Paper.A4,
+) -> None:
     """Writes the PDF to `path`, whole or not at all; an older file stays untouched until the new one is complete.
 
     The new file can be read by the person who saved it, and by others only where the folder's own rules say so.
@@ -61,7 +65,7 @@ def save_report(path: Path, assessment: Assessment, *, practice: str = "", print
     Raises FileNotWritten when the place cannot be written, when the name does not end in .pdf, and when anything but a
     PDF stands there already (a folder, a device, a link, a file of another kind); PrintRefused as `make_report` does.
     """
-    content = make_report(assessment, practice=practice, printed_at=printed_at)
+    content = make_report(assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=paper)
     try:
         fault = _judge_target(path)
         if fault:
@@ -115,68 +119,45 @@ def _replace_file(path: Path, content: bytes) -> None:
         raise
 
 
-def _check_name(lettering: Lettering, text: str, what: str) -> None:
-    check_text(lettering, text, what)
-    if len(text) > LONGEST_NAME:
-        raise PrintRefused(
-            f"{what} has {len(text)} characters; a print takes at most {LONGEST_NAME}.", do="Shorten it."
-        )
-
-
-def time_of_printing() -> datetime:
-    """Now, or the time in SOURCE_DATE_EPOCH (seconds) for prints that must come out the same again.
-
-    Raises UsageError when that is not a time.
-    """
-    stated = os.environ.get("SOURCE_DATE_EPOCH", "").strip()
-    if not stated:
-        return datetime.now().astimezone()
-    try:
-        return datetime.fromtimestamp(int(stated), UTC)
-    except (ValueError, OverflowError, OSError) as error:
-        raise UsageError(
-            f"the environment variable SOURCE_DATE_EPOCH is {stated!r}, which is not a time in whole seconds.",
-            do="Correct it or leave it out.",
-        ) from error
-
-
-def _texts(node: object) -> Iterator[str]:
-    """Every text in the contents, however deep."""
-    if isinstance(node, str):
-        yield node
-    elif isinstance(node, tuple):
-        for part in node:
-            yield from _texts(part)
-    elif is_dataclass(node):
-        for field in fields(node):
-            yield from _texts(getattr(node, field.name))
-
-
-def _write_pdf(lettering: Lettering, sheet: Sheet, moment: datetime, record: str) -> bytes:
+def _write_pdf(document: Document, record: str) -> bytes:
     from io import BytesIO
 
     from reportlab.pdfgen.canvas import Canvas
 
     target = BytesIO()
+    make_known(Weight.REGULAR.value)
     canvas: Any = Canvas(
         target,
-        pagesize=(PAGE_WIDTH, PAGE_HEIGHT),
         invariant=1,
         pageCompression=1,
         pdfVersion=(1, 7),
         initialFontName=Weight.REGULAR.value,  # else a standard font is referenced without being embedded
         lang="en-GB",
     )
-    canvas.setTitle(sheet.title)
-    canvas.setAuthor(sheet.furniture.practice or sheet.furniture.program)
-    canvas.setCreator(sheet.furniture.program)
+    canvas.setTitle(document.title)
+    canvas.setAuthor(document.author)
+    canvas.setCreator(document.program)
     canvas.setSubject("Assessment of one patient with a clinical risk model")
     canvas.setViewerPreference("DisplayDocTitle", "true")
-    canvas.setDateFormatter(lambda *_: _pdf_date(moment))
-    paint_pages(canvas, lettering, lay_out(lettering, sheet))
+    canvas.setDateFormatter(lambda *_: _pdf_date(document.printed_at))
+    paint_pages(canvas, document.lettering, document.pages)
     attach_record(canvas._doc, record)
-    canvas.save()
+    with _bytes_as_they_are():
+        canvas.save()
     return target.getvalue()
+
+
+@contextmanager
+def _bytes_as_they_are() -> Iterator[None]:
+    """Compressed streams are written as bytes; the library would turn them into letters, a quarter more of them."""
+    from reportlab import rl_config
+
+    before = rl_config.useA85
+    rl_config.useA85 = 0
+    try:
+        yield
+    finally:
+        rl_config.useA85 = before
 
 
 def _pdf_date(moment: datetime) -> str:

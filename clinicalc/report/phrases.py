@@ -2,8 +2,8 @@
 
 from datetime import datetime
 
-from clinicalc.assessment.numerals import NARROW_SPACE, of_people, percent_range
-from clinicalc.assessment.result import Band
+from clinicalc.assessment.numerals import NARROW_SPACE, of_people
+from clinicalc.assessment.result import Assessment, Band
 
 NOT_VETTED = "Not vetted: for trying out, not for a patient"
 
@@ -26,6 +26,10 @@ STANDING_CAUTIONS = (
     " and claims no approval by any authority.",
     "The practice answers for the coefficient file it chose and for the values it typed. Check the values above"
     " against the patient’s notes before relying on the number.",
+)
+
+FIRST_PAGE_CAUTION = (
+    "For qualified clinicians: supports judgement, does not replace it. The practice answers for the file it chose."
 )
 
 _BASES = {
@@ -57,9 +61,21 @@ def level_words(level: float) -> str:
     return f"{100 * level:g}{NARROW_SPACE}%"
 
 
-def band_words(band: Band) -> tuple[str, str]:
-    """The band's figures, and what they were made from."""
-    return percent_range(band.lower, band.upper), _BASES[band.basis]
+def basis_words(band: Band) -> str:
+    """What the band was made from."""
+    return _BASES[band.basis]
+
+
+def outcome_words(outcome: str) -> tuple[str, str]:
+    """The outcome as a headline, and what it is in full: the part before a colon and the part after it."""
+    short, _, detail = outcome.partition(": ")
+    return short, detail
+
+
+def handles_by_censoring(assessment: Assessment) -> bool:
+    """Whether the fit of the equation that answered left people out of account who died of something else first."""
+    equations = assessment.model.content.equations
+    return any(e.id == assessment.equation and e.competing_events.handled == "censored" for e in equations)
 
 
 def people_sentence(probability: float, span: str, *, others_censored: bool) -> str:

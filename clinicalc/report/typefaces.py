@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from enum import StrEnum
 from functools import cache, partial
 
-from clinicalc.report.outlines import Box, read_boxes
+from clinicalc.report.outlines import Box, Boxes, read_advances, read_glyphs
 from clinicalc.resources import read_shipped
 
 
@@ -48,7 +48,7 @@ class Font:
 
     def width(self, text: str) -> float:
         """How wide the text runs, without kerning."""
-        return sum(self.advances[ord(character)] for character in text)
+        return sum(map(self.advances.__getitem__, map(ord, text)))
 
 
 @cache
@@ -83,16 +83,24 @@ def is_lettering(character: str) -> bool:
 
 
 def _read_font(name: str, scale: float, accents: float, offered: Callable[[int], bool]) -> Font:
-    """A shipped font, made known to the PDF library under its name; without the characters that leave no mark."""
+    """A shipped font, without the characters that leave no mark."""
+    content = read_shipped(_file(name))
+    glyphs = {code: glyph for code, glyph in read_glyphs(content).items() if offered(code)}
+    boxes = Boxes(content, glyphs, 1000.0 * scale)
+    shown = {code: glyph for code, glyph in glyphs.items() if code in boxes or unicodedata.category(chr(code)) == "Zs"}
+    return Font(name, scale, accents, read_advances(content, shown, 1000.0 * scale), boxes)
+
+
+@cache
+def make_known(name: str) -> None:
+    """Make a font known to the PDF library under its name; to be called before a print uses it."""
     from io import BytesIO
 
     from reportlab.pdfbase import pdfmetrics
     from reportlab.pdfbase.ttfonts import TTFont
 
-    content = read_shipped(f"resources/fonts/{name}.ttf")
-    font = TTFont(name, BytesIO(content))
-    pdfmetrics.registerFont(font)
-    glyphs = {code: glyph for code, glyph in font.face.charToGlyph.items() if offered(code)}
-    boxes = read_boxes(content, glyphs, 1000.0 * scale)
-    shown = [code for code in glyphs if code in boxes or unicodedata.category(chr(code)) == "Zs"]
-    return Font(name, scale, accents, {code: font.face.getCharWidth(code) * scale for code in shown}, boxes)
+    pdfmetrics.registerFont(TTFont(name, BytesIO(read_shipped(_file(name)))))
+
+
+def _file(name: str) -> str:
+    return f"resources/fonts/{name}.ttf"

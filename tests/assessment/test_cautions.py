@@ -57,7 +57,7 @@ def test_a_coefficient_that_is_multiplied_with_nought_is_not_named() -> None:
 def test_what_the_file_itself_says_stands_beside_every_number(id: str) -> None:
     result = run(id, FULL[id], recalibration="low" if id == "cvd-2021-regional" else None)
     said = [finding.message for finding in about(result, FindingCode.MODEL)]
-    assert said == [f"This model: {caution}" for caution in result.model.content.use.cautions]
+    assert said == [f"About this model: {caution}" for caution in result.model.content.use.cautions]
     assert result.estimate is not None
 
 

@@ -5,6 +5,7 @@ import sys
 from pathlib import Path
 
 import pytest
+from pypdf import PdfReader
 
 from clinicalc.operations.demonstration import DemoCase
 from tests.cli.calling import LIPIDS, WOMAN_61, call, example
@@ -23,6 +24,33 @@ def test_report_writes_the_print_and_says_where(tmp_path: Path) -> None:
     assert ended.status == 0
     assert pdf.read_bytes().startswith(b"%PDF-")
     assert str(pdf) in ended.out
+
+
+@pytest.mark.parametrize(
+    ("words", "size", "pages"),
+    [
+        ((), (595.28, 841.89), 3),  # ISO 216 in points
+        (("--paper", "letter"), (612.0, 792.0), 3),
+        (("--paper", "A4", "--no-patient-page"), (595.28, 841.89), 2),
+    ],
+)
+def test_report_takes_the_paper_and_leaves_the_patients_page_out(
+    tmp_path: Path, words: tuple[str, ...], size: tuple[float, float], pages: int
+) -> None:
+    pdf = tmp_path / "print.pdf"
+    assert call("report", LIPIDS, *WOMAN_61, "--out", str(pdf), *words).status == 0
+    read = PdfReader(pdf).pages
+    assert len(read) == pages
+    assert all((float(page.mediabox.width), float(page.mediabox.height)) == pytest.approx(size) for page in read)
+    assert ("For the patient" in read[-1].extract_text()) == (pages == 3)
+
+
+def test_report_on_paper_that_it_does_not_know_is_answered_in_words(tmp_path: Path) -> None:
+    ended = call("report", LIPIDS, *WOMAN_61, "--out", str(tmp_path / "print.pdf"), "--paper", "a5")
+    assert ended.status == 2
+    assert "a5" in ended.err
+    assert "letter" in ended.err
+    assert ended.out == ""
 
 
 def test_report_without_a_number_writes_nothing(tmp_path: Path) -> None:

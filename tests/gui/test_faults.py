@@ -118,7 +118,7 @@ def test_fault_while_opening_a_file(qtbot: QtBot, hooked: MainWindow, tmp_path: 
 
     window = MainWindow(hooked.state, choose_open=break_down)
     qtbot.addWidget(window)
-    window.model_bar.open_button.click()
+    window.model_bar.chooser.open_action.trigger()
     assert_blank(hooked)
 
 

@@ -61,8 +61,8 @@ def test_opening_another_file_leaves_nothing_of_the_last_patient(
 ) -> None:
     dialogs.open = tmp_path / "regional.json"
     dialogs.open.write_bytes(read_shipped("example_models/cvd-2021-regional.json"))
-    click(with_number.model_bar.open_button)
-    assert with_number.model_bar.title.text() == "Cardiovascular disease, regional form"
+    with_number.model_bar.chooser.open_action.trigger()
+    assert with_number.model_bar.chooser.title == "Cardiovascular disease, regional form"
     assert with_number.sheet.number.figure == ""
     assert dict(with_number.state.entry.typed) == {}
     assert with_number.state.entry.label == ""
@@ -74,7 +74,7 @@ def test_refused_file_is_explained_and_covers_the_number(
 ) -> None:
     dialogs.open = tmp_path / "broken.json"
     dialogs.open.write_text('{"format": "<b>x</b>", "model": {"id": "A"}}')
-    click(with_number.model_bar.open_button)
+    with_number.model_bar.chooser.open_action.trigger()
     assert with_number.refusal.isVisible()
     assert not with_number.sheet.isVisible()
     assert not with_number.foot.save_pdf.isEnabled()
@@ -87,12 +87,12 @@ def test_refused_file_is_explained_and_covers_the_number(
     click(with_number.refusal.back)
     assert with_number.sheet.isVisible()
     assert with_number.sheet.number.figure == "10.5"
-    assert with_number.model_bar.title.text() == "General cardiovascular disease, lipid form"
+    assert with_number.model_bar.chooser.title == "General cardiovascular disease, lipid form"
 
 
 def test_file_that_is_not_there(qtbot: QtBot, with_number: MainWindow, dialogs: Dialogs, tmp_path: Path) -> None:
     dialogs.open = tmp_path / "nowhere.json"
-    click(with_number.model_bar.open_button)
+    with_number.model_bar.chooser.open_action.trigger()
     assert with_number.refusal.isVisible()
     assert with_number.refusal.problems.toPlainText() != ""
 

@@ -4,11 +4,11 @@ from collections.abc import Callable
 
 import pytest
 from PySide6.QtCore import QSize
-from PySide6.QtWidgets import QApplication, QLabel, QWidget
+from PySide6.QtWidgets import QAbstractButton, QApplication, QComboBox, QLabel, QLineEdit, QWidget
 
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
-from clinicalc.gui.main_window import SMALLEST, MainWindow
+from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
 from clinicalc.gui.segments import Segment
 from clinicalc.operations.bedside import open_example
 from clinicalc.resources import list_example_models
@@ -55,3 +55,25 @@ def test_nothing_is_cut_off(open_window: Callable[[Model | None], MainWindow], n
     for segment in window.findChildren(Segment):
         assert segment.width() >= segment.fontMetrics().horizontalAdvance(segment.option.label), segment.option
         assert segment.height() >= 24
+
+
+@pytest.mark.parametrize("size", [QSize(1280, 800), SMALLEST, NARROWEST], ids=["usual", "smallest", "narrowest"])
+def test_nothing_to_press_is_under_24_pixels(open_window: Callable[[Model | None], MainWindow], size: QSize) -> None:
+    """WCAG 2.2, 2.5.8: targets of 24 by 24 pixels."""
+    window = open_window(open_example("cvd-2021-regional.json"))
+    window.resize(size)
+    typed = dict.fromkeys(window.values.rows, "5.2") | {"sex": "female", "smoker": "yes", "prior_cvd": "yes"}
+    assert window.state.model is not None
+    window.use_model(window.state.model, entry_from_texts(typed, "Ottilie Fenn"))
+    for id in ("age", "total_cholesterol"):  # the second shows its date field
+        window.values.focus_field(id)
+        QApplication.processEvents()
+        targets = [
+            target
+            for kind in (QAbstractButton, QLineEdit, QComboBox)
+            for target in window.findChildren(kind)
+            if target.isVisible() and not target.objectName().startswith("qt_")
+        ]
+        assert len(targets) > 20
+        small = [(type(t).__name__, t.accessibleName(), t.size()) for t in targets if min(t.width(), t.height()) < 24]
+        assert small == []

@@ -61,8 +61,7 @@ def test_markup_is_shown_letter_for_letter(
     qtbot: QtBot, open_window: Callable[[Model | None], MainWindow], marked_up: Model
 ) -> None:
     window = open_window(marked_up)
-    assert window.model_bar.title.text() == MARKUP
-    assert window.model_bar.title.textFormat() is Qt.TextFormat.PlainText
+    assert window.model_bar.chooser.title == MARKUP
     assert window.sheet.headline.text() == "No number yet"
     assert window.sheet.outcome.text() == f"Event: {MARKUP}."
     assert MARKUP in [label.text() for label in window.values.findChildren(QLabel)]
@@ -97,6 +96,9 @@ def test_labels_are_buddies_of_their_fields(window: MainWindow) -> None:
 def test_access_letters_do_not_clash(window: MainWindow) -> None:
     texts = [b.text() for b in window.findChildren(QPushButton) if b.isVisible()]
     texts += [label.text() for label in window.findChildren(QLabel) if label.buddy() is not None]
+    open_file = window.model_bar.chooser.open_action
+    assert "Alt+O" in [keys.toString() for keys in open_file.shortcuts()]
+    texts.append(open_file.text())
     letters = [
         text.replace("&&", "")[text.replace("&&", "").index("&") + 1].lower()
         for text in texts

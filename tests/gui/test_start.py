@@ -4,6 +4,7 @@ import importlib.util
 import os
 import subprocess
 import sys
+from pathlib import Path
 
 import pytest
 
@@ -14,8 +15,8 @@ pytestmark = pytest.mark.gui
 HEAVY = ("pandas", "scipy", "statsmodels", "reportlab")
 
 
-def run_python(program: str) -> subprocess.CompletedProcess[str]:
-    environment = os.environ | {"QT_QPA_PLATFORM": "offscreen"}
+def run_python(program: str, **variables: str) -> subprocess.CompletedProcess[str]:
+    environment = os.environ | {"QT_QPA_PLATFORM": "offscreen"} | variables
     return subprocess.run(
         [sys.executable, "-c", program], capture_output=True, text=True, env=environment, timeout=120, check=False
     )
@@ -48,7 +49,7 @@ print(window.sheet.number.figure, [m for m in {HEAVY!r} if m in sys.modules])
     assert run_python(program).stdout.strip() == "10.5 []"
 
 
-def test_window_opens_on_a_patient_and_closes() -> None:
+def test_window_opens_on_a_patient_and_closes(tmp_path: Path) -> None:
     program = """
 import sys
 from PySide6.QtCore import QTimer
@@ -65,7 +66,8 @@ QTimer.singleShot(100, look)
 case = demo_case()
 print(run_window(case.model, case.entry))
 """
-    done = run_python(program)
+    # a runtime folder of its own: another window open on this machine would make this one the second
+    done = run_python(program, XDG_RUNTIME_DIR=str(tmp_path), CLINICALC_SETTINGS=str(tmp_path))
     title, _, rest = done.stdout.partition("|")
     assert title.startswith("Patient: ")
     assert rest.split() == ["True", "ExceptionHook", "0"]

@@ -162,7 +162,7 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
     fill_2008(window)
     window.values.focus_first()
     names = []
-    for _ in range(20):
+    for _ in range(30):
         focused = QApplication.focusWidget()
         assert focused is not None
         names.append(focused.accessibleName() or getattr(focused, "text", str)())
@@ -174,15 +174,20 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
         "Sex: Female",
         "Total cholesterol",
         "Total cholesterol, unit",
+        "Total cholesterol, date",
         "HDL cholesterol",
         "HDL cholesterol, unit",
+        "HDL cholesterol, date",
         "Systolic blood pressure",
         "Systolic blood pressure, unit",
         "Takes tablets for blood pressure: No",
         "Smokes now: Yes",
         "Has diabetes: No",
         "Name or number",
+        "Charts as text",
         "&New patient",
+        "Copy",
+        "P&rint…",
         "Sa&ve PDF…",
     ]
 

@@ -63,7 +63,7 @@ def write_name(name: str) -> None:
 
 def test_from_the_file_to_the_print(window: MainWindow, tmp_path: Path) -> None:
     enter = Qt.Key.Key_Return
-    click(window.model_bar.open_button)
+    window.model_bar.chooser.open_action.trigger()
     assert window.sheet.headline.text() == "No number yet"
     hands("n", enter, "61", enter, Qt.Key.Key_Left, enter)
     hands("142", enter, "n", enter, "201 mg/dL", enter, "1.3", enter, Qt.Key.Key_Right, enter, "n", enter)

@@ -21,9 +21,10 @@ def woman_61(**changed: str) -> Assessment:
 
 def test_every_value_stands_as_typed_with_its_unit_and_as_used() -> None:
     text = text_of(printed(without_band()))
-    assert "Age 55 years 55 years" in text
+    assert (
+        "derivation range Age 55 years Sex Male Takes tablets No Total" in text
+    )  # typed in the file's own unit: said once
     assert "Total cholesterol 200 mg/dL, of 2 October 2026 5.172 mmol/L" in text  # 200 * 0.02586
-    assert "Takes tablets No No" in text
 
 
 def test_a_shipped_model_prints_every_line_of_its_assessment() -> None:
@@ -31,7 +32,7 @@ def test_a_shipped_model_prints_every_line_of_its_assessment() -> None:
     text = text_of(printed(assessment))
     assert assessment.values
     for line in assessment.values:
-        used = "" if line.exclusion else f" {line.used}"
+        used = "" if line.used == line.shown else f" {line.used}"
         assert f"{line.label} {line.shown}{used}" in text
     for finding in assessment.findings:
         assert finding.message in text
@@ -39,7 +40,7 @@ def test_a_shipped_model_prints_every_line_of_its_assessment() -> None:
 
 def test_the_number_is_said_as_a_percentage_and_in_people() -> None:
     pages = pages_of(printed(with_band()))
-    assert "Probability 18.2\u202f% within 10 years" in pages[0]
+    assert "18.2\u202f% An invented event within 10 years" in pages[0]
     assert "Of 100 people with these values, about 18 have the event within 10 years and about 82 do not." in pages[0]
 
 
@@ -62,7 +63,9 @@ def test_the_band_stands_with_its_level_and_its_meaning() -> None:
 
 
 def test_without_a_band_the_reason_stands_in_its_place() -> None:
-    assert "95\u202f% band No band It is invented." in text_of(printed(without_band()))
+    text = text_of(printed(without_band()))
+    assert "95\u202f% band no band % within 10 years" in text
+    assert "No band: It is invented." in text
 
 
 def test_the_recalibration_is_named_or_said_to_be_none() -> None:
@@ -83,7 +86,7 @@ def test_findings_carry_number_grade_and_text_and_are_named_at_their_value() -> 
 
 def test_a_derived_value_says_whether_it_was_typed_or_worked_out() -> None:
     typed = run("total-cvd-2024-base", WOMAN_EGFR_90)
-    assert "eGFR 90 mL/min/1.73 m² (typed) 90 mL/min/1.73 m²" in text_of(printed(typed))
+    assert "eGFR 90 mL/min/1.73 m² (typed) Non-HDL" in text_of(printed(typed))
     computed = run("total-cvd-2024-base", WOMAN_EGFR_90, egfr="", creatinine="0.9 mg/dL")
     assert re.search(r"eGFR worked out [0-9.]+ mL/min/1.73 m²", text_of(printed(computed)))
 
@@ -109,9 +112,10 @@ def test_the_model_is_identified_whole() -> None:
 def test_every_page_says_which_page_which_model_and_that_it_is_not_vetted() -> None:
     assessment = woman_61()
     pages = pages_of(printed(assessment))
-    assert len(pages) == 2
-    for number, page in enumerate(pages, 1):
-        assert f"page {number} of 2" in page
+    readers = ["clinician", "clinician", "patient"]
+    assert len(pages) == len(readers)
+    for number, (reader, page) in enumerate(zip(readers, pages, strict=True), 1):
+        assert f"For the {reader}, page {number} of 3" in page
         assert NOT_VETTED in page
         assert f"{assessment.model.content.title} {assessment.model.content.version}" in page
         assert group_fingerprint(assessment.model.fingerprint, 3) in page
@@ -126,6 +130,13 @@ def test_practice_time_cautions_and_signature_stand_there() -> None:
     assert "For qualified clinicians only." in text
     assert "not for emergencies" in text
     assert "Practitioner’s signature Name Date" in text
+
+
+def test_the_first_page_carries_the_whole_fingerprint_and_whom_the_number_is_for() -> None:
+    assessment = woman_61()
+    first = pages_of(printed(assessment))[0]
+    assert f"Fingerprint {group_fingerprint(assessment.model.fingerprint)}" in first
+    assert "For qualified clinicians: supports judgement, does not replace it." in first
 
 
 def test_a_stopped_assessment_prints_no_percentage() -> None:
@@ -145,5 +156,5 @@ def test_the_ends_are_never_nought_or_a_hundred(intercept: float, wanted: str) -
     horizon = msgspec.structs.replace(content.equations[0].horizons[0], intercept=intercept)
     equation = msgspec.structs.replace(content.equations[0], horizons=(horizon,))
     text = text_of(printed(with_band(content=msgspec.structs.replace(content, equations=(equation,)))))
-    assert f"Probability {wanted} within 10 years" in text
+    assert f"{wanted} An invented event within 10 years" in text
     assert "fewer than 1 ha" in text

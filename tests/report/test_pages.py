@@ -8,10 +8,13 @@ from clinicalc.report.compose import compose
 from clinicalc.report.contents import Column, Row, Table
 from clinicalc.report.fonts import read_lettering
 from clinicalc.report.pages import MARGIN, PAGE_HEIGHT, Page, break_pages, lay_out
-from clinicalc.report.shapes import Line, Rect, Text, Tone, hatch
-from clinicalc.report.typeset import WIDTH, Strip, set_block
+from clinicalc.report.shapes import Anchor, Dot, Line, Poly, Rect, Text, Tone, hatch
+from clinicalc.report.strips import WIDTH, Strip
+from clinicalc.report.typeset import set_block
 from tests.coefficients.tiny_model import tiny_logit_model
 from tests.report.printing import PRACTICE, PRINTED, pages_of, printed, with_band
+
+OVERHANG = 12.0
 
 
 def long_model() -> ModelContent:
@@ -41,26 +44,42 @@ def test_nothing_is_painted_outside_the_margins(content: ModelContent, label: st
         for shape in page.shapes:
             match shape:
                 case Text():
-                    right = shape.x + lettering.width(shape.text, shape.size, shape.weight)
+                    wide = lettering.width(shape.text, shape.size, shape.weight)
+                    left, right = shape.left(wide), shape.left(wide) + wide
                     top, bottom = shape.y - shape.size, shape.y
                 case Line():
-                    right, top, bottom = shape.to_x, min(shape.y, shape.to_y), max(shape.y, shape.to_y)
+                    left, right = shape.x, shape.to_x
+                    top, bottom = min(shape.y, shape.to_y), max(shape.y, shape.to_y)
                 case Rect():
-                    right, top, bottom = shape.x + shape.width, shape.y, shape.y + shape.height
-            assert MARGIN - 0.01 <= shape.x <= right <= MARGIN + WIDTH + 0.01
+                    left, right = shape.x, shape.x + shape.width
+                    top, bottom = shape.y, shape.y + shape.height
+                case Dot():
+                    left, right = shape.x - shape.radius, shape.x + shape.radius
+                    top, bottom = shape.y - shape.radius, shape.y + shape.radius
+                case Poly():
+                    left, right = min(x for x, _ in shape.points), max(x for x, _ in shape.points)
+                    top, bottom = min(y for _, y in shape.points), max(y for _, y in shape.points)
+            # the axis ends at the margin: its last figure stands on its end, a pointer beyond it
+            hangs_over = (isinstance(shape, Text) and shape.anchor is Anchor.MIDDLE) or isinstance(shape, Poly)
+            spare = OVERHANG if hangs_over else 0.01
+            assert MARGIN - spare <= left <= right <= MARGIN + WIDTH + spare
             assert 30 <= top <= bottom <= PAGE_HEIGHT - 30
 
 
 def test_no_two_lines_of_text_lie_on_each_other() -> None:
     lettering = read_lettering()
+
+    def ends(text: Text) -> tuple[float, float]:
+        wide = lettering.width(text.text, text.size, text.weight)
+        return text.left(wide), text.left(wide) + wide
+
     for page in laid_out(long_model(), "Żółć Őry " * 13):
         texts = [shape for shape in page.shapes if isinstance(shape, Text)]
         for place, one in enumerate(texts):
             for other in texts[place + 1 :]:
                 apart = abs(one.y - other.y) >= 0.7 * min(one.size, other.size)
-                left, right = sorted((one, other), key=lambda text: text.x)
-                beside = left.x + lettering.width(left.text, left.size, left.weight) <= right.x + 0.01
-                assert apart or beside, (one, other)
+                (_, end), (start, _) = sorted((ends(one), ends(other)))
+                assert apart or end <= start + 0.01, (one, other)
 
 
 def test_long_tables_and_cautions_come_back_whole() -> None:
@@ -73,10 +92,11 @@ def test_long_tables_and_cautions_come_back_whole() -> None:
         assert f"end {number}." in text
     continued = [page for page in pages if "Question 20 with" in page or "Question 45 with" in page]
     assert continued
-    assert all("as typed as used, in the file’s unit finding" in page for page in continued)
-    assert f"page {len(pages)} of {len(pages)}" in pages[-1]
-    assert "Practitioner’s signature" in pages[-1]
-    assert "For qualified clinicians only." in pages[-1]  # what is signed stands on the page of the signature
+    assert all("typed in the file’s unit, if another derivation range" in page for page in continued)
+    *clinical, for_patient = pages
+    assert f"For the patient, page {len(pages)} of {len(pages)}" in for_patient
+    assert "Practitioner’s signature" in clinical[-1]
+    assert "For qualified clinicians only." in clinical[-1]  # what is signed stands on the page of the signature
 
 
 def test_held_strips_go_over_together_and_white_does_not_open_a_page() -> None:
@@ -85,6 +105,15 @@ def test_held_strips_go_over_together_and_white_does_not_open_a_page() -> None:
     first, second = break_pages(strips, (100.0, 100.0))
     assert first == strips[:1]
     assert second == strips[2:]
+
+
+def test_what_is_kept_off_the_first_page_begins_the_second_or_goes_on_where_that_is() -> None:
+    text = (Text(0, 8, "x", 10),)
+    apart = Strip(20, text, off_first=True)
+    short = list(break_pages([Strip(60, text), apart, apart], (100.0, 100.0)))
+    assert short == [[Strip(60, text)], [apart, apart]]
+    long = list(break_pages([Strip(60, text), Strip(60, text), apart], (100.0, 100.0)))
+    assert long == [[Strip(60, text)], [Strip(60, text), apart]]
 
 
 def test_a_held_run_higher_than_a_page_is_parted() -> None:

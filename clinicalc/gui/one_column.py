@@ -1,0 +1,85 @@
+"""One column for narrow windows and large text: the panes stand under each other and scroll as one."""
+
+from collections.abc import Sequence
+
+from PySide6.QtCore import QEvent, QObject, QPoint, Qt
+from PySide6.QtGui import QResizeEvent
+from PySide6.QtWidgets import QApplication, QScrollArea, QVBoxLayout, QWidget
+
+_LARGEST = 16_777_215
+"""What Qt calls no limit to a height."""
+_BORDER = 4
+
+
+class OneColumn(QScrollArea):
+    """Holds the panes while the window is narrow, each as high as its content, and follows the focus."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._areas: tuple[QScrollArea, ...] = ()
+        self.setWidgetResizable(True)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOn)
+        self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+        body = QWidget()
+        body.setObjectName("ground")
+        self._column = QVBoxLayout(body)
+        self._column.setContentsMargins(0, 0, 0, 0)
+        self._column.setSpacing(0)
+        self.setWidget(body)
+        application = QApplication.instance()
+        if isinstance(application, QApplication):
+            application.focusChanged.connect(self._follow_focus)
+
+    def take(self, panes: Sequence[QWidget], areas: tuple[QScrollArea, ...]) -> None:
+        """Put the panes under each other; `areas` are the scroll areas among or within them."""
+        for pane in panes:
+            self._column.addWidget(pane)
+        self._areas = areas
+        for area in areas:
+            area.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.fit()
+
+    def let_go(self) -> None:
+        """The panes go elsewhere and scroll apart again."""
+        for area in self._areas:
+            area.setMinimumHeight(0)
+            area.setMaximumHeight(_LARGEST)
+            area.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAsNeeded)
+        self._areas = ()
+
+    def fit(self) -> None:
+        """Make every area as high as its content, now and whenever its content changes."""
+        for area in self._areas:
+            body = area.widget()
+            layout = None if body is None else body.layout()
+            if body is None or layout is None:
+                continue
+            body.installEventFilter(self)
+            width = area.width() - _BORDER
+            wanted = (
+                layout.totalHeightForWidth(width) if layout.hasHeightForWidth() else layout.totalSizeHint().height()
+            )
+            if area.height() != wanted + _BORDER:
+                area.setFixedHeight(wanted + _BORDER)
+
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
+        """The content of an area asks for another layout."""
+        if event.type() == QEvent.Type.LayoutRequest and self._areas:
+            self.fit()
+        return super().eventFilter(watched, event)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Other widths make other heights."""
+        super().resizeEvent(event)
+        self.fit()
+        self._follow_focus(None, QApplication.focusWidget())
+
+    def _follow_focus(self, _: QWidget | None, now: QWidget | None) -> None:
+        body = self.widget()
+        if now is None or body is None or not self._areas or not body.isAncestorOf(now):
+            return
+        if now.height() > self.viewport().height():
+            self.verticalScrollBar().setValue(now.mapTo(body, QPoint(0, 0)).y())
+        else:
+            self.ensureWidgetVisible(now, 0, 24)

@@ -1,0 +1,220 @@
+"""In 100 people: the probability as large dots with both counts, and the figures of every chart as text."""
+
+from collections.abc import Sequence
+
+from PySide6.QtCore import QSize, Qt
+from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen, QResizeEvent
+from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QPlainTextEdit, QToolButton, QVBoxLayout, QWidget
+
+from clinicalc.assessment.numerals import of_people
+from clinicalc.assessment.result import Assessment, Band
+from clinicalc.gui import theme
+from clinicalc.gui.figure_view import FigureView, table_lines, text_part
+from clinicalc.gui.labels import Heading, make_label, make_line
+from clinicalc.gui.lanes import RULER_AT, set_ink
+from clinicalc.gui.typeface import CAPTION, HEADLINE, face
+from clinicalc.report.dots import DOT, draw_people
+from clinicalc.report.shapes import Figure
+
+EMPTY = "The picture stands here when there is a number."
+_OPEN = "Charts as text"
+_COUNT = 44
+_LINK_HEIGHT, _LINK_PADDING = 24, 4
+_DROP = 8.0
+"""The dots stand as low as the digits beside them."""
+_GAP, _UNDER = 24, 10
+_AROUND_TEXT = 30
+"""Frame, padding and margins of the table, above and below together."""
+
+
+class PeopleView(QWidget):
+    """Under 1 % (and over 99 %) the people are 1000, and picture and counts change places: 1000 dots need the room."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.heading = Heading("In 100 people")
+        self.as_text = TextLink(_OPEN)
+        self.text = QPlainTextEdit()
+        self.text.setReadOnly(True)
+        self.text.setAccessibleName(_OPEN)
+        self.text.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.text.setTabChangesFocus(True)
+        self.empty = make_label(EMPTY, soft=True)
+        self.dots = FigureView(drop=_DROP * text_part())
+        self.counts = QWidget()
+        self.have_count, self.have = make_line("", _COUNT), make_label("", HEADLINE)
+        self.rest_count, self.rest = make_line("", _COUNT), make_label("", HEADLINE)
+        self.explained = make_label()
+        self._probability: float | None = None
+        self._figures: tuple[Figure, ...] = ()
+        self._lay_out()
+        self.as_text.clicked.connect(self.toggle_text)
+        self.show_assessment(None, ())
+
+    def show_assessment(self, assessment: Assessment | None, others: Sequence[Figure], *, vetted: bool = False) -> None:
+        """Show the people of an assessment, or say that there are none; `others` are the charts above this one."""
+        estimate = None if assessment is None else assessment.estimate
+        self._probability = None if estimate is None else estimate.probability
+        self.empty.setVisible(estimate is None)
+        self.dots.setVisible(estimate is not None)
+        self.counts.setVisible(estimate is not None)
+        self.explained.setVisible(estimate is not None)
+        if assessment is not None and estimate is not None and assessment.span is not None:
+            count, whole = of_people(estimate.probability)
+            outcome = f"{assessment.model.content.use.plain.outcome} within {assessment.span.words}"
+            self.heading.label.setText(f"In {whole} people")
+            self._say_counts(count, whole, outcome, rare=estimate.probability < 0.5)
+            self.explained.setText(explain_people(whole, estimate.band))
+            set_ink(self.have_count, "accent" if vetted else "soft")
+            self._place(whole)
+        else:
+            self.heading.label.setText("In 100 people")
+            for label in (self.have_count, self.have, self.rest_count, self.rest, self.explained):
+                label.clear()  # nothing of a number that is no longer there, not even out of sight
+        self._figures = tuple(others)
+        self._draw()
+
+    def toggle_text(self) -> None:
+        """Open or close the table of every chart of the sheet."""
+        self.text.setVisible(self.text.isHidden())
+        self.as_text.say(_OPEN if self.text.isHidden() else "Close the text")
+        self._write_text()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """1000 dots take the room there is."""
+        super().resizeEvent(event)
+        self._draw()
+
+    def _lay_out(self) -> None:
+        head = QHBoxLayout()
+        head.setSpacing(10)
+        head.addWidget(self.heading, 1)
+        head.addWidget(self.as_text)
+        self._rows = QGridLayout(self.counts)
+        self._rows.setContentsMargins(0, 0, 0, 0)
+        self._rows.setHorizontalSpacing(16)
+        self._rows.setVerticalSpacing(2)
+        self.explained.setContentsMargins(0, 10, 0, 0)
+        self._grid = QGridLayout()
+        self._grid.setContentsMargins(0, 0, 0, 0)
+        self._grid.setSpacing(0)
+        self._grid.setColumnMinimumWidth(0, round(RULER_AT * text_part()))
+        self._grid.setColumnStretch(1, 1)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(4)
+        column.addLayout(head)
+        column.addWidget(self.text)
+        column.addWidget(self.empty)
+        column.addLayout(self._grid)
+        self.text.hide()
+        self._whole = 0
+        self._place(100)
+
+    def _place(self, whole: int) -> None:
+        """Counts beside their words and right of the picture; left of 1000 people, and over their words."""
+        if whole == self._whole:
+            return
+        self._whole = whole
+        beside = whole == 100
+        top = Qt.AlignmentFlag.AlignTop
+        for widget in (self.dots, self.counts, self.explained):
+            self._grid.removeWidget(widget)
+        self._grid.addWidget(self.dots, 0, 0 if beside else 1, 2 if beside else 1, 1, top)
+        self._grid.addWidget(self.counts, 0, 1 if beside else 0, 1 if beside else 2, 1, top)
+        self._grid.addWidget(self.explained, 1, 1, top)
+        pairs = ((self.have_count, self.have), (self.rest_count, self.rest))
+        for place, (count, words) in enumerate(pairs):
+            for widget in (count, words):
+                self._rows.removeWidget(widget)
+            # beside a count the words stand on its baseline
+            lower = count.fontMetrics().ascent() - words.fontMetrics().ascent() if beside else 0
+            words.setContentsMargins(0, lower, 0, 0 if beside else _UNDER)
+            self._rows.addWidget(count, place if beside else 2 * place, 0, top)
+            self._rows.addWidget(words, place if beside else 2 * place + 1, 1 if beside else 0, top)
+        self._rows.setColumnStretch(0 if beside else 1, 0)
+        self._rows.setColumnStretch(1 if beside else 0, 1)
+        self.counts.setContentsMargins(0, 0, 0 if beside else _GAP, 0)
+
+    def _draw(self) -> None:
+        part = text_part()
+        if self._probability is None:
+            self.dots.show_figure(None)
+        else:
+            room = max(100.0, self.width() - RULER_AT * part)
+            self.dots.show_figure(draw_people(self._probability, DOT * part, room))
+            self.dots.setFixedHeight(self.dots.sizeHint().height())  # the width stays free, or no window could shrink
+        self._write_text()
+
+    def _say_counts(self, count: int | None, whole: int, outcome: str, *, rare: bool) -> None:
+        few, most = "<1", f">{whole - 1}"
+        if count is None:
+            have, rest = (few, most) if rare else (most, few)
+        else:
+            have, rest = str(count), str(whole - count)
+        self.have_count.setText(have)
+        self.have.setText(f"{'has' if have in ('1', few) else 'have'} {outcome}")
+        self.rest_count.setText(rest)
+        self.rest.setText("does not" if rest in ("1", few) else "do not")
+
+    def _write_text(self) -> None:
+        """Fill the table while it is open; closed, it would only cost time at every key."""
+        if self.text.isHidden():
+            self.text.clear()
+            return
+        lines = table_lines(self._figures)
+        if self.dots.figure_shown is not None:
+            lines += ["", self.heading.label.text(), *table_lines((self.dots.figure_shown,))]
+        self.text.setPlainText("\n".join(lines))
+        height = self.text.fontMetrics().lineSpacing() * len(lines) + _AROUND_TEXT
+        self.text.setFixedHeight(height)
+
+
+class TextLink(QToolButton):
+    """A quiet button that looks like words: underlined, with a ring when it has the focus."""
+
+    def __init__(self, text: str) -> None:
+        super().__init__()
+        self.setFont(face(CAPTION))
+        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self.say(text)
+
+    def say(self, text: str) -> None:
+        """Other words, and the width they take."""
+        self.setText(text)
+        width = self.fontMetrics().horizontalAdvance(text) + 2 * _LINK_PADDING
+        self.setFixedSize(QSize(width, round(_LINK_HEIGHT * text_part())))
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Enter like the space bar."""
+        if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            self.click()
+            return
+        super().keyPressEvent(event)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """Words, their line, the ring."""
+        tokens = theme.tokens()
+        painter = QPainter(self)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        if self.hasFocus():
+            painter.setPen(QPen(QColor(tokens.accent), 2))
+            painter.drawRoundedRect(self.rect().adjusted(1, 1, -1, -1), 3, 3)
+        font = face(CAPTION)
+        font.setUnderline(True)
+        painter.setFont(font)
+        painter.setPen(QColor(tokens.ink))
+        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignCenter, self.text())
+        painter.end()
+
+
+def explain_people(whole: int, band: Band | None) -> str:
+    """Who the people are, that nobody knows which of them this patient is, and how sure the count is."""
+    who = f"{whole} people with the same values as this patient. Nobody can say which of the {whole} this patient is."
+    if band is None:
+        return f"{who} The file does not say how precisely the count is known."
+    low, high = (round(whole * end) for end in (band.lower, band.upper))
+    room = f"{low} to {high}" if low != high else f"about {low}"
+    if low == 0:
+        room = f"fewer than 1 to {high}" if high else "fewer than 1"
+    return f"{who} How precisely the coefficients are known leaves room for {room}."

@@ -1,0 +1,149 @@
+"""A saved print read back: the record attached to it, the time it was made, the text of its pages."""
+
+import logging
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import dataclass
+from datetime import datetime
+from pathlib import Path
+
+import msgspec
+
+from clinicalc.errors import ClinicalcError
+from clinicalc.report import read_attached_record
+
+LARGEST = 32_000_000
+"""Bytes. A print of this program has less than a hundredth of that."""
+
+
+class RecordedModel(msgspec.Struct, frozen=True):
+    """Which model a record says it was made with."""
+
+    id: str
+    version: str
+    title: str
+    fingerprint: str
+
+
+class RecordedBand(msgspec.Struct, frozen=True):
+    """The band of a record, probabilities 0 to 1."""
+
+    level: float
+    lower: float
+    upper: float
+    basis: str
+
+
+class RecordedValue(msgspec.Struct, frozen=True):
+    """One value, typed or worked out (`typed` is None then), and what was used for it in the file's unit."""
+
+    id: str
+    value: float | str | None
+    unit: str | None
+    typed: str | None = None
+    dated: str | None = None
+
+
+class RecordedFinding(msgspec.Struct, frozen=True):
+    """One finding."""
+
+    grade: str
+    code: str
+    field: str | None
+    message: str
+
+
+class Record(msgspec.Struct, frozen=True):
+    """An assessment as its record holds it (`assessment.record`)."""
+
+    model: RecordedModel
+    years: float | None
+    level: float
+    probability: float | None
+    complement: float | None
+    eta: float | None
+    band: RecordedBand | None
+    band_absent_because: str | None
+    recalibration: str | None
+    values: tuple[RecordedValue, ...]
+    derived: tuple[RecordedValue, ...]
+    findings: tuple[RecordedFinding, ...]
+    time: float | None = None
+    unit: str | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class OldPrint:
+    """A print as it was saved. `made` is None where the file does not say when it was made."""
+
+    name: str
+    record: Record
+    made: datetime | None
+    text: str
+
+
+def read_old_print(path: Path) -> OldPrint:
+    """The print at `path`. Raises ClinicalcError when it cannot be read, is no PDF, or carries no record."""
+    content = _read_bytes(path)
+    with _quiet():
+        try:
+            attached = read_attached_record(content)
+            made, text = _time_and_text(content)
+        except ClinicalcError as error:
+            raise ClinicalcError(error.what, where=path.name, why=error.why, do=error.do) from error
+        except Exception as error:  # a damaged PDF makes its reader raise almost anything
+            raise _unreadable(path, f"It is damaged or no PDF ({type(error).__name__}).") from error
+    try:
+        record = msgspec.json.decode(attached, type=Record)
+    except (msgspec.DecodeError, RecursionError) as error:
+        raise _unreadable(path, f"What is attached to it is not a record of this program ({error}).") from error
+    return OldPrint(path.name, record, made, text)
+
+
+def _read_bytes(path: Path) -> bytes:
+    try:
+        if not path.is_file():
+            raise _unreadable(path, "There is no such file.")
+        with path.open("rb") as file:
+            content = file.read(LARGEST + 1)
+    except (OSError, ValueError) as error:
+        raise _unreadable(path, f"The system says: {error}.") from error
+    if len(content) > LARGEST:
+        raise _unreadable(path, f"It has more than {LARGEST // 1_000_000} MB, and no print is that large.")
+    return content
+
+
+def _time_and_text(content: bytes) -> tuple[datetime | None, str]:
+    from io import BytesIO
+
+    from pypdf import PdfReader
+
+    reader = PdfReader(BytesIO(content))
+    try:
+        made = None if reader.metadata is None else reader.metadata.creation_date
+    except ValueError:  # a date that is none
+        made = None
+    if made is not None and made.tzinfo is None:
+        made = made.astimezone()
+    return made, "\n".join(page.extract_text() for page in reader.pages)
+
+
+@contextmanager
+def _quiet() -> Iterator[None]:
+    """The PDF reader logs each oddity of a damaged file; the one sentence that is raised says enough."""
+    log = logging.getLogger("pypdf")
+    before = log.level
+    log.setLevel(logging.CRITICAL + 1)
+    try:
+        yield
+    finally:
+        log.setLevel(before)
+
+
+def _unreadable(path: Path, why: str) -> ClinicalcError:
+    return ClinicalcError(
+        "no record of an assessment can be read from this file.",
+        where=path.name,
+        why=why,
+        do="Give the PDF as this program saved it.",
+    )

@@ -1,0 +1,207 @@
+"""The ruler: where this patient's number lies, with its band, the re-measurement spread and the decision point.
+
+Everything measured has its own form, lane and name. Nothing is filled from the left end, and the ticks are visibly
+uneven: a place on the ruler is no proportion.
+"""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+
+from clinicalc.report.measured import (
+    DecisionPoint,
+    Interval,
+    Lane,
+    LaneWords,
+    Measured,
+    lane_words,
+    places,
+    ruler_sentence,
+    ruler_table,
+)
+from clinicalc.report.scale import Scale, TickSize, choose_scale
+from clinicalc.report.shapes import Anchor, Figure, Line, Measure, Poly, Rect, Shape, Text, Tone, pointer
+from clinicalc.report.typefaces import Weight
+
+_HEAD = 12.0
+_TICK_HEIGHTS = {TickSize.MAJOR: 9.0, TickSize.MIDDLE: 6.0, TickSize.MINOR: 4.0}
+
+
+@dataclass(frozen=True, slots=True)
+class RulerSize:
+    """Measures of a ruler: `width` of its axis, pitch of its lanes, size of the figures under the axis, thin line.
+
+    All heights follow the lanes, line widths do not: text twice as large leaves them as they are.
+    """
+
+    width: float
+    lane: float = 27.0
+    text: float = 13.0
+    line: float = 1.0
+
+    @property
+    def part(self) -> float:
+        """The lanes by those of the window at its usual text size."""
+        return self.lane / 27.0
+
+    @property
+    def overhang(self) -> float:
+        """What figures and heads may reach beyond both ends of the axis."""
+        return max(self.text, _HEAD * self.part) + 2.0
+
+
+@dataclass(frozen=True, slots=True)
+class Ruler:
+    """The drawing, which begins `overhang` left of the axis, and the words beside it."""
+
+    figure: Figure
+    scale: Scale
+    lanes: tuple[LaneWords, ...]
+    overhang: float
+
+
+def draw_ruler(measured: Measured, size: RulerSize, measure: Measure, lanes: tuple[Lane, ...] = (Lane.BAND,)) -> Ruler:
+    """The ruler with these lanes, whether or not there is something to draw in them, so that nothing moves.
+
+    The figure's `baseline` is that of the figures under the axis.
+    """
+    known = measured.probability is not None
+    scale = choose_scale(measured.link, size.width, *places(measured), left=size.overhang)
+    top = _HEAD * size.part
+    axis = top + _body_height(size, lanes)
+    baseline = axis + 1.3 * size.text
+    middles = {lane: top + size.lane * (place + 0.5) + 0.5 * size.part for place, lane in enumerate(lanes)}
+    shapes = [
+        *_body(scale, top, axis, size, known=known),
+        *_lanes(scale, measured, middles, axis, size, measure),
+        *_hairline(scale, measured.probability, top, axis, size),
+        *_under_the_axis(scale, baseline, size, measure),
+    ]
+    words_beside = tuple(lane_words(lane, measured, middles[lane] + 5.0 * size.part) for lane in lanes)
+    figure = Figure(
+        width=size.width + 2 * size.overhang,
+        height=baseline + (1.6 if scale.wide else 0.3) * size.text,
+        shapes=tuple(shapes),
+        sentence=ruler_sentence(measured, scale.words, words_beside),
+        table=ruler_table(measured, words_beside),
+        baseline=baseline,
+    )
+    return Ruler(figure, scale, words_beside, size.overhang)
+
+
+def _lanes(
+    scale: Scale, measured: Measured, middles: Mapping[Lane, float], axis: float, size: RulerSize, measure: Measure
+) -> Iterator[Shape]:
+    """What stands in each lane; without a number only the decision point, which is not about the patient."""
+    known = measured.probability is not None
+    for lane, middle in middles.items():
+        match lane:
+            case Lane.BAND if known and measured.band is not None:
+                yield from _band(scale, measured.band, middle, size)
+            case Lane.SPREAD if known and measured.spread is not None:
+                yield from _spread(scale, measured.spread, middle, size)
+            case Lane.DECISION if measured.decision is not None:
+                yield from _decision(scale, measured, measured.decision, middle, axis, size, measure)
+            case _:
+                pass
+
+
+def _under_the_axis(scale: Scale, baseline: float, size: RulerSize, measure: Measure) -> Iterator[Text]:
+    """The figures of the axis, and a line that says so where the scale is the wide one."""
+    for label in scale.labels(measure, size.text):
+        yield Text(label.x, baseline, label.text, size.text, tone=Tone.SOFT, anchor=Anchor.MIDDLE)
+    if scale.wide:
+        words = f"wide scale, {scale.words}"
+        yield Text(scale.left, baseline + 1.3 * size.text, words, size.text, Weight.SEMIBOLD)
+
+
+def _body_height(size: RulerSize, lanes: tuple[Lane, ...]) -> float:
+    """All lanes, and below them what the ticks need."""
+    return size.lane * len(lanes) + 8.0 * size.part
+
+
+def _body(scale: Scale, top: float, axis: float, size: RulerSize, *, known: bool) -> Iterator[Shape]:
+    """Wash, grid, ticks and the axis; without a number no wash and fainter ticks."""
+    start, end = scale.left, scale.left + scale.width
+    if known:
+        yield Rect(start, top, scale.width, axis - top, fill=Tone.WASH)
+    ticks = scale.ticks()
+    for tick in ticks:
+        if tick.size is TickSize.MAJOR:
+            yield Line(tick.x, top, tick.x, axis, size.line, Tone.RULE)
+    for tick in ticks:
+        tone = Tone.INK if known and tick.size is not TickSize.MINOR else Tone.EDGE
+        yield Line(tick.x, axis - _TICK_HEIGHTS[tick.size] * size.part, tick.x, axis, size.line, tone)
+    yield Line(start, axis, end, axis, size.line, Tone.INK if known else Tone.EDGE)
+
+
+def _band(scale: Scale, band: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:
+    """A filled bar, closed by strong ends because its tint is faint; a pointer where it goes on beyond the scale."""
+    left, right = scale.position(band.lower), scale.position(band.upper)
+    top, height = middle - 8.0 * size.part, 16.0 * size.part
+    yield Rect(left, top, right - left, height, fill=Tone.TINT)
+    for x in (left, right):
+        yield Line(x, top, x, top + height, 2 * size.line, Tone.ACCENT)
+    yield from _beyond(scale, band, middle, Tone.ACCENT, size)
+
+
+def _spread(scale: Scale, spread: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:
+    """An open bracket."""
+    left, right = scale.position(spread.lower), scale.position(spread.upper)
+    yield Line(left, middle, right, middle, 2 * size.line, Tone.INK)
+    for x in (left, right):
+        yield Line(x, middle - 6.0 * size.part, x, middle + 6.0 * size.part, 2 * size.line, Tone.INK)
+    yield from _beyond(scale, spread, middle, Tone.INK, size)
+
+
+def _beyond(scale: Scale, interval: Interval, middle: float, tone: Tone, size: RulerSize) -> Iterator[Shape]:
+    """Pointers outside of the body at the ends that an interval goes beyond."""
+    if scale.side(interval.lower) < 0:
+        yield pointer(scale.left - 9.0 * size.part, middle, -6.0 * size.part, tone)
+    if scale.side(interval.upper) > 0:
+        yield pointer(scale.left + scale.width + 9.0 * size.part, middle, 6.0 * size.part, tone)
+
+
+def _decision(
+    scale: Scale,
+    measured: Measured,
+    point: DecisionPoint,
+    middle: float,
+    axis: float,
+    size: RulerSize,
+    measure: Measure,
+) -> Iterator[Shape]:
+    """A dashed line from its lane down to the axis, its source on the side where the hairline is not.
+
+    Beyond the scale, which it never makes wider, a pointer stands at the end instead.
+    """
+    x = scale.position(point.probability)
+    side = scale.side(point.probability)
+    if side:
+        yield pointer(x + side * 9.0 * size.part, middle, side * 6.0 * size.part, Tone.INK)
+    else:
+        yield Line(x, middle - 9.0 * size.part, x, axis, 2 * size.line, Tone.INK, dash=3.0 * size.line)
+    wide, gap = measure(point.source, size.text), 8.0 * size.part
+    hair = None if measured.probability is None else scale.position(measured.probability)
+    lefts = [
+        left
+        for left in (x - gap - wide, x + gap)
+        if scale.left + 2 <= left <= scale.left + scale.width - wide - 2
+        and not (hair is not None and left - 4 < hair < left + wide + 4)
+    ]
+    left = lefts[0] if lefts else min(x + gap, scale.left + scale.width - wide - 2)
+    plate = Tone.SHEET if measured.probability is None else Tone.WASH
+    yield Rect(left - 3, middle - 0.62 * size.text, wide + 6, 1.24 * size.text, fill=plate)
+    yield Text(left, middle + 0.34 * size.text, point.source, size.text, tone=Tone.SOFT)
+
+
+def _hairline(scale: Scale, probability: float | None, top: float, axis: float, size: RulerSize) -> Iterator[Shape]:
+    """This patient: a line through all lanes under its head; beyond the scale only a head, pointing out at the end."""
+    if probability is None:
+        return
+    x, side, head = scale.position(probability), scale.side(probability), _HEAD * size.part
+    if side:
+        yield pointer(x + side * head, top - head / 2, side * head * 0.8, Tone.ACCENT)
+        return
+    yield Line(x, top - head / 3, x, axis, 2 * size.line, Tone.ACCENT)
+    high, low = top - head * 5 / 6, top - head / 12
+    yield Poly(((x - head / 2, high), (x + head / 2, high), (x, low)), fill=Tone.ACCENT)

@@ -1,0 +1,90 @@
+"""The settings as one value, and what each of them may be."""
+
+import os
+import unicodedata
+from dataclasses import dataclass, replace
+from enum import StrEnum
+from pathlib import Path
+
+from clinicalc.errors import UsageError
+
+MOST_RECENT = 8
+"""How many files opened lately are remembered."""
+LONGEST_PRACTICE = 80
+LOWEST_LEVEL, HIGHEST_LEVEL = 0.5, 0.999
+"""Levels of which a band is made; the same limits as everywhere a level is asked for."""
+_UNSEEN = ("Cc", "Cf", "Cs", "Zl", "Zp")
+"""Unicode categories of what is not seen or breaks a line: control, format (bidirectional ones too), separators."""
+
+
+class ThemeChoice(StrEnum):
+    """Which colours: those the system asks for, or always the same."""
+
+    SYSTEM = "system"
+    LIGHT = "light"
+    DARK = "dark"
+
+
+class Paper(StrEnum):
+    """What the practice prints on."""
+
+    A4 = "A4"
+    LETTER = "Letter"
+
+
+@dataclass(frozen=True, slots=True)
+class Settings:
+    """What was chosen on this machine. Raises UsageError, naming the setting, where a value cannot be one.
+
+    `recent_files`: paths of coefficient files, newest first; never of prints. `level`: of the band, 0.5 to 0.999.
+    """
+
+    theme: ThemeChoice = ThemeChoice.SYSTEM
+    recent_files: tuple[str, ...] = ()
+    practice: str = ""
+    paper: Paper = Paper.A4
+    level: float = 0.95
+
+    def __post_init__(self) -> None:
+        for fault in (_fault_of_recent(self.recent_files), _fault_of_practice(self.practice), _fault_of(self.level)):
+            if fault:
+                raise UsageError(fault)
+
+    def with_recent(self, path: Path) -> "Settings":
+        """The settings with this coefficient file as the newest; the oldest leaves when there are too many.
+
+        The same settings where the path has bytes that are no text, since TOML could not hold it.
+        """
+        newest = os.path.abspath(path)  # not resolved: a link is remembered under the name it was opened by
+        if _fault_of_recent((newest,)):
+            return self
+        others = (other for other in self.recent_files if other != newest)
+        return replace(self, recent_files=(newest, *others)[:MOST_RECENT])
+
+
+def _fault_of_recent(paths: tuple[str, ...]) -> str:
+    if len(paths) > MOST_RECENT:
+        return f"recent_files holds {len(paths)} paths, and at most {MOST_RECENT} are kept."
+    if any(not path or "\0" in path or not _is_text(path) for path in paths):
+        return "recent_files holds something that is not the path of a file."
+    return ""
+
+
+def _fault_of_practice(practice: str) -> str:
+    if len(practice) > LONGEST_PRACTICE:
+        return f"practice has {len(practice)} characters, and at most {LONGEST_PRACTICE} fit on a print."
+    for character in practice:
+        if unicodedata.category(character) in _UNSEEN:
+            return f"practice holds U+{ord(character):04X}, a character that is not seen or breaks the line."
+    return ""
+
+
+def _fault_of(level: float) -> str:
+    if LOWEST_LEVEL <= level <= HIGHEST_LEVEL:
+        return ""
+    slip = f" {level:g}\N{NARROW NO-BREAK SPACE}% is written {level / 100:g}." if 50 <= level <= 99.9 else ""
+    return f"level {level:g} lies outside {LOWEST_LEVEL:g} to {HIGHEST_LEVEL:g}.{slip}"
+
+
+def _is_text(path: str) -> bool:
+    return not any("\ud800" <= character <= "\udfff" for character in path)

@@ -1,0 +1,154 @@
+"""A narrow window, which is the usual one at 200 % text: one column, the number in sight, every field reachable."""
+
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+from PySide6.QtCore import QPoint, QRect, QSize, Qt
+from PySide6.QtWidgets import QApplication, QWidget
+from pytestqt.qtbot import QtBot
+
+from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.assessment.model import Model
+from clinicalc.gui.main_window import NARROWEST, MainWindow
+from clinicalc.operations.bedside import open_example
+from clinicalc.resources import list_example_models
+from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, number_row, press, retype_number
+from tests.gui.test_layout import cut_labels
+
+pytestmark = pytest.mark.gui
+
+USUAL = QSize(1280, 800)
+
+
+def settle(window: MainWindow, size: QSize) -> None:
+    window.resize(size)
+    for _ in range(3):
+        QApplication.processEvents()
+
+
+@pytest.fixture
+def narrow(window: MainWindow, lipids: Model) -> MainWindow:
+    """A window with a number, as narrow as it can be."""
+    window.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
+    settle(window, NARROWEST)
+    return window
+
+
+def pinned_number(window: MainWindow) -> str:
+    """What the number at the top says, "" for none."""
+    figure = window.patient.pinned.number.figure_shown
+    return figure.sentence if figure is not None and "%" in figure.sentence else ""
+
+
+def is_in_sight(window: MainWindow, widget: QWidget) -> bool:
+    """Whether a widget of the column lies within its viewport."""
+    view = window.patient.one_column.viewport()
+    return view.rect().contains(QRect(widget.mapTo(view, QPoint(0, 0)), widget.size()))
+
+
+def test_smallest_window_is_half_of_the_usual(narrow: MainWindow) -> None:
+    assert narrow.size() == NARROWEST
+    assert (NARROWEST.width() * 2, NARROWEST.height() * 2) == (USUAL.width(), USUAL.height())
+
+
+def test_number_band_and_model_stay_in_sight(narrow: MainWindow) -> None:
+    assert narrow.patient.pinned.isVisible()
+    assert "10.5" in pinned_number(narrow)
+    assert narrow.patient.pinned.headline.text() == narrow.sheet.headline.text()
+    assert narrow.patient.pinned.band.text() == "no band"
+    assert narrow.patient.pinned.fingerprint.text() == narrow.model_bar.fingerprint.text()
+    assert (
+        narrow.patient.pinned.model.accessibleName() == "Not vetted: General cardiovascular disease, lipid form 1.0.0"
+    )
+
+
+def test_pinned_number_goes_with_the_number(qtbot: QtBot, narrow: MainWindow) -> None:
+    retype_number(narrow, "age", "5")
+    assert pinned_number(narrow) == ""
+    retype_number(narrow, "age", "61")
+    assert "10.5" in pinned_number(narrow)
+    narrow.state.blank("A fault.")
+    assert pinned_number(narrow) == ""
+    assert narrow.patient.pinned.band.text() == ""
+
+
+def test_pinned_mark_leads_to_the_field(qtbot: QtBot, narrow: MainWindow) -> None:
+    retype_number(narrow, "total_cholesterol", "5.2")
+    number_row(narrow, "age").edit.setFocus()
+    mark = number_row(narrow, "total_cholesterol").mark
+    pinned = [m for m, _ in narrow.patient.pinned._marks if m.isVisible() and m.number == mark.number]
+    click(pinned[0])
+    assert number_row(narrow, "total_cholesterol").edit.hasFocus()
+
+
+def test_every_field_comes_into_sight_when_it_is_gone_to(qtbot: QtBot, narrow: MainWindow) -> None:
+    narrow.values.focus_first()
+    seen = []
+    for _ in range(30):
+        focused = QApplication.focusWidget()
+        assert focused is not None
+        if not narrow.values.isAncestorOf(focused):
+            if narrow.field_note.isAncestorOf(focused):
+                press(focused, Qt.Key.Key_Tab)
+                QApplication.processEvents()
+                continue
+            break
+        QApplication.processEvents()
+        seen.append(focused.accessibleName())
+        assert is_in_sight(narrow, focused), focused.accessibleName()
+        press(focused, Qt.Key.Key_Tab)
+    assert seen[-1] == "Name or number"
+    assert len(seen) > 10
+
+
+def test_f6_shows_the_sheet(narrow: MainWindow) -> None:
+    number_row(narrow, "age").edit.setFocus()
+    press(narrow, Qt.Key.Key_F6)
+    QApplication.processEvents()
+    view = narrow.patient.one_column.viewport()
+    top = narrow.sheet.scroller.mapTo(view, QPoint(0, 0)).y()
+    assert 0 <= top < view.height() // 2
+    press(narrow, Qt.Key.Key_F6)
+    assert number_row(narrow, "age").edit.hasFocus()
+
+
+def test_no_number_stands_beside_a_file_that_was_refused(narrow: MainWindow, tmp_path: Path) -> None:
+    narrow.open_path(tmp_path / "nowhere.json")
+    assert narrow.refusal.isVisible()
+    assert not narrow.patient.pinned.isVisible()
+    click(narrow.refusal.back)
+    assert narrow.patient.pinned.isVisible()
+
+
+def test_there_and_back_keeps_values_focus_and_places(qtbot: QtBot, window: MainWindow, lipids: Model) -> None:
+    window.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
+    edit = number_row(window, "hdl_cholesterol").edit
+    edit.setFocus()
+    settle(window, USUAL)
+    parts = (window.model_bar, window.values, window.sheet, window.foot.save_pdf, edit)
+    before = [QRect(part.mapTo(window, QPoint(0, 0)), part.size()) for part in parts]
+    settle(window, NARROWEST)
+    assert edit.hasFocus()
+    assert window.sheet.number.figure == "10.5"
+    settle(window, USUAL)
+    assert [QRect(part.mapTo(window, QPoint(0, 0)), part.size()) for part in parts] == before
+    assert edit.hasFocus()
+    assert not window.patient.pinned.isVisible()
+    press(edit, Qt.Key.Key_Tab)
+    focused = QApplication.focusWidget()
+    assert focused is not None
+    assert focused.accessibleName() == "HDL cholesterol, unit"
+
+
+@pytest.mark.parametrize("name", list_example_models())
+def test_nothing_is_cut_off(open_window: Callable[[Model | None], MainWindow], name: str) -> None:
+    window = open_window(open_example(name))
+    settle(window, NARROWEST)
+    typed = dict.fromkeys(window.values.rows, "5.2") | {"sex": "female", "smoker": "yes", "prior_cvd": "yes"}
+    assert window.state.model is not None
+    window.use_model(window.state.model, entry_from_texts(typed, "Ottilie Fenn"))
+    settle(window, NARROWEST)
+    assert cut_labels(window) == []
+    assert window.values.verticalScrollBar().maximum() == 0
+    assert window.sheet.scroller.verticalScrollBar().maximum() == 0

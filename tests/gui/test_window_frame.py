@@ -1,0 +1,346 @@
+"""Round the patient: menu and theme, files opened lately, copying, printing, and which window this is."""
+
+import subprocess
+import sys
+from collections.abc import Callable, Iterator
+from pathlib import Path
+
+import pytest
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QGuiApplication
+from PySide6.QtWidgets import QApplication, QDialog, QFileDialog, QWidget
+from pytestqt.qtbot import QtBot
+
+from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.assessment.model import Model
+from clinicalc.assessment.result import Assessment
+from clinicalc.errors import FileNotWritten
+from clinicalc.gui import theme
+from clinicalc.gui.about_view import AboutView
+from clinicalc.gui.file_dialogs import make_save_dialog
+from clinicalc.gui.guide_view import GuideView
+from clinicalc.gui.main_window import MainWindow
+from clinicalc.gui.preferences import Preferences
+from clinicalc.gui.window_number import WindowNumber
+from clinicalc.operations.copying import copy_text
+from clinicalc.resources import read_shipped
+from clinicalc.settings import Paper, Settings, ThemeChoice
+from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, press, retype_number
+
+pytestmark = [
+    pytest.mark.gui,
+    # the screenless platform says so when a menu or a window beside ours opens
+    pytest.mark.qt_log_ignore("This plugin does not support raise", "This plugin does not support grabbing"),
+]
+
+
+class Machine:
+    """What a window asks of the machine round it, recorded."""
+
+    def __init__(self, folder: Path) -> None:
+        self.written: list[Settings] = []
+        self.previewed: list[Assessment] = []
+        self.seen: tuple[str, Paper, bool] | None = None
+        self.meanwhile: Callable[[], None] = lambda: None
+        self.model = folder / "regional.json"
+        self.model.write_bytes(read_shipped("example_models/cvd-2021-regional.json"))
+        self.preferences = Preferences(Settings(practice="Tarnwick Northgate", paper=Paper.LETTER), self.written.append)
+
+    def choose_open(self, parent: QWidget) -> Path | None:
+        return self.model
+
+    def preview(
+        self,
+        parent: QWidget | None,
+        assessment: Assessment,
+        still_current: Callable[[], bool],
+        *,
+        practice: str,
+        paper: Paper,
+        explain: Callable[[QWidget | None, str], None],
+    ) -> bool:
+        self.previewed.append(assessment)
+        self.seen = (practice, paper, still_current())
+        self.meanwhile()
+        if not still_current():
+            explain(parent, "nothing was printed.")
+        return still_current()
+
+
+@pytest.fixture
+def machine(tmp_path: Path) -> Machine:
+    return Machine(tmp_path)
+
+
+@pytest.fixture
+def framed(qtbot: QtBot, lipids: Model, machine: Machine) -> MainWindow:
+    """A window with a number, a preview that is only recorded, and settings that are only recorded."""
+    window = MainWindow(
+        preferences=machine.preferences,
+        choose_open=machine.choose_open,
+        show_preview=machine.preview,
+    )
+    qtbot.addWidget(window)
+    window.resize(1280, 800)
+    window.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008, "Ottilie Fenn"))
+    with qtbot.waitExposed(window):
+        window.show()
+    window.activateWindow()
+    return window
+
+
+@pytest.fixture(autouse=True)
+def _light_again() -> Iterator[None]:
+    yield
+    theme.choose(ThemeChoice.SYSTEM)
+
+
+def recent_titles(window: MainWindow) -> list[str]:
+    """What the chooser of the model line offers when it is opened."""
+    chooser = window.model_bar.chooser
+    chooser.open_menu()
+    texts = [action.text() for action in chooser.menu.actions() if not action.isSeparator()]
+    chooser.menu.close()
+    return texts
+
+
+def test_theme_is_chosen_in_the_menu_and_kept(framed: MainWindow, machine: Machine) -> None:
+    choices = {action.text().replace("&", ""): action for action in framed.page_bar.themes.actions()}
+    assert [name for name, action in choices.items() if action.isChecked()] == ["As the system"]
+    choices["Dark"].trigger()
+    assert theme.current().is_dark
+    choices["As the system"].trigger()
+    assert not theme.current().is_dark
+    assert [settings.theme for settings in machine.written] == [ThemeChoice.DARK, ThemeChoice.SYSTEM]
+
+
+def test_menu_opens_by_key(framed: MainWindow) -> None:
+    press(framed, Qt.Key.Key_F10)
+    assert framed.page_bar.menu.isVisible()
+    assert framed.page_bar.menu.activeAction() is not None
+    framed.page_bar.menu.close()
+    press(framed.page_bar.menu_button, Qt.Key.Key_Return)
+    assert framed.page_bar.menu.isVisible()
+    framed.page_bar.menu.close()
+
+
+def test_guide_and_about_open_beside_the_window_once(framed: MainWindow) -> None:
+    press(framed, Qt.Key.Key_F1)
+    press(framed, Qt.Key.Key_F1)
+    framed.page_bar.about.trigger()
+    shown = [type(view) for view in framed.findChildren(QDialog) if view.isVisible()]
+    assert sorted(kind.__name__ for kind in shown) == [AboutView.__name__, GuideView.__name__]
+    for view in framed.findChildren(QDialog):
+        view.close()
+    assert framed.sheet.number.figure == "10.5"
+
+
+def test_practice_stands_in_the_bar_and_on_the_print(framed: MainWindow) -> None:
+    assert framed.page_bar.practice.text() == "Tarnwick Northgate"
+
+
+def test_opened_files_are_remembered_by_path_alone(framed: MainWindow, machine: Machine) -> None:
+    assert recent_titles(framed) == ["&Open file…"]
+    framed.model_bar.chooser.open_action.trigger()
+    assert machine.written[-1].recent_files == (str(machine.model),)
+    assert "Fenn" not in repr(machine.written)
+    assert recent_titles(framed) == ["Cardiovascular disease, regional form, 1.0.0", "&Open file…"]
+
+
+def test_recent_file_is_opened_from_the_chooser(framed: MainWindow, machine: Machine, lipids: Model) -> None:
+    framed.open_path(machine.model)
+    framed.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
+    recent_titles(framed)
+    framed.model_bar.chooser.menu.actions()[0].trigger()
+    assert framed.model_bar.chooser.title == "Cardiovascular disease, regional form"
+    assert dict(framed.state.entry.typed) == {}
+
+
+def test_opening_a_file_puts_the_cursor_where_typing_begins(qtbot: QtBot, machine: Machine) -> None:
+    window = MainWindow(preferences=machine.preferences)
+    qtbot.addWidget(window)
+    with qtbot.waitExposed(window):
+        window.show()
+    window.activateWindow()
+    window.open_path(machine.model)
+    for _ in range(3):
+        QApplication.processEvents()
+    assert QApplication.activeWindow() is window
+    assert window.values.tab_stops()[0].hasFocus()
+    assert [w for w in QApplication.topLevelWidgets() if w.isVisible()] == [window]
+
+
+def test_arrows_on_the_chooser_change_no_model(framed: MainWindow, machine: Machine) -> None:
+    machine.preferences.remember_file(machine.model)
+    chooser = framed.model_bar.chooser
+    chooser.setFocus()
+    press(chooser, Qt.Key.Key_Down)
+    assert chooser.menu.isVisible()
+    press(chooser.menu, Qt.Key.Key_Escape)
+    assert chooser.title == "General cardiovascular disease, lipid form"
+    assert framed.sheet.number.figure == "10.5"
+
+
+def test_recent_file_that_is_gone_is_explained(framed: MainWindow, machine: Machine) -> None:
+    machine.preferences.remember_file(machine.model)
+    machine.model.unlink()
+    assert recent_titles(framed) == ["regional.json", "&Open file…"]
+    framed.model_bar.chooser.menu.actions()[0].trigger()
+    assert framed.refusal.isVisible()
+    assert framed.refusal.title.text() == "regional.json was not opened"
+    assert framed.refusal.problems.toPlainText() != ""
+    assert not framed.foot.copy.isEnabled()
+    click(framed.refusal.back)
+    assert framed.sheet.number.figure == "10.5"
+
+
+def test_settings_that_cannot_be_written_are_said_in_words(qtbot: QtBot, machine: Machine) -> None:
+    def refuse(_: Settings) -> None:
+        raise FileNotWritten("the settings could not be written.")
+
+    window = MainWindow(preferences=Preferences(keep=refuse))
+    qtbot.addWidget(window)
+    window.open_path(machine.model)
+    assert "could not be written" in window.foot.message.text()
+    assert window.preferences.settings.recent_files == (str(machine.model),)
+
+
+def test_copy_puts_the_whole_assessment_on_the_clipboard(framed: MainWindow) -> None:
+    click(framed.foot.copy)
+    assessment = framed.state.assessment
+    assert assessment is not None
+    content = QGuiApplication.clipboard().mimeData()
+    assert content.text() == copy_text(assessment)
+    assert content.formats() == ["text/plain"]
+    for part in ("10.5", "within 10 years", "General cardiovascular disease, lipid form", "No band"):
+        assert part in content.text().replace("no band", "No band"), part
+    assert "Fenn" not in content.text()
+    assert "Copied" in framed.foot.message.text()
+
+
+def test_a_message_moves_nothing(framed: MainWindow) -> None:
+    QApplication.processEvents()
+    height = framed.foot.height()
+    framed.foot.say("Saved as general-cvd-2008-lipids 2026-12-01 1200.pdf.")
+    QApplication.processEvents()
+    assert framed.foot.message.isVisible()
+    assert framed.foot.height() == height
+
+
+def test_nothing_is_copied_printed_or_saved_without_a_number(framed: MainWindow, machine: Machine) -> None:
+    QGuiApplication.clipboard().setText("before")
+    retype_number(framed, "age", "")
+    for button in (framed.foot.copy, framed.foot.print, framed.foot.save_pdf):
+        assert not button.isEnabled()
+    framed.outputs.copy()
+    framed.outputs.print()
+    assert QGuiApplication.clipboard().text() == "before"
+    assert machine.previewed == []
+
+
+def test_preview_has_the_assessment_on_screen(qtbot: QtBot, framed: MainWindow, machine: Machine) -> None:
+    click(framed.foot.print)
+    assert machine.previewed == [framed.state.assessment]
+    assert machine.seen == ("Tarnwick Northgate", Paper.LETTER, True)
+    assert framed.foot.message.text() == ""
+
+
+def test_value_changed_while_the_preview_is_open_is_caught(qtbot: QtBot, framed: MainWindow, machine: Machine) -> None:
+    machine.meanwhile = lambda: retype_number(framed, "age", "62")
+    click(framed.foot.print)
+    assert machine.previewed != [framed.state.assessment]
+    assert framed.foot.message.text() == "Nothing was printed."
+
+
+def test_value_changed_while_the_place_was_chosen_is_caught(qtbot: QtBot, lipids: Model, tmp_path: Path) -> None:
+    place = tmp_path / "print.pdf"
+
+    def choose_save(parent: QWidget, suggestion: str) -> Path | None:
+        assert isinstance(parent, MainWindow)
+        retype_number(parent, "age", "62")
+        return place
+
+    window = MainWindow(choose_save=choose_save)
+    qtbot.addWidget(window)
+    window.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
+    with qtbot.waitExposed(window):
+        window.show()
+    click(window.foot.save_pdf)
+    assert window.foot.message.text().startswith("Not saved: a value was changed")
+    assert not place.exists()
+
+
+def test_save_dialog_offers_nothing_of_the_last_patient(qtbot: QtBot, framed: MainWindow, tmp_path: Path) -> None:
+    folder = tmp_path / "Ottilie Fenn"
+    folder.mkdir()
+    first = make_save_dialog(framed, "first.pdf")
+    qtbot.addWidget(first)
+    first.setOption(QFileDialog.Option.DontUseNativeDialog)
+    first.setDirectory(str(folder))
+    first.selectFile("Ottilie Fenn.pdf")
+    first.accept()
+    second = make_save_dialog(framed, "second.pdf")
+    qtbot.addWidget(second)
+    assert "Fenn" not in second.directory().absolutePath()
+    assert second.history() == [] or all("Fenn" not in place for place in second.history())
+    assert [Path(name).name for name in second.selectedFiles()] == ["second.pdf"]
+
+
+def test_f6_goes_both_ways(framed: MainWindow) -> None:
+    framed.values.focus_field("hdl_cholesterol")
+    left = QApplication.focusWidget()
+    press(framed, Qt.Key.Key_F6, Qt.KeyboardModifier.ShiftModifier)
+    assert framed.sheet.scroller.hasFocus()
+    press(framed, Qt.Key.Key_F6, Qt.KeyboardModifier.ShiftModifier)
+    assert QApplication.focusWidget() is left
+
+
+def test_numbers_of_windows_are_lowest_free_ones(tmp_path: Path) -> None:
+    first, second = WindowNumber(tmp_path), WindowNumber(tmp_path)
+    assert (first.number, second.number) == (1, 2)
+    first.let_go()
+    third = WindowNumber(tmp_path)
+    assert third.number == 1
+    assert len(list(tmp_path.iterdir())) == 2
+    second.let_go()
+    third.let_go()
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_another_process_counts_and_a_dead_one_does_not(tmp_path: Path) -> None:
+    program = f"""
+import sys, os
+from pathlib import Path
+from clinicalc.gui.window_number import WindowNumber
+number = WindowNumber(Path({str(tmp_path)!r}))
+print(number.number, flush=True)
+sys.stdin.read()
+os._exit(0)  # without letting go, as in a crash
+"""
+    with subprocess.Popen(
+        [sys.executable, "-c", program], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True
+    ) as other:
+        assert other.stdout is not None
+        assert other.stdin is not None
+        assert other.stdout.readline().strip() == "1"
+        ours = WindowNumber(tmp_path)
+        assert ours.number == 2
+        other.stdin.close()
+        other.wait(30)
+    again = WindowNumber(tmp_path)
+    assert again.number == 1
+    ours.let_go()
+    again.let_go()
+
+
+def test_where_no_lock_can_be_made_the_window_opens_all_the_same(tmp_path: Path) -> None:
+    assert WindowNumber(tmp_path / "no such folder").number == 1
+
+
+def test_second_window_says_so_in_title_and_bar(qtbot: QtBot, lipids: Model) -> None:
+    window = MainWindow(number=2)
+    qtbot.addWidget(window)
+    assert window.windowTitle() == "Patient 2"
+    window.use_model(lipids)
+    assert window.windowTitle() == "Patient 2: General cardiovascular disease, lipid form"
+    assert window.page_bar.tab.accessibleName() == "Patient 2"
