@@ -42,6 +42,10 @@ def _run_command(words: list[str]) -> int:
 
 
 def _open_window(case: DemoCase | None = None) -> int:
+    # before Qt: its import hook makes every module that is loaded after it dearer
+    import clinicalc.operations.bedside
+    import clinicalc.operations.documents
+    import clinicalc.operations.guide  # noqa: F401
     from clinicalc.gui.preflight import check_platform
 
     trouble = check_platform()

@@ -62,7 +62,9 @@ def compile_step(step: Step, codes: Mapping[str, float]) -> Transform:
         return Transform(kind, spline=value)
     if isinstance(value, tuple):
         return Transform(kind, codes=tuple(codes[answer] for answer in value))
-    return Transform(kind, number=value if isinstance(value, float) else 0.0)
+    number = value if isinstance(value, float) else 0.0
+    # a cut is rounded once, here, as every value is when it is compared with it
+    return Transform(kind, number=float(round_significant(np.array([number]))[0]) if kind in CUTS else number)
 
 
 def apply_transform(transform: Transform, x: Column) -> Column:
@@ -89,7 +91,7 @@ def apply_transform(transform: Transform, x: Column) -> Column:
         case StepKind.IS:
             return _as_column(np.logical_or.reduce([x == code for code in transform.codes]))
         case _:
-            return _as_column(_cut(transform.kind, round_significant(x), round_significant(np.array([c]))))
+            return _as_column(_cut(transform.kind, round_significant(x), c))
 
 
 def restricted_cubic(x: Column, knots: tuple[float, ...], basis: int) -> Column:
@@ -123,7 +125,7 @@ def round_significant(x: Column, digits: int = CUT_DIGITS) -> Column:
     return _as_column(np.rint(x * scale) / scale)
 
 
-def _cut(kind: StepKind, x: Column, c: Column) -> NDArray[np.bool_]:
+def _cut(kind: StepKind, x: Column, c: float) -> NDArray[np.bool_]:
     if kind is StepKind.ABOVE:
         return x > c
     if kind is StepKind.FROM:

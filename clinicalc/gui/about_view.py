@@ -1,6 +1,6 @@
 """What the program is and what it does not claim; the notices for what others made."""
 
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QSize, Qt
 from PySide6.QtWidgets import QDialog, QHBoxLayout, QPlainTextEdit, QVBoxLayout, QWidget
 
 from clinicalc.gui.labels import Heading, make_button, make_label
@@ -18,7 +18,7 @@ class AboutView(QDialog):
         self.setObjectName("sheet")
         self.setWindowTitle("About")
         self.setModal(False)
-        self.resize(760, 620)
+        self.resize(QSize(760, 620).boundedTo(self.screen().availableSize()))
         self.title = make_label(f"{shown.name} {shown.version}", TITLE, semibold=True)
         self.sentences = tuple(make_label(text) for text in (shown.purpose, shown.no_approval, shown.hazards))
         self.notices = QPlainTextEdit()

@@ -2,8 +2,9 @@
 
 from collections.abc import Sequence
 from functools import cache
+from typing import assert_never
 
-from PySide6.QtCore import QSize, Qt
+from PySide6.QtCore import QRectF, QSize, Qt
 from PySide6.QtGui import QPainter, QPaintEvent
 from PySide6.QtWidgets import QWidget
 
@@ -11,7 +12,10 @@ from clinicalc.gui import theme
 from clinicalc.gui.painting import paint
 from clinicalc.gui.typeface import BASE, face
 from clinicalc.report.fonts import Lettering, read_lettering
-from clinicalc.report.shapes import Figure
+from clinicalc.report.shapes import Dot, Figure, Line, Poly, Rect, Shape, Text
+
+_PIXELS = 2.0
+"""Lines and edges are moved onto whole pixels."""
 
 
 @cache
@@ -46,11 +50,15 @@ class FigureView(QWidget):
         """Show another figure; the same one again asks for no paint, so that a paint that fails does so once."""
         if figure == self._figure:
             return
-        self._figure = figure
+        before, self._figure = self._figure, figure
         self.setAccessibleName("" if figure is None else figure.sentence)
         self.setAccessibleDescription("" if figure is None else "; ".join(table_lines((figure,))))
-        self.updateGeometry()
-        self.update()
+        changed = None if before is None or figure is None else _changed_between(before, figure)
+        if changed is None or figure is None:
+            self.updateGeometry()
+            self.update()
+        else:
+            self.update(changed.translated(*self._start_of(figure)).toAlignedRect())
 
     def sizeHint(self) -> QSize:
         """What the figure takes, in whole pixels."""
@@ -60,20 +68,74 @@ class FigureView(QWidget):
         return QSize(int(self._figure.width + inset) + 1, int(self._figure.height + drop) + 1)
 
     def paintEvent(self, event: QPaintEvent) -> None:
-        """The whole figure, from its shapes."""
+        """The figure from its shapes, all that reach into what is to be painted."""
         if self._figure is None:
             return
-        inset, drop = self._place
+        start, shapes = self._start_of(self._figure), self._figure.shapes
+        if event.rect() != self.rect():
+            asked = QRectF(event.rect()).translated(-start[0], -start[1])
+            shapes = tuple(shape for shape in shapes if (at := _reach(shape)) is None or at.intersects(asked))
         painter = QPainter(self)
         try:
-            painter.translate(inset, drop - self.anchor_of(self._figure))
-            paint(painter, self._figure.shapes, theme.colours(theme.tokens()), lettering())
+            painter.translate(*start)
+            paint(painter, shapes, theme.colours(theme.tokens()), lettering())
         finally:
             painter.end()
+
+    def _start_of(self, figure: Figure) -> tuple[float, float]:
+        """Where the figure's origin stands."""
+        inset, drop = self._place
+        return inset, drop - self.anchor_of(figure)
 
     def anchor_of(self, figure: Figure) -> float:
         """The y of the figure that stands at `drop`."""
         return 0.0
+
+
+def _changed_between(one: Figure, other: Figure) -> QRectF | None:
+    """What two drawings of one size differ in; None where that cannot be told from their shapes."""
+    if (one.width, one.height, one.baseline, len(one.shapes)) != (
+        other.width,
+        other.height,
+        other.baseline,
+        len(other.shapes),
+    ):
+        return None
+    changed = QRectF()
+    for pair in zip(one.shapes, other.shapes, strict=True):
+        if pair[0] is pair[1] or pair[0] == pair[1]:
+            continue
+        for shape in pair:
+            reach = _reach(shape)
+            if reach is None:
+                return None
+            changed = changed.united(reach)
+    return changed
+
+
+def _reach(shape: Shape) -> QRectF | None:
+    """A box round all that a shape inks, with room for whole pixels; None for a text, whose letters may reach out."""
+    match shape:
+        case Text():
+            return None
+        case Line():
+            (left, right), (top, bottom) = sorted((shape.x, shape.to_x)), sorted((shape.y, shape.to_y))
+            around = shape.width / 2
+        case Rect():
+            left, top, right, bottom = shape.x, shape.y, shape.x + shape.width, shape.y + shape.height
+            around = shape.line
+        case Dot():
+            left, right = shape.x - shape.radius, shape.x + shape.radius
+            top, bottom = shape.y - shape.radius, shape.y + shape.radius
+            around = shape.line
+        case Poly():
+            xs, ys = zip(*shape.points, strict=True)
+            left, top, right, bottom = min(xs), min(ys), max(xs), max(ys)
+            around = 4 * shape.line  # a mitred corner reaches further than the line is wide
+        case _:
+            assert_never(shape)
+    around += _PIXELS
+    return QRectF(left - around, top - around, right - left + 2 * around, bottom - top + 2 * around)
 
 
 def table_lines(figures: Sequence[Figure]) -> list[str]:

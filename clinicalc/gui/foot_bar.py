@@ -1,5 +1,6 @@
 """The foot: New patient, what is kept, Copy, Print, Save PDF; and what was just done."""
 
+from PySide6.QtGui import QAccessible, QAccessibleAnnouncementEvent
 from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
 
 from clinicalc import __version__
@@ -49,13 +50,19 @@ class FootBar(QWidget):
             button.setEnabled(allowed)
 
     def say(self, message: str) -> None:
-        """Show a message in place of the promise, so that nothing else moves for it; or none."""
+        """Show a message in place of the promise, so that nothing else moves for it, and announce it; or none."""
         self.message.setText(message)
-        self.message.setVisible(bool(message))
-        self.promise.setVisible(not message and not self._is_narrow)
+        self._show_message_or_promise()
+        if message:
+            QAccessible.updateAccessibility(QAccessibleAnnouncementEvent(self, message))
 
     def set_narrow(self, narrow: bool) -> None:
         """Narrow: the commands, and messages when there are any."""
         self._is_narrow = narrow
         self._program.setVisible(not narrow)
-        self.say(self.message.text())
+        self._show_message_or_promise()
+
+    def _show_message_or_promise(self) -> None:
+        has_message = bool(self.message.text())
+        self.message.setVisible(has_message)
+        self.promise.setVisible(not has_message and not self._is_narrow)

@@ -39,7 +39,7 @@ class GuideView(QDialog):
         self.setObjectName("ground")
         self.setWindowTitle("Guide")
         self.setModal(False)
-        self.resize(1000, 720)
+        self.resize(QSize(1000, 720).boundedTo(self.screen().availableSize()))
         self.list = PageList([page.title for page in self.guide_pages])
         self.reader = Reader()
         self.close_button = make_button("&Close")

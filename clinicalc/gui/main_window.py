@@ -241,6 +241,7 @@ class MainWindow(QWidget):
     def _order_tabs(self) -> None:
         bar, foot = self.model_bar, self.foot
         chain: list[QWidget] = [
+            *self.patient.pinned.tab_stops(),
             bar.chooser,
             bar.horizon.chooser,
             bar.recalibration.chooser,

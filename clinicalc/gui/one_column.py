@@ -17,6 +17,7 @@ class OneColumn(QScrollArea):
     def __init__(self) -> None:
         super().__init__()
         self._areas: tuple[QScrollArea, ...] = ()
+        self._policies: list[Qt.ScrollBarPolicy] = []
         self.setWidgetResizable(True)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOn)
@@ -36,17 +37,18 @@ class OneColumn(QScrollArea):
         for pane in panes:
             self._column.addWidget(pane)
         self._areas = areas
+        self._policies = [area.verticalScrollBarPolicy() for area in areas]
         for area in areas:
             area.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.fit()
 
     def let_go(self) -> None:
         """The panes go elsewhere and scroll apart again."""
-        for area in self._areas:
+        for area, policy in zip(self._areas, self._policies, strict=True):
             area.setMinimumHeight(0)
             area.setMaximumHeight(_LARGEST)
-            area.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAsNeeded)
-        self._areas = ()
+            area.setVerticalScrollBarPolicy(policy)
+        self._areas, self._policies = (), []
 
     def fit(self) -> None:
         """Make every area as high as its content, now and whenever its content changes."""

@@ -4,12 +4,13 @@ At once and as a whole: no timers, no threads, nothing that could leave an old n
 """
 
 import re
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from functools import cache, lru_cache
+from itertools import groupby
 from math import floor
-from typing import assert_never
+from typing import assert_never, cast
 
-from PySide6.QtCore import QPointF, QRectF, Qt
+from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QFontDatabase, QPainter, QPainterPath, QPen, QPolygonF, QTransform
 
 from clinicalc.gui.tokens import Tokens
@@ -49,26 +50,50 @@ def paint(
         painter.setRenderHints(QPainter.RenderHint.Antialiasing | QPainter.RenderHint.TextAntialiasing)
         painter.scale(scale, scale)
         grid = _Grid(painter.deviceTransform(), snap=snap)
-        for shape in shapes:
-            match shape:
-                case Text():
-                    _write(painter, shape, colours[shape.tone], lettering, grid)
+        for _, run in groupby(shapes, _look):
+            alike = list(run)
+            match alike[0]:
                 case Line():
-                    _stroke(painter, shape, colours[shape.tone], grid)
-                case Rect():
-                    _ink(painter, shape, colours, grid)
-                    box = grid.box(shape)
-                    painter.drawRoundedRect(box, shape.radius, shape.radius) if shape.radius else painter.drawRect(box)
+                    _stroke(painter, cast(list[Line], alike), colours, grid)
                 case Dot():
-                    _ink(painter, shape, colours, None)
-                    painter.drawEllipse(QPointF(shape.x, shape.y), shape.radius, shape.radius)
-                case Poly():
-                    _ink(painter, shape, colours, None)
-                    _outline(painter, shape, grid)
+                    _round(painter, cast(list[Dot], alike), colours)
                 case _:
-                    assert_never(shape)
+                    for shape in alike:
+                        _paint_one(painter, shape, colours, lettering, grid)
     finally:
         painter.restore()
+
+
+def _paint_one(
+    painter: QPainter, shape: Shape, colours: Mapping[Tone, QColor], lettering: Lettering, grid: "_Grid"
+) -> None:
+    match shape:
+        case Text():
+            _write(painter, shape, colours[shape.tone], lettering, grid)
+        case Line():
+            _stroke(painter, [shape], colours, grid)
+        case Rect():
+            _ink(painter, shape, colours, grid)
+            box = grid.box(shape)
+            painter.drawRoundedRect(box, shape.radius, shape.radius) if shape.radius else painter.drawRect(box)
+        case Dot():
+            _round(painter, [shape], colours)
+        case Poly():
+            _ink(painter, shape, colours, None)
+            _outline(painter, shape, grid)
+        case _:
+            assert_never(shape)
+
+
+def _look(shape: Shape) -> tuple[object, ...]:
+    """Lines of one pen and dots of one ink go to Qt together: each call on its own costs more than the drawing."""
+    match shape:
+        case Line():
+            return Line, shape.width, shape.tone, shape.dash, shape.x == shape.to_x or shape.y == shape.to_y
+        case Dot():
+            return Dot, shape.fill, shape.outline, shape.line
+        case _:
+            return ()
 
 
 class _Grid:
@@ -147,19 +172,29 @@ def _pen(rgba: int, width: float, dash: float = 0.0) -> QPen:
     return pen
 
 
-def _stroke(painter: QPainter, line: Line, colour: QColor, grid: _Grid) -> None:
-    start, end = QPointF(line.x, line.y), QPointF(line.to_x, line.to_y)
-    width = line.width
-    if line.x == line.to_x:
-        x = grid.middle(line.x, width, 0)
-        start, end = QPointF(x, grid.edge(line.y, 1)), QPointF(x, grid.edge(line.to_y, 1))
-        width = grid.width(width)
-    elif line.y == line.to_y:
-        y = grid.middle(line.y, width, 1)
-        start, end = QPointF(grid.edge(line.x, 0), y), QPointF(grid.edge(line.to_x, 0), y)
-        width = grid.width(width)
-    painter.setPen(_pen(colour.rgba(), width, line.dash))
-    painter.drawLine(start, end)
+def _stroke(painter: QPainter, lines: Sequence[Line], colours: Mapping[Tone, QColor], grid: _Grid) -> None:
+    """Lines of one look."""
+    first, drawn = lines[0], []
+    for line in lines:
+        if line.x == line.to_x:
+            x = grid.middle(line.x, line.width, 0)
+            drawn.append(QLineF(x, grid.edge(line.y, 1), x, grid.edge(line.to_y, 1)))
+        elif line.y == line.to_y:
+            y = grid.middle(line.y, line.width, 1)
+            drawn.append(QLineF(grid.edge(line.x, 0), y, grid.edge(line.to_x, 0), y))
+        else:
+            drawn.append(QLineF(line.x, line.y, line.to_x, line.to_y))
+    straight = first.x == first.to_x or first.y == first.to_y
+    width = grid.width(first.width) if straight else first.width
+    painter.setPen(_pen(colours[first.tone].rgba(), width, first.dash))
+    painter.drawLines(drawn)
+
+
+def _round(painter: QPainter, dots: Sequence[Dot], colours: Mapping[Tone, QColor]) -> None:
+    """Dots of one ink."""
+    _ink(painter, dots[0], colours, None)
+    for dot in dots:
+        painter.drawEllipse(QPointF(dot.x, dot.y), dot.radius, dot.radius)
 
 
 def _outline(painter: QPainter, poly: Poly, grid: _Grid) -> None:

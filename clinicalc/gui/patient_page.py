@@ -2,6 +2,7 @@
 
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QVBoxLayout, QWidget
 
+from clinicalc.assessment.model import Model
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.field_note import FieldNote
@@ -11,6 +12,7 @@ from clinicalc.gui.pinned_bar import PinnedBar
 from clinicalc.gui.result_sheet import ResultSheet
 from clinicalc.gui.tokens import COMPACT_BELOW
 from clinicalc.gui.values_pane import ValuesPane
+from clinicalc.gui.wording import event_heading
 
 ONE_COLUMN_BELOW = 900
 """Window width under which there is one column: that of the usual window at 200 % text."""
@@ -79,7 +81,12 @@ class PatientPage(QWidget):
         summary = self.sheet.pinned_summary()
         vetted = "" if summary.vetted else "Not vetted: "
         named = f"{vetted}{model.content.title} {model.content.version}"
-        self.pinned.show_summary(summary, group_fingerprint(model.fingerprint, 3), named)
+        self.pinned.show_summary(summary, group_fingerprint(model.fingerprint, 3), named, self._heading(model))
+
+    def _heading(self, model: Model) -> str:
+        """The longest headline of a number of this model, for the room that is kept free."""
+        spans = model.spans if self._state.span is None else (self._state.span,)
+        return max((event_heading(model, span) for span in spans), key=len)
 
     def _arrange(self, *, narrow: bool) -> None:
         self.is_narrow = narrow

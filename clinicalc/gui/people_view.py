@@ -160,7 +160,8 @@ class PeopleView(QWidget):
     def _write_text(self) -> None:
         """Fill the table while it is open; closed, it would only cost time at every key."""
         if self.text.isHidden():
-            self.text.clear()
+            if not self.text.document().isEmpty():
+                self.text.clear()
             return
         lines = table_lines(self._figures)
         if self.dots.figure_shown is not None:

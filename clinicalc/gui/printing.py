@@ -7,17 +7,18 @@ since, nothing is painted any more: not in the preview, not on the printer.
 from collections.abc import Callable
 from datetime import datetime
 
-from PySide6.QtCore import QMarginsF, QMetaObject, Qt
-from PySide6.QtGui import QPageLayout, QPageSize, QPainter
-from PySide6.QtPrintSupport import QPrinter, QPrintPreviewDialog
+from PySide6.QtCore import QMarginsF, Qt
+from PySide6.QtGui import QColor, QPageLayout, QPageSize, QPainter
+from PySide6.QtPrintSupport import QPrintDialog, QPrinter
 from PySide6.QtWidgets import QMessageBox, QWidget
 
 from clinicalc.assessment.result import Assessment
-from clinicalc.errors import ClinicalcError, PrintRefused
-from clinicalc.gui.painting import colours_of, paint
-from clinicalc.gui.tokens import LIGHT
+from clinicalc.errors import PrintRefused
+from clinicalc.gui.painting import paint
+from clinicalc.gui.preview_view import PreviewView
 from clinicalc.operations.documents import lay_out_print, suggest_pdf_name
 from clinicalc.report import Document
+from clinicalc.report.palette import PAPER
 from clinicalc.settings import Paper
 
 POINTS_PER_INCH = 72.0
@@ -48,7 +49,7 @@ def paint_document(printer: QPrinter, document: Document) -> None:
     if not painter.begin(printer):
         raise _unwilling()
     try:
-        colours = colours_of(LIGHT)
+        colours = {tone: QColor(colour) for tone, colour in PAPER.items()}
         for place, page in enumerate(document.pages):
             if place and not printer.newPage():
                 raise _unwilling()
@@ -60,47 +61,70 @@ def paint_document(printer: QPrinter, document: Document) -> None:
         painter.end()
 
 
-class PrintPreview(QPrintPreviewDialog):
-    """The preview of one assessment; it refuses to show or print once `still_current` says no."""
+def choose_printer(printer: QPrinter, parent: QWidget | None) -> bool:
+    """The system's dialog: which printer, which paper, how many copies. Whether one was chosen."""
+    dialog = QPrintDialog(printer, parent)
+    dialog.setOption(QPrintDialog.PrintDialogOption.PrintPageRange, False)  # a print goes out whole
+    try:
+        return bool(dialog.exec())
+    finally:
+        dialog.deleteLater()
+
+
+class PrintJob:
+    """One assessment on its way to paper: its pages, laid out once a sheet, for the preview and for a printer.
+
+    `still_current` says whether the values on screen are still those of the assessment. `choose` lets a printer be
+    chosen and says whether one was.
+    """
 
     def __init__(
         self,
-        parent: QWidget | None,
         assessment: Assessment,
         still_current: Callable[[], bool],
         *,
         practice: str = "",
-        paper: Paper = Paper.A4,
-        patient_page: bool = True,
+        choose: Callable[[QPrinter, QWidget | None], bool] = choose_printer,
     ) -> None:
         self.printed_at = datetime.now().astimezone()
-        self._documents = {
-            size: lay_out_print(
-                assessment, practice=practice, patient_page=patient_page, paper=size, printed_at=self.printed_at
-            )
-            for size in Paper
-        }
-        self._still_current = still_current
-        self.refusal = ""
-        self.printer_in_use = make_printer(paper, suggest_pdf_name(assessment).removesuffix(".pdf"))
-        super().__init__(self.printer_in_use, parent)
-        self.setWindowTitle("Print preview")
-        self.paintRequested.connect(self.paint_on)
+        self.name = suggest_pdf_name(assessment).removesuffix(".pdf")
+        self._assessment, self._practice = assessment, practice
+        self._still_current, self._choose = still_current, choose
+        self._documents: dict[tuple[Paper, bool], Document] = {}
 
-    def paint_on(self, printer: QPrinter) -> None:
-        """Paint the pages on this printer, which is the preview's or the real one; or nothing, and close."""
-        try:
-            if not self._still_current():
-                raise PrintRefused(
-                    "nothing was printed: the values on screen have changed since this preview was opened.",
-                    do="Open the print again; it then shows the values as they are now.",
-                )
-            paint_document(printer, self._documents[_paper_of(printer)])
-        except ClinicalcError as error:
-            said = str(error)
-            self.refusal = said[:1].upper() + said[1:]
-            # not from within the signal: the preview still stands on its way through the pages
-            QMetaObject.invokeMethod(self, "reject", Qt.ConnectionType.QueuedConnection)
+    def check(self) -> None:
+        """Raises PrintRefused once the values on screen have changed."""
+        if not self._still_current():
+            raise PrintRefused(
+                "nothing was printed: the values on screen have changed since this preview was opened.",
+                do="Open the print again; it then shows the values as they are now.",
+            )
+
+    def lay_out(self, paper: Paper, patient_page: bool) -> Document:
+        """The pages on this paper. Raises PrintRefused for a text that could only be printed wrongly."""
+        wanted = (paper, patient_page)
+        if wanted not in self._documents:
+            self._documents[wanted] = lay_out_print(
+                self._assessment,
+                practice=self._practice,
+                patient_page=patient_page,
+                paper=paper,
+                printed_at=self.printed_at,
+            )
+        return self._documents[wanted]
+
+    def send(self, parent: QWidget | None, paper: Paper, patient_page: bool) -> bool:
+        """Let a printer be chosen and paint the pages on it; False where none was chosen.
+
+        A printer set to the other paper gets the pages laid out for that. Raises PrintRefused where the printer does
+        not take them, or where a value was changed before they were painted.
+        """
+        printer = make_printer(paper, self.name)
+        if not self._choose(printer, parent):
+            return False
+        self.check()
+        paint_document(printer, self.lay_out(_paper_of(printer), patient_page))
+        return True
 
 
 def preview(
@@ -119,15 +143,27 @@ def preview(
     painting. `explain` shows a sentence, in a message box where it is left out. Raises PrintRefused for a text that
     could only be printed wrongly.
     """
-    dialog = PrintPreview(parent, assessment, still_current, practice=practice, paper=paper, patient_page=patient_page)
-    try:
-        dialog.exec()
-        refusal = dialog.refusal
-    finally:
-        dialog.deleteLater()
+    job = PrintJob(assessment, still_current, practice=practice)
+    job.lay_out(paper, patient_page)  # refused here, the preview does not even open
+    refusal = _show(parent, job, paper, patient_page)
     if refusal:
         (explain or _explain)(parent, refusal)
     return not refusal
+
+
+def _show(parent: QWidget | None, job: PrintJob, paper: Paper, patient_page: bool) -> str:
+    """Show the preview until it is closed; why nothing was printed, "" where nothing was refused."""
+    try:
+        job.check()
+    except PrintRefused as error:
+        words = str(error)
+        return words[:1].upper() + words[1:]
+    dialog = PreviewView(parent, job, paper=paper, patient_page=patient_page)
+    try:
+        dialog.exec()
+        return dialog.refusal
+    finally:
+        dialog.deleteLater()
 
 
 def _paper_of(printer: QPrinter) -> Paper:

@@ -4,11 +4,14 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QAccessible, QAccessibleAnnouncementEvent, QKeySequence, QResizeEvent, QShortcut
 from PySide6.QtWidgets import QScrollArea, QVBoxLayout, QWidget
 
+from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import percent
 from clinicalc.assessment.result import Assessment
+from clinicalc.coefficients.spans import Span
 from clinicalc.gui.crown import Crown, height_of
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.findings_list import OVERHANG, FindingsList
+from clinicalc.gui.held_layouts import held_layouts
 from clinicalc.gui.labels import make_label
 from clinicalc.gui.lanes import Lanes, measure_assessment, overhang
 from clinicalc.gui.people_view import PeopleView
@@ -42,9 +45,9 @@ class SheetScroller(QScrollArea):
     resized = Signal()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
-        """The room for the sheet is another one."""
-        super().resizeEvent(event)
+        """The room for the sheet is another one: its margins settle first, so that it is arranged once."""
         self.resized.emit()
+        super().resizeEvent(event)
 
 
 class ResultSheet(QWidget):
@@ -59,6 +62,8 @@ class ResultSheet(QWidget):
         super().__init__()
         self._state = state
         self._announced: tuple[bool, tuple[object, ...]] = (False, ())
+        self._stops: tuple[QWidget, ...] = ()
+        self._kept: tuple[Model, Span | None, int] | None = None
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.strip = VettingStrip(NOT_VETTED)
@@ -100,9 +105,7 @@ class ResultSheet(QWidget):
 
     def tab_stops(self) -> tuple[QWidget, ...]:
         """Where the tab key stops, in order: the view, then the marks that lead to a field."""
-        view = (self.people.as_text, self.people.text) if self.people.isVisibleTo(self) else ()
-        marks = self.findings.tab_stops() if self.findings.isVisibleTo(self) else ()
-        return (*view, *marks)
+        return (self.people.as_text, self.people.text, *self.findings.tab_stops())
 
     def pinned_summary(self) -> PinnedSummary:
         """What is on the sheet now, in short."""
@@ -118,7 +121,7 @@ class ResultSheet(QWidget):
         )
 
     def _lay_out(self) -> None:
-        body = QWidget()
+        self._body = body = QWidget()
         body.setObjectName("sheet")
         self._column = QVBoxLayout(body)
         self._column.setSpacing(0)
@@ -140,6 +143,8 @@ class ResultSheet(QWidget):
         self.scroller.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
         self.scroller.setWidgetResizable(True)
         self.scroller.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        # its room is kept and empty when there is nothing to scroll: one that comes and goes arranges all anew
+        self.scroller.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOn)
         self.scroller.setWidget(body)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
@@ -161,6 +166,9 @@ class ResultSheet(QWidget):
         if model is None:
             return
         width = self.scroller.width() - SHEET_MARGIN - SHEET_MARGIN_RIGHT
+        if self._kept == (kept := (model, self._state.span, width)):
+            return
+        self._kept = kept
         spans = [self._state.span] if self._state.span is not None else list(model.spans)
         headings = [event_heading(model, span) for span in spans]
         sentences = [longest_sentence(model, span) for span in spans]
@@ -192,6 +200,11 @@ class ResultSheet(QWidget):
         assessment = self._state.assessment
         if assessment is None:  # blanked by another listener in the meantime
             return
+        with held_layouts(self._body, self.crown, self.findings, self.people, self.people.counts):
+            self._show(assessment)
+        self._announce(assessment)
+
+    def _show(self, assessment: Assessment) -> None:
         estimate = assessment.estimate
         if estimate is None:
             self.number.clear()
@@ -207,7 +220,6 @@ class ResultSheet(QWidget):
         labels = {field.id: field.label for field in assessment.model.fields}
         self.findings.show_findings(numbered_findings(assessment), labels)
         self.findings.show()
-        self._announce(assessment)
 
     def _show_charts(self, assessment: Assessment | None) -> None:
         """Small grid, ruler and people of an assessment; their empty places where there is no number."""
@@ -232,6 +244,7 @@ class ResultSheet(QWidget):
         """Tell a screen reader when a number comes or goes, or a grade of finding; not at every key."""
         listed = [] if assessment is None else [finding for _, finding in numbered_findings(assessment)]
         grades = tuple(sorted({finding.grade for finding in listed}))
+        self._tell_stops()
         due = (bool(self.number.figure), grades)
         if due == self._announced:
             return
@@ -239,7 +252,12 @@ class ResultSheet(QWidget):
         what = self.number.percentage or self.headline.text()
         words = f"{what}, {grades_in_words(listed)}" if assessment is not None else what
         QAccessible.updateAccessibility(QAccessibleAnnouncementEvent(self, words))
-        self.stops_changed.emit()
+
+    def _tell_stops(self) -> None:
+        stops = self.tab_stops()
+        if stops != self._stops:
+            self._stops = stops
+            self.stops_changed.emit()
 
 
 def _inset(left: int, right: int, *widgets: QWidget) -> QVBoxLayout:

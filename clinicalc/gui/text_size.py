@@ -1,7 +1,8 @@
 """Text as large as the system's: where its text is larger than usual, the whole window is drawn larger.
 
-Not the letters alone: marks, rows, frames and figures grow with them, and the window takes its one-column form when it has
-room for no more. Most systems scale every program themselves and need nothing here; others only enlarge their font.
+Not the letters alone: marks, rows, frames and figures grow with them, and the window takes its one-column form when
+it has room for no more. Most systems scale every program themselves and need nothing here; others only enlarge their
+font.
 """
 
 import os

@@ -159,8 +159,11 @@ def _parts_of_qt(t: Tokens) -> str:
     QFileDialog QLineEdit:focus, QPrintDialog QLineEdit:focus {{ border: 2px solid {t.accent}; padding: 0 3px; }}
     QScrollBar:vertical {{ background: transparent; width: 10px; margin: 0; }}
     QScrollBar::handle:vertical {{ background: {t.edge}; border-radius: 2px; min-height: 32px; margin: 3px; }}
+    QScrollBar::handle:vertical:disabled {{ background: transparent; }}
+    QScrollBar:horizontal {{ background: transparent; height: 10px; margin: 0; }}
+    QScrollBar::handle:horizontal {{ background: {t.edge}; border-radius: 2px; min-width: 32px; margin: 3px; }}
     QScrollBar::add-line, QScrollBar::sub-line, QScrollBar::add-page, QScrollBar::sub-page
-                   {{ background: none; border: none; height: 0; }}
+                   {{ background: none; border: none; width: 0; height: 0; }}
     QComboBox QAbstractItemView {{ background: {t.field}; color: {t.ink}; border: 1px solid {t.edge};
                    selection-background-color: {t.sel}; selection-color: {t.ink}; padding: 2px; }}
     """

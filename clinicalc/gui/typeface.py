@@ -1,5 +1,7 @@
 """The one typeface of the window, from the shipped files."""
 
+from functools import cache
+
 from PySide6.QtGui import QFont, QFontDatabase
 
 from clinicalc.errors import ShippedFileMissing
@@ -23,6 +25,11 @@ def load_typeface() -> None:
 
 def face(pixels: int = BASE, *, semibold: bool = False) -> QFont:
     """The font at a size in whole pixels: figures of one width, no hinting, no kerning, so that columns stand still."""
+    return QFont(_made(pixels, semibold=semibold))
+
+
+@cache
+def _made(pixels: int, *, semibold: bool) -> QFont:
     font = QFont(FAMILY)
     font.setPixelSize(pixels)
     font.setWeight(QFont.Weight.DemiBold if semibold else QFont.Weight.Normal)

@@ -2,7 +2,8 @@
 
 from itertools import groupby
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QCoreApplication, QEvent, Qt, Signal
+from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QApplication, QHBoxLayout, QLineEdit, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
 
 from clinicalc.assessment.fields import Field, NumberField
@@ -22,6 +23,7 @@ from clinicalc.gui.wording import numbered_findings
 from clinicalc.gui.worked_out_row import WorkedOutRow
 
 PRINT_LABEL = "Name or number"
+_ABOVE_AND_BELOW = 12
 
 
 class LabelRow(QWidget):
@@ -112,6 +114,18 @@ class ValuesPane(QScrollArea):
         self.setFixedWidth(width or (PANE_WIDTH_COMPACT if compact else PANE_WIDTH))
         self._fit()
 
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """A scroll bar that came or went takes its width from the margin, and nothing else moves."""
+        super().resizeEvent(event)
+        self._keep_margin()
+
+    def _keep_margin(self) -> None:
+        body = self.widget()
+        layout = None if body is None else body.layout()
+        if layout is not None:
+            bar = self.width() - self.viewport().width()
+            layout.setContentsMargins(SIDE_MARGIN, _ABOVE_AND_BELOW, max(0, SIDE_MARGIN - RING - bar), _ABOVE_AND_BELOW)
+
     def _fit(self) -> None:
         room = self.width() - 2 * SIDE_MARGIN + RING
         for row in self.rows.values():
@@ -121,6 +135,10 @@ class ValuesPane(QScrollArea):
         if self.label_row is not None:
             wide = room - LABEL_WIDTH - COLUMN_GAP
             self.label_row.frame.setFixedWidth(wide)
+        # at once, from the rows upwards, and not some events later: lines would meanwhile break at the width before
+        for part in (*self.rows.values(), self.label_row, self.widget()):
+            if part is not None:
+                QCoreApplication.sendEvent(part, QEvent(QEvent.Type.LayoutRequest))
 
     def _take_model(self) -> None:
         if self._state.model is not self._model:
@@ -137,9 +155,9 @@ class ValuesPane(QScrollArea):
         body = QWidget()
         body.setObjectName("ground")
         column = QVBoxLayout(body)
-        column.setContentsMargins(SIDE_MARGIN, 12, SIDE_MARGIN - RING, 12)
         column.setSpacing(0)
         self.setWidget(body)
+        self._keep_margin()
         return column
 
     def _build(self) -> None:

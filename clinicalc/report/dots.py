@@ -7,6 +7,8 @@ is always 100 people; where the number is no whole person of 100, part of its fi
 """
 
 from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import lru_cache
 from math import cos, pi, sin
 
 from clinicalc.assessment.numerals import of_people
@@ -26,16 +28,20 @@ def draw_small_grid(probability: float, side: float = SMALL_SIDE) -> Figure:
     full = int(people)
     part = people - full
     ring = full if people < 100 else 99
-    shapes: list[Shape] = []
-    for place in range(100):
-        x, y = (place % _SIDE + 0.5) * pitch, (place // _SIDE + 0.5) * pitch
-        if whole == 1000 and place == ring:
-            shapes += _partly_filled(x, y, 0.45 * pitch, part)
-        elif place < full:
-            shapes.append(Dot(x, y, 0.45 * pitch, fill=Tone.ACCENT))
-        else:
-            shapes.append(Dot(x, y, 0.27 * pitch, fill=Tone.EDGE))
-    return Figure(side, side, tuple(shapes), _sentence(count, whole, probability), _table(count, whole, probability))
+    filled, empty = _small_dots(pitch)
+    shapes: tuple[Shape, ...] = (*filled[:full], *empty[full:])
+    if whole == 1000:
+        x, y = filled[ring].x, filled[ring].y
+        shapes = (*filled[:ring], *_partly_filled(x, y, 0.45 * pitch, part), *empty[ring + 1 :])
+    return Figure(side, side, shapes, _sentence(count, whole, probability), _table(count, whole, probability))
+
+
+@lru_cache(maxsize=8)
+def _small_dots(pitch: float) -> tuple[tuple[Dot, ...], tuple[Dot, ...]]:
+    """All people of the small grid as full dots, and all of them as empty ones."""
+    places = [((at % _SIDE + 0.5) * pitch, (at // _SIDE + 0.5) * pitch) for at in range(_SIDE * _SIDE)]
+    full = tuple(Dot(x, y, 0.45 * pitch, fill=Tone.ACCENT) for x, y in places)
+    return full, tuple(Dot(x, y, 0.27 * pitch, fill=Tone.EDGE) for x, y in places)
 
 
 def draw_people(probability: float, dot: float = DOT, room: float | None = None) -> Figure:
@@ -52,36 +58,56 @@ def draw_people(probability: float, dot: float = DOT, room: float | None = None)
         pitch = wide / (_WIDE + 0.6)
         gap, radius, columns, rows = 0.6 * pitch, 0.36 * pitch, _WIDE, _HIGH
         line, empty = 1.0, 0.18 * pitch
-    edge = line / 2  # an outline lies half outside of its circle
-    shapes = []
-    for place in range(whole):
-        row, column = divmod(place, columns)
-        x = edge + radius + column * pitch + (gap if column >= columns // 2 else 0)
-        y = edge + radius + row * pitch + (gap if row >= rows // 2 else 0)
-        shapes.append(_person(x, y, radius, _mark(place, count, whole, probability), line, empty))
-    width = (columns - 1) * pitch + gap + 2 * (radius + edge)
-    height = (rows - 1) * pitch + gap + 2 * (radius + edge)
-    return Figure(width, height, tuple(shapes), _sentence(count, whole, probability), _table(count, whole, probability))
-
-
-def _mark(place: int, count: int | None, whole: int, probability: float) -> bool | None:
-    """Whether a dot is filled; None for the ring that stands for fewer than one person."""
+    layout = _Layout(pitch, gap, radius, columns, rows, line, empty)
+    filled, ring, open_ = layout.people()
     if count is not None:
-        return place < count
-    if probability < 0.5:
-        return None if place == 0 else False
-    return None if place == whole - 1 else True
+        shapes = (*filled[:count], *open_[count:])
+    elif probability < 0.5:
+        shapes = (ring[0], *open_[1:])
+    else:
+        shapes = (*filled[:-1], ring[-1])
+    return Figure(
+        layout.width, layout.height, shapes, _sentence(count, whole, probability), _table(count, whole, probability)
+    )
 
 
-def _person(x: float, y: float, radius: float, filled: bool | None, line: float, empty: float | None) -> Dot:
-    """A filled dot, a ring in accent, an open circle or, where dots are small, a smaller dot of radius `empty`."""
-    if filled:
-        return Dot(x, y, radius, fill=Tone.ACCENT)
-    if filled is None:
-        return Dot(x, y, radius, outline=Tone.ACCENT, line=line)
-    if empty is not None:
-        return Dot(x, y, empty, fill=Tone.EDGE)
-    return Dot(x, y, radius, outline=Tone.EDGE, line=line)
+@dataclass(frozen=True, slots=True)
+class _Layout:
+    """Where people stand: `pitch` from dot to dot, `gap` more in the middle; `line` outlines what is not filled.
+
+    Where dots are small, those not filled are smaller dots of radius `empty` instead of open circles.
+    """
+
+    pitch: float
+    gap: float
+    radius: float
+    columns: int
+    rows: int
+    line: float
+    empty: float | None
+
+    @property
+    def width(self) -> float:
+        """With the outlines, which lie half outside of their circles."""
+        return (self.columns - 1) * self.pitch + self.gap + 2 * self.radius + self.line
+
+    @property
+    def height(self) -> float:
+        """With the outlines."""
+        return (self.rows - 1) * self.pitch + self.gap + 2 * self.radius + self.line
+
+    @lru_cache(maxsize=8)  # noqa: B019 (the same few layouts for every keystroke)
+    def people(self) -> tuple[tuple[Dot, ...], tuple[Dot, ...], tuple[Dot, ...]]:
+        """Every person as a filled dot, as a ring in accent that stands for fewer than one person, and as empty."""
+        start = self.line / 2 + self.radius
+        xs = [start + at * self.pitch + (self.gap if at >= self.columns // 2 else 0) for at in range(self.columns)]
+        ys = [start + at * self.pitch + (self.gap if at >= self.rows // 2 else 0) for at in range(self.rows)]
+        places = [(x, y) for y in ys for x in xs]
+        filled = tuple(Dot(x, y, self.radius, fill=Tone.ACCENT) for x, y in places)
+        ring = tuple(Dot(x, y, self.radius, outline=Tone.ACCENT, line=self.line) for x, y in places)
+        if self.empty is not None:
+            return filled, ring, tuple(Dot(x, y, self.empty, fill=Tone.EDGE) for x, y in places)
+        return filled, ring, tuple(Dot(x, y, self.radius, outline=Tone.EDGE, line=self.line) for x, y in places)
 
 
 def _partly_filled(x: float, y: float, radius: float, part: float) -> Iterator[Shape]:

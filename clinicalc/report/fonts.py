@@ -90,7 +90,7 @@ class Lettering:
     def pieces(self, text: str, weight: Weight) -> Iterator[Piece]:
         """The line in parts that are painted one after the other, each accent apart, over the middle of its letter."""
         for font, part in self.runs(text, weight):
-            if part.isascii():  # without accents that stand apart
+            if part.isascii() or not any(map(unicodedata.combining, part)):  # without accents that stand apart
                 yield Piece(part, font)
                 continue
             plain = ""

@@ -6,6 +6,7 @@ uneven: a place on the ruler is no proportion.
 
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from functools import lru_cache
 
 from clinicalc.report.measured import (
     DecisionPoint,
@@ -105,13 +106,15 @@ def _lanes(
                 pass
 
 
-def _under_the_axis(scale: Scale, baseline: float, size: RulerSize, measure: Measure) -> Iterator[Text]:
+@lru_cache(maxsize=16)
+def _under_the_axis(scale: Scale, baseline: float, size: RulerSize, measure: Measure) -> tuple[Text, ...]:
     """The figures of the axis, and a line that says so where the scale is the wide one."""
-    for label in scale.labels(measure, size.text):
-        yield Text(label.x, baseline, label.text, size.text, tone=Tone.SOFT, anchor=Anchor.MIDDLE)
+    labels = scale.labels(measure, size.text)
+    figures = [Text(at.x, baseline, at.text, size.text, tone=Tone.SOFT, anchor=Anchor.MIDDLE) for at in labels]
     if scale.wide:
         words = f"wide scale, {scale.words}"
-        yield Text(scale.left, baseline + 1.3 * size.text, words, size.text, Weight.SEMIBOLD)
+        figures.append(Text(scale.left, baseline + 1.3 * size.text, words, size.text, Weight.SEMIBOLD))
+    return tuple(figures)
 
 
 def _body_height(size: RulerSize, lanes: tuple[Lane, ...]) -> float:
@@ -119,19 +122,18 @@ def _body_height(size: RulerSize, lanes: tuple[Lane, ...]) -> float:
     return size.lane * len(lanes) + 8.0 * size.part
 
 
-def _body(scale: Scale, top: float, axis: float, size: RulerSize, *, known: bool) -> Iterator[Shape]:
-    """Wash, grid, ticks and the axis; without a number no wash and fainter ticks."""
+@lru_cache(maxsize=16)
+def _body(scale: Scale, top: float, axis: float, size: RulerSize, *, known: bool) -> tuple[Shape, ...]:
+    """Wash, grid, ticks and the axis; without a number no wash and fainter ticks. The same few at every keystroke."""
     start, end = scale.left, scale.left + scale.width
-    if known:
-        yield Rect(start, top, scale.width, axis - top, fill=Tone.WASH)
     ticks = scale.ticks()
-    for tick in ticks:
-        if tick.size is TickSize.MAJOR:
-            yield Line(tick.x, top, tick.x, axis, size.line, Tone.RULE)
+    shapes: list[Shape] = [Rect(start, top, scale.width, axis - top, fill=Tone.WASH)] if known else []
+    shapes += [Line(at.x, top, at.x, axis, size.line, Tone.RULE) for at in ticks if at.size is TickSize.MAJOR]
     for tick in ticks:
         tone = Tone.INK if known and tick.size is not TickSize.MINOR else Tone.EDGE
-        yield Line(tick.x, axis - _TICK_HEIGHTS[tick.size] * size.part, tick.x, axis, size.line, tone)
-    yield Line(start, axis, end, axis, size.line, Tone.INK if known else Tone.EDGE)
+        shapes.append(Line(tick.x, axis - _TICK_HEIGHTS[tick.size] * size.part, tick.x, axis, size.line, tone))
+    shapes.append(Line(start, axis, end, axis, size.line, Tone.INK if known else Tone.EDGE))
+    return tuple(shapes)
 
 
 def _band(scale: Scale, band: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:

@@ -3,7 +3,7 @@
 Shapes name their ink and know no colour: paper and each theme of the window bring a colour for every name.
 """
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Hashable, Iterable, Iterator
 from dataclasses import dataclass, replace
 from enum import Enum, StrEnum, auto
 from typing import Protocol
@@ -37,7 +37,7 @@ class Anchor(Enum):
     END = auto()
 
 
-class Measure(Protocol):
+class Measure(Hashable, Protocol):
     """How wide a text runs; `Lettering.width` is one."""
 
     def __call__(self, text: str, size: float, weight: Weight = Weight.REGULAR, /) -> float:

@@ -4,11 +4,13 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from math import isfinite
 from typing import TYPE_CHECKING, overload
 
 from clinicalc.errors import UnitError
 from clinicalc.units.quantity import Quantity
+from clinicalc.units.quantity import quantity as known_quantity
 from clinicalc.units.unit import unit
 
 if TYPE_CHECKING:
@@ -55,6 +57,18 @@ def conversion(quantity: Quantity, from_code: str, to_code: str, factor: float |
     creatinine mg/dL to µmol/L) and replaces the table's. Raises UnitError with the reason when a unit is not one of
     the quantity's, when its units never convert, and when `factor` has no use here.
     """
+    if quantity is known_quantity(quantity.id):
+        return _conversion_of(quantity.id, from_code, to_code, factor)
+    return _work_out(quantity, from_code, to_code, factor)
+
+
+@lru_cache(maxsize=4096)
+def _conversion_of(id: str, from_code: str, to_code: str, factor: float | None) -> Conversion:
+    """The conversion of a quantity of the table, worked out once: the fractions cost more than all that uses them."""
+    return _work_out(known_quantity(id), from_code, to_code, factor)
+
+
+def _work_out(quantity: Quantity, from_code: str, to_code: str, factor: float | None) -> Conversion:
     for code in (from_code, to_code):
         _refuse_foreign(quantity, code)
     molar_factor = _choose_factor(quantity, factor)

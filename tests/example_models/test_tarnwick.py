@@ -214,6 +214,7 @@ def test_a_patient_it_is_not_for_gets_no_number(model: Model, field: str, typed:
     }
     whole = assess(model, entry_from_texts(patient), at=MOMENT)
     # nothing about this patient: only what the file says of itself
-    assert [finding.message for finding in whole.findings] == [f"About this model: {c}" for c in model.content.use.cautions]
+    said = [f"About this model: {caution}" for caution in model.content.use.cautions]
+    assert [finding.message for finding in whole.findings] == said
     assert whole.estimate is not None
     assert assess(model, entry_from_texts(patient | {field: typed}), at=MOMENT).estimate is None

@@ -18,7 +18,7 @@ from clinicalc.operations.bedside import open_example
 
 
 @pytest.fixture(scope="session", autouse=True)
-def _dressed(qapp: QApplication) -> None:
+def _dressed(_own_folders: None, qapp: QApplication) -> None:
     dress(qapp)
 
 

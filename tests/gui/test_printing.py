@@ -1,4 +1,4 @@
-"""Printer, preview and PDF show the same pages, and nothing is printed of values that have changed since."""
+"""Printer and PDF show the same pages, and nothing is printed of values that have changed since."""
 
 import shutil
 import subprocess
@@ -8,18 +8,15 @@ from pathlib import Path
 import numpy as np
 import pytest
 from numpy.typing import NDArray
-from PySide6.QtCore import QRectF, Qt
-from PySide6.QtGui import QColor, QImage, QPageSize, QPainter
-from PySide6.QtPrintSupport import QPrinter, QPrintPreviewWidget
-from PySide6.QtWidgets import QGraphicsView
+from PySide6.QtGui import QImage, QPageSize
+from PySide6.QtPrintSupport import QPrinter
+from PySide6.QtWidgets import QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.errors import PrintRefused
 from clinicalc.gui import printing
-from clinicalc.gui.painting import colours_of, paint
-from clinicalc.gui.printing import PrintPreview, make_printer, paint_document, preview
-from clinicalc.gui.tokens import LIGHT
+from clinicalc.gui.printing import PrintJob, make_printer, paint_document, preview
 from clinicalc.operations.documents import lay_out_print
 from clinicalc.report import Paper as Sheet
 from clinicalc.report import make_report
@@ -56,9 +53,9 @@ def words_of(pdf: bytes) -> list[str]:
     return [" ".join(page.split()) for page in pages_of(pdf)]
 
 
-def rastered(pdf: bytes, folder: Path, name: str) -> list[Pixels]:
+def rastered(pdf: bytes, folder: Path, name: str, dpi: float = DPI) -> list[Pixels]:
     (folder / f"{name}.pdf").write_bytes(pdf)
-    subprocess.run(["pdftoppm", "-r", str(DPI), "-png", str(folder / f"{name}.pdf"), str(folder / name)], check=True)
+    subprocess.run(["pdftoppm", "-r", str(dpi), "-png", str(folder / f"{name}.pdf"), str(folder / name)], check=True)
     return [pixels_of(QImage(str(picture))) for picture in sorted(folder.glob(f"{name}-*.png"))]
 
 
@@ -119,83 +116,52 @@ def test_a_printer_gets_letters_and_no_pictures_of_them(tmp_path: Path) -> None:
     assert len(images.stdout.splitlines()) <= 2  # the head of an empty list
 
 
-def opened(qtbot: QtBot, assessment: Assessment, current: list[bool], paper: Paper = Paper.A4) -> PrintPreview:
-    dialog = PrintPreview(None, assessment, lambda: current[0], practice=PRACTICE, paper=paper)
-    qtbot.addWidget(dialog)
-    dialog.show()
-    return dialog
+def job_of(
+    assessment: Assessment, current: list[bool], path: Path, meanwhile: Callable[[], None] = lambda: None
+) -> PrintJob:
+    """A job whose printer, once chosen, writes a file; `meanwhile` happens while it is being chosen."""
+
+    def choose(printer: QPrinter, _: QWidget | None) -> bool:
+        printer.setOutputFormat(QPrinter.OutputFormat.PdfFormat)
+        printer.setOutputFileName(str(path))
+        meanwhile()
+        return True
+
+    return PrintJob(assessment, lambda: current[0], practice=PRACTICE, choose=choose)
 
 
-def test_the_preview_shows_the_pages_that_the_pdf_is_painted_from(qtbot: QtBot) -> None:
-    """The same shapes painted straight away: their likeness to the PDF is measured elsewhere, with sharp letters."""
-    assessment = run("tarnwick-cvd-10y", DEMO)
-    dialog = opened(qtbot, assessment, [True], Paper.LETTER)
-    view, shown = dialog.findChild(QGraphicsView), dialog.findChild(QPrintPreviewWidget)
-    assert isinstance(view, QGraphicsView)
-    assert isinstance(shown, QPrintPreviewWidget)
-    shown.updatePreview()
-    document = lay_out_print(assessment, practice=PRACTICE, paper=Paper.LETTER, printed_at=dialog.printed_at)
-    assert shown.pageCount() == len(document.pages) == 3
-    lettering, colours = document.lettering, colours_of(LIGHT)
-    for page, preview_of_it in zip(document.pages, pages_in(view), strict=True):
-        image = blank_sheet()
-        painter = QPainter(image)
-        paint(painter, page.shapes, colours, lettering, scale=DPI / 72, snap=False)
-        painter.end()
-        assert share_differing(pixels_of(image), preview_of_it) <= MOST_DIFFERING
-
-
-def blank_sheet() -> QImage:
-    """A sheet of Letter at the resolution of the comparison."""
-    image = QImage(round(612 * DPI / 72), round(792 * DPI / 72), QImage.Format.Format_RGB32)
-    image.fill(QColor("white"))
-    return image
-
-
-def pages_in(view: QGraphicsView) -> list[Pixels]:
-    """Every page of the preview as pixels, in order."""
-    scene = view.scene()
-    pictures = []
-    for item in sorted(scene.items(), key=lambda item: (item.pos().y(), item.pos().x())):
-        image = blank_sheet()
-        painter = QPainter(image)
-        round_it = -item.boundingRect().left()  # kept free for the shadow: the sheet itself begins at nought
-        sheet = item.mapRectToScene(item.boundingRect()).adjusted(round_it, round_it, -round_it, -round_it)
-        scene.render(painter, QRectF(image.rect()), sheet, Qt.AspectRatioMode.IgnoreAspectRatio)
-        painter.end()
-        pictures.append(pixels_of(image))
-    return pictures
-
-
-def test_what_is_printed_from_the_preview_is_the_print(qtbot: QtBot, tmp_path: Path) -> None:
-    dialog = opened(qtbot, with_band("Ottilie Fenn"), [True])
-    send(dialog, tmp_path / "sent.pdf")
+def test_what_is_sent_to_the_printer_is_the_print(qtbot: QtBot, tmp_path: Path) -> None:
+    job = job_of(with_band("Ottilie Fenn"), [True], tmp_path / "sent.pdf")
+    assert job.send(None, Paper.A4, patient_page=True)
     pages = words_of((tmp_path / "sent.pdf").read_bytes())
     assert len(pages) == 3
     assert "Ottilie Fenn" in pages[0]
     assert "18.2 % An invented event within 10 years" in pages[0]
-    assert dialog.refusal == ""
 
 
-def send(dialog: PrintPreview, path: Path) -> None:
-    """Print as the print button does, once a printer is chosen: this one writes a file."""
-    dialog.printer_in_use.setOutputFormat(QPrinter.OutputFormat.PdfFormat)
-    dialog.printer_in_use.setOutputFileName(str(path))
-    widget = dialog.findChild(QPrintPreviewWidget)
-    assert isinstance(widget, QPrintPreviewWidget)
-    widget.print_()
+def test_what_is_sent_has_the_patient_page_only_where_it_is_wanted(qtbot: QtBot, tmp_path: Path) -> None:
+    assert job_of(with_band(), [True], tmp_path / "sent.pdf").send(None, Paper.LETTER, patient_page=False)
+    pages = words_of((tmp_path / "sent.pdf").read_bytes())
+    assert len(pages) == 2
+    assert all("For the clinician" in page for page in pages)
 
 
-def test_a_value_changed_after_the_preview_is_not_printed(qtbot: QtBot, tmp_path: Path) -> None:
+def test_a_value_changed_while_the_printer_is_chosen_is_not_printed(qtbot: QtBot, tmp_path: Path) -> None:
     current = [True]
-    dialog = opened(qtbot, with_band(), current)
-    qtbot.waitUntil(dialog.isVisible)
-    assert dialog.refusal == ""
-    current[0] = False
-    send(dialog, tmp_path / "sent.pdf")
+
+    def change() -> None:
+        current[0] = False
+
+    job = job_of(with_band(), current, tmp_path / "sent.pdf", change)
+    job.check()
+    with pytest.raises(PrintRefused, match="the values on screen have changed since this preview was opened"):
+        job.send(None, Paper.A4, patient_page=True)
     assert not (tmp_path / "sent.pdf").exists()
-    assert "the values on screen have changed since this preview was opened" in dialog.refusal
-    qtbot.waitUntil(lambda: not dialog.isVisible())
+
+
+def test_no_printer_chosen_prints_nothing(qtbot: QtBot) -> None:
+    job = PrintJob(with_band(), lambda: True, choose=lambda *_: False)
+    assert not job.send(None, Paper.A4, patient_page=True)
 
 
 def test_the_refusal_is_said_in_a_sentence(qtbot: QtBot) -> None:
@@ -220,7 +186,7 @@ def test_a_name_that_cannot_be_printed_opens_no_preview() -> None:
         (QPageSize.PageSizeId.A5, Paper.LETTER),  # of neither size: the nearer one, made smaller
     ],
 )
-def test_another_sheet_chosen_in_the_preview_gets_its_own_layout(size: QPageSize.PageSizeId, wanted: Paper) -> None:
+def test_another_sheet_chosen_at_the_printer_gets_its_own_layout(size: QPageSize.PageSizeId, wanted: Paper) -> None:
     printer = make_printer(Paper.A4, "a print")
     printer.setPageSize(QPageSize(size))
     assert printing._paper_of(printer) is wanted
@@ -235,7 +201,12 @@ def test_a_printer_that_does_not_begin_is_answered_in_words(tmp_path: Path) -> N
         paint_document(printer, lay_out_print(with_band()))
 
 
-def test_the_name_of_the_job_says_nothing_about_the_patient(qtbot: QtBot) -> None:
-    dialog = opened(qtbot, with_band("Ottilie Fenn"), [True])
-    assert dialog.printer_in_use.docName() == "tiny-logit 2026-12-01 1418"
-    assert "Fenn" not in dialog.windowTitle()
+def test_the_name_of_the_job_says_nothing_about_the_patient() -> None:
+    named: list[str] = []
+
+    def note(printer: QPrinter, _: QWidget | None) -> bool:
+        named.append(printer.docName())
+        return False
+
+    PrintJob(with_band("Ottilie Fenn"), lambda: True, choose=note).send(None, Paper.A4, patient_page=True)
+    assert named == ["tiny-logit 2026-12-01 1418"]

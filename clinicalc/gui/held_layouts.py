@@ -1,0 +1,32 @@
+"""One arrangement for many changes: layouts that wait until everything that changes has changed."""
+
+from collections.abc import Iterator
+from contextlib import contextmanager
+
+from PySide6.QtCore import QCoreApplication, QEvent
+from PySide6.QtWidgets import QWidget
+
+_ROUNDS = 2
+"""What is inside may ask for more room once it knows its own."""
+
+
+@contextmanager
+def held_layouts(*widgets: QWidget) -> Iterator[None]:
+    """Keep the layouts of these widgets still, the outer ones named first; afterwards they settle at once.
+
+    Qt arranges all layouts above a widget anew for every single one that is shown, and paints once in between where
+    one arrangement leads to another.
+    """
+    held = [(widget, layout) for widget in widgets if (layout := widget.layout()) is not None and layout.isEnabled()]
+    for _, layout in held:
+        layout.setEnabled(False)
+    try:
+        yield
+    finally:
+        for widget, layout in held:
+            layout.setEnabled(True)
+            # what was asked for meanwhile went unheard
+            QCoreApplication.postEvent(widget, QEvent(QEvent.Type.LayoutRequest))
+        for _ in range(_ROUNDS):
+            for widget, _ in reversed(held):
+                QCoreApplication.sendPostedEvents(widget, QEvent.Type.LayoutRequest.value)

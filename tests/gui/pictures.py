@@ -1,0 +1,200 @@
+"""Pictures of the window in every state, and of prints, to be looked at: `python -m tests.gui.pictures FOLDER`.
+
+Light and dark; 1280 x 800, 1024 x 640, and 200 % text, which is a window of 640 x 400 on a screen that doubles
+everything. Offscreen, so no picture shows the desktop of whoever makes them. The prints need pdftoppm (poppler-utils);
+without it they are left out, and the last line says so.
+"""
+
+import argparse
+import os
+import shutil
+import subprocess
+import sys
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass, field
+from pathlib import Path
+from tempfile import TemporaryDirectory
+
+from PySide6.QtCore import QMessageLogContext, QSize, Qt, QtMsgType, qInstallMessageHandler
+from PySide6.QtWidgets import QApplication, QDialog, QWidget
+
+from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.gui import theme
+from clinicalc.gui.about_view import AboutView
+from clinicalc.gui.application import dress
+from clinicalc.gui.guide_view import GuideView
+from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
+from clinicalc.operations.bedside import open_example
+from clinicalc.operations.documents import save_pdf
+from clinicalc.resources import read_shipped
+from clinicalc.settings import Paper, ThemeChoice
+from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, run
+
+TARNWICK, LIPIDS, REGIONAL = "tarnwick-cvd-10y", "general-cvd-2008-lipids", "cvd-2021-regional"
+SCALE = "QT_SCALE_FACTOR"
+USUAL = QSize(1280, 800)
+THEMES = (ThemeChoice.LIGHT, ThemeChoice.DARK)
+_DOTS_PER_INCH = 100
+_LOW = {"age": "36", "smoker": "no", "systolic_bp": "100", "hdl_cholesterol": "2.2"}
+_HIGH = {"age": "72", "sex": "male", "total_cholesterol": "230", "hdl_cholesterol": "38", "systolic_bp": "150"} | {
+    "bp_treated": "yes",
+    "diabetes": "yes",
+}
+
+
+def _leave_alone(window: MainWindow) -> None:
+    """A state that needs nothing but its entry."""
+
+
+def _choose_low_risk(window: MainWindow) -> None:
+    chooser = window.model_bar.recalibration.chooser
+    chooser.setCurrentIndex(chooser.findData("low"))
+
+
+def _refuse(window: MainWindow) -> None:
+    """Open a file with a misspelt field, and so without one that it needs."""
+    with TemporaryDirectory() as folder:
+        path = Path(folder) / "tarnwick-draft.json"
+        path.write_bytes(read_shipped(f"example_models/{TARNWICK}.json").replace(b'"title"', b'"titel"', 1))
+        window.open_path(path)
+
+
+def _focus_finding(window: MainWindow) -> None:
+    window.sheet.findings.tab_stops()[0].setFocus(Qt.FocusReason.TabFocusReason)
+
+
+def _show_text(window: MainWindow) -> None:
+    window.sheet.people.toggle_text()
+
+
+@dataclass(frozen=True, slots=True)
+class State:
+    """One thing to be seen: a shipped model or none, what is typed, and what is done then."""
+
+    name: str
+    model: str | None
+    typed: Mapping[str, str] = field(default_factory=dict)
+    then: Callable[[MainWindow], None] = _leave_alone
+
+
+STATES = (
+    State("valid-band", TARNWICK, DEMO),
+    State("valid-no-band", LIPIDS, WOMAN_61),
+    State("stop", TARNWICK, DEMO | {"total_cholesterol": "5.2 mg/dL"}),
+    State("excluded", TARNWICK, DEMO | {"prior_cvd": "yes"}),
+    State("no-number-yet", TARNWICK, {"prior_cvd": "no", "age": "61"}),
+    State("under-1", TARNWICK, DEMO | _LOW),
+    State("over-80", LIPIDS, WOMAN_61 | _HIGH),
+    State("outside-derivation", TARNWICK, DEMO | {"systolic_bp": "210"}),
+    State("too-old", TARNWICK, DEMO | {"age": "80", "systolic_bp": "210"}),
+    State("recalibration-open", REGIONAL, MAN_50),
+    State("recalibration-chosen", REGIONAL, MAN_50, _choose_low_risk),
+    State("finding-in-focus", TARNWICK, DEMO | {"total_cholesterol": "5.2 mg/dL"}, _focus_finding),
+    State("charts-as-text", TARNWICK, DEMO, _show_text),
+    State("refused-file", TARNWICK, DEMO, _refuse),
+    State("no-file", None),
+)
+
+
+def _pass_on(_: QtMsgType, __: QMessageLogContext, message: str) -> None:
+    """What Qt says, but for what the offscreen platform says of every window."""
+    if not message.startswith("This plugin does not support"):
+        sys.stderr.write(f"{message}\n")
+
+
+def _settle() -> None:
+    for _ in range(5):
+        QApplication.processEvents()
+
+
+def _open(state: State, size: QSize) -> MainWindow:
+    window = MainWindow(choose_open=lambda _: None, choose_save=lambda *_: None)
+    window.resize(size)
+    window.show()
+    window.activateWindow()
+    if state.model is not None:
+        window.use_model(open_example(f"{state.model}.json"), entry_from_texts(state.typed, "F 2031"))
+    _settle()
+    state.then(window)
+    _settle()
+    return window
+
+
+def _keep(widget: QWidget, path: Path) -> None:
+    if not widget.grab().save(str(path)):
+        raise OSError(f"{path} could not be written")
+
+
+def _picture_dialogs(folder: Path, suffix: str) -> Iterator[Path]:
+    window = _open(STATES[0], USUAL)
+    window.page_bar.guide.click()
+    window.page_bar.about.trigger()
+    _settle()
+    kinds: Mapping[type[QDialog], str] = {GuideView: "guide", AboutView: "about"}
+    for view in window.findChildren(QDialog):
+        path = folder / f"{kinds[type(view)]}-{suffix}.png"
+        _keep(view, path)
+        yield path
+    window.close()
+    window.deleteLater()
+
+
+def picture_windows(folder: Path, sizes: Mapping[str, QSize]) -> Iterator[Path]:
+    """Every state in every size, light and dark, then guide and about; yields the files as they are written."""
+    for choice in THEMES:
+        theme.choose(choice)
+        for label, size in sizes.items():
+            for state in STATES:
+                window = _open(state, size)
+                path = folder / f"{state.name}-{choice}-{label}.png"
+                _keep(window, path)
+                yield path
+                window.close()
+                window.deleteLater()
+        yield from _picture_dialogs(folder, f"{choice}-{next(iter(sizes))}")
+
+
+def picture_prints(folder: Path) -> Iterator[Path]:
+    """The pages of prints with and without a band, on A4 and Letter. Nothing where there is no pdftoppm."""
+    tool = shutil.which("pdftoppm")
+    if tool is None:
+        return
+    for name, model, typed in (("valid-band", TARNWICK, DEMO), ("valid-no-band", LIPIDS, WOMAN_61)):
+        for paper in Paper:
+            pdf = folder / f"print-{name}-{paper}.pdf"
+            save_pdf(pdf, run(model, typed), practice="Tarnwick Northgate", paper=paper)
+            subprocess.run([tool, "-r", str(_DOTS_PER_INCH), "-png", str(pdf), str(pdf.with_suffix(""))], check=True)
+            yield from sorted(folder.glob(f"{pdf.stem}-*.png"))
+
+
+def main() -> None:
+    """Make them all; the doubled windows in a process of their own, since Qt reads the scale when it starts."""
+    parser = argparse.ArgumentParser(prog="python -m tests.gui.pictures", description="Pictures of every state.")
+    parser.add_argument("folder", type=Path, help="where the pictures go; made if need be")
+    parser.add_argument("--doubled-only", action="store_true", help="only the windows at 200 %% text")
+    words = parser.parse_args()
+    folder: Path = words.folder
+    folder.mkdir(parents=True, exist_ok=True)
+    if words.doubled_only and os.environ.get(SCALE) != "2":
+        raise SystemExit(subprocess.run(_again(folder), env=os.environ | {SCALE: "2"}, check=False).returncode)
+    os.environ["QT_QPA_PLATFORM"] = "offscreen"
+    qInstallMessageHandler(_pass_on)
+    dress(QApplication([]))
+    if words.doubled_only:
+        made = list(picture_windows(folder, {"200": NARROWEST}))
+    else:
+        made = list(picture_windows(folder, {"1280": USUAL, "1024": SMALLEST}))
+        prints = list(picture_prints(folder))
+        made += prints
+        if not prints:
+            sys.stdout.write("no pictures of prints: pdftoppm is not installed (Debian package poppler-utils)\n")
+        subprocess.run(_again(folder), env=os.environ | {SCALE: "2"}, check=True)
+    sys.stdout.write(f"{len(made)} pictures in {folder}\n")
+
+
+def _again(folder: Path) -> list[str]:
+    return [sys.executable, "-m", "tests.gui.pictures", str(folder), "--doubled-only"]
+
+
+if __name__ == "__main__":
+    main()
