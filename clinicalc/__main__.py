@@ -45,7 +45,8 @@ def _open_window(case: DemoCase | None = None) -> int:
     # before Qt: its import hook makes every module that is loaded after it dearer
     import clinicalc.operations.bedside
     import clinicalc.operations.documents
-    import clinicalc.operations.guide  # noqa: F401
+    import clinicalc.operations.summary
+    import clinicalc.report.ruler  # noqa: F401
     from clinicalc.gui.preflight import check_platform
 
     trouble = check_platform()

@@ -1,5 +1,6 @@
 """The window: page bar, model line, values and result side by side, foot."""
 
+from collections.abc import Callable
 from dataclasses import replace
 from itertools import pairwise
 from pathlib import Path
@@ -12,11 +13,9 @@ from clinicalc.assessment.entry import PatientEntry
 from clinicalc.assessment.model import Model
 from clinicalc.errors import ClinicalcError
 from clinicalc.gui import theme
-from clinicalc.gui.about_view import AboutView
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.file_dialogs import ChooseOpen, ChooseSave, ask_where_to_save, ask_which_file
 from clinicalc.gui.foot_bar import FootBar
-from clinicalc.gui.guide_view import GuideView
 from clinicalc.gui.labels import make_rule
 from clinicalc.gui.model_bar import ModelBar
 from clinicalc.gui.outputs import Outputs, ShowPreview, show_print_preview
@@ -57,7 +56,7 @@ class MainWindow(QWidget):
         self._number = number
         self._left_field: QWidget | None = None
         self._choose_open = choose_open
-        self._beside: dict[type[QDialog], QDialog] = {}
+        self._beside: dict[Callable[[QWidget], QDialog], QDialog] = {}
         self.setObjectName("ground")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.setMinimumSize(NARROWEST)
@@ -145,8 +144,8 @@ class MainWindow(QWidget):
         self.foot.new_patient.clicked.connect(self.begin_new_patient)
         self.refusal.closed.connect(self._close_refusal)
         self.page_bar.theme_chosen.connect(self._choose_theme)
-        self.page_bar.about.triggered.connect(lambda: self._open_beside(AboutView))
-        self.page_bar.guide.clicked.connect(lambda: self._open_beside(GuideView))
+        self.page_bar.about.triggered.connect(lambda: self._open_beside(_make_about))
+        self.page_bar.guide.clicked.connect(lambda: self._open_beside(_make_guide))
         self.preferences.changed.connect(self._show_settings)
         self.preferences.refused.connect(self.foot.say)
         self.values.rebuilt.connect(self._take_rows)
@@ -182,11 +181,11 @@ class MainWindow(QWidget):
         theme.choose(choice)
         self.preferences.take(replace(self.preferences.settings, theme=choice))
 
-    def _open_beside(self, kind: type[AboutView] | type[GuideView]) -> None:
+    def _open_beside(self, make: Callable[[QWidget], QDialog]) -> None:
         """Guide and notices open beside the window, each once."""
-        if kind not in self._beside:
-            self._beside[kind] = kind(self)
-        view = self._beside[kind]
+        if make not in self._beside:
+            self._beside[make] = make(self)
+        view = self._beside[make]
         view.show()
         view.raise_()
         view.activateWindow()
@@ -256,3 +255,16 @@ class MainWindow(QWidget):
         ]
         for before, after in pairwise(chain):
             QWidget.setTabOrder(before, after)
+
+
+def _make_guide(parent: QWidget) -> QDialog:
+    # loaded when it is first asked for, not at every start
+    from clinicalc.gui.guide_view import GuideView
+
+    return GuideView(parent)
+
+
+def _make_about(parent: QWidget) -> QDialog:
+    from clinicalc.gui.about_view import AboutView
+
+    return AboutView(parent)

@@ -13,7 +13,7 @@ from clinicalc.gui.labels import make_line
 from clinicalc.gui.painting import paint
 from clinicalc.gui.tokens import RING
 from clinicalc.gui.typeface import CAPTION
-from clinicalc.report import Document
+from clinicalc.report.document import Document
 from clinicalc.report.palette import PAPER
 from clinicalc.report.shapes import Text, Tone
 

@@ -18,7 +18,7 @@ from clinicalc.gui.page_stack import PageStack, Zoom
 from clinicalc.gui.segments import Segments
 from clinicalc.gui.tokens import SHEET_MARGIN, SIDE_MARGIN
 from clinicalc.gui.typeface import HEADLINE, UNIT
-from clinicalc.report import Document
+from clinicalc.report.document import Document
 from clinicalc.settings import Paper
 
 NARROWEST = QSize(560, 360)

@@ -17,7 +17,7 @@ from clinicalc.errors import PrintRefused
 from clinicalc.gui.painting import paint
 from clinicalc.gui.preview_view import PreviewView
 from clinicalc.operations.documents import lay_out_print, suggest_pdf_name
-from clinicalc.report import Document
+from clinicalc.report.document import Document
 from clinicalc.report.palette import PAPER
 from clinicalc.settings import Paper
 

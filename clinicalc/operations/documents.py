@@ -1,13 +1,20 @@
 """The print: saving it, and laying out its pages for a printer or a preview."""
 
+from __future__ import annotations
+
 import os
 from datetime import datetime
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from clinicalc.assessment.result import Assessment
-from clinicalc.report import Document, make_document, save_report, time_of_printing
-from clinicalc.report import Paper as Sheet
+from clinicalc.report.paper import Paper as Sheet
 from clinicalc.settings import Paper
+
+if TYPE_CHECKING:
+    from clinicalc.report.document import Document
+
+# the layout of pages is loaded by the first print, not by every start of the window
 
 
 def save_pdf(
@@ -19,6 +26,8 @@ def save_pdf(
     paper: Paper = Paper.A4,
 ) -> None:
     """Write the print of an assessment. Raises PrintRefused or FileNotWritten; nothing half-written is left."""
+    from clinicalc.report.pdf import save_report
+
     save_report(path, assessment, practice=practice, patient_page=patient_page, paper=Sheet(paper.value))
 
 
@@ -31,6 +40,8 @@ def lay_out_print(
     printed_at: datetime | None = None,
 ) -> Document:
     """The same print as pages to be painted; `printed_at` is now where it is left out. Raises PrintRefused."""
+    from clinicalc.report.document import make_document
+
     return make_document(
         assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=Sheet(paper.value)
     )
@@ -41,6 +52,8 @@ def stated_time() -> datetime | None:
 
     Raises UsageError when that is not a time. Only the command line asks: at the bedside today is today.
     """
+    from clinicalc.report.document import time_of_printing
+
     return time_of_printing() if os.environ.get("SOURCE_DATE_EPOCH", "").strip() else None
 
 

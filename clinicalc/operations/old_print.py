@@ -10,7 +10,7 @@ from pathlib import Path
 import msgspec
 
 from clinicalc.errors import ClinicalcError
-from clinicalc.report import read_attached_record
+from clinicalc.report.attachment import read_attached_record
 
 LARGEST = 32_000_000
 """Bytes. A print of this program has less than a hundredth of that."""

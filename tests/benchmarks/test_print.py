@@ -14,8 +14,9 @@ import pytest
 from pytest_benchmark.fixture import BenchmarkFixture
 from reportlab.pdfgen.canvas import Canvas
 
-from clinicalc.report import make_document, make_report
+from clinicalc.report.document import make_document
 from clinicalc.report.pages import Page
+from clinicalc.report.pdf import make_report
 from clinicalc.report.shapes import Text
 from clinicalc.report.typefaces import Weight
 from tests.assessment.cases import DEMO, run

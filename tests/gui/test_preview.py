@@ -9,9 +9,9 @@ from pytestqt.qtbot import QtBot
 
 from clinicalc.gui import theme
 from clinicalc.gui.page_stack import Zoom
-from clinicalc.report import Paper as Sheet
-from clinicalc.report import make_report
 from clinicalc.report.palette import PAPER
+from clinicalc.report.paper import Paper as Sheet
+from clinicalc.report.pdf import make_report
 from clinicalc.report.shapes import Tone
 from clinicalc.settings import Paper, ThemeChoice
 from tests.gui.previewing import open_preview, picture_of

@@ -19,7 +19,7 @@ from clinicalc.gui.page_stack import SheetView, Zoom
 from clinicalc.gui.preview_view import NARROWEST, PreviewView
 from clinicalc.gui.printing import PrintJob, preview
 from clinicalc.gui.segments import Segment
-from clinicalc.report import Document
+from clinicalc.report.document import Document
 from clinicalc.settings import Paper
 from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, press, retype_number
 from tests.gui.previewing import open_preview, picture_of

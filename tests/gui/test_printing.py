@@ -18,8 +18,8 @@ from clinicalc.errors import PrintRefused
 from clinicalc.gui import printing
 from clinicalc.gui.printing import PrintJob, make_printer, paint_document, preview
 from clinicalc.operations.documents import lay_out_print
-from clinicalc.report import Paper as Sheet
-from clinicalc.report import make_report
+from clinicalc.report.paper import Paper as Sheet
+from clinicalc.report.pdf import make_report
 from clinicalc.settings import Paper
 from tests.assessment.cases import DEMO, WOMAN_61, run
 from tests.report.printing import PRACTICE, PRINTED, pages_of, with_band

@@ -12,7 +12,7 @@ from PySide6.QtWidgets import QApplication, QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.gui.main_window import MainWindow
-from clinicalc.report import read_attached_record
+from clinicalc.report.attachment import read_attached_record
 from tests.cli.calling import call, example
 from tests.gui.bedside_hands import click, number_row, press, retype_number, type_text
 

@@ -16,7 +16,7 @@ from clinicalc.operations.bedside import assess_patient, open_example
 from clinicalc.operations.demonstration import demo_case
 from clinicalc.operations.old_print import OldPrint, Record, read_old_print
 from clinicalc.operations.recheck import Recheck, recheck, report_recheck
-from clinicalc.report import make_report
+from clinicalc.report.pdf import make_report
 from tests.operations.forging import Change, with_changed_record, with_record, without_time
 from tests.report.printing import PRINTED, printed, with_band, without_band
 

@@ -13,7 +13,7 @@ from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.schema import ModelContent
 from clinicalc.coefficients.spans import Span
-from clinicalc.report import make_report
+from clinicalc.report.pdf import make_report
 from tests.coefficients.tiny_model import read_of, tiny_cloglog_model, tiny_logit_model
 
 AT = datetime(2026, 12, 1, 14, 18, tzinfo=UTC)

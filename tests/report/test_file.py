@@ -14,14 +14,15 @@ from pypdf import PdfReader, PdfWriter
 
 from clinicalc.assessment.record import write_record
 from clinicalc.errors import ClinicalcError, UsageError
-from clinicalc.report import make_report, read_attached_record
+from clinicalc.report.attachment import read_attached_record
+from clinicalc.report.pdf import make_report
 from tests.report.printing import AT, PRACTICE, printed, text_of, with_band, without_band
 
 LABEL = "Ottilie Fenn, born 1965"
 
 PRINT_IN_A_PROCESS = """
 import hashlib, sys
-from clinicalc.report import make_report
+from clinicalc.report.pdf import make_report
 from tests.report.printing import without_band
 pdf = make_report(without_band("north", "Ελένη Őry x\\u030c"), practice="Tarnwick Northgate")
 print(hashlib.sha256(pdf).hexdigest(), b"20270115080000" in pdf)

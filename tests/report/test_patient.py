@@ -7,12 +7,12 @@ import pytest
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.schema import ModelContent
-from clinicalc.report import make_report
 from clinicalc.report.compose import compose
 from clinicalc.report.contents import PatientSheet
 from clinicalc.report.fonts import read_lettering
 from clinicalc.report.pages import Page, lay_out
 from clinicalc.report.paper import Paper
+from clinicalc.report.pdf import make_report
 from clinicalc.report.shapes import Dot, Line, Text, Tone
 from tests.assessment.cases import DEMO, FULL, WOMAN_61, run
 from tests.coefficients.tiny_model import tiny_logit_model

@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 
 from clinicalc.errors import FileNotWritten, PrintRefused
-from clinicalc.report import save_report
+from clinicalc.report.pdf import save_report
 from tests.report.printing import PRINTED, printed, with_band
 
 OLDER = b"%PDF-1.4 an older print"
