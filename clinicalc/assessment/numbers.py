@@ -109,7 +109,7 @@ def check_ranges(
         message = f"{named} is unusual; the usual range is {words_for(field, field.usual, code)}.{remedy}"
         yield Finding(Grade.CAUTION, FindingCode.UNUSUAL, field.id, message, offer)
     if not inside:
-        message = f"{lies}, the values this model was made from. The number carries the model’s line beyond its data."
+        message = f"{lies}, the values this model was made from. Beyond them it only carries its line on."
         yield Finding(Grade.CAUTION, FindingCode.OUTSIDE_DERIVATION, field.id, message)
 
 

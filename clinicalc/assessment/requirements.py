@@ -56,5 +56,5 @@ def _say_missing(field: Field) -> str:
         others = " or another unit of it" if len(field.quantity.units) > 1 else ""
         unit = "" if field.unit == "1" else f", in {field.spelling}{others}"
         return f"{field.label} is missing: type a value{unit}."
-    answers = join_words([option.label.lower() for option in field.options], "or")
+    answers = join_words([option.label for option in field.options], "or")
     return f"Not answered: {field.label.rstrip('?')}? Answer {answers}."

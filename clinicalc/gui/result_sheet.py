@@ -74,6 +74,7 @@ class ResultSheet(QWidget):
         self.band_name, self.band_figure = self.lanes.name, self.lanes.figures
         self.band_reason = make_label("", CAPTION)
         self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
+        self.meaning.setContentsMargins(0, 4, 0, 0)  # apart from the reason why there is no band
         self.findings = FindingsList()
         self.people = PeopleView()
         self.outcome = make_label("", CAPTION, soft=True)
