@@ -27,6 +27,7 @@ _BESIDE = 36
 _LINE_WIDTH = 640
 """Longest line of running text, in pixels; longer ones are hard to follow."""
 _MARK_WIDTH = 24
+_RING = 2
 _ABOVE = {BlockKind.HEADING: 14, BlockKind.PARAGRAPH: 4, BlockKind.ITEM: 0, BlockKind.CODE: 4, BlockKind.TITLE: 0}
 
 
@@ -42,6 +43,7 @@ class GuideView(QDialog):
         self.resize(QSize(1000, 720).boundedTo(self.screen().availableSize()))
         self.list = PageList([page.title for page in self.guide_pages])
         self.reader = Reader()
+        self.reader.keep_room(self.guide_pages)
         self.close_button = make_button("&Close")
         self._lay_out()
         self.list.currentRowChanged.connect(self._show_row)
@@ -147,22 +149,45 @@ class Reader(QScrollArea):
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
 
+    def keep_room(self, pages: tuple[Page, ...]) -> None:
+        """Never be narrower than the longest word of these pages takes, so that none is cut and none can scroll off."""
+        blocks = [block for page in pages for block in page.blocks]
+        running = [block.text for block in blocks if block.kind is not BlockKind.HEADING]
+        widest = max(
+            _longest_word([page.title for page in pages], TITLE, semibold=True),
+            _longest_word([block.text for block in blocks if block.kind is BlockKind.HEADING], HEADLINE, semibold=True),
+            _longest_word(running, BASE) + max(_MARK_WIDTH, 2 * CodePlate.BESIDE),
+        )
+        beside = SHEET_MARGIN + SHEET_MARGIN_RIGHT
+        beside += self.verticalScrollBar().sizeHint().width() + 2 * self.frameWidth() + 2 * _RING
+        self.setMinimumWidth(widest + beside)
+
     def show_page(self, page: Page) -> None:
         """Show a page from its top."""
-        body = QWidget()
-        body.setObjectName("sheet")
-        column = QVBoxLayout(body)
-        column.setContentsMargins(SHEET_MARGIN, 20, SHEET_MARGIN_RIGHT, 24)
-        column.setSpacing(8)
-        column.addWidget(make_label(page.title, TITLE, semibold=True))
-        for block in page.blocks:
-            column.addSpacing(_ABOVE[block.kind])
-            column.addWidget(_make_block(block))
-        column.addStretch(1)
-        self.setWidget(body)
+        self.setWidget(_make_body(page))
         self.setAccessibleName(page.title)
         self.setAccessibleDescription(page.text)
         self.verticalScrollBar().setValue(0)
+
+
+def _longest_word(texts: list[str], pixels: int, *, semibold: bool = False) -> int:
+    """The width that a label needs so that none of these texts is cut, wherever its lines may break."""
+    words = dict.fromkeys(word for text in texts for word in text.split())
+    return make_label("\n".join(words), pixels, semibold=semibold).minimumSizeHint().width()
+
+
+def _make_body(page: Page) -> QWidget:
+    body = QWidget()
+    body.setObjectName("sheet")
+    column = QVBoxLayout(body)
+    column.setContentsMargins(SHEET_MARGIN, 20, SHEET_MARGIN_RIGHT, 24)
+    column.setSpacing(8)
+    column.addWidget(make_label(page.title, TITLE, semibold=True))
+    for block in page.blocks:
+        column.addSpacing(_ABOVE[block.kind])
+        column.addWidget(_make_block(block))
+    column.addStretch(1)
+    return body
 
 
 def _make_block(block: Block) -> QWidget:
@@ -196,12 +221,14 @@ def _selectable(label: QLabel) -> QLabel:
 class CodePlate(QWidget):
     """Commands as they are typed, line by line, on a ground of their own."""
 
+    BESIDE = 12
+
     def __init__(self, text: str) -> None:
         super().__init__()
         self.label = _selectable(make_label(text))
         self.label.setForegroundRole(QPalette.ColorRole.WindowText)
         column = QVBoxLayout(self)
-        column.setContentsMargins(12, 8, 12, 8)
+        column.setContentsMargins(self.BESIDE, 8, self.BESIDE, 8)
         column.addWidget(self.label)
 
     def paintEvent(self, event: QPaintEvent) -> None:

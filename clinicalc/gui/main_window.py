@@ -219,7 +219,13 @@ class MainWindow(QWidget):
         self.values.focus_first()
 
     def _go_across(self) -> None:
-        """Between the values and the result, where the arrow keys scroll; back to the field that was left."""
+        """Between the values and the result, where the arrow keys scroll; back to the field that was left.
+
+        A page that covers the patient keeps the focus: what is typed must not reach a field that nobody sees.
+        """
+        if self.pages.currentWidget() is not self.patient:
+            self.refusal.go_across()
+            return
         focused = self.focusWidget()
         if focused is not None and self.values.isAncestorOf(focused):
             self._left_field = focused
@@ -245,6 +251,7 @@ class MainWindow(QWidget):
             bar.horizon.chooser,
             bar.recalibration.chooser,
             *self.values.tab_stops(),
+            self.sheet.scroller,  # no stop of the tab key, but where F6 leads: from there on into the sheet
             *self.sheet.tab_stops(),
             foot.new_patient,
             foot.copy,

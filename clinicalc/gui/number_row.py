@@ -11,7 +11,8 @@ from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QVBoxLayout, QWidget
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
-from clinicalc.assessment.numerals import plain, plain_range
+from clinicalc.assessment.limits import shown_limits, words_for
+from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.result import ValueLine
 from clinicalc.gui.access_keys import show_ampersands
 from clinicalc.gui.dated_entry import DatedEntry
@@ -50,6 +51,7 @@ class NumberRow(FieldRow):
         self.offer = make_button("", name="offer", pixels=UNIT)
         self.range = RangeRemark()
         self.dated = DatedEntry(field.label) if field.valid_days is not None else None
+        self._came_dated = False  # the date in the date field came with the number, and goes with it
         self._inside = True
         self._under: dict[QWidget, bool] = {}
         self._offer_place = QWidget(self)
@@ -68,6 +70,7 @@ class NumberRow(FieldRow):
         """Show a value or none in its unit (the file's own for none)."""
         if self.dated is not None:
             self.dated.fill(None if typed is None else typed.dated)
+            self._came_dated = typed is not None and typed.dated is not None
             typed = None if typed is None else replace(typed, dated=None)
         self._held = hold_entry(self._field, typed)
         self._part_from_date()
@@ -113,7 +116,7 @@ class NumberRow(FieldRow):
         low, high = self._field.derivation
         if not self._compact or (low is None and high is None):
             return super().note()
-        words = plain_range(self._on_screen(low), self._on_screen(high), unit_of(self._held.unit).spelling)
+        words = words_for(self._field, self._field.derivation, self._held.unit)
         return f"{super().note()} Derivation range {words}.".strip()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
@@ -152,7 +155,7 @@ class NumberRow(FieldRow):
         self.edit.left.connect(self._settle)
         self.offer.clicked.connect(self._take_offer)
         if self.dated is not None:
-            self.dated.changed.connect(self._tell)
+            self.dated.changed.connect(self._take_date)
             self.dated.entered.connect(self.entered)
         if self.frame.chooser is not None:
             self.frame.chooser.setAccessibleName(f"{self._field.label}, unit")
@@ -161,7 +164,15 @@ class NumberRow(FieldRow):
 
     def _take_text(self, text: str) -> None:
         self._held = hold(self._field, text, self._held.unit)
+        if self.dated is not None and self._came_dated:
+            self.dated.fill(None)  # the day of another number
+            self._came_dated = False
         self._show_unit()
+        self._tell()
+
+    def _take_date(self) -> None:
+        """A date that was typed in its own field is the person's, whatever number stands there later."""
+        self._came_dated = False
         self._tell()
 
     def _take_unit(self, place: int) -> None:
@@ -196,6 +207,7 @@ class NumberRow(FieldRow):
         if self.dated is None or not isinstance(reading, Reading) or reading.dated is None:
             return
         self.dated.fill(reading.dated)
+        self._came_dated = True
         held = self._held
         typed, by_hand = (replace(t, text=_without_date(t.text)) for t in (held.typed, held.by_hand))
         self._held = replace(held, typed=typed, by_hand=by_hand, text=_without_date(held.text))
@@ -226,6 +238,7 @@ class NumberRow(FieldRow):
     def _show_unit(self) -> None:
         if self.frame.chooser is not None:
             self.frame.chooser.show_place(self.frame.chooser.findData(self._held.unit))
+        self.frame.fit_text()
 
     def _remark_words(self) -> str:
         """What is to be said in words: how the value is read, or what was worked out, or of which day it is."""
@@ -233,15 +246,17 @@ class NumberRow(FieldRow):
         if self._held.remark:
             return self._held.remark
         if line is not None and line.worked_out:
-            return f"{line.used} worked out"
+            digits = "" if line.number is None else plain(line.number)  # as many as the findings name
+            unit = "" if self._field.is_bare or self._field.unit == "1" else f" {self._field.spelling}"
+            return f"{digits}{unit} worked out"
         return "" if line is None or line.dated is None else f"of {line.dated.isoformat()}"
 
     def _range_on_screen(self) -> RangeOfValues | None:
         low, high = self._field.derivation
         if low is None and high is None:
             return None
-        low, high = self._on_screen(low), self._on_screen(high)
-        return RangeOfValues(low, high, "" if low is None else plain(low), "" if high is None else plain(high))
+        texts = ("" if end is None else plain(end) for end in shown_limits(self._field, (low, high), self._held.unit))
+        return RangeOfValues(self._on_screen(low), self._on_screen(high), *texts)
 
     def _on_screen(self, value: float | None) -> float | None:
         """A value of the file's unit in the unit on screen."""

@@ -3,12 +3,20 @@
 from collections.abc import Sequence
 
 from PySide6.QtCore import QEvent, QObject, QPoint, Qt
-from PySide6.QtGui import QResizeEvent
-from PySide6.QtWidgets import QApplication, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtGui import QKeyEvent, QResizeEvent
+from PySide6.QtWidgets import QAbstractSlider, QApplication, QScrollArea, QVBoxLayout, QWidget
 
 _LARGEST = 16_777_215
 """What Qt calls no limit to a height."""
 _BORDER = 4
+_SCROLLS = {
+    Qt.Key.Key_Up.value: QAbstractSlider.SliderAction.SliderSingleStepSub,
+    Qt.Key.Key_Down.value: QAbstractSlider.SliderAction.SliderSingleStepAdd,
+    Qt.Key.Key_PageUp.value: QAbstractSlider.SliderAction.SliderPageStepSub,
+    Qt.Key.Key_PageDown.value: QAbstractSlider.SliderAction.SliderPageStepAdd,
+    Qt.Key.Key_Home.value: QAbstractSlider.SliderAction.SliderToMinimum,
+    Qt.Key.Key_End.value: QAbstractSlider.SliderAction.SliderToMaximum,
+}
 
 
 class OneColumn(QScrollArea):
@@ -40,6 +48,7 @@ class OneColumn(QScrollArea):
         self._policies = [area.verticalScrollBarPolicy() for area in areas]
         for area in areas:
             area.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+            area.installEventFilter(self)
         self.fit()
 
     def let_go(self) -> None:
@@ -48,6 +57,7 @@ class OneColumn(QScrollArea):
             area.setMinimumHeight(0)
             area.setMaximumHeight(_LARGEST)
             area.setVerticalScrollBarPolicy(policy)
+            area.removeEventFilter(self)
         self._areas, self._policies = (), []
 
     def fit(self) -> None:
@@ -66,10 +76,21 @@ class OneColumn(QScrollArea):
                 area.setFixedHeight(wanted + _BORDER)
 
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
-        """The content of an area asks for another layout."""
+        """The content of an area asks for another layout, or an area that cannot scroll itself gets a key for it."""
+        if isinstance(event, QKeyEvent) and event.type() == QEvent.Type.KeyPress and watched in self._areas:
+            return self._scroll(event)
         if event.type() == QEvent.Type.LayoutRequest and self._areas:
             self.fit()
         return super().eventFilter(watched, event)
+
+    def _scroll(self, event: QKeyEvent) -> bool:
+        """Scroll the whole column as a key says that an area got; whether it was such a key."""
+        action = _SCROLLS.get(event.key())
+        if action is None or event.modifiers() & ~Qt.KeyboardModifier.KeypadModifier:
+            return False
+        self.verticalScrollBar().triggerAction(action)
+        event.accept()
+        return True
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Other widths make other heights."""

@@ -12,7 +12,7 @@ from clinicalc.gui.pinned_bar import PinnedBar
 from clinicalc.gui.result_sheet import ResultSheet
 from clinicalc.gui.tokens import COMPACT_BELOW
 from clinicalc.gui.values_pane import ValuesPane
-from clinicalc.gui.wording import event_heading
+from clinicalc.gui.wording import event_heading, longest_reasons
 
 ONE_COLUMN_BELOW = 900
 """Window width under which there is one column: that of the usual window at 200 % text."""
@@ -81,7 +81,8 @@ class PatientPage(QWidget):
         summary = self.sheet.pinned_summary()
         vetted = "" if summary.vetted else "Not vetted: "
         named = f"{vetted}{model.content.title} {model.content.version}"
-        self.pinned.show_summary(summary, group_fingerprint(model.fingerprint, 3), named, self._heading(model))
+        self.pinned.keep_room(self._heading(model), longest_reasons(model))
+        self.pinned.show_summary(summary, group_fingerprint(model.fingerprint, 3), named)
 
     def _heading(self, model: Model) -> str:
         """The longest headline of a number of this model, for the room that is kept free."""

@@ -1,4 +1,6 @@
-"""The number, whom it is about, its band and the marks of its findings, kept in sight where the sheet scrolls away."""
+"""The number with its band, or why there is none, and its findings' marks, in sight where the sheet scrolls away."""
+
+from collections.abc import Sequence
 
 from PySide6.QtCore import QSize, Qt, Signal
 from PySide6.QtGui import QResizeEvent
@@ -19,6 +21,8 @@ _BASELINE = 50
 _NUMBER_ROOM = QSize(142, 66)
 _MOST_MARKS = 2
 _LEAST_HEIGHT = 88
+_AFTER_BAND = 2
+_NO_NUMBER = "No number yet"
 _GAP, _BESIDE_NUMBER, _BETWEEN, _ABOVE_AND_BELOW = 16, 20, 1, 4
 
 
@@ -55,9 +59,11 @@ class PinnedBar(QWidget):
         super().__init__()
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
-        self._longest: tuple[str, str] = ("", "")
+        self._headings: tuple[str, ...] = ()
+        self._reasons: tuple[str, ...] = ()
         self.number = PinnedNumber()
         self.headline = make_label("", VALUE, semibold=True)
+        self.sentence = make_label("", UNIT)
         self.band_name = make_line("", UNIT)
         self.band = make_line("", UNIT, semibold=True)
         self.fingerprint = make_line("", CAPTION, soft=True)
@@ -77,27 +83,34 @@ class PinnedBar(QWidget):
     def clear(self) -> None:
         """Take the number off, and everything that was said of it."""
         self.number.show_percentage("", vetted=False)
-        for label in (self.headline, self.band_name, self.band, self._more):
+        for label in (self.headline, self.sentence, self.band_name, self.band, self._more):
             label.setText("")
         for mark, word in self._marks:
             mark.show_findings(())
             word.hide()
 
-    def show_summary(self, summary: PinnedSummary, fingerprint: str, model: str, heading: str = "") -> None:
+    def keep_room(self, heading: str, reasons: Sequence[str]) -> None:
+        """Stay as high as the longest headline of a number and the longest of the reasons for none take."""
+        self._headings, self._reasons = (heading,), tuple(reasons)
+
+    def show_summary(self, summary: PinnedSummary, fingerprint: str, model: str) -> None:
         """Show what is on the sheet, in short, with the model's fingerprint and its name.
 
-        `heading` is the longest headline that there may be: the bar is as high for every other.
+        Without a number, the sentence that says what is still to go or what stops it takes the place of the band.
         """
         self.clear()
         self.number.show_percentage(summary.percentage, vetted=summary.vetted)
         self.headline.setText(summary.headline)
         self.headline.setAccessibleDescription(summary.sentence)
-        self.band_name.setText(summary.band_name)
-        self.band.setText(summary.band_figures)
+        self._arrange(has_number=bool(summary.percentage))
+        if summary.percentage:
+            self.band_name.setText(summary.band_name)
+            self.band.setText(summary.band_figures)
+        else:
+            self.sentence.setText(summary.sentence)
         self.fingerprint.setText(fingerprint)
         self.model.setText(model)
         self._show_marks(summary.marks)
-        self._longest = (heading, model)
         self._fit()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
@@ -115,27 +128,46 @@ class PinnedBar(QWidget):
         rest = len(marks) - _MOST_MARKS
         self._more.setText(f"and {rest} more" if rest > 0 else "")
 
+    def _arrange(self, *, has_number: bool) -> None:
+        """The marks stand beside the band, or beside the two or three words that there is no number."""
+        for part in (self.band_name, self.band):
+            part.setVisible(has_number)
+        self.sentence.setVisible(not has_number)
+        self.headline.setWordWrap(has_number)
+        self._top.setStretch(0, int(has_number))
+        if has_number:
+            self._line.insertWidget(_AFTER_BAND, self._listed)
+        else:
+            self._top.insertWidget(1, self._listed)
+
     def _fit(self) -> None:
         """As high as the longest words take at this width, so that nothing moves when they change."""
         room = max(100, self.width() - 2 * SIDE_MARGIN - self.number.width() - _BESIDE_NUMBER)
-        heading, model = self._longest
         beside = room - self.fingerprint.sizeHint().width() - _GAP
-        words = height_of(self.headline, (heading, self.headline.text()), room) + height_of(
-            self.model, (model,), beside
-        )
-        self.setFixedHeight(max(_LEAST_HEIGHT, words + SIDE + 2 * _BETWEEN + 2 * _ABOVE_AND_BELOW))
+        with_number = height_of(self.headline, (*self._headings, self.headline.text()), room)
+        without = max(SIDE, height_of(self.headline, (_NO_NUMBER,), room)) + _BETWEEN
+        without += height_of(self.sentence, (*self._reasons, self.sentence.text()), room)
+        words = max(with_number + SIDE, without) + height_of(self.model, (self.model.text(),), beside)
+        self.setFixedHeight(max(_LEAST_HEIGHT, words + 2 * _BETWEEN + 2 * _ABOVE_AND_BELOW))
 
     def _lay_out(self) -> None:
-        line = QHBoxLayout()
-        line.setSpacing(8)
-        for widget in (self.band_name, self.band):
-            line.addWidget(widget)
-        line.addSpacing(8)
+        self._listed = QWidget()
+        listed = QHBoxLayout(self._listed)
+        listed.setContentsMargins(8, 0, 0, 0)
+        listed.setSpacing(8)
         for mark, word in self._marks:
-            line.addWidget(mark)
-            line.addWidget(word)
-        line.addWidget(self._more)
-        line.addStretch(1)
+            listed.addWidget(mark)
+            listed.addWidget(word)
+        listed.addWidget(self._more)
+        self._line = QHBoxLayout()
+        self._line.setSpacing(8)
+        for widget in (self.band_name, self.band, self._listed):
+            self._line.addWidget(widget)
+        self._line.addStretch(1)
+        self._top = QHBoxLayout()
+        self._top.setSpacing(8)
+        self._top.addWidget(self.headline, 1)
+        self._top.addStretch(0)
         named = QHBoxLayout()
         named.setSpacing(_GAP)
         named.addWidget(self.fingerprint, 0, Qt.AlignmentFlag.AlignTop)
@@ -143,8 +175,9 @@ class PinnedBar(QWidget):
         words = QVBoxLayout()
         words.setSpacing(_BETWEEN)
         words.addStretch(1)
-        words.addWidget(self.headline)
-        words.addLayout(line)
+        words.addLayout(self._top)
+        words.addWidget(self.sentence)
+        words.addLayout(self._line)
         words.addLayout(named)
         words.addStretch(1)
         row = QHBoxLayout(self)

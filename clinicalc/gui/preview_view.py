@@ -1,12 +1,13 @@
 """The preview of a print: its pages as the PDF has them, what can be chosen about them, and the way to a printer.
 
-It shows and prints one assessment, and asks before every painting whether that is still the one on screen. Once it is
-not, the pages are covered by the sentence that says so, and nothing can be printed any more.
+It shows and prints one assessment, and asks whenever its window comes to the front or goes behind another, and before
+every painting, whether that is still the one on screen. Once it is not, the pages are covered by the sentence that says
+so, and nothing can be printed any more.
 """
 
 from typing import Protocol
 
-from PySide6.QtCore import QSize, Qt, Signal
+from PySide6.QtCore import QEvent, QSize, Qt, Signal
 from PySide6.QtGui import QAccessible, QAccessibleAnnouncementEvent, QKeySequence, QResizeEvent, QShortcut
 from PySide6.QtWidgets import QBoxLayout, QDialog, QHBoxLayout, QLabel, QStackedWidget, QVBoxLayout, QWidget
 
@@ -95,6 +96,12 @@ class PreviewView(QDialog):
         directions = QBoxLayout.Direction
         beside = self.width() >= self._room_beside
         self._choices.setDirection(directions.LeftToRight if beside else directions.TopToBottom)
+
+    def changeEvent(self, event: QEvent) -> None:
+        """Whoever comes back from the values finds the pages as they may be shown, painted anew or not."""
+        super().changeEvent(event)
+        if event.type() == QEvent.Type.ActivationChange:
+            self._may_show()
 
     def _lay_out(self) -> None:
         self._head = QWidget()

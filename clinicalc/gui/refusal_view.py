@@ -48,3 +48,8 @@ class RefusalView(QWidget):
         else:
             self.problems.setPlainText(str(error))
         self.problems.setFocus(Qt.FocusReason.OtherFocusReason)
+
+    def go_across(self) -> None:
+        """The focus to the problems, and from there to the way back."""
+        there = self.back if self.problems.hasFocus() else self.problems
+        there.setFocus(Qt.FocusReason.ShortcutFocusReason)

@@ -1,16 +1,28 @@
 """The frame of a measured value: the line a number is typed in, and its unit."""
 
-from PySide6.QtCore import QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFocusEvent, QPainter, QPen
+from PySide6.QtCore import QEvent, QObject, QPoint, QRect, QRectF, Qt, Signal
+from PySide6.QtGui import QColor, QFocusEvent, QFontMetrics, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QHBoxLayout, QLineEdit, QSizePolicy
 
 from clinicalc.gui import theme
 from clinicalc.gui.chooser import Chooser
 from clinicalc.gui.frames import FieldFrame
 from clinicalc.gui.labels import make_line
-from clinicalc.gui.tokens import RING, VALUE_WIDTH
+from clinicalc.gui.tokens import FRAME_WIDTH, RING, VALUE_WIDTH
 from clinicalc.gui.typeface import UNIT, VALUE, face
 from clinicalc.units.unit import unit as unit_of
+
+CUT = "…"
+"""Stands where characters of a text have no room: what is seen of a number is never taken for the whole of it."""
+_SMALLEST = 12
+"""The smallest size of a long number, in pixels."""
+_ROUND_TEXT = 6
+"""What a line needs beside its text: its own edges and the cursor."""
+_ROUND_UNIT = 34
+"""What a chooser needs beside the words of its unit: its edge and its chevron."""
+_INSIDE = FRAME_WIDTH - 3
+"""The width of a frame inside its edges."""
+_GAP, _GAP_WITHOUT_CHOICE = 4, 10
 
 
 class ValueEdit(QLineEdit):
@@ -24,6 +36,40 @@ class ValueEdit(QLineEdit):
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)  # the whole frame takes clicks
         self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
+
+    @property
+    def is_cut(self) -> bool:
+        """Whether the text has more characters than there is room for."""
+        return self.fontMetrics().horizontalAdvance(self.text()) + _ROUND_TEXT > self.width()
+
+    @property
+    def words_on_screen(self) -> str:
+        """What is to be read once the field is left: the text, or its beginning with the sign that it is cut."""
+        if not self.is_cut:
+            return self.text()
+        room = self.width() - _ROUND_TEXT
+        return self.fontMetrics().elidedText(self.text(), Qt.TextElideMode.ElideRight, room)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """A text that does not fit shows its beginning once it is left, and while it is typed where it is cut."""
+        if not self.is_cut:
+            super().paintEvent(event)
+            return
+        if self.hasFocus():
+            super().paintEvent(event)
+            if self.cursorPositionAt(QPoint(_ROUND_TEXT, self.height() // 2)) <= 1:
+                return
+        painter = QPainter(self)
+        painter.setFont(self.font())
+        painter.setPen(QColor(theme.tokens().ink))
+        alignment = Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
+        if self.hasFocus():
+            sign = QRect(0, 0, self.fontMetrics().horizontalAdvance(CUT) + 2, self.height())
+            painter.fillRect(sign, QColor(theme.tokens().field))
+            painter.drawText(sign, alignment, CUT)
+        else:
+            painter.drawText(self.rect().adjusted(2, 0, -2, 0), alignment, self.words_on_screen)
+        painter.end()
 
     def focusOutEvent(self, event: QFocusEvent) -> None:
         """Tell that the field was left, for whatever reason but a menu."""
@@ -39,31 +85,78 @@ class ValueFrame(FieldFrame):
         super().__init__()
         self.edit = ValueEdit()
         self.chooser = Chooser() if len(units) > 1 else None
+        self._label = make_line(unit_of(unit).spelling, UNIT, soft=True)
         row = QHBoxLayout(self)
         row.setContentsMargins(RING + 2, RING + 1, RING + 1, RING + 1)
         row.setSpacing(0)
         self.watch(self.edit)
+        row.addWidget(self.edit)
         if self.chooser is not None:
             self.chooser.offer([(unit_of(code).spelling, code) for code in units], units.index(unit))
             self.watch(self.chooser)
-            self.edit.setFixedWidth(VALUE_WIDTH - 4)
-            row.addWidget(self.edit)
-            row.addSpacing(4)
-            row.addWidget(self.chooser, 1)
+            row.addSpacing(_GAP)
+            row.addWidget(self.chooser)
+            self._label.setParent(self)
+            self._label.hide()
         else:
-            spelling = unit_of(unit).spelling
-            label = make_line(spelling, UNIT, soft=True)
-            row.addWidget(self.edit, 1)
-            row.addSpacing(10)
-            row.addWidget(label)
-            row.addSpacing(6)
-            room = 108 if label.sizeHint().width() + 16 <= 108 else label.sizeHint().width() + 16
-            self.edit.setMaximumWidth(max(46, 166 - room))
-            label.setFixedWidth(room - 14)
+            row.addSpacing(_GAP_WITHOUT_CHOICE)
+            row.addWidget(self._label)
+        row.addStretch(1)
+        self.edit.textChanged.connect(self.fit_text)
         self.setFocusProxy(self.edit)
+        self.fit_text()
+
+    def fit_text(self) -> None:
+        """Share the frame out between number and unit.
+
+        A long number takes what its unit does not need, then a smaller size; while it is typed the whole frame.
+        """
+        usual, beside_unit = self._rooms()
+        rooms = [(usual, VALUE), *((beside_unit, size) for size in range(VALUE, _SMALLEST - 1, -1))]
+        if self.edit.hasFocus():
+            rooms += [(_INSIDE, size) for size in range(VALUE, _SMALLEST - 1, -1)]
+        text = self.edit.text()
+        fitting = ((room, size) for room, size in rooms if _width_of(text, size) + _ROUND_TEXT <= room)
+        room, size = next(fitting, rooms[-1])
+        if self.edit.font().pixelSize() != size:
+            self.edit.setFont(face(size, semibold=True))
+        self.edit.setFixedWidth(room)
+        self._give_unit(max(0, _INSIDE - room - self._gap))
+        self.update()
+
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:
+        """The number has the whole frame only while it is typed."""
+        if watched is self.edit and event.type() in (QEvent.Type.FocusIn, QEvent.Type.FocusOut):
+            self.fit_text()
+        return super().eventFilter(watched, event)
+
+    @property
+    def _gap(self) -> int:
+        return _GAP if self.chooser is not None else _GAP_WITHOUT_CHOICE
+
+    def _rooms(self) -> tuple[int, int]:
+        """The usual width of the number, and the widest that leaves its unit whole."""
+        if self.chooser is not None:
+            usual = VALUE_WIDTH - 4
+            unit = self.chooser.fontMetrics().horizontalAdvance(self.chooser.currentText()) + _ROUND_UNIT
+        else:
+            unit = self._label.fontMetrics().horizontalAdvance(self._label.text()) + 4
+            usual = max(46, 166 - max(108, unit + 14))
+        return usual, max(usual, _INSIDE - self._gap - unit)
+
+    def _give_unit(self, room: int) -> None:
+        """A unit without room stands in nobody's way, and stays where the Tab key finds it."""
+        part = self.chooser or self._label
+        part.setFixedWidth(max(1, room))
 
     def paint_inside(self, painter: QPainter, body: QRectF) -> None:
         """The thin line between number and unit."""
+        if self.edit.width() >= _INSIDE:
+            return
         x = self.edit.geometry().right() + 4.5
         painter.setPen(QPen(QColor(theme.tokens().rule), 1))
         painter.drawLine(int(x), int(body.top()) + 7, int(x), int(body.bottom()) - 7)
+
+
+def _width_of(text: str, size: int) -> int:
+    return QFontMetrics(face(size, semibold=True)).horizontalAdvance(text)

@@ -23,6 +23,8 @@ from clinicalc.gui.wording import numbered_findings
 from clinicalc.gui.worked_out_row import WorkedOutRow
 
 PRINT_LABEL = "Name or number"
+_LONGEST_NAME = 120
+"""What a print takes, as `report.document` states it: reading it from there would slow every start."""
 _ABOVE_AND_BELOW = 12
 
 
@@ -35,7 +37,7 @@ class LabelRow(QWidget):
         self.edit = QLineEdit()
         self.edit.setFont(face(BASE))
         self.edit.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
-        self.edit.setMaxLength(200)
+        self.edit.setMaxLength(_LONGEST_NAME)
         self.edit.setAccessibleName(PRINT_LABEL)
         inside = QHBoxLayout(self.frame)
         inside.setContentsMargins(RING + 7, RING + 1, RING + 7, RING + 1)

@@ -1,6 +1,7 @@
 """The sentences of the result sheet that no print needs: what is still to be entered, and what stops the number."""
 
 from collections.abc import Sequence
+from enum import Enum
 
 from clinicalc.assessment.fields import QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
@@ -9,11 +10,13 @@ from clinicalc.assessment.numerals import join_words
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
 from clinicalc.report.phrases import count_words, people_sentence
+from clinicalc.units.reading import Unreadable, UnreadableReason, read_value
 
 _CHOICES = {FindingCode.HORIZON: "horizon", FindingCode.RECALIBRATION: "recalibration"}
 GRADE_WORDS = {Grade.STOP: "Stop", Grade.CAUTION: "Caution", Grade.NOTE: "Note"}
 _NAMED = 2
 """How many stopped values are named: more would need more room than the sheet keeps free."""
+_NOT_FOR_THIS_PATIENT = "This model does not answer for this patient. "
 _NOT_MADE_FOR = (FindingCode.EXCLUDED, FindingCode.OUTSIDE_DERIVATION)
 
 
@@ -72,7 +75,7 @@ def explain_no_number(assessment: Assessment) -> tuple[str, str]:
     """Headline and sentence for a sheet without a number."""
     stops = [finding for finding in assessment.stops if not is_open_choice(finding)]
     if stops:
-        return "No number", _say_stops(assessment.model, stops)
+        return "No number", _say_stops(assessment, stops)
     to_go = [*assessment.missing, *(f for f in assessment.stops if is_open_choice(f))]
     if not to_go:
         return "No number", "The findings below say why."
@@ -80,19 +83,60 @@ def explain_no_number(assessment: Assessment) -> tuple[str, str]:
     return "No number yet", f"{entries} to go. Next: {_name_in_sentence(assessment.model, to_go[0])}."
 
 
-def _say_stops(model: Model, stops: list[Finding]) -> str:
+def longest_reasons(model: Model) -> tuple[str, ...]:
+    """Sentences as long as those about entries on screen get for this model, for the room that is kept free."""
+    numbers = (field.label for field in model.fields if not isinstance(field, QuestionField))
+    labels = sorted(numbers, key=len, reverse=True) or ["A finding below"]
+    remedies = (_say_remedy({slip}, several=len(labels) > 1) for slip in _Slip)
+    return (_NOT_FOR_THIS_PATIENT + "The stops below say why.", *(_name_stops(labels, remedy) for remedy in remedies))
+
+
+def _say_stops(assessment: Assessment, stops: list[Finding]) -> str:
     not_made_for = [finding for finding in stops if finding.code in _NOT_MADE_FOR]
     if not_made_for:
         why = "The stop below says why." if len(stops) == 1 else "The stops below say why."
-        return f"This model does not answer for this patient. {why}"
-    labels = {field.id: field.label for field in model.fields}
+        return _NOT_FOR_THIS_PATIENT + why
+    labels = {field.id: field.label for field in assessment.model.fields}
     names = list(dict.fromkeys(labels.get(finding.field, "A finding below") for finding in stops))
-    what = "its unit or its value" if len(names) == 1 and stops[0].offer else "its value"
-    if len(names) > 1:
-        rest = len(names) - _NAMED
-        names = [*names[:_NAMED], count_words(rest, "other value")] if rest > 0 else names
-        return f"{join_words(names)} stop it. Change these values and the number comes back."
-    return f"{names[0]} stops it. Change {what} and the number comes back."
+    slips = {_slip(assessment, finding) for finding in stops}
+    return _name_stops(names, _say_remedy(slips, several=len(names) > 1))
+
+
+def _name_stops(names: list[str], remedy: str) -> str:
+    verb, rest = "stop" if len(names) > 1 else "stops", len(names) - _NAMED
+    if rest > 0:
+        names = [*names[:_NAMED], count_words(rest, "other value")]
+    return f"{join_words(names)} {verb} it. {remedy} and the number comes back."
+
+
+class _Slip(Enum):
+    """What about an entry is wrong."""
+
+    DATE = "date"
+    UNIT = "unit"
+    VALUE = "value"
+
+
+def _slip(assessment: Assessment, finding: Finding) -> _Slip:
+    if finding.code is FindingCode.FUTURE_DATE:
+        return _Slip.DATE
+    if finding.code is FindingCode.UNREADABLE:
+        typed = next((line.typed for line in assessment.values if line.id == finding.field), "")
+        reading = read_value(typed)
+        bad_date = isinstance(reading, Unreadable) and reading.reason is UnreadableReason.BAD_DATE
+        return _Slip.DATE if bad_date else _Slip.VALUE
+    return _Slip.UNIT if finding.offer or finding.code is FindingCode.WRONG_UNIT else _Slip.VALUE
+
+
+def _say_remedy(slips: set[_Slip], *, several: bool) -> str:
+    """What brings the number back, where one value stops it or several do."""
+    if slips == {_Slip.DATE}:
+        return "Correct their dates" if several else "Correct its date"
+    if _Slip.DATE in slips:
+        return "Correct these entries" if several else "Correct its value and its date"
+    if _Slip.UNIT in slips:
+        return "Change their units or values" if several else "Change its unit or its value"
+    return "Change these values" if several else "Change its value"
 
 
 def _name_in_sentence(model: Model, finding: Finding) -> str:

@@ -12,6 +12,8 @@ import msgspec
 from clinicalc.errors import ClinicalcError
 from clinicalc.report.attachment import read_attached_record
 
+_ANNOTATED = "\n[something was put on this page]"
+
 LARGEST = 32_000_000
 """Bytes. A print of this program has less than a hundredth of that."""
 
@@ -74,12 +76,22 @@ class Record(msgspec.Struct, frozen=True):
 
 @dataclass(frozen=True, slots=True)
 class OldPrint:
-    """A print as it was saved. `made` is None where the file does not say when it was made."""
+    """A print as it was saved. `made` is None where the file does not say when it was made.
+
+    `pages` holds the text of each page, `width` is that of the first in points, `practice` the name the file gives.
+    """
 
     name: str
     record: Record
     made: datetime | None
-    text: str
+    pages: tuple[str, ...]
+    width: float
+    practice: str
+
+    @property
+    def text(self) -> str:
+        """The text of all pages."""
+        return "\n".join(self.pages)
 
 
 def read_old_print(path: Path) -> OldPrint:
@@ -88,7 +100,8 @@ def read_old_print(path: Path) -> OldPrint:
     with _quiet():
         try:
             attached = read_attached_record(content)
-            made, text = _time_and_text(content)
+            made, practice, width = _stated(content)
+            pages = read_pages(content)
         except ClinicalcError as error:
             raise ClinicalcError(error.what, where=path.name, why=error.why, do=error.do) from error
         except Exception as error:  # a damaged PDF makes its reader raise almost anything
@@ -97,7 +110,17 @@ def read_old_print(path: Path) -> OldPrint:
         record = msgspec.json.decode(attached, type=Record)
     except (msgspec.DecodeError, RecursionError) as error:
         raise _unreadable(path, f"What is attached to it is not a record of this program ({error}).") from error
-    return OldPrint(path.name, record, made, text)
+    return OldPrint(path.name, record, made, pages, width, practice)
+
+
+def read_pages(pdf: bytes) -> tuple[str, ...]:
+    """The text of each page; a line for every annotation, which a print has none of. Raises what the reader raises."""
+    from io import BytesIO
+
+    from pypdf import PdfReader
+
+    pages = PdfReader(BytesIO(pdf)).pages
+    return tuple(page.extract_text() + _ANNOTATED * len(page.annotations or ()) for page in pages)
 
 
 def _read_bytes(path: Path) -> bytes:
@@ -113,19 +136,23 @@ def _read_bytes(path: Path) -> bytes:
     return content
 
 
-def _time_and_text(content: bytes) -> tuple[datetime | None, str]:
+def _stated(content: bytes) -> tuple[datetime | None, str, float]:
+    """When the file says it was made, for which practice, and how wide its first page is in points."""
     from io import BytesIO
 
     from pypdf import PdfReader
 
     reader = PdfReader(BytesIO(content))
+    about = reader.metadata
     try:
-        made = None if reader.metadata is None else reader.metadata.creation_date
+        made = None if about is None else about.creation_date
     except ValueError:  # a date that is none
         made = None
     if made is not None and made.tzinfo is None:
         made = made.astimezone()
-    return made, "\n".join(page.extract_text() for page in reader.pages)
+    author, program = ("", "") if about is None else (about.author or "", about.creator or "")
+    width = float(reader.pages[0].mediabox.width) if len(reader.pages) else 0.0
+    return made, "" if author == program else author, width
 
 
 @contextmanager

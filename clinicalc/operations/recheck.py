@@ -13,11 +13,12 @@ from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import MINUS, percent, percent_range
 from clinicalc.assessment.record import record_of
-from clinicalc.assessment.result import Assessment
+from clinicalc.assessment.result import Assessment, Estimate
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.coefficients.spans import YEAR, Span
 from clinicalc.errors import ClinicalcError
 from clinicalc.operations.bedside import assess_patient
+from clinicalc.operations.old_pages import compare_pages
 from clinicalc.operations.old_print import OldPrint, Record, RecordedBand, RecordedFinding, RecordedValue
 from clinicalc.report.phrases import moment_words, zone_words
 from clinicalc.units.quoting import visible
@@ -106,15 +107,22 @@ def report_recheck(found: Recheck) -> tuple[str, ...]:
         lines.append(f"Worked out now: {percent(now.estimate.probability, now.estimate.complement)}{within}.")
     lines += [f"Differs: {difference.sentence}" for difference in found.differences]
     lines.append(
-        "The record holds no patient label and no practice name, so these were not compared. Somebody who changes"
-        " record, pages and values together is not found out by this."
+        "The text of every page was compared with the same print laid out again by this version of the program; another"
+        " version may have worded or parted its pages differently."
+        if found.same_model
+        else "The pages were not compared: they belong to another file."
+    )
+    lines.append(
+        "The record holds no patient label, no practice name and no time of assessment, so these were taken from the"
+        " print as they stand, and drawings were not compared. Somebody who changes record, pages and values together"
+        " is not found out by this."
     )
     return tuple(lines)
 
 
 def _verdict(found: Recheck) -> str:
     if found.agrees:
-        return "Agrees: the model gives the number, the band and the findings of this print again."
+        return "Agrees: the model gives everything in this print’s record again, and every page reads as laid out."
     if found.differences:
         count = len(found.differences)
         return f"Does not agree: {'1 thing differs' if count == 1 else f'{count} things differ'}, named below."
@@ -195,14 +203,22 @@ def _compare_findings(old: tuple[RecordedFinding, ...], new: tuple[RecordedFindi
 
 def _compare_pages(old: OldPrint, now: Assessment) -> Iterator[Difference]:
     """What the pages must show and do not; only for the model that the print was made with."""
-    if old.record.model.fingerprint != now.model.fingerprint or now.estimate is None:
+    if old.record.model.fingerprint != now.model.fingerprint:
         return
+    if now.estimate is not None:
+        yield from _absent_from_pages(old, now, now.estimate)
+    for fault in compare_pages(old, now):
+        yield Difference(fault.page, visible(fault.old) or _NOTHING, visible(fault.new) or _NOTHING)
+
+
+def _absent_from_pages(old: OldPrint, now: Assessment, estimate: Estimate) -> Iterator[Difference]:
+    """The figures that stand on no page at all, by name."""
     expected = {
-        "The probability on the pages": percent(now.estimate.probability, now.estimate.complement),
+        "The probability on the pages": percent(estimate.probability, estimate.complement),
         "The fingerprint on the pages": group_fingerprint(now.model.fingerprint),
     }
-    if now.estimate.band is not None:
-        expected["The band on the pages"] = percent_range(now.estimate.band.lower, now.estimate.band.upper)
+    if estimate.band is not None:
+        expected["The band on the pages"] = percent_range(estimate.band.lower, estimate.band.upper)
     expected |= {
         f"{line.label} on the pages": line.shown for line in now.values if line.number is not None and line.typed
     }

@@ -16,12 +16,7 @@ from clinicalc.units.reading import Reading, read_value
 NOT_GIVEN = "not given"
 _NOTHING = "–"
 _WEIGHT = {Grade.STOP: 0, Grade.CAUTION: 1, Grade.NOTE: 2}
-_QUESTIONS = (
-    Column("", 0.0, 278.0),
-    Column("", 290.0, 101.0),
-    Column("", 394.0, 18.0),
-)
-_VALUES = (
+_COLUMNS = (
     Column("", 0.0, 184.0),
     Column("typed", 192.0, 94.0),
     Column("in the file’s unit, if another", 290.0, 101.0),
@@ -36,12 +31,8 @@ def mark(number: int, finding: Finding) -> Mark:
 
 
 def compose_values(assessment: Assessment) -> Section:
-    """The questions that rule a patient out, then every other value."""
-    asked = tuple(
-        Row((line.label, _typed(assessment, line), _marks(assessment, line)))
-        for line in assessment.values
-        if line.exclusion
-    )
+    """One table under one set of headings: first the questions that rule a patient out, then every other value."""
+    lines = sorted(assessment.values, key=lambda line: not line.exclusion)
     rows = tuple(
         Row(
             (
@@ -52,11 +43,9 @@ def compose_values(assessment: Assessment) -> Section:
                 _range(assessment, line),
             )
         )
-        for line in assessment.values
-        if not line.exclusion
+        for line in lines
     )
-    questions = (Table(_QUESTIONS, asked),) if asked else ()
-    return Section("Values as typed", (*questions, Table(_VALUES, rows)))
+    return Section("Values as typed", (Table(_COLUMNS, rows),))
 
 
 def _typed(assessment: Assessment, line: ValueLine) -> TypedCell:

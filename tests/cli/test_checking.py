@@ -7,7 +7,7 @@ from typing import Any
 import pytest
 
 from tests.cli.calling import LIPIDS, WOMAN_61, call, example
-from tests.operations.forging import record_in, with_changed_record
+from tests.operations.forging import record_in, with_changed_record, with_page, without_page
 
 
 @pytest.fixture
@@ -36,6 +36,17 @@ def test_a_changed_print_does_not_agree(pdf: Path) -> None:
     assert (ended.status, ended.err) == (3, "")
     assert ended.out.startswith("Does not agree: 1 thing differs")
     assert "Differs: Probability: 2.0\u202f% (0.02) → 10.5\u202f%" in ended.out
+
+
+def test_a_print_with_another_patients_page_does_not_agree(pdf: Path, tmp_path: Path) -> None:
+    other = tmp_path / "other.pdf"
+    words = (word for word in WOMAN_61 if not word.startswith("age="))
+    made = call("report", LIPIDS, "age=45", *words, "--out", str(other), "--label", "Ottilie Fenn")
+    assert made.status == 0
+    pdf.write_bytes(with_page(without_page(pdf.read_bytes(), 2), other.read_bytes(), 2, at=2))
+    ended = call("report", "--check", str(pdf), "--model", LIPIDS)
+    assert (ended.status, ended.err) == (3, "")
+    assert "Differs: Page 3: " in ended.out
 
 
 def test_another_file_does_not_agree(pdf: Path) -> None:

@@ -5,15 +5,17 @@ from pathlib import Path
 
 import pytest
 from PySide6.QtCore import QPoint, QRect, QSize, Qt
+from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication, QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.gui.main_window import NARROWEST, MainWindow
+from clinicalc.gui.number_row import NumberRow
 from clinicalc.operations.bedside import open_example
 from clinicalc.resources import list_example_models
-from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, number_row, press, retype_number
+from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, answer, click, number_row, press, retype_number
 from tests.gui.test_layout import cut_labels
 
 pytestmark = pytest.mark.gui
@@ -71,6 +73,53 @@ def test_pinned_number_goes_with_the_number(qtbot: QtBot, narrow: MainWindow) ->
     assert narrow.patient.pinned.band.text() == ""
 
 
+def test_bar_says_why_there_is_no_number(qtbot: QtBot, narrow: MainWindow, lipids: Model) -> None:
+    pinned = narrow.patient.pinned
+    assert pinned.sentence.isHidden()
+    with_number = pinned.height()
+    retype_number(narrow, "total_cholesterol", "5.2")
+    said = {pinned.sentence.text()}
+    assert pinned.headline.text() == "No number"
+    assert pinned.sentence.text().startswith("Total cholesterol stops it.")
+    retype_number(narrow, "hdl_cholesterol", "1.2")
+    retype_number(narrow, "systolic_bp", "14")
+    said.add(pinned.sentence.text())
+    assert "and 1 other value stop it." in pinned.sentence.text()
+    settle(narrow, NARROWEST)
+    assert (pinned.height(), cut_labels(narrow)) == (with_number, [])
+    answer(narrow, "prior_cvd", "yes")
+    said.add(pinned.sentence.text())
+    assert pinned.sentence.text().startswith("This model does not answer for this patient.")
+    narrow.begin_new_patient()
+    said.add(pinned.sentence.text())
+    assert pinned.headline.text() == "No number yet"
+    assert pinned.sentence.text() == "9 entries to go. Next: the question at the top."
+    settle(narrow, NARROWEST)
+    assert (pinned.height(), cut_labels(narrow)) == (with_number, [])
+    assert len(said) == 4
+    assert (pinned.sentence.text(), pinned.band.text()) == (narrow.sheet.sentence.text(), "")
+    narrow.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
+    assert (pinned.sentence.isHidden(), pinned.band.text()) == (True, "no band")
+    narrow.state.blank("A fault.")
+    assert "10.5" not in pinned_number(narrow)
+
+
+@pytest.mark.parametrize("name", list_example_models())
+def test_bar_is_as_high_with_every_reason(open_window: Callable[[Model | None], MainWindow], name: str) -> None:
+    model = open_example(name)
+    window = open_window(model)
+    settle(window, NARROWEST)
+    heights = {window.patient.pinned.height()}
+    for text in ("5.2", "-1", "99999"):
+        numbers = [id for id, row in window.values.rows.items() if isinstance(row, NumberRow)]
+        window.use_model(model, entry_from_texts(dict.fromkeys(numbers, text)))
+        settle(window, NARROWEST)
+        assert window.patient.pinned.sentence.isVisible()
+        heights.add(window.patient.pinned.height())
+    assert len(heights) == 1
+    assert cut_labels(window) == []
+
+
 def test_pinned_mark_leads_to_the_field(qtbot: QtBot, narrow: MainWindow) -> None:
     retype_number(narrow, "total_cholesterol", "5.2")
     number_row(narrow, "age").edit.setFocus()
@@ -109,6 +158,47 @@ def test_f6_shows_the_sheet(narrow: MainWindow) -> None:
     assert 0 <= top < view.height() // 2
     press(narrow, Qt.Key.Key_F6)
     assert number_row(narrow, "age").edit.hasFocus()
+
+
+def test_keys_scroll_the_column_from_the_sheet_to_both_ends(narrow: MainWindow) -> None:
+    bar = narrow.patient.one_column.verticalScrollBar()
+    number_row(narrow, "age").edit.setFocus()
+    handle = narrow.windowHandle()
+    QTest.keyClick(handle, Qt.Key.Key_F6)
+    assert narrow.sheet.scroller.hasFocus()
+    places = [bar.value()]
+    for key in (Qt.Key.Key_Down, Qt.Key.Key_PageDown, Qt.Key.Key_End):
+        QTest.keyClick(handle, key)
+        places.append(bar.value())
+    assert places == sorted(set(places))  # every key went further down
+    assert places[-1] == bar.maximum() > 0
+    assert is_in_sight(narrow, narrow.sheet.not_used)
+    for key in (Qt.Key.Key_Up, Qt.Key.Key_PageUp, Qt.Key.Key_Home):
+        QTest.keyClick(handle, key)
+        places.append(bar.value())
+    assert places[-4:] == sorted(set(places[-4:]), reverse=True)
+    assert places[-1] == bar.minimum()
+    assert narrow.sheet.scroller.hasFocus()
+
+
+def test_keys_of_a_field_stay_its_own(narrow: MainWindow) -> None:
+    edit = number_row(narrow, "age").edit
+    edit.setFocus()
+    bar = narrow.patient.one_column.verticalScrollBar()
+    before = bar.value()
+    for key in (Qt.Key.Key_End, Qt.Key.Key_Home):
+        QTest.keyClick(narrow.windowHandle(), key)
+    assert (bar.value(), edit.cursorPosition()) == (before, 0)
+
+
+def test_keys_scroll_the_sheet_alone_again_when_the_window_is_wide(narrow: MainWindow) -> None:
+    settle(narrow, QSize(1280, 640))
+    number_row(narrow, "age").edit.setFocus()
+    QTest.keyClick(narrow.windowHandle(), Qt.Key.Key_F6)
+    bar = narrow.sheet.scroller.verticalScrollBar()
+    assert bar.maximum() > 0
+    QTest.keyClick(narrow.windowHandle(), Qt.Key.Key_Down)
+    assert bar.value() > 0
 
 
 def test_no_number_stands_beside_a_file_that_was_refused(narrow: MainWindow, tmp_path: Path) -> None:

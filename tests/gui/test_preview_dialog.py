@@ -109,6 +109,23 @@ def test_a_value_changed_covers_the_pages_at_their_next_painting(qtbot: QtBot) -
     assert job.sent == []  # once covered, always covered
 
 
+def test_a_value_changed_covers_the_pages_once_the_preview_is_the_active_window_again(qtbot: QtBot) -> None:
+    view, job = open_preview(qtbot)
+    view.pages.setUpdatesEnabled(False)  # nothing is painted meanwhile
+    other = QWidget()
+    qtbot.addWidget(other)
+    with qtbot.waitExposed(other):
+        other.show()
+    other.activateWindow()
+    qtbot.waitUntil(other.isActiveWindow)
+    assert not view.is_covered
+    job.current[0] = False
+    view.activateWindow()
+    qtbot.waitUntil(lambda: view.is_covered)
+    view.pages.setUpdatesEnabled(True)
+    assert_covered(view)
+
+
 def test_keyboard(qtbot: QtBot) -> None:
     view, job = open_preview(qtbot)
     assert view.focusWidget() is view.print_button

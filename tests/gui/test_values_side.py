@@ -16,6 +16,7 @@ from clinicalc.gui.index_mark import IndexMark
 from clinicalc.gui.main_window import SMALLEST, MainWindow
 from clinicalc.gui.wording import numbered_findings
 from clinicalc.operations.bedside import open_example
+from clinicalc.report.document import LONGEST_NAME
 from tests.gui.bedside_hands import (
     ANSWERS_2008,
     NUMBERS_2008,
@@ -70,8 +71,47 @@ def test_range_stands_beside_its_value_in_the_unit_on_screen(qtbot: QtBot, tarnw
     assert drawn_range(tarnwick, "total_cholesterol") == ""  # "5.2 mmol/L as typed" has its place
     choose_unit(tarnwick, "hdl_cholesterol", "mg/dL")
     retype_number(tarnwick, "hdl_cholesterol", "50")
-    # 0.6 / 0.02586 = 23.2 and 3.2 / 0.02586 = 123.7 mg/dL
-    assert drawn_range(tarnwick, "hdl_cholesterol") == "Derivation range 23.2 to 124"
+    # 0.6 / 0.02586 = 23.202 and 3.2 / 0.02586 = 123.743 mg/dL, rounded inwards: 23.2 and 124 would be refused
+    assert drawn_range(tarnwick, "hdl_cholesterol") == "Derivation range 23.3 to 123"
+
+
+def test_a_value_has_one_range_beside_it_in_its_finding_and_in_the_note(qtbot: QtBot, tarnwick: MainWindow) -> None:
+    # 2.4 / 0.02586 = 92.807 and 8.9 / 0.02586 = 344.16 mg/dL, rounded inwards
+    choose_unit(tarnwick, "total_cholesterol", "mg/dL")
+    retype_number(tarnwick, "total_cholesterol", "350")
+    assert drawn_range(tarnwick, "total_cholesterol").startswith("Derivation range 92.9 to 344")
+    assessment = tarnwick.state.assessment
+    assert assessment is not None
+    [outside] = [f for f in assessment.findings if f.code is FindingCode.OUTSIDE_DERIVATION]
+    assert "92.9–344 mg/dL" in outside.message
+    tarnwick.resize(SMALLEST)
+    number_row(tarnwick, "age").edit.setFocus()
+    number_row(tarnwick, "total_cholesterol").edit.setFocus()
+    QApplication.processEvents()
+    assert "Derivation range 92.9–344 mg/dL." in tarnwick.field_note.words.text()
+
+
+def test_a_worked_out_value_has_the_digits_of_its_findings(
+    qtbot: QtBot, open_window: Callable[[Model | None], MainWindow]
+) -> None:
+    model = open_example("total-cvd-2024-base.json")
+    window = open_window(model)
+    # CKD-EPI 2021, woman of 50 with 5.0 mg/dL: 142 (5.0/0.7)^-1.2 0.9938^50 1.012 = 9.95 mL/min/1.73 m²,
+    # worked out by hand from Inker et al. 2021
+    typed = {"age": "50", "sex": "female", "creatinine": "5.0 mg/dL"}
+    window.use_model(model, entry_from_texts(typed))
+    assessment = window.state.assessment
+    assert assessment is not None
+    shown = number_row(window, "egfr").remark.text()
+    assert shown == "9.95 mL/min/1.73 m² worked out"
+    about = [f.message for f in assessment.findings if f.field == "egfr"]
+    assert about
+    assert all(shown.removesuffix(" worked out") + " (worked out from" in message for message in about)
+
+
+def test_a_label_is_as_long_as_a_print_takes(qtbot: QtBot, window: MainWindow) -> None:
+    assert window.values.label_row is not None
+    assert window.values.label_row.edit.maxLength() == LONGEST_NAME
 
 
 def test_value_outside_its_range_is_pointed_at(qtbot: QtBot, tarnwick: MainWindow) -> None:
@@ -237,6 +277,64 @@ def test_date_typed_after_the_number_moves_to_its_field(qtbot: QtBot, window: Ma
     choose_unit(window, "total_cholesterol", "mmol/L")
     assert row.dated.edit.text() == OLD.isoformat()
     assert window.state.entry.typed["total_cholesterol"] == Typed("180", "mg/dL", OLD)
+
+
+def test_a_date_that_came_with_a_number_goes_with_it(qtbot: QtBot, window: MainWindow) -> None:
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", f"180 on {OLD.isoformat()}")
+    row = number_row(window, "total_cholesterol")
+    assert row.dated is not None
+    press(row.edit, Qt.Key.Key_Return)
+    retype_number(window, "total_cholesterol", "190")
+    assert row.dated.edit.text() == ""
+    assert window.state.entry.typed["total_cholesterol"] == Typed("190", "mg/dL")
+    assert row.remark.text() == ""
+    row.dated.edit.undo()
+    assert row.dated.edit.text() == ""
+    press(row.edit, Qt.Key.Key_Return)
+    assert window.state.entry.typed["total_cholesterol"] == Typed("190", "mg/dL")
+
+
+def test_a_date_edited_in_its_field_stays(qtbot: QtBot, window: MainWindow) -> None:
+    fill_2008(window)
+    retype_number(window, "total_cholesterol", "180 on 2020-01-31")
+    row = number_row(window, "total_cholesterol")
+    assert row.dated is not None
+    press(row.edit, Qt.Key.Key_Return)
+    row.dated.edit.setFocus()
+    row.dated.edit.selectAll()
+    type_text(row.dated.edit, OLD.isoformat())
+    retype_number(window, "total_cholesterol", "190")
+    assert row.dated.edit.text() == OLD.isoformat()
+    assert window.state.entry.typed["total_cholesterol"] == Typed("190", "mg/dL", OLD)
+
+
+def test_of_two_dates_the_later_typed_counts_and_is_seen(qtbot: QtBot, window: MainWindow) -> None:
+    fill_2008(window)
+    row = number_row(window, "total_cholesterol")
+    assert row.dated is not None
+    row.dated.edit.setFocus()
+    type_text(row.dated.edit, "2020-01-31")
+    retype_number(window, "total_cholesterol", f"180 on {OLD.isoformat()}")
+    assert row.remark.text() == f"of {OLD.isoformat()}"
+    press(row.edit, Qt.Key.Key_Return)
+    assert row.dated.edit.text() == OLD.isoformat()
+    row.dated.edit.setFocus()
+    row.dated.edit.selectAll()
+    type_text(row.dated.edit, "2020-02-01")
+    assert window.state.entry.typed["total_cholesterol"] == Typed("180", "mg/dL", date(2020, 2, 1))
+    assert row.remark.text() == "of 2020-02-01"
+
+
+def test_a_date_of_an_entry_goes_with_its_number(qtbot: QtBot, window: MainWindow, lipids: Model) -> None:
+    entry = entry_from_texts(NUMBERS_2008 | ANSWERS_2008)
+    dated = replace(entry.typed["total_cholesterol"], dated=OLD)
+    window.use_model(lipids, PatientEntry({**entry.typed, "total_cholesterol": dated}))
+    choose_unit(window, "total_cholesterol", "mmol/L")
+    choose_unit(window, "total_cholesterol", "mg/dL")
+    assert window.state.entry.typed["total_cholesterol"].dated == OLD  # another unit is no other number
+    retype_number(window, "total_cholesterol", "190")
+    assert window.state.entry.typed["total_cholesterol"] == Typed("190", "mg/dL")
 
 
 def test_entry_with_a_date_is_shown_with_it(qtbot: QtBot, window: MainWindow, lipids: Model) -> None:

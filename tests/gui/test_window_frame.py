@@ -1,14 +1,13 @@
 """Round the patient: menu and theme, files opened lately, copying, printing, and which window this is."""
 
-import subprocess
-import sys
 from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
-from PySide6.QtCore import Qt
+from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtWidgets import QApplication, QDialog, QFileDialog, QWidget
+from PySide6.QtTest import QTest
+from PySide6.QtWidgets import QApplication, QDialog, QFileDialog, QLabel, QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.entry import entry_from_texts
@@ -19,9 +18,8 @@ from clinicalc.gui import theme
 from clinicalc.gui.about_view import AboutView
 from clinicalc.gui.file_dialogs import make_save_dialog
 from clinicalc.gui.guide_view import GuideView
-from clinicalc.gui.main_window import MainWindow
+from clinicalc.gui.main_window import NARROWEST, MainWindow
 from clinicalc.gui.preferences import Preferences
-from clinicalc.gui.window_number import WindowNumber
 from clinicalc.operations.copying import copy_text
 from clinicalc.resources import read_shipped
 from clinicalc.settings import Paper, Settings, ThemeChoice
@@ -295,52 +293,67 @@ def test_f6_goes_both_ways(framed: MainWindow) -> None:
     assert QApplication.focusWidget() is left
 
 
-def test_numbers_of_windows_are_lowest_free_ones(tmp_path: Path) -> None:
-    first, second = WindowNumber(tmp_path), WindowNumber(tmp_path)
-    assert (first.number, second.number) == (1, 2)
-    first.let_go()
-    third = WindowNumber(tmp_path)
-    assert third.number == 1
-    assert len(list(tmp_path.iterdir())) == 2
-    second.let_go()
-    third.let_go()
-    assert list(tmp_path.iterdir()) == []
+@pytest.mark.parametrize("size", [QSize(1280, 800), NARROWEST])
+def test_tab_goes_on_from_the_result_into_it_and_back_to_the_values(framed: MainWindow, size: QSize) -> None:
+    framed.resize(size)
+    retype_number(framed, "total_cholesterol", "5.2")
+    handle = framed.windowHandle()
+    marks = [mark for mark in framed.sheet.findings.tab_stops() if mark.isVisible() and mark.isEnabled()]
+    assert marks
+    last = framed.values.tab_stops()[-1]
+    for _ in range(2):  # the second time from a ring that the first assessment has put in order again
+        framed.values.focus_field("age")
+        QTest.keyClick(handle, Qt.Key.Key_F6)
+        assert framed.sheet.scroller.hasFocus()
+        for stop in (framed.sheet.people.as_text, *marks):
+            QTest.keyClick(handle, Qt.Key.Key_Tab)
+            assert stop.hasFocus()
+        framed.sheet.people.as_text.setFocus()
+        QTest.keyClick(handle, Qt.Key.Key_Tab, Qt.KeyboardModifier.ShiftModifier)
+        assert last.hasFocus()
+        QTest.keyClick(handle, Qt.Key.Key_F6)
+        QTest.keyClick(handle, Qt.Key.Key_Tab, Qt.KeyboardModifier.ShiftModifier)
+        assert last.hasFocus()
+        QTest.keyClick(handle, Qt.Key.Key_Tab)  # the tab key does not stop at the sheet itself
+        assert framed.sheet.people.as_text.hasFocus()
+        retype_number(framed, "total_cholesterol", "5.3")
 
 
-def test_another_process_counts_and_a_dead_one_does_not(tmp_path: Path) -> None:
-    program = f"""
-import sys, os
-from pathlib import Path
-from clinicalc.gui.window_number import WindowNumber
-number = WindowNumber(Path({str(tmp_path)!r}))
-print(number.number, flush=True)
-sys.stdin.read()
-os._exit(0)  # without letting go, as in a crash
-"""
-    with subprocess.Popen(
-        [sys.executable, "-c", program], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True
-    ) as other:
-        assert other.stdout is not None
-        assert other.stdin is not None
-        assert other.stdout.readline().strip() == "1"
-        ours = WindowNumber(tmp_path)
-        assert ours.number == 2
-        other.stdin.close()
-        other.wait(30)
-    again = WindowNumber(tmp_path)
-    assert again.number == 1
-    ours.let_go()
-    again.let_go()
+@pytest.mark.parametrize("size", [QSize(1280, 800), NARROWEST])
+@pytest.mark.parametrize("times", [0, 1, 2])
+@pytest.mark.parametrize("field", ["age", "prior_cvd"])
+def test_no_key_reaches_a_field_behind_a_refused_file(
+    framed: MainWindow, tmp_path: Path, size: QSize, times: int, field: str
+) -> None:
+    framed.resize(size)
+    framed.values.focus_field(field)
+    handle = framed.windowHandle()
+    for _ in range(times):  # from the field, from the result, from the field again
+        QTest.keyClick(handle, Qt.Key.Key_F6)
+    framed.open_path(tmp_path / "nowhere.json")
+    before = dict(framed.state.entry.typed)
+    marks = [label.text().lower().partition("&")[2][:1] for label in framed.values.findChildren(QLabel)]
+    letters = sorted({mark for mark in marks if mark})
+    assert "a" in letters
+    ways = [(Qt.Key.Key_F6, Qt.KeyboardModifier.NoModifier), (Qt.Key.Key_F6, Qt.KeyboardModifier.ShiftModifier)]
+    ways += [
+        (Qt.Key(ord(letter.upper())), Qt.KeyboardModifier.AltModifier) for letter in letters if letter != "b"
+    ]  # Back
+    for key, modifier in [*ways, *ways]:
+        QTest.keyClick(handle, key, modifier)
+        focused = QApplication.focusWidget()
+        assert focused is not None
+        assert framed.refusal.isAncestorOf(focused), (key, modifier)
+        for typed in (Qt.Key.Key_2, Qt.Key.Key_Y, Qt.Key.Key_Right):
+            QTest.keyClick(handle, typed)
+    assert framed.refusal.isVisible()
+    assert dict(framed.state.entry.typed) == before
 
 
-def test_where_no_lock_can_be_made_the_window_opens_all_the_same(tmp_path: Path) -> None:
-    assert WindowNumber(tmp_path / "no such folder").number == 1
-
-
-def test_second_window_says_so_in_title_and_bar(qtbot: QtBot, lipids: Model) -> None:
-    window = MainWindow(number=2)
-    qtbot.addWidget(window)
-    assert window.windowTitle() == "Patient 2"
-    window.use_model(lipids)
-    assert window.windowTitle() == "Patient 2: General cardiovascular disease, lipid form"
-    assert window.page_bar.tab.accessibleName() == "Patient 2"
+def test_f6_stays_on_the_page_of_a_refused_file(framed: MainWindow, tmp_path: Path) -> None:
+    framed.values.focus_field("hdl_cholesterol")
+    framed.open_path(tmp_path / "nowhere.json")
+    press(framed, Qt.Key.Key_F6)
+    assert framed.refusal.back.hasFocus()
+    press(framed, Qt.Key.Key_F6)
+    assert framed.refusal.problems.hasFocus()

@@ -6,6 +6,7 @@ from io import BytesIO
 from typing import Any
 
 from pypdf import PdfReader, PdfWriter
+from pypdf.annotations import FreeText
 from pypdf.generic import DecodedStreamObject, NameObject
 
 Change = Callable[[Any], None]
@@ -44,6 +45,27 @@ def without_record(pdf: bytes) -> bytes:
     """The same pages with nothing attached."""
     writer = PdfWriter(clone_from=PdfReader(BytesIO(pdf)))
     del writer.root_object["/Names"]
+    return _written(writer)
+
+
+def with_page(pdf: bytes, other: bytes, place: int, *, at: int) -> bytes:
+    """The print with a page of another one put in, both counted from 0."""
+    writer = PdfWriter(clone_from=PdfReader(BytesIO(pdf)))
+    writer.insert_page(PdfReader(BytesIO(other)).pages[place], at)
+    return _written(writer)
+
+
+def without_page(pdf: bytes, place: int) -> bytes:
+    """The print with one page taken out, counted from 0."""
+    writer = PdfWriter(clone_from=PdfReader(BytesIO(pdf)))
+    writer.remove_page(place)
+    return _written(writer)
+
+
+def with_annotation(pdf: bytes, place: int) -> bytes:
+    """The print with a text laid over a page, as a viewer adds comments."""
+    writer = PdfWriter(clone_from=PdfReader(BytesIO(pdf)))
+    writer.add_annotation(place, FreeText(text="2 of 100", rect=(100, 400, 300, 440)))
     return _written(writer)
 
 

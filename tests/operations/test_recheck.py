@@ -1,6 +1,8 @@
 """An old print worked out again: it agrees with the file it was made with, and any change to it is named."""
 
-from datetime import UTC, datetime
+import re
+from dataclasses import replace
+from datetime import UTC, datetime, timedelta, timezone
 from pathlib import Path
 from typing import Any
 
@@ -16,9 +18,18 @@ from clinicalc.operations.bedside import assess_patient, open_example
 from clinicalc.operations.demonstration import demo_case
 from clinicalc.operations.old_print import OldPrint, Record, read_old_print
 from clinicalc.operations.recheck import Recheck, recheck, report_recheck
+from clinicalc.report.paper import Paper
 from clinicalc.report.pdf import make_report
-from tests.operations.forging import Change, with_changed_record, with_record, without_time
-from tests.report.printing import PRINTED, printed, with_band, without_band
+from tests.operations.forging import (
+    Change,
+    with_annotation,
+    with_changed_record,
+    with_page,
+    with_record,
+    without_page,
+    without_time,
+)
+from tests.report.printing import PRACTICE, PRINTED, printed, with_band, without_band
 
 CASE = demo_case()
 DEMO = assess_patient(CASE.model, CASE.entry, at=PRINTED)
@@ -241,7 +252,103 @@ def test_another_patients_record_on_these_pages_is_caught(tmp_path: Path) -> Non
         "The band on the pages",
         "Age on the pages",
         "Systolic blood pressure on the pages",
+        "Page 1",
+        "Page 3",
     }
+
+
+def other_patient() -> bytes:
+    """The print of another patient of the same practice, model and minute: 7 of 100 instead of 12 of 100 people."""
+    texts = {id: typed.text for id, typed in CASE.entry.typed.items()} | {"smoker": "no"}
+    return printed(assess_patient(CASE.model, entry_from_texts(texts, CASE.entry.label), at=PRINTED))
+
+
+def faults(pdf: bytes, folder: Path) -> dict[str, str]:
+    """What differs on the pages, by name."""
+    return {difference.what: difference.sentence for difference in checked(pdf, folder).differences}
+
+
+def test_another_patients_page_for_the_patient_is_caught(tmp_path: Path) -> None:
+    found = faults(with_page(without_page(PDF, 2), other_patient(), 2, at=2), tmp_path)
+    assert set(found) == {"Page 3"}
+    assert found["Page 3"].startswith("Page 3: ")
+    assert re.search(r"\b7 will have .* → 12 will have ", found["Page 3"])
+
+
+def test_another_prints_first_page_put_in_front_is_caught(tmp_path: Path) -> None:
+    found = faults(with_page(PDF, other_patient(), 0, at=0), tmp_path)
+    assert found["Number of pages"] == "Number of pages: 4 → 3"
+    assert {"Page 1", "Page 2", "Page 3"} <= set(found)
+
+
+@pytest.mark.parametrize("place", [0, 1, 2])
+def test_a_page_taken_out_is_caught(place: int, tmp_path: Path) -> None:
+    """Without the patient's page the other two still say "of 3"."""
+    assert not checked(without_page(PDF, place), tmp_path).agrees
+
+
+def test_pages_in_another_order_are_caught(tmp_path: Path) -> None:
+    assert set(faults(with_page(without_page(PDF, 1), PDF, 1, at=0), tmp_path)) >= {"Page 1", "Page 2"}
+
+
+def test_a_page_twice_is_caught(tmp_path: Path) -> None:
+    assert faults(with_page(PDF, PDF, 2, at=3), tmp_path) == {"Number of pages": "Number of pages: 4 → 3"}
+
+
+def test_something_put_on_a_page_is_caught(tmp_path: Path) -> None:
+    assert set(faults(with_annotation(PDF, 2), tmp_path)) == {"Page 3"}
+
+
+LONG = "Ottilie Wilhelmina Fenn of the Lower Tarnwick Mill, seen with her interpreter, second visit"
+UNBROKEN = "Tarnwick" * 14
+
+
+@pytest.mark.parametrize("paper", Paper)
+@pytest.mark.parametrize("patient_page", [True, False])
+@pytest.mark.parametrize(
+    ("label", "practice"),
+    [
+        ("", ""),
+        ("Ottilie Fenn", PRACTICE),
+        (LONG, PRACTICE),
+        (UNBROKEN, ""),
+        ("Zoë Ångström-Fenn 7", "Pràctice 12, 3\u202f% & sons"),
+    ],
+    ids=["bare", "named", "long", "unbroken", "accents"],
+)
+def test_every_way_of_printing_agrees(
+    label: str, practice: str, patient_page: bool, paper: Paper, tmp_path: Path
+) -> None:
+    """Printed eight years ago in another zone, three minutes after the assessment."""
+    zone = timezone(timedelta(hours=-3, minutes=-30))
+    then = datetime(2018, 3, 9, 23, 59, 30, tzinfo=zone)
+    assessment = replace(assess_patient(CASE.model, CASE.entry, at=then), label=label)
+    pdf = make_report(
+        assessment,
+        practice=practice,
+        printed_at=then + timedelta(minutes=3),
+        patient_page=patient_page,
+        paper=paper,
+    )
+    found = checked(pdf, tmp_path, assessment)
+    assert found.differences == ()
+    assert found.agrees
+
+
+def test_a_print_without_a_number_agrees_and_its_changed_page_does_not(tmp_path: Path) -> None:
+    assessment = with_band(age="")
+    assert assessment.estimate is None
+    assert checked(printed(assessment), tmp_path, assessment).agrees
+    changed = with_page(without_page(printed(assessment), 0), printed(with_band()), 0, at=0)
+    assert not checked(changed, tmp_path, assessment).agrees
+
+
+def test_the_last_sentences_say_what_was_compared(tmp_path: Path) -> None:
+    same = report_recheck(checked(PDF, tmp_path))
+    assert same[-2].startswith("The text of every page was compared")
+    assert "drawings were not compared" in same[-1]
+    other = report_recheck(recheck(read_back(PDF, tmp_path), open_example("general-cvd-2008-lipids.json")))
+    assert other[-2].startswith("The pages were not compared")
 
 
 def test_another_file_is_named_with_what_it_gives(tmp_path: Path) -> None:

@@ -15,7 +15,7 @@ from tests.report.printing import PRACTICE, PRINTED, with_band
 
 
 def rows_of(assessment: Assessment) -> dict[object, Row]:
-    """The rows of both tables by their label."""
+    """The rows of the table by their label."""
     blocks = [block for block in compose_values(assessment).blocks if isinstance(block, Table)]
     return {row.cells[0]: row for block in blocks for row in block.rows}
 
@@ -31,6 +31,19 @@ def test_the_derivation_range_stands_in_the_unit_of_the_typed_value() -> None:
     # the file's 2.4 to 8.9 mmol/L over 0.02586 is 92.81 to 344.2 mg/dL; to three digits, inwards, as in the findings
     assert (cells[4].span.low_text, cells[4].span.high_text) == ("92.9", "344")
     assert cells[4].value == pytest.approx(200.0)
+
+
+def test_the_answer_about_an_exclusion_stands_under_typed_and_below_the_headings() -> None:
+    assessment = with_band()
+    page = lay_out(read_lettering(), compose(assessment, practice=PRACTICE, printed_at=PRINTED))[0]
+    texts = [shape for shape in page.shapes if isinstance(shape, Text)]
+    heading = next(text for text in texts if text.text == "typed")
+    question = next(text for text in texts if text.text == "Has it happened before?")
+    answer = next(text for text in texts if text.text == "No")
+    age = next(text for text in texts if text.text == "Age")
+    assert answer.x == heading.x
+    assert heading.y < question.y == answer.y < age.y
+    assert [text.text for text in texts].count("typed") == 1
 
 
 def test_a_value_outside_its_range_has_a_pointer_and_the_mark_of_its_finding() -> None:
