@@ -7,6 +7,7 @@ from PySide6.QtWidgets import QHBoxLayout, QWidget
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding
+from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.result import ValueLine
 from clinicalc.gui.labels import make_label, make_row_label
 from clinicalc.gui.rows import FieldRow
@@ -21,6 +22,7 @@ class WorkedOutRow(FieldRow):
 
     def __init__(self, field: NumberField) -> None:
         super().__init__(field.id, field.meaning)
+        self._field = field
         self.value = make_label(_NOTHING, UNIT, soft=True)
         self.value.setAccessibleName(field.label)
         self.setMinimumHeight(ROW_PITCH)
@@ -36,8 +38,12 @@ class WorkedOutRow(FieldRow):
         return typed
 
     def show_remarks(self, line: ValueLine | None, findings: Sequence[Finding]) -> None:
-        """The figure, when there is one."""
-        self.value.setText(f"{line.used}, worked out" if line is not None and line.worked_out else _NOTHING)
+        """The figure, when there is one, to as many digits as the findings say it."""
+        if line is None or not line.worked_out or line.number is None:
+            self.value.setText(_NOTHING)
+            return
+        unit = "" if self._field.unit == "1" else f" {self._field.spelling}"
+        self.value.setText(f"{plain(line.number)}{unit}, worked out")
 
     def fit(self, room: int, *, compact: bool) -> None:
         """Takes any room."""
