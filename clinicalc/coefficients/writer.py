@@ -1,16 +1,14 @@
 """Writing a coefficient file: one layout for every content, so that two versions can be compared line by line."""
 
-import contextlib
 import json
 import math
-import os
-import tempfile
 from pathlib import Path
 
 import msgspec
 
 from clinicalc.coefficients.schema import CoefficientFile
 from clinicalc.errors import FileNotWritten
+from clinicalc.replacement import READABLE, replace_file
 
 WIDTH = 120
 _INDENT = 2
@@ -28,19 +26,8 @@ def write_file(path: Path, content: CoefficientFile) -> None:
     """Puts the file at `path` whole or not at all. Raises FileNotWritten; nothing half-written is left."""
     data = write_bytes(content)
     try:
-        handle, temporary = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name[:40]}-", suffix=".part")
+        replace_file(path, data, READABLE)
     except (OSError, ValueError) as fault:
-        raise _not_written(path, fault) from None
-    try:
-        with os.fdopen(handle, "wb") as stream:
-            stream.write(data)
-            stream.flush()
-            os.fsync(stream.fileno())
-        Path(temporary).chmod(0o644)
-        os.replace(temporary, path)
-    except OSError as fault:
-        with contextlib.suppress(OSError):
-            os.unlink(temporary)
         raise _not_written(path, fault) from None
 
 

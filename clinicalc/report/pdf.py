@@ -2,9 +2,8 @@
 
 import os
 import stat
-import tempfile
 from collections.abc import Iterator
-from contextlib import contextmanager, suppress
+from contextlib import contextmanager
 from datetime import datetime
 from pathlib import Path
 from typing import Any
@@ -12,6 +11,7 @@ from typing import Any
 from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
 from clinicalc.errors import FileNotWritten
+from clinicalc.replacement import replace_file
 from clinicalc.report.attachment import attach_record
 from clinicalc.report.document import Document, make_document
 from clinicalc.report.painter import paint_pages
@@ -72,7 +72,7 @@ def save_report(
             raise FileNotWritten(
                 "the print was not saved.", where=str(path), why=fault, do="Choose another name. Nothing was changed."
             )
-        _replace_file(path, content)
+        replace_file(path, content)
     except (OSError, ValueError) as error:  # ValueError: a file name with a null character
         said = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
         raise FileNotWritten(
@@ -102,21 +102,6 @@ def _judge_target(path: Path) -> str:
 
 def _open_waiting_for_nothing(name: str, flags: int) -> int:
     return os.open(name, flags | getattr(os, "O_NONBLOCK", 0) | getattr(os, "O_NOFOLLOW", 0))
-
-
-def _replace_file(path: Path, content: bytes) -> None:
-    """A temporary file beside the target, on the disk before it takes the target's name."""
-    handle, name = tempfile.mkstemp(prefix=".clinicalc-", suffix=".part", dir=path.parent)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        os.replace(name, path)
-    except BaseException:
-        with suppress(OSError):
-            os.unlink(name)
-        raise
 
 
 def _write_pdf(document: Document, record: str) -> bytes:

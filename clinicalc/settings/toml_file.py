@@ -1,7 +1,5 @@
 """The settings file: read kindly, written whole or not at all, and never lost."""
 
-import contextlib
-import os
 import re
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, replace
@@ -10,6 +8,7 @@ from pathlib import Path
 from typing import TypeVar
 
 from clinicalc.errors import ClinicalcError, FileNotWritten, UsageError
+from clinicalc.replacement import replace_file
 from clinicalc.settings.folder import settings_folder
 from clinicalc.settings.settings import Paper, Settings, ThemeChoice
 
@@ -52,7 +51,7 @@ def write_settings(settings: Settings) -> None:
         path = path.resolve()  # where the file is a link, what it leads to is replaced and the link stays
         if _read(path).problems:
             _keep_copy(path)
-        _replace_file(path, _spell(settings).encode("utf-8"))
+        replace_file(path, _spell(settings).encode("utf-8"))
     except (OSError, RuntimeError) as fault:
         raise FileNotWritten(
             "the settings could not be written.",
@@ -211,19 +210,3 @@ def _keep_copy(path: Path) -> None:
     while (kept := path.with_name(f"{path.stem}-{number}{path.suffix}")).exists():
         number += 1
     shutil.copyfile(path, kept)
-
-
-def _replace_file(path: Path, data: bytes) -> None:
-    import tempfile
-
-    handle, temporary = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}-", suffix=".part")
-    try:
-        with os.fdopen(handle, "wb") as stream:
-            stream.write(data)
-            stream.flush()
-            os.fsync(stream.fileno())
-        os.replace(temporary, path)
-    except OSError:
-        with contextlib.suppress(OSError):
-            os.unlink(temporary)
-        raise
