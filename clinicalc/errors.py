@@ -5,6 +5,8 @@
     ├── CoefficientFileRefused  a coefficient file that may not be used; carries all its problems   exit 4
     ├── UnitError               a unit or quantity that the table does not have, or that does not convert
     ├── PrintRefused            a text that cannot be printed faithfully
+    ├── DescriptionRefused      a description or fit from which no coefficient file can be made; all problems   exit 4
+    ├── ReconstructionRefused   a band that cannot be rebuilt from what was printed; all that is lacking    exit 4
     ├── FileNotWritten          an output file that could not be written; nothing half-written is left
     └── ShippedFileMissing      an installation that lacks a file it needs
 
@@ -69,6 +71,35 @@ class CoefficientFileRefused(ClinicalcError):
         self.problems = problems
         count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
         super().__init__(f"this coefficient file is refused ({count}).", where=name)
+
+    def __str__(self) -> str:
+        return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
+class DescriptionRefused(ClinicalcError):
+    """A description or a fit from which no coefficient file can be made, with every problem found."""
+
+    exit_status = 4
+
+    def __init__(self, name: str, problems: tuple[Problem, ...]) -> None:
+        self.name = name
+        self.problems = problems
+        count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
+        super().__init__(f"no coefficient file is made from this ({count}); nothing was written.", where=name)
+
+    def __str__(self) -> str:
+        return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
+class ReconstructionRefused(ClinicalcError):
+    """A band that cannot be rebuilt from what a paper prints, with everything that is lacking or cannot be."""
+
+    exit_status = 4
+
+    def __init__(self, problems: tuple[Problem, ...]) -> None:
+        self.problems = problems
+        count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
+        super().__init__(f"the band cannot be rebuilt from the printed figures ({count}).")
 
     def __str__(self) -> str:
         return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])

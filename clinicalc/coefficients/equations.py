@@ -5,6 +5,7 @@ from typing import Annotated, Literal
 from msgspec import UNSET, Meta, UnsetType, field
 
 from clinicalc.coefficients.file_types import Count, FileStruct, Id, Label, Level, Matrix, Positive, Probability, Text
+from clinicalc.coefficients.population import Population
 
 
 class Spline(FileStruct, frozen=True):
@@ -142,7 +143,10 @@ Uncertainty = CovarianceBand | RobustBand | ReconstructedBand | DrawsBand | NoBa
 
 
 class Equation(FileStruct, frozen=True):
-    """One linear predictor for the people described by `applies_when` (predictor id -> the answers it covers)."""
+    """One linear predictor for the people described by `applies_when` (predictor id -> the answers it covers).
+
+    `population` describes those people; where it is left out, the model's own description holds.
+    """
 
     id: Id
     applies_when: dict[Id, Annotated[tuple[Id, ...], Meta(min_length=1)]]
@@ -152,3 +156,4 @@ class Equation(FileStruct, frozen=True):
     horizons: Annotated[tuple[Horizon, ...], Meta(min_length=1, max_length=100)]
     uncertainty: Uncertainty
     reference_person: dict[Id, float | str] | UnsetType = UNSET
+    population: Population | UnsetType = UNSET

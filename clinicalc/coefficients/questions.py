@@ -13,12 +13,21 @@ class ValidFor(FileStruct, frozen=True):
     days: Annotated[int, Meta(ge=1, le=36525)]
 
 
+Fraction = Annotated[float, Meta(gt=0, lt=1)]
+
+
 class WithinPerson(FileStruct, frozen=True):
-    """How much repeated values of one person vary: `sd` in the predictor's unit, or `cv` as a fraction."""
+    """How much repeated values of one person vary: `sd` in the predictor's unit, or `cv` as a fraction.
+
+    `within_visit_sd` or `within_visit_cv`, of the same kind, is the part of it that differs among readings of one
+    visit; without it, several readings of one visit count as one.
+    """
 
     source: Text
-    cv: Annotated[float, Meta(gt=0, lt=1)] | UnsetType = UNSET
+    cv: Fraction | UnsetType = UNSET
     sd: Positive | UnsetType = UNSET
+    within_visit_cv: Fraction | UnsetType = UNSET
+    within_visit_sd: Positive | UnsetType = UNSET
 
 
 class Choice(FileStruct, frozen=True):

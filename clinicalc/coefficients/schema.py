@@ -43,6 +43,7 @@ from clinicalc.coefficients.file_types import (
     Text,
     Version,
 )
+from clinicalc.coefficients.population import Population, PopulationAnswer, PopulationChoice, PopulationNumber
 from clinicalc.coefficients.provenance import (
     Derivation,
     Plain,
@@ -170,40 +171,6 @@ class WorkedExample(FileStruct, frozen=True):
     recalibration: Id | UnsetType | None = UNSET
     from_memory: bool | UnsetType = UNSET
     computed: bool | UnsetType = UNSET
-
-
-class PopulationNumber(FileStruct, frozen=True):
-    """Mean and standard deviation of a number predictor in its unit, or of its natural logarithm."""
-
-    id: Id
-    mean: float
-    sd: Positive
-    log: Literal["natural"] | UnsetType = UNSET
-
-
-class PopulationAnswer(FileStruct, frozen=True):
-    """The log odds of yes given the numbers (on the scale stated for them) and the yes/no answers before it."""
-
-    id: Id
-    intercept: float
-    coefficients: dict[Id, float]
-
-
-class PopulationChoice(FileStruct, frozen=True):
-    """The shares of the answers of a choice; they add up to one."""
-
-    id: Id
-    shares: dict[Id, Probability]
-
-
-class Population(FileStruct, frozen=True):
-    """The people the model was made from, described well enough to draw from: `correlations` follow `numbers`."""
-
-    source: Text
-    numbers: tuple[PopulationNumber, ...]
-    correlations: Matrix
-    yes_no: tuple[PopulationAnswer, ...]
-    choices: tuple[PopulationChoice, ...] | UnsetType = UNSET
 
 
 class Documentation(FileStruct, frozen=True):

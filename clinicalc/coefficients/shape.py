@@ -12,7 +12,7 @@ from collections.abc import Iterator, Mapping
 from msgspec import inspect
 
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
-from clinicalc.coefficients.schema import CoefficientFile
+from clinicalc.coefficients.schema import CoefficientFile, FileStruct
 from clinicalc.coefficients.strict_json import Unusable
 from clinicalc.errors import Problem
 
@@ -24,14 +24,14 @@ _PATTERN_WORDS = {
 }
 
 
-def find_shape_problems(parsed: object) -> Iterator[Problem]:
-    """Every place where the parsed value does not have the shape of a coefficient file; none when it has."""
-    return _walk(parsed, _shape_of_file(), "")
+def find_shape_problems(parsed: object, kind: type[FileStruct] = CoefficientFile) -> Iterator[Problem]:
+    """Every place where the parsed value does not have the shape of a coefficient file (or of another struct)."""
+    return _walk(parsed, _shape_of(kind), "")
 
 
 @functools.cache
-def _shape_of_file() -> inspect.Type:
-    return inspect.type_info(CoefficientFile)
+def _shape_of(kind: type[FileStruct]) -> inspect.Type:
+    return inspect.type_info(kind)
 
 
 def _walk(value: object, shape: inspect.Type, path: str) -> Iterator[Problem]:
@@ -178,7 +178,17 @@ def _check_number(value: object, shape: inspect.FloatType | inspect.IntType, pat
     )
     for limit, words, holds in bounds:
         if limit is not None and not holds(value, limit):
-            yield Problem(path, f"{quoted(value)} must be {words} {quoted(limit)}.")
+            yield Problem(path, f"{quoted(value)} must be {words} {quoted(limit)}.{_slip(value, shape)}")
+
+
+def _slip(value: float, shape: inspect.FloatType | inspect.IntType) -> str:
+    """The likely slip behind a number out of its bounds: a sign, or a percentage where a fraction stands."""
+    above = 0 in (shape.gt, shape.ge)
+    if above and value < 0:
+        return " Take the minus sign away if it is a slip."
+    if above and 1 in (shape.lt, shape.le) and 1 < value < 100:
+        return f" It is a fraction, so this says {100 * value:g}\u202f%. Did you mean {quoted(value / 100)}?"
+    return ""
 
 
 def _fits(value: object, shape: inspect.Type) -> bool:

@@ -10,6 +10,9 @@ from clinicalc.covariates.transforms import Column
 FRIEDEWALD_LIMIT = 400.0
 """mg/dL of triglycerides above which the Friedewald equation does not hold (4.5 mmol/L)."""
 
+BENDS: Mapping[tuple[DerivedEquation, str], tuple[float, ...]] = {("ckd_epi_2021", "creatinine"): (0.7, 0.9)}
+"""Equation and role -> where the equation bends in it, in the role's unit: for women and for men."""
+
 
 def derive(equation: DerivedEquation, inputs: Mapping[str, Column]) -> Column:
     """The derived column, shape (n,), in the equation's unit; not a number where the equation does not hold.

@@ -1,20 +1,19 @@
 """The settings as one value, and what each of them may be."""
 
 import os
-import unicodedata
 from dataclasses import dataclass, replace
 from enum import StrEnum
 from pathlib import Path
 
 from clinicalc.errors import UsageError
+from clinicalc.settings.faults import fault_of_unseen
+from clinicalc.settings.points import MOST_POINTS, PracticePoint
 
 MOST_RECENT = 8
 """How many files opened lately are remembered."""
 LONGEST_PRACTICE = 80
 LOWEST_LEVEL, HIGHEST_LEVEL = 0.5, 0.999
 """Levels of which a band is made; the same limits as everywhere a level is asked for."""
-_UNSEEN = ("Cc", "Cf", "Cs", "Zl", "Zp")
-"""Unicode categories of what is not seen or breaks a line: control, format (bidirectional ones too), separators."""
 
 
 class ThemeChoice(StrEnum):
@@ -37,6 +36,7 @@ class Settings:
     """What was chosen on this machine. Raises UsageError, naming the setting, where a value cannot be one.
 
     `recent_files`: paths of coefficient files, newest first; never of prints. `level`: of the band, 0.5 to 0.999.
+    `decision_points`: probabilities at which this practice acts, eight at most, each with who says so.
     """
 
     theme: ThemeChoice = ThemeChoice.SYSTEM
@@ -44,11 +44,15 @@ class Settings:
     practice: str = ""
     paper: Paper = Paper.A4
     level: float = 0.95
+    decision_points: tuple[PracticePoint, ...] = ()
 
     def __post_init__(self) -> None:
         for fault in (_fault_of_recent(self.recent_files), _fault_of_practice(self.practice), _fault_of(self.level)):
             if fault:
                 raise UsageError(fault)
+        if len(self.decision_points) > MOST_POINTS:
+            given = len(self.decision_points)
+            raise UsageError(f"decision_points holds {given} tables, and at most {MOST_POINTS} are kept.")
 
     def with_recent(self, path: Path) -> "Settings":
         """The settings with this coefficient file as the newest; the oldest leaves when there are too many.
@@ -73,10 +77,8 @@ def _fault_of_recent(paths: tuple[str, ...]) -> str:
 def _fault_of_practice(practice: str) -> str:
     if len(practice) > LONGEST_PRACTICE:
         return f"practice has {len(practice)} characters, and at most {LONGEST_PRACTICE} fit on a print."
-    for character in practice:
-        if unicodedata.category(character) in _UNSEEN:
-            return f"practice holds U+{ord(character):04X}, a character that is not seen or breaks the line."
-    return ""
+    unseen = fault_of_unseen(practice)
+    return f"practice holds {unseen}" if unseen else ""
 
 
 def _fault_of(level: float) -> str:

@@ -1,7 +1,7 @@
 """The settings file: read kindly, written whole or not at all, and never lost."""
 
 import re
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from enum import StrEnum
 from pathlib import Path
@@ -10,7 +10,10 @@ from typing import TypeVar
 from clinicalc.errors import ClinicalcError, FileNotWritten, UsageError
 from clinicalc.replacement import replace_file
 from clinicalc.settings.folder import settings_folder
+from clinicalc.settings.points import MOST_POINTS, PracticePoint
+from clinicalc.settings.points_table import spell_points, take_point
 from clinicalc.settings.settings import Paper, Settings, ThemeChoice
+from clinicalc.settings.toml_text import quote_toml, shown_text
 
 FILE_NAME = "settings.toml"
 _MOST_BYTES = 1 << 20
@@ -92,6 +95,11 @@ def _take(name: str, data: bytes) -> SettingsReading:
         return SettingsReading(Settings(), (f"{name}: this is not a settings file. {_DEFAULTS}",))
     settings, problems = Settings(), list[str]()
     for key, value in table.items():
+        if key == _POINTS:
+            points, faults = _take_points(value, text)
+            settings = replace(settings, decision_points=points)
+            problems += [f"{name}{fault}" for fault in faults]
+            continue
         try:
             settings = _taken(settings, key, value)
         except ClinicalcError as fault:
@@ -103,7 +111,8 @@ def _taken(settings: Settings, key: str, value: object) -> Settings:
     """The settings with one more of them. Raises UsageError where the key or its value cannot be taken."""
     take = _TAKERS.get(key)
     if take is None:
-        raise UsageError(f"{_shown(key)} is not a setting; there are {', '.join(_TAKERS)}.", do="It is left out.")
+        known = ", ".join((*_TAKERS, _POINTS))
+        raise UsageError(f"{shown_text(key)} is not a setting; there are {known}.", do="It is left out.")
     try:
         return take(settings, value)
     except UsageError as fault:
@@ -139,6 +148,23 @@ def _take_level(settings: Settings, value: object) -> Settings:
         raise UsageError("level is a number from 0.5 to 0.999.") from None
 
 
+def _take_points(value: object, text: str) -> tuple[tuple[PracticePoint, ...], list[str]]:
+    """The decision points that can be taken, and for each other one its line and a sentence: one bad point leaves out
+    itself and none of the others."""
+    tables = value if isinstance(value, list) else [value]
+    points, faults = list[PracticePoint](), list[str]()
+    for place, table in enumerate(tables):
+        try:
+            if len(points) == MOST_POINTS:
+                raise UsageError(f"it is one more than the {MOST_POINTS} that are kept.")
+            points.append(take_point(table))
+        except UsageError as fault:
+            line = _line_of(_POINTS, text, place)
+            faults.append(f"{line}: decision point {place + 1}: {fault.what} It is left out. Mend it or delete it.")
+    return tuple(points), faults
+
+
+_POINTS = "decision_points"
 _TAKERS: Mapping[str, Callable[[Settings, object], Settings]] = {
     "theme": _take_theme,
     "recent_files": _take_recent,
@@ -152,14 +178,8 @@ def _one_of(kind: type[_Choice], key: str, value: object) -> _Choice:
     for choice in kind:
         if isinstance(value, str) and choice.value == value:
             return choice
-    stands = f" {_shown(value)}" if isinstance(value, str) else ""
+    stands = f" {shown_text(value)}" if isinstance(value, str) else ""
     raise UsageError(f"{key}{stands} is none of " + ", ".join(f'"{choice}"' for choice in kind) + ".")
-
-
-def _shown(text: str) -> str:
-    """The text between quotation marks, so much of it as a sentence can bear."""
-    seen = "".join(character if character.isprintable() else "?" for character in text)
-    return f'"{seen}"' if len(seen) <= 40 else f'"{seen[:40]}…"'
 
 
 def _place_in(said: str, text: str) -> str:
@@ -168,36 +188,29 @@ def _place_in(said: str, text: str) -> str:
     return f", line {found[1] if found else text.rstrip().count(chr(10)) + 1}"
 
 
-def _line_of(key: str, text: str) -> str:
-    """Where the key stands; nothing where it is written in a way that a plain look does not find."""
-    found = re.search(rf"^[ \t]*\[*[ \t]*[\"']?{re.escape(key)}\b", text, re.MULTILINE)
-    return f", line {text.count(chr(10), 0, found.start()) + 1}" if found else ""
+def _line_of(key: str, text: str, place: int = 0) -> str:
+    """Where the key stands (the `place`-th time, where it heads several tables).
+
+    Nothing where it is written in a way that a plain look does not find.
+    """
+    found = list(re.finditer(rf"^[ \t]*\[*[ \t]*[\"']?{re.escape(key)}\b", text, re.MULTILINE))
+    if not found:
+        return ""
+    at = found[place] if place < len(found) else found[0]
+    return f", line {text.count(chr(10), 0, at.start()) + 1}"
 
 
 def _spell(settings: Settings) -> str:
-    """The file's text: every setting on its own line, the files one below the other."""
-    files = "".join(f"    {_quote(path)},\n" for path in settings.recent_files)
+    """The file's text: every setting on its own line, the files one below the other, then the tables."""
+    files = "".join(f"    {quote_toml(path)},\n" for path in settings.recent_files)
     return (
-        f"{_HEAD}theme = {_quote(settings.theme)}\n"
-        f"practice = {_quote(settings.practice)}\n"
-        f"paper = {_quote(settings.paper)}\n"
-        f"level = {settings.level!r}\n" + (f"recent_files = [\n{files}]\n" if files else "recent_files = []\n")
+        f"{_HEAD}theme = {quote_toml(settings.theme)}\n"
+        f"practice = {quote_toml(settings.practice)}\n"
+        f"paper = {quote_toml(settings.paper)}\n"
+        f"level = {settings.level!r}\n"
+        + (f"recent_files = [\n{files}]\n" if files else "recent_files = []\n")
+        + spell_points(settings.decision_points)
     )
-
-
-def _quote(text: str) -> str:
-    """A TOML basic string (TOML 1.0.0): quotation mark, backslash and control characters are escaped."""
-    return '"' + "".join(_escaped(text)) + '"'
-
-
-def _escaped(text: str) -> Iterator[str]:
-    for character in text:
-        if character in '"\\':
-            yield f"\\{character}"
-        elif character < " " or character == "\x7f":
-            yield f"\\u{ord(character):04X}"
-        else:
-            yield character
 
 
 def _keep_copy(path: Path) -> None:

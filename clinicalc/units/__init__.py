@@ -5,6 +5,7 @@ not in the table, a conversion that would need a fact nobody has (lipoprotein(a)
 can be read in two ways are each answered with a sentence. It does not judge a patient's value; that is `assessment`.
 """
 
+from clinicalc.units.averaged import MOST_AVERAGED, Averaged
 from clinicalc.units.conversion import Conversion, conversion
 from clinicalc.units.fitting import UnitOverlap, fitting_units, overlapping_units, possible_in, usual_in
 from clinicalc.units.quantity import (
@@ -21,6 +22,8 @@ from clinicalc.units.reading import Reading, Unreadable, UnreadableReason, read_
 from clinicalc.units.unit import Unit, all_units, find_unit, unit
 
 __all__ = [
+    "MOST_AVERAGED",
+    "Averaged",
     "Conversion",
     "CrossCheck",
     "Equation",

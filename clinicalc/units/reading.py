@@ -1,4 +1,4 @@
-"""Typed text to a reading: a number, the unit and the date that may stand after it; or a sentence why not.
+"""Typed text to a reading: a number, then unit, mean and date if they are stated; or a sentence why not.
 
 Comma and point are both decimal marks and never group digits. What can be read in two ways is asked about.
 """
@@ -9,6 +9,7 @@ from datetime import date
 from enum import StrEnum
 from unicodedata import category
 
+from clinicalc.units.averaged import Averaged, split_averaged
 from clinicalc.units.quoting import quote
 from clinicalc.units.unit import find_close_spellings, find_unit
 
@@ -39,6 +40,7 @@ class UnreadableReason(StrEnum):
     OTHER_DIGITS = "other_digits"
     NOT_A_NUMBER = "not_a_number"
     UNKNOWN_UNIT = "unknown_unit"
+    BAD_MEAN = "bad_mean"
     BAD_DATE = "bad_date"
 
 
@@ -47,7 +49,8 @@ class Reading:
     """A typed value. `text` is what was typed, trimmed; `decimals` counts the digits typed after the mark.
 
     `digits` is the number as typed, every digit kept, with a decimal point and "-" for a minus.
-    `unit` is the UCUM code of the unit typed after the number, None when there was none; `dated` the day it holds for.
+    `unit` is the UCUM code of the unit typed after the number, None when there was none; `dated` the day it holds for;
+    `averaged` what it is the mean of, None when that is not stated.
     """
 
     text: str
@@ -56,6 +59,7 @@ class Reading:
     decimals: int
     unit: str | None
     dated: date | None
+    averaged: Averaged | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,7 +84,7 @@ class _Refusal(Exception):
 
 
 def read_value(text: str, *, ask_about_comma: bool = True) -> Reading | Unreadable:
-    """The reading of a typed text such as "5.2", "5,2 mmol/l" or "110 mg/dL on 2026-10-02"; never raises.
+    """The reading of a typed text such as "5.2", "5,2 mmol/l" or "110 mg/dL of 2 visits on 2026-10-02"; never raises.
 
     A comma followed by exactly three digits ("1,234") is asked about, unless `ask_about_comma` is False (bare numbers)
     or the digits before it rule grouping out ("0,123").
@@ -101,7 +105,8 @@ def _read(text: str, ask_about_comma: bool) -> Reading:
             UnreadableReason.TOO_LONG,
             f"{quote(text)} has {len(text)} characters: type one number of at most {_LONGEST_NUMBER} characters.",
         )
-    head, dated = _split_date(text)
+    before, dated = _split_date(text)
+    head, averaged = _split_mean(before)
     number = _NUMBER.match(head)
     if number is None:
         raise _explain_no_number(head)
@@ -122,7 +127,7 @@ def _read(text: str, ask_about_comma: bool) -> Reading:
         )
     digits = f"{'-' if sign in ('-', '−') else ''}{whole}{f'.{decimals}' if decimals else ''}"
     # adding zero turns a typed -0 into 0
-    return Reading(text, digits, float(digits) + 0.0, len(decimals), code, dated)
+    return Reading(text, digits, float(digits) + 0.0, len(decimals), code, dated, averaged)
 
 
 def _refuse_control(text: str) -> None:
@@ -148,9 +153,24 @@ def _split_date(text: str) -> tuple[str, date | None]:
     except ValueError:
         day = None
     if day is None:
+        if re.match(r"[0-9]{4}-[0-9]{2}-[0-9]{2}\s+of\s", typed, re.IGNORECASE):
+            raise _Refusal(
+                UnreadableReason.BAD_DATE,
+                "The date stands last: type what it is the mean of before it, such as “of 2 visits on 2026-10-02”.",
+            )
         named = f"{quote(typed)} is not a date" if typed else "No date follows “on”"
         raise _Refusal(UnreadableReason.BAD_DATE, f"{named}: type year, month and day, such as “on 2026-10-02”.")
     return text[: found.start()].rstrip(), day
+
+
+def _split_mean(text: str) -> tuple[str, Averaged | None]:
+    parted = split_averaged(text)
+    if isinstance(parted, str):
+        raise _Refusal(UnreadableReason.BAD_MEAN, parted)
+    head, averaged = parted
+    if averaged is not None and not head:
+        raise _not_a_number("Only visits or readings are counted here: type the number first, as in “124 of 2 visits”.")
+    return head, averaged
 
 
 def _explain_no_number(head: str) -> _Refusal:

@@ -29,11 +29,6 @@ def test_the_two_small_models_pass() -> None:
         (f"{E0}/terms/0", "neither stands here", (f"{E0}/terms/0/product", DROP)),
         (f"{E0}/terms/0", "both stand here", (f"{E0}/terms/0/sum", [[{"of": "age"}]])),
         ("/model/predictors/0/may_be_missing", "must always be known", ("/model/predictors/0/may_be_missing", True)),
-        (
-            "/model/predictors/1/may_be_missing",
-            '"population" must describe it',
-            ("/model/predictors/1/may_be_missing", True),
-        ),
         ("/model/recalibration_required", "none stands in the file", ("/model/recalibration_required", True)),
         (
             "/model/decision_points/1/probability",
@@ -81,6 +76,29 @@ def test_a_treatment_may_not_be_modifiable() -> None:
     path = "/model/predictors/2/modifiable"
     only_said(CLOGLOG, path, "is a treatment and may not be modifiable", (path, True))
     assert refusals(changed(CLOGLOG, (path, False))) == {}
+
+
+def test_what_selects_the_equation_may_not_be_missing() -> None:
+    twins = [
+        {**LOGIT["model"]["equations"][0], "id": id, "applies_when": {"smoker": [answer]}}
+        for id, answer in (("smokers", "yes"), ("others", "no"))
+    ]
+    path = "/model/predictors/1/may_be_missing"
+    said(LOGIT, path, "selects the equation", ("/model/equations", twins), (path, True))
+
+
+def test_what_may_be_missing_is_described_for_every_equation_or_for_none() -> None:
+    people = {"source": "invented", "numbers": [], "correlations": [], "yes_no": []}
+    treated = {"id": "bp_treated", "intercept": -1, "coefficients": {}}
+    path = "/model/predictors/2/may_be_missing"
+    free = (path, True)
+    described = {**people, "yes_no": [treated]}
+    # nowhere: there is then no single number, only a range
+    assert refusals(changed(CLOGLOG, free)) == {}
+    assert refusals(changed(CLOGLOG, free, ("/model/population", people))) == {}
+    assert refusals(changed(CLOGLOG, free, ("/model/population", described))) == {}
+    only_said(CLOGLOG, path, '"population" of "men" must describe it', free, (f"{E0}/population", described))
+    assert refusals(changed(CLOGLOG, free, (f"{E0}/population", described), (f"{E1}/population", described))) == {}
 
 
 def test_answers_and_recalibrations_are_unique() -> None:

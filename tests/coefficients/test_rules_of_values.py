@@ -69,6 +69,40 @@ POPULATION: Tree = {
         ("/model/predictors/3/loinc/0", "is no LOINC code", ("/model/predictors/3/loinc/0", "cholesterol")),
         ("/model/predictors/3/within_person", 'exactly one of "cv"', ("/model/predictors/3/within_person/sd", 0.2)),
         ("/model/predictors/3/within_person", 'exactly one of "cv"', ("/model/predictors/3/within_person/cv", DROP)),
+        (
+            "/model/predictors/3/within_person/cv",
+            "It is a fraction, so this says 400\u202f%. Did you mean 0.04?",
+            ("/model/predictors/3/within_person/cv", 4),
+        ),
+        ("/model/predictors/3/within_person/cv", "must be less than 1", ("/model/predictors/3/within_person/cv", 1)),
+        (
+            "/model/predictors/3/within_person/sd",
+            "must be more than 0. Take the minus sign away",
+            ("/model/predictors/3/within_person", {"source": "s", "sd": -9.7}),
+        ),
+        (
+            "/model/predictors/3/within_person/within_visit_cv",
+            '0.06 must be less than 0.06, the whole "cv" that it is a part of. Were the two exchanged?',
+            ("/model/predictors/3/within_person/within_visit_cv", 0.06),
+        ),
+        (
+            "/model/predictors/3/within_person/within_visit_sd",
+            'the whole is given as "cv", so its part must be "within_visit_cv"',
+            ("/model/predictors/3/within_person/within_visit_sd", 0.1),
+        ),
+        (
+            "/model/predictors/3/within_person/within_visit_cv",
+            'the whole is given as "sd", so its part must be "within_visit_sd"',
+            ("/model/predictors/3/within_person", {"source": "s", "sd": 0.3, "within_visit_cv": 0.01}),
+        ),
+        (
+            "/model/predictors/3/within_person",
+            "at most one of",
+            (
+                "/model/predictors/3/within_person",
+                {"source": "s", "cv": 0.1, "within_visit_cv": 0.01, "within_visit_sd": 0.01},
+            ),
+        ),
         ("/model/predictors/3/possible", "a file may only narrow it", ("/model/predictors/3/possible", [0.5, 20])),
         ("/model/predictors/3/usual", "a file may only narrow it", ("/model/predictors/3/usual", [3, 15])),
         (
@@ -96,6 +130,13 @@ def test_quantities_units_factors_and_ranges(path: str, words: str, change: Chan
 def test_a_file_may_narrow_the_ranges_of_the_table_and_leave_a_side_open() -> None:
     for limits in ([2, 12], [None, 12], [2, None], [1.0344, 20.688]):  # 40 and 800 mg/dL times 0.02586
         assert refusals(changed(CLOGLOG, ("/model/predictors/3/possible", limits))) == {}
+
+
+def test_the_part_within_a_visit_stands_beside_the_whole() -> None:
+    whole: Tree = {"source": "invented", "sd": 0.3, "within_visit_sd": 0.1}
+    assert refusals(changed(CLOGLOG, ("/model/predictors/3/within_person", whole))) == {}
+    relative: Tree = {"source": "invented", "cv": 0.06, "within_visit_cv": 0.03}
+    assert refusals(changed(CLOGLOG, ("/model/predictors/3/within_person", relative))) == {}
 
 
 def test_a_bare_number_that_is_logged_states_what_is_possible() -> None:
@@ -235,3 +276,11 @@ def test_a_population_describes_predictors_that_exist(path: str, words: str, cha
     tree = changed(CLOGLOG, ("/model/population", POPULATION), ("/model/predictors/3/may_be_missing", True))
     assert refusals(tree) == {}
     said(tree, f"/model/population{path}", words, (f"/model/population{change[0]}", change[1]))
+
+
+def test_a_worked_example_may_leave_open_what_the_file_lets_stand_open() -> None:
+    """So that a file can prove the people it describes as well."""
+    path = f"{W0}/values/smoker"
+    free = ("/model/predictors/1/may_be_missing", True)
+    assert refusals(changed(LOGIT, free, (path, "unknown"))) == {}
+    said(LOGIT, path, '"unknown" is no answer to "smoker"', (path, "unknown"))

@@ -103,7 +103,10 @@ def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
         ('recent_files = "one.json"', "recent_files is a list of paths between quotation marks, such as"),
         ("recent_files = [1]", "recent_files is a list of paths between quotation marks, such as"),
         ('recent_files = ["' + '", "'.join("123456789") + '"]', "recent_files holds 9 paths, and at most 8 are kept."),
-        ('colour = "blue"', '"colour" is not a setting; there are theme, recent_files, practice, paper, level.'),
+        (
+            'colour = "blue"',
+            '"colour" is not a setting; there are theme, recent_files, practice, paper, level, decision_points.',
+        ),
         ("[practice]\nname = 1", "practice is a name between quotation marks."),
     ],
 )
@@ -236,4 +239,4 @@ def test_nobody_else_can_read_the_file(folder: Path) -> None:
 
 
 def test_the_settings_have_no_place_for_a_patient() -> None:
-    assert set(Settings.__slots__) == {"theme", "recent_files", "practice", "paper", "level"}
+    assert set(Settings.__slots__) == {"theme", "recent_files", "practice", "paper", "level", "decision_points"}

@@ -7,7 +7,7 @@ import pytest
 from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
-from clinicalc.units import Reading, Unit, Unreadable, UnreadableReason, all_units, read_value, unit
+from clinicalc.units import Averaged, Reading, Unit, Unreadable, UnreadableReason, all_units, read_value, unit
 
 
 @pytest.mark.parametrize(
@@ -70,6 +70,82 @@ def test_a_value_may_carry_its_date() -> None:
     typed = "110 mg/dL on 2026-10-02"
     assert read_value(typed) == Reading(typed, "110", 110.0, 0, "mg/dL", date(2026, 10, 2))
     assert read_value("110 on 2026-10-02") == Reading("110 on 2026-10-02", "110", 110.0, 0, None, date(2026, 10, 2))
+
+
+@pytest.mark.parametrize(
+    ("typed", "number", "code", "dated", "averaged"),
+    [
+        ("124 mm[Hg] of 2 visits", 124.0, "mm[Hg]", None, Averaged(2, 1)),
+        ("124 of 3 readings", 124.0, None, None, Averaged(1, 3)),
+        ("124 mmHg of 2 visits of 3 readings on 2026-10-02", 124.0, "mm[Hg]", date(2026, 10, 2), Averaged(2, 3)),
+        ("5,2 mmol/l OF 2 Visits", 5.2, "mmol/L", None, Averaged(2, 1)),
+        ("124\u00a0of\u00a02\tvisits  of 30 readings", 124.0, None, None, Averaged(2, 30)),
+        ("124 of 1 visit of 1 reading", 124.0, None, None, Averaged(1, 1)),
+        ("124 mm of mercury of 2 visits", 124.0, "mm[Hg]", None, Averaged(2, 1)),
+        ("124 of 02 visits on 2026-10-02", 124.0, None, date(2026, 10, 2), Averaged(2, 1)),
+    ],
+)
+def test_a_value_may_be_a_mean(
+    typed: str, number: float, code: str | None, dated: date | None, averaged: Averaged
+) -> None:
+    reading = read_value(typed)
+    assert isinstance(reading, Reading)
+    assert (reading.number, reading.unit, reading.dated, reading.averaged) == (number, code, dated, averaged)
+
+
+@pytest.mark.parametrize(
+    ("typed", "words"),
+    [
+        ("124 of 0 visits", "“of 0 visits” is no mean: leave it out"),
+        ("124 of 2 visits of 0 readings", "“of 0 readings” is no mean"),
+        ("124 of 2.5 readings", "“2.5” is no count of readings: type a whole number from 1 to 30."),
+        ("124 of -2 visits", "“-2” is no count of visits"),
+        ("124 of two visits", "“two” is no count of visits"),
+        ("124 of 2 visits of many readings", "“many” is no count of readings"),
+        ("124 of ٢ visits", "“٢” is no count of visits"),
+        ("124 of 31 visits", "counts more than 30 visits"),
+        ("124 of 2 visits of 2026 readings", "counts more than 30 readings"),
+        ("124 of " + "9" * 60 + " visits", "counts more than 30 visits"),
+        ("124 of visits", "“of visits” does not say how many"),
+        ("124 of readings of 2 visits", "does not say how many"),
+        ("124 of", "No count follows “of”"),
+        ("124 of 2", "“of 2” is no count of visits or readings"),
+        ("120 of 80 mmHg", "“of 80 mmHg” is no count of visits or readings"),
+        ("124 of 3 readings of 2 visits", "type the visits first, then the readings of each visit"),
+        ("124 of 2 visits 3 readings", "no count of visits or readings: type “of 2 visits”"),
+    ],
+)
+def test_a_mean_that_is_not_clear_is_answered_in_words(typed: str, words: str) -> None:
+    unreadable = read_value(typed)
+    assert isinstance(unreadable, Unreadable)
+    assert unreadable.reason is UnreadableReason.BAD_MEAN
+    assert words in unreadable.message
+    assert len(unreadable.message) < 300
+
+
+def test_a_mean_without_its_number_and_one_after_the_date_are_named() -> None:
+    alone = read_value("of 2 visits")
+    assert isinstance(alone, Unreadable)
+    assert "type the number first, as in “124 of 2 visits”" in alone.message
+    late = read_value("124 on 2026-10-02 of 2 visits")
+    assert isinstance(late, Unreadable)
+    assert late.reason is UnreadableReason.BAD_DATE
+    assert "“of 2 visits on 2026-10-02”" in late.message
+
+
+@given(st.integers(1, 30), st.integers(1, 30))
+def test_every_mean_is_read_back_as_it_is_written(visits: int, readings: int) -> None:
+    averaged = Averaged(visits, readings)
+    reading = read_value(f"124 mm[Hg] {averaged.typed} on 2026-10-02")
+    assert isinstance(reading, Reading)
+    assert reading.averaged == averaged
+
+
+def test_means_in_words() -> None:
+    assert Averaged().words == ""
+    assert Averaged(2).words == "mean of 2 visits"
+    assert Averaged(1, 3).words == "mean of 3 readings of one visit"
+    assert Averaged(2, 3).words == "mean of 2 visits, 3 readings each"
 
 
 def test_a_typed_minus_zero_is_zero() -> None:
@@ -153,6 +229,8 @@ def test_a_bare_number_is_not_asked_about_its_comma() -> None:
 @given(st.text() | st.text(alphabet="0123456789.,-+−<eE /%mgdLonx^*' \u00a0\u202e٣²½"))
 @example("5" * 31 + ",5")
 @example("1 on " + "9" * 100)
+@example("1 of " + "9" * 100)
+@example("1 of " + "٢" * 90 + " visits of x readings")
 @settings(deadline=None, max_examples=500)
 def test_any_text_has_an_answer(text: str) -> None:
     answer = read_value(text)

@@ -19,7 +19,7 @@ from clinicalc.coefficients.rules.naming import (
     check_reference_person,
     check_sex,
 )
-from clinicalc.coefficients.rules.populations import check_population
+from clinicalc.coefficients.rules.populations import check_populations
 from clinicalc.coefficients.rules.quantities import check_loinc, check_quantities
 from clinicalc.coefficients.rules.recalibrations import check_recalibrations
 from clinicalc.coefficients.rules.statements import check_counts, check_decision_points, check_unconfirmed
@@ -46,7 +46,7 @@ RULES: tuple[Rule, ...] = (
     check_bands,
     check_recalibrations,
     check_examples,
-    check_population,
+    check_populations,
     check_unconfirmed,
     check_decision_points,
 )

@@ -7,7 +7,7 @@ from collections.abc import Iterator, Mapping
 
 from msgspec import UnsetType
 
-from clinicalc.coefficients.answers import find_answer
+from clinicalc.coefficients.answers import find_answer, leaves_open
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.coverage import select_equations
@@ -87,6 +87,8 @@ def _check_values(example: WorkedExample, base: str, names: Catalogue) -> Iterat
         elif name not in known:
             yield Problem(point(base, name), f"there is no value {quoted(name)}.{suggest(name, known)}")
         elif names.answers_of(name) and name not in read_answers({name: typed}, names):
+            if names.predictors[name].may_be_missing is True and leaves_open(typed):
+                continue
             hint = suggest(typed, names.answers_of(name))
             yield Problem(point(base, name), f"{quoted(typed)} is no answer to {quoted(name)}.{hint}")
 

@@ -109,8 +109,9 @@ def _judge_condition(name: str, value: float | str, equation: Equation) -> str:
 
 
 def check_flags(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
-    """A treatment may not be modifiable; sex and age may not be missing."""
+    """A treatment may not be modifiable; sex, age and what selects an equation may not be missing."""
     del names
+    selecting = {name for equation in model.equations for name in equation.applies_when}
     for index, predictor in enumerate(model.predictors):
         base = at("predictors", index)
         if predictor.treatment is True and predictor.modifiable is True:
@@ -122,6 +123,11 @@ def check_flags(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
         if predictor.may_be_missing is True and (predictor.id in ("sex", "age") or _is_age(predictor)):
             yield Problem(
                 point(base, "may_be_missing"), f"{quoted(predictor.id)} must always be known and may not be missing."
+            )
+        elif predictor.may_be_missing is True and predictor.id in selecting:
+            yield Problem(
+                point(base, "may_be_missing"),
+                f'{quoted(predictor.id)} selects the equation ("applies_when") and may not be missing.',
             )
 
 

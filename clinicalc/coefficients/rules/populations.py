@@ -1,13 +1,16 @@
-"""The described population: moments, correlations and shares of predictors that exist."""
+"""Described populations, the model's or an equation's: moments, correlations and shares of predictors that exist."""
 
 from collections.abc import Iterator
+from math import exp
 from typing import TypeVar
 
 from msgspec import UnsetType
 
+from clinicalc.coefficients.described import list_described, population_of
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
 from clinicalc.coefficients.rules.matrices import judge_matrix
+from clinicalc.coefficients.rules.quantities import fits_table, possible_of
 from clinicalc.coefficients.schema import (
     ChoicePredictor,
     ModelContent,
@@ -19,6 +22,7 @@ from clinicalc.coefficients.schema import (
     YesNoPredictor,
 )
 from clinicalc.errors import Problem
+from clinicalc.units import unit
 
 SHARES_SLACK = 1e-6
 _DIAGONAL_SLACK = 1e-8
@@ -26,21 +30,38 @@ _DIAGONAL_SLACK = 1e-8
 _Row = TypeVar("_Row", PopulationNumber, PopulationAnswer, PopulationChoice)
 
 
-def check_population(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
-    """The population, and that it describes every predictor that may be missing."""
-    population = model.population
-    described = set() if population is None else set(_list_described(population))
+def check_populations(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
+    """Every described population, and that what may be missing is described for all equations or for none."""
+    yield from _check_missing(model)
+    if model.population is not None:
+        yield from _check_population(model.population, at("population"), names)
+    for index, equation in enumerate(model.equations):
+        if not isinstance(equation.population, UnsetType):
+            yield from _check_population(equation.population, at("equations", index, "population"), names)
+
+
+def _check_missing(model: ModelContent) -> Iterator[Problem]:
+    described = {}
+    for equation in model.equations:
+        population = population_of(model, equation)
+        described[equation.id] = set() if population is None else set(list_described(population))
     for index, predictor in enumerate(model.predictors):
-        if predictor.may_be_missing is True and predictor.id not in described:
+        if predictor.may_be_missing is not True:
+            continue
+        lacking = [name for name, known in described.items() if predictor.id not in known]
+        # described nowhere is no fault: there is then no single number where it was not measured, only a range
+        if lacking and len(lacking) < len(described):
+            whose = f" of {listed(map(quoted, lacking))}"
             yield Problem(
                 at("predictors", index, "may_be_missing"),
-                f'{quoted(predictor.id)} may be missing, so "population" must describe it.',
+                f'{quoted(predictor.id)} may be missing, so "population"{whose} must describe it.',
             )
-    if population is None:
-        return
-    base = at("population")
+
+
+def _check_population(population: Population, base: str, names: Catalogue) -> Iterator[Problem]:
     yield from _check_ids(population.numbers, NumberPredictor, "a number", point(base, "numbers"), names)
     yield from _check_ids(population.yes_no, YesNoPredictor, "a yes/no question", point(base, "yes_no"), names)
+    yield from _check_means(population.numbers, point(base, "numbers"), names)
     yield from _check_correlations(population, point(base, "correlations"))
     yield from _check_answers(population, point(base, "yes_no"))
     choices = () if isinstance(population.choices, UnsetType) else population.choices
@@ -49,12 +70,6 @@ def check_population(model: ModelContent, names: Catalogue) -> Iterator[Problem]
         fault = _judge_shares(choice, names)
         if fault:
             yield Problem(point(base, "choices", index, "shares"), fault)
-
-
-def _list_described(population: Population) -> Iterator[str]:
-    choices = () if isinstance(population.choices, UnsetType) else population.choices
-    for rows in (population.numbers, population.yes_no, choices):
-        yield from (row.id for row in rows)
 
 
 def _check_ids(rows: tuple[_Row, ...], kind: type, words: str, base: str, names: Catalogue) -> Iterator[Problem]:
@@ -69,6 +84,29 @@ def _check_ids(rows: tuple[_Row, ...], kind: type, words: str, base: str, names:
         elif row.id not in fitting:
             yield Problem(path, f"{quoted(row.id)} is not {words}.")
         seen.add(row.id)
+
+
+def _check_means(numbers: tuple[PopulationNumber, ...], base: str, names: Catalogue) -> Iterator[Problem]:
+    """A mean that no patient could have: a logarithm not said to be one, or the other way round, or another unit."""
+    for index, number in enumerate(numbers):
+        predictor = names.predictors.get(number.id)
+        if not isinstance(predictor, NumberPredictor) or not fits_table(predictor):
+            continue
+        possible = possible_of(predictor)
+        logged, raised = not isinstance(number.log, UnsetType), exp(min(number.mean, 700.0))
+        if possible is None or possible.contains(raised if logged else number.mean):
+            continue
+        spelling = f" {unit(predictor.unit).spelling}".rstrip()
+        slip = " Is it in the unit of the predictor?"
+        if logged and possible.contains(number.mean):
+            slip = ' Is it the mean of the value itself? Then leave "log" out.'
+        elif not logged and possible.contains(raised):
+            slip = ' Is it the mean of the logarithm? Then state "log": "natural".'
+        yield Problem(
+            point(base, index, "mean"),
+            f"the mean {quoted(number.mean)} of {quoted(number.id)}{f', a logarithm of {raised:.4g},' * logged} lies"
+            f" outside its possible values, {quoted(possible.low)} to {quoted(possible.high)}{spelling}.{slip}",
+        )
 
 
 def _check_correlations(population: Population, path: str) -> Iterator[Problem]:

@@ -7,6 +7,7 @@ from msgspec import UnsetType
 from clinicalc.coefficients.pointers import listed, point, quoted
 from clinicalc.coefficients.products import products_of
 from clinicalc.coefficients.rules.catalogue import Catalogue, at
+from clinicalc.coefficients.rules.within_person import check_within_person
 from clinicalc.coefficients.schema import Derived, Limits, ModelContent, NumberPredictor
 from clinicalc.errors import Problem, UnitError
 from clinicalc.units import Quantity, Range, conversion, possible_in, quantity, unit, usual_in
@@ -29,8 +30,8 @@ def check_quantities(model: ModelContent, names: Catalogue) -> Iterator[Problem]
                 f"{quoted(part.id)} is a bare number that is logged, raised to a power or divided by, so it must state "
                 '"possible" as [low, high]: the table has no limits for it.',
             )
-        if isinstance(part, NumberPredictor) and not _is_spread_clear(part):
-            yield Problem(point(base, "within_person"), 'give exactly one of "cv" (a fraction) and "sd".')
+        if isinstance(part, NumberPredictor) and not isinstance(part.within_person, UnsetType):
+            yield from check_within_person(part.within_person, point(base, "within_person"))
 
 
 def check_loinc(model: ModelContent, names: Catalogue) -> Iterator[Problem]:
@@ -67,6 +68,11 @@ def fits_table(part: Measured) -> bool:
     except UnitError:
         return False
     return True
+
+
+def possible_of(part: Measured) -> Range | None:
+    """The values possible for it, the file's own range inside the table's; None where there is no end to them."""
+    return _narrow(possible_in(quantity(part.quantity), part.unit, factor_of(part)), part.possible)
 
 
 def _check_measured(part: Measured, base: str) -> Iterator[Problem]:
@@ -142,11 +148,6 @@ def _narrow(widest: Range | None, possible: Limits | UnsetType) -> Range | None:
     if low is None and high is None:
         return None
     return Range(float("-inf") if low is None else low, float("inf") if high is None else high)
-
-
-def _is_spread_clear(part: NumberPredictor) -> bool:
-    spread = part.within_person
-    return isinstance(spread, UnsetType) or isinstance(spread.cv, UnsetType) != isinstance(spread.sd, UnsetType)
 
 
 def _is_closed(limits: Limits | UnsetType) -> bool:
