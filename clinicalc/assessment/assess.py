@@ -1,22 +1,29 @@
 """One assessment: read, check, require, predict. Never raises on what a person typed."""
 
-from collections.abc import Iterable, Set
+from collections.abc import Iterable, Sequence, Set
 from dataclasses import dataclass
 from datetime import datetime
 
 import numpy as np
 
+from clinicalc.assessment.beside import Wanted, set_beside
+from clinicalc.assessment.case import Case
 from clinicalc.assessment.cautions import equation_cautions
 from clinicalc.assessment.choices import DEFAULT_LEVEL, check_level, settle_choices
-from clinicalc.assessment.cut_points import find_near_cuts
+from clinicalc.assessment.cut_points import ResultAt, find_near_cuts
 from clinicalc.assessment.entry import PatientEntry
-from clinicalc.assessment.fields import NumberField, QuestionField
+from clinicalc.assessment.fields import Field, NumberField, QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade, in_reading_order
 from clinicalc.assessment.limits import clamp, giving_limits
 from clinicalc.assessment.model import Model, ModelEquation
+from clinicalc.assessment.no_band import say_no_band
+from clinicalc.assessment.not_measured import average, integrate, moved_case, says_not_measured, spread
 from clinicalc.assessment.numbers import TakenNumber, take_number
-from clinicalc.assessment.numerals import NARROW_SPACE
+from clinicalc.assessment.numerals import percent
+from clinicalc.assessment.open_fields import check_open, open_in
+from clinicalc.assessment.open_findings import say_averaged, say_undescribed
 from clinicalc.assessment.questions import TakenAnswer, take_answer
+from clinicalc.assessment.rarity import find_rare
 from clinicalc.assessment.relations import check_relations
 from clinicalc.assessment.requirements import find_missing, possible_equations
 from clinicalc.assessment.result import Assessment, Band, Estimate
@@ -27,8 +34,9 @@ from clinicalc.coefficients.schema import Recalibration
 from clinicalc.coefficients.spans import Span
 from clinicalc.covariates.design import design_columns
 from clinicalc.covariates.transforms import Column
-from clinicalc.prediction.line import Adjustment, Draws, Line, adjustment_of
+from clinicalc.prediction.line import Line, adjustment_of
 from clinicalc.prediction.predict import predict
+from clinicalc.settings import PracticePoint
 
 
 @dataclass(slots=True)
@@ -38,6 +46,7 @@ class Taken:
     numbers: dict[str, TakenNumber]
     answers: dict[str, TakenAnswer]
     worked_out: dict[str, float]
+    open: list[Field]
     findings: list[Finding]
 
     @property
@@ -55,12 +64,16 @@ def assess(
     recalibration: str | None = None,
     level: float = DEFAULT_LEVEL,
     at: datetime | None = None,
+    practice_points: Sequence[PracticePoint] = (),
+    matching_age: bool = False,
+    number_only: bool = False,
 ) -> Assessment:
-    """The assessment of one patient's entry.
+    """The assessment of one patient's entry, with the decision points of the file and of the practice.
 
     `span` may stay None where the model has one horizon; `recalibration` is the id of one that the file offers at that
-    horizon. What is missing, not offered or cannot be used leaves `estimate` None and says why in a finding. Raises
-    UsageError for a level of which no band can be made; never for anything typed about the patient.
+    horizon. `number_only` leaves out the figures beside the number (spread, comparison, shares, decision points). What
+    is missing, not offered or cannot be used leaves `estimate` None and says why in a finding. Raises UsageError for
+    a level of which no band can be made; never for anything typed about the patient.
     """
     check_level(level)
     at = at or datetime.now().astimezone()
@@ -77,8 +90,16 @@ def assess(
     equation = equations[0] if len(equations) == 1 else None
     estimate = None
     if equation is not None and span is not None and not _stopped(taken.findings):
-        estimate, more = _estimate(model, equation, equation.line_at(span), chosen, level, taken)
+        case = _case_of(model, equation, equation.line_at(span), chosen, level, taken)
+        open = open_in(case, tuple(taken.open))
+        estimate, more = _average(case, chosen, open) if open else _estimate(case, chosen)
         taken.findings += more
+        if estimate is not None and not number_only:
+            wanted = Wanted(entry.changes, practice_points, matching_age, at.date())
+            estimate, crossed = set_beside(case, estimate, open, wanted)
+            taken.findings += crossed
+        rare = None if equation.people is None else find_rare(equation.people, taken.numbers, taken.findings)
+        taken.findings += [] if rare is None else [rare]
     order = (*(field.id for field in model.fields), "horizon", "recalibration")
     return Assessment(
         model=model,
@@ -88,7 +109,9 @@ def assess(
         level=level,
         recalibration=None if chosen is None else chosen.id,
         equation=None if equation is None else equation.content.id,
-        values=value_lines(model, entry, taken.numbers, taken.answers, taken.worked_out),
+        values=value_lines(
+            model, entry, taken.numbers, taken.answers, taken.worked_out, {field.id for field in taken.open}
+        ),
         findings=in_reading_order(taken.findings, order),
         estimate=estimate,
     )
@@ -99,10 +122,13 @@ def read_entry(model: Model, entry: PatientEntry, at: datetime) -> Taken:
 
     Contradicting values stop even where the equation uses only one of them: one of the two is a slip.
     """
-    taken = Taken({}, {}, {}, [])
+    taken = Taken({}, {}, {}, [], [])
     for field in model.fields:
         typed = entry.typed.get(field.id)
         if typed is None or not typed.text.strip():
+            continue
+        if says_not_measured(field, typed.text):
+            taken.open.append(field)
             continue
         if isinstance(field, QuestionField):
             answer, findings = take_answer(field, typed)
@@ -115,6 +141,7 @@ def read_entry(model: Model, entry: PatientEntry, at: datetime) -> Taken:
             if number is not None:
                 taken.numbers[field.id] = number
         taken.findings += findings
+    taken.findings += check_open(model, tuple(taken.open))
     taken.findings += check_relations(taken.numbers)
     return taken
 
@@ -145,48 +172,102 @@ def _not_to_be_typed(field: NumberField) -> Finding:
     return Finding(Grade.STOP, FindingCode.UNREADABLE, field.id, message)
 
 
-def _estimate(
+def _case_of(
     model: Model,
     equation: ModelEquation,
     line: Line,
     recalibration: Recalibration | None,
     level: float,
     taken: Taken,
-) -> tuple[Estimate | None, list[Finding]]:
+) -> Case:
+    return Case(
+        model=model,
+        equation=equation,
+        line=line,
+        adjustment=None if recalibration is None else adjustment_of(recalibration.equations[equation.content.id]),
+        level=level,
+        numbers=taken.numbers,
+        answers=taken.answers,
+        columns=taken.columns,
+        worked_out=taken.worked_out,
+    )
+
+
+def _estimate(case: Case, recalibration: Recalibration | None) -> tuple[Estimate | None, list[Finding]]:
     """The number with its band, and the findings that come with it."""
-    typed = taken.columns
-    columns = typed | {id: np.array([value]) for id, value in taken.worked_out.items()}
-    adjustment = None if recalibration is None else adjustment_of(recalibration.equations[equation.content.id])
-    design = design_columns(equation.terms, columns)
-    result = predict(line, design, adjustment=adjustment, level=level)
+    columns = {**case.columns, **{id: np.array([value]) for id, value in case.worked_out.items()}}
+    design = design_columns(case.equation.terms, columns)
+    result = predict(case.line, design, adjustment=case.adjustment, level=case.level)
     figures = (result.eta, *(end for end in (result.eta_lower, result.eta_upper) if end is not None))
     if not all(np.isfinite(figure[0]) for figure in figures):
         return None, [_not_computable()]
     band = None
     if result.lower is not None and result.upper is not None:
-        band = Band(level, float(result.lower[0]), float(result.upper[0]), line.basis)
-    basis = Basis(
-        equation=equation,
-        span=line.span,
-        recalibration=recalibration,
-        numbers=taken.numbers,
-        answers=taken.answers,
-        terms=frozenset(place for place, column in enumerate(design) if column[0] != 0),
-        worked_out=frozenset(taken.worked_out) & equation.uses,
-    )
-    findings = [
-        *find_near_cuts(model, equation, line, adjustment, typed, taken.numbers),
-        *equation_cautions(model, basis),
-        *([_imprecise_recalibration()] if band and adjustment and adjustment.covariance is None else []),
-    ]
+        band = Band(case.level, float(result.lower[0]), float(result.upper[0]), case.line.basis)
     estimate = Estimate(
         eta=float(result.eta[0]),
         probability=float(result.probability[0]),
         complement=float(result.complement[0]),
         band=band,
-        band_absent_because="" if band else _no_band_because(line, level, adjustment),
+        band_absent_because="" if band else say_no_band(case.line, case.level, case.adjustment),
     )
-    return estimate, findings
+    terms = frozenset(place for place, column in enumerate(design) if column[0] != 0)
+    return estimate, _said_beside(case, recalibration, terms, band)
+
+
+def _average(
+    case: Case, recalibration: Recalibration | None, open: tuple[Field, ...]
+) -> tuple[Estimate | None, list[Finding]]:
+    """The number averaged over values that were not measured; none where nobody described what to expect of them."""
+    people = case.equation.people
+    cloud = None if people is None else spread(case, open, people)
+    if people is None or cloud is None:
+        return None, [*say_undescribed(case, open)]
+    result = average(case, open, cloud, people.source)
+    if result is None:
+        return None, [_not_computable()]
+    band = None
+    if result.lower is not None and result.upper is not None:
+        band = Band(case.level, result.lower, result.upper, case.line.basis)
+
+    def result_at(id: str, value: float) -> str:
+        there = integrate(moved_case(case, {id: value}), open, people)
+        return "no number" if there is None else percent(there.probability, there.complement)
+
+    estimate = Estimate(
+        eta=result.eta,
+        probability=result.probability,
+        complement=result.complement,
+        band=band,
+        band_absent_because="" if band else say_no_band(case.line, case.level, case.adjustment),
+        not_measured=result.not_measured,
+    )
+    beside = _said_beside(case, recalibration, result.terms, band, open, result_at)
+    return estimate, [*say_averaged(open, result), *beside]
+
+
+def _said_beside(
+    case: Case,
+    recalibration: Recalibration | None,
+    terms: frozenset[int],
+    band: Band | None,
+    open: tuple[Field, ...] = (),
+    result_at: ResultAt | None = None,
+) -> list[Finding]:
+    """The findings that come with a number."""
+    basis = Basis(
+        equation=case.equation,
+        span=case.line.span,
+        recalibration=recalibration,
+        numbers=case.numbers,
+        answers=case.answers,
+        terms=terms,
+        worked_out=frozenset(case.worked_out) & case.equation.uses,
+        open=frozenset(field.id for field in open),
+    )
+    imprecise = band and case.adjustment and case.adjustment.covariance is None
+    near = find_near_cuts(case.model, case.equation, case.line, case.adjustment, case.columns, case.numbers, result_at)
+    return [*near, *equation_cautions(case.model, basis), *([_imprecise_recalibration()] if imprecise else [])]
 
 
 def _not_computable() -> Finding:
@@ -197,14 +278,3 @@ def _not_computable() -> Finding:
 def _imprecise_recalibration() -> Finding:
     message = "The imprecision of the recalibration is not in the band: its source prints none."
     return Finding(Grade.NOTE, FindingCode.RECALIBRATION_PRECISION, "recalibration", message)
-
-
-def _no_band_because(line: Line, level: float, adjustment: Adjustment | None) -> str:
-    if isinstance(line.band, Draws):
-        return (
-            f"The file holds {line.band.baselines.size} draws, too few for a band of {100 * level:g}{NARROW_SPACE}%."
-            " Ask for a lower level."
-        )
-    if adjustment is not None and adjustment.covariance is not None:
-        return f"{line.no_band_because} The recalibration’s own imprecision alone makes no band."
-    return line.no_band_because

@@ -1,6 +1,6 @@
 """Values so close to a cut or a limit of the model that their rounding decides the side."""
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -24,6 +24,9 @@ from clinicalc.units.unit import unit
 _INSIDE = 0.9999
 
 Rows = NDArray[np.bool_]
+
+ResultAt = Callable[[str, float], str]
+"""The result in words with one of the typed numbers moved, where it is an average over values not measured."""
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -51,14 +54,17 @@ def find_near_cuts(
     adjustment: Adjustment | None,
     columns: Mapping[str, Column],
     numbers: Mapping[str, TakenNumber],
+    result_at: ResultAt | None = None,
 ) -> Iterator[Finding]:
     """A caution for each typed number whose rounding reaches across a cut or a limit, saying what lies beyond.
 
-    `columns` holds one row: the values as used, without those that were worked out.
+    `columns` holds one row: the values as used, without those that were worked out. `result_at` answers where values
+    were not measured; a cut in such a value is no cut, since the number is averaged over both sides.
     """
     shifted = _shift(model, equation, columns, tuple(n for n in numbers.values() if not n.counts_completed_years))
     crossed = _crossed(equation, shifted.columns)
-    result = predict(line, design_columns(equation.terms, shifted.columns), adjustment=adjustment, band=False)
+    if result_at is None:
+        result = predict(line, design_columns(equation.terms, shifted.columns), adjustment=adjustment, band=False)
     for place, number in enumerate(shifted.near):
         named = f"{number.field.label} {number.shown} lies within its rounding of a"
         said: dict[str, None] = {}
@@ -67,7 +73,10 @@ def find_near_cuts(
             if shifted.outside[row]:
                 said[f"{named} limit of this model: at {at} it would give no number."] = None
             elif crossed[row]:
-                there = percent(float(result.probability[row]), float(result.complement[row]))
+                if result_at is None:
+                    there = percent(float(result.probability[row]), float(result.complement[row]))
+                else:
+                    there = result_at(number.field.id, float(shifted.columns[number.field.id][row]))
                 said[f"{named} cut of this model: at {at} the result would be {there}."] = None
         yield from (_near(number, message) for message in said)
 
@@ -111,9 +120,13 @@ def _crossed(equation: ModelEquation, columns: Mapping[str, Column]) -> Rows:
     crossed = np.zeros(next(iter(columns.values())).size, dtype=np.bool_)
     for term in equation.terms:
         for factor in term.factors:
-            if factor.cuts:
-                side, value = factor.values(columns), term.values(columns)
-                crossed |= (side != side[0]) & (value != value[0])
+            if factor.cuts and factor.of in columns:
+                side = factor.values(columns)
+                elsewhere = side != side[0]
+                if all(other.of in columns for other in term.factors):
+                    value = term.values(columns)
+                    elsewhere &= value != value[0]
+                crossed |= elsewhere
     return crossed
 
 

@@ -12,6 +12,7 @@ from clinicalc.coefficients.schema import (
     Limits,
     ModelContent,
     NumberPredictor,
+    WithinPerson,
     YesNoPredictor,
 )
 from clinicalc.units.fitting import possible_in, usual_in
@@ -47,6 +48,8 @@ class NumberField:
     meaning: str
     formula: Formula | None = None
     may_be_typed: bool = True
+    within_person: WithinPerson | None = None
+    may_be_missing: bool = False
 
     @property
     def spelling(self) -> str:
@@ -78,6 +81,7 @@ class QuestionField:
     options: tuple[AnswerOption, ...]
     meaning: str = ""
     excludes: str = ""
+    may_be_missing: bool = False
 
 
 Field = NumberField | QuestionField
@@ -106,7 +110,14 @@ def _field_of(predictor: NumberPredictor | ChoicePredictor | YesNoPredictor) -> 
     options: tuple[AnswerOption, ...] = YES_NO
     if isinstance(predictor, ChoicePredictor):
         options = tuple(AnswerOption(c.id, c.label, c.caution or "") for c in predictor.choices)
-    return QuestionField(predictor.id, predictor.label, predictor.group, options, predictor.meaning or "")
+    return QuestionField(
+        predictor.id,
+        predictor.label,
+        predictor.group,
+        options,
+        predictor.meaning or "",
+        may_be_missing=predictor.may_be_missing is True,
+    )
 
 
 def _exclusion_field(exclusion: Exclusion) -> QuestionField:
@@ -121,6 +132,7 @@ def _number_field(source: NumberPredictor | Derived, group: str) -> NumberField:
         formula = Formula(source.equation, tuple(source.inputs.items()))
         may_be_typed = source.may_be_typed is True
     valid = source.valid_for if isinstance(source, NumberPredictor) else None
+    within = source.within_person if isinstance(source, NumberPredictor) else None
     return NumberField(
         id=source.id,
         label=source.label,
@@ -136,6 +148,8 @@ def _number_field(source: NumberPredictor | Derived, group: str) -> NumberField:
         meaning=source.meaning or "",
         formula=formula,
         may_be_typed=may_be_typed,
+        within_person=None if isinstance(within, UnsetType) else within,
+        may_be_missing=isinstance(source, NumberPredictor) and source.may_be_missing is True,
     )
 
 

@@ -36,6 +36,10 @@ class FindingCode(StrEnum):
     RECALIBRATION = "recalibration"
     RECALIBRATION_PRECISION = "recalibration_precision"
     MODEL = "model"
+    NOT_MEASURED = "not_measured"
+    RARE_COMBINATION = "rare_combination"
+    COMPARISON = "comparison"
+    DECISION_POINT = "decision_point"
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,16 +9,18 @@ from clinicalc.coefficients.schema import Equation, ModelContent, Recalibration
 from clinicalc.coefficients.spans import Span, span_of
 from clinicalc.covariates.design import DesignTerm, compile_terms
 from clinicalc.prediction.line import Line, lines_of
+from clinicalc.prediction.people import People, people_of
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class ModelEquation:
-    """One equation with its place in the file, its terms and a line for each horizon."""
+    """One equation with its place in the file, its terms, a line for each horizon, and the people it was made from."""
 
     place: int
     content: Equation
     terms: tuple[DesignTerm, ...]
     lines: tuple[Line, ...]
+    people: People | None = None
 
     @property
     def uses(self) -> frozenset[str]:
@@ -74,7 +76,9 @@ def prepare_model(read: ReadFile) -> Model:
         fields=fields,
         by_id={field.id: field for field in fields},
         equations=tuple(
-            ModelEquation(place, equation, compile_terms(content, equation), lines_of(equation))
+            ModelEquation(
+                place, equation, compile_terms(content, equation), lines_of(equation), people_of(content, equation)
+            )
             for place, equation in enumerate(content.equations)
         ),
     )

@@ -10,17 +10,20 @@ from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.limits import clamp, giving_limits, is_within, place_of, words_for
 from clinicalc.assessment.numerals import MINUS, join_words
 from clinicalc.errors import UnitError
+from clinicalc.units.averaged import Averaged
 from clinicalc.units.conversion import conversion
 from clinicalc.units.fitting import fitting_units
+from clinicalc.units.quoting import visible
 from clinicalc.units.reading import Reading, Unreadable, read_value
-from clinicalc.units.unit import unit
+from clinicalc.units.unit import find_unit, unit
 
 
 @dataclass(frozen=True, slots=True)
 class TakenNumber:
     """A usable value: the reading, the unit it was taken in, the value in the file's unit.
 
-    `half` is half a unit of the last digit typed, in the file's unit.
+    `half` is half a unit of the last digit typed, in the file's unit. `averaged` is what it is the mean of, None for
+    one reading of one visit.
     """
 
     field: NumberField
@@ -29,11 +32,12 @@ class TakenNumber:
     value: float
     half: float
     dated: date | None
+    averaged: Averaged | None = None
 
     @property
     def typed(self) -> str:
-        """What can be typed again for the same value: the text where it names its unit, else digits, unit and date."""
-        return typed_again(self.reading, self.unit, self.dated)
+        """What can be typed again for the same value: digits, unit, what it is the mean of, and date."""
+        return typed_again(self.reading, self.unit, self.dated, self.averaged)
 
     @property
     def shown(self) -> str:
@@ -46,16 +50,44 @@ class TakenNumber:
         return self.field.quantity.id == "age" and self.reading.decimals == 0
 
 
-def typed_again(reading: Reading, code: str, dated: date | None) -> str:
-    """The digits of a reading with the UCUM code of its unit and its date."""
+def typed_again(reading: Reading, code: str, dated: date | None, averaged: Averaged | None = None) -> str:
+    """The digits of a reading with the UCUM code of its unit, what it is the mean of, and its date."""
     with_unit = reading.digits if code == "1" else f"{reading.digits} {code}"
-    return with_unit if dated is None else f"{with_unit} on {dated.isoformat()}"
+    return f"{with_unit}{stated_after(averaged, dated)}"
+
+
+def stated_after(averaged: Averaged | None, dated: date | None) -> str:
+    """What is typed after a number and its unit: " of 2 visits on 2026-10-02", "" where nothing is stated."""
+    mean = "" if averaged is None else f" {averaged.typed}"
+    return mean if dated is None else f"{mean} on {dated.isoformat()}"
+
+
+def averaged_of(reading: Reading, typed: Typed) -> Averaged | None:
+    """What a value is the mean of; None for one reading of one visit, whether that is stated or not."""
+    averaged = reading.averaged or typed.averaged
+    return None if averaged is None or averaged.is_single else averaged
 
 
 def shown_number(reading: Reading, code: str) -> str:
     """Every digit as typed, a decimal point and a true minus throughout, with the trade spelling of a unit."""
     number = reading.digits.replace("-", MINUS)
     return number if code == "1" else f"{number} {unit(code).spelling}"
+
+
+def typed_unused(field: NumberField, typed: Typed) -> str:
+    """Text that could not be used, with the unit that stood beside it: what can be typed again."""
+    reading = read_unused(field, typed)
+    return visible(typed.text) if reading is None else typed_again(*reading)
+
+
+def read_unused(field: NumberField, typed: Typed) -> tuple[Reading, str, date | None, Averaged | None] | None:
+    """A number read and not used, with its unit, date and mean; None where there is none, or the unit is unknown."""
+    reading = read_value(typed.text, ask_about_comma=not field.is_bare)
+    if not isinstance(reading, Reading):
+        return None
+    code = reading.unit or typed.unit or field.unit
+    known = find_unit(code)
+    return None if known is None else (reading, code, reading.dated or typed.dated, averaged_of(reading, typed))
 
 
 def take_number(field: NumberField, typed: Typed, today: date) -> tuple[TakenNumber | None, tuple[Finding, ...]]:
@@ -77,6 +109,7 @@ def take_number(field: NumberField, typed: Typed, today: date) -> tuple[TakenNum
         value=clamp(into.apply(reading.number), giving_limits(field)),
         half=abs(into.scale) * 0.5 * float(f"1e-{reading.decimals}"),
         dated=reading.dated or typed.dated,
+        averaged=averaged_of(reading, typed),
     )
     findings = (*check_ranges(field, into.apply(reading.number), taken.shown, typed=taken), *_check_date(taken, today))
     stopped = any(finding.grade is Grade.STOP for finding in findings)

@@ -61,6 +61,7 @@ def recompute(model: Model, example: WorkedExample) -> Assessment:
         span=span_of(example),
         recalibration=None if isinstance(example.recalibration, UnsetType) else example.recalibration,
         at=datetime(9999, 12, 31, tzinfo=UTC),
+        number_only=True,
     )
 
 

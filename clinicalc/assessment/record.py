@@ -2,15 +2,14 @@
 
 import json
 
-from clinicalc.assessment.result import Assessment, ValueLine
-
-JsonObject = dict[str, object]
+from clinicalc.assessment.band_assumptions import band_assumptions
+from clinicalc.assessment.record_beside import JsonObject, record_beside, record_findings
+from clinicalc.assessment.result import Assessment, Band, ValueLine
 
 
 def record_of(assessment: Assessment) -> JsonObject:
     """The record, numbers unrounded, units as UCUM codes, without the patient label; null numbers after a stop."""
     model, estimate = assessment.model, assessment.estimate
-    band = None if estimate is None else estimate.band
     return {
         "model": {
             "id": model.content.id,
@@ -24,23 +23,32 @@ def record_of(assessment: Assessment) -> JsonObject:
         "probability": None if estimate is None else estimate.probability,
         "complement": None if estimate is None else estimate.complement,
         "eta": None if estimate is None else estimate.eta,
-        "band": None
-        if band is None
-        else {"level": band.level, "lower": band.lower, "upper": band.upper, "basis": band.basis},
+        "band": None if estimate is None else _band(assessment, estimate.band),
         "band_absent_because": estimate.band_absent_because or None if estimate is not None else None,
         "recalibration": assessment.recalibration,
         "values": [_value(line) for line in assessment.values if not line.derived and line.typed],
         "derived": [_derived(line) for line in assessment.values if line.derived and (line.typed or line.worked_out)],
-        "findings": [
-            {"grade": f.grade.value, "code": f.code.value, "field": f.field or None, "message": f.message}
-            for f in assessment.findings
-        ],
+        **record_beside(assessment),
+        "findings": record_findings(assessment.findings),
     }
 
 
 def write_record(assessment: Assessment) -> str:
     """The record as JSON text, indented by 2, shortest decimals, one newline at the end."""
     return json.dumps(record_of(assessment), ensure_ascii=False, indent=2, allow_nan=False) + "\n"
+
+
+def _band(assessment: Assessment, band: Band | None) -> JsonObject | None:
+    """The band; "assumptions" are those of a rebuilt one, [] for any other."""
+    if band is None:
+        return None
+    return {
+        "level": band.level,
+        "lower": band.lower,
+        "upper": band.upper,
+        "basis": band.basis,
+        "assumptions": list(band_assumptions(assessment)),
+    }
 
 
 def _horizon(assessment: Assessment) -> JsonObject:

@@ -3,9 +3,16 @@
 from dataclasses import dataclass
 from datetime import date, datetime
 
+from clinicalc.assessment.comparison import Comparison
+from clinicalc.assessment.decision import PlacedPoint
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
+from clinicalc.assessment.matching_age import MatchingAge
 from clinicalc.assessment.model import Model
+from clinicalc.assessment.not_measured import NotMeasured
+from clinicalc.assessment.shares import Shares
+from clinicalc.assessment.spread import Spread
 from clinicalc.coefficients.spans import Span
+from clinicalc.units.averaged import Averaged
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,13 +27,28 @@ class Band:
 
 @dataclass(frozen=True, slots=True)
 class Estimate:
-    """The number: eta is the (recalibrated) linear predictor, g(eta) = probability; band is None for a reason."""
+    """The number: eta is the (recalibrated) linear predictor, g(eta) = probability; band is None for a reason.
+
+    Where values were not measured the probability is an average over them, and eta is the link of that average: no
+    linear predictor of any one set of values.
+    """
 
     eta: float
     probability: float
     complement: float
     band: Band | None
     band_absent_because: str
+    not_measured: NotMeasured | None = None
+    comparison: Comparison | None = None
+    decision_points: tuple[PlacedPoint, ...] = ()
+    spread: Spread | None = None
+    """None where the file states no within-person variation of a value that counts here."""
+    shares: Shares | None = None
+    shares_absent_because: str = ""
+    reference_person: str = ""
+    """Whom shares and matching age compare with, in short; "" where the file names nobody."""
+    matching_age: MatchingAge | None = None
+    """None where nobody asked for it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,6 +70,10 @@ class ValueLine:
     derived: bool = False
     exclusion: bool = False
     worked_out: bool = False
+    averaged: Averaged | None = None
+    """What the value is the mean of; None for one reading of one visit."""
+    not_measured: bool = False
+    """Whether it was said that the value was not measured; `shown` and `used` then say so."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,13 +3,15 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+from msgspec import UnsetType
+
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber
 from clinicalc.assessment.questions import TakenAnswer
 from clinicalc.coefficients.roles import ROLES
-from clinicalc.coefficients.schema import ChoicePredictor, Recalibration, Unconfirmed
+from clinicalc.coefficients.schema import ChoicePredictor, Recalibration, ReconstructedBand, Unconfirmed
 from clinicalc.coefficients.spans import Span, span_of
 from clinicalc.units.unit import unit
 
@@ -27,6 +29,8 @@ class Basis:
     """Places of the terms that are not nought for this patient."""
     worked_out: frozenset[str]
     """Ids of the derived values that were worked out and used."""
+    open: frozenset[str] = frozenset()
+    """Ids of the values that were not measured: for them the number rests on the described people."""
 
 
 def unconfirmed_behind(model: Model, basis: Basis) -> tuple[Unconfirmed, ...]:
@@ -62,6 +66,8 @@ def _is_behind(model: Model, path: list[str], basis: Basis) -> bool:
             return chosen and (rest[:1] != ["equations"] or rest[1:2] in ([], [basis.equation.content.id]))
         case ["predictors", place, *rest]:
             return _is_in_predictor(model, int(place), rest, basis)
+        case ["population", *_]:
+            return bool(basis.open) and isinstance(basis.equation.content.population, UnsetType)
         case ["derived", place, *_]:
             return model.content.derived[int(place)].id in basis.worked_out
         case _:
@@ -73,12 +79,15 @@ def _is_in_equation(rest: list[str], basis: Basis) -> bool:
         case [] | ["terms"] | ["horizons"] | ["link"] | ["competing_events", *_]:
             return True
         case ["terms", _, "interval", *_]:
-            return False
+            # every coefficient's precision is in every patient's band
+            return isinstance(basis.equation.content.uncertainty, ReconstructedBand)
         case ["terms", place, *_]:
             return int(place) in basis.terms
         case ["horizons", place, *figure]:
             used = not figure or figure[0] not in ("survival_interval", "events", "people", "still_at_risk")
             return used and span_of(basis.equation.content.horizons[int(place)]) == basis.span
+        case ["population", *_]:
+            return bool(basis.open)
         case ["uncertainty", *_]:
             return basis.equation.line_at(basis.span).band is not None
         case _:

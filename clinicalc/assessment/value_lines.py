@@ -1,18 +1,16 @@
 """The values of an assessment line by line, as typed and as used."""
 
-from collections.abc import Mapping
-from datetime import date
+from collections.abc import Mapping, Set
 
 from clinicalc.assessment.entry import PatientEntry, Typed
-from clinicalc.assessment.fields import NumberField, QuestionField
+from clinicalc.assessment.fields import Field, NumberField, QuestionField
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numbers import TakenNumber, shown_number, typed_again
+from clinicalc.assessment.numbers import TakenNumber, read_unused, shown_number, typed_unused
 from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.questions import TakenAnswer
 from clinicalc.assessment.result import ValueLine
+from clinicalc.coefficients.answers import NOT_MEASURED, NOT_MEASURED_WORDS
 from clinicalc.units.quoting import visible
-from clinicalc.units.reading import Reading, read_value
-from clinicalc.units.unit import find_unit
 
 
 def value_lines(
@@ -21,16 +19,36 @@ def value_lines(
     numbers: Mapping[str, TakenNumber],
     answers: Mapping[str, TakenAnswer],
     worked_out: Mapping[str, float],
+    open: Set[str] = frozenset(),
 ) -> tuple[ValueLine, ...]:
-    """One line a field, in page order; fields without any text have empty lines."""
+    """One line a field, in page order; fields without any text have empty lines. `open` are those not measured."""
     lines = []
     for field in model.fields:
         typed = entry.typed.get(field.id, Typed(""))
-        if isinstance(field, QuestionField):
+        if field.id in open:
+            lines.append(_open_line(field))
+        elif isinstance(field, QuestionField):
             lines.append(_answer_line(field, typed, answers.get(field.id)))
         else:
             lines.append(_number_line(field, typed, numbers.get(field.id), worked_out.get(field.id)))
     return tuple(lines)
+
+
+def _open_line(field: Field) -> ValueLine:
+    return ValueLine(
+        id=field.id,
+        label=field.label,
+        typed=NOT_MEASURED,
+        shown=NOT_MEASURED_WORDS,
+        used=NOT_MEASURED_WORDS,
+        number=None,
+        answer=None,
+        unit=None,
+        dated=None,
+        derived=isinstance(field, NumberField) and field.formula is not None,
+        exclusion=isinstance(field, QuestionField) and bool(field.excludes),
+        not_measured=True,
+    )
 
 
 def _answer_line(field: QuestionField, typed: Typed, taken: TakenAnswer | None) -> ValueLine:
@@ -54,34 +72,19 @@ def _number_line(field: NumberField, typed: Typed, taken: TakenNumber | None, wo
     return ValueLine(
         id=field.id,
         label=field.label,
-        typed=_typed_with_unit(field, typed) if taken is None else taken.typed,
+        typed=typed_unused(field, typed) if taken is None else taken.typed,
         shown=_shown_unused(field, typed) if taken is None else taken.shown,
         used="" if value is None else f"{plain(value, 4)}{after}",
         number=value,
         answer=None,
         unit=field.unit if value is not None else None,
         dated=None if taken is None else taken.dated,
+        averaged=None if taken is None else taken.averaged,
         derived=field.formula is not None,
         worked_out=taken is None and worked_out is not None,
     )
 
 
-def _typed_with_unit(field: NumberField, typed: Typed) -> str:
-    """Text that could not be used, with the unit that stood beside it."""
-    reading = _reading(field, typed)
-    return visible(typed.text) if reading is None else typed_again(*reading)
-
-
 def _shown_unused(field: NumberField, typed: Typed) -> str:
-    reading = _reading(field, typed)
+    reading = read_unused(field, typed)
     return visible(typed.text) if reading is None else shown_number(reading[0], reading[1])
-
-
-def _reading(field: NumberField, typed: Typed) -> tuple[Reading, str, date | None] | None:
-    """A number that was read and not used, with its unit and date; None where there is none, or the unit is unknown."""
-    reading = read_value(typed.text, ask_about_comma=not field.is_bare)
-    if not isinstance(reading, Reading):
-        return None
-    code = reading.unit or typed.unit or field.unit
-    known = find_unit(code)
-    return None if known is None else (reading, code, reading.dated or typed.dated)

@@ -61,7 +61,7 @@ def predict(
         moved = eta if adjustment is None else adjustment.intercept + adjustment.slope * eta
         ends: tuple[Column, Column] | None = None
         if isinstance(basis, Precision):
-            half = quantile * np.sqrt(_variance(basis, columns, eta, adjustment))
+            half = quantile * standard_deviation(basis, columns, eta, adjustment)
             ends = moved - half, moved + half
         elif basis is not None:
             ends = _draw_limits(basis, line, columns, eta, adjustment, level, quantile)
@@ -91,6 +91,17 @@ def linear_predictor(line: Line, columns: Sequence[Column]) -> Column:
     return eta
 
 
+def standard_deviation(
+    band: Precision, columns: Sequence[Column], eta: Column, adjustment: Adjustment | None
+) -> Column:
+    """That of the (adjusted) linear predictor under the imprecision of the coefficients, shape (n,).
+
+    `eta` is the linear predictor before any adjustment.
+    """
+    deviation: Column = np.sqrt(_variance(band, columns, eta, adjustment))
+    return deviation
+
+
 def _variance(band: Precision, columns: Sequence[Column], eta: Column, adjustment: Adjustment | None) -> Column:
     """Variance of the (adjusted) linear predictor, shape (n,): a + sum over k of (sum over j >= k of L_jk d_j)^2."""
     size = len(band.estimated)
@@ -106,10 +117,10 @@ def _variance(band: Precision, columns: Sequence[Column], eta: Column, adjustmen
         np.add(total, part, out=total)
     if adjustment is None:
         return total
-    return adjustment.slope * adjustment.slope * total + _adjustment_variance(adjustment, eta)
+    return adjustment.slope * adjustment.slope * total + adjustment_variance(adjustment, eta)
 
 
-def _adjustment_variance(adjustment: Adjustment, eta: Column) -> Column:
+def adjustment_variance(adjustment: Adjustment, eta: Column) -> Column:
     """[1, eta] C [1, eta]' with C the covariance of intercept and slope; nought where it is not known.
 
     The square is completed, so that rounding cannot make it negative.
@@ -144,18 +155,18 @@ def _draw_limits(
     together = max(1, DRAWN_FIGURES // band.baselines.size)
     for start in range(0, eta.size, together):
         here = slice(start, start + together)
-        drawn = _drawn_predictors(band, line, [column[here] for column in columns])
+        drawn = drawn_predictors(band, line, [column[here] for column in columns])
         lower[here], middle[here], upper[here] = np.quantile(drawn, shares, axis=1)
     if adjustment is None:
         return lower, upper
     moved = adjustment.intercept + adjustment.slope * middle
-    extra = quantile * quantile * _adjustment_variance(adjustment, eta)
+    extra = quantile * quantile * adjustment_variance(adjustment, eta)
     below = adjustment.slope * (middle - lower)
     above = adjustment.slope * (upper - middle)
     return moved - np.sqrt(below * below + extra), moved + np.sqrt(above * above + extra)
 
 
-def _drawn_predictors(band: Draws, line: Line, columns: Sequence[Column]) -> Column:
+def drawn_predictors(band: Draws, line: Line, columns: Sequence[Column]) -> Column:
     """The linear predictor of each patient under each draw, shape (n, K); fixed terms keep the file's coefficient."""
     drawn = np.tile(band.baselines, (columns[0].size, 1))
     for k, term in enumerate(band.estimated):

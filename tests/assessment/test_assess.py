@@ -102,7 +102,9 @@ def test_an_entry_is_never_changed() -> None:
 
 
 def test_without_a_covariance_the_reason_stands_in_place_of_the_band() -> None:
-    estimate = run("general-cvd-2008-lipids", WOMAN_61).estimate
+    # the white woman of 55 of Circulation 2014;129(25 Suppl 2):S49-S73, Table A
+    woman = WOMAN_61 | {"age": "55", "ethnic_group": "white", "total_cholesterol": "213", "smoker": "no"}
+    estimate = run("ascvd-2013-pooled-cohort", woman).estimate
     assert estimate is not None
     assert estimate.band is None
     assert "covariance" in estimate.band_absent_because

@@ -1,9 +1,26 @@
 """Cautions that come with the equation: unconfirmed figures that were used, and competing events."""
 
+import msgspec
 import pytest
 
+from clinicalc.assessment.assess import assess
+from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.findings import FindingCode, Grade
-from tests.assessment.cases import FULL, MAN_50, PERSON_55, WOMAN_55_AT_RISK, WOMAN_61, WOMAN_EGFR_90, about, run
+from clinicalc.assessment.model import prepare_model
+from clinicalc.coefficients.schema import NoBand
+from tests.assessment.cases import (
+    FULL,
+    MAN_50,
+    NOW,
+    PERSON_55,
+    WOMAN_55_AT_RISK,
+    WOMAN_61,
+    WOMAN_EGFR_90,
+    about,
+    run,
+    shipped,
+)
+from tests.coefficients.tiny_model import read_of
 
 LIPIDS = "general-cvd-2008-lipids"
 REGIONAL = "cvd-2021-regional"
@@ -18,9 +35,18 @@ def test_only_the_unconfirmed_figures_of_the_equation_that_answered_are_named() 
     assert "23.983" not in woman.message
 
 
-def test_an_interval_that_no_number_rests_on_is_not_named() -> None:
+def test_an_interval_is_named_where_the_band_is_rebuilt_from_it_and_only_there() -> None:
+    printed = "The printed interval of the hazard ratio of diabetes in women is from memory"
     (woman,) = about(run(LIPIDS, WOMAN_61), FindingCode.UNCONFIRMED)
-    assert "interval" not in woman.message
+    (man,) = about(run(LIPIDS, WOMAN_61, sex="male"), FindingCode.UNCONFIRMED)
+    assert printed in woman.message
+    assert printed not in man.message
+    content = shipped(LIPIDS).content
+    women = msgspec.structs.replace(content.equations[0], uncertainty=NoBand("Taken off."))
+    bare = msgspec.structs.replace(content, equations=(women, content.equations[1]))
+    model = prepare_model(read_of(bare))
+    (without,) = about(assess(model, entry_from_texts(WOMAN_61), at=NOW), FindingCode.UNCONFIRMED)
+    assert "interval" not in without.message
 
 
 def test_only_the_chosen_recalibration_is_named() -> None:

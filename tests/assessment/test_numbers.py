@@ -1,9 +1,14 @@
 """What is typed into a number field: limits, units, dates, each answered in a sentence."""
 
+from dataclasses import replace
+
 import pytest
 
+from clinicalc.assessment.assess import assess
+from clinicalc.assessment.entry import Typed, entry_from_texts
 from clinicalc.assessment.findings import FindingCode, Grade
-from tests.assessment.cases import DEMO, WOMAN_55_AT_RISK, WOMAN_61, about, probability, run
+from clinicalc.units import Averaged
+from tests.assessment.cases import DEMO, NOW, WOMAN_55_AT_RISK, WOMAN_61, about, probability, run, shipped
 
 LIPIDS = "general-cvd-2008-lipids"
 DIABETES = "diabetes-2007-clinical"
@@ -102,6 +107,46 @@ def test_every_digit_typed_is_shown() -> None:
     result = run(DIABETES, WOMAN_55_AT_RISK, glucose="110.20000000000000000000000000")
     line = next(line for line in result.values if line.id == "glucose")
     assert line.shown == "110.20000000000000000000000000 mg/dL"
+
+
+@pytest.mark.parametrize(
+    ("typed", "again"),
+    [
+        ("124 of 2 visits", "124 mm[Hg] of 2 visits"),
+        ("124 mmHg of 3 readings", "124 mm[Hg] of 3 readings"),
+        ("124 of 2 visits of 3 readings on 2026-10-02", "124 mm[Hg] of 2 visits of 3 readings on 2026-10-02"),
+        ("124 of 1 visit of 1 reading", "124 mm[Hg]"),
+    ],
+)
+def test_a_mean_is_kept_with_its_value(typed: str, again: str) -> None:
+    line = next(v for v in run(LIPIDS, WOMAN_61, systolic_bp=typed).values if v.id == "systolic_bp")
+    assert line.typed == again
+    assert line.shown == "124 mmHg"
+    assert probability(run(LIPIDS, WOMAN_61, systolic_bp=typed)) == probability(run(LIPIDS, WOMAN_61))
+
+
+def test_of_two_stated_means_the_text_counts_as_with_dates() -> None:
+    apart = Typed("124", averaged=Averaged(4, 2))
+    for typed, averaged in (
+        (apart, Averaged(4, 2)),
+        (replace(apart, text="124 of 2 visits"), Averaged(2, 1)),
+        (replace(apart, text="124 of 1 visit"), None),
+    ):
+        entry = entry_from_texts(WOMAN_61).with_typed("systolic_bp", typed)
+        line = next(v for v in assess(shipped(LIPIDS), entry, at=NOW).values if v.id == "systolic_bp")
+        assert line.averaged == averaged
+
+
+def test_a_mean_is_kept_where_its_value_cannot_be_used() -> None:
+    line = next(v for v in run(LIPIDS, WOMAN_61, systolic_bp="900 of 2 visits").values if v.id == "systolic_bp")
+    assert line.typed == "900 mm[Hg] of 2 visits"
+    assert line.number is None
+
+
+def test_a_mean_that_is_not_clear_stops() -> None:
+    (stop,) = about(run(LIPIDS, WOMAN_61, systolic_bp="124 of 0 visits"), FindingCode.UNREADABLE)
+    assert stop.grade is Grade.STOP
+    assert stop.message.startswith("Systolic blood pressure: “of 0 visits” is no mean")
 
 
 @pytest.mark.parametrize("typed", ["110 ON 2026-10-02", "110\ton 2026-10-02", "110,0 mg/dl on 2026-10-02"])

@@ -9,6 +9,8 @@ from clinicalc.assessment.numerals import (
     join_words,
     of_people,
     percent,
+    percent_beside,
+    percent_in_full,
     percent_range,
     plain,
     plain_range,
@@ -38,9 +40,60 @@ def test_percent_is_never_0_or_100(p: float) -> None:
     assert 0 < float(number) < 100
 
 
+@pytest.mark.parametrize(
+    ("p", "decimals", "text"),
+    [(0.00049, 2, "0.05 %"), (0.000049, 2, "<0.01 %"), (0.99996, 2, ">99.99 %"), (0.9996, 2, "99.96 %")],
+)
+def test_percent_with_more_decimals(p: float, decimals: int, text: str) -> None:
+    assert percent(p, decimals=decimals).replace(NARROW_SPACE, " ") == text
+
+
+@pytest.mark.parametrize(
+    ("p", "point", "text"),
+    [
+        (0.0996, 0.1, "9.96 %"),
+        (0.09996, 0.1, "9.996 %"),
+        (0.1004, 0.1, "10.0 %"),  # on the point counts as above, so its own figure is not the wrong side
+        (0.105, 0.1, "10.5 %"),
+        (0.10043, 0.1004, "10.04 %"),
+        (0.0999999999, 0.1, "<10.0 %"),
+        (0.1234444449, 0.1234444441, "12.34444441 %"),
+        (0.0003, 0.0005, "0.03 %"),
+        (0.0003, 0.0002, "0.03 %"),
+        (0.0003, 0.1, "<0.1 %"),
+        (0.9997, 0.9995, "99.97 %"),
+        (0.9997, 0.9, ">99.9 %"),
+        (0.9996, 0.9999, "99.96 %"),
+    ],
+)
+def test_percent_beside_a_point(p: float, point: float, text: str) -> None:
+    assert percent_beside(p, None, [(point, p >= point)]).replace(NARROW_SPACE, " ") == text
+
+
+def test_percent_beside_nothing_is_percent() -> None:
+    assert percent_beside(0.0996, None, []) == percent(0.0996)
+
+
+@given(st.floats(1e-4, 1 - 1e-4), st.floats(-1e-3, 1e-3), st.integers(1, 4))
+def test_a_figure_never_shows_the_other_side_of_a_point(p: float, away: float, digits: int) -> None:
+    point = round(min(max(p + away, 1e-4), 1 - 1e-4), digits + 2)
+    if 0 < point < 1:
+        text = percent_beside(p, None, [(point, p >= point)]).removesuffix(f"{NARROW_SPACE}%")
+        figure, beside = float(text.lstrip("<>")), float(percent_in_full(point)[:-2])
+        assert figure >= beside if p >= point else figure < beside or text == f"<{percent_in_full(point)[:-2]}"
+
+
+@pytest.mark.parametrize(
+    ("p", "text"), [(0.1, "10.0 %"), (0.075, "7.5 %"), (0.0025, "0.25 %"), (0.1234567891, "12.34567891 %")]
+)
+def test_percent_in_full(p: float, text: str) -> None:
+    assert percent_in_full(p).replace(NARROW_SPACE, " ") == text
+
+
 def test_percent_range() -> None:
     assert percent_range(0.093, 0.161).replace(NARROW_SPACE, " ") == "9.3–16.1 %"
     assert percent_range(0.0001, 0.02).replace(NARROW_SPACE, " ") == "<0.1 % to 2.0 %"
+    assert percent_range(0.0996, 0.12, [0.1]).replace(NARROW_SPACE, " ") == "9.96–12.0 %"
 
 
 @pytest.mark.parametrize(
