@@ -1,7 +1,7 @@
-"""The words that `assess` and `report` share: a file, one patient's values, horizon, recalibration, level."""
+"""The words that `assess` and `report` share: a file, one patient's values, changes, horizon, recalibration, level."""
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import datetime
 from pathlib import Path
 from typing import TypeVar
@@ -15,8 +15,10 @@ from clinicalc.operations.bedside import (
     choose_recalibration,
     choose_span,
     open_model,
+    take_changes,
     take_texts,
 )
+from clinicalc.settings import PracticePoint, read_settings
 
 _Command = TypeVar("_Command", bound=Callable[..., object])
 
@@ -31,6 +33,8 @@ class CaseWords:
     time: str | None
     recalibration: str | None
     level: float
+    change: tuple[str, ...] = ()
+    matching_age: bool = False
     label: str = ""
 
 
@@ -41,6 +45,14 @@ def case_options(command: _Command, *, file_required: bool = True) -> _Command:
         click.option("--recalibration", metavar="ID", help="A recalibration that the file offers."),
         click.option("--time", metavar="SPAN", help='Horizon in another unit of time, such as "90 d".'),
         click.option("--years", type=float, metavar="N", help="Horizon in years, where the file has several."),
+        click.option("--matching-age", is_flag=True, help="Say at which age the reference person has this number."),
+        click.option("--shares", is_flag=True, help="Say what each value adds against the reference person."),
+        click.option(
+            "--change",
+            multiple=True,
+            metavar="FIELD=VALUE",
+            help="Compare with this value changed; give it once for each.",
+        ),
         click.argument("values", nargs=-1, metavar="[FIELD=VALUE]..."),
         click.argument("file", metavar="FILE", required=file_required),
     ):
@@ -54,5 +66,22 @@ def assess_case(words: CaseWords, at: datetime | None = None) -> Assessment:
     model = open_model(Path(words.file))
     span = choose_span(model, years=words.years, time=words.time)
     recalibration = choose_recalibration(model, span, words.recalibration)
-    entry = take_texts(model, words.values, words.label)
-    return assess_patient(model, entry, span=span, recalibration=recalibration, level=words.level, at=at)
+    entry = replace(take_texts(model, words.values, words.label), changes=take_changes(model, words.change))
+    return assess_patient(
+        model,
+        entry,
+        span=span,
+        recalibration=recalibration,
+        level=words.level,
+        at=at,
+        practice_points=take_practice_points(),
+        matching_age=words.matching_age,
+    )
+
+
+def take_practice_points() -> tuple[PracticePoint, ...]:
+    """The decision points of this practice; what could not be taken of the settings is said on stderr."""
+    reading = read_settings()
+    for problem in reading.problems:
+        click.echo(f"clinicalc: {problem}", err=True)
+    return reading.settings.decision_points

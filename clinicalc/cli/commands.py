@@ -1,4 +1,4 @@
-"""The commands: assess, report, inspect, demo."""
+"""The commands: assess, report, inspect, package, demo."""
 
 from collections.abc import Callable, Sequence
 from functools import partial
@@ -12,11 +12,13 @@ from clinicalc.assessment.result import Assessment
 from clinicalc.cli.case import CaseWords, assess_case, case_options
 from clinicalc.cli.checking import check_print, require_print
 from clinicalc.cli.outcome import ExitStatus, run_guarded
+from clinicalc.cli.packaging import package
 from clinicalc.operations.bedside import assess_patient, open_model
 from clinicalc.operations.demonstration import DemoCase, demo_case
 from clinicalc.operations.documents import save_pdf, stated_time
 from clinicalc.operations.inspection import inspect_model, write_sections
 from clinicalc.operations.summary import summarise
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.settings import Paper
 
 OpenWindow = Callable[[DemoCase], int]
@@ -35,14 +37,14 @@ def clinicalc() -> None:
 @clinicalc.command(short_help="Assess one patient with a coefficient file.")
 @case_options
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object and nothing else.")
-def assess(as_json: bool, **words: object) -> int:
+def assess(as_json: bool, shares: bool, **words: object) -> int:
     """Assess one patient with a coefficient file.
 
     Give each value as FIELD=VALUE, with its unit where it is not the file's own and its date where it has one:
     age=61 "total_cholesterol=5.2 mmol/L" "glucose=110 mg/dL on 2026-10-02". `clinicalc inspect FILE` lists the fields.
     """
     assessment = assess_case(CaseWords(**words))  # type: ignore[arg-type]
-    click.echo(write_record(assessment) if as_json else summarise(assessment), nl=False)
+    click.echo(write_record(assessment) if as_json else summarise(assessment, with_shares=shares), nl=False)
     return ExitStatus.STOPPED if assessment.estimate is None else ExitStatus.ASSESSED
 
 
@@ -61,10 +63,17 @@ def assess(as_json: bool, **words: object) -> int:
 @click.option("--check", metavar="FILE.pdf", help="A print to work out again, with --model and nothing else.")
 @click.option("--model", metavar="FILE.json", help="The coefficient file to check the print against.")
 def report(
-    out: str | None, check: str | None, model: str | None, paper: str, no_patient_page: bool, **words: object
+    out: str | None,
+    check: str | None,
+    model: str | None,
+    paper: str,
+    no_patient_page: bool,
+    shares: bool,
+    **words: object,
 ) -> int:
     """Assess one patient and write the print as a PDF: pages for the clinician, and a last one for the patient.
 
+    A comparison, shares and the matching age are printed where --change, --shares and --matching-age ask for them.
     No number, no print.
 
     With --check and --model an old print is worked out again from the record attached to it: exit status 0 when
@@ -79,7 +88,8 @@ def report(
         click.echo(f"\nNo print was made: there is no number to print. {out} was not written.")
         return ExitStatus.STOPPED
     sheet = next(sheet for sheet in Paper if sheet.value.lower() == paper)
-    _write_print(out, assessment, paper=sheet, patient_page=not no_patient_page)
+    parts = PrintParts(patient_page=not no_patient_page, shares=shares, matching_age=words["matching_age"] is True)
+    _write_print(out, assessment, paper=sheet, parts=parts)
     return ExitStatus.ASSESSED
 
 
@@ -89,6 +99,9 @@ def inspect(file: str) -> int:
     """Print everything a coefficient file says, with its worked examples recomputed."""
     click.echo(write_sections(inspect_model(open_model(Path(file)))), nl=False)
     return ExitStatus.ASSESSED
+
+
+clinicalc.add_command(package)
 
 
 @clinicalc.command(short_help="Show the whole job on an invented patient.")
@@ -103,11 +116,11 @@ def demo(open_window: OpenWindow, out: str, no_window: bool) -> int:
     return ExitStatus.ASSESSED if no_window else open_window(case)
 
 
-def _write_print(out: str, assessment: Assessment, *, paper: Paper = Paper.A4, patient_page: bool = True) -> None:
-    save_pdf(Path(out), assessment, paper=paper, patient_page=patient_page)
+def _write_print(out: str, assessment: Assessment, *, paper: Paper = Paper.A4, parts: PrintParts = USUAL_PARTS) -> None:
+    save_pdf(Path(out), assessment, paper=paper, parts=parts)
     stated = stated_time()
     dated = "" if stated is None else f", dated {stated:%Y-%m-%d %H:%M} by SOURCE_DATE_EPOCH"
-    click.echo(f"{summarise(assessment)}\nPrint written to {out}{dated}")
+    click.echo(f"{summarise(assessment, with_shares=parts.shares)}\nPrint written to {out}{dated}")
 
 
 def run_command(words: Sequence[str], open_window: OpenWindow) -> int:

@@ -21,6 +21,8 @@ NOT_BEHIND_A_NUMBER = {
     "reference_person": "values of the person beside whom the patient is set; they enter no probability",
     "basis": "which basis function of a spline: a number of order, not a figure (the knots are changed)",
     "competing_events": "words",
+    "population": "the people of the cohort: they enter no number of a patient whose values are all there, and what is"
+    " rebuilt from them is made again and compared in its own test",
 }
 MIRRORED = {"above": "from", "from": "above", "below": "up_to", "up_to": "below"}
 CUTS = {*MIRRORED, "clip_low", "clip_high"}

@@ -83,10 +83,11 @@ def test_unconfirmed_figures_point_at_something(name: str) -> None:
 def test_every_figure_that_was_not_read_in_a_source_is_listed() -> None:
     listed = {name: {entry["at"] for entry in MODELS[name]["unconfirmed"]} for name in FILES}
     assert listed == {
-        # the two means are from memory, as is the woman's interval for diabetes
+        # the two means are from memory, as are the woman's interval for diabetes and the moments of the cohort; the
+        # correlations are assumed, and the bands are rebuilt from all these
         "general-cvd-2008-lipids": {
-            "/equations/0/horizons/0/mean_linear_predictor",
-            "/equations/1/horizons/0/mean_linear_predictor",
+            *(f"/equations/{index}/horizons/0/mean_linear_predictor" for index in range(2)),
+            *(f"/equations/{index}/{part}" for index in range(2) for part in ("population", "uncertainty")),
             "/equations/0/terms/6/interval",
         },
         # a correction not read; all baselines and means; two cells where the reprint is wrong; the rule for others

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from clinicalc.assessment.assess import assess
 from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.assessment.findings import FindingCode
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.proof import load_model
 from clinicalc.coefficients.reader import read_bytes, read_file
@@ -213,8 +214,9 @@ def test_a_patient_it_is_not_for_gets_no_number(model: Model, field: str, typed:
         "diabetes": "no",
     }
     whole = assess(model, entry_from_texts(patient), at=MOMENT)
-    # nothing about this patient: only what the file says of itself
+    # nothing about this patient's values: that the band crosses the file's decision point, and what it says of itself
     said = [f"About this model: {caution}" for caution in model.content.use.cautions]
-    assert [finding.message for finding in whole.findings] == said
+    assert [finding.message for finding in whole.findings if finding.code is FindingCode.MODEL] == said
+    assert {finding.code for finding in whole.findings} == {FindingCode.DECISION_POINT, FindingCode.MODEL}
     assert whole.estimate is not None
     assert assess(model, entry_from_texts(patient | {field: typed}), at=MOMENT).estimate is None

@@ -117,6 +117,28 @@ class SubdistributionFit(Figures, frozen=True, forbid_unknown_fields=True):
     predictions: tuple[IncidencePrediction, ...]
 
 
+class IncidenceError(msgspec.Struct, frozen=True, forbid_unknown_fields=True):
+    """One person's cumulative incidence at one time, with the standard error of its cumulative hazard."""
+
+    profile: int
+    time: float
+    probability: float
+    se_cumulative_hazard: float
+
+
+class SubdistributionLimits(Figures, frozen=True, forbid_unknown_fields=True):
+    """A subdistribution hazards fit by weighted Cox regression, with robust standard errors of what was predicted."""
+
+    unit: str
+    people: int
+    events: int
+    predictors: tuple[str, ...]
+    coefficients: Row
+    robust_covariance: Matrix
+    profiles: Matrix
+    predictions: tuple[IncidenceError, ...]
+
+
 class SplineFit(Figures, frozen=True, forbid_unknown_fields=True):
     """A logistic fit on splines; coefficients: intercept, glu and its two spline terms, age and its one, bmi."""
 
