@@ -1,19 +1,21 @@
 """One model and one patient: open the file, take the entries, choose horizon and recalibration, assess."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from datetime import datetime
 from difflib import get_close_matches
 from pathlib import Path
 
 from clinicalc.assessment.assess import assess
+from clinicalc.assessment.changeable import why_unchangeable
 from clinicalc.assessment.choices import DEFAULT_LEVEL
-from clinicalc.assessment.entry import PatientEntry, entry_from_texts
+from clinicalc.assessment.entry import PatientEntry, Typed, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.proof import load_model, load_model_bytes
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
 from clinicalc.errors import UsageError
 from clinicalc.resources import read_shipped
+from clinicalc.settings import PracticePoint
 from clinicalc.units.quoting import quote
 from clinicalc.units.reading import Reading, read_value
 
@@ -36,32 +38,68 @@ def assess_patient(
     recalibration: str | None = None,
     level: float = DEFAULT_LEVEL,
     at: datetime | None = None,
+    practice_points: Sequence[PracticePoint] = (),
+    matching_age: bool = False,
 ) -> Assessment:
     """The assessment of one entry; never raises on what a person typed about the patient."""
-    return assess(model, entry, span=span, recalibration=recalibration, level=level, at=at)
+    return assess(
+        model,
+        entry,
+        span=span,
+        recalibration=recalibration,
+        level=level,
+        at=at,
+        practice_points=practice_points,
+        matching_age=matching_age,
+    )
 
 
 def take_texts(model: Model, texts: Iterable[str], label: str = "") -> PatientEntry:
     """The entry from words such as "age=61". Raises UsageError for an unknown or repeated key, or no "="."""
     known = [field.id for field in model.fields]
     taken: dict[str, str] = {}
-    for word in texts:
-        id, mark, text = word.partition("=")
-        id = id.strip()
-        if not mark:
-            raise UsageError(
-                f"{quote(word)} is not a value.", do="Write the field, an equals sign and the value: age=61."
-            )
+    for id, text in _split_words(texts, "value", "age=61"):
         if id not in known:
             raise UsageError(
                 f"{quote(id)} is not a field of this model.",
                 why=_hint(id, known),
                 do=f"Its fields are {', '.join(known)}.",
             )
-        if id in taken:
-            raise UsageError(f"{id} is given twice.", do="Give each field once.")
         taken[id] = text
     return entry_from_texts(taken, label)
+
+
+def take_changes(model: Model, texts: Iterable[str]) -> Mapping[str, Typed]:
+    """The changed values of a comparison from words such as "smoker=no", for `PatientEntry.changes`.
+
+    Raises UsageError for no "=", a key given twice, no text after the sign, and a field that a comparison cannot
+    change; whether the text can be used is for the assessment to say.
+    """
+    taken: dict[str, Typed] = {}
+    for id, text in _split_words(texts, "change", "smoker=no"):
+        reason = why_unchangeable(model, id)
+        if reason:
+            raise UsageError(reason)
+        if not text.strip():
+            raise UsageError(f"the change of {id} has no value.", do=f"Write the changed value after it: {id}=…")
+        taken[id] = Typed(text)
+    return taken
+
+
+def _split_words(words: Iterable[str], kind: str, example: str) -> Iterator[tuple[str, str]]:
+    """Field and text of words such as "age=61". Raises UsageError for a field given twice, or no "="."""
+    seen: set[str] = set()
+    for word in words:
+        id, mark, text = word.partition("=")
+        id = id.strip()
+        if not mark:
+            raise UsageError(
+                f"{quote(word)} is not a {kind}.", do=f"Write the field, an equals sign and the value: {example}."
+            )
+        if id in seen:
+            raise UsageError(f"{id} is given twice.", do="Give each field once.")
+        seen.add(id)
+        yield id, text
 
 
 def choose_span(model: Model, *, years: float | None = None, time: str | None = None) -> Span:

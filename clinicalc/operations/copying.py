@@ -2,6 +2,13 @@
 
 from clinicalc.assessment.result import Assessment, ValueLine
 from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.operations.beside_lines import (
+    assumption_lines,
+    comparison_lines,
+    decision_lines,
+    matching_age_lines,
+    share_lines,
+)
 from clinicalc.operations.summary import finding_lines, number_lines
 from clinicalc.report import phrases
 
@@ -9,8 +16,9 @@ from clinicalc.report import phrases
 def copy_text(assessment: Assessment, *, with_label: bool = False) -> str:
     """The whole assessment as plain text, one statement a line, ending in a newline.
 
-    Number, horizon, band (or why there is none), findings and values stand together, with the model, its fingerprint
-    and the time, so that the number cannot be read without them. The patient label is left out unless asked for.
+    Number, horizon, band (or why there is none) with what it assumes, the figures beside the number, findings and
+    values stand together, with the model, its fingerprint and the time, so that the number cannot be read without
+    them. The patient label is left out unless asked for.
     """
     model, at = assessment.model, assessment.at
     label = assessment.label.strip() if with_label else ""
@@ -24,13 +32,24 @@ def copy_text(assessment: Assessment, *, with_label: bool = False) -> str:
     if assessment.estimate is None and assessment.span is not None:
         head.append(f"Horizon: {assessment.span.words}")
     values = [line for line in assessment.values if line.typed or line.worked_out]
-    blocks = [head, number_lines(assessment), finding_lines(assessment.findings), [_say_value(line) for line in values]]
+    blocks = [
+        head,
+        number_lines(assessment),
+        assumption_lines(assessment),
+        decision_lines(assessment),
+        comparison_lines(assessment),
+        share_lines(assessment, as_table=False),
+        matching_age_lines(assessment),
+        finding_lines(assessment.findings),
+        [_say_value(line) for line in values],
+    ]
     return "\n\n".join("\n".join(block) for block in blocks if block) + "\n"
 
 
 def _say_value(line: ValueLine) -> str:
     shown = line.shown or f"{line.used} (worked out)"
     used = f", used as {line.used}" if line.shown and line.used and line.used != line.shown else ""
+    mean = f", {line.averaged.words}" if line.averaged else ""
     dated = f", of {line.dated.isoformat()}" if line.dated else ""
     mark = "" if line.label.endswith("?") else ":"
-    return f"{line.label}{mark} {shown}{used}{dated}"
+    return f"{line.label}{mark} {shown}{mean}{used}{dated}"

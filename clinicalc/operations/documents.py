@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.report.paper import Paper as Sheet
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.settings import Paper
 
 if TYPE_CHECKING:
@@ -22,29 +23,27 @@ def save_pdf(
     assessment: Assessment,
     *,
     practice: str = "",
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
 ) -> None:
     """Write the print of an assessment. Raises PrintRefused or FileNotWritten; nothing half-written is left."""
     from clinicalc.report.pdf import save_report
 
-    save_report(path, assessment, practice=practice, patient_page=patient_page, paper=Sheet(paper.value))
+    save_report(path, assessment, practice=practice, parts=parts, paper=Sheet(paper.value))
 
 
 def lay_out_print(
     assessment: Assessment,
     *,
     practice: str = "",
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
     printed_at: datetime | None = None,
 ) -> Document:
     """The same print as pages to be painted; `printed_at` is now where it is left out. Raises PrintRefused."""
     from clinicalc.report.document import make_document
 
-    return make_document(
-        assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=Sheet(paper.value)
-    )
+    return make_document(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=Sheet(paper.value))
 
 
 def stated_time() -> datetime | None:

@@ -12,12 +12,14 @@ PAGES = (
     "first-use",
     "typing",
     "reading",
+    "how-far-to-trust",
     "findings",
     "printing",
     "files",
     "cautions",
     "keyboard",
     "commands",
+    "packaging",
     "short",
 )
 """The pages in reading order, each a file of `resources/guide`."""

@@ -9,7 +9,7 @@ from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import percent
 from clinicalc.assessment.proof import recompute
 from clinicalc.coefficients.fingerprint import group_fingerprint
-from clinicalc.coefficients.schema import Derivation, WorkedExample
+from clinicalc.coefficients.schema import Derivation, Population, WorkedExample
 from clinicalc.coefficients.spans import span_of
 from clinicalc.operations.folding import fold
 from clinicalc.operations.inspection_equations import equation_sections
@@ -78,7 +78,7 @@ def _sections(model: Model) -> Iterator[tuple[str, list[str]]]:
     yield from equation_sections(model)
     yield "Decision points", [f"{percent(p.probability)} {p.label} ({p.source})" for p in content.decision_points]
     yield f"Worked examples, recomputed now ({count_examples(model)})", list(_examples(model))
-    yield "Population described", _population(model)
+    yield from _populations(model)
     yield "Documentation", [f"{entry.item}: {entry.text}" for entry in content.documentation]
 
 
@@ -119,10 +119,17 @@ def _origin(example: WorkedExample) -> str:
     return "from memory" if example.from_memory is True else "printed"
 
 
-def _population(model: Model) -> list[str]:
-    population = model.content.population
-    if population is None:
-        return []
+def _populations(model: Model) -> Iterator[tuple[str, list[str]]]:
+    """The people described for the whole model, then those described for single equations."""
+    general = model.content.population
+    own = {e.id: e.population for e in model.content.equations if not isinstance(e.population, UnsetType)}
+    if general is not None or not own:
+        yield "Population described", [] if general is None else _population(general)
+    for id, population in own.items():
+        yield f"Population described for equation {id}", _population(population)
+
+
+def _population(population: Population) -> list[str]:
     lines = [population.source]
     for number in population.numbers:
         scale = "" if isinstance(number.log, UnsetType) else "natural logarithm of "

@@ -14,6 +14,7 @@ from clinicalc.coefficients.schema import (
     Interval,
     NoBand,
     PrintedInterval,
+    ReconstructedBand,
     Step,
     Term,
 )
@@ -127,7 +128,10 @@ def _uncertainty(equation: Equation) -> Iterator[str]:
     if isinstance(band, NoBand):
         yield f"no band: {band.because}"
         return
-    yield f"band: {band.__struct_config__.tag}"
+    approximate = isinstance(band, ReconstructedBand)
+    yield f"band: {band.__struct_config__.tag}{': approximate, rebuilt from printed intervals' if approximate else ''}"
+    if isinstance(band, ReconstructedBand) and not isinstance(band.assumptions, UnsetType):
+        yield from (f"    assumption: {assumption}" for assumption in band.assumptions)
     if isinstance(band, DrawsBand):
         yield f"    {len(band.coefficients)} draws"
         return

@@ -6,8 +6,8 @@ from msgspec import UnsetType
 
 from clinicalc.assessment.fields import NumberField, QuestionField
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numerals import plain_range
-from clinicalc.coefficients.schema import Limits, NumberPredictor, Predictor
+from clinicalc.assessment.numerals import NARROW_SPACE, plain_range
+from clinicalc.coefficients.schema import Limits, NumberPredictor, Predictor, WithinPerson
 
 
 def field_sections(model: Model) -> Iterator[tuple[str, list[str]]]:
@@ -68,7 +68,7 @@ def _remarks(predictor: Predictor) -> Iterator[str]:
         for word, flag in (
             ("may be modified", predictor.modifiable),
             ("a treatment", predictor.treatment),
-            ("may be left unmeasured (this version asks for it all the same)", predictor.may_be_missing),
+            ("may be left not measured", predictor.may_be_missing),
         )
         if flag is True
     ]
@@ -78,5 +78,17 @@ def _remarks(predictor: Predictor) -> Iterator[str]:
         yield f"LOINC {', '.join(predictor.loinc)}"
     if isinstance(predictor, NumberPredictor) and not isinstance(predictor.within_person, UnsetType):
         within = predictor.within_person
-        size = f"SD {within.sd:g} {predictor.unit}" if not isinstance(within.sd, UnsetType) else f"CV {within.cv:g}"
-        yield f"varies within a person: {size} ({within.source})"
+        yield f"varies within a person: {_variation(within, predictor.unit)} ({within.source})"
+
+
+def _variation(within: WithinPerson, code: str) -> str:
+    """The whole variation, and the part of it among readings of one visit."""
+    whole = _size(within.sd, within.cv, code)
+    part = _size(within.within_visit_sd, within.within_visit_cv, code)
+    return f"{whole}, of which among readings of one visit {part}" if part else whole
+
+
+def _size(sd: float | UnsetType, cv: float | UnsetType, code: str) -> str:
+    if not isinstance(sd, UnsetType):
+        return f"SD {sd:g}" if code == "1" else f"SD {sd:g} {code}"
+    return "" if isinstance(cv, UnsetType) else f"CV {100 * cv:g}{NARROW_SPACE}%"

@@ -9,8 +9,13 @@ from datetime import datetime, timedelta, timezone
 from clinicalc.assessment.result import Assessment
 from clinicalc.errors import PrintRefused
 from clinicalc.operations.old_print import OldPrint, read_pages
+from clinicalc.report.compose_beside import REBUILT_BELOW
+from clinicalc.report.matching_age_words import MATCHING_AGE_MEANING
 from clinicalc.report.paper import Paper
+from clinicalc.report.parts import PrintParts
 from clinicalc.report.phrases import NO_LABEL, NOT_VETTED, day_words
+from clinicalc.report.phrases_comparison import NO_PROMISE
+from clinicalc.report.shares_figure import SHARES_MEANING
 
 _MONTHS = {day_words(datetime(2000, month, 1)).split()[1]: month for month in range(1, 13)}
 _ASSESSED = (
@@ -22,6 +27,7 @@ _PRINTED = re.compile(rf"Printed \d{{1,2}} (?:{'|'.join(_MONTHS)}) \d{{4}}, \d\d
 _PROGRAM = re.compile(r"clinicalc \d[\w.+]*")
 """The version in the foot: another one that lays out the same pages is no deviation."""
 _FOR_PATIENT = "For the patient, page"
+_NO_SHARES = "No shares:"
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,14 +43,14 @@ def compare_pages(old: OldPrint, now: Assessment) -> tuple[PageFault, ...]:
     """Every page of the print whose text is not that of the assessment's own print; then a wrong number of pages.
 
     What the record does not hold is taken from the print as it stands: practice name, patient label, the times of
-    assessment and printing, the paper, and whether the print ends with a patient's page.
+    assessment and printing, the paper, and which parts were chosen.
     """
-    patient_page = bool(old.pages) and _FOR_PATIENT in old.pages[-1]
+    parts = _parts(old)
     moment = _assessed(old) or now.at
     attempts: list[tuple[PageFault, ...]] = []
     for label in _labels(old, now):
         try:
-            pages = _lay_out(old, replace(now, label=label, at=moment), patient_page)
+            pages = _lay_out(old, replace(now, label=label, at=moment), parts)
         except PrintRefused as error:
             attempts.append((PageFault("The pages", "cannot be laid out again", error.what),))
             continue
@@ -52,13 +58,27 @@ def compare_pages(old: OldPrint, now: Assessment) -> tuple[PageFault, ...]:
     return min(attempts, key=len)
 
 
-def _lay_out(old: OldPrint, assessment: Assessment, patient_page: bool) -> tuple[str, ...]:
+def _parts(old: OldPrint) -> PrintParts:
+    """What the print has beside its number: each part by the words that stand in no print without it."""
+    text = _letters(old.text)
+
+    def stands(words: str) -> bool:
+        return _letters(words) in text
+
+    return PrintParts(
+        patient_page=bool(old.pages) and _FOR_PATIENT in old.pages[-1],
+        comparison=stands(NO_PROMISE),
+        shares=stands(SHARES_MEANING) or stands(_NO_SHARES),
+        matching_age=stands(MATCHING_AGE_MEANING),
+        assumptions=stands(REBUILT_BELOW),
+    )
+
+
+def _lay_out(old: OldPrint, assessment: Assessment, parts: PrintParts) -> tuple[str, ...]:
     from clinicalc.report.pdf import make_report  # the layout of pages is loaded by the first print
 
     paper = Paper.LETTER if abs(old.width - Paper.LETTER.width) < 1 else Paper.A4
-    pdf = make_report(
-        assessment, practice=old.practice, printed_at=old.made or assessment.at, patient_page=patient_page, paper=paper
-    )
+    pdf = make_report(assessment, practice=old.practice, printed_at=old.made or assessment.at, parts=parts, paper=paper)
     return read_pages(pdf)
 
 

@@ -10,68 +10,13 @@ from pathlib import Path
 import msgspec
 
 from clinicalc.errors import ClinicalcError
+from clinicalc.operations.old_record import Record
 from clinicalc.report.attachment import read_attached_record
 
 _ANNOTATED = "\n[something was put on this page]"
 
 LARGEST = 32_000_000
 """Bytes. A print of this program has less than a hundredth of that."""
-
-
-class RecordedModel(msgspec.Struct, frozen=True):
-    """Which model a record says it was made with."""
-
-    id: str
-    version: str
-    title: str
-    fingerprint: str
-
-
-class RecordedBand(msgspec.Struct, frozen=True):
-    """The band of a record, probabilities 0 to 1."""
-
-    level: float
-    lower: float
-    upper: float
-    basis: str
-
-
-class RecordedValue(msgspec.Struct, frozen=True):
-    """One value, typed or worked out (`typed` is None then), and what was used for it in the file's unit."""
-
-    id: str
-    value: float | str | None
-    unit: str | None
-    typed: str | None = None
-    dated: str | None = None
-
-
-class RecordedFinding(msgspec.Struct, frozen=True):
-    """One finding."""
-
-    grade: str
-    code: str
-    field: str | None
-    message: str
-
-
-class Record(msgspec.Struct, frozen=True):
-    """An assessment as its record holds it (`assessment.record`)."""
-
-    model: RecordedModel
-    years: float | None
-    level: float
-    probability: float | None
-    complement: float | None
-    eta: float | None
-    band: RecordedBand | None
-    band_absent_because: str | None
-    recalibration: str | None
-    values: tuple[RecordedValue, ...]
-    derived: tuple[RecordedValue, ...]
-    findings: tuple[RecordedFinding, ...]
-    time: float | None = None
-    unit: str | None = None
 
 
 @dataclass(frozen=True, slots=True)

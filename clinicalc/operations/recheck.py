@@ -3,45 +3,38 @@
 import re
 from collections import Counter
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from datetime import datetime
 
 import msgspec
+from msgspec import UNSET, UnsetType
 
 from clinicalc.assessment.choices import LEVELS
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numerals import MINUS, percent, percent_range
+from clinicalc.assessment.numerals import percent, percent_range
 from clinicalc.assessment.record import record_of
 from clinicalc.assessment.result import Assessment, Estimate
+from clinicalc.assessment.shown_figures import shown_band, shown_probability
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.coefficients.spans import YEAR, Span
 from clinicalc.errors import ClinicalcError
 from clinicalc.operations.bedside import assess_patient
+from clinicalc.operations.differences import NOTHING, Difference, is_same, unless_same, words_for
 from clinicalc.operations.old_pages import compare_pages
-from clinicalc.operations.old_print import OldPrint, Record, RecordedBand, RecordedFinding, RecordedValue
+from clinicalc.operations.old_print import OldPrint
+from clinicalc.operations.old_record import Record, RecordedBand, RecordedFinding, RecordedValue
+from clinicalc.operations.recheck_beside import (
+    asks_for_matching_age,
+    changes_of,
+    compare_beside,
+    practice_points_of,
+)
+from clinicalc.report.on_the_ruler import stated_points
 from clinicalc.report.phrases import moment_words, zone_words
 from clinicalc.units.quoting import visible
 
-TOLERANCE = 1e-12
-"""How far two numbers may lie apart and count as the same, times the larger one where that exceeds 1."""
-
-_NOTHING = "nothing"
 _LONGEST_FINDING = 400
-
-
-@dataclass(frozen=True, slots=True)
-class Difference:
-    """One thing that is not as it was: what, as the print has it, as the model gives it now; one side may be ""."""
-
-    what: str
-    old: str
-    new: str
-
-    @property
-    def sentence(self) -> str:
-        """The difference in one line."""
-        return f"{self.what}: {' → '.join(side for side in (self.old, self.new) if side)}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,10 +53,11 @@ class Recheck:
 
 
 def recheck(old: OldPrint, model: Model) -> Recheck:
-    """The print worked out again with `model`: its values as typed, its horizon, recalibration and level.
+    """The print worked out again with `model`: its values as typed, its horizon, recalibration and level, its changes,
 
-    Findings about dates are judged as of the time at which the print was made. Raises ClinicalcError where the record
-    asks for a level of which no band can be made; never for anything else that stands in it.
+    the practice's decision points of the time, and the matching age where it was asked for. Findings about dates are
+    judged as of the time at which the print was made. Raises ClinicalcError where the record asks for a level of which
+    no band can be made, or holds a decision point that cannot be one; never for anything else that stands in it.
     """
     record = old.record
     if not LEVELS[0] <= record.level <= LEVELS[1]:
@@ -74,13 +68,16 @@ def recheck(old: OldPrint, model: Model) -> Recheck:
             do="Give the PDF as this program saved it.",
         )
     typed = {value.id: value.typed for value in (*record.values, *record.derived) if value.typed}
+    span = _span_of(record)
     now = assess_patient(
         model,
-        entry_from_texts(typed),
-        span=_span_of(record),
+        replace(entry_from_texts(typed), changes=changes_of(record)),
+        span=span,
         recalibration=record.recalibration,
         level=record.level,
         at=old.made,
+        practice_points=practice_points_of(record, span, old.name),
+        matching_age=asks_for_matching_age(record),
     )
     fresh = msgspec.convert(record_of(now), Record)
     same_model = record.model.fingerprint == fresh.model.fingerprint
@@ -104,8 +101,13 @@ def report_recheck(found: Recheck) -> tuple[str, ...]:
         lines.append("This file gives no number for the values in the record.")
     else:
         within = "" if now.span is None else f" within {now.span.words}"
-        lines.append(f"Worked out now: {percent(now.estimate.probability, now.estimate.complement)}{within}.")
+        lines.append(f"Worked out now: {shown_probability(now)}{within}.")
     lines += [f"Differs: {difference.sentence}" for difference in found.differences]
+    if record.spread is UNSET and found.differences:
+        lines.append(
+            "An earlier version of the program made this print and said less beside the number. Findings and lines that"
+            " this version adds count as differences; compare number, band and values."
+        )
     lines.append(
         "The text of every page was compared with the same print laid out again by this version of the program; another"
         " version may have worded or parted its pages differently."
@@ -147,29 +149,34 @@ def _span_of(record: Record) -> Span | None:
 
 def _compare(old: Record, new: Record, labels: Mapping[str, str]) -> Iterator[Difference]:
     """Everything in which two records differ, in the order in which a print tells it."""
-    if not _same(old.probability, new.probability):
+    if not is_same(old.probability, new.probability):
         yield Difference("Probability", _probability_words(old), _probability_words(new))
-    yield from _unless_same("Probability of no event", old.complement, new.complement)
-    yield from _unless_same("Linear predictor", old.eta, new.eta)
+    yield from unless_same("Probability of no event", old.complement, new.complement)
+    yield from unless_same("Linear predictor", old.eta, new.eta)
     yield from _compare_bands(old.band, new.band)
-    yield from _unless_same("Reason for no band", old.band_absent_because, new.band_absent_because)
-    yield from _unless_same("Horizon", _span_words(old), _span_words(new))
-    yield from _unless_same("Recalibration", old.recalibration, new.recalibration)
+    yield from unless_same("Reason for no band", old.band_absent_because, new.band_absent_because)
+    yield from unless_same("Horizon", _span_words(old), _span_words(new))
+    yield from unless_same("Recalibration", old.recalibration, new.recalibration)
     yield from _compare_values((*old.values, *old.derived), (*new.values, *new.derived), labels)
+    yield from compare_beside(old, new)
     yield from _compare_findings(old.findings, new.findings)
     if old.model.fingerprint == new.model.fingerprint:  # another file has other names, which is no news
         for part in ("id", "version", "title"):
-            yield from _unless_same(f"Model’s {part}", getattr(old.model, part), getattr(new.model, part))
+            yield from unless_same(f"Model’s {part}", getattr(old.model, part), getattr(new.model, part))
 
 
 def _compare_bands(old: RecordedBand | None, new: RecordedBand | None) -> Iterator[Difference]:
     if old is None or new is None:
-        yield from _unless_same("Band", _band_words(old), _band_words(new))
+        yield from unless_same("Band", _band_words(old), _band_words(new))
         return
-    yield from _unless_same("Level of the band", old.level, new.level)
-    yield from _unless_same("Lower end of the band", old.lower, new.lower)
-    yield from _unless_same("Upper end of the band", old.upper, new.upper)
-    yield from _unless_same("Basis of the band", old.basis, new.basis)
+    yield from unless_same("Level of the band", old.level, new.level)
+    yield from unless_same("Lower end of the band", old.lower, new.lower)
+    yield from unless_same("Upper end of the band", old.upper, new.upper)
+    yield from unless_same("Basis of the band", old.basis, new.basis)
+    if not isinstance(old.assumptions, UnsetType) and old.assumptions != new.assumptions:
+        yield Difference(
+            "What the band assumes", *("; ".join(map(visible, b.assumptions or ())) or NOTHING for b in (old, new))
+        )
 
 
 def _compare_values(
@@ -184,10 +191,10 @@ def _compare_values(
         if one is None or other is None:
             yield Difference(name, _value_words(one), _value_words(other))
             continue
-        yield from _unless_same(f"{name}, as typed", one.typed, other.typed)
-        if not _same(one.value, other.value) or one.unit != other.unit:
+        yield from unless_same(f"{name}, as typed", one.typed, other.typed)
+        if not is_same(one.value, other.value) or one.unit != other.unit:
             yield Difference(f"{name}, as used", _used_words(one), _used_words(other))
-        yield from _unless_same(f"{name}, date", one.dated, other.dated)
+        yield from unless_same(f"{name}, date", one.dated, other.dated)
 
 
 def _compare_findings(old: tuple[RecordedFinding, ...], new: tuple[RecordedFinding, ...]) -> Iterator[Difference]:
@@ -208,17 +215,20 @@ def _compare_pages(old: OldPrint, now: Assessment) -> Iterator[Difference]:
     if now.estimate is not None:
         yield from _absent_from_pages(old, now, now.estimate)
     for fault in compare_pages(old, now):
-        yield Difference(fault.page, visible(fault.old) or _NOTHING, visible(fault.new) or _NOTHING)
+        yield Difference(fault.page, visible(fault.old) or NOTHING, visible(fault.new) or NOTHING)
 
 
 def _absent_from_pages(old: OldPrint, now: Assessment, estimate: Estimate) -> Iterator[Difference]:
     """The figures that stand on no page at all, by name."""
     expected = {
-        "The probability on the pages": percent(estimate.probability, estimate.complement),
+        "The probability on the pages": shown_probability(now),
         "The fingerprint on the pages": group_fingerprint(now.model.fingerprint),
     }
     if estimate.band is not None:
-        expected["The band on the pages"] = percent_range(estimate.band.lower, estimate.band.upper)
+        expected["The band on the pages"] = shown_band(now)
+    if estimate.spread is not None and old.record.spread is not UNSET:
+        ends = estimate.spread.lower, estimate.spread.upper
+        expected["The re-measurement spread on the pages"] = percent_range(*ends, stated_points(estimate))
     expected |= {
         f"{line.label} on the pages": line.shown for line in now.values if line.number is not None and line.typed
     }
@@ -233,30 +243,12 @@ def _stands_in(words: str, text: str) -> bool:
     return re.search(rf"(?<![\d.,]){letters}(?!\d)", text) is not None
 
 
-def _unless_same(what: str, old: object, new: object) -> Iterator[Difference]:
-    if not _same(old, new):
-        yield Difference(what, _words(old), _words(new))
-
-
-def _same(old: object, new: object) -> bool:
-    if isinstance(old, float) and isinstance(new, float):
-        return abs(old - new) <= TOLERANCE * max(1.0, abs(old), abs(new))
-    return old == new
-
-
-def _words(thing: object) -> str:
-    if isinstance(thing, float):
-        # every digit, so that what differs is seen to differ
-        return repr(thing).removesuffix(".0").replace("-", MINUS)
-    return _NOTHING if thing is None or thing == "" else visible(str(thing))
-
-
 def _probability_words(record: Record) -> str:
     probability = record.probability
     if probability is None:
         return "no number"
     shown = percent(probability) if 0 <= probability <= 1 else "no probability"
-    return f"{shown} ({_words(probability)})"
+    return f"{shown} ({words_for(probability)})"
 
 
 def _span_words(record: Record) -> str:
@@ -265,16 +257,16 @@ def _span_words(record: Record) -> str:
 
 
 def _band_words(band: RecordedBand | None) -> str:
-    return "no band" if band is None else f"{_words(band.lower)} to {_words(band.upper)}"
+    return "no band" if band is None else f"{words_for(band.lower)} to {words_for(band.upper)}"
 
 
 def _used_words(value: RecordedValue) -> str:
     unit = "" if value.unit in (None, "1") else f" {visible(value.unit or '')}"
-    return f"{_words(value.value)}{unit}"
+    return f"{words_for(value.value)}{unit}"
 
 
 def _value_words(value: RecordedValue | None) -> str:
-    return _NOTHING if value is None else visible(value.typed or "") or f"{_used_words(value)} (worked out)"
+    return NOTHING if value is None else visible(value.typed or "") or f"{_used_words(value)} (worked out)"
 
 
 def _finding_words(finding: RecordedFinding) -> str:

@@ -1,15 +1,25 @@
 """The assessment as plain text: for the command line, and for copying."""
 
 from clinicalc.assessment.findings import Finding, FindingCode
-from clinicalc.assessment.numerals import percent, percent_range
 from clinicalc.assessment.result import Assessment, ValueLine
+from clinicalc.assessment.shown_figures import shown_band, shown_probability
 from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.operations.beside_lines import (
+    comparison_lines,
+    decision_lines,
+    matching_age_lines,
+    share_lines,
+    spread_lines,
+)
 from clinicalc.operations.folding import fold
 from clinicalc.report import phrases
 
 
-def summarise(assessment: Assessment) -> str:
-    """The whole assessment in reading order, ending in a newline."""
+def summarise(assessment: Assessment, *, with_shares: bool = False) -> str:
+    """The whole assessment in reading order, ending in a newline; shares only where asked for.
+
+    What a rebuilt band assumes is not listed: the band's line says where it is.
+    """
     model = assessment.model
     blocks = [
         [
@@ -18,21 +28,15 @@ def summarise(assessment: Assessment) -> str:
         ],
         [f"{phrases.NOT_VETTED}."],
         number_lines(assessment),
+        decision_lines(assessment),
+        comparison_lines(assessment),
+        share_lines(assessment) if with_shares else [],
+        matching_age_lines(assessment),
         finding_lines(assessment.findings),
         _values(assessment.values),
     ]
     folded = ([part for line in block for part in fold(line)] for block in blocks if block)
     return "\n\n".join("\n".join(lines) for lines in folded) + "\n"
-
-
-def people_sentence(assessment: Assessment) -> str:
-    """The probability as a count of people with these values; "" where there is no number."""
-    estimate, span = assessment.estimate, assessment.span
-    if estimate is None or span is None:
-        return ""
-    equation = next(e for e in assessment.model.equations if e.content.id == assessment.equation)
-    censored = equation.content.competing_events.handled == "censored"
-    return phrases.people_sentence(estimate.probability, span.words, others_censored=censored)
 
 
 def band_sentence(assessment: Assessment) -> str:
@@ -42,7 +46,7 @@ def band_sentence(assessment: Assessment) -> str:
         return ""
     if estimate.band is None:
         return f"No band: {estimate.band_absent_because}"
-    return f"{phrases.level_words(estimate.band.level)} band {percent_range(estimate.band.lower, estimate.band.upper)}."
+    return f"{phrases.level_words(estimate.band.level)} band {shown_band(assessment)}."
 
 
 def recalibration_label(assessment: Assessment) -> str:
@@ -66,20 +70,21 @@ def progress_sentence(assessment: Assessment) -> str:
 
 
 def number_lines(assessment: Assessment) -> list[str]:
-    """Outcome, number at its horizon, people, recalibration and band; or why there is no number."""
+    """Outcome, number at its horizon, people, recalibration, band and spread; or why there is no number."""
     estimate, span = assessment.estimate, assessment.span
     outcome = assessment.model.content.outcome
     within = "" if span is None else f" within {span.words}"
     if estimate is None:
         return [outcome, f"No number. {progress_sentence(assessment)}"]
-    lines = [outcome, f"{percent(estimate.probability, estimate.complement)}{within}", people_sentence(assessment)]
+    lines = [outcome, f"{shown_probability(assessment)}{within}", phrases.say_people(assessment)]
     label = recalibration_label(assessment)
     if label:
         lines.append(f"Recalibration: {label}.")
     lines.append(band_sentence(assessment))
     if estimate.band is not None:
-        lines.append(phrases.BAND_MEANING)
-    return lines
+        approximate = f" {phrases.basis_words(estimate.band)}" if estimate.band.basis == "reconstructed" else ""
+        lines.append(f"{phrases.band_meaning(estimate)}{approximate}")
+    return [*lines, *spread_lines(assessment)]
 
 
 def finding_lines(findings: tuple[Finding, ...]) -> list[str]:
@@ -87,7 +92,7 @@ def finding_lines(findings: tuple[Finding, ...]) -> list[str]:
     # what is still to be typed does not matter for a patient whom the model does not answer for
     excluded = any(finding.code is FindingCode.EXCLUDED for finding in findings)
     shown = [f for f in findings if not (excluded and f.code is FindingCode.MISSING)]
-    return [f"{finding.grade.value.capitalize()}: {finding.message}" for finding in shown]
+    return [phrases.say_finding(finding) for finding in shown]
 
 
 def _values(values: tuple[ValueLine, ...]) -> list[str]:
@@ -97,6 +102,8 @@ def _values(values: tuple[ValueLine, ...]) -> list[str]:
     for line in rows:
         shown = line.shown or f"{line.used} (worked out)"
         used = f"  used as {line.used}" if line.shown and line.used and line.used != line.shown else ""
+        mean = f"  {line.averaged.words}" if line.averaged else ""
         dated = f"  of {line.dated.isoformat()}" if line.dated else ""
-        lines.append(f"{line.label} {shown}" if line.exclusion else f"{line.label:<{width}}  {shown}{used}{dated}")
+        after = f"{mean}{used}{dated}"
+        lines.append(f"{line.label} {shown}" if line.exclusion else f"{line.label:<{width}}  {shown}{after}")
     return lines

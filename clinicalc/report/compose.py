@@ -7,32 +7,34 @@ from msgspec import UnsetType
 from clinicalc import __version__
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import FindingCode
-from clinicalc.assessment.numerals import join_words, percent
-from clinicalc.assessment.result import Assessment, Estimate, ValueLine
+from clinicalc.assessment.numerals import join_words
+from clinicalc.assessment.result import Assessment, ValueLine
+from clinicalc.assessment.shown_figures import shown_probability
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.coefficients.schema import Recalibration
 from clinicalc.report import phrases
+from clinicalc.report.compose_beside import compose_further, compose_ruler
 from clinicalc.report.contents import (
     Fact,
     FactList,
     Furniture,
+    Pair,
     Prose,
     Remark,
     RemarkList,
     Result,
-    RulerPart,
     Section,
     Sheet,
     SignatureLine,
 )
-from clinicalc.report.measured import Interval, Measured
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.report.patient import compose_patient
 from clinicalc.report.value_table import NOT_GIVEN, compose_values, mark
 
 _SIGNATURE = SignatureLine(("Practitioner’s signature", "Name", "Date"))
 
 
-def compose(assessment: Assessment, *, practice: str, printed_at: datetime, patient_page: bool = True) -> Sheet:
+def compose(assessment: Assessment, *, practice: str, printed_at: datetime, parts: PrintParts = USUAL_PARTS) -> Sheet:
     """The whole print of one assessment; a patient's page is made only where there is a number."""
     label = assessment.label.strip() or phrases.NO_LABEL
     zone = phrases.zone_words(assessment.at)
@@ -43,15 +45,15 @@ def compose(assessment: Assessment, *, practice: str, printed_at: datetime, pati
         person=_person(assessment),
         assessed=f"assessed {phrases.moment_words(assessment.at)}{f' {zone}' if zone else ''}",
         result=_result(assessment),
-        ruler=_ruler(assessment),
+        ruler=compose_ruler(assessment, parts),
         facts=FactList(tuple(_result_facts(assessment)), key=True),
         sections=(
             _findings(assessment),
             compose_values(assessment),
-            _model(assessment),
-            Section("Before you rely on it", (Prose(phrases.STANDING_CAUTIONS), _SIGNATURE), whole=True),
+            Pair(_model(assessment), Section("Before you rely on it", (Prose(phrases.STANDING_CAUTIONS), _SIGNATURE))),
         ),
-        patient=compose_patient(assessment) if patient_page else None,
+        further=compose_further(assessment, parts),
+        patient=compose_patient(assessment) if parts.patient_page else None,
     )
 
 
@@ -61,7 +63,8 @@ def _furniture(assessment: Assessment, label: str, practice: str, printed_at: da
         practice=practice,
         label=label,
         strip=phrases.NOT_VETTED,
-        notes=(f"Fingerprint {group_fingerprint(fingerprint)}", phrases.FIRST_PAGE_CAUTION),
+        fingerprint_note=f"Fingerprint {group_fingerprint(fingerprint)}",
+        caution=phrases.FIRST_PAGE_CAUTION,
         model=f"{content.title} {content.version}",
         fingerprint=group_fingerprint(fingerprint, 3),
         program=f"clinicalc {__version__}",
@@ -103,34 +106,14 @@ def _result(assessment: Assessment) -> Result:
         sentences = (phrases.NO_NUMBER, f"{join_words(reasons)}.")
         return Result("No number", None, outcome, "", sentences, vetted=False)
     short, detail = phrases.outcome_words(outcome)
-    sentence = phrases.people_sentence(
-        estimate.probability, span.words, others_censored=phrases.handles_by_censoring(assessment)
-    )
-    figure = percent(estimate.probability, estimate.complement)
-    return Result(figure, estimate.probability, f"{short} within {span.words}", detail, (sentence,), vetted=False)
-
-
-def _ruler(assessment: Assessment) -> RulerPart | None:
-    """The ruler of a number; none without one, so that nothing beside a stop looks like a number."""
-    estimate, span = assessment.estimate, assessment.span
-    if estimate is None or span is None:
-        return None
-    equation = next(e for e in assessment.model.equations if e.content.id == assessment.equation)
-    band = estimate.band
-    measured = Measured(
-        equation.line_at(span).link,
+    return Result(
+        shown_probability(assessment),
         estimate.probability,
-        estimate.complement,
-        band=None if band is None else Interval(band.lower, band.upper),
-        level=assessment.level if band is None else band.level,
+        f"{short} within {span.words}",
+        detail,
+        (phrases.say_people(assessment),),
+        vetted=False,
     )
-    return RulerPart(measured, f"% within {span.words}", _band_notes(estimate))
-
-
-def _band_notes(estimate: Estimate) -> tuple[str, ...]:
-    if estimate.band is None:
-        return (f"No band: {estimate.band_absent_because}",)
-    return (f"{phrases.BAND_MEANING} {phrases.basis_words(estimate.band)}",)
 
 
 def _result_facts(assessment: Assessment) -> list[Fact]:
@@ -159,14 +142,11 @@ def _findings(assessment: Assessment) -> Section:
 
 
 def _model(assessment: Assessment) -> Section:
+    """What stands nowhere else on the page: title, version, fingerprint and vetting are in its foot and its strip."""
     content, chosen = assessment.model.content, _chosen_recalibration(assessment)
     use, source = content.use, content.source
     doi = () if isinstance(source.doi, UnsetType) else (f"DOI {source.doi}",)
     facts = [
-        Fact("Title and version", (f"{content.title}, version {content.version}",), strong=True),
-        Fact("Fingerprint", (group_fingerprint(assessment.model.fingerprint),)),
-        Fact("Vetting", (phrases.NOT_VETTED,), strong=True),
-        Fact("Outcome", (content.outcome,)),
         Fact("Recalibration", ("none",) if chosen is None else (chosen.label, chosen.source)),
         Fact("Source" if source.kind == "published" else "Source (local)", (source.citation, *doi)),
         Fact("Made for", (use.population, use.setting)),
@@ -175,7 +155,7 @@ def _model(assessment: Assessment) -> Section:
         # beside a number they stand among the findings
         *(() if _says_model_cautions(assessment) else (Fact("Its own cautions", use.cautions or ("none stated",)),)),
     ]
-    return Section("The model", (FactList(tuple(facts)),), whole=True, off_first=True)
+    return Section("The model", (FactList(tuple(facts)),))
 
 
 def _says_model_cautions(assessment: Assessment) -> bool:

@@ -1,9 +1,12 @@
 """What stands on a print, before anything is measured: frozen nouns of text, and the figures that are drawn from."""
 
 from dataclasses import dataclass
+from enum import Enum, auto
 
+from clinicalc.report.comparison_figure import Compared
 from clinicalc.report.measured import Measured
 from clinicalc.report.range_line import RangeOfValues
+from clinicalc.report.shares_figure import Walk
 
 
 @dataclass(frozen=True, slots=True)
@@ -95,7 +98,18 @@ class RangeCell:
     inside: bool
 
 
+NOTHING = "–"
+"""In the place of a value as used, where what was typed could not be used."""
+
 Cell = str | TypedCell | MarksCell | RangeCell
+
+
+class RowKind(Enum):
+    """What a row of values holds: a whole question about an exclusion, a measured value, or one of a few answers."""
+
+    QUESTION = auto()
+    NUMBER = auto()
+    ANSWER = auto()
 
 
 @dataclass(frozen=True, slots=True)
@@ -103,6 +117,7 @@ class Row:
     """One line of a table; as many cells as the table has columns."""
 
     cells: tuple[Cell, ...]
+    kind: RowKind = RowKind.NUMBER
 
 
 @dataclass(frozen=True, slots=True)
@@ -121,6 +136,8 @@ class Table:
 
     columns: tuple[Column, ...]
     rows: tuple[Row, ...]
+    kinds_apart: bool = False
+    """Whether, as long as it is short, measured values and answers stand side by side under the questions."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -137,7 +154,21 @@ class SignatureLine:
     captions: tuple[str, ...]
 
 
-Block = FactList | RemarkList | Table | Prose | SignatureLine
+@dataclass(frozen=True, slots=True)
+class SharesPart:
+    """Shares as a walk."""
+
+    walk: Walk
+
+
+@dataclass(frozen=True, slots=True)
+class ComparisonPart:
+    """A comparison with numbers."""
+
+    compared: Compared
+
+
+Block = FactList | RemarkList | Table | Prose | SignatureLine | SharesPart | ComparisonPart
 
 
 @dataclass(frozen=True, slots=True)
@@ -148,8 +179,14 @@ class Section:
     blocks: tuple[Block, ...]
     whole: bool = False
     """Whether it is held together, unless it is too long for that."""
-    off_first: bool = False
-    """Whether it never stands on the first page."""
+
+
+@dataclass(frozen=True, slots=True)
+class Pair:
+    """Two sections in small type side by side; below each other where that would be too high."""
+
+    left: Section
+    right: Section
 
 
 @dataclass(frozen=True, slots=True)
@@ -160,8 +197,10 @@ class Furniture:
     label: str
     strip: str
     """The words of the strip over the sheet, "" for none."""
-    notes: tuple[str, ...]
-    """What stands over the foot of the first page."""
+    fingerprint_note: str
+    """Over the foot of the first page: the whole fingerprint."""
+    caution: str
+    """There as well, where what is said before the signature stands on a later page."""
     model: str
     fingerprint: str
     program: str
@@ -195,7 +234,10 @@ class PatientSheet:
 
 @dataclass(frozen=True, slots=True)
 class Sheet:
-    """A whole print; the patient's page is the last one, where there is one."""
+    """A whole print; the patient's page is the last one, where there is one.
+
+    `further` stands before the last of the sections where one page holds everything, else on pages after them.
+    """
 
     title: str
     furniture: Furniture
@@ -205,5 +247,6 @@ class Sheet:
     result: Result
     ruler: RulerPart | None
     facts: FactList
-    sections: tuple[Section, ...]
+    sections: tuple[Section | Pair, ...]
+    further: tuple[Section, ...] = ()
     patient: PatientSheet | None = None

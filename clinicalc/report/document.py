@@ -4,13 +4,15 @@ import os
 from collections.abc import Iterator
 from dataclasses import dataclass, fields, is_dataclass
 from datetime import UTC, datetime
+from functools import cache
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.errors import PrintRefused, UsageError
 from clinicalc.report.compose import compose
-from clinicalc.report.fonts import Lettering, check_text, read_lettering
+from clinicalc.report.fonts import Lettering, check_text, check_texts, read_lettering
 from clinicalc.report.pages import Page, lay_out
 from clinicalc.report.paper import Paper
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 
 LONGEST_NAME = 120
 """Characters of a patient label or a practice name; more would push the result off its page."""
@@ -33,7 +35,7 @@ def make_document(
     *,
     practice: str = "",
     printed_at: datetime | None = None,
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
 ) -> Document:
     """The pages of an assessment; the last one is for the patient, where it is wanted and there is a number.
@@ -46,9 +48,8 @@ def make_document(
     _check_name(lettering, practice.strip(), "The practice name")
     now = time_of_printing()  # asked for in any case: the PDF library reads the same variable
     moment = printed_at or now
-    sheet = compose(assessment, practice=practice, printed_at=moment, patient_page=patient_page)
-    for text in _texts(sheet):
-        check_text(lettering, text, f"A text on the print, from {assessment.model.name} or as typed,")
+    sheet = compose(assessment, practice=practice, printed_at=moment, parts=parts)
+    check_texts(lettering, tuple(_texts(sheet)), f"A text on the print, from {assessment.model.name} or as typed,")
     return Document(
         pages=lay_out(lettering, sheet, paper),
         lettering=lettering,
@@ -91,6 +92,13 @@ def _texts(node: object) -> Iterator[str]:
     elif isinstance(node, tuple):
         for part in node:
             yield from _texts(part)
-    elif is_dataclass(node):
-        for field in fields(node):
-            yield from _texts(getattr(node, field.name))
+    else:
+        kind: type = type(node)
+        for name in _field_names(kind):
+            yield from _texts(getattr(node, name))
+
+
+@cache
+def _field_names(kind: type) -> tuple[str, ...]:
+    """The fields of a noun; () for anything else."""
+    return tuple(field.name for field in fields(kind)) if is_dataclass(kind) else ()

@@ -2,8 +2,9 @@
 
 import re
 import unicodedata
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Collection, Iterator, Mapping
 from dataclasses import dataclass
+from functools import cache
 
 from clinicalc.errors import PrintRefused
 from clinicalc.report.outlines import Box
@@ -71,9 +72,21 @@ class Lettering:
 
     def wrap(self, text: str, width: float, size: float, weight: Weight = Weight.REGULAR) -> tuple[str, ...]:
         """The text in lines no wider than `width` points; a word wider than a line is broken anywhere."""
+        composed = unicodedata.normalize("NFC", text)
+        if self.width(composed, size, weight) <= width:
+            return (composed,)
+        first = self.first[weight]
+        if first.has(composed):
+            lines = _broken(first, composed, 1000.0 * width / size)
+            if lines:
+                return lines
+        return self._wrap_by_lines(composed, width, size, weight)
+
+    def _wrap_by_lines(self, text: str, width: float, size: float, weight: Weight) -> tuple[str, ...]:
+        """Each line measured whole, since its letters may come from two typefaces; words wider than a line broken."""
         lines: list[str] = []
         line = ""
-        for place, word in enumerate(unicodedata.normalize("NFC", text).split(" ")):
+        for place, word in enumerate(text.split(" ")):
             longer = word if place == 0 else f"{line} {word}"
             if self.width(longer, size, weight) <= width:
                 line = longer
@@ -124,6 +137,25 @@ class Lettering:
         return max(fits, 1)
 
 
+def _broken(font: Font, text: str, width: float) -> tuple[str, ...]:
+    """The text in lines no wider than `width`, in thousandths of the type size; () where a word is wider than that."""
+    space = font.advances[ord(" ")]
+    lines: list[str] = []
+    line: list[str] = []
+    reach = 0.0
+    for word in text.split(" "):
+        wide = font.width(word)
+        if wide > width:
+            return ()
+        if line and reach + space + wide > width:
+            lines.append(" ".join(line).rstrip(" "))
+            line, reach = [word], wide
+            continue
+        reach += (space if line else 0.0) + wide
+        line.append(word)
+    return (*lines, " ".join(line))
+
+
 def _composed(font: Font, letter: str, accents: str) -> Iterator[Piece]:
     """A letter and its accents; the spaces after them lead from each to the next and back to the letter's end."""
     wide, under = font.advances[ord(letter)], font.boxes.get(ord(letter), _NO_INK)
@@ -171,6 +203,17 @@ def check_text(lettering: Lettering, text: str, what: str) -> None:
                 raise _refused(text, what, character)
 
 
+def check_texts(lettering: Lettering, texts: Collection[str], what: str) -> None:
+    """Raises PrintRefused as `check_text` does for each; their letters are looked at once, all texts together."""
+    letters = frozenset(unicodedata.normalize("NFC", " ".join(texts)))
+    codes = set(map(ord, letters))
+    if all(font.advances.keys() >= codes for font in lettering.first.values()) and not any(map(_is_hidden, letters)):
+        return
+    for text in texts:
+        check_text(lettering, text, what)
+
+
+@cache
 def _is_hidden(character: str) -> bool:
     return unicodedata.category(character) in _DISGUISING
 

@@ -1,11 +1,11 @@
 """From strips to pages of paper: where a page ends, and what stands at its head and foot."""
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from clinicalc.report.contents import Furniture, Sheet
 from clinicalc.report.fonts import Lettering
-from clinicalc.report.headpiece import set_sheet
+from clinicalc.report.headpiece import CLOSE, STYLES, USUAL, set_further, set_sheet
 from clinicalc.report.paper import Paper
 from clinicalc.report.patient_page import set_patient
 from clinicalc.report.shapes import Anchor, Line, Rect, Shape, Text, Tone, hatch, move
@@ -14,14 +14,14 @@ from clinicalc.report.strips import CAPTION, SEMIBOLD, SMALL, WIDTH, Strip, Styl
 PAGE_WIDTH, PAGE_HEIGHT = Paper.A4.width, Paper.A4.height
 MARGIN = (PAGE_WIDTH - WIDTH) / 2
 """15 mm at the sides of A4."""
-TOP, BOTTOM = 36.0, 34.0
+TOP, BOTTOM = 32.0, 31.0
 """From the edge of the paper to the head and to the end of the foot."""
 HEAD_STYLE = Style(BASE_HEAD := 10.5, SEMIBOLD)
 FOOT_STYLE, FOOT_SOFT = Style(SMALL, SEMIBOLD), CAPTION
 SIDE = 150.0
 """Points kept free for the short text at the right of head and foot."""
 STRIP_HEIGHT = 19.0
-_WHITE_OVER_FOOT = 8.0
+_WHITE_OVER_FOOT = 6.0
 _FOR_CLINICIAN, _FOR_PATIENT = "For the clinician", "For the patient"
 
 
@@ -64,38 +64,64 @@ def lay_out(lettering: Lettering, sheet: Sheet, paper: Paper = Paper.A4) -> tupl
 def _parts(lettering: Lettering, sheet: Sheet, paper: Paper) -> Iterator[_Part]:
     """The pages without their heads, which count all of them."""
     furniture = sheet.furniture
-    first, later = _foot(lettering, furniture, furniture.notes), _foot(lettering, furniture)
+    alone = _foot(lettering, furniture, (furniture.fingerprint_note,))
+    first = _foot(lettering, furniture, (furniture.fingerprint_note, furniture.caution))
+    later = _foot(lettering, furniture)
     practice = furniture.practice or "no practice name"
     below = paper.height - BOTTOM - _WHITE_OVER_FOOT
 
     def room(name: str, foot: tuple[tuple[Shape, ...], float]) -> float:
         return below - foot[1] - _head(lettering, name, "", furniture.strip)[1]
 
-    rooms = room(practice, first), room(furniture.label, later)
-    for place, strips in enumerate(break_pages(set_sheet(lettering, sheet), rooms)):
-        name, foot = (furniture.label, later) if place else (practice, first)
-        yield _Part(_FOR_CLINICIAN, name, strips, foot)
+    free = room(furniture.label, later)
+    whole, rest = _set_on_one(lettering, sheet, room(practice, alone))
+    if whole:
+        yield _Part(_FOR_CLINICIAN, practice, whole, alone)
+        followed: list[list[Strip]] = list(break_pages(rest, (free, free)))
+    else:
+        rooms = room(practice, first), free
+        styles = (list(break_pages([*set_sheet(lettering, sheet, style), *rest], rooms)) for style in (USUAL, CLOSE))
+        opening, *followed = min(styles, key=len)
+        yield _Part(_FOR_CLINICIAN, practice, opening, first)
+    for strips in followed:
+        yield _Part(_FOR_CLINICIAN, furniture.label, strips, later)
     if sheet.patient is not None:
         free = room(practice, later)
         for strips in break_pages(set_patient(lettering, sheet.patient, free), (free, free)):
             yield _Part(_FOR_PATIENT, practice, strips, later)
 
 
+def _set_on_one(lettering: Lettering, sheet: Sheet, room: float) -> tuple[list[Strip], list[Strip]]:
+    """What stands for the clinician on the one page, and what on further pages; the first is [] where it is too much.
+
+    Everything together, set closer where it has to be; else all but the further sections, with white where there is
+    room.
+    """
+    rest = set_further(lettering, sheet)
+    for with_further in (True, False) if rest else (False,):
+        for style in STYLES:
+            strips = set_sheet(lettering, sheet, style, with_further=with_further)
+            spare = room - height_of(strips)
+            if spare >= 0:
+                part = min(1.0, spare / max(sum(strip.grows for strip in strips), 0.1))
+                grown = [replace(s, height=s.height + part * s.grows) if s.grows else s for s in strips]
+                return grown, [] if with_further else rest
+    return [], rest
+
+
 def break_pages(strips: Sequence[Strip], rooms: tuple[float, float]) -> Iterator[list[Strip]]:
     """The strips page by page; `rooms` are the heights of the first page and of every later one, in points."""
     page: list[Strip] = []
     room, later = rooms
-    first = True
     for group in _groups(strips):
         height = height_of(group)
-        goes_over = height_of(page) + height > room and height <= later  # whole
-        if page and (goes_over or (first and group[0].off_first)):
+        if page and height_of(page) + height > room and height <= later:  # it goes over whole
             yield page
-            page, room, first = list(group[0].head), later, False
+            page, room = list(group[0].head), later
         for strip in group:  # a group higher than a page is parted where the page ends
             if page and height_of(page) + strip.height > room:
                 yield page
-                page, room, first = list(strip.head), later, False
+                page, room = list(strip.head), later
             if page or strip.shapes:  # no white at the top of a page
                 page.append(strip)
     if page:
@@ -125,7 +151,7 @@ def _head(lettering: Lettering, name: str, side: str, strip: str) -> tuple[list[
     if not strip:
         return shapes, y + 4
     shapes += _strip(lettering, strip, y)
-    return shapes, y + STRIP_HEIGHT + 10
+    return shapes, y + STRIP_HEIGHT + 7
 
 
 def _strip(lettering: Lettering, words: str, y: float) -> list[Shape]:
@@ -135,8 +161,8 @@ def _strip(lettering: Lettering, words: str, y: float) -> list[Shape]:
     left = (WIDTH - wide) / 2
     baseline = y + (STRIP_HEIGHT + 0.66 * style.size) / 2
     return [
-        *hatch(0, y, WIDTH, STRIP_HEIGHT),
-        Rect(left, y, wide, STRIP_HEIGHT, fill=Tone.SHEET),
+        *hatch(0, y, left, STRIP_HEIGHT),
+        *hatch(left + wide, y, WIDTH - left - wide, STRIP_HEIGHT),
         Rect(0, y, WIDTH, STRIP_HEIGHT, outline=Tone.HATCH, line=0.6),
         Text(left + 10, baseline, words, style.size, style.weight),
     ]

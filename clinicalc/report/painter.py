@@ -1,19 +1,19 @@
 """Paints shapes into a PDF: the only place that talks to the PDF library's canvas about drawing.
 
 Lines, boxes, dots and outlines are written as operators of the page (ISO 32000-1, 8.5), each colour and line width only
-where it changes; texts go through the library, which keeps the fonts.
+where it changes; `letterer` writes the texts.
 """
 
 from collections.abc import Iterable, Iterator, Sequence
-from functools import cache
+from functools import cache, lru_cache
 from itertools import groupby
 from typing import Any, assert_never
 
 from clinicalc.report.fonts import Lettering
+from clinicalc.report.letterer import Letterer
 from clinicalc.report.pages import Page
 from clinicalc.report.palette import PAPER
-from clinicalc.report.shapes import Anchor, Dot, Line, Poly, Rect, Shape, Text, Tone
-from clinicalc.report.typefaces import make_known
+from clinicalc.report.shapes import Dot, Line, Poly, Rect, Shape, Text, Tone
 
 _ROUND = 0.5522847498
 """How far the handles of a curve stand from its ends so that four of them make a circle, in radii: 4/3 (√2 - 1)."""
@@ -21,42 +21,46 @@ _ROUND = 0.5522847498
 
 def paint_pages(canvas: Any, lettering: Lettering, pages: Sequence[Page]) -> None:
     """Every page, in order, shapes in the order in which they are to be read."""
+    letterer = Letterer(canvas._doc, lettering)
     for page in pages:
         canvas.setPageSize((page.width, page.height))
-        paint_shapes(canvas, lettering, page.shapes, page.height)
+        _paint_all(canvas, letterer, page.shapes, page.height)
         canvas.showPage()
 
 
 def paint_shapes(canvas: Any, lettering: Lettering, shapes: Iterable[Shape], height: float) -> None:
     """Shapes measured in points from the top left corner of a page that is `height` points high."""
+    _paint_all(canvas, Letterer(canvas._doc, lettering), shapes, height)
+
+
+def _paint_all(canvas: Any, letterer: Letterer, shapes: Iterable[Shape], height: float) -> None:
     inks = _Inks(canvas)
+    letterer.begin_page()
     for style, run in groupby(shapes, key=_style):
         if style is not None:
-            _stroke(canvas, inks, list(run), height)
+            _paint_alike(canvas, inks, list(run), height)
             continue
         for shape in run:
             match shape:
                 case Text():
-                    _write(canvas, inks, lettering, shape, height)
+                    inks.fill(shape.tone)
+                    canvas.addLiteral(letterer.write(shape, height))
                 case Rect():
                     _paint(canvas, inks, shape, _box(shape, height))
-                case Dot():
-                    _paint(canvas, inks, shape, _circle(shape, height))
                 case Poly():
                     _paint(canvas, inks, shape, _corners(shape, height))
-                case Line():
-                    _stroke(canvas, inks, [shape], height)
+                case Line() | Dot():
+                    _paint_alike(canvas, inks, [shape], height)
                 case _:
                     assert_never(shape)
 
 
 class _Inks:
-    """The colours, the line width and the font that the page has now."""
+    """The colours and the line width that the page has now."""
 
     def __init__(self, canvas: Any) -> None:
         self._canvas = canvas
         self._now: dict[str, str] = {}
-        self.font: tuple[str, float] | None = None
 
     def fill(self, tone: Tone) -> None:
         """Areas and letters in this ink from here on."""
@@ -73,9 +77,19 @@ class _Inks:
             self._canvas.addLiteral(f"{operands} {operator}")
 
 
-def _style(shape: Shape) -> tuple[Tone, float, float] | None:
-    """What lines have in common that are painted in one go; None for anything else."""
-    return (shape.tone, shape.width, shape.dash) if isinstance(shape, Line) else None
+def _style(shape: Shape) -> tuple[object, ...] | None:
+    """What lines or dots have in common that are painted in one go; None for anything else."""
+    if isinstance(shape, Line):
+        return shape.tone, shape.width, shape.dash
+    return (shape.radius, shape.fill, shape.outline, shape.line) if isinstance(shape, Dot) else None
+
+
+def _paint_alike(canvas: Any, inks: _Inks, shapes: Sequence[Shape], height: float) -> None:
+    """Lines or dots of one style."""
+    if isinstance(shapes[0], Line):
+        _stroke(canvas, inks, shapes, height)
+    elif isinstance(shapes[0], Dot):
+        _dot(canvas, inks, shapes[0], [shape for shape in shapes if isinstance(shape, Dot)], height)
 
 
 def _stroke(canvas: Any, inks: _Inks, lines: Sequence[Shape], height: float) -> None:
@@ -92,12 +106,22 @@ def _stroke(canvas: Any, inks: _Inks, lines: Sequence[Shape], height: float) -> 
 
 def _paint(canvas: Any, inks: _Inks, shape: Rect | Dot | Poly, path: str) -> None:
     """Fills the path, strokes it, or both."""
+    _ink(inks, shape)
+    canvas.addLiteral(f"{path} {_operator(shape)}")
+
+
+def _ink(inks: _Inks, shape: Rect | Dot | Poly) -> None:
+    """The colours and the line width of a shape from here on."""
     if shape.fill is not None:
         inks.fill(shape.fill)
     if shape.outline is not None:
         inks.stroke(shape.outline, shape.line)
+
+
+def _operator(shape: Rect | Dot | Poly) -> str:
+    """What is done with the path of a shape."""
     operators = {(True, True): "B", (True, False): "f", (False, True): "S", (False, False): "n"}
-    canvas.addLiteral(f"{path} {operators[shape.fill is not None, shape.outline is not None]}")
+    return operators[shape.fill is not None, shape.outline is not None]
 
 
 def _box(rect: Rect, height: float) -> str:
@@ -114,9 +138,22 @@ def _box(rect: Rect, height: float) -> str:
     return _rounded(corners, radius)
 
 
-def _circle(dot: Dot, height: float) -> str:
-    x, y = dot.x, height - dot.y
-    return _rounded(((x, y, 0, -1), (x, y, 1, 0), (x, y, 0, 1), (x, y, -1, 0)), dot.radius)
+def _dot(canvas: Any, inks: _Inks, like: Dot, dots: Sequence[Dot], height: float) -> None:
+    """Circles of one style: the same path again and again, its origin moved from each to the next."""
+    _ink(inks, like)
+    path = f"{_circle(like.radius)} {_operator(like)}"
+    parts, x, y = ["q"], 0.0, 0.0
+    for dot in dots:
+        to_x, to_y = round(dot.x, 3), round(height - dot.y, 3)  # so that what is cut off does not add up
+        parts.append(f"1 0 0 1 {to_x - x:.3f} {to_y - y:.3f} cm {path}")
+        x, y = to_x, to_y
+    canvas.addLiteral(" ".join([*parts, "Q"]))
+
+
+@lru_cache(maxsize=16)
+def _circle(radius: float) -> str:
+    """A circle round the origin."""
+    return _rounded(((0.0, 0.0, 0, -1), (0.0, 0.0, 1, 0), (0.0, 0.0, 0, 1), (0.0, 0.0, -1, 0)), radius)
 
 
 def _rounded(corners: Iterable[tuple[float, float, int, int]], radius: float) -> str:
@@ -139,37 +176,6 @@ def _quarters(corners: Iterable[tuple[float, float, int, int]], radius: float) -
 def _corners(poly: Poly, height: float) -> str:
     strokes = (f"{x:.3f} {height - y:.3f} {'l' if place else 'm'}" for place, (x, y) in enumerate(poly.points))
     return " ".join(strokes) + (" h" if poly.fill is not None else "")
-
-
-def _write(canvas: Any, inks: _Inks, lettering: Lettering, text: Text, height: float) -> None:
-    """One text object for the whole line, so that it is read back as one; accents set over their letters."""
-    pieces = list(lettering.pieces(text.text, text.weight))
-    if not pieces:
-        return
-    for name in {piece.font.name for piece in pieces}:
-        make_known(name)
-    inks.fill(text.tone)
-    font = pieces[0].font
-    if inks.font != (font.name, text.size):
-        canvas.setFont(font.name, text.size * font.scale)
-        inks.font = (font.name, text.size)
-    left = text.x if text.anchor is Anchor.START else text.left(lettering.width(text.text, text.size, text.weight))
-    written = canvas.beginText(left, height - text.y)
-    space = rise = 0.0
-    for piece in pieces:
-        if piece.font is not font:
-            written.setFont(piece.font.name, text.size * piece.font.scale)
-        if piece.space != space:
-            written.setCharSpace(piece.space * text.size / 1000.0)
-        if piece.rise != rise:
-            written.setRise(piece.rise * text.size / 1000.0)
-        font, space, rise = piece.font, piece.space, piece.rise
-        written.textOut(piece.text)
-    if space:
-        written.setCharSpace(0)  # both would hold for the next text
-    if rise:
-        written.setRise(0)
-    canvas.drawText(written)
 
 
 @cache

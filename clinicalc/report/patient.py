@@ -5,11 +5,13 @@ from collections.abc import Iterator
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.numerals import of_people
-from clinicalc.assessment.result import Assessment, Band
+from clinicalc.assessment.result import Assessment, Estimate
 from clinicalc.report.contents import Count, PatientSheet, Prose, Section
 from clinicalc.report.phrases import handles_by_censoring
 
+_ROUGHLY = " That room is itself only roughly known."
 _UNKNOWN_PRECISION = "The source does not say how precisely this is known."
+_MEASURED_AGAIN = "Measured again, the number would differ somewhat."
 _AGREED = "What we agreed"
 _OTHERS_CENSORED = (
     "The people are counted as if nobody died of anything else first. Where that is likely, fewer people will have it."
@@ -21,12 +23,21 @@ _PLAIN = {
     FindingCode.NEAR_CUT: "{label} lies close to a limit: a slightly different value would give another number.",
     FindingCode.OUT_OF_DATE: "{label} was measured some time ago; measured today it may give another number.",
     FindingCode.GROUP: "For {label} the number was made for others and may not fit you well.",
+    FindingCode.NOT_MEASURED: "{label} is not known. What is usual for people like you stands in its place.",
     FindingCode.UNCONFIRMED: "Some figures behind the number have not been checked against where they come from.",
 }
 """A caution in plain words, by what it is about. What the file itself cautions is said in its own plain words."""
 _OTHER_CAUTION = "There is something more to know about this number. Ask about it."
-_SILENT = frozenset({FindingCode.MODEL, FindingCode.OUTSIDE_DERIVATION, FindingCode.COMPETING_EVENTS})
-"""Said in other words: by the file, by the direction in which the value lies, by the sentence about other deaths."""
+_SILENT = frozenset(
+    {
+        FindingCode.MODEL,
+        FindingCode.OUTSIDE_DERIVATION,
+        FindingCode.COMPETING_EVENTS,
+        FindingCode.DECISION_POINT,
+    }
+)
+"""Said in other words: by the file, by the direction in which the value lies, by the sentence about other deaths; or
+nothing for this page, as a decision point."""
 
 
 def compose_patient(assessment: Assessment) -> PatientSheet | None:
@@ -42,16 +53,22 @@ def compose_patient(assessment: Assessment) -> PatientSheet | None:
         title=f"Your chance of {outcome}",
         lines=(*((f"That is: {detail}",) if detail else ()), _when(span.words, label)),
         probability=probability,
-        opening=f"Of {whole} people with these values{', about' if count is not None else ''}:",
+        opening=_opening(estimate, whole, counted=count is not None),
         counts=(Count(having, f"will have {outcome}"), Count(not_having, f"will not, within {span.words}")),
         note=_note(count, whole, probability),
         sections=(
-            Section("How sure is this?", (Prose((_how_sure(estimate.band, whole),)),), whole=True),
+            Section("How sure is this?", (Prose((_how_sure(estimate, whole),)),), whole=True),
             Section("What it does not say", (Prose(tuple(_not_said(assessment, having, count))),), whole=True),
         ),
         agreed=_AGREED,
         vetted=False,
     )
+
+
+def _opening(estimate: Estimate, whole: int, *, counted: bool) -> str:
+    """Whom the dots stand for: with a value not measured, people who have in common only what is known."""
+    values = "these values" if estimate.not_measured is None else "the values that are known"
+    return f"Of {whole} people with {values}{', about' if counted else ''}:"
 
 
 def _parted(outcome: str) -> tuple[str, str]:
@@ -82,14 +99,16 @@ def _note(count: int | None, whole: int, probability: float) -> str:
     return f"The ring in the {where} place stands for fewer than 1 who will {few} it. {nobody}"
 
 
-def _how_sure(band: Band | None, whole: int) -> str:
+def _how_sure(estimate: Estimate, whole: int) -> str:
+    band, spread = estimate.band, estimate.spread
     if band is None:
-        return _UNKNOWN_PRECISION
+        moves = spread is not None and spread.link_sd > 0.0
+        return f"{_UNKNOWN_PRECISION} {_MEASURED_AGAIN}" if moves else _UNKNOWN_PRECISION
     low, high = (_bound(limit, whole) for limit in (band.lower, band.upper))
     room = low if low == high else f"{low} to {high}"
     return (
         "The number comes from what happened to other people in the past. How well that is known leaves room for"
-        f" {room} of {whole}. Measuring again would move it too."
+        f" {room} of {whole}.{_ROUGHLY if band.basis == 'reconstructed' else ''} Measuring again would move it too."
     )
 
 

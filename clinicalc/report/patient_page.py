@@ -12,11 +12,15 @@ from clinicalc.report.typeset import SectionStyle, set_heading, set_section
 
 @dataclass(frozen=True, slots=True)
 class _Measures:
-    """One size of the page: width of a large dot, size of the text, distance of the lines to write on, in points."""
+    """One size of the page: width of a large dot, size of the text, distance of the lines to write on, in points.
+
+    `fewest` is how many lines to write on there have to be.
+    """
 
     dot: float
     text: float
     pitch: float
+    fewest: int = 3
 
     @property
     def plain(self) -> Style:
@@ -34,12 +38,17 @@ class _Measures:
         return SectionStyle(heading=13.0, text=self.plain, above=self.text, after=0.3 * self.text)
 
 
-_SIZES = (_Measures(21.0, 13.5, 28.0), _Measures(18.0, 13.5, 27.0), _Measures(14.5, 12.75, 26.0))
+_SIZES = (
+    _Measures(21.0, 13.5, 28.0),
+    _Measures(18.0, 13.5, 27.0),
+    _Measures(14.5, 12.75, 26.0),
+    _Measures(12.5, 12.75, 25.0, fewest=2),
+)
 _TITLE = Style(20.0, SEMIBOLD)
 _COUNT, _COUNT_IN_WORDS = 40.0, 18.0
 _DOTS_ACROSS, _GAP, _WORDS_LEFT = 13.0, 26.0, 62.0
 """How wide the dots are in widths of one; the white after them; where the words beside a count begin."""
-_FEWEST_LINES, _MOST_LINES = 3, 7
+_MOST_LINES = 7
 
 
 def set_patient(lettering: Lettering, sheet: PatientSheet, room: float) -> list[Strip]:
@@ -97,7 +106,7 @@ def _agreed(lettering: Lettering, heading: str, room: float, measures: _Measures
     """Ruled lines to write on, as many as the page has room for, held together with their heading."""
     above = set_heading(lettering, heading, measures.sections)
     count = int((room - height_of(above)) // measures.pitch)
-    if count < _FEWEST_LINES:
+    if count < measures.fewest:
         count = _MOST_LINES  # they go over to a page of their own
     at = measures.pitch - 1
     ruled = Strip(measures.pitch, (Line(0, at, WIDTH, at, 0.75, Tone.EDGE),))

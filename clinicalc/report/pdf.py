@@ -16,6 +16,7 @@ from clinicalc.report.attachment import attach_record
 from clinicalc.report.document import Document, make_document
 from clinicalc.report.painter import paint_pages
 from clinicalc.report.paper import Paper
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.report.typefaces import Weight, make_known
 
 _PDF_BEGINS = b"%PDF-"
@@ -34,18 +35,16 @@ def make_report(
     *,
     practice: str = "",
     printed_at: datetime | None = None,
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
 ) -> bytes:
-    """The PDF (1.7) of an assessment, its record attached; `patient_page` adds a page in plain words at its end.
+    """The PDF (1.7) of an assessment, its record attached; `parts` says which parts it has.
 
     `printed_at` stands in the foot and in the file's dates; left out, it is the time in SOURCE_DATE_EPOCH (seconds) or
     else now. The same assessment, practice, time and choices give the same bytes. Raises PrintRefused for a text that
     could only be shown wrongly.
     """
-    document = make_document(
-        assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=paper
-    )
+    document = make_document(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper)
     return _write_pdf(document, write_record(assessment))
 
 
@@ -55,7 +54,7 @@ def save_report(
     *,
     practice: str = "",
     printed_at: datetime | None = None,
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
 ) -> None:
     """Writes the PDF to `path`, whole or not at all; an older file stays untouched until the new one is complete.
@@ -65,7 +64,7 @@ def save_report(
     Raises FileNotWritten when the place cannot be written, when the name does not end in .pdf, and when anything but a
     PDF stands there already (a folder, a device, a link, a file of another kind); PrintRefused as `make_report` does.
     """
-    content = make_report(assessment, practice=practice, printed_at=printed_at, patient_page=patient_page, paper=paper)
+    content = make_report(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper)
     try:
         fault = _judge_target(path)
         if fault:

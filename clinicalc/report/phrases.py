@@ -2,8 +2,10 @@
 
 from datetime import datetime
 
+from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.numerals import NARROW_SPACE, of_people
-from clinicalc.assessment.result import Assessment, Band
+from clinicalc.assessment.result import Assessment, Band, Estimate
+from clinicalc.coefficients.schema import ModelContent, ReconstructedBand
 
 NOT_VETTED = "Not vetted: for trying out, not for a patient"
 
@@ -19,13 +21,14 @@ NO_NUMBER = (
     " estimate."
 )
 
+OPEN_VALUES_IN_BAND = "What was not measured is in it."
+
 STANDING_CAUTIONS = (
     "For qualified clinicians only. The number supports their judgement and never takes its place. It is not for"
     " emergencies.",
     "Local rules, current guidance and licensed practice come first. The program advises nothing, makes no diagnosis"
     " and claims no approval by any authority.",
-    "The practice answers for the coefficient file it chose and for the values it typed. Check the values above"
-    " against the patient’s notes before relying on the number.",
+    "The practice answers for the file it chose and the values it typed. Check them against the patient’s notes first.",
 )
 
 FIRST_PAGE_CAUTION = (
@@ -35,9 +38,11 @@ FIRST_PAGE_CAUTION = (
 _BASES = {
     "covariance": "From the model’s own covariance of its coefficients.",
     "robust": "From a robust covariance of the model’s coefficients.",
-    "reconstructed": "Approximate: the covariance was rebuilt from printed intervals.",
+    "reconstructed": "Approximate, rebuilt from printed intervals: clinicalc inspect lists what was assumed.",
     "draws": "From the model’s bootstrap draws.",
 }
+_REBUILT = "Approximate, rebuilt from printed intervals."
+"""Where a list of what was assumed stands beside it."""
 
 # not from the locale: a print reads the same everywhere
 _MONTHS = (
@@ -56,6 +61,12 @@ _MONTHS = (
 )
 
 
+def band_meaning(estimate: Estimate | None) -> str:
+    """What the band says and does not say; with values not measured, that it holds those too."""
+    open_values = estimate is not None and estimate.not_measured is not None
+    return f"{BAND_MEANING} {OPEN_VALUES_IN_BAND}" if open_values else BAND_MEANING
+
+
 def level_words(level: float) -> str:
     """A confidence level as a percentage: "95 %"."""
     return f"{100 * level:g}{NARROW_SPACE}%"
@@ -64,6 +75,12 @@ def level_words(level: float) -> str:
 def basis_words(band: Band) -> str:
     """What the band was made from."""
     return _BASES[band.basis]
+
+
+def rebuilt_words(model: ModelContent) -> str:
+    """What is said beside the bands of a model of which any is rebuilt and so approximate; "" where none is."""
+    rebuilt = any(isinstance(equation.uncertainty, ReconstructedBand) for equation in model.equations)
+    return _REBUILT if rebuilt else ""
 
 
 def outcome_words(outcome: str) -> tuple[str, str]:
@@ -78,12 +95,15 @@ def handles_by_censoring(assessment: Assessment) -> bool:
     return any(e.id == assessment.equation and e.competing_events.handled == "censored" for e in equations)
 
 
-def people_sentence(probability: float, span: str, *, others_censored: bool) -> str:
-    """The probability in people; says so where the fit left other causes of death out of account."""
+def people_sentence(probability: float, span: str, *, others_censored: bool, some_unknown: bool = False) -> str:
+    """The probability in people; says so where the fit left other causes of death out of account.
+
+    With `some_unknown` a value was not measured, and the people have in common only what is known.
+    """
     count, whole = of_people(probability)
     condition = ", if no other cause of death came first" if others_censored else ""
     within = f"within {span}"
-    opening = f"Of {whole} people with these values,"
+    opening = f"Of {whole} people with {'the values that are known' if some_unknown else 'these values'},"
     if count is not None:
         has = "has" if count == 1 else "have"
         rest = whole - count
@@ -94,6 +114,24 @@ def people_sentence(probability: float, span: str, *, others_censored: bool) -> 
     if probability < 0.5:
         return f"{opening} fewer than 1 has the event {within}{condition}."
     return f"{opening} all but fewer than 1 have the event {within}{condition}."
+
+
+def say_people(assessment: Assessment) -> str:
+    """The number of an assessment in people, as `people_sentence` words it; "" where there is no number."""
+    estimate, span = assessment.estimate, assessment.span
+    if estimate is None or span is None:
+        return ""
+    return people_sentence(
+        estimate.probability,
+        span.words,
+        others_censored=handles_by_censoring(assessment),
+        some_unknown=estimate.not_measured is not None,
+    )
+
+
+def say_finding(finding: Finding) -> str:
+    """A finding after its grade: "Caution: …"."""
+    return f"{finding.grade.value.capitalize()}: {finding.message}"
 
 
 def day_words(moment: datetime) -> str:

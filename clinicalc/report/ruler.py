@@ -1,10 +1,10 @@
-"""The ruler: where this patient's number lies, with its band, the re-measurement spread and the decision point.
+"""The ruler: where this patient's number lies, with its band, the re-measurement spread and the decision points.
 
 Everything measured has its own form, lane and name. Nothing is filled from the left end, and the ticks are visibly
 uneven: a place on the ruler is no proportion.
 """
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -12,8 +12,10 @@ from clinicalc.report.measured import (
     DecisionPoint,
     Interval,
     Lane,
+    LaneRow,
     LaneWords,
     Measured,
+    lane_rows,
     lane_words,
     places,
     ruler_sentence,
@@ -63,21 +65,23 @@ class Ruler:
 def draw_ruler(measured: Measured, size: RulerSize, measure: Measure, lanes: tuple[Lane, ...] = (Lane.BAND,)) -> Ruler:
     """The ruler with these lanes, whether or not there is something to draw in them, so that nothing moves.
 
-    The figure's `baseline` is that of the figures under the axis.
+    Each of the decision points nearest to the number, up to three, has a lane of its own. The figure's `baseline` is
+    that of the figures under the axis.
     """
+    rows = lane_rows(lanes, measured)
     known = measured.probability is not None
     scale = choose_scale(measured.link, size.width, *places(measured), left=size.overhang)
     top = _HEAD * size.part
-    axis = top + _body_height(size, lanes)
+    axis = top + _body_height(size, len(rows))
     baseline = axis + 1.3 * size.text
-    middles = {lane: top + size.lane * (place + 0.5) + 0.5 * size.part for place, lane in enumerate(lanes)}
+    middles = {row: top + size.lane * (place + 0.5) + 0.5 * size.part for place, row in enumerate(rows)}
     shapes = [
-        *_body(scale, top, axis, size, known=known),
+        *draw_body(scale, top, axis, size, wash=known, faint=not known),
         *_lanes(scale, measured, middles, axis, size, measure),
         *_hairline(scale, measured.probability, top, axis, size),
-        *_under_the_axis(scale, baseline, size, measure),
+        *draw_axis_figures(scale, baseline, size, measure),
     ]
-    words_beside = tuple(lane_words(lane, measured, middles[lane] + 5.0 * size.part) for lane in lanes)
+    words_beside = tuple(lane_words(row, measured, middle + 5.0 * size.part) for row, middle in middles.items())
     figure = Figure(
         width=size.width + 2 * size.overhang,
         height=baseline + (1.6 if scale.wide else 0.3) * size.text,
@@ -90,24 +94,27 @@ def draw_ruler(measured: Measured, size: RulerSize, measure: Measure, lanes: tup
 
 
 def _lanes(
-    scale: Scale, measured: Measured, middles: Mapping[Lane, float], axis: float, size: RulerSize, measure: Measure
+    scale: Scale, measured: Measured, middles: Mapping[LaneRow, float], axis: float, size: RulerSize, measure: Measure
 ) -> Iterator[Shape]:
-    """What stands in each lane; without a number only the decision point, which is not about the patient."""
+    """What stands in each lane; without a number only the decision points, which are not about the patient."""
     known = measured.probability is not None
-    for lane, middle in middles.items():
-        match lane:
+    lines = [] if measured.probability is None else [measured.probability]
+    for row, middle in middles.items():
+        match row.lane:
             case Lane.BAND if known and measured.band is not None:
-                yield from _band(scale, measured.band, middle, size)
+                yield from draw_band(scale, measured.band, middle, size)
             case Lane.SPREAD if known and measured.spread is not None:
                 yield from _spread(scale, measured.spread, middle, size)
-            case Lane.DECISION if measured.decision is not None:
-                yield from _decision(scale, measured, measured.decision, middle, axis, size, measure)
+            case Lane.DECISION if row.decision is not None:
+                plate = Tone.WASH if known else Tone.SHEET
+                yield from _decision(scale, row.decision, lines, middle, axis, plate, size, measure)
+                lines.append(row.decision.probability)
             case _:
                 pass
 
 
 @lru_cache(maxsize=16)
-def _under_the_axis(scale: Scale, baseline: float, size: RulerSize, measure: Measure) -> tuple[Text, ...]:
+def draw_axis_figures(scale: Scale, baseline: float, size: RulerSize, measure: Measure) -> tuple[Text, ...]:
     """The figures of the axis, and a line that says so where the scale is the wide one."""
     labels = scale.labels(measure, size.text)
     figures = [Text(at.x, baseline, at.text, size.text, tone=Tone.SOFT, anchor=Anchor.MIDDLE) for at in labels]
@@ -117,33 +124,35 @@ def _under_the_axis(scale: Scale, baseline: float, size: RulerSize, measure: Mea
     return tuple(figures)
 
 
-def _body_height(size: RulerSize, lanes: tuple[Lane, ...]) -> float:
+def _body_height(size: RulerSize, lanes: int) -> float:
     """All lanes, and below them what the ticks need."""
-    return size.lane * len(lanes) + 8.0 * size.part
+    return size.lane * lanes + 8.0 * size.part
 
 
 @lru_cache(maxsize=16)
-def _body(scale: Scale, top: float, axis: float, size: RulerSize, *, known: bool) -> tuple[Shape, ...]:
-    """Wash, grid, ticks and the axis; without a number no wash and fainter ticks. The same few at every keystroke."""
+def draw_body(
+    scale: Scale, top: float, axis: float, size: RulerSize, *, wash: bool = False, faint: bool = False
+) -> tuple[Shape, ...]:
+    """Wash if asked for, grid, ticks and axis, fainter where there is no number. The same few at every keystroke."""
     start, end = scale.left, scale.left + scale.width
     ticks = scale.ticks()
-    shapes: list[Shape] = [Rect(start, top, scale.width, axis - top, fill=Tone.WASH)] if known else []
+    shapes: list[Shape] = [Rect(start, top, scale.width, axis - top, fill=Tone.WASH)] if wash else []
     shapes += [Line(at.x, top, at.x, axis, size.line, Tone.RULE) for at in ticks if at.size is TickSize.MAJOR]
     for tick in ticks:
-        tone = Tone.INK if known and tick.size is not TickSize.MINOR else Tone.EDGE
+        tone = Tone.EDGE if faint or tick.size is TickSize.MINOR else Tone.INK
         shapes.append(Line(tick.x, axis - _TICK_HEIGHTS[tick.size] * size.part, tick.x, axis, size.line, tone))
-    shapes.append(Line(start, axis, end, axis, size.line, Tone.INK if known else Tone.EDGE))
+    shapes.append(Line(start, axis, end, axis, size.line, Tone.EDGE if faint else Tone.INK))
     return tuple(shapes)
 
 
-def _band(scale: Scale, band: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:
+def draw_band(scale: Scale, band: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:
     """A filled bar, closed by strong ends because its tint is faint; a pointer where it goes on beyond the scale."""
     left, right = scale.position(band.lower), scale.position(band.upper)
     top, height = middle - 8.0 * size.part, 16.0 * size.part
     yield Rect(left, top, right - left, height, fill=Tone.TINT)
     for x in (left, right):
         yield Line(x, top, x, top + height, 2 * size.line, Tone.ACCENT)
-    yield from _beyond(scale, band, middle, Tone.ACCENT, size)
+    yield from draw_beyond(scale, band, middle, Tone.ACCENT, size)
 
 
 def _spread(scale: Scale, spread: Interval, middle: float, size: RulerSize) -> Iterator[Shape]:
@@ -152,10 +161,10 @@ def _spread(scale: Scale, spread: Interval, middle: float, size: RulerSize) -> I
     yield Line(left, middle, right, middle, 2 * size.line, Tone.INK)
     for x in (left, right):
         yield Line(x, middle - 6.0 * size.part, x, middle + 6.0 * size.part, 2 * size.line, Tone.INK)
-    yield from _beyond(scale, spread, middle, Tone.INK, size)
+    yield from draw_beyond(scale, spread, middle, Tone.INK, size)
 
 
-def _beyond(scale: Scale, interval: Interval, middle: float, tone: Tone, size: RulerSize) -> Iterator[Shape]:
+def draw_beyond(scale: Scale, interval: Interval, middle: float, tone: Tone, size: RulerSize) -> Iterator[Shape]:
     """Pointers outside of the body at the ends that an interval goes beyond."""
     if scale.side(interval.lower) < 0:
         yield pointer(scale.left - 9.0 * size.part, middle, -6.0 * size.part, tone)
@@ -165,14 +174,15 @@ def _beyond(scale: Scale, interval: Interval, middle: float, tone: Tone, size: R
 
 def _decision(
     scale: Scale,
-    measured: Measured,
     point: DecisionPoint,
+    lines: Sequence[float],
     middle: float,
     axis: float,
+    plate: Tone,
     size: RulerSize,
     measure: Measure,
 ) -> Iterator[Shape]:
-    """A dashed line from its lane down to the axis, its source on the side where the hairline is not.
+    """A dashed line from its lane down to the axis, its name where none of the other `lines` goes through it.
 
     Beyond the scale, which it never makes wider, a pointer stands at the end instead.
     """
@@ -182,18 +192,29 @@ def _decision(
         yield pointer(x + side * 9.0 * size.part, middle, side * 6.0 * size.part, Tone.INK)
     else:
         yield Line(x, middle - 9.0 * size.part, x, axis, 2 * size.line, Tone.INK, dash=3.0 * size.line)
-    wide, gap = measure(point.source, size.text), 8.0 * size.part
-    hair = None if measured.probability is None else scale.position(measured.probability)
+    words = _cut(point.source, scale.width - 12.0 * size.part, size.text, measure)
+    wide, gap = measure(words, size.text), 8.0 * size.part
+    others = [scale.position(line) for line in lines]
+    beyond = [at for other in others for at in (other - gap - wide, other + gap)]
+    beyond.sort(key=lambda at: min(abs(at - x), abs(at + wide - x)))
     lefts = [
         left
-        for left in (x - gap - wide, x + gap)
+        for left in (x - gap - wide, x + gap, *beyond)
         if scale.left + 2 <= left <= scale.left + scale.width - wide - 2
-        and not (hair is not None and left - 4 < hair < left + wide + 4)
+        and not any(left - 4 < line < left + wide + 4 for line in (*others, x))
     ]
     left = lefts[0] if lefts else min(x + gap, scale.left + scale.width - wide - 2)
-    plate = Tone.SHEET if measured.probability is None else Tone.WASH
     yield Rect(left - 3, middle - 0.62 * size.text, wide + 6, 1.24 * size.text, fill=plate)
-    yield Text(left, middle + 0.34 * size.text, point.source, size.text, tone=Tone.SOFT)
+    yield Text(left, middle + 0.34 * size.text, words, size.text, tone=Tone.SOFT)
+
+
+def _cut(words: str, room: float, size: float, measure: Measure) -> str:
+    """The words, or as many letters of them as there is room for; the table has them whole."""
+    if measure(words, size) <= room:
+        return words
+    while words and measure(f"{words}…", size) > room:
+        words = words[:-1]
+    return f"{words.rstrip()}…"
 
 
 def _hairline(scale: Scale, probability: float | None, top: float, axis: float, size: RulerSize) -> Iterator[Shape]:

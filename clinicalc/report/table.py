@@ -1,9 +1,9 @@
 """Tables set as strips: cells of text, typed values, marks of findings and range lines."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import replace
 
-from clinicalc.report.contents import Cell, Column, Mark, MarksCell, RangeCell, Row, Table, TypedCell
+from clinicalc.report.contents import NOTHING, Cell, Column, Mark, MarksCell, RangeCell, Row, RowKind, Table, TypedCell
 from clinicalc.report.fonts import Lettering
 from clinicalc.report.range_line import draw_range
 from clinicalc.report.shapes import Anchor, Line, Rect, Shape, Text, Tone, move
@@ -12,12 +12,13 @@ from clinicalc.report.strips import (
     PLAIN,
     SEMIBOLD,
     SMALL,
-    SOFT,
-    STRONG,
     WIDTH,
     Strip,
+    Style,
     hold_together,
     join_beside,
+    join_columns,
+    part_words,
     set_lines,
 )
 
@@ -25,10 +26,17 @@ _ABOVE, _BELOW, _RULE_AT, _GAP = 1.5, 2.3, 1.8, 6.0
 _MARK_SIDE = 13.0
 _RANGE_TEXT = 9.75
 """Size of the figures of a range line, of which the line's own width follows."""
+_LONGEST_APART = 24
+"""Rows; more than these stand below each other, so that pages can be broken between them."""
+_NUMBER_PLACES = ((0.0, 106.0), (112.0, 76.0), (192.0, 54.0), (246.0, 13.0), (265.0, 90.0))
+_ANSWER_PLACES = ((370.0, 76.0), (450.0, 40.0), (WIDTH, 0.0), (496.0, 14.0), (WIDTH, 0.0))
+_NUMBERS_END = 355.0
 
 
-def set_table(lettering: Lettering, table: Table) -> list[Strip]:
-    """The headings and one strip a row, each row closed by a rule."""
+def set_table(lettering: Lettering, table: Table, apart: Style = PLAIN) -> list[Strip]:
+    """The headings and one strip a row, each closed by a rule; kinds `apart` in that type where the table says so."""
+    if table.kinds_apart and len(table.rows) <= _LONGEST_APART and len({row.kind for row in table.rows}) > 1:
+        return hold_together(list(_kinds_apart(lettering, table, apart)))
     head = [replace(strip, keep=True) for strip in (*_headings(lettering, table.columns), _ruled())]
     strips, ends = list(head), []
     for row in table.rows:
@@ -39,16 +47,47 @@ def set_table(lettering: Lettering, table: Table) -> list[Strip]:
     return strips
 
 
-def set_mark(lettering: Lettering, mark: Mark, left: float) -> tuple[Shape, ...]:
+def _kinds_apart(lettering: Lettering, table: Table, style: Style) -> Iterator[Strip]:
+    """Questions across the page, their answers in the column of the answers; then numbers, and answers at their right.
+
+    Everything is read column by column: a question, then every number with its range, then every answer.
+    """
+    rows = {kind: [row for row in table.rows if row.kind is kind] for kind in RowKind}
+    numbers, answers = (_placed(table.columns, places) for places in (_NUMBER_PLACES, _ANSWER_PLACES))
+    question = (replace(table.columns[0], left=0.0, width=answers[1].left - 12), *answers[1:])
+    for row in rows[RowKind.QUESTION]:
+        yield from _row(lettering, question, _in_one_cell(row), style)
+    left = [*_headings(lettering, numbers, _NUMBERS_END), _ruled(0.0, _NUMBERS_END)]
+    left += [s for row in rows[RowKind.NUMBER] for s in _row(lettering, numbers, row, style, 0.0, _NUMBERS_END)]
+    start = answers[0].left
+    right = [s for row in rows[RowKind.ANSWER] for s in _row(lettering, answers, _in_one_cell(row), style, start)]
+    yield join_columns([left, right])
+
+
+def _in_one_cell(row: Row) -> Row:
+    """An answer followed by what was used in its place; it says itself where that is nothing."""
+    label, typed, used, marks, span = row.cells
+    if isinstance(typed, TypedCell) and isinstance(used, str) and used not in ("", NOTHING):
+        typed = replace(typed, after=f"{typed.after} {used}".strip())
+    return replace(row, cells=(label, typed, "", marks, span))
+
+
+def _placed(columns: Sequence[Column], places: Sequence[tuple[float, float]]) -> tuple[Column, ...]:
+    """The columns at other places, each a left edge and a width."""
+    return tuple(replace(column, left=left, width=width) for column, (left, width) in zip(columns, places, strict=True))
+
+
+def set_mark(lettering: Lettering, mark: Mark, left: float, style: Style = PLAIN) -> tuple[Shape, ...]:
     """The number of a finding: on a filled square, in an outlined one, or over a short line, by its weight."""
     digits = lettering.width(mark.number, SMALL, SEMIBOLD)
-    wide, top = max(_MARK_SIDE, digits + 6), (PLAIN.height - _MARK_SIDE) / 2
-    bottom, middle = top + _MARK_SIDE, left + wide / 2
+    side = min(_MARK_SIDE, style.height)
+    wide, top = max(side, digits + 6), (style.height - side) / 2
+    bottom, middle = top + side, left + wide / 2
     shape: Shape
     if mark.weight == 0:
-        shape = Rect(left, top, wide, _MARK_SIDE, fill=Tone.INK, radius=2)
+        shape = Rect(left, top, wide, side, fill=Tone.INK, radius=2)
     elif mark.weight == 1:
-        shape = Rect(left + 0.6, top + 0.6, wide - 1.2, _MARK_SIDE - 1.2, outline=Tone.INK, line=1.2, radius=1.5)
+        shape = Rect(left + 0.6, top + 0.6, wide - 1.2, side - 1.2, outline=Tone.INK, line=1.2, radius=1.5)
     else:
         shape = Line(middle - 5, bottom - 0.4, middle + 5, bottom - 0.4, 0.8, Tone.INK)
     tone = Tone.SHEET if mark.weight == 0 else Tone.INK
@@ -56,13 +95,13 @@ def set_mark(lettering: Lettering, mark: Mark, left: float) -> tuple[Shape, ...]
     return (shape, Text(middle - digits / 2, baseline, mark.number, SMALL, SEMIBOLD, tone))
 
 
-def _headings(lettering: Lettering, columns: tuple[Column, ...]) -> list[Strip]:
+def _headings(lettering: Lettering, columns: tuple[Column, ...], end: float = WIDTH) -> list[Strip]:
     """The headings side by side, each as wide as the columns without one after it let it be; none where all are ""."""
     named = [column for column in columns if column.heading]
     if not named:
         return []
-    ends = [*(column.left - _GAP for column in named[1:]), WIDTH]
-    set_apart = [_heading(lettering, column, end) for column, end in zip(named, ends, strict=True)]
+    ends = [*(column.left - _GAP for column in named[1:]), end]
+    set_apart = [_heading(lettering, column, until) for column, until in zip(named, ends, strict=True)]
     return join_beside(set_apart)
 
 
@@ -74,57 +113,76 @@ def _heading(lettering: Lettering, column: Column, end: float) -> list[Strip]:
     return [Strip(CAPTION.height, (text,))]
 
 
-def _row(lettering: Lettering, columns: tuple[Column, ...], row: Row) -> list[Strip]:
-    cells = [_cell(lettering, cell, column) for column, cell in zip(columns, row.cells, strict=True)]
-    return hold_together([Strip(_ABOVE), *join_beside(cells), _ruled()])
+def _row(
+    lettering: Lettering,
+    columns: Sequence[Column],
+    row: Row,
+    style: Style = PLAIN,
+    start: float = 0.0,
+    end: float = WIDTH,
+) -> list[Strip]:
+    widths = _widths(columns, row, end)
+    cells = [
+        _cell(lettering, cell, column if width == column.width else replace(column, width=width), style)
+        for column, cell, width in zip(columns, row.cells, widths, strict=True)
+    ]
+    return hold_together([Strip(_ABOVE), *join_beside(cells), _ruled(start, end)])
 
 
-def _ruled() -> Strip:
-    return Strip(_BELOW, (Line(0, _RULE_AT, WIDTH, _RULE_AT, 0.6, Tone.RULE),))
+def _widths(columns: Sequence[Column], row: Row, end: float) -> list[float]:
+    """How wide each cell may be: as its column, and on over empty cells after it."""
+    widths = []
+    for place, column in enumerate(columns):
+        more = zip(columns[place + 1 :], row.cells[place + 1 :], strict=True)
+        next_left = next((other.left - _GAP for other, cell in more if not _is_empty(cell)), end)
+        widths.append(column.width if column.at_end else max(column.width, next_left - column.left))
+    return widths
 
 
-def _cell(lettering: Lettering, cell: Cell, column: Column) -> list[Strip]:
+def _is_empty(cell: Cell) -> bool:
+    return cell == "" or cell == MarksCell(())
+
+
+def _ruled(start: float = 0.0, end: float = WIDTH) -> Strip:
+    return Strip(_BELOW, (Line(start, _RULE_AT, end, _RULE_AT, 0.6, Tone.RULE),))
+
+
+def _cell(lettering: Lettering, cell: Cell, column: Column, style: Style) -> list[Strip]:
     match cell:
         case str():
-            return set_lines(lettering, cell, column.left, column.width)
+            return set_lines(lettering, cell, column.left, column.width, style) if cell else []
         case TypedCell():
-            return _typed(lettering, cell, column)
+            return _typed(lettering, cell, column, style)
         case MarksCell():
-            return list(_marks(lettering, cell, column))
+            return list(_marks(lettering, cell, column, style))
         case RangeCell():
-            return [_range(lettering, cell, column)]
+            return [_range(lettering, cell, column, style)]
 
 
-def _typed(lettering: Lettering, cell: TypedCell, column: Column) -> list[Strip]:
+def _typed(lettering: Lettering, cell: TypedCell, column: Column, style: Style) -> list[Strip]:
     """The value in semibold, and softer what stands after it: on the same line as far as there is room."""
+    soft, firm = replace(style, tone=Tone.SOFT), replace(style, weight=SEMIBOLD)
     if not cell.value:
-        return set_lines(lettering, cell.after, column.left, column.width, SOFT)
-    strong = set_lines(lettering, cell.value, column.left, column.width, STRONG)
+        return set_lines(lettering, cell.after, column.left, column.width, soft)
+    strong = set_lines(lettering, cell.value, column.left, column.width, firm)
     if len(strong) > 1:
-        return [*strong, *set_lines(lettering, cell.after, column.left, column.width, SOFT)]
-    wide = lettering.width(cell.value, STRONG.size, SEMIBOLD)
+        return [*strong, *set_lines(lettering, cell.after, column.left, column.width, soft)]
+    wide = lettering.width(cell.value, firm.size, SEMIBOLD)
     # a space begins the softer text, so that both are read back as two words
-    beside, below = _part(lettering, f" {cell.after}", column.width - wide)
-    after = Text(column.left + wide, SOFT.baseline, beside, SOFT.size, tone=SOFT.tone)
+    beside, below = part_words(lettering, f" {cell.after}", column.width - wide, soft.size)
+    after = Text(column.left + wide, soft.baseline, beside, soft.size, tone=soft.tone)
     first = replace(strong[0], shapes=(*strong[0].shapes, *([after] if beside.strip() else [])))
-    return [first, *(set_lines(lettering, below, column.left, column.width, SOFT) if below else [])]
+    return [first, *(set_lines(lettering, below, column.left, column.width, soft) if below else [])]
 
 
-def _part(lettering: Lettering, text: str, room: float) -> tuple[str, str]:
-    """The words that go into a room, and those that do not."""
-    words = text.split(" ")
-    fits = len(words)
-    while fits and lettering.width(" ".join(words[:fits]), SOFT.size) > room:
-        fits -= 1
-    return " ".join(words[:fits]), " ".join(words[fits:])
-
-
-def _marks(lettering: Lettering, cell: MarksCell, column: Column) -> Iterator[Strip]:
+def _marks(lettering: Lettering, cell: MarksCell, column: Column, style: Style) -> Iterator[Strip]:
+    """The marks one below the other, as narrow as their column is."""
     for mark in cell.marks:
-        yield Strip(PLAIN.height, set_mark(lettering, mark, column.left))
+        yield Strip(style.height, set_mark(lettering, mark, column.left, style))
 
 
-def _range(lettering: Lettering, cell: RangeCell, column: Column) -> Strip:
-    figure = draw_range(cell.span, cell.value, lettering.width, inside=cell.inside, size=_RANGE_TEXT)
+def _range(lettering: Lettering, cell: RangeCell, column: Column, style: Style) -> Strip:
+    size = min(_RANGE_TEXT, 0.95 * style.size)
+    figure = draw_range(cell.span, cell.value, lettering.width, inside=cell.inside, size=size)
     left = column.left + column.width - figure.width
-    return Strip(PLAIN.height, move(figure.shapes, left, PLAIN.baseline - figure.baseline))
+    return Strip(style.height, move(figure.shapes, left, style.baseline - figure.baseline))

@@ -8,18 +8,29 @@ from clinicalc.assessment.limits import shown_limits
 from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.result import Assessment, ValueLine
 from clinicalc.report import phrases
-from clinicalc.report.contents import Cell, Column, Mark, MarksCell, RangeCell, Row, Section, Table, TypedCell
+from clinicalc.report.contents import (
+    NOTHING,
+    Cell,
+    Column,
+    Mark,
+    MarksCell,
+    RangeCell,
+    Row,
+    RowKind,
+    Section,
+    Table,
+    TypedCell,
+)
 from clinicalc.report.range_line import RangeOfValues
 from clinicalc.units.conversion import conversion
 from clinicalc.units.reading import Reading, read_value
 
 NOT_GIVEN = "not given"
-_NOTHING = "–"
 _WEIGHT = {Grade.STOP: 0, Grade.CAUTION: 1, Grade.NOTE: 2}
 _COLUMNS = (
     Column("", 0.0, 184.0),
     Column("typed", 192.0, 94.0),
-    Column("in the file’s unit, if another", 290.0, 101.0),
+    Column("in the file’s unit", 290.0, 101.0),
     Column("", 394.0, 18.0),
     Column("derivation range", 414.0, 96.0, at_end=True),
 )
@@ -41,33 +52,43 @@ def compose_values(assessment: Assessment) -> Section:
                 _in_file_unit(line),
                 _marks(assessment, line),
                 _range(assessment, line),
-            )
+            ),
+            _kind(assessment, line),
         )
         for line in lines
     )
-    return Section("Values as typed", (Table(_COLUMNS, rows),))
+    return Section("Values as typed", (Table(_COLUMNS, rows, kinds_apart=True),))
+
+
+def _kind(assessment: Assessment, line: ValueLine) -> RowKind:
+    if line.exclusion:
+        return RowKind.QUESTION
+    return RowKind.NUMBER if isinstance(assessment.model.by_id[line.id], NumberField) else RowKind.ANSWER
 
 
 def _typed(assessment: Assessment, line: ValueLine) -> TypedCell:
     """The value as typed with its unit; a derived value says whether it was typed or worked out."""
     if line.worked_out:
         return TypedCell("", "worked out")
+    if line.not_measured:
+        return TypedCell("", line.shown)
     if not line.typed:
         return TypedCell("", NOT_GIVEN)
     value, unit = line.shown, ""
     if isinstance(assessment.model.by_id[line.id], NumberField) and line.used:
         value, _, unit = line.shown.partition(" ")
     origin = " (typed)" if line.derived else ""
+    mean = f", {line.averaged.words}" if line.averaged else ""
     day = line.dated
     dated = f", of {phrases.day_words(datetime(day.year, day.month, day.day))}" if day else ""
     unused = "" if line.used else " (not used)"
-    return TypedCell(value, f"{unit}{origin}{dated}{unused}".strip())
+    return TypedCell(value, f"{unit}{origin}{mean}{dated}{unused}".strip())
 
 
 def _in_file_unit(line: ValueLine) -> str:
     """The value as used where it was not typed in that very form; a dash where nothing was used."""
     if not line.used:
-        return _NOTHING if line.typed else ""
+        return NOTHING if line.typed else ""
     return "" if line.used == line.shown else line.used
 
 

@@ -4,6 +4,7 @@ from clinicalc.assessment.assess import assess
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.operations.copying import copy_text
+from clinicalc.operations.summary import summarise
 from tests.coefficients.tiny_model import tiny_logit_model
 from tests.report.printing import AT, model_of, with_band, without_band
 
@@ -65,3 +66,12 @@ def test_a_date_and_a_value_in_another_unit_are_both_told() -> None:
     line = next(line for line in text.split("\n") if line.startswith("Total cholesterol"))
     assert line.startswith("Total cholesterol: 200 mg/dL, used as ")
     assert line.endswith(" mmol/L, of 2026-10-02")
+
+
+def test_what_a_value_is_the_mean_of_is_said() -> None:
+    assessment = without_band(total_cholesterol="200 mg/dL of 2 visits on 2026-10-02")
+    assert "Total cholesterol: 200 mg/dL, mean of 2 visits, used as 5.172 mmol/L, of 2026-10-02\n" in copy_text(
+        assessment
+    )
+    assert "200 mg/dL  mean of 2 visits  used as 5.172 mmol/L  of 2026-10-02\n" in summarise(assessment)
+    assert "mean" not in copy_text(without_band(total_cholesterol="200 mg/dL of 1 visit"))

@@ -15,7 +15,7 @@ def test_files_are_known_by_title_and_version(tmp_path: Path) -> None:
     path = tmp_path / "a.json"
     path.write_bytes(LIPIDS)
     # title and version as the shipped file states them
-    named = RecentFile(path, "General cardiovascular disease, lipid form, 1.0.0")
+    named = RecentFile(path, "General cardiovascular disease, lipid form, 1.1.0")
     assert name_recent_files([str(path)]) == (named,)
 
 

@@ -9,10 +9,11 @@ from clinicalc import __version__
 from clinicalc.assessment.findings import Grade
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.report.pdf import make_report
 from clinicalc.report.phrases import NOT_VETTED
 from tests.assessment.cases import WOMAN_61, WOMAN_EGFR_90, run
 from tests.coefficients.tiny_model import tiny_logit_model
-from tests.report.printing import PRACTICE, pages_of, printed, text_of, with_band, without_band
+from tests.report.printing import PRACTICE, PRINTED, pages_of, printed, text_of, with_band, without_band
 
 
 def woman_61(**changed: str) -> Assessment:
@@ -21,9 +22,8 @@ def woman_61(**changed: str) -> Assessment:
 
 def test_every_value_stands_as_typed_with_its_unit_and_as_used() -> None:
     text = text_of(printed(without_band()))
-    assert (
-        "derivation range Age 55 years Sex Male Takes tablets No Total" in text
-    )  # typed in the file's own unit: said once
+    assert "derivation range Age 55 years Total" in text  # typed in the file's own unit: said once
+    assert "Sex Male Takes tablets No The model" in text  # the answers stand at the right of the numbers
     assert "Total cholesterol 200 mg/dL, of 2 October 2026 5.172 mmol/L" in text  # 200 * 0.02586
 
 
@@ -64,12 +64,12 @@ def test_the_band_stands_with_its_level_and_its_meaning() -> None:
 
 def test_without_a_band_the_reason_stands_in_its_place() -> None:
     text = text_of(printed(without_band()))
-    assert "95\u202f% band no band % within 10 years" in text
+    assert re.search(r"95\u202f% band no band (?:Re-measurement spread [0-9.–]+\u202f% )?% within 10 years", text)
     assert "No band: It is invented." in text
 
 
 def test_the_recalibration_is_named_or_said_to_be_none() -> None:
-    assert "Recalibration North of Tarnwick invented" in text_of(printed(without_band("north")))
+    assert "Recalibration North of Tarnwick. invented" in text_of(printed(without_band("north")))
     assert "Recalibration none" in text_of(printed(without_band()))
 
 
@@ -103,7 +103,9 @@ def test_the_model_is_identified_whole() -> None:
     content = assessment.model.content
     assert group_fingerprint(assessment.model.fingerprint) in text
     assert len(group_fingerprint(assessment.model.fingerprint).replace(" ", "")) == 64
-    wanted = [content.title, content.version, content.outcome, content.source.citation, f"DOI {content.source.doi}"]
+    headline, detail = content.outcome.split(": ")
+    wanted = [f"{content.title} {content.version}", f"{headline} within 10 years {detail} Of 100 people"]
+    wanted += [content.source.citation, f"DOI {content.source.doi}"]
     wanted += [content.use.population, content.use.setting]
     wanted += [*content.use.cautions, "; ".join(content.use.not_for), "; ".join(content.use.not_used)]
     for words in wanted:
@@ -113,7 +115,7 @@ def test_the_model_is_identified_whole() -> None:
 def test_every_page_says_which_page_which_model_and_that_it_is_not_vetted() -> None:
     assessment = woman_61()
     pages = pages_of(printed(assessment))
-    readers = ["clinician", "clinician", "patient"]
+    readers = ["clinician", "clinician", "patient"]  # the second has what the band assumes
     assert len(pages) == len(readers)
     for number, (reader, page) in enumerate(zip(readers, pages, strict=True), 1):
         assert f"For the {reader}, page {number} of 3" in page
@@ -137,7 +139,24 @@ def test_the_first_page_carries_the_whole_fingerprint_and_whom_the_number_is_for
     assessment = woman_61()
     first = pages_of(printed(assessment))[0]
     assert f"Fingerprint {group_fingerprint(assessment.model.fingerprint)}" in first
+    assert "For qualified clinicians only. The number supports their judgement and never takes its place." in first
+
+
+def test_a_first_page_without_the_place_to_sign_says_in_short_whom_the_number_is_for() -> None:
+    first, second, _ = pages_of(make_report(with_cautions(20), practice=PRACTICE, printed_at=PRINTED))
     assert "For qualified clinicians: supports judgement, does not replace it." in first
+    assert "Fingerprint " in first
+    assert "For qualified clinicians only." not in first
+    assert "For qualified clinicians only." in second
+    assert "Practitioner’s signature" in second
+
+
+def with_cautions(count: int) -> Assessment:
+    """An assessment by a model with so many cautions of its own, each of two lines."""
+    content = tiny_logit_model()
+    cautions = tuple(f"Caution {n} of this model, {'which is said in many words, ' * 4}ends." for n in range(count))
+    use = msgspec.structs.replace(content.use, cautions=cautions)
+    return with_band(content=msgspec.structs.replace(content, use=use))
 
 
 def test_a_stopped_assessment_prints_no_percentage() -> None:

@@ -7,10 +7,13 @@ from clinicalc.coefficients.schema import ModelContent, YesNoPredictor
 from clinicalc.report.compose import compose
 from clinicalc.report.contents import Column, Row, Table
 from clinicalc.report.fonts import read_lettering
+from clinicalc.report.headpiece import USUAL, set_sheet
 from clinicalc.report.pages import MARGIN, PAGE_HEIGHT, Page, break_pages, lay_out
+from clinicalc.report.paper import Paper
 from clinicalc.report.shapes import Anchor, Dot, Line, Poly, Rect, Text, Tone, hatch
-from clinicalc.report.strips import WIDTH, Strip
-from clinicalc.report.typeset import set_block
+from clinicalc.report.strips import SMALL, WIDTH, Strip
+from clinicalc.report.typeset import TITLE, set_block
+from tests.assessment.cases import FULL, run
 from tests.coefficients.tiny_model import tiny_logit_model
 from tests.report.printing import PRACTICE, PRINTED, pages_of, printed, with_band
 
@@ -66,14 +69,44 @@ def test_nothing_is_painted_outside_the_margins(content: ModelContent, label: st
             assert 30 <= top <= bottom <= PAGE_HEIGHT - 30
 
 
-def test_no_two_lines_of_text_lie_on_each_other() -> None:
+@pytest.mark.parametrize("paper", Paper)
+@pytest.mark.parametrize("id", FULL)
+def test_a_usual_print_has_a_page_for_the_clinician_and_one_for_the_patient(id: str, paper: Paper) -> None:
+    pages = shipped_pages(id, paper)
+    assert len(pages) == (3 if id == "general-cvd-2008-lipids" else 2)  # what a rebuilt band assumes goes on a page
+    texts = [shape for shape in pages[0].shapes if isinstance(shape, Text)]
+    assert {"Values as typed", "The model", "Practitioner’s signature"} <= {text.text for text in texts}
+    assert min(text.size for text in texts) >= 0.95 * SMALL  # so small are the ends of derivation ranges alone
+
+
+def test_room_to_spare_goes_to_the_white_above_headings() -> None:
+    def headings(paper: Paper) -> list[float]:
+        pages = lay_out(lettering, sheet, paper)
+        return [shape.y for shape in pages[0].shapes if isinstance(shape, Text) and shape.size == TITLE]
+
+    lettering, sheet = read_lettering(), compose(with_band(), practice=PRACTICE, printed_at=PRINTED)
+    strips = set_sheet(lettering, sheet)
+    whites = [strip.height + strip.grows for strip in strips if strip.grows][1:]
+    assert whites == [USUAL.sections.above + USUAL.sections.grows] * 3
+    assert headings(Paper.A4) == headings(Paper.LETTER)  # there is more room than it takes on either paper
+
+
+def shipped_pages(id: str, paper: Paper = Paper.A4) -> tuple[Page, ...]:
+    """The print of a shipped file's usual patient."""
+    recalibration = "low" if id == "cvd-2021-regional" else None
+    sheet = compose(run(id, FULL[id], recalibration=recalibration), practice=PRACTICE, printed_at=PRINTED)
+    return lay_out(read_lettering(), sheet, paper)
+
+
+@pytest.mark.parametrize("pages", ["long", *FULL])
+def test_no_two_lines_of_text_lie_on_each_other(pages: str) -> None:
     lettering = read_lettering()
 
     def ends(text: Text) -> tuple[float, float]:
         wide = lettering.width(text.text, text.size, text.weight)
         return text.left(wide), text.left(wide) + wide
 
-    for page in laid_out(long_model(), "Żółć Őry " * 13):
+    for page in laid_out(long_model(), "Żółć Őry " * 13) if pages == "long" else shipped_pages(pages):
         texts = [shape for shape in page.shapes if isinstance(shape, Text)]
         for place, one in enumerate(texts):
             for other in texts[place + 1 :]:
@@ -92,7 +125,7 @@ def test_long_tables_and_cautions_come_back_whole() -> None:
         assert f"end {number}." in text
     continued = [page for page in pages if "Question 20 with" in page or "Question 45 with" in page]
     assert continued
-    assert all("typed in the file’s unit, if another derivation range" in page for page in continued)
+    assert all("typed in the file’s unit derivation range" in page for page in continued)
     *clinical, for_patient = pages
     assert f"For the patient, page {len(pages)} of {len(pages)}" in for_patient
     assert "Practitioner’s signature" in clinical[-1]
@@ -105,15 +138,6 @@ def test_held_strips_go_over_together_and_white_does_not_open_a_page() -> None:
     first, second = break_pages(strips, (100.0, 100.0))
     assert first == strips[:1]
     assert second == strips[2:]
-
-
-def test_what_is_kept_off_the_first_page_begins_the_second_or_goes_on_where_that_is() -> None:
-    text = (Text(0, 8, "x", 10),)
-    apart = Strip(20, text, off_first=True)
-    short = list(break_pages([Strip(60, text), apart, apart], (100.0, 100.0)))
-    assert short == [[Strip(60, text)], [apart, apart]]
-    long = list(break_pages([Strip(60, text), Strip(60, text), apart], (100.0, 100.0)))
-    assert long == [[Strip(60, text)], [Strip(60, text), apart]]
 
 
 def test_a_held_run_higher_than_a_page_is_parted() -> None:

@@ -12,6 +12,7 @@ from clinicalc.report.contents import PatientSheet
 from clinicalc.report.fonts import read_lettering
 from clinicalc.report.pages import Page, lay_out
 from clinicalc.report.paper import Paper
+from clinicalc.report.parts import PrintParts
 from clinicalc.report.pdf import make_report
 from clinicalc.report.shapes import Dot, Line, Text, Tone
 from tests.assessment.cases import DEMO, FULL, WOMAN_61, run
@@ -95,6 +96,13 @@ def test_how_sure_it_is_stands_in_whole_people() -> None:
     assert "How sure is this? The source does not say how precisely this is known." in patient_page(without_band())
 
 
+def test_a_rebuilt_band_is_only_roughly_known() -> None:
+    # rebuilt from printed intervals, 8.33 to 13.15 %
+    text = patient_page(run("general-cvd-2008-lipids", WOMAN_61))
+    assert "leaves room for 8 to 13 of 100. That room is itself only roughly known." in text
+    assert "roughly" not in patient_page(with_band())
+
+
 @pytest.mark.parametrize(("name", "recalibration"), CASES)
 def test_it_has_no_decimals_no_percentage_no_ruler_and_all_plain_cautions(name: str, recalibration: str | None) -> None:
     assessment = run(name, FULL[name], recalibration=recalibration)
@@ -146,9 +154,11 @@ def test_words_too_long_for_a_page_go_on_over_the_next() -> None:
 
 
 def test_it_is_left_out_where_it_is_not_wanted_and_where_there_is_no_number() -> None:
-    pages = pages_of(make_report(with_band(), practice=PRACTICE, printed_at=PRINTED, patient_page=False))
-    assert [f"page {n} of 2" in page for n, page in enumerate(pages, 1)] == [True, True]
-    assert not any("For the patient" in page for page in pages)
+    pages = pages_of(
+        make_report(with_band(), practice=PRACTICE, printed_at=PRINTED, parts=PrintParts(patient_page=False))
+    )
+    assert len(pages) == 1
+    assert "For the clinician, page 1 of 1" in pages[0]
     assert not any("For the patient" in page for page in pages_of(printed(without_band(age="abc"))))
 
 

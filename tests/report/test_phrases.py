@@ -4,7 +4,9 @@ from datetime import UTC, datetime, timedelta, timezone
 
 import pytest
 
+from clinicalc.assessment.result import Band
 from clinicalc.report import phrases
+from tests.assessment.cases import shipped
 
 
 @pytest.mark.parametrize(
@@ -36,3 +38,11 @@ def test_levels_and_counts() -> None:
     assert phrases.level_words(0.95) == "95\u202f%"
     assert phrases.level_words(0.975) == "97.5\u202f%"
     assert [phrases.count_words(n, "entry", "entries") for n in (1, 2)] == ["1 entry", "2 entries"]
+
+
+def test_a_rebuilt_band_is_said_to_be_approximate() -> None:
+    lipids, pooled = shipped("general-cvd-2008-lipids").content, shipped("ascvd-2013-pooled-cohort").content
+    said = "Approximate, rebuilt from printed intervals: clinicalc inspect lists what was assumed."
+    assert phrases.rebuilt_words(lipids) == "Approximate, rebuilt from printed intervals."
+    assert phrases.rebuilt_words(pooled) == ""
+    assert phrases.basis_words(Band(0.95, 0.1, 0.2, "reconstructed")) == said

@@ -1,9 +1,11 @@
 """The ruler: which form each thing has, in which lane, and what is left out without a number or a band."""
 
 from dataclasses import replace
+from itertools import pairwise
 
 import pytest
 
+from clinicalc.assessment.numerals import percent_in_full
 from clinicalc.report.fonts import read_lettering
 from clinicalc.report.measured import DecisionPoint, Interval, Lane, Measured
 from clinicalc.report.ruler import Ruler, RulerSize, draw_ruler
@@ -16,7 +18,7 @@ FULL = Measured(
     0.122,
     band=Interval(0.093, 0.161),
     spread=Interval(0.087, 0.17),
-    decision=DecisionPoint(0.1, "practice setting"),
+    decisions=(DecisionPoint(0.1, "practice setting"),),
 )
 
 
@@ -85,7 +87,7 @@ def test_the_decision_point_is_dashed_to_the_axis_with_its_source_clear_of_the_h
 
 @pytest.mark.parametrize("at", [0.005, 0.006, 0.79, 0.8])
 def test_the_source_stays_on_the_ruler(at: float) -> None:
-    drawn = ruler(replace(FULL, decision=DecisionPoint(at, "practice setting")))
+    drawn = ruler(replace(FULL, decisions=(DecisionPoint(at, "practice setting"),)))
     (source,) = [s for s in drawn.figure.shapes if isinstance(s, Text) and s.text == "practice setting"]
     wide = read_lettering().width(source.text, source.size)
     assert drawn.overhang <= source.x <= source.x + wide <= drawn.overhang + 436
@@ -93,7 +95,7 @@ def test_the_source_stays_on_the_ruler(at: float) -> None:
 
 @pytest.mark.parametrize(("at", "end"), [(0.002, 0.0), (0.9, 436.0)])
 def test_a_decision_point_beyond_the_scale_is_pointed_at_and_leaves_the_scale_alone(at: float, end: float) -> None:
-    drawn = ruler(replace(FULL, decision=DecisionPoint(at, "practice setting")))
+    drawn = ruler(replace(FULL, decisions=(DecisionPoint(at, "practice setting"),)))
     assert not drawn.scale.wide
     assert not [s for s in drawn.figure.shapes if isinstance(s, Line) and s.dash]
     (pointer,) = [s for s in pointers(drawn) if s.fill is Tone.INK]
@@ -123,7 +125,7 @@ def test_a_smaller_ruler_is_the_same_ruler() -> None:
 
 
 def test_without_a_covariance_the_lane_says_so_and_stays_empty() -> None:
-    drawn = ruler(replace(FULL, band=None, spread=None, decision=None), Lane.BAND)
+    drawn = ruler(replace(FULL, band=None, spread=None, decisions=()), Lane.BAND)
     assert boxes(drawn, Tone.TINT) == []
     assert [lane.figures for lane in drawn.lanes] == ["no band"]
     assert len(hairline(drawn)) == 1
@@ -196,5 +198,85 @@ def test_everything_lies_inside_the_figure(probability: float, text: float) -> N
 def test_the_words_beside_the_ruler_and_its_table_are_the_same_figures() -> None:
     drawn = ruler(replace(FULL, level=0.9))
     assert drawn.lanes[0].name == "90\u202f% band"
-    assert drawn.figure.table == (("Probability", "12.2\u202f%"), *((lane.name, lane.figures) for lane in drawn.lanes))
+    named = [(lane.name, lane.figures) for lane in drawn.lanes[:2]]
+    decision = ("Decision point (practice setting)", "10.0\u202f%")
+    assert drawn.figure.table == (("Probability", "12.2\u202f%"), *named, decision)
+    assert "Decision point (practice setting): 10.0\u202f%" in drawn.figure.sentence
     assert drawn.figure.sentence.startswith("12.2\u202f% on a ruler from 0.5 to 80\u202f%")
+
+
+def test_each_of_up_to_three_decision_points_has_a_lane_its_dashed_line_and_its_name() -> None:
+    names = ("practice setting", "talk it over", "printed by the source", "one more")
+    points = tuple(DecisionPoint(at, name) for at, name in zip((0.1, 0.075, 0.2, 0.3), names, strict=True))
+    drawn = ruler(replace(FULL, decisions=points))
+    assert [lane.figures for lane in drawn.lanes[2:]] == ["10.0\u202f%", "7.5\u202f%", "20.0\u202f%"]
+    assert {lane.name for lane in drawn.lanes[2:]} == {"Decision point"}
+    dashed = [s for s in drawn.figure.shapes if isinstance(s, Line) and s.dash]
+    assert [line.x for line in dashed] == [drawn.scale.position(at) for at in (0.1, 0.075, 0.2)]
+    starts = [line.y for line in dashed]
+    assert [later - earlier for earlier, later in pairwise(starts)] == [27.0, 27.0]
+    assert len({line.to_y for line in dashed}) == 1
+    written = [s.text for s in drawn.figure.shapes if isinstance(s, Text)]
+    assert set(names[:3]) <= set(written)
+    assert names[3] not in written
+    assert ("Decision point (one more)", "30.0\u202f%") in drawn.figure.table
+
+
+STATED = tuple(DecisionPoint(at, f"at {at:g}") for at in (0.01, 0.05, 0.1, 0.15, 0.2, 0.4))
+
+
+@pytest.mark.parametrize(
+    ("measured", "nearest"),
+    [
+        (Measured("logit", 0.122, 0.878), (0.1, 0.15, 0.2)),
+        # 0.05 is nearer by probability (0.08 and 0.12), but not on the logit scale: 1.04 and 0.81
+        (Measured("logit", 0.13, 0.87), (0.1, 0.15, 0.2)),
+        (Measured("logit", 0.28, 0.72), (0.15, 0.2, 0.4)),
+        (Measured("cloglog", 0.001, 0.999), (0.01, 0.05, 0.1)),
+        (Measured("cloglog", 1.0, 1e-30), (0.15, 0.2, 0.4)),
+        (Measured("logit"), (0.01, 0.05, 0.1)),
+    ],
+)
+def test_the_decision_points_nearest_to_the_number_are_drawn_in_order(
+    measured: Measured, nearest: tuple[float, ...]
+) -> None:
+    drawn = ruler(replace(measured, decisions=STATED), Lane.BAND, Lane.DECISION)
+    assert [lane.figures for lane in drawn.lanes[1:]] == [percent_in_full(at) for at in nearest]
+    dashed = [s for s in drawn.figure.shapes if isinstance(s, Line) and s.dash]
+    pointed = [s for s in pointers(drawn) if s.fill is Tone.INK]
+    assert len(dashed) + len(pointed) == 3
+    table = {row for row in drawn.figure.table if row[0].startswith("Decision point")}
+    assert table == {
+        (f"Decision point (at {point.probability:g})", percent_in_full(point.probability)) for point in STATED
+    }
+
+
+def test_no_name_is_written_through_another_line_where_there_is_room() -> None:
+    measure = read_lettering().width
+    points = tuple(DecisionPoint(at, name) for at, name in ((0.1, "practice"), (0.05, "first"), (0.2, "second")))
+    drawn = ruler(replace(FULL, decisions=points))
+    xs = [drawn.scale.position(at) for at in (0.1, 0.05, 0.2, 0.122)]
+    for point in points:
+        (name,) = [s for s in drawn.figure.shapes if isinstance(s, Text) and s.text == point.source]
+        assert not any(name.x < x < name.x + measure(name.text, name.size) for x in xs)
+
+
+def test_a_long_name_is_cut_on_the_ruler_and_whole_in_the_table() -> None:
+    name = "the value above which the practice in Tarnwick has agreed to talk about every treatment there is"
+    drawn = ruler(replace(FULL, decisions=(DecisionPoint(0.1, name),)))
+    (cut,) = [s for s in drawn.figure.shapes if isinstance(s, Text) and s.text.endswith("…")]
+    assert name.startswith(cut.text[:-1])
+    assert cut.x >= drawn.overhang
+    assert cut.x + read_lettering().width(cut.text, cut.size) <= drawn.overhang + 436
+    assert (f"Decision point ({name})", "10.0\u202f%") in drawn.figure.table
+
+
+def test_a_name_between_two_lines_too_close_for_it_stands_beyond_them() -> None:
+    """To the left of 10 % stands the line of 5 %, to its right the hairline: the name goes on to the other side."""
+    points = (DecisionPoint(0.05, "Talk it over"), DecisionPoint(0.1, "Setting of the practice"))
+    measured = Measured("logit", 0.123, 0.877, decisions=points)
+    ruler = draw_ruler(measured, RulerSize(436), read_lettering().width, (Lane.DECISION,))
+    (name,) = [s for s in ruler.figure.shapes if isinstance(s, Text) and s.text == "Setting of the practice"]
+    lines = [ruler.scale.position(at) for at in (0.05, 0.1, 0.123)]
+    assert not any(name.x - 4 < line < name.x + read_lettering().width(name.text, name.size) + 4 for line in lines)
+    assert min(abs(name.x - line) for line in lines) == pytest.approx(8.0)

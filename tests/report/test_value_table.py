@@ -4,11 +4,11 @@ import pytest
 
 from clinicalc.assessment.result import Assessment
 from clinicalc.report.compose import compose
-from clinicalc.report.contents import Mark, MarksCell, RangeCell, Row, Table, TypedCell
+from clinicalc.report.contents import Column, Mark, MarksCell, RangeCell, Row, RowKind, Table, TypedCell
 from clinicalc.report.fonts import read_lettering
 from clinicalc.report.pages import lay_out
 from clinicalc.report.shapes import Line, Poly, Rect, Shape, Text, Tone
-from clinicalc.report.table import set_mark
+from clinicalc.report.table import set_mark, set_table
 from clinicalc.report.value_table import compose_values, mark
 from tests.assessment.cases import DEMO, WOMAN_EGFR_90, run
 from tests.report.printing import PRACTICE, PRINTED, with_band
@@ -33,17 +33,51 @@ def test_the_derivation_range_stands_in_the_unit_of_the_typed_value() -> None:
     assert cells[4].value == pytest.approx(200.0)
 
 
-def test_the_answer_about_an_exclusion_stands_under_typed_and_below_the_headings() -> None:
-    assessment = with_band()
+def texts_of(assessment: Assessment) -> list[Text]:
+    """The texts of the first page."""
     page = lay_out(read_lettering(), compose(assessment, practice=PRACTICE, printed_at=PRINTED))[0]
-    texts = [shape for shape in page.shapes if isinstance(shape, Text)]
-    heading = next(text for text in texts if text.text == "typed")
+    return [shape for shape in page.shapes if isinstance(shape, Text)]
+
+
+def test_a_question_stands_over_all_values_with_its_answer_in_the_column_of_the_answers() -> None:
+    texts = texts_of(with_band())
     question = next(text for text in texts if text.text == "Has it happened before?")
-    answer = next(text for text in texts if text.text == "No")
-    age = next(text for text in texts if text.text == "Age")
-    assert answer.x == heading.x
-    assert heading.y < question.y == answer.y < age.y
+    no, yes = (next(text for text in texts if text.text == said) for said in ("No", "Yes"))
+    age, smokes, heading = (
+        next(text for text in texts if text.text == said) for said in ("Age", "Smokes now", "typed")
+    )
+    assert no.x == yes.x
+    assert question.y == no.y < heading.y < age.y
+    assert no.y < smokes.y == yes.y < age.y  # the answers begin beside the headings of the numbers
+    assert age.x == question.x < heading.x < smokes.x
     assert [text.text for text in texts].count("typed") == 1
+
+
+def test_values_of_one_kind_and_long_tables_stand_below_each_other() -> None:
+    column = Column("asked", 0.0, 100.0)
+    numbers = Table((column,), tuple(Row((f"row {n}",)) for n in range(3)), kinds_apart=True)
+    assert {text.x for text in texts_in(numbers)} == {0.0}
+    columns = tuple(Column("", 100.0 * place, 90.0) for place in range(5))
+    kinds = (RowKind.NUMBER, RowKind.ANSWER)
+    rows = tuple(Row((f"row {n}", TypedCell("1"), "", MarksCell(()), ""), kinds[n % 2]) for n in range(26))
+    long, short = (Table(columns, part, kinds_apart=True) for part in (rows, rows[:24]))
+    assert {text.x for text in texts_in(long) if text.text.startswith("row")} == {0.0}
+    assert len({text.x for text in texts_in(short) if text.text.startswith("row")}) == 2
+
+
+def texts_in(table: Table) -> list[Text]:
+    return [s for strip in set_table(read_lettering(), table) for s in strip.shapes if isinstance(s, Text)]
+
+
+def test_an_answer_that_was_used_in_other_words_says_both() -> None:
+    columns = tuple(Column("", 100.0 * place, 90.0) for place in range(5))
+    rows = (
+        Row(("Age", TypedCell("61", "years"), "", MarksCell(()), "")),
+        Row(("Smokes", TypedCell("y"), "Yes", MarksCell(()), ""), RowKind.ANSWER),
+        Row(("Sex", TypedCell("x", "(not used)"), "–", MarksCell(()), ""), RowKind.ANSWER),
+    )
+    said = [text.text.strip() for text in texts_in(Table(columns, rows, kinds_apart=True))]
+    assert said == ["Age", "61", "years", "Smokes", "y", "Yes", "Sex", "x", "(not used)"]
 
 
 def test_a_value_outside_its_range_has_a_pointer_and_the_mark_of_its_finding() -> None:
@@ -97,3 +131,10 @@ def test_the_grade_of_a_mark_is_the_amount_of_its_ink() -> None:
     assert isinstance(caution[0], Rect)
     assert (caution[0].fill, caution[0].outline) == (None, Tone.INK)
     assert isinstance(note[0], Line)
+
+
+def test_what_a_value_is_the_mean_of_stands_with_it() -> None:
+    cells = rows_of(run("tarnwick-cvd-10y", DEMO, systolic_bp="142 of 2 visits of 3 readings"))[
+        "Systolic blood pressure"
+    ]
+    assert cells.cells[1] == TypedCell("142", "mmHg, mean of 2 visits, 3 readings each")
