@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import os
 import sys
 from typing import TYPE_CHECKING
@@ -42,6 +43,7 @@ def _run_command(words: list[str]) -> int:
 
 
 def _open_window(case: DemoCase | None = None) -> int:
+    gc.disable()  # until the window is shown, nothing is made that could be garbage
     # before Qt: its import hook makes every module that is loaded after it dearer
     import clinicalc.operations.bedside
     import clinicalc.operations.documents

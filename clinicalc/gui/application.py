@@ -1,5 +1,6 @@
 """Starts the window: Qt, typeface, colours, and the hook for what nobody expected."""
 
+import gc
 import sys
 from functools import partial
 
@@ -22,7 +23,6 @@ from clinicalc.settings import read_settings, write_settings
 
 def dress(application: QApplication) -> None:
     """Typeface and colours for every window of this application. Raises ShippedFileMissing without the fonts."""
-    application.setStyle("Fusion")
     load_typeface()
     application.setFont(face())
     theme.current().apply_to(application)
@@ -47,4 +47,7 @@ def run_window(model: Model | None = None, entry: PatientEntry | None = None) ->
     if reading.problems:
         window.foot.say(reading.problems[0])
     window.show()
+    # what there is now stays until the window is closed: no collection, whose pause a key might wait for, looks at it
+    gc.freeze()
+    gc.enable()
     return application.exec()

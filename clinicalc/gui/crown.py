@@ -6,6 +6,7 @@ from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QHBoxLayout, QLabel, QVBoxLayout, QWidget
 
 from clinicalc.gui.figure_view import text_part
+from clinicalc.gui.held_layouts import Block
 from clinicalc.gui.labels import make_label
 from clinicalc.gui.lanes import RULER_AT
 from clinicalc.gui.number_face import GRID_AT, NumberFace, SmallGrid
@@ -15,7 +16,7 @@ _GRID_DROP = 1
 _ABOVE, _BETWEEN, _BELOW = 2, 5, 8
 
 
-class Crown(QWidget):
+class Crown(Block):
     """Number, small grid, headline and sentence."""
 
     def __init__(self) -> None:

@@ -1,23 +1,33 @@
 """What is on screen as values, and the one assessment that belongs to them."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from types import MappingProxyType
 from typing import Protocol
 
 from PySide6.QtCore import QObject, Signal
 
+from clinicalc.assessment.decision import DecisionPoint, points_for
 from clinicalc.assessment.entry import PatientEntry, Typed
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
 from clinicalc.operations.bedside import assess_patient
+from clinicalc.settings import PracticePoint
 
 
 class Assess(Protocol):
     """The verb that answers for one entry."""
 
     def __call__(
-        self, model: Model, entry: PatientEntry, *, span: Span | None, recalibration: str | None
+        self,
+        model: Model,
+        entry: PatientEntry,
+        *,
+        span: Span | None,
+        recalibration: str | None,
+        practice_points: Sequence[PracticePoint],
+        matching_age: bool,
     ) -> Assessment: ...
 
 
@@ -43,6 +53,17 @@ class EntryState(QObject):
         self.span: Span | None = None
         self.recalibration: str | None = None
         self.assessment: Assessment | None = None
+        self.practice_points: tuple[PracticePoint, ...] = ()
+        self.matching_age = False
+
+    @property
+    def decision_points(self) -> tuple[DecisionPoint, ...]:
+        """The decision points that hold for the model at the chosen horizon; the file's alone while none is chosen."""
+        if self.model is None:
+            return ()
+        if self.span is None:
+            return points_for(self.model, self.model.spans[0])
+        return points_for(self.model, self.span, self.practice_points)
 
     @property
     def entry(self) -> PatientEntry:
@@ -55,6 +76,7 @@ class EntryState(QObject):
         self.model = model
         self.span = model.spans[0] if len(model.spans) == 1 else None
         self.recalibration = None
+        self.matching_age = False
         self._entry = entry or PatientEntry()
         self.model_changed.emit()
         self.reassess()
@@ -77,18 +99,40 @@ class EntryState(QObject):
         self._entry = self._entry.with_typed(id, typed)
         self.reassess()
 
-    def replace_values(self, typed: Mapping[str, Typed]) -> None:
-        """Take the same values in the form in which the fields show them; no new assessment."""
-        self._entry = PatientEntry(MappingProxyType(dict(typed)), self._entry.label)
+    def type_change(self, id: str, typed: Typed | None) -> None:
+        """A value of the comparison was changed, or taken out of it (None)."""
+        self._entry = self._entry.with_change(id, typed)
+        self.reassess()
+
+    def type_both(self, id: str, typed: Typed | None, change: Typed | None) -> None:
+        """A value and its change were read anew in one act, as by an offered unit; one assessment."""
+        self._entry = self._entry.with_typed(id, typed).with_change(id, change)
+        self.reassess()
+
+    def ask_matching_age(self, asked: bool) -> None:
+        """Ask for the matching age of this patient, or no longer."""
+        self.matching_age = asked
+        self.reassess()
+
+    def use_practice_points(self, points: Sequence[PracticePoint]) -> None:
+        """Take the practice's own decision points; the same ones again change nothing."""
+        if tuple(points) != self.practice_points:
+            self.practice_points = tuple(points)
+            self.reassess()
+
+    def replace_values(self, typed: Mapping[str, Typed], changes: Mapping[str, Typed]) -> None:
+        """Take the same values and changes in the form in which the fields show them; no new assessment."""
+        self._entry = replace(self._entry, typed=MappingProxyType(dict(typed)), changes=MappingProxyType(dict(changes)))
 
     def type_label(self, label: str) -> None:
         """The name or number for the print was changed."""
-        self._entry = PatientEntry(self._entry.typed, label)
+        self._entry = replace(self._entry, label=label)
         self.reassess()
 
     def begin_new_patient(self) -> None:
         """Forget everything typed; the model and the choices about it stay."""
         self.assessment = None
+        self.matching_age = False
         self._entry = PatientEntry()
         self.model_changed.emit()
         self.reassess()
@@ -99,7 +143,14 @@ class EntryState(QObject):
             return
         self.assessment = None
         try:
-            assessment = self._assess(self.model, self._entry, span=self.span, recalibration=self.recalibration)
+            assessment = self._assess(
+                self.model,
+                self._entry,
+                span=self.span,
+                recalibration=self.recalibration,
+                practice_points=self.practice_points,
+                matching_age=self.matching_age,
+            )
         except BaseException:
             self.blank("")
             raise

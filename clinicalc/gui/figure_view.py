@@ -38,6 +38,7 @@ class FigureView(QWidget):
     def __init__(self, inset: float = 0.0, drop: float = 0.0) -> None:
         super().__init__()
         self._figure: Figure | None = None
+        self._reaches: list[QRectF | None] = []
         self._place = (inset, drop)
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
 
@@ -51,9 +52,12 @@ class FigureView(QWidget):
         if figure == self._figure:
             return
         before, self._figure = self._figure, figure
+        reaches, self._reaches = self._reaches, []
         self.setAccessibleName("" if figure is None else figure.sentence)
         self.setAccessibleDescription("" if figure is None else "; ".join(table_lines((figure,))))
-        changed = None if before is None or figure is None else _changed_between(before, figure)
+        changed = None
+        if figure is not None:
+            self._reaches, changed = _reaches_of(figure, before, reaches)
         if changed is None or figure is None:
             self.updateGeometry()
             self.update()
@@ -74,7 +78,8 @@ class FigureView(QWidget):
         start, shapes = self._start_of(self._figure), self._figure.shapes
         if event.rect() != self.rect():
             asked = QRectF(event.rect()).translated(-start[0], -start[1])
-            shapes = tuple(shape for shape in shapes if (at := _reach(shape)) is None or at.intersects(asked))
+            pairs = zip(shapes, self._reaches, strict=True)
+            shapes = tuple(shape for shape, at in pairs if at is None or at.intersects(asked))
         painter = QPainter(self)
         try:
             painter.translate(*start)
@@ -92,25 +97,29 @@ class FigureView(QWidget):
         return 0.0
 
 
-def _changed_between(one: Figure, other: Figure) -> QRectF | None:
-    """What two drawings of one size differ in; None where that cannot be told from their shapes."""
-    if (one.width, one.height, one.baseline, len(one.shapes)) != (
-        other.width,
-        other.height,
-        other.baseline,
-        len(other.shapes),
-    ):
-        return None
-    changed = QRectF()
-    for pair in zip(one.shapes, other.shapes, strict=True):
-        if pair[0] is pair[1] or pair[0] == pair[1]:
+def _reaches_of(
+    figure: Figure, before: Figure | None, known: list[QRectF | None]
+) -> tuple[list[QRectF | None], QRectF | None]:
+    """The boxes round a figure's shapes, and what it differs in from the drawing before it, whose boxes are known.
+
+    None for the difference where it cannot be told from the shapes, as where sizes differ.
+    """
+    if before is None or _size(before) != _size(figure):
+        return [_reach(shape) for shape in figure.shapes], None
+    reaches: list[QRectF | None] = []
+    changed: QRectF | None = QRectF()
+    for old, new, at in zip(before.shapes, figure.shapes, known, strict=True):
+        if old is new or old == new:
+            reaches.append(at)
             continue
-        for shape in pair:
-            reach = _reach(shape)
-            if reach is None:
-                return None
-            changed = changed.united(reach)
-    return changed
+        now = _reach(new)
+        reaches.append(now)
+        changed = None if changed is None or at is None or now is None else changed.united(at).united(now)
+    return reaches, changed
+
+
+def _size(figure: Figure) -> tuple[float, float, float, int]:
+    return figure.width, figure.height, figure.baseline, len(figure.shapes)
 
 
 def _reach(shape: Shape) -> QRectF | None:

@@ -1,12 +1,19 @@
 """The system's dialogs for files, which remember nothing from one patient to the next."""
 
+from __future__ import annotations
+
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import shiboken6
-from PySide6.QtCore import QSettings, QStandardPaths
-from PySide6.QtWidgets import QFileDialog, QWidget
+from PySide6.QtWidgets import QWidget
+
+if TYPE_CHECKING:
+    from PySide6.QtWidgets import QFileDialog
+
+# Qt's dialogs are set up by the first one that is asked for, not by every start of the window
 
 ChooseOpen = Callable[[QWidget], Path | None]
 ChooseSave = Callable[[QWidget, str], Path | None]
@@ -14,6 +21,8 @@ ChooseSave = Callable[[QWidget, str], Path | None]
 
 def ask_which_file(parent: QWidget) -> Path | None:
     """The coefficient file somebody points to in the system's dialog, or None."""
+    from PySide6.QtWidgets import QFileDialog
+
     with leaving_no_trace():
         name, _ = QFileDialog.getOpenFileName(
             parent, "Open a coefficient file", _documents(), "Coefficient files (*.json)"
@@ -36,6 +45,8 @@ def ask_where_to_save(parent: QWidget, suggestion: str) -> Path | None:
 
 def make_save_dialog(parent: QWidget, suggestion: str) -> QFileDialog:
     """The dialog for a print, without any history."""
+    from PySide6.QtWidgets import QFileDialog
+
     dialog = QFileDialog(parent, "Save the print", _documents(), "PDF (*.pdf)")
     dialog.setAcceptMode(QFileDialog.AcceptMode.AcceptSave)
     dialog.setDefaultSuffix("pdf")  # added before the dialog asks whether to replace a file
@@ -47,6 +58,8 @@ def make_save_dialog(parent: QWidget, suggestion: str) -> QFileDialog:
 @contextmanager
 def leaving_no_trace() -> Iterator[None]:
     """Put back what Qt notes on disk about its file dialogs: the folders visited lately."""
+    from PySide6.QtCore import QSettings
+
     kept = QSettings("QtProject", "")
     kept.beginGroup("FileDialog")
     before = {key: kept.value(key) for key in kept.allKeys()}
@@ -63,4 +76,6 @@ def leaving_no_trace() -> Iterator[None]:
 
 
 def _documents() -> str:
+    from PySide6.QtCore import QStandardPaths
+
     return QStandardPaths.writableLocation(QStandardPaths.StandardLocation.DocumentsLocation)

@@ -4,11 +4,12 @@ from collections.abc import Mapping, Sequence
 
 from PySide6.QtCore import QRectF, Qt, Signal
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QVBoxLayout
 
 from clinicalc.assessment.findings import Finding, Grade
 from clinicalc.gui import theme
 from clinicalc.gui.figure_view import text_part
+from clinicalc.gui.held_layouts import Block
 from clinicalc.gui.index_mark import IndexMark
 from clinicalc.gui.labels import Heading, make_label, make_line
 from clinicalc.gui.wording import GRADE_WORDS, findings_heading
@@ -19,7 +20,7 @@ _GAP = 9
 _WORD_WIDTH = 62
 
 
-class FindingsList(QWidget):
+class FindingsList(Block):
     """Stops first, each in a heavy frame; then cautions and notes."""
 
     field_asked = Signal(str)
@@ -38,12 +39,15 @@ class FindingsList(QWidget):
         self._entries: list[FindingEntry] = []
         self._shown: tuple[tuple[int, Finding], ...] = ()
 
-    def show_findings(self, findings: Sequence[tuple[int, Finding]], labels: Mapping[str, str]) -> None:
+    def show_findings(
+        self, findings: Sequence[tuple[int, Finding]], labels: Mapping[str, str], *, heading: str | None = None
+    ) -> None:
         """Replace the list by numbered findings; `labels` has the name of every field that can be gone to.
 
+        The heading says how many there are, unless it is given.
         Entries stay and take other words: a list made anew at every key would cost more than the assessment.
         """
-        self._heading.label.setText(findings_heading(findings))
+        self._heading.label.setText(findings_heading(findings) if heading is None else heading)
         while len(self._entries) < len(findings):
             entry = FindingEntry()
             entry.field_asked.connect(self.field_asked)
@@ -53,6 +57,8 @@ class FindingsList(QWidget):
             entry.show_finding(number, finding, labels.get(finding.field, ""))
         for place, entry in enumerate(self._entries):
             entry.setVisible(place < len(findings))
+            if place >= len(findings):
+                entry.clear()
         self._shown = tuple(findings)
 
     @property
@@ -66,7 +72,7 @@ class FindingsList(QWidget):
         return tuple(mark for mark in marks if mark.isEnabled())
 
 
-class FindingEntry(QWidget):
+class FindingEntry(Block):
     """One finding."""
 
     field_asked = Signal(str)
@@ -100,6 +106,15 @@ class FindingEntry(QWidget):
         inside = 10 if finding.grade is Grade.STOP else 0
         self._row.setContentsMargins(inside, inside - 2 if inside else 0, inside, inside - 2 if inside else 0)
         self.update()
+
+    def clear(self) -> None:
+        """Hold nothing of a finding that is no longer there: its words may name a number."""
+        if self._finding is None:
+            return
+        self._finding = None
+        self.mark.setAccessibleName("")
+        for label in (self.word, self.message):
+            label.clear()
 
     def paintEvent(self, event: QPaintEvent) -> None:
         """The heavy frame of a stop."""

@@ -46,7 +46,7 @@ class FieldFrame(QWidget):
         if self._has_focus():
             painter.setPen(QPen(QColor(theme.tokens().accent), 2))
             painter.drawRoundedRect(body.adjusted(-2, -2, 2, 2), 5, 5)
-        painter.setBrush(QColor(theme.tokens().field))
+        painter.setBrush(QColor(theme.tokens().field if self.isEnabled() else theme.tokens().ground))
         if self._stopped:
             painter.setPen(QPen(QColor(theme.tokens().ink), 2))
             painter.drawRoundedRect(body.adjusted(1, 1, -1, -1), 3, 3)

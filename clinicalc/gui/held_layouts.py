@@ -3,11 +3,26 @@
 from collections.abc import Iterator
 from contextlib import contextmanager
 
-from PySide6.QtCore import QCoreApplication, QEvent
+from PySide6.QtCore import QCoreApplication, QEvent, QSize
 from PySide6.QtWidgets import QWidget
 
 _ROUNDS = 2
 """What is inside may ask for more room once it knows its own."""
+
+
+class Block(QWidget):
+    """A part of a column, as wide as the column is: only its height at that width is ever asked of its layout.
+
+    Qt would also ask how high it is at its usual and at its least width, and measure every text again for each.
+    """
+
+    def sizeHint(self) -> QSize:
+        """Nothing of its own."""
+        return QSize(0, 0)
+
+    def minimumSizeHint(self) -> QSize:
+        """Nothing of its own."""
+        return QSize(0, 0)
 
 
 @contextmanager
@@ -30,3 +45,5 @@ def held_layouts(*widgets: QWidget) -> Iterator[None]:
         for _ in range(_ROUNDS):
             for widget, _ in reversed(held):
                 QCoreApplication.sendPostedEvents(widget, QEvent.Type.LayoutRequest.value)
+        # and what that asks of everything around: a paint in between would show it squeezed into its old size
+        QCoreApplication.sendPostedEvents(None, QEvent.Type.LayoutRequest.value)

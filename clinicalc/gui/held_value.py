@@ -7,7 +7,7 @@ from math import ceil, log10
 
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
-from clinicalc.assessment.numbers import shown_number, take_number
+from clinicalc.assessment.numbers import shown_number, stated_after, take_number
 from clinicalc.errors import UnitError
 from clinicalc.units.conversion import conversion
 from clinicalc.units.reading import Reading, read_value
@@ -15,6 +15,9 @@ from clinicalc.units.unit import unit as unit_of
 
 _MOST_DECIMALS = 6
 _NUMBER = re.compile(r"\s*[-+−]?[0-9]+(?:[.,][0-9]+)?")
+_MEAN_AFTER = re.compile(r"\s+of\s+[0-9]+\s+(?:visit|reading).*?(?=\s+on\s|$)", re.IGNORECASE)
+_DAY_AFTER = re.compile(r"\s+on\s.*$", re.IGNORECASE)
+"""A mean and a day after a number, as the reader of values knows them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +60,13 @@ def hold_entry(field: NumberField, typed: Typed | None) -> HeldValue:
     """A value from an entry made elsewhere."""
     if typed is None:
         return hold(field, "", field.unit)
-    text = typed.text if typed.dated is None else f"{typed.text} on {typed.dated.isoformat()}"
+    text = typed.text
+    reading = read_value(text)
+    if not isinstance(reading, Reading):
+        text = f"{text}{stated_after(typed.averaged, typed.dated)}"
+    elif typed.averaged is not None or typed.dated is not None:  # what the text states counts before it
+        before = _DAY_AFTER.sub("", _MEAN_AFTER.sub("", text))
+        text = f"{before}{stated_after(reading.averaged or typed.averaged, reading.dated or typed.dated)}"
     return settle(field, hold(field, text, typed.unit or field.unit))
 
 
@@ -68,8 +77,7 @@ def settle(field: NumberField, held: HeldValue) -> HeldValue:
         return held
     number = _NUMBER.match(held.text)
     assert number is not None  # read_value has found one there
-    day = "" if reading.dated is None else f" on {reading.dated.isoformat()}"
-    return hold(field, f"{number.group().strip()}{day}", reading.unit)
+    return hold(field, f"{number.group().strip()}{_stated(reading)}", reading.unit)
 
 
 def switch_unit(field: NumberField, held: HeldValue, unit: str, today: date) -> HeldValue:
@@ -97,9 +105,30 @@ def read_as(field: NumberField, held: HeldValue, unit: str) -> HeldValue:
     assert number is not None
     text = number.group().strip()
     remark = _read_as_words(text, unit)
-    if reading.dated is not None:
-        text = f"{text} on {reading.dated.isoformat()}"
+    text = f"{text}{_stated(reading)}"
     return HeldValue(Typed(text, unit), held.by_hand, text, unit, remark)
+
+
+def digits_on_screen(held: HeldValue) -> str:
+    """The number as its field shows it, without the unit and whatever else was typed after it; "" where it is none."""
+    reading = read_value(held.text)
+    number = _NUMBER.match(held.text) if isinstance(reading, Reading) else None
+    return "" if number is None else number.group().strip()
+
+
+def without_stated(held: HeldValue, *, mean: bool, day: bool) -> HeldValue:
+    """The same value once its mean, its day or both stand in fields of their own: its texts without them."""
+
+    def stripped(text: str) -> str:
+        text = _DAY_AFTER.sub("", text) if day else text
+        return _MEAN_AFTER.sub("", text) if mean else text
+
+    typed, by_hand = (replace(t, text=stripped(t.text)) for t in (held.typed, held.by_hand))
+    return replace(held, typed=typed, by_hand=by_hand, text=stripped(held.text))
+
+
+def _stated(reading: Reading) -> str:
+    return stated_after(reading.averaged, reading.dated)
 
 
 def _read_as_words(text: str, unit: str) -> str:
@@ -117,8 +146,7 @@ def _show_in(field: NumberField, held: HeldValue, unit: str) -> HeldValue | None
     except UnitError:
         return None
     text = _written(into.apply(reading.number), abs(into.scale) * 10.0**-reading.decimals)
-    day = "" if reading.dated is None else f" on {reading.dated.isoformat()}"
-    return replace(held, text=f"{text}{day}", unit=unit, remark=f"{shown_number(reading, code)} as typed")
+    return replace(held, text=f"{text}{_stated(reading)}", unit=unit, remark=f"{shown_number(reading, code)} as typed")
 
 
 def _written(value: float, step: float) -> str:

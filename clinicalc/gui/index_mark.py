@@ -2,8 +2,8 @@
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen
+from PySide6.QtCore import QPointF, QRectF, QSize, Qt, Signal
+from PySide6.QtGui import QColor, QFontMetrics, QKeyEvent, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QAbstractButton
 
 from clinicalc.assessment.findings import Finding, Grade
@@ -13,6 +13,9 @@ from clinicalc.gui.typeface import CAPTION, face
 SIDE = 24
 """Width and height of the button, in pixels; the square it paints is 20."""
 _INSET = 2.0
+_WITH_OTHERS, _OTHERS_BASELINE = 36, 33
+"""Its height with the numbers of other findings under the square: that of a row, so that nothing moves."""
+_BETWEEN = "\u202f"
 
 
 class IndexMark(QAbstractButton):
@@ -25,6 +28,7 @@ class IndexMark(QAbstractButton):
         super().__init__()
         self._number = 0
         self._grade = Grade.NOTE
+        self._others = ""
         self.setFixedSize(QSize(SIDE, SIDE))
         self.setAccessibleName("Finding")
         policy = self.sizePolicy()
@@ -37,6 +41,11 @@ class IndexMark(QAbstractButton):
     def number(self) -> int:
         """The number it shows; 0 for none."""
         return self._number
+
+    @property
+    def others(self) -> str:
+        """The numbers under the square: of the field's other findings, as many as there is room for."""
+        return self._others
 
     @property
     def grade(self) -> Grade:
@@ -53,9 +62,18 @@ class IndexMark(QAbstractButton):
         self.update()
 
     def show_findings(self, numbered: Sequence[tuple[int, Finding]]) -> None:
-        """Mark the gravest of a field's findings and name them all, in the order of the list; none hides the mark."""
+        """Mark the gravest of a field's findings, the others' numbers under it, and name all; none hides the mark.
+
+        They come in the order of the list.
+        """
+        self._others = _fitting([number for number, _ in numbered[1:]])
+        height = _WITH_OTHERS if self._others else SIDE
+        if height != self.height():
+            self.setFixedHeight(height)
         if not numbered:
             self._number = 0
+            self.setAccessibleName("Finding")
+            self.setAccessibleDescription("")  # its words may name a number that is no longer there
             self.setVisible(False)
             return
         number, gravest = numbered[0]
@@ -76,7 +94,7 @@ class IndexMark(QAbstractButton):
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
         colours = theme.tokens()
         ink = QColor(colours.ink)
-        square = QRectF(self.rect()).adjusted(_INSET, _INSET, -_INSET, -_INSET)
+        square = QRectF(_INSET, 0.0 if self._others else _INSET, SIDE - 2 * _INSET, SIDE - 2 * _INSET)
         painter.setBrush(Qt.BrushStyle.NoBrush)
         if self._grade is Grade.STOP:
             painter.setPen(Qt.PenStyle.NoPen)
@@ -94,4 +112,20 @@ class IndexMark(QAbstractButton):
         painter.setPen(QColor(colours.sheet) if self._grade is Grade.STOP else ink)
         painter.setFont(face(CAPTION, semibold=True))
         painter.drawText(square, Qt.AlignmentFlag.AlignCenter, str(self._number or ""))
+        if self._others:
+            painter.setPen(ink)
+            wide = painter.fontMetrics().horizontalAdvance(self._others)
+            painter.drawText(QPointF((SIDE - wide) / 2, _OTHERS_BASELINE), self._others)
         painter.end()
+
+
+def _fitting(numbers: Sequence[int]) -> str:
+    """The numbers beside each other, or as many as have room, and dots for the rest."""
+    if not numbers:
+        return ""
+    metrics = QFontMetrics(face(CAPTION, semibold=True))
+    for shown in range(len(numbers), 0, -1):
+        words = _BETWEEN.join(map(str, numbers[:shown])) + ("" if shown == len(numbers) else "…")
+        if metrics.horizontalAdvance(words) <= SIDE:
+            return words
+    return "…"

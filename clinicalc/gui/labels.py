@@ -8,9 +8,27 @@ from clinicalc.gui.tokens import LABEL_WIDTH
 from clinicalc.gui.typeface import BASE, CAPTION, UNIT, face
 
 
+class Label(QLabel):
+    """A label that measures a text at a width once: layouts ask for it many times at every change around it."""
+
+    _asked: tuple[object, ...] = ()
+    _heights: dict[int, int]
+
+    def heightForWidth(self, width: int) -> int:
+        """What Qt measures; anew for other words, letters or margins, and once style rules have been looked up."""
+        polished = self.testAttribute(Qt.WidgetAttribute.WA_WState_Polished)
+        asked = (self.text(), self.font(), self.contentsMargins(), self.wordWrap(), polished)
+        if asked != self._asked:
+            self._asked, self._heights = asked, {}
+        height = self._heights.get(width)
+        if height is None:
+            height = self._heights[width] = super().heightForWidth(width)
+        return height
+
+
 def make_label(text: str = "", pixels: int = BASE, *, semibold: bool = False, soft: bool = False) -> QLabel:
     """A label that wraps and shows its text letter for letter, whatever stands in it."""
-    label = QLabel()
+    label = Label()
     label.setTextFormat(Qt.TextFormat.PlainText)
     label.setFont(face(pixels, semibold=semibold))
     label.setWordWrap(True)
@@ -85,21 +103,14 @@ def make_rule() -> QFrame:
 
 
 class Heading(QWidget):
-    """A small heading with a rule to the right edge, and room for a caption at the very right."""
+    """A small heading with a rule to the right edge."""
 
-    def __init__(self, text: str, caption: str = "", *, inset: int = 0) -> None:
+    def __init__(self, text: str, *, inset: int = 0) -> None:
         super().__init__()
         self.label = make_line(text, CAPTION, semibold=True)
-        self._caption = make_line(caption, CAPTION, soft=True)
         row = QHBoxLayout(self)
         row.setContentsMargins(0, 0, inset, 0)
         row.setSpacing(10)
         row.addWidget(self.label)
         row.addWidget(make_rule(), 1)
-        row.addWidget(self._caption)
-        self._caption.setVisible(bool(caption))
         self.setFixedHeight(24)
-
-    def show_caption(self, shown: bool) -> None:
-        """Show or hide the caption, if there is one."""
-        self._caption.setVisible(shown and bool(self._caption.text()))

@@ -1,23 +1,25 @@
 """The ruler with the names and figures of its lanes at the left: three columns in which every view stands."""
 
+from dataclasses import dataclass
+from itertools import zip_longest
 from math import ceil
 
 from PySide6.QtCore import QSize
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QLabel, QSizePolicy, QWidget
 
-from clinicalc.assessment.result import Assessment
 from clinicalc.gui.figure_view import FigureView, lettering, text_part
 from clinicalc.gui.labels import make_line
 from clinicalc.gui.tokens import FIGURE_COLUMN
-from clinicalc.gui.typeface import CAPTION
-from clinicalc.report.measured import Interval, Measured
+from clinicalc.gui.typeface import BASE, CAPTION
+from clinicalc.report.columns import Columns
+from clinicalc.report.measured import APPROXIMATE, Lane, Measured
 from clinicalc.report.ruler import Ruler, RulerSize, draw_ruler
 from clinicalc.report.shapes import Figure
 
 RULER_AT = FIGURE_COLUMN + 24
 """Where the ruler's axis begins, from the left edge of the words."""
-_LANE, _TEXT, _LEAST_WIDTH = 27.0, 13.0, 120.0
+_LANE, _TEXT, _LEAST_WIDTH, _GAP = 27.0, 13.0, 120.0, 6.0
 _WIDE_LINE = 1.6
 """Room under the figures of the axis for the line of the wide scale, in text sizes, kept whether it is there or not."""
 
@@ -28,30 +30,35 @@ def overhang() -> int:
     return ceil(RulerSize(0.0, _LANE * part, _TEXT * part).overhang)
 
 
-def measure_assessment(assessment: Assessment) -> Measured:
-    """What a ruler shows of an assessment; without an estimate only the scale."""
-    place = next((e for e in assessment.model.equations if e.content.id == assessment.equation), None)
-    link = (place or assessment.model.equations[0]).content.link
-    estimate = assessment.estimate
-    if estimate is None:
-        return Measured(link, level=assessment.level)
-    band = None if estimate.band is None else Interval(estimate.band.lower, estimate.band.upper)
-    return Measured(link, estimate.probability, estimate.complement, band, assessment.level)
+def columns_in(width: int) -> Columns:
+    """The three columns of a view that is as wide as the lanes: labels, figures, and a ruler like theirs."""
+    part = text_part()
+    room = max(_LEAST_WIDTH, width - RULER_AT * part - overhang())
+    return Columns(RulerSize(room, _LANE * part, _TEXT * part), FIGURE_COLUMN * part, RULER_AT * part, BASE * part)
+
+
+@dataclass(frozen=True, slots=True)
+class LaneLabels:
+    """The words beside one lane."""
+
+    name: QLabel
+    figures: QLabel
 
 
 class Lanes(QWidget):
-    """Shows what was measured; the axis keeps its place whatever there is to draw."""
+    """Shows what was measured; the lanes and the axis keep their place whatever there is to draw."""
 
     def __init__(self) -> None:
         super().__init__()
         self._measured: Measured | None = None
+        self._lanes: tuple[Lane, ...] = (Lane.BAND,)
         self._ruler: Ruler | None = None
-        self.name = make_line()
-        self.figures = make_line("", semibold=True)
+        self.rows: list[LaneLabels] = []
         self.caption = make_line("", CAPTION, soft=True)
         self.view = FigureView()
-        for child in (self.name, self.figures, self.caption, self.view):
+        for child in (self.caption, self.view):
             child.setParent(self)
+        self._add_row()
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
 
     @property
@@ -59,12 +66,14 @@ class Lanes(QWidget):
         """The ruler's drawing, with its table."""
         return None if self._ruler is None else self._ruler.figure
 
-    def show_measured(self, measured: Measured | None, within: str = "") -> None:
+    def show_measured(
+        self, measured: Measured | None, within: str = "", lanes: tuple[Lane, ...] = (Lane.BAND,)
+    ) -> None:
         """Show a ruler, or nothing at all where there is no model; `within` is the horizon in words."""
         self.caption.setText(f"%{f' within {within}' if within else ''}")
         self.setVisible(measured is not None)
-        if measured != self._measured:
-            self._measured = measured
+        if (measured, lanes) != (self._measured, self._lanes):
+            self._measured, self._lanes = measured, lanes
             self._draw()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
@@ -72,35 +81,60 @@ class Lanes(QWidget):
         super().resizeEvent(event)
         self._draw()
 
+    def _add_row(self) -> None:
+        # soft as long as nothing is known: other ink means other style rules, 4 ms when it is first changed
+        row = LaneLabels(make_line(soft=True), make_line("", semibold=True, soft=True))
+        for label in (row.name, row.figures):
+            label.setParent(self)
+        self.rows.append(row)
+
     def _draw(self) -> None:
         part = text_part()
         if self._measured is None:
             self._ruler = None
             self.view.show_figure(None)
-            self.figures.setText("")
+            for row in self.rows:
+                row.figures.setText("")
             return
-        at = RULER_AT * part
-        size = RulerSize(max(_LEAST_WIDTH, self.width() - at - overhang()), _LANE * part, _TEXT * part)
-        ruler = draw_ruler(self._measured, size, lettering().width)
+        columns = columns_in(self.width())
+        ruler = draw_ruler(self._measured, columns.ruler, lettering().width, self._lanes)
         self._ruler = ruler
-        lane = ruler.lanes[0]
-        self.name.setText(lane.name)
-        self.figures.setText(lane.figures)
-        known = self._measured.probability is not None
-        for label in (self.name, self.figures):
-            set_ink(label, "" if known else "soft")
+        self._write_rows(ruler)
         self.view.show_figure(ruler.figure)
-        left = round(at - ruler.overhang)
+        left = round(columns.ruler_at - ruler.overhang)
         self.view.setGeometry(left, 0, round(ruler.figure.width) + 1, round(ruler.figure.height) + 1)
-        column = FIGURE_COLUMN * part
-        _stand(self.name, 0.0, lane.y)
-        _stand(self.figures, column - self.figures.sizeHint().width(), lane.y)
-        _stand(self.caption, column - self.caption.sizeHint().width(), ruler.figure.baseline)
+        _stand(self.caption, FIGURE_COLUMN * part - self.caption.sizeHint().width(), ruler.figure.baseline)
         self.setFixedHeight(round(ruler.figure.baseline + _WIDE_LINE * _TEXT * part))
+
+    def _write_rows(self, ruler: Ruler) -> None:
+        """Name and figures beside each lane; what is known of no patient stays soft, a decision point does not."""
+        while len(self.rows) < len(ruler.lanes):
+            self._add_row()
+        column = FIGURE_COLUMN * text_part()
+        known = self._measured is not None and self._measured.probability is not None
+        for row, lane in zip_longest(self.rows, ruler.lanes):
+            row.figures.setText(lane.figures if lane else "")
+            row.name.setText(_fitting(row, lane.name, column) if lane else "")
+            for label in (row.name, row.figures):
+                label.setVisible(lane is not None)
+            if lane is None:
+                continue
+            for label in (row.name, row.figures):
+                set_ink(label, "" if known or lane.detail else "soft")
+            _stand(row.name, 0.0, lane.y)
+            _stand(row.figures, column - row.figures.sizeHint().width(), lane.y)
 
     def sizeHint(self) -> QSize:
         """As high as was fixed, as wide as there is room."""
         return QSize(round((RULER_AT + _LEAST_WIDTH) * text_part()), self.height())
+
+
+def _fitting(row: LaneLabels, name: str, column: float) -> str:
+    """The lane's name, or a short one where its figures leave too little room: they may need many decimals."""
+    room = column - row.figures.sizeHint().width() - _GAP
+    if row.name.fontMetrics().horizontalAdvance(name) <= room:
+        return name
+    return "Spread" if name == Lane.SPREAD else name.replace(APPROXIMATE, " about")
 
 
 def _stand(label: QLabel, x: float, baseline: float) -> None:

@@ -25,7 +25,6 @@ from clinicalc.gui.preferences import Preferences
 from clinicalc.gui.refusal_view import RefusalView
 from clinicalc.gui.rows import FieldRow
 from clinicalc.operations.bedside import open_model
-from clinicalc.operations.recent_titles import name_recent_files
 from clinicalc.settings import ThemeChoice
 
 SMALLEST = QSize(1024, 640)
@@ -62,12 +61,14 @@ class MainWindow(QWidget):
         self.setMinimumSize(NARROWEST)
         self.page_bar = PageBar(self.preferences.settings.theme)
         self.model_bar = ModelBar(self.state)
-        self.patient = PatientPage(self.state, self.model_bar)
+        self.foot = FootBar()
+        self._lay_out()
+        self.patient = PatientPage(self.state, self.model_bar, self.pages)
         self.values, self.sheet, self.field_note = self.patient.values, self.patient.sheet, self.patient.field_note
         self.refusal = RefusalView()
-        self.foot = FootBar()
+        self.pages.addWidget(self.patient)
+        self.pages.addWidget(self.refusal)
         self.outputs = Outputs(self, self.state, self.foot, self.preferences, choose_save, show_preview)
-        self._lay_out()
         self._connect()
         self._listen_for_keys()
         self.page_bar.tab.show_number(number)
@@ -124,9 +125,8 @@ class MainWindow(QWidget):
             focused.setFocus(Qt.FocusReason.OtherFocusReason)
 
     def _lay_out(self) -> None:
+        """Put the parts in place; the pages are filled afterwards, since what is moved takes all inside it along."""
         self.pages = QStackedWidget()
-        self.pages.addWidget(self.patient)
-        self.pages.addWidget(self.refusal)
         self._column = QVBoxLayout(self)
         self._column.setContentsMargins(0, 0, 0, 0)
         self._column.setSpacing(0)
@@ -140,7 +140,7 @@ class MainWindow(QWidget):
         chooser = self.model_bar.chooser
         chooser.open_action.triggered.connect(self.open_file)
         chooser.file_chosen.connect(self.open_path)
-        chooser.about_to_open.connect(lambda: chooser.offer(name_recent_files(self.preferences.settings.recent_files)))
+        chooser.about_to_open.connect(self._offer_recent_files)
         self.foot.new_patient.clicked.connect(self.begin_new_patient)
         self.refusal.closed.connect(self._close_refusal)
         self.page_bar.theme_chosen.connect(self._choose_theme)
@@ -149,6 +149,7 @@ class MainWindow(QWidget):
         self.preferences.changed.connect(self._show_settings)
         self.preferences.refused.connect(self.foot.say)
         self.values.rebuilt.connect(self._take_rows)
+        self.values.stops_moved.connect(self._order_tabs)
         self.values.row_entered.connect(self._note_field)
         self.values.left_last.connect(self._leave_values)
         self.values.mark_pressed.connect(self._go_to_finding)
@@ -176,6 +177,7 @@ class MainWindow(QWidget):
 
     def _show_settings(self) -> None:
         self.page_bar.practice.setText(self.preferences.settings.practice)
+        self.state.use_practice_points(self.preferences.settings.decision_points)
 
     def _choose_theme(self, choice: ThemeChoice) -> None:
         theme.choose(choice)
@@ -189,6 +191,11 @@ class MainWindow(QWidget):
         view.show()
         view.raise_()
         view.activateWindow()
+
+    def _offer_recent_files(self) -> None:
+        from clinicalc.operations.recent_titles import name_recent_files
+
+        self.model_bar.chooser.offer(name_recent_files(self.preferences.settings.recent_files))
 
     def _note_field(self, row: FieldRow | None) -> None:
         if row is None:
@@ -230,10 +237,14 @@ class MainWindow(QWidget):
         if focused is not None and self.values.isAncestorOf(focused):
             self._left_field = focused
             self.sheet.scroller.setFocus(Qt.FocusReason.ShortcutFocusReason)
-        elif self._left_field is not None and self._left_field in self.values.tab_stops():
+        elif self._left_field is not None and self._left_field in self._visible_stops():
             self._left_field.setFocus(Qt.FocusReason.ShortcutFocusReason)
         else:
             self.values.focus_first()
+
+    def _visible_stops(self) -> list[QWidget]:
+        """Where the cursor can go among the values: a second field is there only while the comparison is open."""
+        return [stop for stop in self.values.tab_stops() if stop.isVisibleTo(self)]
 
     def _leave_values(self) -> None:
         target = self.foot.save_pdf if self.foot.save_pdf.isEnabled() else self.foot.new_patient

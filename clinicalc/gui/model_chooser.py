@@ -3,23 +3,38 @@
 A menu and not a list that arrow keys turn through: another model clears the patient, so it is chosen outright.
 """
 
+from __future__ import annotations
+
 from collections.abc import Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QPoint, QPointF, QRectF, Qt, Signal
-from PySide6.QtGui import QAction, QColor, QFontMetrics, QKeyEvent, QKeySequence, QPainter, QPaintEvent, QPen
-from PySide6.QtWidgets import QAbstractButton, QMenu, QSizePolicy
+from PySide6.QtCore import QEvent, QPoint, QPointF, QRectF, Qt, Signal
+from PySide6.QtGui import (
+    QAction,
+    QColor,
+    QFontMetrics,
+    QHelpEvent,
+    QKeyEvent,
+    QKeySequence,
+    QPainter,
+    QPaintEvent,
+    QPen,
+)
+from PySide6.QtWidgets import QAbstractButton, QMenu, QSizePolicy, QToolTip
 
 from clinicalc.gui import theme
 from clinicalc.gui.access_keys import show_ampersands
 from clinicalc.gui.tokens import RING
-from clinicalc.gui.typeface import UNIT, VALUE, face
-from clinicalc.operations.recent_titles import RecentFile
+from clinicalc.gui.typeface import CAPTION, UNIT, VALUE, face
+
+if TYPE_CHECKING:
+    from clinicalc.operations.recent_titles import RecentFile
 
 _HEIGHT = 32
-_WIDTH, _WIDEST = 322, 560
-_NARROWEST = 200
-_BESIDE_TITLE = 40
+_WIDTH, _NARROWEST = 322, 200
+_BEFORE_TITLE, _AFTER_TITLE = 10, 30
+_LINE_PITCH = 14
 _NONE = "No coefficient file is open"
 _LONGEST = 72
 _OPENING_KEYS = (Qt.Key.Key_Return, Qt.Key.Key_Enter, Qt.Key.Key_Down, Qt.Key.Key_Up, Qt.Key.Key_Space)
@@ -44,6 +59,7 @@ class ModelChooser(QAbstractButton):
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setFixedHeight(_HEIGHT + 2 * RING)
         self.setMinimumWidth(_NARROWEST)
+        self.setMaximumWidth(_WIDTH + 2 * RING)
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
         self.clicked.connect(self.open_menu)
         self.show_title("")
@@ -52,9 +68,21 @@ class ModelChooser(QAbstractButton):
         """Show which model is in use, "" for none."""
         self.title = title
         self.setAccessibleName(f"Model: {title or _NONE}")
-        text = QFontMetrics(face(VALUE, semibold=True)).horizontalAdvance(title) + _BESIDE_TITLE + 2
-        self.setMaximumWidth(min(max(text, _WIDTH), _WIDEST) + 2 * RING)
         self.update()
+
+    @property
+    def shown_lines(self) -> tuple[str, ...]:
+        """The title as it is shown: on one line or two, or with its middle left out; () for no title."""
+        return self._set_title()[1]
+
+    @property
+    def tip(self) -> str:
+        """The whole title over one whose middle is left out, else ""; as markup, for Qt guesses whether a tip is."""
+        if " ".join(self.shown_lines) == self.title:
+            return ""
+        import html  # a table of all of its names for letters comes with it
+
+        return f"<qt>{html.escape(self.title)}</qt>"
 
     def offer(self, files: Sequence[RecentFile]) -> None:
         """Replace the files in the menu."""
@@ -73,6 +101,13 @@ class ModelChooser(QAbstractButton):
         self.menu.setMinimumWidth(self.width() - 2 * RING)
         self.menu.setActiveAction(self.menu.actions()[0])
         self.menu.popup(self.mapToGlobal(QPoint(RING, self.height() - RING)))
+
+    def event(self, event: QEvent) -> bool:
+        """The tip is worked out when it is asked for."""
+        if event.type() == QEvent.Type.ToolTip and isinstance(event, QHelpEvent):
+            QToolTip.showText(event.globalPos(), self.tip, self)
+            return True
+        return super().event(event)
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
         """Enter, space and arrows open the menu; none of them changes the model."""
@@ -93,17 +128,38 @@ class ModelChooser(QAbstractButton):
         painter.setBrush(QColor(colours.field))
         painter.setPen(QPen(QColor(colours.edge), 1))
         painter.drawRoundedRect(body.adjusted(0.5, 0.5, -0.5, -0.5), 3, 3)
-        painter.setFont(face(VALUE, semibold=bool(self.title)))
         painter.setPen(QColor(colours.ink if self.title else colours.soft))
-        room = body.adjusted(10, 0, 10 - _BESIDE_TITLE, 0)
-        fitted = painter.fontMetrics().elidedText(
-            self.title or "Choose a model", Qt.TextElideMode.ElideRight, int(room.width())
-        )
-        painter.drawText(room, Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine, fitted)
+        self._paint_title(painter, body.left() + _BEFORE_TITLE, body.center().y())
         painter.setPen(QPen(QColor(colours.ink), 1.5))
         x, y = body.right() - 15, body.center().y() - 2
         painter.drawPolyline([QPointF(x - 4, y), QPointF(x, y + 4), QPointF(x + 4, y)])
         painter.end()
+
+    def _set_title(self) -> tuple[int, tuple[str, ...]]:
+        """The size of the title's letters in pixels, and its lines.
+
+        On one line, smaller where need be, else on two; of a title too long for that the middle is left out, since
+        titles differ most often at their ends.
+        """
+        room = self.width() - 2 * RING - _BEFORE_TITLE - _AFTER_TITLE
+        for pixels in (VALUE, UNIT):
+            if QFontMetrics(face(pixels, semibold=True)).horizontalAdvance(self.title) <= room:
+                return pixels, (self.title,) if self.title else ()
+        small = QFontMetrics(face(CAPTION, semibold=True))
+        words = self.title.split(" ")
+        ends = range(len(words) - 1, 0, -1)
+        end = next((n for n in ends if small.horizontalAdvance(" ".join(words[:n])) <= room), 0)
+        first, second = " ".join(words[:end]), " ".join(words[end:])
+        if not first or small.horizontalAdvance(second) > room:
+            return CAPTION, (small.elidedText(self.title, Qt.TextElideMode.ElideMiddle, room),)
+        return CAPTION, (first, second)
+
+    def _paint_title(self, painter: QPainter, x: float, middle: float) -> None:
+        pixels, lines = self._set_title()
+        painter.setFont(face(pixels, semibold=bool(self.title)))
+        top = middle + painter.fontMetrics().capHeight() / 2 - _LINE_PITCH * (max(len(lines), 1) - 1) / 2
+        for place, line in enumerate(lines or ("Choose a model",)):
+            painter.drawText(QPointF(x, round(top + place * _LINE_PITCH)), line)
 
 
 def _shortened(title: str) -> str:

@@ -1,43 +1,49 @@
 """The row of a measured value: number and unit in one frame, a remark or an offer beside it."""
 
-import re
 from collections.abc import Sequence
-from dataclasses import replace
 from datetime import date
 
 from PySide6.QtCore import Qt
-from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QWidget
 
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
-from clinicalc.assessment.limits import shown_limits, words_for
-from clinicalc.assessment.numerals import plain
+from clinicalc.assessment.limits import words_for
+from clinicalc.assessment.not_measured import says_not_measured
 from clinicalc.assessment.result import ValueLine
-from clinicalc.gui.access_keys import show_ampersands
+from clinicalc.coefficients.answers import NOT_MEASURED, NOT_MEASURED_WORDS
+from clinicalc.gui.averaged_entry import AveragedEntry
 from clinicalc.gui.dated_entry import DatedEntry
-from clinicalc.gui.held_value import HeldValue, choosable_units, hold, hold_entry, read_as, settle, switch_unit
-from clinicalc.gui.labels import make_button, make_field_label, make_label
-from clinicalc.gui.range_remark import RangeRemark
+from clinicalc.gui.held_value import (
+    HeldValue,
+    choosable_units,
+    digits_on_screen,
+    hold,
+    hold_entry,
+    read_as,
+    settle,
+    switch_unit,
+    without_stated,
+)
+from clinicalc.gui.labels import make_field_label
+from clinicalc.gui.row_places import RowPlaces
 from clinicalc.gui.rows import FieldRow
-from clinicalc.gui.tokens import COLUMN_GAP, FRAME_WIDTH, RING
-from clinicalc.gui.typeface import CAPTION, UNIT
+from clinicalc.gui.stated_entry import StatedEntry
 from clinicalc.gui.value_frame import ValueFrame
-from clinicalc.report.range_line import WIDTH, RangeOfValues
-from clinicalc.units.conversion import conversion
+from clinicalc.gui.value_side import SideState, ValueSide
 from clinicalc.units.reading import Reading, read_value
 from clinicalc.units.unit import unit as unit_of
 
-_GAP_BEFORE_FRAME, _FRAME, _GAP_BEFORE_REMARK, _REMARK, _MARK = range(1, 6)
-"""Columns of the row; the label is the first."""
-_DATE_AFTER = re.compile(r"\s+on\s.*$", re.IGNORECASE)
-"""A date typed after a number, as the reader of values knows it."""
-
 
 class NumberRow(FieldRow):
-    """Label, frame, remark. Holds what was typed and shows it in the chosen unit."""
+    """Label, frame, remark. Holds what was typed and shows it in the chosen unit.
 
-    def __init__(self, field: NumberField, marked_label: str) -> None:
+    In the place of the remark stands one of: an offer, the button for what was not measured, the second field of a
+    comparison, the range or words.
+    """
+
+    def __init__(self, field: NumberField, marked_label: str, *, changeable: bool = False) -> None:
         super().__init__(field.id, field.meaning)
         self._field = field
         self._held: HeldValue = hold(field, "", field.unit)
@@ -47,18 +53,18 @@ class NumberRow(FieldRow):
         self.edit = self.frame.edit
         self.edit.setAccessibleName(field.label)
         self.label = make_field_label(marked_label, field.label, self.edit)
-        self.remark = make_label("", CAPTION, soft=True)
-        self.offer = make_button("", name="offer", pixels=UNIT)
-        self.range = RangeRemark()
+        self._side = ValueSide(field, self, changeable=changeable)
+        self.remark, self.range, self.offer = self._side.remark, self._side.range, self._side.offer
+        self.not_measured = self._side.not_measured
+        self.change = self._change = self._side.change
         self.dated = DatedEntry(field.label) if field.valid_days is not None else None
-        self._came_dated = False  # the date in the date field came with the number, and goes with it
-        self._inside = True
-        self._under: dict[QWidget, bool] = {}
-        self._offer_place = QWidget(self)
-        self._offer_place.hide()
+        averaged = AveragedEntry(field.label) if field.within_person is not None else None
+        self.stated = StatedEntry(averaged, self.dated) if averaged is not None or self.dated is not None else None
+        self._inside, self._compact = True, False
         if field.meaning:
             self.edit.setAccessibleDescription(field.meaning)
-        self._lay_out()
+        self._side.lie_in(RowPlaces(self, self.label, self.frame, self.mark))
+        self._settle_side()
         self._connect()
 
     @property
@@ -68,32 +74,36 @@ class NumberRow(FieldRow):
 
     def fill(self, typed: Typed | None) -> Typed | None:
         """Show a value or none in its unit (the file's own for none)."""
-        if self.dated is not None:
-            self.dated.fill(None if typed is None else typed.dated)
-            self._came_dated = typed is not None and typed.dated is not None
-            typed = None if typed is None else replace(typed, dated=None)
-        self._held = hold_entry(self._field, typed)
-        self._part_from_date()
+        if self.stated is not None:
+            typed = self.stated.fill(typed)
+        open_ = typed is not None and self._says_open(typed.text)
+        self._held = hold_entry(self._field, None if open_ else typed)
+        self._show_open(open_)
+        self._part_from_stated()
         self._show_held()
+        self._keep_beside()
         return self._as_typed()
+
+    def fill_change(self, typed: Typed | None) -> Typed | None:
+        """Show a changed value or none, in the unit of the patient's own."""
+        if self._change is None:
+            return typed
+        self._change.fill(typed)
+        self._keep_beside()
+        return self._change.typed
 
     def show_remarks(self, line: ValueLine | None, findings: Sequence[Finding]) -> None:
         """The offer of a likely unit, or how the value is to be read, or what was worked out, or the range."""
         self.frame.set_stopped(any(f.grade is Grade.STOP and f.code != "missing" for f in findings))
         offers = [code for finding in findings for code in finding.offer if code in choosable_units(self._field)]
         self._offer = offers[0] if offers else ""
-        if self._offer:
-            digits = read_as(self._field, self._held, self._offer).text.partition(" on ")[0]
-            words = show_ampersands(f"{digits} {unit_of(self._offer).spelling}")
-            self.offer.setText(f"Use {words}")
-            self.offer.setAccessibleName(f"{self._field.label}: use {words}")
         had_focus = self.offer.hasFocus()
-        self._offer_place.setVisible(bool(self._offer))
+        self._side.show_offer(self._offer and self._offer_words())
         if had_focus and not self._offer:
             self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
         self._line = line
         self._inside = all(f.code is not FindingCode.OUTSIDE_DERIVATION for f in findings)
-        self._place_remarks()
+        self._settle_side()
 
     @property
     def has_offer(self) -> bool:
@@ -107,56 +117,39 @@ class NumberRow(FieldRow):
     def fit(self, room: int, *, compact: bool) -> None:
         """Compact: remark or offer under the frame, and no range."""
         self._compact = compact
-        if self.dated is not None:
-            self.dated.set_compact(compact)
-        self._place_remarks()
+        if self.stated is not None:
+            self.stated.set_compact(compact)
+        self._settle_side()
 
     def note(self) -> str:
         """What the file means by the field; where ranges do not stand beside values, the range as well."""
         low, high = self._field.derivation
-        if not self._compact or (low is None and high is None):
+        if not (self._compact or self.changes_shown) or (low is None and high is None):
             return super().note()
         words = words_for(self._field, self._field.derivation, self._held.unit)
         return f"{super().note()} Derivation range {words}.".strip()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
-        """Value, unit, date, offer, mark."""
+        """Value, unit, what is stated beside it, offer, second field, mark."""
         chooser = () if self.frame.chooser is None else (self.frame.chooser,)
-        dated = () if self.dated is None else (self.dated.edit,)
-        return (self.edit, *chooser, *dated, self.offer, self.mark)
-
-    def _lay_out(self) -> None:
-        self._compact = False
-        beside = QHBoxLayout(self._offer_place)
-        beside.setContentsMargins(0, 0, 0, 0)
-        beside.addWidget(self.offer)
-        beside.addStretch(1)
-        self._aside = QWidget(self)  # shown without a parent it would be a window of its own
-        aside = QVBoxLayout(self._aside)
-        aside.setContentsMargins(0, 0, 0, 0)
-        aside.setSpacing(0)
-        aside.addWidget(self.range)
-        aside.addWidget(self.remark)
-        self._grid = QGridLayout(self)
-        self._grid.setContentsMargins(0, 0, 0, 0)
-        self._grid.setHorizontalSpacing(0)
-        self._grid.setVerticalSpacing(0)
-        self._grid.setColumnMinimumWidth(_GAP_BEFORE_FRAME, COLUMN_GAP)
-        self._grid.setColumnMinimumWidth(_GAP_BEFORE_REMARK, RING)
-        self._grid.setColumnStretch(_REMARK, 1)
-        self._grid.addWidget(self.label, 0, 0)
-        self._grid.addWidget(self.frame, 0, _FRAME)
-        self._grid.addWidget(self.mark, 0, _MARK, Qt.AlignmentFlag.AlignVCenter)
-        self._place_remarks()
+        stated = () if self.stated is None else self.stated.tab_stops()
+        open_ = () if self.not_measured is None else (self.not_measured,)
+        change = () if self.change is None else self.change.tab_stops()
+        return (self.edit, *chooser, *stated, self.offer, *open_, *change, self.mark)
 
     def _connect(self) -> None:
         self.edit.textChanged.connect(self._take_text)
         self.edit.returnPressed.connect(self.entered)
         self.edit.left.connect(self._settle)
         self.offer.clicked.connect(self._take_offer)
-        if self.dated is not None:
-            self.dated.changed.connect(self._take_date)
-            self.dated.entered.connect(self.entered)
+        if self.not_measured is not None:
+            self.not_measured.clicked.connect(self._take_open)
+        if self._change is not None:
+            self._change.retyped.connect(self._tell_change)
+            self._change.entered.connect(self.change_entered)
+        if self.stated is not None:
+            self.stated.changed.connect(self._tell)
+            self.stated.entered.connect(self.entered)
         if self.frame.chooser is not None:
             self.frame.chooser.setAccessibleName(f"{self._field.label}, unit")
             self.frame.chooser.currentIndexChanged.connect(self._take_unit)
@@ -164,15 +157,10 @@ class NumberRow(FieldRow):
 
     def _take_text(self, text: str) -> None:
         self._held = hold(self._field, text, self._held.unit)
-        if self.dated is not None and self._came_dated:
-            self.dated.fill(None)  # the day of another number
-            self._came_dated = False
+        self._show_open(False)
+        if self.stated is not None:
+            self.stated.let_go_of_what_came()
         self._show_unit()
-        self._tell()
-
-    def _take_date(self) -> None:
-        """A date that was typed in its own field is the person's, whatever number stands there later."""
-        self._came_dated = False
         self._tell()
 
     def _take_unit(self, place: int) -> None:
@@ -193,38 +181,74 @@ class NumberRow(FieldRow):
         self._tell()
         self.edit.setFocus(Qt.FocusReason.OtherFocusReason)
 
+    def _take_open(self, pressed: bool) -> None:
+        """The button was pressed: nothing is typed any more, and that is said of the value or taken back."""
+        self._held = hold(self._field, "", self._held.unit)
+        self._show_open(pressed)
+        self._show_held()
+        self._tell()
+
+    def _says_open(self, text: str) -> bool:
+        return self.not_measured is not None and says_not_measured(self._field, text)
+
+    def _show_open(self, open_: bool) -> None:
+        """The frame reads "not measured" for as long as that is said of the value."""
+        if self.not_measured is None:
+            return
+        self.not_measured.show_pressed(open_)
+        self.frame.show_in_its_place(NOT_MEASURED_WORDS if open_ else "")
+        self.edit.setAccessibleDescription(NOT_MEASURED_WORDS if open_ else self._field.meaning)
+
     def _settle(self) -> None:
         before = self._held
+        if self._says_open(before.typed.text):
+            self._take_open(True)
+            return
         self._held = settle(self._field, self._held)
-        self._part_from_date()
+        self._part_from_stated()
         if self._held is not before:
             self._show_held()
             self._tell()
 
-    def _part_from_date(self) -> None:
-        """A date typed after the number goes to the date field, where there is one."""
+    def _part_from_stated(self) -> None:
+        """A mean and a date typed after the number go to their own fields, where there are such."""
         reading = read_value(self._held.typed.text)
-        if self.dated is None or not isinstance(reading, Reading) or reading.dated is None:
+        if self.stated is None or not isinstance(reading, Reading):
             return
-        self.dated.fill(reading.dated)
-        self._came_dated = True
-        held = self._held
-        typed, by_hand = (replace(t, text=_without_date(t.text)) for t in (held.typed, held.by_hand))
-        self._held = replace(held, typed=typed, by_hand=by_hand, text=_without_date(held.text))
+        mean, day = self.stated.take_over(reading)
+        if mean or day:
+            self._held = without_stated(self._held, mean=mean, day=day)
+
+    def _offer_words(self) -> str:
+        digits = digits_on_screen(read_as(self._field, self._held, self._offer))
+        return f"{digits} {unit_of(self._offer).spelling}"
 
     def _tell(self) -> None:
-        self.typed.emit(self.field_id, self._as_typed())
+        """The value was typed or read anew, and a change that stands in another unit now may be read anew with it."""
+        before = None if self._change is None else self._change.typed
+        self._keep_beside()
+        after = None if self._change is None else self._change.typed
+        if after != before:
+            self.both_typed.emit(self.field_id, self._as_typed(), after)
+        else:
+            self.typed.emit(self.field_id, self._as_typed())
+
+    def _tell_change(self) -> None:
+        self.changed.emit(self.field_id, None if self._change is None else self._change.typed)
+
+    def _keep_beside(self) -> None:
+        if self._change is not None:
+            self._change.stand_beside(self._held)
+            self._change.show_open(self.not_measured is not None and self.not_measured.isChecked())
 
     def _as_typed(self) -> Typed | None:
-        """The value with its date. What is no date is put after the number, where it is refused in words."""
+        """The value with what is stated beside it."""
+        if self.not_measured is not None and self.not_measured.isChecked():
+            return Typed(NOT_MEASURED)
         typed = self._held.typed
         if not typed.text.strip():
             return None
-        if self.dated is None or not self.dated.text:
-            return typed
-        if self.dated.day is None:
-            return replace(typed, text=f"{typed.text} on {self.dated.text}")
-        return replace(typed, dated=self.dated.day)
+        return typed if self.stated is None else self.stated.with_stated(typed)
 
     def _show_held(self) -> None:
         if self.edit.text() != self._held.text or self.edit.isUndoAvailable() or self.edit.isRedoAvailable():
@@ -240,66 +264,7 @@ class NumberRow(FieldRow):
             self.frame.chooser.show_place(self.frame.chooser.findData(self._held.unit))
         self.frame.fit_text()
 
-    def _remark_words(self) -> str:
-        """What is to be said in words: how the value is read, or what was worked out, or of which day it is."""
-        line = self._line
-        if self._held.remark:
-            return self._held.remark
-        if line is not None and line.worked_out:
-            digits = "" if line.number is None else plain(line.number)  # as many as the findings name
-            unit = "" if self._field.is_bare or self._field.unit == "1" else f" {self._field.spelling}"
-            return f"{digits}{unit} worked out"
-        return "" if line is None or line.dated is None else f"of {line.dated.isoformat()}"
-
-    def _range_on_screen(self) -> RangeOfValues | None:
-        low, high = self._field.derivation
-        if low is None and high is None:
-            return None
-        texts = ("" if end is None else plain(end) for end in shown_limits(self._field, (low, high), self._held.unit))
-        return RangeOfValues(self._on_screen(low), self._on_screen(high), *texts)
-
-    def _on_screen(self, value: float | None) -> float | None:
-        """A value of the file's unit in the unit on screen."""
-        if value is None:
-            return None
-        return conversion(self._field.quantity, self._field.unit, self._held.unit, self._field.factor).apply(value)
-
-    def _number_on_screen(self) -> float | None:
-        """The value in the unit on screen; where the model refuses it for its range, as it was typed."""
-        if self._line is not None and self._line.number is not None:
-            return self._on_screen(self._line.number)
-        reading = None if self._inside else read_value(self._held.typed.text)
-        if not isinstance(reading, Reading):
-            return None
-        code = reading.unit or self._held.typed.unit or self._field.unit
-        return conversion(self._field.quantity, code, self._held.unit, self._field.factor).apply(reading.number)
-
-    def _place_remarks(self) -> None:
-        """One of offer, words and range; only a date stands under the range, since both fit."""
-        words = "" if self._offer else self._remark_words()
-        only_dated = not self._held.remark and not (self._line is not None and self._line.worked_out)
-        ranged = not self._compact and not self._offer and (only_dated or not self._inside)
-        span = self._range_on_screen() if ranged else None
-        number = self._number_on_screen()
-        self.range.show_range(span, number, inside=self._inside)
-        self.remark.setText(words)
-        self.remark.setVisible(bool(words))
-        self._aside.setVisible(span is not None or bool(words))
-        self._place(self._aside, under=self._compact)
-        self._place(self._offer_place, under=self._compact or self.offer.sizeHint().width() > WIDTH)
-
-    def _place(self, widget: QWidget, *, under: bool) -> None:
-        """Beside the frame, or on a line of its own under it."""
-        if self._under.get(widget) == under:
-            return
-        self._under[widget] = under
-        place = (1, _FRAME, 1, _MARK - _FRAME + 1) if under else (0, _REMARK, 1, 1)
-        self._grid.removeWidget(widget)
-        self._grid.addWidget(widget, *place, Qt.AlignmentFlag.AlignVCenter if not under else Qt.AlignmentFlag(0))
-        widget.setContentsMargins(RING if under else 0, 0, 0, 2 if under else 0)
-        if widget is self._offer_place:
-            self.offer.setMinimumWidth(FRAME_WIDTH if under else 0)
-
-
-def _without_date(text: str) -> str:
-    return _DATE_AFTER.sub("", text)
+    def _settle_side(self) -> None:
+        self._side.settle(
+            SideState(self._held, self._line, bool(self._offer), self._inside, self._compact, self.changes_shown)
+        )

@@ -4,7 +4,9 @@ from collections.abc import Sequence
 
 from PySide6.QtCore import QEvent, QObject, QPoint, Qt
 from PySide6.QtGui import QKeyEvent, QResizeEvent
-from PySide6.QtWidgets import QAbstractSlider, QApplication, QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QAbstractSlider, QApplication, QVBoxLayout, QWidget
+
+from clinicalc.gui.scroller import Scroller
 
 _LARGEST = 16_777_215
 """What Qt calls no limit to a height."""
@@ -19,12 +21,12 @@ _SCROLLS = {
 }
 
 
-class OneColumn(QScrollArea):
+class OneColumn(Scroller):
     """Holds the panes while the window is narrow, each as high as its content, and follows the focus."""
 
     def __init__(self) -> None:
         super().__init__()
-        self._areas: tuple[QScrollArea, ...] = ()
+        self._areas: tuple[Scroller, ...] = ()
         self._policies: list[Qt.ScrollBarPolicy] = []
         self.setWidgetResizable(True)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
@@ -40,7 +42,7 @@ class OneColumn(QScrollArea):
         if isinstance(application, QApplication):
             application.focusChanged.connect(self._follow_focus)
 
-    def take(self, panes: Sequence[QWidget], areas: tuple[QScrollArea, ...]) -> None:
+    def take(self, panes: Sequence[QWidget], areas: tuple[Scroller, ...]) -> None:
         """Put the panes under each other; `areas` are the scroll areas among or within them."""
         for pane in panes:
             self._column.addWidget(pane)

@@ -22,8 +22,8 @@ _SCROLL_BAR = 12
 class PatientPage(QWidget):
     """Arranges the panes for the window's width. In one column the model line scrolls with them."""
 
-    def __init__(self, state: EntryState, model_bar: ModelBar) -> None:
-        super().__init__()
+    def __init__(self, state: EntryState, model_bar: ModelBar, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
         self._state, self._model_bar = state, model_bar
         self.is_narrow = False
         self.values = ValuesPane(state)
@@ -51,6 +51,9 @@ class PatientPage(QWidget):
         column.addLayout(self._panes, 1)
         self.pinned.hide()
         self.one_column.hide()
+        self.sheet.comparison_opened.connect(self.values.show_changes)
+        self.sheet.comparison_opened.connect(self.show_changes)
+        self.sheet.views.comparison.field_asked.connect(self.values.focus_change)
         state.assessed.connect(self.pin)
         state.blanked.connect(self.pin)
 
@@ -65,6 +68,12 @@ class PatientPage(QWidget):
         self.field_note.fit(width if narrow else self.values.width())
         self.sheet.set_compact(compact)
         return anew
+
+    def show_changes(self, shown: bool) -> None:
+        """Show the second fields of a comparison beside the values, or hide them."""
+        self.values.show_changes(shown)
+        self.field_note.fit(self.width() if self.is_narrow else self.values.width())
+        self.one_column.fit()
 
     def take_rows(self) -> None:
         """The values pane has the rows of another model."""

@@ -1,44 +1,34 @@
-"""In 100 people: the probability as large dots with both counts, and the figures of every chart as text."""
+"""In 100 people: the probability as large dots with both counts."""
 
-from collections.abc import Sequence
-
-from PySide6.QtCore import QSize, Qt
-from PySide6.QtGui import QColor, QKeyEvent, QPainter, QPaintEvent, QPen, QResizeEvent
-from PySide6.QtWidgets import QGridLayout, QHBoxLayout, QPlainTextEdit, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QResizeEvent
+from PySide6.QtWidgets import QGridLayout, QVBoxLayout, QWidget
 
 from clinicalc.assessment.numerals import of_people
 from clinicalc.assessment.result import Assessment, Band
-from clinicalc.gui import theme
-from clinicalc.gui.figure_view import FigureView, table_lines, text_part
-from clinicalc.gui.labels import Heading, make_label, make_line
+from clinicalc.gui.figure_view import FigureView, text_part
+from clinicalc.gui.held_layouts import Block
+from clinicalc.gui.labels import make_label, make_line
 from clinicalc.gui.lanes import RULER_AT, set_ink
-from clinicalc.gui.typeface import CAPTION, HEADLINE, face
+from clinicalc.gui.typeface import HEADLINE
 from clinicalc.report.dots import DOT, draw_people
 from clinicalc.report.shapes import Figure
 
 EMPTY = "The picture stands here when there is a number."
-_OPEN = "Charts as text"
+PEOPLE = "In 100 people"
 _COUNT = 44
-_LINK_HEIGHT, _LINK_PADDING = 24, 4
 _DROP = 8.0
 """The dots stand as low as the digits beside them."""
 _GAP, _UNDER = 24, 10
-_AROUND_TEXT = 30
-"""Frame, padding and margins of the table, above and below together."""
 
 
-class PeopleView(QWidget):
+class PeopleView(Block):
     """Under 1 % (and over 99 %) the people are 1000, and picture and counts change places: 1000 dots need the room."""
+
+    title = PEOPLE
 
     def __init__(self) -> None:
         super().__init__()
-        self.heading = Heading("In 100 people")
-        self.as_text = TextLink(_OPEN)
-        self.text = QPlainTextEdit()
-        self.text.setReadOnly(True)
-        self.text.setAccessibleName(_OPEN)
-        self.text.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.text.setTabChangesFocus(True)
         self.empty = make_label(EMPTY, soft=True)
         self.dots = FigureView(drop=_DROP * text_part())
         self.counts = QWidget()
@@ -46,13 +36,25 @@ class PeopleView(QWidget):
         self.rest_count, self.rest = make_line("", _COUNT), make_label("", HEADLINE)
         self.explained = make_label()
         self._probability: float | None = None
-        self._figures: tuple[Figure, ...] = ()
         self._lay_out()
-        self.as_text.clicked.connect(self.toggle_text)
-        self.show_assessment(None, ())
+        self.show_assessment(None)
 
-    def show_assessment(self, assessment: Assessment | None, others: Sequence[Figure], *, vetted: bool = False) -> None:
-        """Show the people of an assessment, or say that there are none; `others` are the charts above this one."""
+    @staticmethod
+    def name_for(probability: float | None) -> str:
+        """What the view of a probability is called: the people may be 1000."""
+        return PEOPLE if probability is None else f"In {of_people(probability)[1]} people"
+
+    @property
+    def figure(self) -> Figure | None:
+        """The picture, with its table."""
+        return self.dots.figure_shown
+
+    def tab_stops(self) -> tuple[QWidget, ...]:
+        """Nothing to press."""
+        return ()
+
+    def show_assessment(self, assessment: Assessment | None, *, vetted: bool = False) -> None:
+        """Show the people of an assessment, or say that there are none."""
         estimate = None if assessment is None else assessment.estimate
         self._probability = None if estimate is None else estimate.probability
         self.empty.setVisible(estimate is None)
@@ -62,23 +64,14 @@ class PeopleView(QWidget):
         if assessment is not None and estimate is not None and assessment.span is not None:
             count, whole = of_people(estimate.probability)
             outcome = f"{assessment.model.content.use.plain.outcome} within {assessment.span.words}"
-            self.heading.label.setText(f"In {whole} people")
             self._say_counts(count, whole, outcome, rare=estimate.probability < 0.5)
-            self.explained.setText(explain_people(whole, estimate.band))
+            self.explained.setText(explain_people(whole, estimate.band, some_unknown=estimate.not_measured is not None))
             set_ink(self.have_count, "accent" if vetted else "soft")
             self._place(whole)
         else:
-            self.heading.label.setText("In 100 people")
             for label in (self.have_count, self.have, self.rest_count, self.rest, self.explained):
                 label.clear()  # nothing of a number that is no longer there, not even out of sight
-        self._figures = tuple(others)
         self._draw()
-
-    def toggle_text(self) -> None:
-        """Open or close the table of every chart of the sheet."""
-        self.text.setVisible(self.text.isHidden())
-        self.as_text.say(_OPEN if self.text.isHidden() else "Close the text")
-        self._write_text()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """1000 dots take the room there is."""
@@ -86,10 +79,6 @@ class PeopleView(QWidget):
         self._draw()
 
     def _lay_out(self) -> None:
-        head = QHBoxLayout()
-        head.setSpacing(10)
-        head.addWidget(self.heading, 1)
-        head.addWidget(self.as_text)
         self._rows = QGridLayout(self.counts)
         self._rows.setContentsMargins(0, 0, 0, 0)
         self._rows.setHorizontalSpacing(16)
@@ -103,11 +92,8 @@ class PeopleView(QWidget):
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(4)
-        column.addLayout(head)
-        column.addWidget(self.text)
         column.addWidget(self.empty)
         column.addLayout(self._grid)
-        self.text.hide()
         self._whole = 0
         self._place(100)
 
@@ -144,7 +130,6 @@ class PeopleView(QWidget):
             room = max(100.0, self.width() - RULER_AT * part)
             self.dots.show_figure(draw_people(self._probability, DOT * part, room))
             self.dots.setFixedHeight(self.dots.sizeHint().height())  # the width stays free, or no window could shrink
-        self._write_text()
 
     def _say_counts(self, count: int | None, whole: int, outcome: str, *, rare: bool) -> None:
         few, most = "<1", f">{whole - 1}"
@@ -157,65 +142,17 @@ class PeopleView(QWidget):
         self.rest_count.setText(rest)
         self.rest.setText("does not" if rest in ("1", few) else "do not")
 
-    def _write_text(self) -> None:
-        """Fill the table while it is open; closed, it would only cost time at every key."""
-        if self.text.isHidden():
-            if not self.text.document().isEmpty():
-                self.text.clear()
-            return
-        lines = table_lines(self._figures)
-        if self.dots.figure_shown is not None:
-            lines += ["", self.heading.label.text(), *table_lines((self.dots.figure_shown,))]
-        self.text.setPlainText("\n".join(lines))
-        height = self.text.fontMetrics().lineSpacing() * len(lines) + _AROUND_TEXT
-        self.text.setFixedHeight(height)
 
-
-class TextLink(QToolButton):
-    """A quiet button that looks like words: underlined, with a ring when it has the focus."""
-
-    def __init__(self, text: str) -> None:
-        super().__init__()
-        self.setFont(face(CAPTION))
-        self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        self.say(text)
-
-    def say(self, text: str) -> None:
-        """Other words, and the width they take."""
-        self.setText(text)
-        width = self.fontMetrics().horizontalAdvance(text) + 2 * _LINK_PADDING
-        self.setFixedSize(QSize(width, round(_LINK_HEIGHT * text_part())))
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Enter like the space bar."""
-        if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
-            self.click()
-            return
-        super().keyPressEvent(event)
-
-    def paintEvent(self, event: QPaintEvent) -> None:
-        """Words, their line, the ring."""
-        tokens = theme.tokens()
-        painter = QPainter(self)
-        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        if self.hasFocus():
-            painter.setPen(QPen(QColor(tokens.accent), 2))
-            painter.drawRoundedRect(self.rect().adjusted(1, 1, -1, -1), 3, 3)
-        font = face(CAPTION)
-        font.setUnderline(True)
-        painter.setFont(font)
-        painter.setPen(QColor(tokens.ink))
-        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignCenter, self.text())
-        painter.end()
-
-
-def explain_people(whole: int, band: Band | None) -> str:
+def explain_people(whole: int, band: Band | None, *, some_unknown: bool = False) -> str:
     """Who the people are, that nobody knows which of them this patient is, and how sure the count is."""
-    who = f"{whole} people with the same values as this patient. Nobody can say which of the {whole} this patient is."
+    same = "the same known values" if some_unknown else "the same values"
+    who = f"{whole} people with {same} as this patient. Nobody can say which of the {whole} this patient is."
     if band is None:
         return f"{who} The file does not say how precisely the count is known."
     low, high = (round(whole * end) for end in (band.lower, band.upper))
     room = f"{low} to {high}" if low != high else f"about {low}"
     if low == 0:
         room = f"fewer than 1 to {high}" if high else "fewer than 1"
+    if some_unknown:
+        return f"{who} How precisely the coefficients are known, and what was not measured, leave room for {room}."
     return f"{who} How precisely the coefficients are known leaves room for {room}."

@@ -17,9 +17,11 @@ from clinicalc.gui.exceptions import explain
 from clinicalc.gui.labels import make_button, make_label, make_line, make_rule
 from clinicalc.gui.page_stack import PageStack, Zoom
 from clinicalc.gui.segments import Segments
+from clinicalc.gui.staying_button import StayingButton
 from clinicalc.gui.tokens import SHEET_MARGIN, SIDE_MARGIN
 from clinicalc.gui.typeface import HEADLINE, UNIT
 from clinicalc.report.document import Document
+from clinicalc.report.parts import PrintParts
 from clinicalc.settings import Paper
 
 NARROWEST = QSize(560, 360)
@@ -32,6 +34,7 @@ _SIZES = (
     AnswerOption(Zoom.DOUBLE.value, "200\u202f%"),
 )
 _PAPERS = (AnswerOption(Paper.A4.value, "A4"), AnswerOption(Paper.LETTER.value, "Letter"))
+_PARTS = {"comparison": "Comparison", "shares": "Shares", "matching_age": "Matching age"}
 _ANSWERS = (AnswerOption(_YES, "Yes"), AnswerOption(_NO, "No"))
 
 
@@ -41,10 +44,14 @@ class Job(Protocol):
     def check(self) -> None:
         """Raises PrintRefused once the values on screen are no longer those of the assessment."""
 
-    def lay_out(self, paper: Paper, patient_page: bool) -> Document:
+    @property
+    def offered(self) -> PrintParts:
+        """The parts of which there is something to print."""
+
+    def lay_out(self, paper: Paper, parts: PrintParts) -> Document:
         """The pages. Raises PrintRefused for a text that could only be printed wrongly."""
 
-    def send(self, parent: QWidget, paper: Paper, patient_page: bool) -> bool:
+    def send(self, parent: QWidget, paper: Paper, parts: PrintParts) -> bool:
         """Let a printer be chosen and print; False where none was chosen. Raises PrintRefused."""
 
 
@@ -53,7 +60,7 @@ class PreviewView(QDialog):
 
     outdated = Signal(str)
 
-    def __init__(self, parent: QWidget | None, job: Job, *, paper: Paper, patient_page: bool) -> None:
+    def __init__(self, parent: QWidget | None, job: Job, *, paper: Paper, parts: PrintParts) -> None:
         super().__init__(parent)
         self._job = job
         self.refusal = ""
@@ -62,7 +69,10 @@ class PreviewView(QDialog):
         self.setWindowTitle("Print preview")
         self.zoom_choice = _make_choice(_SIZES, "Size on screen", Zoom.FIT.value, 240)
         self.paper_choice = _make_choice(_PAPERS, "Paper", paper.value, 132)
-        self.patient_choice = _make_choice(_ANSWERS, "With the patient’s page", _YES if patient_page else _NO, 104)
+        self.patient_choice = _make_choice(
+            _ANSWERS, "With the patient’s page", _YES if parts.patient_page else _NO, 104
+        )
+        self.part_buttons = _make_part_buttons(job.offered, parts)
         self.pages = PageStack(self._may_show)
         self.cover_words = make_label("", HEADLINE, semibold=True)
         self.message = make_label("", UNIT, semibold=True)
@@ -81,9 +91,15 @@ class PreviewView(QDialog):
         return next(paper for paper in Paper if paper.value == self.paper_choice.answer)
 
     @property
-    def with_patient_page(self) -> bool:
-        """Whether the patient's page is wanted."""
-        return self.patient_choice.answer == _YES
+    def parts(self) -> PrintParts:
+        """The parts that are chosen."""
+        chosen = {name: button.isChecked() for name, button in self.part_buttons.items()}
+        return PrintParts(
+            patient_page=self.patient_choice.answer == _YES,
+            comparison=chosen.get("comparison", False),
+            shares=chosen.get("shares", False),
+            matching_age=chosen.get("matching_age", False),
+        )
 
     @property
     def is_covered(self) -> bool:
@@ -105,13 +121,18 @@ class PreviewView(QDialog):
 
     def _lay_out(self) -> None:
         self._head = QWidget()
-        self._choices = QBoxLayout(QBoxLayout.Direction.LeftToRight, self._head)
-        self._choices.setContentsMargins(SIDE_MARGIN, 6, SIDE_MARGIN, 6)
+        rows = QVBoxLayout(self._head)
+        rows.setContentsMargins(SIDE_MARGIN, 6, SIDE_MARGIN, 6)
+        rows.setSpacing(0)
+        self._choices = QBoxLayout(QBoxLayout.Direction.LeftToRight)
         self._choices.setSpacing(0)
+        rows.addLayout(self._choices)
         first = _in_a_row(("&Size", self.zoom_choice), ("&Paper", self.paper_choice))
         second = _in_a_row(("&With the patient’s page", self.patient_choice))
         self._choices.addLayout(first)
         self._choices.addLayout(second)
+        if self.part_buttons:
+            rows.addLayout(_in_a_row(("&Also print", *self.part_buttons.values())))
         self._room_beside = first.sizeHint().width() + second.sizeHint().width() + 2 * SIDE_MARGIN + 24
         covered = QWidget()
         words = QVBoxLayout(covered)
@@ -139,6 +160,8 @@ class PreviewView(QDialog):
         self.zoom_choice.chosen.connect(lambda id: self.pages.take_zoom(Zoom(id)))
         self.paper_choice.chosen.connect(self._show_document)
         self.patient_choice.chosen.connect(self._show_document)
+        for button in self.part_buttons.values():
+            button.toggled.connect(self._show_document)
         self.print_button.clicked.connect(self._print)
         self.close_button.clicked.connect(self.reject)
         self.pages.failed.connect(self._cover)
@@ -157,7 +180,7 @@ class PreviewView(QDialog):
 
     def _show_document(self) -> None:
         try:
-            self.pages.show_document(self._job.lay_out(self.paper, self.with_patient_page))
+            self.pages.show_document(self._job.lay_out(self.paper, self.parts))
         except ClinicalcError as error:
             self._cover(str(error))
 
@@ -176,7 +199,7 @@ class PreviewView(QDialog):
         self.message.setText("")
         try:
             self._job.check()
-            sent = self._job.send(self, self.paper, self.with_patient_page)
+            sent = self._job.send(self, self.paper, self.parts)
         except ClinicalcError as error:
             self._refuse(str(error))
         except Exception as error:
@@ -221,20 +244,31 @@ def _make_choice(options: tuple[AnswerOption, ...], name: str, chosen: str, widt
     return choice
 
 
-def _in_a_row(*choices: tuple[str, Segments]) -> QHBoxLayout:
+def _make_part_buttons(offered: PrintParts, chosen: PrintParts) -> dict[str, StayingButton]:
+    """A button for each part that there is something of, down where it is chosen, by the name of the part."""
+    buttons = {}
+    for name, words in _PARTS.items():
+        if getattr(offered, name):
+            buttons[name] = StayingButton(words)
+            buttons[name].show_pressed(getattr(chosen, name))
+    return buttons
+
+
+def _in_a_row(*choices: tuple[str, *tuple[QWidget, ...]]) -> QHBoxLayout:
     """Choices with their words before them."""
     row = QHBoxLayout()
     row.setContentsMargins(0, 0, 0, 0)
     row.setSpacing(8)
-    for words, choice in choices:
-        row.addWidget(_label_for(words, choice))
-        row.addWidget(choice)
+    for words, *widgets in choices:
+        row.addWidget(_label_for(words, widgets[0]))
+        for widget in widgets:
+            row.addWidget(widget)
         row.addSpacing(14)
     row.addStretch(1)
     return row
 
 
-def _label_for(words: str, choice: Segments) -> QLabel:
+def _label_for(words: str, choice: QWidget) -> QLabel:
     label = make_line(words, UNIT, soft=True)
     label.setBuddy(choice)
     label.setAccessibleName(words.replace("&", ""))

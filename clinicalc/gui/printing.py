@@ -19,6 +19,7 @@ from clinicalc.gui.preview_view import PreviewView
 from clinicalc.operations.documents import lay_out_print, suggest_pdf_name
 from clinicalc.report.document import Document
 from clinicalc.report.palette import PAPER
+from clinicalc.report.parts import USUAL_PARTS, PrintParts, offered_parts
 from clinicalc.settings import Paper
 
 POINTS_PER_INCH = 72.0
@@ -74,6 +75,8 @@ def choose_printer(printer: QPrinter, parent: QWidget | None) -> bool:
 class PrintJob:
     """One assessment on its way to paper: its pages, laid out once a sheet, for the preview and for a printer.
 
+    `offered` are the parts of which there is something to print.
+
     `still_current` says whether the values on screen are still those of the assessment. `choose` lets a printer be
     chosen and says whether one was.
     """
@@ -88,9 +91,10 @@ class PrintJob:
     ) -> None:
         self.printed_at = datetime.now().astimezone()
         self.name = suggest_pdf_name(assessment).removesuffix(".pdf")
+        self.offered = offered_parts(assessment)
         self._assessment, self._practice = assessment, practice
         self._still_current, self._choose = still_current, choose
-        self._documents: dict[tuple[Paper, bool], Document] = {}
+        self._documents: dict[tuple[Paper, PrintParts], Document] = {}
 
     def check(self) -> None:
         """Raises PrintRefused once the values on screen have changed."""
@@ -100,20 +104,20 @@ class PrintJob:
                 do="Open the print again; it then shows the values as they are now.",
             )
 
-    def lay_out(self, paper: Paper, patient_page: bool) -> Document:
+    def lay_out(self, paper: Paper, parts: PrintParts) -> Document:
         """The pages on this paper. Raises PrintRefused for a text that could only be printed wrongly."""
-        wanted = (paper, patient_page)
+        wanted = (paper, parts)
         if wanted not in self._documents:
             self._documents[wanted] = lay_out_print(
                 self._assessment,
                 practice=self._practice,
-                patient_page=patient_page,
+                parts=parts,
                 paper=paper,
                 printed_at=self.printed_at,
             )
         return self._documents[wanted]
 
-    def send(self, parent: QWidget | None, paper: Paper, patient_page: bool) -> bool:
+    def send(self, parent: QWidget | None, paper: Paper, parts: PrintParts) -> bool:
         """Let a printer be chosen and paint the pages on it; False where none was chosen.
 
         A printer set to the other paper gets the pages laid out for that. Raises PrintRefused where the printer does
@@ -123,7 +127,7 @@ class PrintJob:
         if not self._choose(printer, parent):
             return False
         self.check()
-        paint_document(printer, self.lay_out(_paper_of(printer), patient_page))
+        paint_document(printer, self.lay_out(_paper_of(printer), parts))
         return True
 
 
@@ -134,7 +138,7 @@ def preview(
     *,
     practice: str = "",
     paper: Paper = Paper.A4,
-    patient_page: bool = True,
+    parts: PrintParts = USUAL_PARTS,
     explain: Callable[[QWidget | None, str], None] | None = None,
 ) -> bool:
     """Show the print of an assessment and let it be printed; False where it was refused, which is said in a sentence.
@@ -144,21 +148,21 @@ def preview(
     could only be printed wrongly.
     """
     job = PrintJob(assessment, still_current, practice=practice)
-    job.lay_out(paper, patient_page)  # refused here, the preview does not even open
-    refusal = _show(parent, job, paper, patient_page)
+    job.lay_out(paper, parts)  # refused here, the preview does not even open
+    refusal = _show(parent, job, paper, parts)
     if refusal:
         (explain or _explain)(parent, refusal)
     return not refusal
 
 
-def _show(parent: QWidget | None, job: PrintJob, paper: Paper, patient_page: bool) -> str:
+def _show(parent: QWidget | None, job: PrintJob, paper: Paper, parts: PrintParts) -> str:
     """Show the preview until it is closed; why nothing was printed, "" where nothing was refused."""
     try:
         job.check()
     except PrintRefused as error:
         words = str(error)
         return words[:1].upper() + words[1:]
-    dialog = PreviewView(parent, job, paper=paper, patient_page=patient_page)
+    dialog = PreviewView(parent, job, paper=paper, parts=parts)
     try:
         dialog.exec()
         return dialog.refusal

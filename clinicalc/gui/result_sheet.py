@@ -2,23 +2,26 @@
 
 from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QAccessible, QAccessibleAnnouncementEvent, QKeySequence, QResizeEvent, QShortcut
-from PySide6.QtWidgets import QScrollArea, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QVBoxLayout, QWidget
 
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numerals import percent
 from clinicalc.assessment.result import Assessment
-from clinicalc.coefficients.spans import Span
-from clinicalc.gui.crown import Crown, height_of
+from clinicalc.assessment.shown_figures import shown_probability
+from clinicalc.gui.axis_words import AxisWords
+from clinicalc.gui.crown import Crown
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.findings_list import OVERHANG, FindingsList
-from clinicalc.gui.held_layouts import held_layouts
+from clinicalc.gui.held_layouts import Block, held_layouts
 from clinicalc.gui.labels import make_label
-from clinicalc.gui.lanes import Lanes, measure_assessment, overhang
-from clinicalc.gui.people_view import PeopleView
+from clinicalc.gui.lanes import Lanes, overhang
 from clinicalc.gui.pinned_summary import PinnedMark, PinnedSummary
+from clinicalc.gui.scroller import Scroller
+from clinicalc.gui.text_link import LINK_PADDING
 from clinicalc.gui.tokens import SHEET_MARGIN, SHEET_MARGIN_RIGHT
 from clinicalc.gui.typeface import CAPTION
 from clinicalc.gui.vetting_strip import VettingStrip
+from clinicalc.gui.view_tabs import PAD
+from clinicalc.gui.views import Views
 from clinicalc.gui.wording import (
     GRADE_WORDS,
     event_heading,
@@ -29,9 +32,9 @@ from clinicalc.gui.wording import (
     not_used_sentence,
     numbered_findings,
 )
-from clinicalc.operations.summary import people_sentence
-from clinicalc.report.measured import Measured
-from clinicalc.report.phrases import BAND_MEANING, NOT_VETTED
+from clinicalc.report.measured import APPROXIMATE, Lane
+from clinicalc.report.on_the_ruler import lanes_of, measure_assessment, measure_nothing
+from clinicalc.report.phrases import NOT_VETTED, say_people
 
 _VETTED = False
 """Until there is a model library, every file is opened by its name, and nobody has vetted it."""
@@ -39,7 +42,7 @@ _RING = 2
 _TOP = 10
 
 
-class SheetScroller(QScrollArea):
+class SheetScroller(Scroller):
     """Tells when its room has changed, be it by a scroll bar that came or went."""
 
     resized = Signal()
@@ -57,13 +60,15 @@ class ResultSheet(QWidget):
     """The mark of a finding about this field was pressed."""
     stops_changed = Signal()
     """`tab_stops` may be others now."""
+    comparison_opened = Signal(bool)
+    """Whether the comparison is now the open view, so that there is room wanted for changed values."""
 
     def __init__(self, state: EntryState) -> None:
         super().__init__()
         self._state = state
         self._announced: tuple[bool, tuple[object, ...]] = (False, ())
         self._stops: tuple[QWidget, ...] = ()
-        self._kept: tuple[Model, Span | None, int] | None = None
+        self._kept: tuple[object, ...] = ()
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.strip = VettingStrip(NOT_VETTED)
@@ -71,12 +76,13 @@ class ResultSheet(QWidget):
         self.number, self.small_grid = self.crown.number, self.crown.small_grid
         self.headline, self.sentence = self.crown.headline, self.crown.sentence
         self.lanes = Lanes()
-        self.band_name, self.band_figure = self.lanes.name, self.lanes.figures
-        self.band_reason = make_label("", CAPTION)
-        self.meaning = make_label(BAND_MEANING, CAPTION, soft=True)
-        self.meaning.setContentsMargins(0, 4, 0, 0)  # apart from the reason why there is no band
+        self.band_name, self.band_figure = self.lanes.rows[0].name, self.lanes.rows[0].figures
+        self.words = AxisWords()
+        self.band_reason, self.decided = self.words.band_reason, self.words.decided
+        self.meaning, self.assumptions = self.words.meaning, self.words.assumptions
         self.findings = FindingsList()
-        self.people = PeopleView()
+        self.views = Views()
+        self.people = self.views.people
         self.outcome = make_label("", CAPTION, soft=True)
         self.not_used = make_label("", CAPTION, soft=True)
         self.scroller = SheetScroller()
@@ -84,9 +90,7 @@ class ResultSheet(QWidget):
         self._show_no_model()
         self.scroller.resized.connect(self._fit)
         self.findings.field_asked.connect(self.field_asked)
-        table = QShortcut(QKeySequence(Qt.Key.Key_T), self)
-        table.setContext(Qt.ShortcutContext.WidgetWithChildrenShortcut)
-        table.activated.connect(self.people.toggle_text)
+        self._listen_to_views()
         state.model_changed.connect(self._take_model)
         state.assessed.connect(self._show_current)
         state.blanked.connect(self.blank)
@@ -94,10 +98,12 @@ class ResultSheet(QWidget):
     def blank(self, sentence: str) -> None:
         """Take the number off first, then everything that was drawn from it, then say why."""
         self.number.clear()
+        self.views.show_assessment(None, ())
         self._show_charts(None)
         self.headline.setText("No number")
         self.sentence.setText(sentence)
         self.findings.hide()
+        self.findings.show_findings((), {})
         self._announce(None)
 
     def set_compact(self, compact: bool) -> None:
@@ -105,8 +111,8 @@ class ResultSheet(QWidget):
         self._fit()
 
     def tab_stops(self) -> tuple[QWidget, ...]:
-        """Where the tab key stops, in order: the view, then the marks that lead to a field."""
-        return (self.people.as_text, self.people.text, *self.findings.tab_stops())
+        """Where the tab key stops, in order: the band's assumptions, the views, the marks that lead to a field."""
+        return (*self.assumptions.tab_stops(), *self.views.tab_stops(), *self.findings.tab_stops())
 
     def pinned_summary(self) -> PinnedSummary:
         """What is on the sheet now, in short."""
@@ -115,30 +121,38 @@ class ResultSheet(QWidget):
             percentage=self.number.percentage,
             headline=self.headline.text(),
             sentence=self.sentence.text(),
-            band_name=self.band_name.text(),
+            band_name=self.band_name.text().replace(APPROXIMATE, " about"),  # there is little room
             band_figures=self.band_figure.text(),
             marks=tuple(PinnedMark(n, f.grade, GRADE_WORDS[f.grade], f.field) for n, f in shown),
             vetted=_VETTED,
         )
 
+    def _listen_to_views(self) -> None:
+        table = QShortcut(QKeySequence(Qt.Key.Key_T), self)
+        table.setContext(Qt.ShortcutContext.WidgetWithChildrenShortcut)
+        table.activated.connect(self.views.toggle_text)
+        self.views.comparison_opened.connect(self.comparison_opened)
+        self.views.shares.matching_age_asked.connect(self._state.ask_matching_age)
+        self.views.stops_changed.connect(self._tell_stops)
+
     def _lay_out(self) -> None:
-        self._body = body = QWidget()
+        self._body = body = Block()
         body.setObjectName("sheet")
+        self._place_scroller()  # first: what is moved takes all inside it along, and empty that is little
         self._column = QVBoxLayout(body)
         self._column.setSpacing(0)
-        self._column.addLayout(_inset(OVERHANG, overhang(), self.crown))
-        self._column.addLayout(_inset(OVERHANG, 0, self.lanes))
-        # a box of its own keeps the room: a label that is empty clings to the least height it once had
-        self._reason = QWidget()
-        self._reason.setLayout(_inset(0, 0, self.band_reason))
-        self._column.addLayout(_inset(OVERHANG, overhang(), self._reason, self.meaning))
+        self._column.addLayout(_inset(PAD, overhang(), self.crown))
+        self._column.addLayout(_inset(PAD, 0, self.lanes))
+        self._column.addLayout(_inset(PAD - LINK_PADDING, overhang(), self.words))
         self._column.addSpacing(6)
-        self._column.addLayout(_inset(0, overhang(), self.findings))
+        self._column.addLayout(_inset(PAD - OVERHANG, overhang(), self.findings))
         self._column.addSpacing(8)
-        self._column.addLayout(_inset(OVERHANG, overhang(), self.people))
+        self._column.addWidget(self.views)
         self._column.addSpacing(14)
-        self._column.addLayout(_inset(OVERHANG, overhang(), self.outcome, self.not_used))
+        self._column.addLayout(_inset(PAD, overhang(), self.outcome, self.not_used))
         self._column.addStretch(1)
+
+    def _place_scroller(self) -> None:
         self.scroller.setObjectName("sheet_scroll")
         self.scroller.setAccessibleName("Result")
         self.scroller.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
@@ -146,7 +160,7 @@ class ResultSheet(QWidget):
         self.scroller.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         # its room is kept and empty when there is nothing to scroll: one that comes and goes arranges all anew
         self.scroller.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOn)
-        self.scroller.setWidget(body)
+        self.scroller.setWidget(self._body)
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
@@ -158,7 +172,7 @@ class ResultSheet(QWidget):
         bar = self.scroller.width() - 2 * _RING - self.scroller.viewport().width()
         right = max(0, SHEET_MARGIN_RIGHT - _RING - bar - overhang())
         top = _TOP if self.strip.isVisibleTo(self) else _TOP + 8
-        self._column.setContentsMargins(SHEET_MARGIN - _RING - OVERHANG, top, right, 20)
+        self._column.setContentsMargins(SHEET_MARGIN - _RING - PAD, top, right, 20)
         self._keep_room()
 
     def _keep_room(self) -> None:
@@ -167,19 +181,18 @@ class ResultSheet(QWidget):
         if model is None:
             return
         width = self.scroller.width() - SHEET_MARGIN - SHEET_MARGIN_RIGHT
-        if self._kept == (kept := (model, self._state.span, width)):
+        points = self._state.decision_points
+        if self._kept == (kept := (model, self._state.span, points, width)):
             return
         self._kept = kept
         spans = [self._state.span] if self._state.span is not None else list(model.spans)
         headings = [event_heading(model, span) for span in spans]
         sentences = [longest_sentence(model, span) for span in spans]
         self.crown.keep_room(headings, sentences, width)
-        because = {line.no_band_because for equation in model.equations for line in equation.lines} - {""}
-        reasons = [_no_band(reason) for reason in because]
-        self._reason.setMinimumHeight(height_of(self.band_reason, reasons, width))
+        self.words.keep_room(model, points, width)
 
     def _show_no_model(self) -> None:
-        for widget in (self.strip, self.band_reason, self.meaning, self.findings, self.people):
+        for widget in (self.strip, self.findings, self.views):
             widget.hide()
         self.lanes.show_measured(None)
         self.headline.setText("No coefficient file is open")
@@ -188,9 +201,10 @@ class ResultSheet(QWidget):
     def _take_model(self) -> None:
         model = self._state.model
         self.blank("")
+        self.views.close_comparison()
         if model is None:
             return
-        for widget in (self.strip, self.meaning, self.people):
+        for widget in (self.strip, self.views):
             widget.show()
         event = event_in_full(model)
         self.outcome.setText(f"Event: {event}." if event else "")
@@ -201,7 +215,10 @@ class ResultSheet(QWidget):
         assessment = self._state.assessment
         if assessment is None:  # blanked by another listener in the meantime
             return
-        with held_layouts(self._body, self.crown, self.findings, self.people, self.people.counts):
+        self._keep_room()  # the practice may have other decision points by now, or the horizon another
+        view = self.views.open_view
+        inside = (view, view.counts) if view is self.people else (view,)
+        with held_layouts(self._body, self.crown, self.words, self.findings, self.views, *inside):
             self._show(assessment)
         self._announce(assessment)
 
@@ -212,8 +229,8 @@ class ResultSheet(QWidget):
             headline, sentence = explain_no_number(assessment)
         else:
             headline = event_heading(assessment.model, assessment.span)
-            sentence = people_sentence(assessment)
-            percentage = percent(estimate.probability, estimate.complement)
+            sentence = say_people(assessment)
+            percentage = shown_probability(assessment)
             self.number.show_percentage(percentage, f"{headline}. {sentence}", vetted=_VETTED)
         self.headline.setText(headline)
         self.sentence.setText(sentence)
@@ -223,23 +240,25 @@ class ResultSheet(QWidget):
         self.findings.show()
 
     def _show_charts(self, assessment: Assessment | None) -> None:
-        """Small grid, ruler and people of an assessment; their empty places where there is no number."""
+        """Small grid, ruler and views of an assessment; their empty places where there is no number."""
         model = self._state.model
         estimate = None if assessment is None else assessment.estimate
         self.small_grid.show_probability(None if estimate is None else estimate.probability)
-        span = self._state.span
-        within = "" if span is None else span.words
-        if assessment is not None:
-            self.lanes.show_measured(measure_assessment(assessment), within)
-        else:
-            measured = None if model is None else Measured(model.equations[0].content.link)
-            self.lanes.show_measured(measured, within)
-        no_band = estimate is not None and estimate.band is None
-        reason = estimate.band_absent_because if estimate is not None and no_band else ""
-        self.band_reason.setText(_no_band(reason) if reason else "")
-        self.band_reason.setVisible(bool(reason))
+        self._show_lanes(model, assessment)
         others = [] if self.lanes.figure is None else [self.lanes.figure]
-        self.people.show_assessment(assessment, others, vetted=_VETTED)
+        self.views.show_assessment(assessment, others, vetted=_VETTED)
+
+    def _show_lanes(self, model: Model | None, assessment: Assessment | None) -> None:
+        """The ruler and the words under it."""
+        lanes: tuple[Lane, ...] = ()
+        if model is None:
+            self.lanes.show_measured(None)
+        else:
+            points = self._state.decision_points
+            lanes = lanes_of(model, points)
+            known = measure_nothing(model, points) if assessment is None else measure_assessment(assessment, points)
+            self.lanes.show_measured(known, "" if self._state.span is None else self._state.span.words, lanes)
+        self.words.show_words(model, lanes, assessment)
 
     def _announce(self, assessment: Assessment | None) -> None:
         """Tell a screen reader when a number comes or goes, or a grade of finding; not at every key."""
@@ -269,7 +288,3 @@ def _inset(left: int, right: int, *widgets: QWidget) -> QVBoxLayout:
     for widget in widgets:
         column.addWidget(widget)
     return column
-
-
-def _no_band(reason: str) -> str:
-    return f"No band: {reason}"

@@ -1,10 +1,11 @@
 """Answers side by side, none chosen at first: a question has three states, and none of them is a default."""
 
 from PySide6.QtCore import QPoint, QRectF, Qt, Signal
-from PySide6.QtGui import QColor, QFontMetrics, QKeyEvent, QPainter, QPaintEvent, QPen
+from PySide6.QtGui import QColor, QFocusEvent, QFontMetrics, QKeyEvent, QPainter, QPaintEvent, QPen
 from PySide6.QtWidgets import QBoxLayout, QButtonGroup, QRadioButton, QSizePolicy
 
 from clinicalc.assessment.fields import AnswerOption
+from clinicalc.coefficients.answers import find_answer
 from clinicalc.gui import theme
 from clinicalc.gui.frames import FieldFrame
 from clinicalc.gui.tokens import FRAME_HEIGHT, FRAME_WIDTH, RING
@@ -25,6 +26,8 @@ class Segment(QRadioButton):
     def __init__(self, option: AnswerOption, question: str) -> None:
         super().__init__()
         self.option = option
+        self.is_soft = False
+        """Whether an answer chosen here is none of its own, but stands for one given elsewhere."""
         self.setAccessibleName(f"{question}: {option.label}")
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
 
@@ -47,15 +50,19 @@ class Segment(QRadioButton):
             super().keyPressEvent(event)
 
     def paintEvent(self, event: QPaintEvent) -> None:
-        """Chosen: ground, frame and weight; not chosen: soft text only."""
+        """Chosen: ground, frame and weight; not chosen: soft text only; chosen elsewhere: soft text in a thin frame."""
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        if self.isChecked():
+        chosen = self.isChecked() and not self.is_soft
+        if self.isChecked() and self.is_soft:
+            painter.setPen(QPen(QColor(theme.tokens().edge), 1))
+            painter.drawRoundedRect(QRectF(self.rect()).adjusted(2.5, 2.5, -2.5, -2.5), 2, 2)
+        if chosen:
             painter.setBrush(QColor(theme.tokens().sel))
             painter.setPen(QPen(QColor(theme.tokens().accent), 1.5))
             painter.drawRoundedRect(QRectF(self.rect()).adjusted(1.75, 1.75, -1.75, -1.75), 2, 2)
-        painter.setFont(face(BASE, semibold=self.isChecked()))
-        painter.setPen(QColor(theme.tokens().ink if self.isChecked() else theme.tokens().soft))
+        painter.setFont(face(BASE, semibold=chosen))
+        painter.setPen(QColor(theme.tokens().ink if chosen else theme.tokens().soft))
         painter.drawText(self.rect(), Qt.AlignmentFlag.AlignCenter | Qt.TextFlag.TextSingleLine, self.option.label)
         painter.end()
 
@@ -86,11 +93,20 @@ class Segments(FieldFrame):
         self.setFocusPolicy(Qt.FocusPolicy.ClickFocus)
         self._settle_focus()
 
+    def focusInEvent(self, event: QFocusEvent) -> None:
+        """Hand the focus on: a proxy would be a second stop of the tab key, out of order."""
+        self._stop.setFocus(event.reason())
+
     @property
     def answer(self) -> str | None:
         """The id of the chosen answer, None while unanswered."""
         place = self._group.checkedId()
         return None if place < 0 else self.segments[place].option.id
+
+    def answer_meant(self, text: str) -> str | None:
+        """The id of the answer that a text says, None where it says none."""
+        place = find_answer(text, ((s.option.id, s.option.label) for s in self.segments))
+        return None if place is None else self.segments[place].option.id
 
     def choose(self, id: str | None) -> None:
         """Choose an answer, or none at all. Says nothing to anybody."""
@@ -102,6 +118,21 @@ class Segments(FieldFrame):
         self._group.blockSignals(blocked)
         self._settle_focus()
         self.update()
+
+    def set_soft(self, soft: bool) -> None:
+        """Whether the chosen answer only stands for one that was given elsewhere."""
+        for segment in self.segments:
+            segment.is_soft = soft
+            segment.update()
+
+    def fits_in(self, width: int) -> bool:
+        """Whether all answers stand whole side by side in a frame of this width."""
+        metrics = QFontMetrics(face(BASE, semibold=True))
+        return sum(metrics.horizontalAdvance(s.option.label) + 2 * _PADDING for s in self.segments) <= width
+
+    def set_narrowest(self, width: int) -> None:
+        """The width of the frame where the answers need no more."""
+        self._narrowest = width
 
     def fit(self, room: int) -> None:
         """Take the narrowest form that shows every answer whole in `room` pixels."""
@@ -156,8 +187,7 @@ class Segments(FieldFrame):
 
     def _settle_focus(self) -> None:
         """One stop for the tab key: the chosen answer, or the first while none is chosen."""
-        stop = self.segments[max(0, self._group.checkedId())]
+        self._stop = self.segments[max(0, self._group.checkedId())]
         for segment in self.segments:
-            policy = Qt.FocusPolicy.StrongFocus if segment is stop else Qt.FocusPolicy.ClickFocus
+            policy = Qt.FocusPolicy.StrongFocus if segment is self._stop else Qt.FocusPolicy.ClickFocus
             segment.setFocusPolicy(policy)
-        self.setFocusProxy(stop)

@@ -14,6 +14,8 @@ from PySide6.QtGui import QFontInfo
 from PySide6.QtWidgets import QApplication
 
 _SCALE = "QT_SCALE_FACTOR"
+_STYLE = ("-style", "fusion")
+"""Named at the start: setting it later hands a style object to PySide6, which sets up a class of 4 ms for it."""
 _USUAL = {"win32": 12, "darwin": 13}
 """Pixels of the system's font at usual text size: 9 points at 96 dots per inch; 13 points at 72 (both from memory)."""
 _USUAL_ELSEWHERE = 15
@@ -37,7 +39,7 @@ def start_application(arguments: Sequence[str]) -> QApplication:
     running = QApplication.instance()
     if isinstance(running, QApplication):
         return running
-    application = QApplication(list(arguments))
+    application = QApplication([*arguments, *_STYLE])
     factor = text_factor(QFontInfo(application.font()).pixelSize())
     if factor == 1.0:
         return application
@@ -45,7 +47,7 @@ def start_application(arguments: Sequence[str]) -> QApplication:
     before = os.environ.get(_SCALE)
     os.environ[_SCALE] = str(_factor_asked_for(before) * factor)
     try:
-        return QApplication(list(arguments))
+        return QApplication([*arguments, *_STYLE])
     finally:
         if before is None:
             del os.environ[_SCALE]

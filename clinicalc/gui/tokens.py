@@ -121,6 +121,7 @@ def _words_and_panes(t: Tokens) -> str:
     QLabel#plate {{ background: {t.sheet}; padding: 0 10px; }}
     QFrame#rule {{ background: {t.rule}; border: none; }}
     QLineEdit {{ border: none; background: transparent; color: {t.ink}; placeholder-text-color: {t.soft}; }}
+    QLineEdit[ink="soft"] {{ color: {t.soft}; }}
     QPlainTextEdit {{ border: 1px solid {t.edge}; border-radius: 3px; background: {t.field}; padding: 8px; }}
     QPlainTextEdit:focus {{ border: 2px solid {t.accent}; padding: 7px; }}
     QScrollArea {{ border: none; background: transparent; }}

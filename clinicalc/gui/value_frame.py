@@ -20,8 +20,11 @@ _ROUND_TEXT = 6
 """What a line needs beside its text: its own edges and the cursor."""
 _ROUND_UNIT = 34
 """What a chooser needs beside the words of its unit: its edge and its chevron."""
-_INSIDE = FRAME_WIDTH - 3
-"""The width of a frame inside its edges."""
+_EDGES = 3
+"""What the edges of a frame take of its width."""
+_UNIT = 108
+"""The usual room of a unit without a choice, in a frame of the usual width."""
+_LEAST_NUMBER = 42
 _GAP, _GAP_WITHOUT_CHOICE = 4, 10
 
 
@@ -36,6 +39,16 @@ class ValueEdit(QLineEdit):
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)  # the whole frame takes clicks
         self.setAlignment(Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter)
         self.setInputMethodHints(Qt.InputMethodHint.ImhNoPredictiveText | Qt.InputMethodHint.ImhPreferNumbers)
+        self.is_soft = False
+
+    def set_soft(self, soft: bool) -> None:
+        """Soft ink and the regular weight, for a number that says nothing of its own."""
+        if soft != self.is_soft:
+            self.is_soft = soft
+            self.setProperty("ink", "soft" if soft else "")
+            if self.testAttribute(Qt.WidgetAttribute.WA_WState_Polished):
+                self.style().polish(self)  # style rules go by the property; they bring back the font before
+            self.setFont(face(self.font().pixelSize(), semibold=not soft))
 
     @property
     def is_cut(self) -> bool:
@@ -61,7 +74,7 @@ class ValueEdit(QLineEdit):
                 return
         painter = QPainter(self)
         painter.setFont(self.font())
-        painter.setPen(QColor(theme.tokens().ink))
+        painter.setPen(QColor(theme.tokens().soft if self.is_soft else theme.tokens().ink))
         alignment = Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
         if self.hasFocus():
             sign = QRect(0, 0, self.fontMetrics().horizontalAdvance(CUT) + 2, self.height())
@@ -81,8 +94,9 @@ class ValueEdit(QLineEdit):
 class ValueFrame(FieldFrame):
     """Number, thin line, unit: a number never stands outside its unit's frame."""
 
-    def __init__(self, units: tuple[str, ...], unit: str) -> None:
-        super().__init__()
+    def __init__(self, units: tuple[str, ...], unit: str, width: int = FRAME_WIDTH) -> None:
+        super().__init__(width)
+        self._inside = width - _EDGES
         self.edit = ValueEdit()
         self.chooser = Chooser() if len(units) > 1 else None
         self._label = make_line(unit_of(unit).spelling, UNIT, soft=True)
@@ -103,7 +117,6 @@ class ValueFrame(FieldFrame):
             row.addWidget(self._label)
         row.addStretch(1)
         self.edit.textChanged.connect(self.fit_text)
-        self.setFocusProxy(self.edit)
         self.fit_text()
 
     def fit_text(self) -> None:
@@ -114,15 +127,39 @@ class ValueFrame(FieldFrame):
         usual, beside_unit = self._rooms()
         rooms = [(usual, VALUE), *((beside_unit, size) for size in range(VALUE, _SMALLEST - 1, -1))]
         if self.edit.hasFocus():
-            rooms += [(_INSIDE, size) for size in range(VALUE, _SMALLEST - 1, -1)]
-        text = self.edit.text()
-        fitting = ((room, size) for room, size in rooms if _width_of(text, size) + _ROUND_TEXT <= room)
+            rooms += [(self._inside, size) for size in range(VALUE, _SMALLEST - 1, -1)]
+        text = self.edit.text() or self.edit.placeholderText()
+        bold = not self.edit.is_soft
+        fitting = ((room, size) for room, size in rooms if _width_of(text, size, bold) + _ROUND_TEXT <= room)
         room, size = next(fitting, rooms[-1])
         if self.edit.font().pixelSize() != size:
-            self.edit.setFont(face(size, semibold=True))
+            self.edit.setFont(face(size, semibold=bold))
         self.edit.setFixedWidth(room)
-        self._give_unit(max(0, _INSIDE - room - self._gap))
+        self._give_unit(max(0, self._inside - room - self._gap))
         self.update()
+
+    def show_unit(self, unit: str | None) -> None:
+        """Another unit in a frame without a choice; None where the text itself says it."""
+        words = "" if unit is None else unit_of(unit).spelling
+        if words != self._label.text():
+            self._label.setText(words)
+            self.fit_text()
+
+    def set_width(self, width: int) -> None:
+        """Give the frame another width, in pixels without the ring."""
+        self._inside = width - _EDGES
+        self.setFixedWidth(width + 2 * RING)
+        self.fit_text()
+
+    def has_room_for(self, spelling: str) -> bool:
+        """Whether a unit stands whole beside the least room of a number."""
+        unit = self._label.fontMetrics().horizontalAdvance(spelling)
+        return _LEAST_NUMBER + self._gap + unit <= self._inside
+
+    def show_in_its_place(self, words: str) -> None:
+        """Words that stand where the number would, while none is typed; "" for none."""
+        self.edit.setPlaceholderText(words)
+        self.fit_text()
 
     def eventFilter(self, watched: QObject, event: QEvent) -> bool:
         """The number has the whole frame only while it is typed."""
@@ -141,8 +178,9 @@ class ValueFrame(FieldFrame):
             unit = self.chooser.fontMetrics().horizontalAdvance(self.chooser.currentText()) + _ROUND_UNIT
         else:
             unit = self._label.fontMetrics().horizontalAdvance(self._label.text()) + 4
-            usual = max(46, 166 - max(108, unit + 14))
-        return usual, max(usual, _INSIDE - self._gap - unit)
+            usual_unit = _UNIT - (FRAME_WIDTH - _EDGES - self._inside)
+            usual = max(_LEAST_NUMBER, self._inside - _EDGES - max(usual_unit, unit + 14))
+        return usual, max(usual, self._inside - self._gap - unit)
 
     def _give_unit(self, room: int) -> None:
         """A unit without room stands in nobody's way, and stays where the Tab key finds it."""
@@ -151,12 +189,12 @@ class ValueFrame(FieldFrame):
 
     def paint_inside(self, painter: QPainter, body: QRectF) -> None:
         """The thin line between number and unit."""
-        if self.edit.width() >= _INSIDE:
+        if self.edit.width() >= self._inside or (self.chooser is None and not self._label.text()):
             return
         x = self.edit.geometry().right() + 4.5
         painter.setPen(QPen(QColor(theme.tokens().rule), 1))
         painter.drawLine(int(x), int(body.top()) + 7, int(x), int(body.bottom()) - 7)
 
 
-def _width_of(text: str, size: int) -> int:
-    return QFontMetrics(face(size, semibold=True)).horizontalAdvance(text)
+def _width_of(text: str, size: int, bold: bool) -> int:
+    return QFontMetrics(face(size, semibold=bold)).horizontalAdvance(text)

@@ -4,66 +4,35 @@ from itertools import groupby
 
 from PySide6.QtCore import QCoreApplication, QEvent, Qt, Signal
 from PySide6.QtGui import QResizeEvent
-from PySide6.QtWidgets import QApplication, QHBoxLayout, QLineEdit, QScrollArea, QSizePolicy, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QApplication, QVBoxLayout, QWidget
 
+from clinicalc.assessment.changeable import changeable_fields
 from clinicalc.assessment.fields import Field, NumberField
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.result import Assessment
 from clinicalc.gui.access_keys import mark_letters
 from clinicalc.gui.entry_state import EntryState
-from clinicalc.gui.frames import FieldFrame
-from clinicalc.gui.index_mark import IndexMark
-from clinicalc.gui.labels import Heading, make_field_label
+from clinicalc.gui.label_row import PRINT_LABEL, LabelRow
+from clinicalc.gui.labels import Heading
 from clinicalc.gui.number_row import NumberRow
-from clinicalc.gui.question_row import QuestionRow
+from clinicalc.gui.row_making import has_no_letter, make_row, takes_entries
 from clinicalc.gui.rows import FieldRow
+from clinicalc.gui.scroller import Scroller
 from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, PANE_WIDTH, PANE_WIDTH_COMPACT, RING, SIDE_MARGIN
-from clinicalc.gui.typeface import BASE, face
+from clinicalc.gui.values_heading import ValuesHeading
 from clinicalc.gui.wording import numbered_findings
-from clinicalc.gui.worked_out_row import WorkedOutRow
 
-PRINT_LABEL = "Name or number"
-_LONGEST_NAME = 120
-"""What a print takes, as `report.document` states it: reading it from there would slow every start."""
 _ABOVE_AND_BELOW = 12
 
 
-class LabelRow(QWidget):
-    """The name or number that stands on the print and nowhere else."""
-
-    def __init__(self, marked_label: str) -> None:
-        super().__init__()
-        self.frame = FieldFrame()
-        self.edit = QLineEdit()
-        self.edit.setFont(face(BASE))
-        self.edit.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Expanding)
-        self.edit.setMaxLength(_LONGEST_NAME)
-        self.edit.setAccessibleName(PRINT_LABEL)
-        inside = QHBoxLayout(self.frame)
-        inside.setContentsMargins(RING + 7, RING + 1, RING + 7, RING + 1)
-        inside.addWidget(self.edit)
-        self.frame.watch(self.edit)
-        self.label = make_field_label(marked_label, PRINT_LABEL, self.edit)
-        row = QHBoxLayout(self)
-        row.setContentsMargins(0, 0, 0, 0)
-        row.setSpacing(COLUMN_GAP)
-        row.addWidget(self.label)
-        row.addWidget(self.frame)
-        row.addStretch(1)
-
-    def fill(self, label: str) -> None:
-        """Show a label without history and without telling anybody."""
-        blocked = self.edit.blockSignals(True)
-        self.edit.setText(label)
-        self.edit.blockSignals(blocked)
-
-
-class ValuesPane(QScrollArea):
+class ValuesPane(Scroller):
     """Every field of the model in page order; built anew for another model, filled anew for another patient."""
 
     rebuilt = Signal()
+    stops_moved = Signal()
+    """`tab_stops` come in another order now."""
     row_entered = Signal(object)
-    """The focus came into this FieldRow or its date, or went elsewhere (None)."""
+    """The focus came into this FieldRow or what is stated beside it, or went elsewhere (None)."""
     mark_pressed = Signal(int)
     """The number of the finding whose mark at a field was pressed."""
     left_last = Signal()
@@ -74,7 +43,10 @@ class ValuesPane(QScrollArea):
         self._state = state
         self._model: Model | None = None
         self._compact = False
-        self._age_heading: list[Heading] = []
+        self._changes_shown = False
+        self._stops: tuple[QWidget, ...] = ()
+        self._headings: list[ValuesHeading] = []
+        self._ranged: ValuesHeading | None = None
         self.rows: dict[str, FieldRow] = {}
         self.label_row: LabelRow | None = None
         self.setWidgetResizable(True)
@@ -96,7 +68,7 @@ class ValuesPane(QScrollArea):
 
     def focus_first(self) -> None:
         """Put the cursor where typing begins."""
-        first = next((stop for stop in self.tab_stops() if _takes_entries(stop)), None)
+        first = next((stop for stop in self.tab_stops() if takes_entries(stop)), None)
         if first is not None:
             first.setFocus(Qt.FocusReason.OtherFocusReason)
             self.ensureWidgetVisible(first)
@@ -105,7 +77,32 @@ class ValuesPane(QScrollArea):
         """Put the cursor in a field and bring it into view; an id that is no field changes nothing."""
         row = self.rows.get(id)
         stops = () if row is None else row.tab_stops()
-        stop = next((stop for stop in stops if _takes_entries(stop)), None)
+        stop = next((stop for stop in stops if takes_entries(stop)), None)
+        if stop is not None:
+            stop.setFocus(Qt.FocusReason.ShortcutFocusReason)
+            self.ensureWidgetVisible(stop)
+
+    def show_changes(self, shown: bool) -> None:
+        """Show the second fields of a comparison, in which values can be changed, or hide them."""
+        if shown == self._changes_shown:
+            return
+        left = next((row for row in self.rows.values() if row.is_changing), None)
+        if left is not None and not shown:
+            self.focus_field(left.field_id)  # what is hidden takes no keys
+        self._changes_shown = shown
+        for row in self.rows.values():
+            row.show_changes(shown)
+        self._fit()
+
+    @property
+    def _is_changing(self) -> bool:
+        return self._changes_shown and any(row.change is not None for row in self.rows.values())
+
+    def focus_change(self, id: str) -> None:
+        """Put the cursor in the second field of a value and bring it into view; without one nothing changes."""
+        row = self.rows.get(id)
+        stops = () if row is None or row.change is None else row.change.tab_stops()
+        stop = next((stop for stop in stops if takes_entries(stop) and _is_ready(stop, self)), None)
         if stop is not None:
             stop.setFocus(Qt.FocusReason.ShortcutFocusReason)
             self.ensureWidgetVisible(stop)
@@ -132,8 +129,10 @@ class ValuesPane(QScrollArea):
         room = self.width() - 2 * SIDE_MARGIN + RING
         for row in self.rows.values():
             row.fit(room, compact=self._compact)
-        for heading in self._age_heading:
-            heading.show_caption(not self._compact)
+        for heading in self._headings:
+            ranges = heading is self._ranged and not self._compact and not self._changes_shown
+            changes = heading is self._headings[0] and not self._compact and self._is_changing
+            heading.name_columns(ranges=ranges, changes=changes)
         if self.label_row is not None:
             wide = room - LABEL_WIDTH - COLUMN_GAP
             self.label_row.frame.setFixedWidth(wide)
@@ -141,6 +140,10 @@ class ValuesPane(QScrollArea):
         for part in (*self.rows.values(), self.label_row, self.widget()):
             if part is not None:
                 QCoreApplication.sendEvent(part, QEvent(QEvent.Type.LayoutRequest))
+        stops = self.tab_stops()
+        if set(stops) == set(self._stops) and stops != self._stops:
+            self.stops_moved.emit()
+        self._stops = stops
 
     def _take_model(self) -> None:
         if self._state.model is not self._model:
@@ -148,7 +151,12 @@ class ValuesPane(QScrollArea):
             self._build()
         typed = self._state.entry.typed
         shown = {id: row.fill(typed.get(id)) for id, row in self.rows.items()}
-        self._state.replace_values({id: value for id, value in shown.items() if value is not None})
+        changes = self._state.entry.changes
+        changed = {id: row.fill_change(changes.get(id)) for id, row in self.rows.items()}
+        self._state.replace_values(
+            {id: value for id, value in shown.items() if value is not None},
+            {**changes, **{id: value for id, value in changed.items() if value is not None}},
+        )
         if self.label_row is not None:
             self.label_row.fill(self._state.entry.label)
         self._show_nothing()
@@ -163,23 +171,25 @@ class ValuesPane(QScrollArea):
         return column
 
     def _build(self) -> None:
-        self.rows, self._age_heading, self.label_row = {}, [], None
+        self.rows, self._headings, self._ranged, self.label_row = {}, [], None, None
         column = self._set_body()
         if self._model is None:
             return
         fields = self._model.fields
-        marked = mark_letters([*("" if _has_no_letter(f) else f.label for f in fields), PRINT_LABEL])
+        marked = mark_letters([*("" if has_no_letter(f) else f.label for f in fields), PRINT_LABEL])
         labels = {field.id: mark or field.label.replace("&", "&&") for field, mark in zip(fields, marked, strict=False)}
+        changeable = {field.id for field in changeable_fields(self._model)}
         for group, members in groupby(fields, key=lambda field: field.group):
             content = list(members)
             if group:
                 ranged = any(isinstance(f, NumberField) and f.derivation != (None, None) for f in content)
-                heading = Heading(group, "derivation range" if ranged and not self._age_heading else "", inset=RING)
-                self._age_heading += [heading] if ranged else []
+                heading = ValuesHeading(group)
+                self._headings.append(heading)
+                self._ranged = self._ranged or (heading if ranged else None)
                 column.addSpacing(6)
                 column.addWidget(heading)
             for field in content:
-                column.addWidget(self._add_row(field, labels[field.id]))
+                column.addWidget(self._add_row(field, labels[field.id], changeable=field.id in changeable))
         column.addSpacing(6)
         column.addWidget(Heading("For the print only", inset=RING))
         self.label_row = LabelRow(marked[-1])
@@ -190,9 +200,13 @@ class ValuesPane(QScrollArea):
         self._fit()
         self.rebuilt.emit()
 
-    def _add_row(self, field: Field, label: str) -> FieldRow:
-        row = _make_row(field, label)
+    def _add_row(self, field: Field, label: str, *, changeable: bool) -> FieldRow:
+        row = make_row(field, label, changeable=changeable)
         row.typed.connect(self._state.type_value)
+        row.changed.connect(self._state.type_change)
+        row.both_typed.connect(self._state.type_both)
+        row.change_entered.connect(lambda id=field.id: self._go_on_from_change(id))
+        row.show_changes(self._changes_shown)
         row.mark.pressed_for.connect(self.mark_pressed)
         row.entered.connect(lambda id=field.id: self._go_on_from(id))
         self.rows[field.id] = row
@@ -202,7 +216,18 @@ class ValuesPane(QScrollArea):
         assert self.label_row is not None  # built together with the rows
         ids = list(self.rows)
         later = [stop for next_id in ids[ids.index(id) + 1 :] for stop in self.rows[next_id].tab_stops()]
-        target = next((stop for stop in later if _takes_entries(stop)), self.label_row.edit)
+        target = next((stop for stop in later if takes_entries(stop)), self.label_row.edit)
+        target.setFocus(Qt.FocusReason.TabFocusReason)
+        self.ensureWidgetVisible(target)
+
+    def _go_on_from_change(self, id: str) -> None:
+        """To the next second field that can be typed in; from the last one as from the last value."""
+        assert self.label_row is not None  # built together with the rows
+        ids = list(self.rows)
+        changes = (self.rows[next_id].change for next_id in ids[ids.index(id) + 1 :])
+        later = [stop for change in changes if change is not None for stop in change.tab_stops()]
+        ready = (stop for stop in later if takes_entries(stop) and _is_ready(stop, self))
+        target = next(ready, self.label_row.edit)
         target.setFocus(Qt.FocusReason.TabFocusReason)
         self.ensureWidgetVisible(target)
 
@@ -210,7 +235,7 @@ class ValuesPane(QScrollArea):
         if now is None:  # another window, or a menu of this one: what is shown stays
             return
         for row in self.rows.values():
-            if row.isAncestorOf(now) or (row.dated is not None and row.dated.isAncestorOf(now)):
+            if row.isAncestorOf(now) or (row.stated is not None and row.stated.isAncestorOf(now)):
                 self.row_entered.emit(row)
                 return
         if self.window().isAncestorOf(now):
@@ -222,6 +247,9 @@ class ValuesPane(QScrollArea):
         for id, row in self.rows.items():
             row.show_remarks(lines.get(id), [finding for finding in assessment.findings if finding.field == id])
             row.mark.show_findings([(number, finding) for number, finding in numbered if finding.field == id])
+            row.show_comparison(None if assessment.estimate is None else assessment.estimate.comparison)
+            if row.is_changing:
+                self.row_entered.emit(row)  # what is said about a change is said in the note
         offering = [row for row in self.rows.values() if isinstance(row, NumberRow) and row.has_offer]
         for row in offering[:1]:
             row.give_offer_its_letter()
@@ -230,22 +258,8 @@ class ValuesPane(QScrollArea):
         for row in self.rows.values():
             row.show_remarks(None, ())
             row.mark.show_findings(())
+            row.show_comparison(None)
 
 
-def _make_row(field: Field, label: str) -> FieldRow:
-    if not isinstance(field, NumberField):
-        return QuestionRow(field, label)
-    return NumberRow(field, label) if field.may_be_typed else WorkedOutRow(field)
-
-
-def _has_no_letter(field: Field) -> bool:
-    """Exclusions stand first and are whole sentences; what is never typed is never gone to."""
-    return not field.may_be_typed if isinstance(field, NumberField) else bool(field.excludes)
-
-
-def _is_tab_stop(widget: QWidget) -> bool:
-    return bool(widget.focusPolicy() & Qt.FocusPolicy.TabFocus)
-
-
-def _takes_entries(widget: QWidget) -> bool:
-    return _is_tab_stop(widget) and not isinstance(widget, IndexMark)
+def _is_ready(stop: QWidget, pane: QWidget) -> bool:
+    return stop.isEnabled() and stop.isVisibleTo(pane)

@@ -1,8 +1,6 @@
 """Which window of this program this is, among those open on the machine, so that two patients are told apart."""
 
-import getpass
 import os
-import tempfile
 from pathlib import Path
 
 from PySide6.QtCore import QLockFile
@@ -40,9 +38,17 @@ class WindowNumber:
 def _own_place() -> Path:
     """Where the system keeps what lives no longer than a session."""
     runtime = os.environ.get("XDG_RUNTIME_DIR", "")
-    return Path(runtime) if os.path.isabs(runtime) and os.path.isdir(runtime) else Path(tempfile.gettempdir())
+    if os.path.isabs(runtime) and os.path.isdir(runtime):
+        return Path(runtime)
+    import tempfile  # here and below: most starts need neither
+
+    return Path(tempfile.gettempdir())
 
 
 def _user() -> str:
     """A name that differs from user to user: in a folder of all users each counts their own windows."""
-    return str(os.getuid()) if hasattr(os, "getuid") else getpass.getuser()
+    if hasattr(os, "getuid"):
+        return str(os.getuid())
+    import getpass
+
+    return getpass.getuser()

@@ -3,19 +3,22 @@
 from collections.abc import Sequence
 from enum import Enum
 
+from clinicalc.assessment.decision import DecisionPoint, PlacedPoint
 from clinicalc.assessment.fields import QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model
-from clinicalc.assessment.numerals import join_words
+from clinicalc.assessment.numerals import join_words, percent_in_full
 from clinicalc.assessment.result import Assessment
 from clinicalc.coefficients.spans import Span
 from clinicalc.report.phrases import count_words, people_sentence
+from clinicalc.report.phrases_decision import confidence_sentence, point_sentence
 from clinicalc.units.reading import Unreadable, UnreadableReason, read_value
 
 _CHOICES = {FindingCode.HORIZON: "horizon", FindingCode.RECALIBRATION: "recalibration"}
 GRADE_WORDS = {Grade.STOP: "Stop", Grade.CAUTION: "Caution", Grade.NOTE: "Note"}
 _NAMED = 2
 """How many stopped values are named: more would need more room than the sheet keeps free."""
+_NO_BREAK_SPACE = "\u00a0"
 _NOT_FOR_THIS_PATIENT = "This model does not answer for this patient. "
 _NOT_MADE_FOR = (FindingCode.EXCLUDED, FindingCode.OUTSIDE_DERIVATION)
 
@@ -53,17 +56,27 @@ def not_used_sentence(model: Model) -> str:
 
 
 def event_heading(model: Model, span: Span | None) -> str:
-    """The outcome in its first words, with the horizon."""
+    """The outcome in its first words, with the horizon, whose number and unit stay on one line."""
     outcome = model.content.outcome.partition(":")[0].strip().rstrip(".")
-    if span is None or f"within {span.words}" in outcome:
+    if span is None:
         return outcome
-    return f"{outcome} within {span.words}"
+    heading = outcome if f"within {span.words}" in outcome else f"{outcome} within {span.words}"
+    return heading.replace(span.words, span.words.replace(" ", _NO_BREAK_SPACE))
 
 
 def longest_sentence(model: Model, span: Span) -> str:
     """A sentence about people as long as this model's sentences get, for the room that is kept free."""
     censored = any(e.content.competing_events.handled == "censored" for e in model.equations)
-    return people_sentence(0.0044, span.words, others_censored=censored)
+    averaged = any(equation.people is not None for equation in model.equations)
+    return people_sentence(0.0044, span.words, others_censored=censored, some_unknown=averaged)
+
+
+def longest_decision_words(model: Model, points: Sequence[DecisionPoint]) -> str:
+    """Words about decision points as long as they get for this model, for the room that is kept free."""
+    has_band = any(line.band is not None for equation in model.equations for line in equation.lines)
+    placed = [PlacedPoint(point, above=False, crossed=False, confidence=0.5 if has_band else None) for point in points]
+    sides = [f"{point_sentence(place, percent_in_full(place.point.probability))}." for place in placed]
+    return "\n".join(filter(None, (*sides, confidence_sentence(placed))))
 
 
 def event_in_full(model: Model) -> str:

@@ -16,6 +16,7 @@ from reportlab.pdfgen.canvas import Canvas
 
 from clinicalc.report.document import make_document
 from clinicalc.report.pages import Page
+from clinicalc.report.parts import PrintParts
 from clinicalc.report.pdf import make_report
 from clinicalc.report.shapes import Text
 from clinicalc.report.typefaces import Weight
@@ -53,9 +54,13 @@ def test_print(benchmark: BenchmarkFixture, capsys: pytest.CaptureFixture[str], 
     assessment = run("tarnwick-cvd-10y", DEMO)
 
     def whole() -> bytes:
-        return make_report(assessment, practice=PRACTICE, printed_at=PRINTED, patient_page=patient_page)
+        return make_report(
+            assessment, practice=PRACTICE, printed_at=PRINTED, parts=PrintParts(patient_page=patient_page)
+        )
 
-    pages = make_document(assessment, practice=PRACTICE, printed_at=PRINTED, patient_page=patient_page).pages
+    pages = make_document(
+        assessment, practice=PRACTICE, printed_at=PRINTED, parts=PrintParts(patient_page=patient_page)
+    ).pages
 
     def bare() -> bytes:
         return draw_bare(pages)

@@ -12,6 +12,20 @@ from clinicalc.gui.question_row import QuestionRow
 NUMBERS_2008 = {"age": "61", "total_cholesterol": "180", "hdl_cholesterol": "47", "systolic_bp": "124"}
 ANSWERS_2008 = {"prior_cvd": "no", "sex": "female", "bp_treated": "no", "smoker": "yes", "diabetes": "no"}
 
+# the white woman of 55 of Goff et al., Circulation 2014;129(25 Suppl 2):S49-S73, Table A (2.1 %, from memory); no band
+POOLED_2013 = {
+    "prior_cvd": "no",
+    "age": "55",
+    "sex": "female",
+    "ethnic_group": "white",
+    "total_cholesterol": "213",
+    "hdl_cholesterol": "50",
+    "systolic_bp": "120",
+    "bp_treated": "no",
+    "smoker": "no",
+    "diabetes": "no",
+}
+
 
 def click(widget: QWidget) -> None:
     """Press and release the left button in the middle of a widget."""

@@ -24,8 +24,14 @@ def _dressed(_own_folders: None, qapp: QApplication) -> None:
 
 @pytest.fixture(scope="session")
 def lipids() -> Model:
-    """The shipped lipid form of 2008: mg/dL, one horizon, no band."""
+    """The shipped lipid form of 2008: mg/dL, one horizon, a band rebuilt from printed intervals."""
     return open_example("general-cvd-2008-lipids.json")
+
+
+@pytest.fixture(scope="session")
+def pooled() -> Model:
+    """The shipped pooled cohort equations of 2013: mg/dL, one horizon, no band."""
+    return open_example("ascvd-2013-pooled-cohort.json")
 
 
 @pytest.fixture

@@ -15,10 +15,10 @@ from dataclasses import dataclass, field
 from pathlib import Path
 from tempfile import TemporaryDirectory
 
-from PySide6.QtCore import QMessageLogContext, QSize, Qt, QtMsgType, qInstallMessageHandler
+from PySide6.QtCore import QMessageLogContext, QPoint, QSize, Qt, QtMsgType, qInstallMessageHandler
 from PySide6.QtWidgets import QApplication, QDialog, QWidget
 
-from clinicalc.assessment.entry import entry_from_texts
+from clinicalc.assessment.entry import Typed, entry_from_texts
 from clinicalc.gui import theme
 from clinicalc.gui.about_view import AboutView
 from clinicalc.gui.application import dress
@@ -27,7 +27,7 @@ from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
 from clinicalc.operations.bedside import open_example
 from clinicalc.operations.documents import save_pdf
 from clinicalc.resources import read_shipped
-from clinicalc.settings import Paper, ThemeChoice
+from clinicalc.settings import Paper, PracticePoint, ThemeChoice
 from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, run
 
 TARNWICK, LIPIDS, REGIONAL = "tarnwick-cvd-10y", "general-cvd-2008-lipids", "cvd-2021-regional"
@@ -64,7 +64,67 @@ def _focus_finding(window: MainWindow) -> None:
 
 
 def _show_text(window: MainWindow) -> None:
-    window.sheet.people.toggle_text()
+    window.sheet.views.toggle_text()
+
+
+def _open_shares(window: MainWindow) -> None:
+    window.sheet.views.open(window.sheet.views.shares)
+    _scroll_to(window, window.sheet.views)
+
+
+def _ask_matching_age(window: MainWindow) -> None:
+    window.sheet.views.open(window.sheet.views.shares)
+    window.sheet.views.shares.ask.click()
+    _scroll_to(window, window.sheet.views)
+
+
+def _open_comparison(window: MainWindow) -> None:
+    window.sheet.views.open(window.sheet.views.comparison)
+    _scroll_to(window, window.sheet.views)
+
+
+def _compare(window: MainWindow) -> None:
+    window.state.type_change("smoker", Typed("no"))
+    window.state.type_change("systolic_bp", Typed("132"))
+    window.use_model(window.state.model or open_example(f"{TARNWICK}.json"), window.state.entry)
+    window.sheet.views.open(window.sheet.views.comparison)
+
+
+def _compare_and_scroll(window: MainWindow) -> None:
+    _compare(window)
+    _scroll_to(window, window.sheet.views)
+
+
+def _compare_in_vain(window: MainWindow) -> None:
+    window.state.type_change("systolic_bp", Typed("13"))
+    window.use_model(window.state.model or open_example(f"{TARNWICK}.json"), window.state.entry)
+    window.sheet.views.open(window.sheet.views.comparison)
+    _scroll_to(window, window.sheet.views)
+
+
+def _show_assumptions(window: MainWindow) -> None:
+    window.sheet.assumptions.link.click()
+    window.sheet.assumptions.link.setFocus(Qt.FocusReason.TabFocusReason)
+    _scroll_to(window, window.sheet.assumptions)
+
+
+def _add_practice_points(window: MainWindow) -> None:
+    """As many as are drawn, and one more."""
+    assert window.state.model is not None
+    points = [
+        PracticePoint(window.state.model.content.id, 10, "a", at, label, "practice meeting of May")
+        for at, label in ((0.05, "Talk it over"), (0.123, "Offer"), (0.2, "Refer"))
+    ]
+    window.state.use_practice_points(points)
+
+
+def _scroll_to(window: MainWindow, part: QWidget) -> None:
+    """Bring a part of the sheet to the top of whatever scrolls it."""
+    _settle()
+    area = window.patient.one_column if window.patient.is_narrow else window.sheet.scroller
+    body = area.widget()
+    assert body is not None
+    area.verticalScrollBar().setValue(part.mapTo(body, QPoint(0, 0)).y() - 8)
 
 
 @dataclass(frozen=True, slots=True)
@@ -91,6 +151,16 @@ STATES = (
     State("recalibration-chosen", REGIONAL, MAN_50, _choose_low_risk),
     State("finding-in-focus", TARNWICK, DEMO | {"total_cholesterol": "5.2 mg/dL"}, _focus_finding),
     State("charts-as-text", TARNWICK, DEMO, _show_text),
+    State("practice-points", TARNWICK, DEMO, _add_practice_points),
+    State("not-measured", LIPIDS, WOMAN_61 | {"smoker": "not measured"}),
+    State("shares", TARNWICK, DEMO, _open_shares),
+    State("shares-matching-age", TARNWICK, DEMO, _ask_matching_age),
+    State("shares-without-number", TARNWICK, {"prior_cvd": "no"}, _open_shares),
+    State("comparison-how", TARNWICK, DEMO, _open_comparison),
+    State("comparison", TARNWICK, DEMO, _compare_and_scroll),
+    State("comparison-top", TARNWICK, DEMO, _compare),
+    State("comparison-in-vain", TARNWICK, DEMO, _compare_in_vain),
+    State("band-assumptions", LIPIDS, WOMAN_61, _show_assumptions),
     State("refused-file", TARNWICK, DEMO, _refuse),
     State("no-file", None),
 )

@@ -12,6 +12,7 @@ from clinicalc.errors import PrintRefused
 from clinicalc.gui.page_stack import SheetView
 from clinicalc.gui.preview_view import PreviewView
 from clinicalc.gui.printing import PrintJob
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.settings import Paper
 from tests.gui.test_printing import (
     DPI,
@@ -26,16 +27,16 @@ class Job(PrintJob):
 
     def __init__(self, assessment: Assessment, current: list[bool], refusal: str = "") -> None:
         super().__init__(assessment, lambda: current[0], practice=PRACTICE)
-        self.sent: list[tuple[Paper, bool]] = []
+        self.sent: list[tuple[Paper, PrintParts]] = []
         self.current, self.printer_refusal = current, refusal
         self.meanwhile: Callable[[], None] = lambda: None
 
-    def send(self, parent: QWidget | None, paper: Paper, patient_page: bool) -> bool:
+    def send(self, parent: QWidget | None, paper: Paper, parts: PrintParts) -> bool:
         self.meanwhile()
         self.check()
         if self.printer_refusal:
             raise PrintRefused(self.printer_refusal, do="Choose another printer.")
-        self.sent.append((paper, patient_page))
+        self.sent.append((paper, parts))
         return True
 
 
@@ -48,7 +49,7 @@ def open_preview(
 ) -> tuple[PreviewView, Job]:
     """Shown and exposed; `refusal` is what the printer says to the print."""
     job = Job(assessment or with_band("Ottilie Fenn"), [True], refusal)
-    view = PreviewView(None, job, paper=paper, patient_page=True)
+    view = PreviewView(None, job, paper=paper, parts=USUAL_PARTS)
     qtbot.addWidget(view)
     view.resize(size or QSize(1024, 640))
     with qtbot.waitExposed(view):

@@ -11,6 +11,7 @@ pytestmark = pytest.mark.gui
 
 LABEL = "Zebedee Quillfeather"
 VALUES = {"age": "61.731", "total_cholesterol": "187.419", "hdl_cholesterol": "47.853", "systolic_bp": "124.597"}
+CHANGE = "113.827"
 FOLDERS = ("HOME", "XDG_CONFIG_HOME", "XDG_CACHE_HOME", "XDG_DATA_HOME", "XDG_STATE_HOME", "XDG_RUNTIME_DIR", "TMPDIR")
 SESSION = f"""
 import sys
@@ -37,6 +38,9 @@ def type_a_patient():
     for id, option in ANSWERS_2008.items():
         answer(window, id, option)
     type_text(window.values.label_row.edit, {LABEL!r})
+    window.sheet.views.open(window.sheet.views.comparison)
+    type_text(number_row(window, "systolic_bp").change.edit, {CHANGE!r})
+    assert window.sheet.views.comparison.figure is not None
     type_text(number_row(window, "total_cholesterol").dated.edit, "2026-02-03")
     assert window.sheet.number.figure, window.sheet.sentence.text()
     assert window.state.entry.label == {LABEL!r}
@@ -93,7 +97,7 @@ def run_session(tmp_path: Path, *more: str) -> list[Path]:
 
 def words_of_the_patient() -> list[bytes]:
     """The label, its parts and every value, in the encodings that programs keep text in."""
-    words = [LABEL, *LABEL.split(), *VALUES.values(), "2026-02-03"]
+    words = [LABEL, *LABEL.split(), *VALUES.values(), CHANGE, "2026-02-03"]
     return [word.encode(code) for word in words for code in ("utf-8", "utf-16-le", "utf-16-be")]
 
 

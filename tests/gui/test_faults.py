@@ -1,6 +1,7 @@
 """A fault of the program anywhere leaves no number on screen, and is explained in words."""
 
 import sys
+from collections.abc import Sequence
 from datetime import datetime
 from pathlib import Path
 
@@ -18,6 +19,7 @@ from clinicalc.errors import ClinicalcError, UnitError
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.exceptions import ExceptionHook, explain
 from clinicalc.gui.main_window import MainWindow
+from clinicalc.settings import PracticePoint
 from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, number_row, retype_number
 
 pytestmark = pytest.mark.gui
@@ -25,7 +27,15 @@ pytestmark = pytest.mark.gui
 SECRET = "Ottilie Fenn"
 
 
-def break_at_77(model: Model, entry: PatientEntry, *, span: Span | None, recalibration: str | None) -> Assessment:
+def break_at_77(
+    model: Model,
+    entry: PatientEntry,
+    *,
+    span: Span | None,
+    recalibration: str | None,
+    practice_points: Sequence[PracticePoint],
+    matching_age: bool,
+) -> Assessment:
     """The real verb, but for one age."""
     age = entry.typed.get("age")
     if age is not None and age.text == "77":

@@ -10,6 +10,7 @@ from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
 from clinicalc.gui.segments import Segment
+from clinicalc.gui.tokens import RING
 from clinicalc.operations.bedside import open_example
 from clinicalc.resources import list_example_models
 
@@ -77,3 +78,31 @@ def test_nothing_to_press_is_under_24_pixels(open_window: Callable[[Model | None
         assert len(targets) > 20
         small = [(type(t).__name__, t.accessibleName(), t.size()) for t in targets if min(t.width(), t.height()) < 24]
         assert small == []
+
+
+@pytest.mark.parametrize("name", list_example_models())
+def test_the_chooser_is_as_wide_for_every_title_and_says_the_whole(
+    open_window: Callable[[Model | None], MainWindow], name: str
+) -> None:
+    window = open_window(open_example(name))
+    window.resize(QSize(1280, 800))
+    QApplication.processEvents()
+    chooser = window.model_bar.chooser
+    assert chooser.width() == 322 + 2 * RING
+    assert chooser.accessibleName() == f"Model: {chooser.title}"
+    assert " ".join(chooser.shown_lines) == chooser.title
+    assert len(chooser.shown_lines) <= 2
+    assert chooser.tip == ""
+
+
+def test_a_title_too_long_for_the_chooser_keeps_its_ends(window: MainWindow) -> None:
+    chooser = window.model_bar.chooser
+    title = f"Cardiovascular disease {'in people of every age ' * 5}with < 5 visits, lipid form"
+    chooser.show_title(title)
+    [shown] = chooser.shown_lines
+    start, _, end = shown.partition("…")
+    assert title.startswith(start)
+    assert title.endswith(end)
+    assert end.endswith("lipid form")
+    assert chooser.tip == f"<qt>{title.replace('<', '&lt;')}</qt>"
+    assert chooser.accessibleName() == f"Model: {title}"

@@ -15,7 +15,16 @@ from clinicalc.gui.main_window import NARROWEST, MainWindow
 from clinicalc.gui.number_row import NumberRow
 from clinicalc.operations.bedside import open_example
 from clinicalc.resources import list_example_models
-from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, answer, click, number_row, press, retype_number
+from tests.gui.bedside_hands import (
+    ANSWERS_2008,
+    NUMBERS_2008,
+    POOLED_2013,
+    answer,
+    click,
+    number_row,
+    press,
+    retype_number,
+)
 from tests.gui.test_layout import cut_labels
 
 pytestmark = pytest.mark.gui
@@ -58,9 +67,9 @@ def test_number_band_and_model_stay_in_sight(narrow: MainWindow) -> None:
     assert narrow.patient.pinned.isVisible()
     assert "10.5" in pinned_number(narrow)
     assert narrow.patient.pinned.headline.text() == narrow.sheet.headline.text()
-    assert narrow.patient.pinned.band.text() == "no band"
+    assert narrow.patient.pinned.band.text() == "8.3–13.2\u202f%"
     assert narrow.patient.pinned.fingerprint.text() == narrow.model_bar.fingerprint.text()
-    assert narrow.patient.pinned.model.text() == "Not vetted: General cardiovascular disease, lipid form 1.0.0"
+    assert narrow.patient.pinned.model.text() == "Not vetted: General cardiovascular disease, lipid form 1.1.0"
 
 
 def test_pinned_number_goes_with_the_number(qtbot: QtBot, narrow: MainWindow) -> None:
@@ -73,7 +82,7 @@ def test_pinned_number_goes_with_the_number(qtbot: QtBot, narrow: MainWindow) ->
     assert narrow.patient.pinned.band.text() == ""
 
 
-def test_bar_says_why_there_is_no_number(qtbot: QtBot, narrow: MainWindow, lipids: Model) -> None:
+def test_bar_says_why_there_is_no_number(qtbot: QtBot, narrow: MainWindow, lipids: Model, pooled: Model) -> None:
     pinned = narrow.patient.pinned
     assert pinned.sentence.isHidden()
     with_number = pinned.height()
@@ -99,9 +108,11 @@ def test_bar_says_why_there_is_no_number(qtbot: QtBot, narrow: MainWindow, lipid
     assert len(said) == 4
     assert (pinned.sentence.text(), pinned.band.text()) == (narrow.sheet.sentence.text(), "")
     narrow.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008))
-    assert (pinned.sentence.isHidden(), pinned.band.text()) == (True, "no band")
+    assert (pinned.sentence.isHidden(), pinned.band.text()) == (True, "8.3–13.2\u202f%")
     narrow.state.blank("A fault.")
     assert "10.5" not in pinned_number(narrow)
+    narrow.use_model(pooled, entry_from_texts(POOLED_2013))
+    assert (pinned.sentence.isHidden(), pinned.band.text()) == (True, "no band")
 
 
 @pytest.mark.parametrize("name", list_example_models())

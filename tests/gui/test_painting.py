@@ -75,7 +75,7 @@ def figures(lettering: Lettering) -> tuple[Shape, ...]:
         0.122,
         band=Interval(0.093, 0.161),
         spread=Interval(0.087, 0.17),
-        decision=DecisionPoint(0.1, "practice setting"),
+        decisions=(DecisionPoint(0.1, "practice setting"),),
     )
     wide = Measured("logit", 0.0002, band=Interval(0.0001, 0.001))
     size = RulerSize(330)

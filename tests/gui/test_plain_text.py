@@ -1,5 +1,6 @@
 """Nothing that comes from a file or a person is ever taken as markup; every field has a name."""
 
+import html
 from collections.abc import Callable
 
 import msgspec
@@ -62,6 +63,9 @@ def test_markup_is_shown_letter_for_letter(
 ) -> None:
     window = open_window(marked_up)
     assert window.model_bar.chooser.title == MARKUP
+    window.model_bar.chooser.show_title(MARKUP * 3)
+    # the tip of a title that is cut is markup of our own, with the title in it letter for letter
+    assert window.model_bar.chooser.tip == f"<qt>{html.escape(MARKUP * 3)}</qt>"
     assert window.sheet.headline.text() == "No number yet"
     assert window.sheet.outcome.text() == f"Event: {MARKUP}."
     assert MARKUP in [label.text() for label in window.values.findChildren(QLabel)]

@@ -18,6 +18,7 @@ from tests.gui.previewing import open_preview, picture_of
 from tests.gui.test_printing import (
     CASES,
     MOST_DIFFERING,
+    PAGES,
     needs_pdftoppm,
     pixels_of,
     rastered,
@@ -45,7 +46,7 @@ def test_preview_and_pdf_look_the_same(qtbot: QtBot, case: str, paper: Paper, zo
     view.pages.take_zoom(zoom)
     pdf = make_report(assessment, practice=PRACTICE, printed_at=job.printed_at, paper=Sheet(paper.value))
     pairs = list(zip(rastered(pdf, tmp_path, "saved"), view.pages.sheets, strict=True))
-    assert len(pairs) == 3
+    assert len(pairs) == PAGES[case]
     for saved, sheet in pairs:
         assert (saved.min(axis=2) < 200).mean() > 0.01  # there is something to compare
         assert share_differing(saved, picture_of(sheet)) <= MOST_DIFFERING

@@ -1,6 +1,7 @@
 """The preview by hand: what can be chosen, printed and closed, and that nothing stands of values that have changed."""
 
 import sys
+from dataclasses import replace
 
 import pytest
 from PySide6.QtCore import QSize, Qt
@@ -20,6 +21,7 @@ from clinicalc.gui.preview_view import NARROWEST, PreviewView
 from clinicalc.gui.printing import PrintJob, preview
 from clinicalc.gui.segments import Segment
 from clinicalc.report.document import Document
+from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.settings import Paper
 from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, press, retype_number
 from tests.gui.previewing import open_preview, picture_of
@@ -27,16 +29,19 @@ from tests.report.printing import with_band
 
 pytestmark = pytest.mark.gui
 
+JUST_THIS = PrintParts(comparison=False)
+"""What is chosen where there is nothing else to choose."""
+
 
 def test_choices_change_the_pages(qtbot: QtBot) -> None:
     view, _ = open_preview(qtbot)
-    assert [sheet.accessibleName() for sheet in view.pages.sheets] == ["Page 1 of 3", "Page 2 of 3", "Page 3 of 3"]
+    assert [sheet.accessibleName() for sheet in view.pages.sheets] == ["Page 1 of 2", "Page 2 of 2"]
     assert round(view.pages.sheets[0].page.height) == 842
     choose(view.paper_choice.segments[1])
     assert view.paper is Paper.LETTER
     assert round(view.pages.sheets[0].page.height) == 792
     choose(view.patient_choice.segments[1])
-    assert [sheet.accessibleName() for sheet in view.pages.sheets] == ["Page 1 of 2", "Page 2 of 2"]
+    assert [sheet.accessibleName() for sheet in view.pages.sheets] == ["Page 1 of 1"]
     assert view.findChildren(QCheckBox) == []
 
 
@@ -49,7 +54,7 @@ def test_what_is_chosen_is_printed(qtbot: QtBot) -> None:
     view, job = open_preview(qtbot, paper=Paper.LETTER)
     choose(view.patient_choice.segments[1])
     click(view.print_button)
-    assert job.sent == [(Paper.LETTER, False)]
+    assert job.sent == [(Paper.LETTER, replace(JUST_THIS, patient_page=False))]
     assert view.result() == QDialog.DialogCode.Accepted
     assert view.refusal == ""
 
@@ -62,7 +67,7 @@ def test_a_printer_that_refuses_is_said_and_another_can_be_chosen(qtbot: QtBot) 
     assert not view.is_covered
     job.printer_refusal = ""
     click(view.print_button)
-    assert job.sent == [(Paper.A4, True)]
+    assert job.sent == [(Paper.A4, JUST_THIS)]
     assert view.refusal == ""
 
 
@@ -156,7 +161,7 @@ def test_keyboard(qtbot: QtBot) -> None:
 def test_enter_prints_and_tab_goes_through_everything_once(qtbot: QtBot) -> None:
     view, job = open_preview(qtbot)
     stops: list[QWidget] = []
-    for _ in range(6):
+    for _ in range(7):
         focused = view.focusWidget()
         assert focused is not None
         stops.append(focused)
@@ -166,12 +171,13 @@ def test_enter_prints_and_tab_goes_through_everything_once(qtbot: QtBot) -> None
         view.zoom_choice.segments[0],
         view.paper_choice.segments[0],
         view.patient_choice.segments[0],
+        view.part_buttons["shares"],
         view.pages.area,
         view.close_button,
     ]
     assert view.focusWidget() is view.print_button
     press(view.print_button, Qt.Key.Key_Return)
-    assert job.sent == [(Paper.A4, True)]
+    assert job.sent == [(Paper.A4, JUST_THIS)]
 
 
 def test_the_place_of_the_print_stays_when_the_size_changes(qtbot: QtBot) -> None:
@@ -247,7 +253,7 @@ def test_a_fault_while_painting_leaves_no_number(
     assessment = window.state.assessment
     assert assessment is not None
     job = PrintJob(assessment, lambda: window.outputs.still_on_screen(assessment))
-    view = PreviewView(window, job, paper=Paper.A4, patient_page=True)
+    view = PreviewView(window, job, paper=Paper.A4, parts=USUAL_PARTS)
     monkeypatch.setattr(sys, "excepthook", ExceptionHook(window.state))
 
     def break_down(*_: object, **__: object) -> None:
@@ -272,7 +278,7 @@ def test_closing_without_printing_is_no_refusal(qtbot: QtBot, monkeypatch: pytes
 def test_a_text_refused_only_with_the_patient_page_covers_the_pages(qtbot: QtBot) -> None:
     view, job = open_preview(qtbot)
 
-    def refuse(paper: Paper, patient_page: bool) -> Document:
+    def refuse(paper: Paper, parts: PrintParts) -> Document:
         raise PrintRefused("the title cannot be printed.", do="Correct the file.")
 
     job.lay_out = refuse  # type: ignore[method-assign]
@@ -290,5 +296,5 @@ def test_the_dialog_for_the_printer_offers_no_part_of_the_pages(qtbot: QtBot, mo
         return 0
 
     monkeypatch.setattr(QPrintDialog, "exec", look)
-    assert not PrintJob(with_band(), lambda: True).send(None, Paper.A4, patient_page=True)
+    assert not PrintJob(with_band(), lambda: True).send(None, Paper.A4, parts=USUAL_PARTS)
     assert seen == [False]

@@ -22,7 +22,8 @@ from clinicalc.gui.people_view import EMPTY
 from clinicalc.gui.tokens import SHEET_MARGIN, SHEET_MARGIN_RIGHT
 from clinicalc.gui.wording import explain_no_number, numbered_findings
 from clinicalc.operations.bedside import open_example
-from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, click, press, retype_number
+from clinicalc.report.phrases_spread import spread_sources
+from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, POOLED_2013, click, press, retype_number
 
 pytestmark = pytest.mark.gui
 
@@ -96,14 +97,19 @@ def test_columns(sheeted: MainWindow, typed: dict[str, str], size: QSize) -> Non
         x, _, width, _ = place(label, sheeted)
         assert x + width == SHEET_MARGIN + RULER_AT - 24
     assert place(sheet.headline, sheeted)[0] == SHEET_MARGIN + RULER_AT
-    assert place(sheet.people, sheeted)[0] == SHEET_MARGIN
+    assert place(sheet.people, sheeted)[0] == place(sheet.meaning, sheeted)[0] == SHEET_MARGIN
 
 
 @pytest.mark.parametrize("size", [USUAL, SMALLEST], ids=["usual", "smallest"])
-@pytest.mark.parametrize("printed", [False, True], ids=["with a band", "without"])
-def test_nothing_moves(sheeted: MainWindow, lipids: Model, tarnwick: Model, printed: bool, size: QSize) -> None:
+@pytest.mark.parametrize("band", ["of its own fit", "rebuilt", "none"])
+def test_nothing_moves(
+    sheeted: MainWindow, lipids: Model, pooled: Model, tarnwick: Model, band: str, size: QSize
+) -> None:
     states: list[dict[str, str]]
-    if printed:
+    if band == "none":
+        other = POOLED_2013 | {"age": "20"}
+        model, states = pooled, [{}, POOLED_2013, POOLED_2013 | {"systolic_bp": "190"}, other]
+    elif band == "rebuilt":
         model, states = lipids, [{}, PRINTED, HIGHEST, PRINTED | {"total_cholesterol": "5"}, PRINTED | {"age": "20"}]
     else:
         model, states = tarnwick, [{}, INVENTED, LOW, SLIP, SLIP | {"age": "200", "systolic_bp": "1"}]
@@ -171,15 +177,22 @@ def test_number_of_a_file_that_is_not_vetted_is_soft(sheeted: MainWindow) -> Non
         assert not has(widget, tokens.accent), widget
 
 
-def test_lane_of_the_band(sheeted: MainWindow, lipids: Model) -> None:
+def test_lane_of_the_band(sheeted: MainWindow, lipids: Model, pooled: Model) -> None:
     sheet = sheeted.sheet
     assert (sheet.band_name.text(), sheet.band_figure.text()) == ("95\u202f% band", "9.7–15.5\u202f%")
     assert sheet.band_reason.isHidden()
     assert sheet.lanes.caption.text() == "% within 10 years"
+    assert "Approximate" not in sheet.meaning.text()
     show(sheeted, PRINTED, lipids)
+    assert (sheet.band_name.text(), sheet.band_figure.text()) == ("95\u202f% band, approximate", "8.3–13.2\u202f%")
+    assert sheet.pinned_summary().band_name == "95\u202f% band about"
+    assert "Approximate, rebuilt from printed intervals" in sheet.meaning.text()
+    assert sheet.assumptions.isVisible()
+    show(sheeted, POOLED_2013, pooled)
     assert sheet.band_figure.text() == "no band"
     assert sheet.band_reason.text().startswith("No band: ")
     assert sheet.meaning.isVisible()
+    assert "Approximate" not in sheet.meaning.text()
 
 
 def test_wide_scale_says_so(sheeted: MainWindow) -> None:
@@ -188,17 +201,19 @@ def test_wide_scale_says_so(sheeted: MainWindow) -> None:
     assert "0.05 to 99" in sheeted.sheet.lanes.view.accessibleName()
 
 
-def test_people_and_both_counts(sheeted: MainWindow, lipids: Model) -> None:
+def test_people_and_both_counts(sheeted: MainWindow, lipids: Model, pooled: Model) -> None:
     people = sheeted.sheet.people
     assert (people.have_count.text(), people.rest_count.text()) == ("12", "88")
     assert people.have.text() == "have a first heart attack or stroke within 10 years"
     assert "leaves room for 10 to 16." in people.explained.text()  # 9.7 and 15.5 in whole people
     show(sheeted, LOW)
-    assert people.heading.label.text() == "In 1000 people"
+    assert sheeted.sheet.views.tabs.tabText(2) == "In 1000 people"
     assert (people.have_count.text(), people.rest_count.text()) == ("2", "998")
     show(sheeted, HIGHEST, lipids)
     assert (people.have_count.text(), people.rest_count.text()) == (">999", "<1")
     assert (people.have.text().split()[0], people.rest.text()) == ("have", "does not")
+    assert "leaves room for 999 to 1000" in people.explained.text()
+    show(sheeted, POOLED_2013, pooled)
     assert "does not say how precisely" in people.explained.text()
 
 
@@ -218,35 +233,42 @@ def test_a_number_that_went_leaves_no_words(sheeted: MainWindow) -> None:
         figures = sheeted.sheet.findChildren(FigureView)
         return " ".join([label.text() for label in labels] + [view.accessibleDescription() for view in figures])
 
-    sheeted.sheet.people.toggle_text()
+    sheeted.sheet.views.toggle_text()
     assert "12 of 100" in said()
-    assert "12 of 100" in sheeted.sheet.people.text.toPlainText()
+    assert "12 of 100" in sheeted.sheet.views.text.toPlainText()
     sheeted.begin_new_patient()
     for gone in ("12", "88", "15.5"):
         assert gone not in said()
-        assert gone not in sheeted.sheet.people.text.toPlainText()
+        assert gone not in sheeted.sheet.views.text.toPlainText()
     assert sheeted.sheet.people.empty.isVisible()
     assert sheeted.sheet.people.empty.text() == EMPTY
 
 
 def test_every_chart_has_a_table(sheeted: MainWindow) -> None:
-    people = sheeted.sheet.people
-    assert not people.text.isVisible()
-    click(people.as_text)
-    assert people.text.isVisible()
-    assert people.text.toPlainText().replace("\u202f", " ").split("\n") == [
+    views, people = sheeted.sheet.views, sheeted.sheet.people
+    assert not views.text.isVisible()
+    click(views.as_text)
+    assert views.text.isVisible()
+    assert sheeted.state.assessment is not None
+    assert sheeted.state.assessment.estimate is not None
+    spread = sheeted.state.assessment.estimate.spread
+    assert spread is not None
+    assert views.text.toPlainText().replace("\u202f", " ").split("\n") == [
         "Probability: 12.3 %",
         "95 % band: 9.7–15.5 %",
+        "Re-measurement spread: 9.8–15.3 %",
+        "Decision point (Practice setting): 10.0 %",
+        *spread_sources(spread),
         "",
         "In 100 people",
         "have it: 12 of 100",
         "do not: 88 of 100",
     ]
     show(sheeted, LOW)
-    assert "2 of 1000" in people.text.toPlainText()
+    assert "2 of 1000" in views.text.toPlainText()
     sheeted.sheet.scroller.setFocus()
     press(sheeted.sheet.scroller, Qt.Key.Key_T)
-    assert not people.text.isVisible()
+    assert not views.text.isVisible()
     for view in (sheeted.sheet.lanes.view, people.dots, sheeted.sheet.small_grid, sheeted.sheet.number):
         assert view.accessibleName(), view
         assert view.accessibleDescription(), view
@@ -266,7 +288,8 @@ def test_footnotes(sheeted: MainWindow, qtbot: QtBot) -> None:
         press(second, Qt.Key.Key_Return)
     assert asked.args == ["total_cholesterol"]
     show(sheeted, INVENTED)
-    assert [f.field for _, f in sheet.findings.shown] == [""]  # the file's own note leads to no field
+    # the caution about the decision point and the file's own note lead to no field
+    assert [f.field for _, f in sheet.findings.shown] == ["", ""]
     assert sheet.findings.tab_stops() == ()
 
 
@@ -328,9 +351,9 @@ def test_fault_in_the_paint_of_a_figure_leaves_no_number(
 
 def test_pinned_summary(sheeted: MainWindow) -> None:
     pinned = sheeted.sheet.pinned_summary()
-    assert (pinned.percentage, pinned.headline) == ("12.3\u202f%", "First heart attack or stroke within 10 years")
+    assert (pinned.percentage, pinned.headline) == ("12.3\u202f%", "First heart attack or stroke within 10\u00a0years")
     assert (pinned.band_name, pinned.band_figures) == ("95\u202f% band", "9.7–15.5\u202f%")
-    assert [(mark.number, mark.word) for mark in pinned.marks] == [(1, "Note")]
+    assert [(mark.number, mark.word) for mark in pinned.marks] == [(1, "Caution"), (2, "Note")]
     show(sheeted, SLIP)
     stopped = sheeted.sheet.pinned_summary()
     assert (stopped.percentage, stopped.headline, stopped.band_figures) == ("", "No number", "–")

@@ -73,6 +73,38 @@ print(run_window(case.model, case.entry))
     assert rest.split() == ["True", "ExceptionHook", "0"]
 
 
+def test_garbage_is_collected_from_the_first_picture_on(tmp_path: Path) -> None:
+    """Nothing is while the window is made, and what was made for it is never looked at again."""
+    program = """
+import gc
+import clinicalc.__main__ as start
+from PySide6.QtCore import QTimer
+from PySide6.QtWidgets import QApplication
+from clinicalc.gui import application
+class Watched(application.MainWindow):
+    def __init__(self, *words, **names):
+        print(gc.isenabled())
+        super().__init__(*words, **names)
+        QTimer.singleShot(100, self.look)
+    def look(self):
+        print(gc.isenabled(), gc.get_freeze_count() > 10_000)
+        QApplication.quit()
+application.MainWindow = Watched
+print(start._open_window())
+"""
+    done = run_python(program, XDG_RUNTIME_DIR=str(tmp_path), CLINICALC_SETTINGS=str(tmp_path))
+    assert done.stdout.split() == ["False", "True", "True", "0"]
+
+
+def test_style_is_the_same_on_every_desktop() -> None:
+    program = """
+from clinicalc.gui.text_size import start_application
+application = start_application(["clinicalc"])
+print(application.style().objectName(), application.arguments())
+"""
+    assert run_python(program, QT_STYLE_OVERRIDE="windows").stdout.strip() == "fusion ['clinicalc']"
+
+
 def test_preflight_loads_without_qt() -> None:
     """Where PySide6 is not installed the module still loads and says so."""
     program = """

@@ -10,7 +10,7 @@ from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.coefficients.reader import ReadFile
-from clinicalc.coefficients.schema import CoefficientFile
+from clinicalc.coefficients.schema import CoefficientFile, NoBand
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
 from tests.gui.bedside_hands import (
@@ -36,10 +36,11 @@ def test_printed_case_gives_its_number(qtbot: QtBot, window: MainWindow) -> None
     fill_2008(window)
     # D'Agostino et al., Circulation 2008;117:743-753, woman of 61: printed 10.5 % (from memory)
     assert figure(window) == "10.5"
-    assert window.sheet.headline.text() == "First cardiovascular event within 10 years"
+    assert window.sheet.headline.text() == "First cardiovascular event within 10\u00a0years"
     assert "Of 100 people with these values, about 10 have the event within 10 years" in window.sheet.sentence.text()
-    assert window.sheet.band_figure.text() == "no band"
-    assert "covariance" in window.sheet.band_reason.text()
+    # rebuilt from the paper's intervals, 8.33 to 13.15 %: tests/example_models/test_general_cvd_band.py
+    assert window.sheet.band_figure.text() == "8.3–13.2\u202f%"
+    assert window.sheet.band_reason.isHidden()
     assert window.foot.save_pdf.isEnabled()
 
 
@@ -162,7 +163,7 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
     fill_2008(window)
     window.values.focus_first()
     names = []
-    for _ in range(30):
+    for _ in range(32):
         focused = QApplication.focusWidget()
         assert focused is not None
         names.append(focused.accessibleName() or getattr(focused, "text", str)())
@@ -174,16 +175,25 @@ def test_tab_goes_through_values_units_label_and_commands(qtbot: QtBot, window: 
         "Sex: Female",
         "Total cholesterol",
         "Total cholesterol, unit",
+        "Total cholesterol, visits",
+        "Total cholesterol, readings of each visit",
         "Total cholesterol, date",
         "HDL cholesterol",
         "HDL cholesterol, unit",
+        "HDL cholesterol, visits",
+        "HDL cholesterol, readings of each visit",
         "HDL cholesterol, date",
         "Systolic blood pressure",
         "Systolic blood pressure, unit",
+        "Systolic blood pressure, visits",
+        "Systolic blood pressure, readings of each visit",
         "Takes tablets for blood pressure: No",
         "Smokes now: Yes",
+        "Smokes now: not measured",
         "Has diabetes: No",
         "Name or number",
+        "What the band assumes",
+        "Views",
         "Charts as text",
         "&New patient",
         "Copy",
@@ -206,7 +216,8 @@ def test_horizon_is_open_until_somebody_chooses(
 ) -> None:
     replace = msgspec.structs.replace
     equations = tuple(
-        replace(e, horizons=(*e.horizons, replace(e.horizons[0], years=12.0))) for e in lipids.content.equations
+        replace(e, horizons=(*e.horizons, replace(e.horizons[0], years=12.0)), uncertainty=NoBand("Not needed here."))
+        for e in lipids.content.equations
     )
     file = CoefficientFile("clinicalc.coefficients/1", replace(lipids.content, equations=equations), ())
     window = open_window(prepare_model(ReadFile(lipids.name, file, b"", lipids.fingerprint)))

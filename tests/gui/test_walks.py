@@ -205,7 +205,7 @@ def _walk_menu(menu: QMenu) -> None:
 def test_tab_key_goes_as_the_eye_goes(
     open_window: Callable[[Model | None], MainWindow], size: QSize, name: str
 ) -> None:
-    """Model line, values downwards and to the right, the view, the findings, foot, page bar; all reached, each once."""
+    """Model line, values downwards and to the right, views, findings, foot, page bar; all reached, each once."""
     model = open_example(name)
     window = open_window(model)
     window.resize(size)
@@ -223,8 +223,9 @@ def _walk_by_tab(window: MainWindow) -> None:
         iter(m for m in window.patient.pinned.tab_stops() if m.isVisible() and m.isEnabled()), window.model_bar.chooser
     )
     stops = tab_walk(window, first)
-    people, findings = window.sheet.people, window.sheet.findings
-    regions = (window.patient.pinned, window.model_bar, window.values, people, findings, window.foot, window.page_bar)
+    sheet = window.sheet
+    regions: tuple[QWidget, ...] = (window.patient.pinned, window.model_bar, window.values, sheet.assumptions)
+    regions += (sheet.views, sheet.findings, window.foot, window.page_bar)
     order = []
     for region in regions:
         inside = [stop for stop in stops if region.isAncestorOf(stop)]

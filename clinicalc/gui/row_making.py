@@ -1,0 +1,28 @@
+"""Which row a field of a model gets, and what in it is gone to."""
+
+from PySide6.QtCore import Qt
+from PySide6.QtWidgets import QWidget
+
+from clinicalc.assessment.fields import Field, NumberField
+from clinicalc.gui.index_mark import IndexMark
+from clinicalc.gui.number_row import NumberRow
+from clinicalc.gui.question_row import QuestionRow
+from clinicalc.gui.rows import FieldRow
+from clinicalc.gui.worked_out_row import WorkedOutRow
+
+
+def make_row(field: Field, label: str, *, changeable: bool) -> FieldRow:
+    """A row for a field; `label` may hold one access mark, `changeable` gives it a second field for a comparison."""
+    if not isinstance(field, NumberField):
+        return QuestionRow(field, label, changeable=changeable)
+    return NumberRow(field, label, changeable=changeable) if field.may_be_typed else WorkedOutRow(field)
+
+
+def has_no_letter(field: Field) -> bool:
+    """Exclusions stand first and are whole sentences; what is never typed is never gone to."""
+    return not field.may_be_typed if isinstance(field, NumberField) else bool(field.excludes)
+
+
+def takes_entries(widget: QWidget) -> bool:
+    """Whether the tab key stops here for something to be entered: at everything but marks."""
+    return bool(widget.focusPolicy() & Qt.FocusPolicy.TabFocus) and not isinstance(widget, IndexMark)
