@@ -8,34 +8,28 @@ import numpy as np
 
 from clinicalc.assessment.beside import Wanted, set_beside
 from clinicalc.assessment.case import Case
-from clinicalc.assessment.cautions import equation_cautions
 from clinicalc.assessment.choices import DEFAULT_LEVEL, check_level, settle_choices
-from clinicalc.assessment.cut_points import ResultAt, find_near_cuts
 from clinicalc.assessment.entry import PatientEntry
+from clinicalc.assessment.estimate import estimate_case
 from clinicalc.assessment.fields import Field, NumberField, QuestionField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade, in_reading_order
 from clinicalc.assessment.limits import clamp, giving_limits
 from clinicalc.assessment.model import Model, ModelEquation
-from clinicalc.assessment.no_band import say_no_band
-from clinicalc.assessment.not_measured import average, integrate, moved_case, says_not_measured, spread
+from clinicalc.assessment.not_measured import says_not_measured
 from clinicalc.assessment.numbers import TakenNumber, take_number
-from clinicalc.assessment.numerals import percent
 from clinicalc.assessment.open_fields import check_open, open_in
-from clinicalc.assessment.open_findings import say_averaged, say_undescribed
 from clinicalc.assessment.questions import TakenAnswer, take_answer
 from clinicalc.assessment.rarity import find_rare
 from clinicalc.assessment.relations import check_relations
 from clinicalc.assessment.requirements import find_missing, possible_equations
-from clinicalc.assessment.result import Assessment, Band, Estimate
-from clinicalc.assessment.unconfirmed import Basis
+from clinicalc.assessment.result import Assessment
 from clinicalc.assessment.value_lines import value_lines
+from clinicalc.assessment.vetting import Vetting
 from clinicalc.assessment.worked_out import check_worked_out, work_out
 from clinicalc.coefficients.schema import Recalibration
 from clinicalc.coefficients.spans import Span
-from clinicalc.covariates.design import design_columns
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.line import Line, adjustment_of
-from clinicalc.prediction.predict import predict
 from clinicalc.settings import PracticePoint
 
 
@@ -67,13 +61,15 @@ def assess(
     practice_points: Sequence[PracticePoint] = (),
     matching_age: bool = False,
     number_only: bool = False,
+    vetting: Vetting | None = None,
 ) -> Assessment:
     """The assessment of one patient's entry, with the decision points of the file and of the practice.
 
     `span` may stay None where the model has one horizon; `recalibration` is the id of one that the file offers at that
     horizon. `number_only` leaves out the figures beside the number (spread, comparison, shares, decision points). What
-    is missing, not offered or cannot be used leaves `estimate` None and says why in a finding. Raises UsageError for
-    a level of which no band can be made; never for anything typed about the patient.
+    is missing, not offered or cannot be used leaves `estimate` None and says why in a finding. `vetting` is the
+    approval under which the model is used, which the caller has settled. Raises UsageError for a level of which no band
+    can be made; never for anything typed about the patient.
     """
     check_level(level)
     at = at or datetime.now().astimezone()
@@ -84,15 +80,14 @@ def assess(
     typed = {id for id, value in entry.typed.items() if value.text.strip()}
     _work_out_all(model, equations, taken, typed)
     available = {*taken.numbers, *taken.answers, *taken.worked_out}
-    taken.findings += find_missing(model, equations, available, typed)
     chosen, unsettled = settle_choices(model, span, recalibration)
-    taken.findings += unsettled
+    taken.findings += [*find_missing(model, equations, available, typed), *unsettled, *_of_library(vetting)]
     equation = equations[0] if len(equations) == 1 else None
     estimate = None
     if equation is not None and span is not None and not _stopped(taken.findings):
-        case = _case_of(model, equation, equation.line_at(span), chosen, level, taken)
+        case = _case_of(model, equation, equation.line_at(span), chosen, level, taken, vetting)
         open = open_in(case, tuple(taken.open))
-        estimate, more = _average(case, chosen, open) if open else _estimate(case, chosen)
+        estimate, more = estimate_case(case, chosen, open)
         taken.findings += more
         if estimate is not None and not number_only:
             wanted = Wanted(entry.changes, practice_points, matching_age, at.date())
@@ -114,6 +109,7 @@ def assess(
         ),
         findings=in_reading_order(taken.findings, order),
         estimate=estimate,
+        vetting=vetting,
     )
 
 
@@ -163,6 +159,12 @@ def _work_out_all(model: Model, equations: tuple[ModelEquation, ...], taken: Tak
             taken.worked_out[field.id] = clamp(float(column[0]), giving_limits(field))
 
 
+def _of_library(vetting: Vetting | None) -> tuple[Finding, ...]:
+    """What goes with every number while the library is out of reach."""
+    caution = "" if vetting is None else vetting.caution
+    return (Finding(Grade.CAUTION, FindingCode.LIBRARY_COPY, "", caution),) if caution else ()
+
+
 def _stopped(findings: Iterable[Finding]) -> bool:
     return any(finding.grade is Grade.STOP for finding in findings)
 
@@ -179,6 +181,7 @@ def _case_of(
     recalibration: Recalibration | None,
     level: float,
     taken: Taken,
+    vetting: Vetting | None,
 ) -> Case:
     return Case(
         model=model,
@@ -190,91 +193,5 @@ def _case_of(
         answers=taken.answers,
         columns=taken.columns,
         worked_out=taken.worked_out,
+        compared=() if vetting is None else vetting.compared,
     )
-
-
-def _estimate(case: Case, recalibration: Recalibration | None) -> tuple[Estimate | None, list[Finding]]:
-    """The number with its band, and the findings that come with it."""
-    columns = {**case.columns, **{id: np.array([value]) for id, value in case.worked_out.items()}}
-    design = design_columns(case.equation.terms, columns)
-    result = predict(case.line, design, adjustment=case.adjustment, level=case.level)
-    figures = (result.eta, *(end for end in (result.eta_lower, result.eta_upper) if end is not None))
-    if not all(np.isfinite(figure[0]) for figure in figures):
-        return None, [_not_computable()]
-    band = None
-    if result.lower is not None and result.upper is not None:
-        band = Band(case.level, float(result.lower[0]), float(result.upper[0]), case.line.basis)
-    estimate = Estimate(
-        eta=float(result.eta[0]),
-        probability=float(result.probability[0]),
-        complement=float(result.complement[0]),
-        band=band,
-        band_absent_because="" if band else say_no_band(case.line, case.level, case.adjustment),
-    )
-    terms = frozenset(place for place, column in enumerate(design) if column[0] != 0)
-    return estimate, _said_beside(case, recalibration, terms, band)
-
-
-def _average(
-    case: Case, recalibration: Recalibration | None, open: tuple[Field, ...]
-) -> tuple[Estimate | None, list[Finding]]:
-    """The number averaged over values that were not measured; none where nobody described what to expect of them."""
-    people = case.equation.people
-    cloud = None if people is None else spread(case, open, people)
-    if people is None or cloud is None:
-        return None, [*say_undescribed(case, open)]
-    result = average(case, open, cloud, people.source)
-    if result is None:
-        return None, [_not_computable()]
-    band = None
-    if result.lower is not None and result.upper is not None:
-        band = Band(case.level, result.lower, result.upper, case.line.basis)
-
-    def result_at(id: str, value: float) -> str:
-        there = integrate(moved_case(case, {id: value}), open, people)
-        return "no number" if there is None else percent(there.probability, there.complement)
-
-    estimate = Estimate(
-        eta=result.eta,
-        probability=result.probability,
-        complement=result.complement,
-        band=band,
-        band_absent_because="" if band else say_no_band(case.line, case.level, case.adjustment),
-        not_measured=result.not_measured,
-    )
-    beside = _said_beside(case, recalibration, result.terms, band, open, result_at)
-    return estimate, [*say_averaged(open, result), *beside]
-
-
-def _said_beside(
-    case: Case,
-    recalibration: Recalibration | None,
-    terms: frozenset[int],
-    band: Band | None,
-    open: tuple[Field, ...] = (),
-    result_at: ResultAt | None = None,
-) -> list[Finding]:
-    """The findings that come with a number."""
-    basis = Basis(
-        equation=case.equation,
-        span=case.line.span,
-        recalibration=recalibration,
-        numbers=case.numbers,
-        answers=case.answers,
-        terms=terms,
-        worked_out=frozenset(case.worked_out) & case.equation.uses,
-        open=frozenset(field.id for field in open),
-    )
-    imprecise = band and case.adjustment and case.adjustment.covariance is None
-    near = find_near_cuts(case.model, case.equation, case.line, case.adjustment, case.columns, case.numbers, result_at)
-    return [*near, *equation_cautions(case.model, basis), *([_imprecise_recalibration()] if imprecise else [])]
-
-
-def _not_computable() -> Finding:
-    message = "The model’s equation has no finite result for these values, so there is no number. Tell its author."
-    return Finding(Grade.STOP, FindingCode.NOT_COMPUTABLE, "", message)
-
-
-def _imprecise_recalibration() -> Finding:
-    message = "The imprecision of the recalibration is not in the band: its source prints none."
-    return Finding(Grade.NOTE, FindingCode.RECALIBRATION_PRECISION, "recalibration", message)

@@ -33,8 +33,8 @@ def bends_in(
     for field in case.model.derived:
         if field.formula is None or field.id in case.columns or field.id not in case.equation.uses:
             continue
-        inputs = {source for _, source in field.formula.inputs}
-        if id in inputs and not any(other in open and other not in before for other in inputs - {id}):
+        others = [source for source in field.sources if source != id]
+        if id in field.sources and not any(other in open and other not in before for other in others):
             own += [np.full(rows, place) for place in _formula_bends(case, field, id)]
             own += _solve(case, field, id, before, ends, _places(case, field.id))
     return np.stack(own, axis=1) if own else np.empty((rows, 0))

@@ -11,9 +11,9 @@ from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import Field
 from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.matching_age import match_age
-from clinicalc.assessment.reference_person import describe_reference
+from clinicalc.assessment.reference_person import describe_reference, find_reference
 from clinicalc.assessment.result import Estimate
-from clinicalc.assessment.shares import shares_of, why_no_shares
+from clinicalc.assessment.shares import walk_from
 from clinicalc.assessment.spread import spread_of
 from clinicalc.settings import PracticePoint
 
@@ -38,14 +38,15 @@ def set_beside(
     band = None if estimate.band is None else (estimate.band.lower, estimate.band.upper)
     points = points_for(case.model, case.line.span, wanted.practice_points)
     placed = place_points(case, estimate.eta, band, points, all_measured=not open)
-    shares = shares_of(case)
+    reference = find_reference(case)
+    walk = walk_from(case, reference)
     beside = replace(
         estimate,
         spread=spread_of(case, open),
         comparison=compare(case, wanted.changes, wanted.today),
         decision_points=placed,
-        shares=shares,
-        shares_absent_because=why_no_shares(case) if shares is None else "",
+        shares=None if isinstance(walk, str) else walk,
+        shares_absent_because=walk if isinstance(walk, str) else "",
         reference_person=describe_reference(case),
         matching_age=match_age(case) if wanted.matching_age else None,
     )

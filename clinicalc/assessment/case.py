@@ -6,7 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from clinicalc.assessment.fields import NumberField
-from clinicalc.assessment.limits import giving_limits
+from clinicalc.assessment.limits import clamp_column, giving_limits
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber
 from clinicalc.assessment.questions import TakenAnswer
@@ -22,7 +22,8 @@ class Case:
     """Usable values, and the line that answers for them.
 
     `columns` holds one row, shape (1,), of every typed value in the file's units and codes; `worked_out` the derived
-    values that nobody typed.
+    values that nobody typed. `compared` names, for places of the file that it calls unconfirmed, who compared the
+    figures there with their source for the practice.
     """
 
     model: Model
@@ -34,6 +35,7 @@ class Case:
     answers: Mapping[str, TakenAnswer]
     columns: Mapping[str, Column]
     worked_out: Mapping[str, float]
+    compared: tuple[tuple[str, str], ...] = ()
 
     def columns_with(self, moved: Mapping[str, Column]) -> dict[str, Column]:
         """The values with some of them replaced, each of shape (n,) as the replacing columns are.
@@ -45,19 +47,29 @@ class Case:
         for field in self.model.derived:
             if field.id in wide:
                 continue
-            if any(source in moved for source in _sources(field)):
+            if any(source in moved for source in field.sources):
                 if field.id in self.worked_out or field.id in self.equation.uses:
                     column = self.work_out_with(field, moved)
                     if column is not None:
-                        wide[field.id] = _keep_inside(field, column)
+                        wide[field.id] = clamp_column(column, giving_limits(field))
             elif field.id in self.worked_out:
                 wide[field.id] = np.full(next(iter(wide.values())).size, self.worked_out[field.id])
         return wide
 
+    @property
+    def behind(self) -> frozenset[str]:
+        """Ids of all values that the number rests on, known or not.
+
+        Those of the equation, and the sources of the derived ones among them that nobody typed.
+        """
+        derived = (field for field in self.model.derived if field.id in self.equation.uses)
+        sources = (field.sources for field in derived if field.id not in self.columns)
+        return self.equation.uses.union(*sources)
+
     def work_out_with(self, field: NumberField, moved: Mapping[str, Column]) -> Column | None:
         """A derived value, wherever it lies, for the values with some replaced; None while an input is lacking."""
         rows = next(iter(moved.values())).size if moved else 1
-        inputs = {id: np.full(rows, self.columns[id][0]) for id in _sources(field) if id in self.columns}
+        inputs = {id: np.full(rows, self.columns[id][0]) for id in field.sources if id in self.columns}
         with np.errstate(all="ignore"):
             return work_out(self.model, field, inputs | dict(moved))
 
@@ -73,12 +85,3 @@ class Case:
     def _widen(self, moved: Mapping[str, Column]) -> dict[str, Column]:
         rows = next(iter(moved.values())).size if moved else 1
         return {id: np.full(rows, column[0]) for id, column in self.columns.items()} | dict(moved)
-
-
-def _sources(field: NumberField) -> tuple[str, ...]:
-    return () if field.formula is None else tuple(id for _, id in field.formula.inputs)
-
-
-def _keep_inside(field: NumberField, column: Column) -> Column:
-    low, high = giving_limits(field)
-    return np.clip(column, -np.inf if low is None else low, np.inf if high is None else high)

@@ -1,6 +1,7 @@
 """Which values of a patient a comparison may change: those the file calls modifiable, and never one of a few kinds."""
 
 from difflib import get_close_matches
+from functools import lru_cache
 
 from clinicalc.assessment.fields import Field, NumberField
 from clinicalc.assessment.model import Model
@@ -9,6 +10,7 @@ from clinicalc.coefficients.roles import SEX
 from clinicalc.units.quoting import quote
 
 
+@lru_cache(maxsize=8)
 def changeable_fields(model: Model) -> tuple[Field, ...]:
     """The fields that a comparison may change, in page order; none where the file calls no value modifiable."""
     return tuple(field for field in model.fields if not why_unchangeable(model, field.id))
@@ -20,7 +22,7 @@ def why_unchangeable(model: Model, id: str) -> str:
     if field is None:
         return f"{quote(id)} is not a field of this model.{_hint(model, id)}"
     if isinstance(field, NumberField) and field.formula is not None:
-        sources = join_words([model.by_id[source].label for _, source in field.formula.inputs])
+        sources = join_words([model.by_id[source].label for source in field.sources])
         return f"{field.label} is worked out from {sources} and follows them. Change those instead."
     reason = _refusal(model, field)
     return "" if not reason else f"{reason} {_offer(model)}"

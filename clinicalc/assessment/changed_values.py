@@ -11,15 +11,15 @@ from clinicalc.assessment.changeable import why_unchangeable
 from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
-from clinicalc.assessment.not_measured import NOT_MEASURED, says_not_measured
+from clinicalc.assessment.limits import is_equal
+from clinicalc.assessment.not_measured import says_not_measured
 from clinicalc.assessment.numbers import TakenNumber, take_number
 from clinicalc.assessment.numerals import join_words, plain
 from clinicalc.assessment.questions import TakenAnswer, take_answer
 from clinicalc.assessment.relations import check_relations
 from clinicalc.assessment.worked_out import check_worked_out
-
-_SAME_DIGITS = 9
-"""Values that agree so far are the same value, whatever unit they were typed in."""
+from clinicalc.coefficients.answers import NOT_MEASURED
+from clinicalc.covariates.transforms import Column
 
 TakenValue = TakenNumber | TakenAnswer
 
@@ -42,7 +42,7 @@ def take_changes_of(case: Case, changes: Mapping[str, Typed], today: date) -> Ta
     findings: list[Finding] = []
     for id in _in_page_order(case, changes):
         value, said = _take(case, id, changes[id], today)
-        if value is not None and _code_of(value) == _code_of(_own(case, id)):
+        if value is not None and is_equal(_number_of(value), _number_of(_own(case, id))):
             continue
         findings += said
         if value is not None:
@@ -54,7 +54,7 @@ def take_changes_of(case: Case, changes: Mapping[str, Typed], today: date) -> Ta
     return TakenChanges(values, refused, tuple(replace(f, message=f"With changes: {f.message}") for f in rest))
 
 
-def columns_of(case: Case, values: Mapping[str, TakenValue]) -> dict[str, np.ndarray[tuple[int], np.dtype[np.float64]]]:
+def columns_of(case: Case, values: Mapping[str, TakenValue]) -> dict[str, Column]:
     """For each changed value its column of two rows: the patient's own, and the changed one."""
     return {id: np.array([case.columns[id][0], _number_of(value)]) for id, value in values.items()}
 
@@ -107,8 +107,7 @@ def _about_worked_out(case: Case, values: Mapping[str, TakenValue]) -> Iterator[
     """What follows for values worked out from changed ones; one typed by hand does not follow, which is said."""
     moved = columns_of(case, values)
     for field in case.model.derived:
-        assert field.formula is not None
-        sources = [id for _, id in field.formula.inputs if id in values]
+        sources = [id for id in field.sources if id in values]
         if not sources or field.id not in case.equation.uses:
             continue
         column = case.work_out_with(field, moved)
@@ -144,11 +143,7 @@ def is_same_number(field: NumberField, own: Typed, changed: Typed, today: date) 
     """Whether two entries of one field say the same value; False where one of them says none that can be used."""
     one, _ = take_number(field, own, today)
     other, _ = take_number(field, changed, today)
-    return one is not None and other is not None and _code_of(one) == _code_of(other)
-
-
-def _code_of(value: TakenValue) -> str:
-    return f"{_number_of(value):.{_SAME_DIGITS}g}"
+    return one is not None and other is not None and is_equal(one.value, other.value)
 
 
 def _stop(id: str, message: str) -> Finding:

@@ -149,6 +149,6 @@ def _not_measured(case: Case) -> list[str]:
     lacking: set[str] = set()
     for id in case.equation.uses - there:
         field = case.model.by_id[id]
-        formula = field.formula if isinstance(field, NumberField) else None
-        lacking |= {id} if formula is None else {source for _, source in formula.inputs} - there
+        sources = field.sources if isinstance(field, NumberField) else ()
+        lacking |= {*sources} - there if sources else {id}
     return [field.label for field in case.model.fields if field.id in lacking]

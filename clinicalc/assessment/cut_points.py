@@ -63,7 +63,7 @@ def find_near_cuts(
     """
     shifted = _shift(model, equation, columns, tuple(n for n in numbers.values() if not n.counts_completed_years))
     crossed = _crossed(equation, shifted.columns)
-    if result_at is None:
+    if result_at is None and crossed.any():
         result = predict(line, design_columns(equation.terms, shifted.columns), adjustment=adjustment, band=False)
     for place, number in enumerate(shifted.near):
         named = f"{number.field.label} {number.shown} lies within its rounding of a"
@@ -123,7 +123,7 @@ def _crossed(equation: ModelEquation, columns: Mapping[str, Column]) -> Rows:
             if factor.cuts and factor.of in columns:
                 side = factor.values(columns)
                 elsewhere = side != side[0]
-                if all(other.of in columns for other in term.factors):
+                if elsewhere.any() and all(other.of in columns for other in term.factors):
                     value = term.values(columns)
                     elsewhere &= value != value[0]
                 crossed |= elsewhere

@@ -99,10 +99,11 @@ def find_crossed(
     Unless `all_measured`, the band holds what was not measured too.
     """
     also = "" if all_measured else " and what was not measured"
+    # in the digits in which it stands everywhere else
+    band = percent_range(lower, upper, [place.point.probability for place in placed])
     for place in placed:
         if place.crossed:
             point = place.point
-            band = percent_range(lower, upper, [point.probability])
             side = "above" if place.above else "below"
             message = (
                 f"The band {band} reaches across the decision point {percent_in_full(point.probability)}"

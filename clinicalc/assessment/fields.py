@@ -57,6 +57,11 @@ class NumberField:
         return unit(self.unit).spelling
 
     @property
+    def sources(self) -> tuple[str, ...]:
+        """Ids of the values that it is worked out from; () where it can only be typed."""
+        return () if self.formula is None else tuple(id for _, id in self.formula.inputs)
+
+    @property
     def is_bare(self) -> bool:
         """Whether it is a bare number, without unit or limits of its own."""
         return self.quantity.id == "number"

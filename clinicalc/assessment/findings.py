@@ -40,6 +40,7 @@ class FindingCode(StrEnum):
     RARE_COMBINATION = "rare_combination"
     COMPARISON = "comparison"
     DECISION_POINT = "decision_point"
+    LIBRARY_COPY = "library_copy"
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,9 +3,12 @@
 from collections.abc import Callable
 from math import ceil, floor, log10
 
+import numpy as np
+
 from clinicalc.assessment.fields import OPEN, NumberField
 from clinicalc.assessment.numerals import plain_range
 from clinicalc.coefficients.schema import Limits
+from clinicalc.covariates.transforms import Column
 from clinicalc.units.conversion import conversion
 from clinicalc.units.unit import unit
 
@@ -23,10 +26,21 @@ def is_within(value: float, limits: Limits) -> bool:
 
 
 def clamp(value: float, limits: Limits) -> float:
-    """The value moved onto a limit that it misses by the last bits only."""
+    """The value, or the limit beyond which it lies."""
     low, high = limits
     value = value if low is None else max(value, low)
     return value if high is None else min(value, high)
+
+
+def clamp_column(column: Column, limits: Limits) -> Column:
+    """The same for every value of a column, shape as given; what is not a number stays so."""
+    low, high = limits
+    return np.clip(column, -np.inf if low is None else low, np.inf if high is None else high)
+
+
+def is_equal(one: float, other: float) -> bool:
+    """Whether two values agree to 9 significant digits: one typed in another unit is then the same value."""
+    return _round(one) == _round(other)
 
 
 def giving_limits(field: NumberField) -> Limits:

@@ -18,6 +18,9 @@ from clinicalc.assessment.limits import giving_limits
 from clinicalc.assessment.reference_person import ReferencePerson, find_reference
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.line import Draws, Line
+from clinicalc.prediction.predict import predict
+
+Design = tuple[Column, ...]
 
 _GRID = 0.1
 """Years between the ages at which the reference person's predictor is looked at."""
@@ -57,8 +60,7 @@ def match_age(case: Case) -> MatchingAge:
     """The matching age of a patient, on the adjusted link scale of the same equation and horizon.
 
     The reference person's own age, where the file names one, has no say: it is what is looked for. Nothing is carried
-    on beyond the ages for which the model gives a number. For those who ask only: a comparison
-    with others persuades.
+    on beyond the ages for which the model gives a number. For those who ask only: a comparison with others persuades.
     """
     reference = find_reference(case)
     field = _age_field(case, reference)
@@ -86,7 +88,8 @@ class _Search:
     def run(self) -> MatchingAge:
         low, high = self.low, self.high
         grid = np.linspace(low, high, max(2, ceil((high - low) / _GRID - 1e-9) + 1))
-        etas, target = self._etas(grid), float(self.case.predict_with({}).eta[0])
+        own = self.case.design_with({})
+        etas, target = self._eta_of(self._design(grid)), float(self._eta_of(own)[0])
         because = _judge_course(self.field.label, etas)
         if because:
             return MatchingAge(None, None, None, low, high, because)
@@ -96,13 +99,16 @@ class _Search:
         if target > etas[-1] + slack:
             return MatchingAge(AgePlace.ABOVE, None, None, low, high, "")
         age = self._narrow_down(grid, etas, target)
-        if abs(float(self._etas(np.array([age]))[0]) - target) > slack:
+        ages = np.array([age, max(age - _NUDGE, low), min(age + _NUDGE, high)])
+        near = self._design(ages)
+        if abs(float(self._eta_of(near)[0]) - target) > slack:
             because = (
                 f"The reference person’s number jumps at {self.field.label} {age:.1f} years, over the"
                 " patient’s: at no age is it the same."
             )
             return MatchingAge(None, None, None, low, high, because)
-        return MatchingAge(AgePlace.WITHIN, age, self._standard_error(age), low, high, "")
+        error = self._standard_error(own, near, float(ages[2] - ages[1]))
+        return MatchingAge(AgePlace.WITHIN, age, error, low, high, "")
 
     def _narrow_down(self, grid: Column, etas: Column, target: float) -> float:
         """The age between two neighbours of the grid, each time parted more finely."""
@@ -110,32 +116,26 @@ class _Search:
             place = min(max(int(np.searchsorted(etas, target)), 1), grid.size - 1)
             low, high = grid[place - 1], grid[place]
             grid = np.linspace(low, high, _PARTS + 1)
-            etas = self._etas(grid)
+            etas = self._eta_of(self._design(grid))
         place = int(np.argmin(np.abs(etas - target)))
         return float(grid[place])
 
-    def _standard_error(self, age: float) -> float | None:
-        """In years; None where the line has no band."""
+    def _standard_error(self, own: Design, near: Design, width: float) -> float | None:
+        """In years; None where the line has no band. `near` holds the age found and the two `width` years round it."""
         line = self.case.line
         if line.band is None:
             return None
-        ages = np.array([age, max(age - _NUDGE, self.low), min(age + _NUDGE, self.high)])
-        design = self._design(ages)
-        own = self.case.design_with({})
-        rise = sum(b * (column[2] - column[1]) for b, column in zip(line.coefficients, design, strict=True))
-        slope = float(rise) / float(ages[2] - ages[1])
-        away = [float(x[0] - column[0]) / slope for x, column in zip(own, design, strict=True)]
+        rise = sum(b * (column[2] - column[1]) for b, column in zip(line.coefficients, near, strict=True))
+        slope = float(rise) / width
+        away = [float(x[0] - column[0]) / slope for x, column in zip(own, near, strict=True)]
         return _spread_of(line, away)
 
-    def _etas(self, ages: Column) -> Column:
-        return self.case.predict_with(self._moved(ages)).eta
+    def _eta_of(self, design: Design) -> Column:
+        return predict(self.case.line, design, adjustment=self.case.adjustment, band=False).eta
 
-    def _design(self, ages: Column) -> tuple[Column, ...]:
-        return self.case.design_with(self._moved(ages))
-
-    def _moved(self, ages: Column) -> dict[str, Column]:
+    def _design(self, ages: Column) -> Design:
         fixed = {id: np.full(ages.size, value) for id, value in self.fixed.items()}
-        return fixed | {self.field.id: np.ascontiguousarray(ages)}
+        return self.case.design_with(fixed | {self.field.id: np.ascontiguousarray(ages)})
 
 
 def _none(because: str) -> MatchingAge:

@@ -1,7 +1,7 @@
 """A coefficient file made ready: fields, compiled terms and lines of every equation."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 from clinicalc.assessment.fields import Field, NumberField, QuestionField, fields_of
 from clinicalc.coefficients.reader import ReadFile
@@ -21,11 +21,12 @@ class ModelEquation:
     terms: tuple[DesignTerm, ...]
     lines: tuple[Line, ...]
     people: People | None = None
+    uses: frozenset[str] = field(init=False)
+    """Ids of the predictors and derived values that its terms are made of."""
 
-    @property
-    def uses(self) -> frozenset[str]:
-        """Ids of the predictors and derived values that its terms are made of."""
-        return frozenset(factor.of for term in self.terms for factor in term.factors)
+    def __post_init__(self) -> None:
+        uses = frozenset(factor.of for term in self.terms for factor in term.factors)
+        object.__setattr__(self, "uses", uses)
 
     def line_at(self, span: Span) -> Line:
         """The line for one of the model's horizons."""
@@ -42,6 +43,12 @@ class Model:
     fields: tuple[Field, ...]
     by_id: Mapping[str, Field]
     equations: tuple[ModelEquation, ...]
+    derived: tuple[NumberField, ...] = field(init=False)
+    """The values that can be worked out, in file order."""
+
+    def __post_init__(self) -> None:
+        found = (self.by_id[derived.id] for derived in self.content.derived)
+        object.__setattr__(self, "derived", tuple(field for field in found if isinstance(field, NumberField)))
 
     @property
     def spans(self) -> tuple[Span, ...]:
@@ -52,13 +59,6 @@ class Model:
     def exclusions(self) -> tuple[QuestionField, ...]:
         """The questions that stop the model when answered yes."""
         return tuple(f for f in self.fields if isinstance(f, QuestionField) and f.excludes)
-
-    @property
-    def derived(self) -> tuple[NumberField, ...]:
-        """The values that can be worked out, in file order."""
-        ids = [derived.id for derived in self.content.derived]
-        found = (self.by_id[id] for id in ids)
-        return tuple(field for field in found if isinstance(field, NumberField))
 
     def recalibrations_at(self, span: Span) -> tuple[Recalibration, ...]:
         """The recalibrations that the file offers for one horizon."""

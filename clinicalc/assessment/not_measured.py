@@ -8,19 +8,19 @@ import numpy as np
 from clinicalc.assessment.bends import bends_in
 from clinicalc.assessment.case import Case
 from clinicalc.assessment.fields import Field, NumberField, QuestionField
-from clinicalc.assessment.limits import giving_limits
-from clinicalc.coefficients.answers import NOT_MEASURED as NOT_MEASURED
+from clinicalc.assessment.limits import clamp_column, giving_limits
 from clinicalc.coefficients.answers import leaves_open
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.line import Array
 from clinicalc.prediction.links import link_of, probability
 from clinicalc.prediction.mixture import mixture_limits, weighted_quantiles
-from clinicalc.prediction.open_band import Averaged, average_columns, average_prediction
+from clinicalc.prediction.open_band import AveragedPrediction, average_columns, average_prediction
 from clinicalc.prediction.open_values import Cloud, spread_open
 from clinicalc.prediction.people import People
 from clinicalc.prediction.predict import predict
 
 MOST_NOT_MEASURED = 2
+"""So many values may stand open in one number; with more it would say little about this patient."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,11 +83,11 @@ def integrate(case: Case, open: tuple[Field, ...], people: People) -> OpenResult
 
     None where no distribution of them follows from the description of the people, or a result is not finite.
     """
-    cloud = spread(case, open, people)
+    cloud = cloud_of(case, open, people)
     return None if cloud is None else average(case, open, cloud, people.source)
 
 
-def spread(case: Case, open: tuple[Field, ...], people: People) -> Cloud | None:
+def cloud_of(case: Case, open: tuple[Field, ...], people: People) -> Cloud | None:
     """Points that stand for the open values of people with the known ones; None where the description lacks them."""
     ids = tuple(field.id for field in open)
 
@@ -145,14 +145,11 @@ def _inside(field: Field, column: Column) -> Column:
 
     The steps of an equation are proved to have a value only inside.
     """
-    if not isinstance(field, NumberField):
-        return column
-    low, high = giving_limits(field)
-    return np.clip(column, -np.inf if low is None else low, np.inf if high is None else high)
+    return clamp_column(column, giving_limits(field)) if isinstance(field, NumberField) else column
 
 
 def _range_over(
-    case: Case, open: tuple[Field, ...], cloud: Cloud, design: Sequence[Column], averaged: Averaged
+    case: Case, open: tuple[Field, ...], cloud: Cloud, design: Sequence[Column], averaged: AveragedPrediction
 ) -> tuple[float, float]:
     """The linear predictors between which a share `level` of such people lies.
 
@@ -170,8 +167,8 @@ def _has_open_cut(case: Case, open: tuple[Field, ...]) -> bool:
     """Whether a term cuts an open number, or a value worked out from one."""
     moving = {field.id for field in open if isinstance(field, NumberField)}
     for field in case.model.derived:
-        if field.formula is not None and field.id not in case.columns:
-            moving |= {field.id} if any(source in moving for _, source in field.formula.inputs) else set()
+        if field.id not in case.columns and any(source in moving for source in field.sources):
+            moving.add(field.id)
     return any(factor.cuts and factor.of in moving for term in case.equation.terms for factor in term.factors)
 
 
@@ -180,7 +177,7 @@ def _to_probability(case: Case, ends: tuple[float, float]) -> tuple[float, float
     return float(low), float(high)
 
 
-def _answered(cloud: Cloud, averaged: Averaged) -> tuple[Answered, ...]:
+def _answered(cloud: Cloud, averaged: AveragedPrediction) -> tuple[Answered, ...]:
     if len(cloud.combinations) == 1 and not cloud.combinations[0]:
         return ()
     figures = zip(cloud.combinations, averaged.parts, averaged.shares, averaged.rests, strict=True)

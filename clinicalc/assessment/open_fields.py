@@ -35,11 +35,8 @@ def check_open(model: Model, open: tuple[Field, ...]) -> Iterator[Finding]:
 
 def open_in(case: Case, open: tuple[Field, ...]) -> tuple[Field, ...]:
     """Those open values that the number depends on: used by the equation, or by a value worked out for it."""
-    needed = set(case.equation.uses)
-    for field in case.model.derived:
-        if field.id in needed and field.id not in case.columns and field.formula is not None:
-            needed |= {id for _, id in field.formula.inputs}
-    return tuple(field for field in open if field.id in needed)
+    behind = case.behind
+    return tuple(field for field in open if field.id in behind)
 
 
 def extremes(case: Case, open: tuple[Field, ...]) -> tuple[tuple[float, float], tuple[float, float]] | None:

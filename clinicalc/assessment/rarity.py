@@ -38,7 +38,8 @@ def find_rare(people: People, numbers: Mapping[str, TakenNumber], findings: Sequ
     values = join_words([f"{taken.field.label} {taken.shown}" for taken in named])
     message = (
         f"Each value is within its range, but together they are rare in the people this model was made from: fewer than"
-        f" 1{NARROW_SPACE}% of them lie so far out. It is most of all {values}. Check that they were typed correctly."
+        f" 1{NARROW_SPACE}% of them lie so far out. Most of the distance comes from {values}. Check that they were"
+        " typed correctly."
     )
     return Finding(Grade.NOTE, FindingCode.RARE_COMBINATION, named[0].field.id, message)
 

@@ -5,6 +5,7 @@ import json
 from clinicalc.assessment.band_assumptions import band_assumptions
 from clinicalc.assessment.record_beside import JsonObject, record_beside, record_findings
 from clinicalc.assessment.result import Assessment, Band, ValueLine
+from clinicalc.assessment.vetting import Vetting
 
 
 def record_of(assessment: Assessment) -> JsonObject:
@@ -17,7 +18,7 @@ def record_of(assessment: Assessment) -> JsonObject:
             "title": model.content.title,
             "fingerprint": model.fingerprint,
         },
-        "vetting": None,
+        "vetting": _vetting(assessment.vetting),
         **_horizon(assessment),
         "level": assessment.level,
         "probability": None if estimate is None else estimate.probability,
@@ -36,6 +37,23 @@ def record_of(assessment: Assessment) -> JsonObject:
 def write_record(assessment: Assessment) -> str:
     """The record as JSON text, indented by 2, shortest decimals, one newline at the end."""
     return json.dumps(record_of(assessment), ensure_ascii=False, indent=2, allow_nan=False) + "\n"
+
+
+def _vetting(vetting: Vetting | None) -> JsonObject | None:
+    """The approval in force, null for a file that was opened by its name; `library` is the library's id."""
+    if vetting is None:
+        return None
+    return {
+        "practice": vetting.practice,
+        "by": vetting.approved_by,
+        "role": vetting.role,
+        "approved_on": vetting.approved_on.isoformat(),
+        "review_until": vetting.review_until.isoformat(),
+        "by_author": vetting.by_author,
+        "library": vetting.library,
+        "compared": [{"at": place, "by": name} for place, name in vetting.compared],
+        "caution": vetting.caution or None,
+    }
 
 
 def _band(assessment: Assessment, band: Band | None) -> JsonObject | None:

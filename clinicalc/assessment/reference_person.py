@@ -2,16 +2,20 @@
 
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from functools import lru_cache
 
 from msgspec import UnsetType
 
 from clinicalc.assessment.case import Case
 from clinicalc.assessment.fields import Field, NumberField, QuestionField
 from clinicalc.assessment.limits import clamp, giving_limits, is_within
+from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numerals import join_words, plain
 from clinicalc.units.conversion import conversion
 from clinicalc.units.unit import unit
 
+_KEPT = 8
+"""Reference persons that are remembered."""
 _SHOWN_DIGITS = 3
 _FILE_DIGITS = 9
 """A number of the file is shown with all its digits, one turned into another unit is rounded."""
@@ -36,18 +40,7 @@ def find_reference(case: Case) -> ReferencePerson:
 
     A derived value that the file names is fixed as a whole: it is not worked out anew when its inputs move.
     """
-    stated = case.equation.content.reference_person
-    named = {} if isinstance(stated, UnsetType) else stated
-    roots = {id: _roots_of(case, id, named) for id in case.equation.uses}
-    if not named:
-        return ReferencePerson({}, roots, "The file names no reference person for this equation.")
-    reached = frozenset().union(*roots.values())
-    fields = [field for field in case.model.fields if field.id in named]
-    because = _find_unknown(case, reached) or next(_find_faults(case, fields, named, reached), "")
-    if because:
-        return ReferencePerson({}, roots, because)
-    values = {field.id: _value(field, named[field.id]) for field in fields if field.id in reached}
-    return ReferencePerson(values, roots)
+    return _find(case.model, case.equation, frozenset(case.columns), frozenset(case.worked_out))
 
 
 def describe_reference(case: Case) -> str:
@@ -55,12 +48,35 @@ def describe_reference(case: Case) -> str:
 
     "" where there is none. Values that the number does not depend on are left out.
     """
-    reference = find_reference(case)
+    return _describe(case.model, find_reference(case))
+
+
+@lru_cache(maxsize=_KEPT)
+def _find(model: Model, equation: ModelEquation, typed: frozenset[str], worked_out: frozenset[str]) -> ReferencePerson:
+    """It depends on which values there are, not on what they are, so it stays the same from key to key."""
+    stated = equation.content.reference_person
+    named = {} if isinstance(stated, UnsetType) else stated
+    roots = {id: _roots_of(model, id, typed | named.keys()) for id in equation.uses}
+    if not named:
+        return ReferencePerson({}, roots, "The file names no reference person for this equation.")
+    reached = frozenset().union(*roots.values())
+    fields = [field for field in model.fields if field.id in named]
+    because = _find_unknown(model, reached - typed - worked_out) or next(
+        _find_faults(model, fields, named, reached), ""
+    )
+    if because:
+        return ReferencePerson({}, roots, because)
+    values = {field.id: _value(field, named[field.id]) for field in fields if field.id in reached}
+    return ReferencePerson(values, roots)
+
+
+@lru_cache(maxsize=_KEPT)
+def _describe(model: Model, reference: ReferencePerson) -> str:
     if not reference.values:
         return ""
     reached = frozenset().union(*reference.roots.values())
-    parts = [_named(case.model.by_id[id], value) for id, value in reference.values.items()]
-    kept = [field.label for field in case.model.fields if field.id in reached and field.id not in reference.values]
+    parts = [_named(model.by_id[id], value) for id, value in reference.values.items()]
+    kept = [field.label for field in model.fields if field.id in reached and field.id not in reference.values]
     if kept:
         parts.append(f"{join_words(kept)} as entered")
     return "; ".join(parts)
@@ -95,17 +111,16 @@ def reference_words(case: Case, id: str, value: float) -> str:
     return f"{_with_unit(turned, taken.unit, _SHOWN_DIGITS)} ({stated})"
 
 
-def _roots_of(case: Case, id: str, named: Mapping[str, object]) -> frozenset[str]:
-    field = case.model.by_id[id]
-    if not isinstance(field, NumberField) or field.formula is None or id in named or id in case.columns:
+def _roots_of(model: Model, id: str, fixed: frozenset[str]) -> frozenset[str]:
+    field = model.by_id[id]
+    if not isinstance(field, NumberField) or field.formula is None or id in fixed:
         return frozenset((id,))
-    return frozenset(source for _, source in field.formula.inputs)
+    return frozenset(field.sources)
 
 
-def _find_unknown(case: Case, reached: frozenset[str]) -> str:
-    """The reason where a value that the number depends on is not there: it was marked as not measured."""
-    known = case.columns.keys() | case.worked_out.keys()
-    open_values = [field.label for field in case.model.fields if field.id in reached and field.id not in known]
+def _find_unknown(model: Model, unknown: frozenset[str]) -> str:
+    """The reason where values that the number depends on are not there: they were marked as not measured."""
+    open_values = [field.label for field in model.fields if field.id in unknown]
     if not open_values:
         return ""
     verb = "was" if len(open_values) == 1 else "were"
@@ -113,18 +128,18 @@ def _find_unknown(case: Case, reached: frozenset[str]) -> str:
 
 
 def _find_faults(
-    case: Case, fields: list[Field], named: Mapping[str, float | str], reached: frozenset[str]
+    model: Model, fields: list[Field], named: Mapping[str, float | str], reached: frozenset[str]
 ) -> Iterator[str]:
     """Values of the reference person that cannot be used."""
     for field in fields:
         value = named[field.id]
         if field.id not in reached:
-            for derived in case.model.derived:
-                inputs = () if derived.formula is None else tuple(id for _, id in derived.formula.inputs)
-                if field.id in inputs and derived.id in reached and derived.id not in named:
+            for derived in model.derived:
+                if field.id in derived.sources and derived.id in reached and derived.id not in named:
+                    labels = join_words([model.by_id[id].label for id in derived.sources])
                     yield (
                         f"The file gives the reference person a value of {field.label}, but {derived.label} was typed"
-                        f" instead: type {join_words([case.model.by_id[id].label for id in inputs])} to compare."
+                        f" instead: type {labels} to compare."
                     )
         elif isinstance(field, NumberField) and not is_within(float(value), giving_limits(field)):
             yield (

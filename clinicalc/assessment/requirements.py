@@ -35,8 +35,7 @@ def find_missing(
     for field in model.derived:
         if field.id not in needed or field.id in available or field.id in typed:
             continue
-        assert field.formula is not None
-        absent = [id for _, id in field.formula.inputs if id not in available and id not in typed and id not in direct]
+        absent = [id for id in field.sources if id not in available and id not in typed and id not in direct]
         if absent and field.may_be_typed:
             labels = join_words([fields[id].label for id in absent])
             wanted[field.id] = f"{field.label} is missing: type it, or type {labels}."

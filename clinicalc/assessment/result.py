@@ -11,6 +11,7 @@ from clinicalc.assessment.model import Model
 from clinicalc.assessment.not_measured import NotMeasured
 from clinicalc.assessment.shares import Shares
 from clinicalc.assessment.spread import Spread
+from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.spans import Span
 from clinicalc.units.averaged import Averaged
 
@@ -90,6 +91,8 @@ class Assessment:
     values: tuple[ValueLine, ...]
     findings: tuple[Finding, ...]
     estimate: Estimate | None
+    vetting: Vetting | None = None
+    """The approval under which the model was used; None for a file that was opened by its name."""
 
     @property
     def stops(self) -> tuple[Finding, ...]:

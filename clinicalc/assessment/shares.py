@@ -8,7 +8,7 @@ cancels. They are linear in the terms of an equation, so each term is averaged o
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, lru_cache
 from itertools import combinations
 from math import factorial, fsum, isfinite
 
@@ -16,6 +16,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from clinicalc.assessment.case import Case
+from clinicalc.assessment.limits import is_equal
+from clinicalc.assessment.model import ModelEquation
 from clinicalc.assessment.numerals import join_words
 from clinicalc.assessment.reference_person import (
     ReferencePerson,
@@ -31,10 +33,9 @@ MOST_TOGETHER = 10
 """So many values may meet in one term: 1024 rows."""
 
 _NOUGHT = 1e-12
-_EQUAL_DIGITS = 9
-"""A value typed in another unit that meets the reference person's to so many digits is the same value."""
 
 _Subset = frozenset[str]
+_Places = NDArray[np.intp]
 
 
 @dataclass(frozen=True, slots=True)
@@ -58,42 +59,55 @@ class Shares:
     """Shares of nought are left out."""
 
 
+@dataclass(frozen=True, slots=True, eq=False)
+class _Plan:
+    """Which values are moved together, whoever the patient is.
+
+    `together` holds, for each term, the moving values that change it, `subsets` the rows of all their subsets. `rows`
+    has a row for each set of moved values that some term needs: the reference person's first, the patient's too.
+    """
+
+    together: tuple[tuple[str, ...], ...]
+    rows: Mapping[_Subset, int]
+    subsets: tuple[_Places, ...]
+
+
 def shares_of(case: Case) -> Shares | None:
     """The walk on the adjusted link scale; None where there is none, for the reason that `why_no_shares` gives."""
-    found = _walk(case)
+    found = walk_from(case, find_reference(case))
     return None if isinstance(found, str) else found
 
 
 def why_no_shares(case: Case) -> str:
     """Why there are no shares; "" where there are."""
-    found = _walk(case)
+    found = walk_from(case, find_reference(case))
     return found if isinstance(found, str) else ""
 
 
-def _walk(case: Case) -> Shares | str:
-    reference = find_reference(case)
+def walk_from(case: Case, reference: ReferencePerson) -> Shares | str:
+    """The walk on the adjusted link scale from the case's reference person, or why there is none."""
     if reference.because:
         return reference.because
-    moving = [id for id, value in reference.values.items() if not _same(own_value(case, id), value)]
-    together = [_moving_in_term(reference, term_uses, moving) for term_uses in _uses_of_terms(case)]
-    most = max(together, key=len)
+    moving = [id for id, value in reference.values.items() if not is_equal(own_value(case, id), value)]
+    plan = _plan(case.equation, reference, tuple(moving))
+    most = max(plan.together, key=len)
     if len(most) > MOST_TOGETHER:
         labels = join_words([case.model.by_id[id].label for id in most])
         return (
             f"{labels} meet in one term of the equation, more than {MOST_TOGETHER}: they have no shares of their own."
         )
-    rows = _rows(moving, together)
-    design = case.design_with(_moved(case, reference, moving, rows))
+    design = case.design_with(_moved(case, reference, moving, plan.rows))
     result = predict(case.line, design, adjustment=case.adjustment, band=False)
     slope = 1.0 if case.adjustment is None else case.adjustment.slope
     parts: dict[str, list[float]] = {id: [] for id in moving}
-    for values, coefficient, ids in zip(design, case.line.coefficients, together, strict=True):
+    for values, coefficient, ids, subsets in zip(
+        design, case.line.coefficients, plan.together, plan.subsets, strict=True
+    ):
         if ids:
-            here = values[[rows[subset] for subset in _subsets(ids)]]
-            averaged = (_weights(len(ids)) * here).sum(axis=1)
-            for id, share in zip(ids, averaged, strict=True):
-                parts[id].append(slope * coefficient * float(share))
-    start, way = float(result.eta[0]), float(result.eta[rows[frozenset(moving)]] - result.eta[0])
+            averaged = (_weights(len(ids)) * values[subsets]).sum(axis=1)
+            for id, share in zip(ids, averaged.tolist(), strict=True):
+                parts[id].append(slope * coefficient * share)
+    start, way = float(result.eta[0]), float(result.eta[plan.rows[frozenset(moving)]] - result.eta[0])
     amounts = {id: fsum(some) for id, some in parts.items()}
     if not (isfinite(start) and isfinite(way) and all(map(isfinite, amounts.values()))):
         return "On the way from the reference person to these values the equation has no finite result."
@@ -118,17 +132,26 @@ def _steps(case: Case, reference: ReferencePerson, amounts: Mapping[str, float],
     )
 
 
-def _uses_of_terms(case: Case) -> list[frozenset[str]]:
-    return [frozenset(factor.of for factor in term.factors) for term in case.equation.terms]
+@lru_cache(maxsize=16)
+def _plan(equation: ModelEquation, reference: ReferencePerson, moving: tuple[str, ...]) -> _Plan:
+    """Without subsets and rows where too many values meet in one term."""
+    together = tuple(
+        _moving_in_term(reference, frozenset(factor.of for factor in term.factors), moving) for term in equation.terms
+    )
+    if max(map(len, together)) > MOST_TOGETHER:
+        return _Plan(together, {}, ())
+    rows = _rows(moving, together)
+    subsets = tuple(np.array([rows[subset] for subset in _subsets(ids)]) for ids in together)
+    return _Plan(together, rows, subsets)
 
 
-def _moving_in_term(reference: ReferencePerson, uses: frozenset[str], moving: list[str]) -> tuple[str, ...]:
+def _moving_in_term(reference: ReferencePerson, uses: frozenset[str], moving: tuple[str, ...]) -> tuple[str, ...]:
     """The moving values that change a term, themselves or through a value worked out from them, in page order."""
     reached = frozenset().union(*(reference.roots[id] for id in uses))
     return tuple(id for id in moving if id in reached)
 
 
-def _rows(moving: list[str], together: list[tuple[str, ...]]) -> dict[_Subset, int]:
+def _rows(moving: tuple[str, ...], together: tuple[tuple[str, ...], ...]) -> dict[_Subset, int]:
     """A row for each set of moved values that some term needs; the reference person's first, the patient's too."""
     rows: dict[_Subset, int] = {frozenset(): 0}
     for ids in dict.fromkeys(together):
@@ -163,7 +186,3 @@ def _weights(count: int) -> NDArray[np.float64]:
             weight = factorial(before) * factorial(count - before - 1) / factorial(count)
             weights[value, column] = weight if value in subset else -weight
     return weights
-
-
-def _same(own: float, other: float) -> bool:
-    return f"{own:.{_EQUAL_DIGITS}g}" == f"{other:.{_EQUAL_DIGITS}g}"

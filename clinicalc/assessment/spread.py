@@ -132,10 +132,11 @@ def spread_of(case: Case, open: tuple[Field, ...] = ()) -> Spread | None:
 
 
 def remeasured_sd(within: WithinPerson, value: float, averaged: Averaged | None) -> float:
-    """The within-person SD of a value, in its unit; that of a mean of n visits with m readings each is
+    """The within-person SD of a value, in its unit.
 
-    sqrt((total^2 - part^2) / n + part^2 / (n m)), `part` being what differs among readings of one visit. Where the file
-    does not state that part, readings of one visit share all of the variation, and only visits divide it.
+    That of a mean of n visits with m readings each is sqrt((total^2 - part^2) / n + part^2 / (n m)), `part` being what
+    differs among readings of one visit. Where the file does not state that part, readings of one visit share all of the
+    variation, and only visits divide it.
     """
     relative = isinstance(within.sd, UnsetType)
     total, part = (within.cv, within.within_visit_cv) if relative else (within.sd, within.within_visit_sd)
@@ -152,10 +153,7 @@ def _find_varying(case: Case, open: tuple[Field, ...]) -> Iterator[tuple[TakenNu
 
     Where values are open every such number may be behind it, by what it lets expect of them.
     """
-    behind = set(case.equation.uses)
-    for derived in case.model.derived:
-        if derived.id in behind and derived.id not in case.numbers and derived.formula is not None:
-            behind |= {source for _, source in derived.formula.inputs}
+    behind = case.behind
     for field in case.model.fields:
         number = case.numbers.get(field.id)
         within = None if number is None else number.field.within_person
@@ -196,12 +194,14 @@ def _crossing(case: Case, columns: dict[str, Column], rows: int) -> Rows:
             cuts = [factor for factor in factors if factor.cuts and factor.of in columns]
             if not cuts:
                 continue
-            known = all(factor.of in columns for factor in factors)
-            value = term.values(columns) if known else np.arange(float(rows))
-            differs = value != value[0]
-            for factor in cuts if differs.any() else ():
+            elsewhere = np.zeros(rows, dtype=np.bool_)
+            for factor in cuts:
                 side = factor.values(columns)
-                crossed |= (side != side[0]) & differs
+                elsewhere |= side != side[0]
+            if elsewhere.any() and all(factor.of in columns for factor in factors):
+                value = term.values(columns)
+                elsewhere &= value != value[0]
+            crossed |= elsewhere
     return crossed
 
 

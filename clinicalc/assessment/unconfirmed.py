@@ -1,7 +1,7 @@
 """Figures of a file that nobody has compared with the source, and which of them stand behind a result."""
 
-from collections.abc import Mapping
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, field
 
 from msgspec import UnsetType
 
@@ -9,6 +9,7 @@ from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.numbers import TakenNumber
+from clinicalc.assessment.numerals import join_words
 from clinicalc.assessment.questions import TakenAnswer
 from clinicalc.coefficients.roles import ROLES
 from clinicalc.coefficients.schema import ChoicePredictor, Recalibration, ReconstructedBand, Unconfirmed
@@ -31,6 +32,8 @@ class Basis:
     """Ids of the derived values that were worked out and used."""
     open: frozenset[str] = frozenset()
     """Ids of the values that were not measured: for them the number rests on the described people."""
+    compared: Mapping[str, str] = field(default_factory=dict)
+    """For places that the file calls unconfirmed, who compared them for the practice."""
 
 
 def unconfirmed_behind(model: Model, basis: Basis) -> tuple[Unconfirmed, ...]:
@@ -39,17 +42,35 @@ def unconfirmed_behind(model: Model, basis: Basis) -> tuple[Unconfirmed, ...]:
 
 
 def find_unconfirmed(model: Model, basis: Basis) -> tuple[Finding, ...]:
-    """One caution that names every unconfirmed figure a result rests on, or nothing."""
+    """One caution that names every unconfirmed figure a result rests on, or nothing.
+
+    Those that somebody compared with their source when the practice approved the file are a note instead.
+    """
+    behind = unconfirmed_behind(model, basis)
+    names = dict.fromkeys(basis.compared[entry.at] for entry in behind if entry.at in basis.compared)
+    open = tuple(entry for entry in behind if entry.at not in basis.compared)
+    return (*_say_open(open), *_say_compared(list(names)))
+
+
+def _say_open(entries: tuple[Unconfirmed, ...]) -> Iterator[Finding]:
     by_source: dict[str, list[str]] = {}
-    for entry in unconfirmed_behind(model, basis):
+    for entry in entries:
         reasons = by_source.setdefault(_sentence(entry.check_against), [])
         if _sentence(entry.why) not in reasons:
             reasons.append(_sentence(entry.why))
-    if not by_source:
-        return ()
-    said = " ".join(f"{' '.join(reasons)} Compare with {source}" for source, reasons in by_source.items())
-    message = f"Figures behind this number were not checked against the source. {said}"
-    return (Finding(Grade.CAUTION, FindingCode.UNCONFIRMED, "", message),)
+    if by_source:
+        said = " ".join(f"{' '.join(reasons)} Compare with {source}" for source, reasons in by_source.items())
+        message = f"Figures behind this number were not checked against the source. {said}"
+        yield Finding(Grade.CAUTION, FindingCode.UNCONFIRMED, "", message)
+
+
+def _say_compared(names: list[str]) -> Iterator[Finding]:
+    if names:
+        message = (
+            "Figures behind this number that the file itself calls unconfirmed were compared with the source by"
+            f" {join_words(names)}, as the practice’s approval says."
+        )
+        yield Finding(Grade.NOTE, FindingCode.UNCONFIRMED, "", message)
 
 
 def _is_behind(model: Model, path: list[str], basis: Basis) -> bool:

@@ -48,9 +48,8 @@ def work_out(model: Model, field: NumberField, columns: Mapping[str, Column]) ->
 
 def check_worked_out(model: Model, field: NumberField, value: float, typed: TakenNumber | None) -> tuple[Finding, ...]:
     """What is to be said about a worked-out value, and about a typed one that stands beside it."""
-    assert field.formula is not None
     fields = model.by_id
-    sources = join_words([fields[id].label for _, id in field.formula.inputs])
+    sources = join_words([fields[id].label for id in field.sources])
     if not isfinite(value):
         if typed is not None:
             return ()

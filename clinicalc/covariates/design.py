@@ -1,7 +1,7 @@
 """Design terms: what each coefficient of an equation is multiplied with."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from msgspec import UnsetType
@@ -20,6 +20,11 @@ class DesignFactor:
 
     of: str
     transforms: tuple[Transform, ...]
+    cuts: bool = field(init=False, compare=False)
+    """Whether the factor jumps at some value."""
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "cuts", any(transform.kind in CUTS for transform in self.transforms))
 
     def values(self, columns: Columns) -> Column:
         """The factor for each patient, shape (n,)."""
@@ -27,11 +32,6 @@ class DesignFactor:
         for transform in self.transforms:
             column = apply_transform(transform, column)
         return column
-
-    @property
-    def cuts(self) -> bool:
-        """Whether the factor jumps at some value."""
-        return any(transform.kind in CUTS for transform in self.transforms)
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,11 +42,11 @@ class DesignTerm:
     coefficient: float
     fixed: bool
     products: tuple[tuple[DesignFactor, ...], ...]
+    factors: tuple[DesignFactor, ...] = field(init=False, compare=False)
+    """Every factor of the term, in file order."""
 
-    @property
-    def factors(self) -> tuple[DesignFactor, ...]:
-        """Every factor of the term, in file order."""
-        return tuple(factor for product in self.products for factor in product)
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "factors", tuple(factor for product in self.products for factor in product))
 
     def values(self, columns: Columns) -> Column:
         """The term for each patient, shape (n,): products from left to right, added in file order."""

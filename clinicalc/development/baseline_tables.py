@@ -98,11 +98,9 @@ def _complete_sums(table: NumberTable, row: int, slopes: Slopes, reference: Arra
         return Fault(f"at time {time:g} the sum A is {quoted(squares)}; a sum of squares is more than 0.")
     if squares > hazard * hazard * (1 + 1e-12):
         return Fault(
-            f"at time {time:g} A is {quoted(squares)}, more than the square of H "
-            f"({quoted(hazard * hazard)}): it is the sum "
-            "of the squares of the increments of H. Is it a standard error, are H and A exchanged, or do "
-            "case weights add up "
-            "to 1 and not to the number of people?"
+            f"at time {time:g} A is {quoted(squares)}, more than the square of H ({quoted(hazard * hazard)}): it is"
+            " the sum of the squares of the increments of H. Is it a standard error, are H and A exchanged, or do case"
+            " weights add up to 1 and not to the number of people?"
         )
     moments = np.array([table.column(f"{MOMENT}{name}")[row] for name in slopes.names], dtype=np.float64)
     square = square_of_sums(hazard, squares, moments)

@@ -74,9 +74,8 @@ def find_unfitted(equation: Mapping[str, object], base: str) -> Iterator[Problem
     if bare:
         yield Problem(
             base,
-            f"there is no table [fit.{equation.get('id')}], and {listed(bare)} "
-            f"{'has' if len(bare) == 1 else 'have'} no "
-            "coefficient. Name the fit's tables there, or write the figures of the source here.",
+            f"there is no table [fit.{equation.get('id')}], and {listed(bare)} {'has' if len(bare) == 1 else 'have'}"
+            " no coefficient. Name the fit's tables there, or write the figures of the source here.",
         )
 
 

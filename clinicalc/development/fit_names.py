@@ -55,9 +55,8 @@ def match_terms(reading: FitReading, vector: NamedVector, intercept: str | None)
         if term not in ids.values():
             reading.say(
                 "coefficients",
-                f"the term {quoted(term)} has no coefficient in the fit. A coefficient that was not "
-                "estimated stands in the "
-                "description, with fixed = true.",
+                f"the term {quoted(term)} has no coefficient in the fit. A coefficient that was not estimated stands"
+                " in the description, with fixed = true.",
             )
     return {name: id for term in terms for name, id in ids.items() if id == term}
 

@@ -55,9 +55,8 @@ def find_patient_problems(patients: Sequence[PatientTable]) -> Iterator[Problem]
                 if getattr(patient, name) is UNSET:
                     yield Problem(
                         base,
-                        f'"{name}" is missing beside a printed probability: half a unit of its last '
-                        "digit, and what printed "
-                        "it.",
+                        f'"{name}" is missing beside a printed probability: half a unit of its last digit, and what'
+                        " printed it.",
                     )
 
 
@@ -141,9 +140,8 @@ def _misses(example: WorkedExample, estimate: Estimate, path: str) -> Iterator[P
         if not isinstance(printed, float) or figure is None or abs(printed - figure) <= example.tolerance + _SLACK:
             continue
         slip = (
-            "Is the reference point the one where the baseline holds, is every term coded as in the fit "
-            "(0 and 1, or 1 and 2), "
-            "and are values, units and horizon those that were predicted for?"
+            "Is the reference point the one where the baseline holds, is every term coded as in the fit (0 and 1, or 1"
+            " and 2), and are values, units and horizon those that were predicted for?"
             if name == "probability"
             else "Are these limits made on the link scale (R: log-log for survival) at 95\u202f%, from this covariance?"
         )

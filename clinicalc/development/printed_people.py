@@ -19,10 +19,9 @@ AGREEMENT = 1e-6
 FEWEST_DIGITS = 8
 
 PEOPLE_WANTED = (
-    "Print survival and its standard error for several people: one at the reference, one more for every "
-    "term with that term "
-    "raised by one, and best one with all of them raised; with columns for the terms, as the guide's "
-    "page on packaging does."
+    "Print survival and its standard error for several people: one at the reference, one more for every term with that"
+    " term raised by one, and best one with all of them raised; with columns for the terms, as the guide's page on"
+    " packaging does."
 )
 
 
@@ -68,11 +67,9 @@ def solve_people(part: NumberTable, time: float, slopes: Slopes, printed: Printe
     apart = float(lps.max() - lps.min())
     if not apart <= AGREEMENT:
         return Fault(
-            f"{at} the rows do not agree with the coefficients: log H less x'b should be the same in "
-            "each and differs by "
-            f"{apart:.3g}. Are the values of the terms those that were predicted for, in the fit's own "
-            "coding, with all "
-            "the digits, and from the same fit?"
+            f"{at} the rows do not agree with the coefficients: log H less x'b should be the same in each and differs"
+            f" by {apart:.3g}. Are the values of the terms those that were predicted for, in the fit's own coding,"
+            " with all the digits, and from the same fit?"
         )
     if slopes.covariance is None:
         return FitBaseline(time, float(lps.mean())), ""
@@ -99,17 +96,16 @@ def _judge_square(square: Square | None, x: Array, slopes: Slopes, at: str) -> s
         size = len(slopes.names)
         tied = listed(quoted(slopes.names[place]) for place in find_tied(x))
         return (
-            f"{at} the people of the {len(x)} row{'s' * (len(x) > 1)} do not settle the band: it takes "
-            f"{size + 1} for {size} "
-            f"terms, who differ in each independently of the others, and these do not in {tied}. {PEOPLE_WANTED}"
+            f"{at} the people of the {len(x)} row{'s' * (len(x) > 1)} do not settle the band: it takes {size + 1} for"
+            f" {size} terms, who differ in each independently of the others, and these do not in {tied}."
+            f" {PEOPLE_WANTED}"
         )
     if not square.misfit <= AGREEMENT:
         return (
-            f"{at} the standard errors do not agree with each other and the covariance (by {square.misfit:.2g} of a "
-            "variance). Is the covariance the one that survfit used (vcov of the same fit, robust where "
-            "the fit is), and "
-            'is "std.err" that of survival, as summary(survfit(...)) gives it, not that of the '
-            'cumulative hazard ("std.chaz")?'
+            f"{at} the standard errors do not agree with each other and the covariance (by {square.misfit:.2g} of a"
+            " variance). Is the covariance the one that survfit used (vcov of the same fit, robust where the fit is),"
+            ' and is "std.err" that of survival, as summary(survfit(...)) gives it, not that of the cumulative hazard'
+            ' ("std.chaz")?'
         )
     if not square.variance > 0:
         return (

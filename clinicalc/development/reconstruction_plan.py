@@ -19,8 +19,10 @@ class SurvivalLimits(StrEnum):
 
 @dataclass(frozen=True, slots=True)
 class EquationPlan:
-    """For one equation, by term id on the link scale: standard errors that count instead of printed intervals, and
-    published means of the terms as computed; and the number of people it was fitted to."""
+    """What is added for one equation: how many people it was fitted to, and figures by term id on the link scale.
+
+    The standard errors count instead of printed intervals; the means are published ones of the terms as computed.
+    """
 
     equation: str
     people: int | None = None

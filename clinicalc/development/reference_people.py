@@ -130,8 +130,8 @@ def needed_predictors(model: Model, equation: ModelEquation, given: set[str] | N
     needed: set[str] = set()
     for id in equation.uses - (given or set()):
         field = model.by_id[id]
-        formula = field.formula if isinstance(field, NumberField) else None
-        needed |= {id} if formula is None else {source for _, source in formula.inputs}
+        sources = field.sources if isinstance(field, NumberField) else ()
+        needed |= {*sources} if sources else {id}
     return needed
 
 

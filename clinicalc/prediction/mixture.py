@@ -9,6 +9,7 @@ import numpy as np
 from clinicalc.covariates.transforms import Column
 
 _HALVINGS = 80
+"""At the most; it ends sooner, where no number lies between the two ends any more."""
 
 
 @dataclass(frozen=True, slots=True)

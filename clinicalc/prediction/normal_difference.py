@@ -16,10 +16,8 @@ import numpy as np
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.joint import JointNormal
 from clinicalc.prediction.links import Link, complement, difference_between, link_of, probability, slope_at
-from clinicalc.prediction.tied_difference import TiedDifference
+from clinicalc.prediction.tied_difference import FARTHEST, TiedDifference
 
-_FARTHEST = 8.5
-"""Standard deviations: beyond them lies less than 1e-16 of a normal."""
 _FIRST_PANELS = 10
 _AGREED = 1e-10
 """Where the 7-point rule is so near, the 15-point rule is at rounding."""
@@ -171,7 +169,7 @@ class _Untied:
 
     def __init__(self, link: Link, joint: JointNormal) -> None:
         self.link, self.joint, self.remainder = link, joint, joint.remainder
-        ends = np.linspace(-_FARTHEST, _FARTHEST, _FIRST_PANELS + 1)
+        ends = np.linspace(-FARTHEST, FARTHEST, _FIRST_PANELS + 1)
         self.panels = _lay_panels(link, joint, ends[:-1], ends[1:])
 
     @np.errstate(over="ignore")  # where both numbers are nought or one, no density is too large
@@ -226,7 +224,7 @@ def _invert(distribution: Callable[[float], tuple[float, float]], share: float, 
             continue
         lacking = wanted - _NORMAL.inv_cdf(below)
         # the slope of Phi^-1(P) is density / phi: nearly constant, so that a step or two suffice
-        step = lacking * _NORMAL.pdf(wanted - lacking) / max(density, 1e-300)
+        step = lacking * _NORMAL.pdf(wanted - lacking) / max(density, _TINY)
         if abs(lacking) <= _REACHED and abs(step) <= 1e-9 * abs(at - middle) + 1e-12 * abs(at) + _NEAR_ENOUGH:
             return min(max(at + step, -1.0), 1.0)
         trusted = turn < _TRUSTED or turn % 2 == 0

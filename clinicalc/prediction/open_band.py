@@ -23,7 +23,7 @@ Ends = tuple[float, float]
 
 
 @dataclass(frozen=True, slots=True, eq=False)
-class Averaged:
+class AveragedPrediction:
     """What a prediction comes to over the points.
 
     `share` and `rest`: the averages of g(eta) and of 1 - g(eta). `parts`: for each combination of open answers, weight,
@@ -53,6 +53,15 @@ class Averaged:
         )
 
 
+@dataclass(frozen=True, slots=True, eq=False)
+class _Combination:
+    """One set of open answers: the places of its points, their weights, which add up to 1, and what they come to."""
+
+    places: NDArray[np.intp]
+    weights: Column
+    part: Part
+
+
 def average_prediction(
     line: Line,
     design: Sequence[Column],
@@ -60,7 +69,7 @@ def average_prediction(
     combination: NDArray[np.intp],
     adjustment: Adjustment | None,
     level: float,
-) -> Averaged | None:
+) -> AveragedPrediction | None:
     """The average over points with these design columns and weights, each of shape (K,); weights add up to 1.
 
     `combination` says for each point which set of open answers it belongs to. None where a point, or the band, has no
@@ -71,21 +80,16 @@ def average_prediction(
     if not np.isfinite(eta).all():
         return None
     g, rest = probability(line.link, eta), complement(line.link, eta)
-    sets = [np.flatnonzero(combination == k) for k in range(int(combination.max()) + 1)]
-    shares = [float(weights[points].sum()) for points in sets]
-    within = [weights[points] / share if share else weights[points] for points, share in zip(sets, shares, strict=True)]
-    parts = tuple(
-        Part(share, *_moments(eta[points], own)) for points, own, share in zip(sets, within, shares, strict=True)
-    )
-    limits = _limits(line, design, plain, sets, within, parts, adjustment, level)
+    sets = [_gather(np.flatnonzero(combination == k), weights, eta) for k in range(int(combination.max()) + 1)]
+    limits = _limits(line, design, plain, sets, adjustment, level)
     if limits is not None and not np.isfinite(limits).all():
         return None
-    return Averaged(
+    return AveragedPrediction(
         share=float((weights * g).sum()),
         rest=float((weights * rest).sum()),
-        parts=parts,
-        shares=tuple(float((own * g[points]).sum()) for points, own in zip(sets, within, strict=True)),
-        rests=tuple(float((own * rest[points]).sum()) for points, own in zip(sets, within, strict=True)),
+        parts=tuple(one.part for one in sets),
+        shares=tuple(float((one.weights * g[one.places]).sum()) for one in sets),
+        rests=tuple(float((one.weights * rest[one.places]).sum()) for one in sets),
         limits=limits,
     )
 
@@ -93,6 +97,12 @@ def average_prediction(
 def average_columns(design: Sequence[Column], weights: Column) -> tuple[Column, ...]:
     """The expected design columns, each of shape (1,)."""
     return tuple(np.array([(weights * column).sum()]) for column in design)
+
+
+def _gather(places: NDArray[np.intp], weights: Column, eta: Column) -> _Combination:
+    share = float(weights[places].sum())
+    own = weights[places] / share if share else weights[places]
+    return _Combination(places, own, Part(share, *_moments(eta[places], own)))
 
 
 def _moments(eta: Column, weights: Column) -> tuple[float, float]:
@@ -105,22 +115,22 @@ def _limits(
     line: Line,
     design: Sequence[Column],
     plain: Column,
-    sets: list[NDArray[np.intp]],
-    within: list[Column],
-    parts: tuple[Part, ...],
+    sets: Sequence[_Combination],
     adjustment: Adjustment | None,
     level: float,
 ) -> Ends | None:
     if isinstance(line.band, Precision):
         deviation = standard_deviation(line.band, design, plain, adjustment)
-        whole = [
-            Part(part.weight, part.mean, sqrt(part.sd * part.sd + float((own * deviation[at] * deviation[at]).sum())))
-            for part, at, own in zip(parts, sets, within, strict=True)
-        ]
-        return mixture_limits(whole, level)
+        return mixture_limits([_with_variance(one, deviation[one.places]) for one in sets], level)
     if line.band is None or not line.band.enough_for(level):
         return None
-    return _drawn_limits(line.band, line, design, plain, sets, within, parts, adjustment, level)
+    return _drawn_limits(line.band, line, design, plain, sets, adjustment, level)
+
+
+def _with_variance(combination: _Combination, deviation: Column) -> Part:
+    """The part with the coefficients' variance at its points, on average, added to that among them."""
+    part, weights = combination.part, combination.weights
+    return Part(part.weight, part.mean, sqrt(part.sd * part.sd + float((weights * deviation * deviation).sum())))
 
 
 def _drawn_limits(
@@ -128,9 +138,7 @@ def _drawn_limits(
     line: Line,
     design: Sequence[Column],
     plain: Column,
-    sets: list[NDArray[np.intp]],
-    within: list[Column],
-    parts: tuple[Part, ...],
+    sets: Sequence[_Combination],
     adjustment: Adjustment | None,
     level: float,
 ) -> Ends:
@@ -139,23 +147,24 @@ def _drawn_limits(
     The spread of the numbers within a combination, itself averaged over the draws, and an adjustment's imprecision are
     joined to them as distances from the middle (Zou & Donner, Stat Med 2008;27:1693), as for a measured patient.
     """
-    centres = [average_columns([column[at] for column in design], own) for at, own in zip(sets, within, strict=True)]
+    centres = [average_columns([column[one.places] for column in design], one.weights) for one in sets]
     columns = [np.concatenate(column) for column in zip(*centres, strict=True)]
     drawn = drawn_predictors(band, line, columns)
-    weights = np.repeat([part.weight for part in parts], drawn.shape[1])
+    weights = np.repeat([one.part.weight for one in sets], drawn.shape[1])
     shares = (0.5 - level / 2.0, 0.5, 0.5 + level / 2.0)
     low, middle, high = (float(end) for end in weighted_quantiles(drawn.ravel(), weights, shares))
     extra, slope, intercept = 0.0, 1.0, 0.0
-    for part, at, own in zip(parts, sets, within, strict=True):
-        if part.sd > 0.0:
-            extra += part.weight * _drawn_variance(band, line, [column[at] for column in design], own)
+    for one in sets:
+        if one.part.sd > 0.0:
+            there = [column[one.places] for column in design]
+            extra += one.part.weight * _drawn_variance(band, line, there, one.weights)
     if adjustment is not None:
         slope, intercept = adjustment.slope, adjustment.intercept
-        own_part = [
-            float((own * adjustment_variance(adjustment, plain[at])).sum())
-            for at, own in zip(sets, within, strict=True)
-        ]
-        extra = slope * slope * extra + sum(part.weight * v for part, v in zip(parts, own_part, strict=True))
+        of_adjustment = (
+            one.part.weight * float((one.weights * adjustment_variance(adjustment, plain[one.places])).sum())
+            for one in sets
+        )
+        extra = slope * slope * extra + sum(of_adjustment)
     quantile = NormalDist().inv_cdf(shares[2])
     extra *= quantile * quantile
     below, above = slope * (middle - low), slope * (high - middle)

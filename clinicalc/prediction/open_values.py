@@ -21,6 +21,7 @@ MOST_COMBINATIONS = 256
 """Of answers that are open: those not measured and those that theirs depend on."""
 
 _REACH = 8.5
+"""Standard deviations to either side within which bends of a function are asked for; beyond lies less than 1e-16."""
 
 Bends = Callable[[str, Mapping[str, Column], Column, Column], Array]
 """Where a function of an open number jumps or bends: of its id, the open numbers placed before it, and the lowest and

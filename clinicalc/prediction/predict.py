@@ -19,6 +19,9 @@ from clinicalc.prediction.links import complement, probability
 BLOCK = 8192
 """Rows worked on at a time: small enough that the running columns stay in the processor's cache."""
 
+FEW = 64
+"""Rows up to which the parts of a variance are worked out together."""
+
 DRAWN_FIGURES = 1 << 17
 """Linear predictors worked out at a time for a band of draws, patients times draws: 1 MB."""
 
@@ -104,9 +107,20 @@ def standard_deviation(
 
 def _variance(band: Precision, columns: Sequence[Column], eta: Column, adjustment: Adjustment | None) -> Column:
     """Variance of the (adjusted) linear predictor, shape (n,): a + sum over k of (sum over j >= k of L_jk d_j)^2."""
+    if eta.size <= FEW:
+        total = _model_variance_of_few(band, columns, eta.size)
+    else:
+        total = _model_variance(band, columns, eta.size)
+    if adjustment is None:
+        return total
+    return adjustment.slope * adjustment.slope * total + adjustment_variance(adjustment, eta)
+
+
+def _model_variance(band: Precision, columns: Sequence[Column], n: int) -> Column:
+    """That of the linear predictor before any adjustment, shape (n,)."""
     size = len(band.estimated)
     away = [columns[term] - centre for term, centre in zip(band.estimated, band.centre, strict=True)]
-    total = np.full(eta.size, band.variance)
+    total = np.full(n, band.variance)
     product, part = np.empty_like(total), np.empty_like(total)
     for k in range(size):
         np.multiply(away[k], band.root[k, k], out=part)
@@ -115,9 +129,22 @@ def _variance(band: Precision, columns: Sequence[Column], eta: Column, adjustmen
             np.add(part, product, out=part)
         np.multiply(part, part, out=part)
         np.add(total, part, out=total)
-    if adjustment is None:
-        return total
-    return adjustment.slope * adjustment.slope * total + adjustment_variance(adjustment, eta)
+    return total
+
+
+def _model_variance_of_few(band: Precision, columns: Sequence[Column], n: int) -> Column:
+    """The same to the bit, shape (n,): every sum in the same order, all parts at once.
+
+    With few rows a call costs more than its figures; with many, the parts would leave the cache.
+    """
+    parts = np.zeros((len(band.estimated), n))
+    for j, (term, centre) in enumerate(zip(band.estimated, band.centre, strict=True)):
+        parts[: j + 1] += band.root[j, : j + 1, np.newaxis] * (columns[term] - centre)
+    parts *= parts
+    total = np.full(n, band.variance)
+    for part in parts:
+        total += part
+    return total
 
 
 def adjustment_variance(adjustment: Adjustment, eta: Column) -> Column:

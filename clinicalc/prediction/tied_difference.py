@@ -11,9 +11,10 @@ from numpy.typing import NDArray
 from clinicalc.covariates.transforms import Column
 from clinicalc.prediction.links import Link, difference_between, slope_at
 
-_FARTHEST = 8.5
+FARTHEST = 8.5
 """Standard deviations: beyond them lies less than 1e-16 of a normal."""
 _CELLS = 340
+"""Twenty to a standard deviation: turns of D are looked for between their ends."""
 _HALVINGS = 60
 
 _NORMAL = NormalDist()
@@ -38,7 +39,7 @@ class TiedDifference:
     def __init__(self, link: Link, first: float, second: float, first_sd: float, second_sd: float) -> None:
         self.link, self.first, self.second = link, first, second
         self.first_sd, self.second_sd = first_sd, second_sd
-        grid = np.linspace(-_FARTHEST, _FARTHEST, _CELLS + 1)
+        grid = np.linspace(-FARTHEST, FARTHEST, _CELLS + 1)
         rising = self._rate(grid) > 0.0
         cells = np.flatnonzero(rising[1:] != rising[:-1])
         self._nodes = np.sort(np.concatenate([grid, self._find_turns(grid[cells], grid[cells + 1])]))

@@ -50,6 +50,7 @@ class _Axis:
     small: float
 
     def place(self, percentage_points: float) -> float:
+        """The x of a difference."""
         return self.left + self.width * (percentage_points + self.end) / (2 * self.end)
 
 

@@ -62,13 +62,14 @@ def _furniture(assessment: Assessment, label: str, practice: str, printed_at: da
     return Furniture(
         practice=practice,
         label=label,
-        strip=phrases.NOT_VETTED,
+        strip="" if assessment.vetting else phrases.NOT_VETTED,
         fingerprint_note=f"Fingerprint {group_fingerprint(fingerprint)}",
         caution=phrases.FIRST_PAGE_CAUTION,
         model=f"{content.title} {content.version}",
         fingerprint=group_fingerprint(fingerprint, 3),
         program=f"clinicalc {__version__}",
         printed=f"Printed {phrases.moment_words(printed_at)}",
+        approval=phrases.vetting_words(assessment.vetting) if assessment.vetting else "",
     )
 
 
@@ -104,7 +105,7 @@ def _result(assessment: Assessment) -> Result:
             *([f"{phrases.count_words(missing, 'entry', 'entries')} still to be made"] if missing else []),
         ]
         sentences = (phrases.NO_NUMBER, f"{join_words(reasons)}.")
-        return Result("No number", None, outcome, "", sentences, vetted=False)
+        return Result("No number", None, outcome, "", sentences, vetted=assessment.vetting is not None)
     short, detail = phrases.outcome_words(outcome)
     return Result(
         shown_probability(assessment),
@@ -112,7 +113,7 @@ def _result(assessment: Assessment) -> Result:
         f"{short} within {span.words}",
         detail,
         (phrases.say_people(assessment),),
-        vetted=False,
+        vetted=assessment.vetting is not None,
     )
 
 

@@ -205,6 +205,8 @@ class Furniture:
     fingerprint: str
     program: str
     printed: str
+    approval: str = ""
+    """Who approved the file and until when, "" for nobody."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,7 +6,6 @@ MATCHING_AGE_MEANING = (
     "Matching age: the age at which the reference person would have this number. It compares with somebody else, and"
     " comparisons persuade; it is no biological age."
 )
-_END = "the {} age for which the model gives a number."
 
 
 def short_age(found: MatchingAge) -> str:
@@ -27,7 +26,10 @@ def say_matching_age(found: MatchingAge) -> str:
                 f"The matching age is below {found.lowest:g} years, the lowest age for which the model gives a number."
             )
         case AgePlace.ABOVE:
-            return f"The matching age is above {found.highest:g} years, {_END.format('highest')}"
+            return (
+                f"The matching age is above {found.highest:g} years, the highest age for which the model gives a"
+                " number."
+            )
         case None:
             return f"No matching age. {found.because}"
 

@@ -181,6 +181,9 @@ def _foot(lettering: Lettering, furniture: Furniture, notes: tuple[str, ...] = (
     end = Text(WIDTH, y + FOOT_STYLE.baseline, furniture.fingerprint, SMALL, FOOT_STYLE.weight, anchor=Anchor.END)
     lines, y = _stacked(set_lines(lettering, furniture.model, 0, WIDTH - SIDE, FOOT_STYLE), y)
     shapes += [*lines, end]
+    if furniture.approval:
+        lines, y = _stacked(set_lines(lettering, furniture.approval, 0, WIDTH, FOOT_SOFT), y)
+        shapes += lines
     for text, x, anchor in ((furniture.program, 0.0, Anchor.START), (furniture.printed, WIDTH, Anchor.END)):
         shapes.append(Text(x, y + FOOT_SOFT.baseline, text, FOOT_SOFT.size, tone=Tone.SOFT, anchor=anchor))
     return tuple(shapes), y + FOOT_SOFT.height

@@ -61,7 +61,7 @@ def compose_patient(assessment: Assessment) -> PatientSheet | None:
             Section("What it does not say", (Prose(tuple(_not_said(assessment, having, count))),), whole=True),
         ),
         agreed=_AGREED,
-        vetted=False,
+        vetted=assessment.vetting is not None,
     )
 
 

@@ -1,10 +1,11 @@
 """The sentences of a print that do not come from the coefficient file."""
 
-from datetime import datetime
+from datetime import date, datetime
 
 from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.numerals import NARROW_SPACE, of_people
 from clinicalc.assessment.result import Assessment, Band, Estimate
+from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.schema import ModelContent, ReconstructedBand
 
 NOT_VETTED = "Not vetted: for trying out, not for a patient"
@@ -59,6 +60,14 @@ _MONTHS = (
     "November",
     "December",
 )
+
+
+def vetting_words(vetting: Vetting | None) -> str:
+    """How the file stands, without a full stop: who approved it and until when, or that it is not vetted."""
+    if vetting is None:
+        return NOT_VETTED
+    also = ", who also made or brought the file," if vetting.by_author else ""
+    return f"Approved by {vetting.approved_by} ({vetting.role}){also} until {day_words(vetting.review_until)}"
 
 
 def band_meaning(estimate: Estimate | None) -> str:
@@ -134,7 +143,7 @@ def say_finding(finding: Finding) -> str:
     return f"{finding.grade.value.capitalize()}: {finding.message}"
 
 
-def day_words(moment: datetime) -> str:
+def day_words(moment: date) -> str:
     """A day in words: "1 December 2026"."""
     return f"{moment.day} {_MONTHS[moment.month - 1]} {moment.year}"
 

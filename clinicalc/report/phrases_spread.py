@@ -33,7 +33,8 @@ def spread_sentence(spread: Spread, points: Sequence[float] = ()) -> str:
     values = ", ".join(in_sentence(part.label) for part in moving)
     return (
         f"{SPREAD_NAME} {percent_range(spread.lower, spread.upper, points)}: how far the number would move if the same"
-        f" patient were measured again ({values})."
+        f" patient were measured again, in {100.0 * spread.level:g} of 100 measurements round the values typed"
+        f" ({values})."
     )
 
 

@@ -113,6 +113,14 @@ def test_a_band_across_a_point_is_a_caution() -> None:
     )
 
 
+def test_the_band_in_a_caution_has_the_digits_it_has_beside_all_points() -> None:
+    """Its lower end of 9.67 % would read as 9.7 % beside the crossed point alone, above the other one of 9.68 %."""
+    placed = place(case_of(shipped(TARNWICK), DEMO), 0.0968, 0.1)
+    messages = [finding.message for finding in find_crossed(placed, 0.0967, 0.155)]
+    assert len(messages) == 2
+    assert all(message.startswith("The band 9.67–15.5\u202f% reaches across") for message in messages)
+
+
 def test_a_band_of_values_not_measured_too_says_so() -> None:
     """General CVD file, HDL cholesterol open: 15.5 %, band 10.4 to 22.4 %."""
     practice = (PracticePoint("general-cvd-2008-lipids", 10, "a", 0.2, "Talk it over", "invented"),)

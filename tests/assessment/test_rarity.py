@@ -36,7 +36,7 @@ def test_a_rare_combination_is_pointed_out() -> None:
     (rare,) = about(assessment, FindingCode.RARE_COMBINATION)
     assert rare.grade is Grade.NOTE
     assert rare.field == "age"
-    assert "It is most of all Age 79 years and Systolic blood pressure 98 mmHg." in rare.message
+    assert "Most of the distance comes from Age 79 years and Systolic blood pressure 98 mmHg." in rare.message
     assert assessment.estimate is not None
 
 
@@ -46,7 +46,7 @@ def test_a_value_that_carries_next_to_nothing_is_not_named() -> None:
     assert distance([51, np.log(190), 5.5, np.log(1.28)]) > chi2.ppf(0.99, 4)
     (rare,) = about(run(TARNWICK, DEMO | values), FindingCode.RARE_COMBINATION)
     assert rare.field == "systolic_bp"
-    assert "It is most of all Systolic blood pressure 190 mmHg. Check" in rare.message
+    assert "Most of the distance comes from Systolic blood pressure 190 mmHg. Check" in rare.message
 
 
 def test_the_edge_is_the_ninety_ninth_centile() -> None:

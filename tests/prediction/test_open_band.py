@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from clinicalc.prediction.line import Adjustment, Draws, Precision
-from clinicalc.prediction.open_band import Averaged, average_columns, average_prediction
+from clinicalc.prediction.open_band import AveragedPrediction, average_columns, average_prediction
 from clinicalc.prediction.predict import predict
 from clinicalc.prediction.quadrature import hermite_rule
 from tests.prediction.invented import Array, invent_draws, invent_line, invent_precision
@@ -19,7 +19,7 @@ NUMBER = (0.3 + 0.0 * Z, 1.0 + 0.8 * Z, (1.0 + 0.8 * Z) ** 2)
 """Three terms at points of one open number: a known one, the number and its square."""
 
 
-def averaged(line_band: Precision | Draws | None, design: tuple[Array, ...], **more: Adjustment) -> Averaged:
+def averaged(line_band: Precision | Draws | None, design: tuple[Array, ...], **more: Adjustment) -> AveragedPrediction:
     result = average_prediction(invent_line("logit", 3, line_band), design, W, ONE, more.get("adjustment"), 0.95)
     assert result is not None
     return result

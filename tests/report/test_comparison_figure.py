@@ -170,8 +170,10 @@ def test_the_difference_is_drawn_and_said_in_the_same_figures(ends: tuple[float,
     assert {figure, band} <= set(written(shown))
     assert band in shown.sentence
     assert band in shown.table[-1][1]
-    said = difference_sentence(comparison)
-    assert (figure in said and band in said) or "Difference 0 points" in said
+    if comparison.difference == 0.0:
+        assert difference_sentence(comparison).startswith("Difference 0 points: ")
+    else:
+        assert difference_sentence(comparison) == f"Difference {figure}, {band}."
 
 
 def test_rows_stand_a_lane_apart() -> None:

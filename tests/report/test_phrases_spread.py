@@ -17,7 +17,8 @@ WOMAN_61 = Spread(0.95, 0.067592, 0.160774, 0.234209, PARTS)
 
 def test_the_spread_says_what_it_says_and_of_which_values() -> None:
     assert spread_sentence(WOMAN_61) == (
-        "Re-measurement spread 6.8–16.1\u202f%: how far the number would move if the same patient were measured again"
+        "Re-measurement spread 6.8–16.1\u202f%: how far the number would move if the same patient were measured again,"
+        " in 95 of 100 measurements round the values typed"
         " (total cholesterol, HDL cholesterol, systolic blood pressure)."
     )
 
