@@ -7,6 +7,11 @@
     ├── PrintRefused            a text that cannot be printed faithfully
     ├── DescriptionRefused      a description or fit from which no coefficient file can be made; all problems   exit 4
     ├── ReconstructionRefused   a band that cannot be rebuilt from what was printed; all that is lacking    exit 4
+    ├── LibraryError            something about the model library, its records or its keys   exit 6
+    │   ├── LibraryUnreachable  its folder cannot be read or written at this moment; nothing was changed
+    │   ├── NotInUse            a model that the library does not let be used now: no number   exit 3
+    │   ├── SignatureRefused    a signature that does not count, with the reason
+    │   └── KeyRefused          a key, key file or passphrase that may not be used
     ├── FileNotWritten          an output file that could not be written; nothing half-written is left
     └── ShippedFileMissing      an installation that lacks a file it needs
 
@@ -111,6 +116,37 @@ class UnitError(ClinicalcError):
 
 class PrintRefused(ClinicalcError):
     """A text that the print could only show wrongly."""
+
+
+class LibraryError(ClinicalcError):
+    """Something about the model library, its records or its keys."""
+
+    exit_status = 6
+
+
+class LibraryUnreachable(LibraryError):
+    """The library's folder cannot be read or written now: not there, not permitted, no room, a share that is gone."""
+
+
+class NotInUse(LibraryError):
+    """A model that the library does not let be used at the bedside now; there is no number.
+
+    `standing` is the code of where it stands, such as "withdrawn".
+    """
+
+    exit_status = 3
+
+    def __init__(self, what: str, *, where: str = "", why: str = "", do: str = "", standing: str = "") -> None:
+        self.standing = standing
+        super().__init__(what, where=where, why=why, do=do)
+
+
+class SignatureRefused(LibraryError):
+    """A signature that does not count: its form, its header, its key, or the bytes it is over."""
+
+
+class KeyRefused(LibraryError):
+    """A key, a key file or a passphrase that may not be used."""
 
 
 class FileNotWritten(ClinicalcError):

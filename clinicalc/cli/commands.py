@@ -1,7 +1,6 @@
 """The commands: assess, report, inspect, package, demo."""
 
 from collections.abc import Callable, Sequence
-from functools import partial
 from pathlib import Path
 
 import click
@@ -9,14 +8,17 @@ import click
 from clinicalc import __version__
 from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
-from clinicalc.cli.case import CaseWords, assess_case, case_options
+from clinicalc.cli.case import CaseWords, assess_case, case_options, tell_not_in_use
 from clinicalc.cli.checking import check_print, require_print
+from clinicalc.cli.library import library
 from clinicalc.cli.outcome import ExitStatus, run_guarded
 from clinicalc.cli.packaging import package
-from clinicalc.operations.bedside import assess_patient, open_model
+from clinicalc.cli.signing import sign, trust
+from clinicalc.errors import NotInUse
+from clinicalc.operations.bedside import assess_patient
 from clinicalc.operations.demonstration import DemoCase, demo_case
 from clinicalc.operations.documents import save_pdf, stated_time
-from clinicalc.operations.inspection import inspect_model, write_sections
+from clinicalc.operations.inspection import inspect_file, write_sections
 from clinicalc.operations.summary import summarise
 from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.settings import Paper
@@ -38,18 +40,24 @@ def clinicalc() -> None:
 @case_options
 @click.option("--json", "as_json", is_flag=True, help="Print one JSON object and nothing else.")
 def assess(as_json: bool, shares: bool, **words: object) -> int:
-    """Assess one patient with a coefficient file.
+    """Assess one patient with a coefficient file, or with a model that the practice approved (--approved).
+
+    An approved model is used with the recalibration and the decision points of its approval. One that is not in use
+    gives no number: exit status 3.
 
     Give each value as FIELD=VALUE, with its unit where it is not the file's own and its date where it has one:
     age=61 "total_cholesterol=5.2 mmol/L" "glucose=110 mg/dL on 2026-10-02". `clinicalc inspect FILE` lists the fields.
     """
-    assessment = assess_case(CaseWords(**words))  # type: ignore[arg-type]
+    try:
+        assessment = assess_case(CaseWords(**words))  # type: ignore[arg-type]
+    except NotInUse as fault:
+        return tell_not_in_use(fault, as_json)
     click.echo(write_record(assessment) if as_json else summarise(assessment, with_shares=shares), nl=False)
     return ExitStatus.STOPPED if assessment.estimate is None else ExitStatus.ASSESSED
 
 
 @clinicalc.command(short_help="Assess one patient and write the PDF, or check an old one.")
-@partial(case_options, file_required=False)
+@case_options
 @click.option("--out", metavar="FILE.pdf", help="The PDF to write.")
 @click.option("--label", default="", help="Name or number of the patient, for the print only.")
 @click.option(
@@ -60,8 +68,8 @@ def assess(as_json: bool, shares: bool, **words: object) -> int:
     help="The sheet to lay it out for.",
 )
 @click.option("--no-patient-page", is_flag=True, help="Leave out the page for the patient.")
-@click.option("--check", metavar="FILE.pdf", help="A print to work out again, with --model and nothing else.")
-@click.option("--model", metavar="FILE.json", help="The coefficient file to check the print against.")
+@click.option("--check", metavar="FILE.pdf", help="A print to work out again, with nothing else beside it.")
+@click.option("--model", metavar="FILE.json", help="The file to check it with, if not that in the library.")
 def report(
     out: str | None,
     check: str | None,
@@ -76,13 +84,17 @@ def report(
     A comparison, shares and the matching age are printed where --change, --shares and --matching-age ask for them.
     No number, no print.
 
-    With --check and --model an old print is worked out again from the record attached to it: exit status 0 when
-    number, band, values and findings agree, 3 when they do not.
+    With --check an old print is worked out again from the record attached to it, by the file of --model, or else by
+    the model of that fingerprint in the library: exit status 0 when number, band, values, findings and approval agree,
+    3 when they do not.
     """
     if check is not None or model is not None:
-        return check_print(check, model)
-    out = require_print(words["file"], out)
-    assessment = assess_case(CaseWords(**words), at=stated_time())  # type: ignore[arg-type]
+        return check_print(check, model, None if words["library"] is None else str(words["library"]))
+    out = require_print(words["file"], words["approved"], out)
+    try:
+        assessment = assess_case(CaseWords(**words), at=stated_time())  # type: ignore[arg-type]
+    except NotInUse as fault:
+        return tell_not_in_use(fault, False, f"No print was made, and {out} was not written.")
     if assessment.estimate is None:
         click.echo(summarise(assessment), nl=False)
         click.echo(f"\nNo print was made: there is no number to print. {out} was not written.")
@@ -97,11 +109,14 @@ def report(
 @click.argument("file", metavar="FILE")
 def inspect(file: str) -> int:
     """Print everything a coefficient file says, with its worked examples recomputed."""
-    click.echo(write_sections(inspect_model(open_model(Path(file)))), nl=False)
+    click.echo(write_sections(inspect_file(Path(file))), nl=False)
     return ExitStatus.ASSESSED
 
 
 clinicalc.add_command(package)
+clinicalc.add_command(library)
+clinicalc.add_command(sign)
+clinicalc.add_command(trust)
 
 
 @clinicalc.command(short_help="Show the whole job on an invented patient.")

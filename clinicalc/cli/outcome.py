@@ -17,6 +17,7 @@ class ExitStatus(IntEnum):
     STOPPED = 3
     FILE_REFUSED = 4
     FAILED = 5
+    LIBRARY = 6
 
 
 def run_guarded(command: Callable[[], int]) -> int:

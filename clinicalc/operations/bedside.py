@@ -12,6 +12,7 @@ from clinicalc.assessment.entry import PatientEntry, Typed, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.proof import load_model, load_model_bytes
 from clinicalc.assessment.result import Assessment
+from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.spans import Span
 from clinicalc.errors import UsageError
 from clinicalc.resources import read_shipped
@@ -40,6 +41,7 @@ def assess_patient(
     at: datetime | None = None,
     practice_points: Sequence[PracticePoint] = (),
     matching_age: bool = False,
+    vetting: Vetting | None = None,
 ) -> Assessment:
     """The assessment of one entry; never raises on what a person typed about the patient."""
     return assess(
@@ -51,6 +53,7 @@ def assess_patient(
         at=at,
         practice_points=practice_points,
         matching_age=matching_age,
+        vetting=vetting,
     )
 
 

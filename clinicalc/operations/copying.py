@@ -27,7 +27,7 @@ def copy_text(assessment: Assessment, *, with_label: bool = False) -> str:
         f"{model.content.title}, version {model.content.version},"
         f" fingerprint {group_fingerprint(model.fingerprint, 3)}",
         f"Assessed {phrases.moment_words(at)} {phrases.zone_words(at)}".rstrip(),
-        f"{phrases.NOT_VETTED}.",
+        f"{phrases.vetting_words(assessment.vetting)}.",
     ]
     if assessment.estimate is None and assessment.span is not None:
         head.append(f"Horizon: {assessment.span.words}")

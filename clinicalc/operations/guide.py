@@ -20,6 +20,8 @@ PAGES = (
     "keyboard",
     "commands",
     "packaging",
+    "signing",
+    "library",
     "short",
 )
 """The pages in reading order, each a file of `resources/guide`."""

@@ -2,13 +2,15 @@
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from pathlib import Path
 
 from msgspec import UnsetType
 
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import percent
-from clinicalc.assessment.proof import recompute
+from clinicalc.assessment.proof import prove_model, recompute
 from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.coefficients.reader import read_file
 from clinicalc.coefficients.schema import Derivation, Population, WorkedExample
 from clinicalc.coefficients.spans import span_of
 from clinicalc.operations.folding import fold
@@ -22,6 +24,19 @@ class Section:
 
     title: str
     lines: tuple[str, ...]
+
+
+def inspect_file(path: Path) -> tuple[Section, ...]:
+    """Every part of the file at `path` as a section, its signatures among them, which a model does not carry.
+
+    Raises CoefficientFileRefused with every problem found.
+    """
+    # here, so that no other command waits for it
+    from clinicalc.operations.inspection_signatures import signature_lines
+
+    read = read_file(path)
+    first, fingerprint, *rest = inspect_model(prove_model(read))
+    return (first, fingerprint, Section("Signatures", tuple(signature_lines(read))), *rest)
 
 
 def inspect_model(model: Model) -> tuple[Section, ...]:

@@ -5,34 +5,18 @@ from collections.abc import Iterator
 from msgspec import UnsetType
 
 from clinicalc.assessment.model import Model
-from clinicalc.coefficients.products import products_of
 from clinicalc.coefficients.schema import (
     DrawsBand,
     Equation,
-    Factor,
     Horizon,
     Interval,
     NoBand,
     PrintedInterval,
     ReconstructedBand,
-    Step,
     Term,
 )
 from clinicalc.coefficients.spans import HasSpan, span_of
-from clinicalc.covariates.transforms import StepKind, kind_of
-
-_WORDS = {
-    StepKind.SUBTRACT: "minus {}",
-    StepKind.DIVIDE: "divided by {}",
-    StepKind.MULTIPLY: "times {}",
-    StepKind.POWER: "to the power {}",
-    StepKind.CLIP_LOW: "at least {}",
-    StepKind.CLIP_HIGH: "at most {}",
-    StepKind.ABOVE: "above {}",
-    StepKind.FROM: "{} or above",
-    StepKind.BELOW: "below {}",
-    StepKind.UP_TO: "{} or below",
-}
+from clinicalc.covariates.term_words import say_figure, say_figures, say_term
 
 
 def equation_sections(model: Model) -> Iterator[tuple[str, list[str]]]:
@@ -58,40 +42,16 @@ def _equation(equation: Equation) -> Iterator[str]:
     which = "" if isinstance(competing.which, UnsetType) else f" ({competing.which})"
     yield f"link {equation.link}; competing events: {competing.handled.replace('_', ' ')}{which}"
     for term in equation.terms:
-        yield f"{_figure(term.coefficient)} x {_term(term)}{_term_remarks(term)}"
+        yield f"{say_figure(term.coefficient)} x {say_term(term)}{_term_remarks(term)}"
     for horizon in equation.horizons:
         yield f"{_span(horizon)}: {_baseline(horizon)}"
     if not isinstance(equation.reference_person, UnsetType):
         person = ", ".join(
-            f"{id} {_figure(value) if isinstance(value, float) else value}"
+            f"{id} {say_figure(value) if isinstance(value, float) else value}"
             for id, value in equation.reference_person.items()
         )
         yield f"reference person: {person}"
     yield from _uncertainty(equation)
-
-
-def _term(term: Term) -> str:
-    products = [" x ".join(_factor(factor) for factor in product) for product in products_of(term)]
-    return products[0] if len(products) == 1 else f"sum of [{'; '.join(products)}]"
-
-
-def _factor(factor: Factor) -> str:
-    if isinstance(factor.steps, UnsetType) or not factor.steps:
-        return factor.of
-    return f"({factor.of}: {', '.join(_step(step) for step in factor.steps)})"
-
-
-def _step(step: Step) -> str:
-    kind = kind_of(step)
-    if not isinstance(step.spline, UnsetType):
-        knots = _figures(step.spline.knots)
-        return f"restricted cubic spline basis {step.spline.basis}, knots {knots}"
-    if not isinstance(step.is_, UnsetType):
-        return f"is {' or '.join(step.is_)}"
-    if kind is StepKind.LOG:
-        return "natural logarithm"
-    value = getattr(step, "from_" if kind is StepKind.FROM else kind.value)
-    return _WORDS[kind].format(_figure(value))
 
 
 def _term_remarks(term: Term) -> str:
@@ -105,7 +65,7 @@ def _term_remarks(term: Term) -> str:
 
 def _baseline(horizon: Horizon) -> str:
     parts = [
-        f"{words} {_figure(value)}"
+        f"{words} {say_figure(value)}"
         for words, value in (
             ("intercept", horizon.intercept),
             ("baseline survival", horizon.baseline_survival),
@@ -137,18 +97,9 @@ def _uncertainty(equation: Equation) -> Iterator[str]:
         return
     estimated = [term.id for term in equation.terms if term.fixed is not True]
     for id, row in zip(estimated, band.covariance, strict=True):
-        yield f"    covariance of {id}: {_figures(row)}"
+        yield f"    covariance of {id}: {say_figures(row)}"
     for at in band.at_centre:
-        yield f"    {_span(at)}: variance {_figure(at.variance)} at {_figures(at.centre)}"
-
-
-def _figure(value: float) -> str:
-    """A figure of the file as the shortest decimal that reads back to it."""
-    return repr(value).removesuffix(".0")
-
-
-def _figures(values: tuple[float, ...]) -> str:
-    return " ".join(_figure(value) for value in values)
+        yield f"    {_span(at)}: variance {say_figure(at.variance)} at {say_figures(at.centre)}"
 
 
 def _span(part: HasSpan) -> str:

@@ -22,11 +22,14 @@ _ASSESSED = (
     rf"assessed (?P<day>\d{{1,2}}) (?P<month>{'|'.join(_MONTHS)}) (?P<year>\d{{4}}), (?P<hour>\d\d):(?P<minute>\d\d)"
     r"(?: UTC(?P<sign>[+−])(?P<hours>\d\d):(?P<minutes>\d\d))?"
 )
-_HEAD = re.compile(rf"{re.escape(NOT_VETTED)}\s*(?P<first>.*?)\s*{_ASSESSED}\s*\n(?P<rest>.*)", re.DOTALL)
+_FOR_CLINICIAN, _FOR_PATIENT = "For the clinician", "For the patient, page"
+_NAMED = rf"\s*(?P<first>.*?)\s*{_ASSESSED}\s*\n(?P<rest>.*)"
+_BELOW_STRIP = re.compile(re.escape(NOT_VETTED) + _NAMED, re.DOTALL)
+_BELOW_HEAD = re.compile(rf"{_FOR_CLINICIAN}, page 1 of \d+{_NAMED}", re.DOTALL)
+"""Where the file was approved, no strip stands over the label."""
 _PRINTED = re.compile(rf"Printed \d{{1,2}} (?:{'|'.join(_MONTHS)}) \d{{4}}, \d\d:\d\d")
 _PROGRAM = re.compile(r"clinicalc \d[\w.+]*")
 """The version in the foot: another one that lays out the same pages is no deviation."""
-_FOR_PATIENT = "For the patient, page"
 _NO_SHARES = "No shares:"
 
 
@@ -110,7 +113,7 @@ def _first_deviation(old: str, new: str) -> tuple[str, str]:
 
 def _labels(old: OldPrint, now: Assessment) -> tuple[str, ...]:
     """The patient label on the first page; two readings where it was broken into lines. ("",) where none is found."""
-    found = _HEAD.search(old.pages[0]) if old.pages else None
+    found = _find_head(old)
     if found is None:
         return ("",)
     below = re.search(_wherever_broken(_person_line(now)), found["rest"])
@@ -118,6 +121,12 @@ def _labels(old: OldPrint, now: Assessment) -> tuple[str, ...]:
     parts = [unicodedata.normalize("NFC", part.strip()) for part in (found["first"], *more)]
     labels = dict.fromkeys((" ".join(parts).strip(), "".join(parts).strip()))
     return tuple("" if label == NO_LABEL else label for label in labels)
+
+
+def _find_head(old: OldPrint) -> re.Match[str] | None:
+    """Label and time of assessment at the top of the first page."""
+    head = _BELOW_STRIP if old.record.vetting is None else _BELOW_HEAD
+    return head.search(old.pages[0]) if old.pages else None
 
 
 def _person_line(now: Assessment) -> str:
@@ -134,7 +143,7 @@ def _wherever_broken(words: str) -> str:
 
 def _assessed(old: OldPrint) -> datetime | None:
     """The time of the assessment as the first page states it; None where it states none."""
-    found = _HEAD.search(old.pages[0]) if old.pages else None
+    found = _find_head(old)
     if found is None:
         return None
     zone = None

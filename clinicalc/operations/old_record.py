@@ -13,6 +13,27 @@ class RecordedModel(msgspec.Struct, frozen=True):
     fingerprint: str
 
 
+class RecordedCompared(msgspec.Struct, frozen=True):
+    """Who compared an unconfirmed figure of the file with its source."""
+
+    at: str
+    by: str
+
+
+class RecordedVetting(msgspec.Struct, frozen=True):
+    """The approval under which a record says its model was used; dates as YYYY-MM-DD."""
+
+    practice: str
+    by: str
+    role: str
+    approved_on: str
+    review_until: str
+    by_author: bool
+    library: str
+    compared: tuple[RecordedCompared, ...] = ()
+    caution: str | None = None
+
+
 class RecordedBand(msgspec.Struct, frozen=True):
     """The band of a record, probabilities 0 to 1."""
 
@@ -158,6 +179,7 @@ class Record(msgspec.Struct, frozen=True):
     values: tuple[RecordedValue, ...]
     derived: tuple[RecordedValue, ...]
     findings: tuple[RecordedFinding, ...]
+    vetting: RecordedVetting | None = None
     time: float | None = None
     unit: str | None = None
     spread: RecordedSpread | UnsetType | None = UNSET

@@ -26,7 +26,7 @@ def summarise(assessment: Assessment, *, with_shares: bool = False) -> str:
             f"{model.content.title}, version {model.content.version}",
             f"Fingerprint {group_fingerprint(model.fingerprint, 3)}",
         ],
-        [f"{phrases.NOT_VETTED}."],
+        [f"{phrases.vetting_words(assessment.vetting)}."],
         number_lines(assessment),
         decision_lines(assessment),
         comparison_lines(assessment),

@@ -7,6 +7,7 @@ from pathlib import Path
 
 from clinicalc.errors import UsageError
 from clinicalc.settings.faults import fault_of_unseen
+from clinicalc.settings.library_place import fault_of_library, fault_of_practice_key
 from clinicalc.settings.points import MOST_POINTS, PracticePoint
 
 MOST_RECENT = 8
@@ -37,6 +38,8 @@ class Settings:
 
     `recent_files`: paths of coefficient files, newest first; never of prints. `level`: of the band, 0.5 to 0.999.
     `decision_points`: probabilities at which this practice acts, eight at most, each with who says so.
+    `library`: the full path of the practice's model library, "" for none. `practice_key`: the id of the key that speaks
+    for the practice, 64 hexadecimal digits, pinned when this machine joined; "" for none.
     """
 
     theme: ThemeChoice = ThemeChoice.SYSTEM
@@ -45,9 +48,17 @@ class Settings:
     paper: Paper = Paper.A4
     level: float = 0.95
     decision_points: tuple[PracticePoint, ...] = ()
+    library: str = ""
+    practice_key: str = ""
 
     def __post_init__(self) -> None:
-        for fault in (_fault_of_recent(self.recent_files), _fault_of_practice(self.practice), _fault_of(self.level)):
+        for fault in (
+            _fault_of_recent(self.recent_files),
+            _fault_of_practice(self.practice),
+            _fault_of(self.level),
+            fault_of_library(self.library),
+            fault_of_practice_key(self.practice_key),
+        ):
             if fault:
                 raise UsageError(fault)
         if len(self.decision_points) > MOST_POINTS:

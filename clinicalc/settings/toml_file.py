@@ -19,6 +19,8 @@ FILE_NAME = "settings.toml"
 _MOST_BYTES = 1 << 20
 _HEAD = "# Settings of clinicalc for this user on this machine. Nothing about a patient belongs here.\n"
 _DEFAULTS = "The defaults are used, and the file is left as it is."
+_POINTS = "decision_points"
+"""The one key that stands over tables; each of them is taken or left out by itself."""
 _Choice = TypeVar("_Choice", bound=StrEnum)
 
 
@@ -62,6 +64,18 @@ def write_settings(settings: Settings) -> None:
             why=f"The computer says: {getattr(fault, 'strerror', None) or fault}.",
             do="They hold until the program is closed. Make room there, or ask who looks after this computer.",
         ) from None
+
+
+def write_choices(settings: Settings) -> None:
+    """The same for what was chosen in a window: library and practice key stay as the file has them now.
+
+    A machine may have joined a library since the window read its settings. Raises what `write_settings` raises.
+    """
+    reading = read_settings()
+    if not reading.problems:
+        now = reading.settings
+        settings = replace(settings, library=now.library, practice_key=now.practice_key)
+    write_settings(settings)
 
 
 def _read(path: Path) -> SettingsReading:
@@ -148,9 +162,23 @@ def _take_level(settings: Settings, value: object) -> Settings:
         raise UsageError("level is a number from 0.5 to 0.999.") from None
 
 
+def _take_library(settings: Settings, value: object) -> Settings:
+    if not isinstance(value, str):
+        raise UsageError("library is the full path of a folder between quotation marks.")
+    return replace(settings, library=value)
+
+
+def _take_practice_key(settings: Settings, value: object) -> Settings:
+    if not isinstance(value, str):
+        raise UsageError("practice_key is a key's id between quotation marks: 64 digits from 0 to 9 and a to f.")
+    return replace(settings, practice_key=value)
+
+
 def _take_points(value: object, text: str) -> tuple[tuple[PracticePoint, ...], list[str]]:
-    """The decision points that can be taken, and for each other one its line and a sentence: one bad point leaves out
-    itself and none of the others."""
+    """The decision points that can be taken, and for each other one its line and a sentence.
+
+    One bad point leaves out itself and none of the others.
+    """
     tables = value if isinstance(value, list) else [value]
     points, faults = list[PracticePoint](), list[str]()
     for place, table in enumerate(tables):
@@ -164,13 +192,14 @@ def _take_points(value: object, text: str) -> tuple[tuple[PracticePoint, ...], l
     return tuple(points), faults
 
 
-_POINTS = "decision_points"
 _TAKERS: Mapping[str, Callable[[Settings, object], Settings]] = {
     "theme": _take_theme,
     "recent_files": _take_recent,
     "practice": _take_practice,
     "paper": _take_paper,
     "level": _take_level,
+    "library": _take_library,
+    "practice_key": _take_practice_key,
 }
 
 
@@ -208,6 +237,8 @@ def _spell(settings: Settings) -> str:
         f"practice = {quote_toml(settings.practice)}\n"
         f"paper = {quote_toml(settings.paper)}\n"
         f"level = {settings.level!r}\n"
+        f"library = {quote_toml(settings.library)}\n"
+        f"practice_key = {quote_toml(settings.practice_key)}\n"
         + (f"recent_files = [\n{files}]\n" if files else "recent_files = []\n")
         + spell_points(settings.decision_points)
     )

@@ -5,17 +5,14 @@ from math import exp, log
 import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
+from tests.journeys.keyboard import ALT, CONTROL, ENTER, TAB, focused_name, hit, write
 
 pytestmark = pytest.mark.gui
 
-NO, ALT, CONTROL = Qt.KeyboardModifier.NoModifier, Qt.KeyboardModifier.AltModifier, Qt.KeyboardModifier.ControlModifier
-ENTER, TAB = Qt.Key.Key_Return, Qt.Key.Key_Tab
 # age, sex, total cholesterol and HDL in mg/dL, systolic pressure, treated, smokes, diabetes, with the exclusion first
 WOMAN = ("n", "61", "f", "180", "47", "124", "n", "y", "n")
 
@@ -24,26 +21,6 @@ def probability(*, systolic: float, smokes: bool) -> float:
     """D'Agostino et al., Circulation 2008;117:743-753, Table 2, women, untreated, from memory: the equation by hand."""
     lp = 2.32888 * log(61) + 1.20904 * log(180) - 0.70833 * log(47) + 2.76157 * log(systolic) + 0.52873 * smokes
     return 1 - exp(log(0.95012) * exp(lp - 26.1931))
-
-
-def hit(key: Qt.Key, modifier: Qt.KeyboardModifier = NO) -> None:
-    """One key, to whatever has the focus."""
-    focused = QApplication.focusWidget()
-    assert focused is not None
-    QTest.keyClick(focused, key, modifier)
-    QApplication.processEvents()
-
-
-def write(text: str) -> None:
-    """The keys of a text, to whatever has the focus."""
-    focused = QApplication.focusWidget()
-    assert focused is not None
-    QTest.keyClicks(focused, text)
-
-
-def focused_name() -> str:
-    focused = QApplication.focusWidget()
-    return "" if focused is None else focused.accessibleName()
 
 
 def tab_to(name: str) -> None:

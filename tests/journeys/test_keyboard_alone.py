@@ -7,37 +7,14 @@ import pytest
 from pypdf import PdfReader
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QWidget
+from PySide6.QtWidgets import QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.gui.main_window import MainWindow
 from tests.cli.calling import example
+from tests.journeys.keyboard import ALT, CONTROL, ENTER, TAB, focused_name, hit, write
 
 pytestmark = pytest.mark.gui
-
-NO, ALT, CONTROL = Qt.KeyboardModifier.NoModifier, Qt.KeyboardModifier.AltModifier, Qt.KeyboardModifier.ControlModifier
-ENTER, TAB = Qt.Key.Key_Return, Qt.Key.Key_Tab
-
-
-def hit(key: Qt.Key, modifier: Qt.KeyboardModifier = NO) -> None:
-    """One key, to whatever has the focus."""
-    focused = QApplication.focusWidget()
-    assert focused is not None
-    QTest.keyClick(focused, key, modifier)
-    QApplication.processEvents()
-
-
-def write(text: str) -> None:
-    """The keys of a text, to whatever has the focus."""
-    focused = QApplication.focusWidget()
-    assert focused is not None
-    QTest.keyClicks(focused, text)
-
-
-def focused_name() -> str:
-    focused = QApplication.focusWidget()
-    return "" if focused is None else focused.accessibleName()
 
 
 def test_whole_job_by_keyboard(qtbot: QtBot, tmp_path: Path) -> None:

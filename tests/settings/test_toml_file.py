@@ -4,6 +4,7 @@ import os
 import stat
 import sys
 import tomllib
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -12,7 +13,16 @@ from hypothesis import settings as hypothesis_settings
 from hypothesis import strategies as st
 
 from clinicalc.errors import FileNotWritten
-from clinicalc.settings import FILE_NAME, Paper, Settings, SettingsReading, ThemeChoice, read_settings, write_settings
+from clinicalc.settings import (
+    FILE_NAME,
+    Paper,
+    Settings,
+    SettingsReading,
+    ThemeChoice,
+    read_settings,
+    write_choices,
+    write_settings,
+)
 from clinicalc.settings.folder import VARIABLE
 
 CHOSEN = Settings(
@@ -21,6 +31,8 @@ CHOSEN = Settings(
     practice="Tarnwick Northgate",
     paper=Paper.LETTER,
     level=0.9,
+    library="/shares/Größe/library",
+    practice_key="0123456789abcdef" * 4,
 )
 
 
@@ -60,6 +72,8 @@ all_settings = st.builds(
     practice=practices,
     paper=st.sampled_from(Paper),
     level=st.floats(0.5, 0.999),
+    library=practices.map(lambda name: name and f"/{name}"),
+    practice_key=st.sampled_from(["", "0123456789abcdef" * 4]),
 )
 
 
@@ -70,6 +84,23 @@ def test_all_settings_are_read_back(settings: Settings) -> None:
     assert read_settings() == SettingsReading(settings)
 
 
+def test_a_window_never_undoes_that_a_machine_joined_a_library() -> None:
+    """The window read its settings before somebody joined, or joined another library, in a terminal."""
+    before = Settings(theme=ThemeChoice.DARK, library="/old", practice_key="f" * 64)
+    write_settings(before)
+    write_settings(replace(before, library=CHOSEN.library, practice_key=CHOSEN.practice_key))
+    write_choices(replace(before, paper=Paper.LETTER))
+    settings = read_settings().settings
+    assert (settings.theme, settings.paper) == (ThemeChoice.DARK, Paper.LETTER)
+    assert (settings.library, settings.practice_key) == (CHOSEN.library, CHOSEN.practice_key)
+
+
+def test_a_window_keeps_the_library_it_knows_where_the_file_was_broken_meanwhile(folder: Path) -> None:
+    put(folder, "library = \n")
+    write_choices(CHOSEN)
+    assert read_settings() == SettingsReading(CHOSEN)
+
+
 def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
     write_settings(Settings(recent_files=("/models/one.json",)))
     text = (folder / FILE_NAME).read_text(encoding="utf-8")
@@ -78,6 +109,8 @@ def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
         'practice = ""',
         'paper = "A4"',
         "level = 0.95",
+        'library = ""',
+        'practice_key = ""',
         "recent_files = [",
         '    "/models/one.json",',
         "]",
@@ -105,8 +138,14 @@ def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
         ('recent_files = ["' + '", "'.join("123456789") + '"]', "recent_files holds 9 paths, and at most 8 are kept."),
         (
             'colour = "blue"',
-            '"colour" is not a setting; there are theme, recent_files, practice, paper, level, decision_points.',
+            '"colour" is not a setting; there are theme, recent_files, practice, paper, level, library, practice_key, '
+            "decision_points.",
         ),
+        ("library = 3", "library is the full path of a folder between quotation marks."),
+        ('library = "models"', "library models is not the full path of a folder; a full path begins at the drive"),
+        ("practice_key = 3", "practice_key is a key's id between quotation marks: 64 digits"),
+        ('practice_key = "abc"', "practice_key has 64 digits from 0 to 9 and a to f, and this has 3 characters"),
+        ('practice_key = "' + "ABCD " * 16 + '"', "practice_key is written without spaces and in small letters."),
         ("[practice]\nname = 1", "practice is a name between quotation marks."),
     ],
 )
@@ -239,4 +278,13 @@ def test_nobody_else_can_read_the_file(folder: Path) -> None:
 
 
 def test_the_settings_have_no_place_for_a_patient() -> None:
-    assert set(Settings.__slots__) == {"theme", "recent_files", "practice", "paper", "level", "decision_points"}
+    assert set(Settings.__slots__) == {
+        "theme",
+        "recent_files",
+        "practice",
+        "paper",
+        "level",
+        "decision_points",
+        "library",
+        "practice_key",
+    }
