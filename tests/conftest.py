@@ -21,4 +21,5 @@ def _own_folders(tmp_path_factory: pytest.TempPathFactory) -> Iterator[None]:
             folder = tmp_path_factory.mktemp(variable.lower())
             folder.chmod(0o700)
             patch.setenv(variable, os.fspath(folder))
+        patch.delenv("CLINICALC_LIBRARY", raising=False)
         yield

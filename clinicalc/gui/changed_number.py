@@ -23,6 +23,7 @@ class ChangedNumber(ChangedPlace):
         self._field = field
         self._value_frame, self.edit = frame, frame.edit
         self._own = self._held = hold(field, "", field.unit)
+        self._lags = False
         spellings = (unit_of(code).spelling for code in choosable_units(field))
         self._fits_beside = all(frame.has_room_for(spelling) for spelling in spellings)
         self.edit.setAccessibleName(f"{field.label}, with changes")
@@ -42,10 +43,21 @@ class ChangedNumber(ChangedPlace):
         self._show_held()
 
     def stand_beside(self, own: HeldValue) -> None:
-        """Follow the patient's own value: its unit, and whether the changed value differs from it."""
+        """Follow the patient's own value: its unit, and whether the changed value differs from it.
+
+        A hidden field shows that when it is to be shown (`catch_up`): it would only cost time at every key.
+        """
         self._own = own
         self._follow_unit()
-        self._show_held()
+        if self.isHidden():
+            self._lags = True
+        else:
+            self._show_held()
+
+    def catch_up(self) -> None:
+        """Show what came while the field was hidden."""
+        if self._lags:
+            self._show_held()
 
     def words(self) -> str:
         """The patient's own value in the unit on screen, and how typed digits are read where they are converted."""
@@ -111,6 +123,7 @@ class ChangedNumber(ChangedPlace):
 
     def _show_state(self) -> None:
         """Ink, weight and arrow of a change, or soft ink for what is none; the unit, unless the text has its own."""
+        self._lags = False
         typed = self.typed
         differs = typed is not None and not is_same_number(self._field, self._own.typed, typed, date.today())
         self.arrow.point(differs)

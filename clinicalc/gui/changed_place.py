@@ -97,12 +97,16 @@ class ChangedPlace(QWidget):
 
     def show_findings(self, findings: Sequence[Finding]) -> None:
         """What the comparison says about the changed value: a heavy frame where it cannot be used."""
+        if tuple(findings) == self._said:
+            return
         self._said = tuple(findings)
         self.frame.set_stopped(any(finding.grade is Grade.STOP for finding in findings))
         self.describe()
 
     def show_open(self, open_: bool) -> None:
         """Whether the patient's own value was not measured: then there is nothing to change."""
+        if open_ == self._open:
+            return
         self._open = open_
         self.frame.setEnabled(not open_)
         self.describe()

@@ -36,7 +36,6 @@ class ComparisonView(Block):
 
     field_asked = Signal(str)
     """The mark of a finding about this field was pressed."""
-    title = "Comparison"
 
     def __init__(self) -> None:
         super().__init__()

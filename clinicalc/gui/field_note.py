@@ -72,7 +72,7 @@ class FieldNote(QWidget):
         """Settle into `width` pixels; hidden where no field of the model has anything to say."""
         self.setFixedWidth(width)
         room = width - 2 * SIDE_MARGIN + RING
-        changes = any(row.change is not None and row.changes_shown for row in self._rows)
+        changes = any(row.is_changeable and row.changes_shown for row in self._rows)
         self._is_of_use = changes or any(row.stated is not None or row.note() for row in self._rows)
         self.setVisible(self._is_of_use and not self._is_narrow)
         heights = [self._height(row, room) for row in self._rows]

@@ -38,7 +38,7 @@ class FigureView(QWidget):
     def __init__(self, inset: float = 0.0, drop: float = 0.0) -> None:
         super().__init__()
         self._figure: Figure | None = None
-        self._reaches: list[QRectF | None] = []
+        self._reaches: list[QRectF] = []
         self._place = (inset, drop)
         self.setFocusPolicy(Qt.FocusPolicy.NoFocus)
 
@@ -51,15 +51,17 @@ class FigureView(QWidget):
         """Show another figure; the same one again asks for no paint, so that a paint that fails does so once."""
         if figure == self._figure:
             return
+        size = self.sizeHint()
         before, self._figure = self._figure, figure
         reaches, self._reaches = self._reaches, []
         self.setAccessibleName("" if figure is None else figure.sentence)
         self.setAccessibleDescription("" if figure is None else "; ".join(table_lines((figure,))))
+        if self.sizeHint() != size:
+            self.updateGeometry()
         changed = None
         if figure is not None:
             self._reaches, changed = _reaches_of(figure, before, reaches)
         if changed is None or figure is None:
-            self.updateGeometry()
             self.update()
         else:
             self.update(changed.translated(*self._start_of(figure)).toAlignedRect())
@@ -79,7 +81,7 @@ class FigureView(QWidget):
         if event.rect() != self.rect():
             asked = QRectF(event.rect()).translated(-start[0], -start[1])
             pairs = zip(shapes, self._reaches, strict=True)
-            shapes = tuple(shape for shape, at in pairs if at is None or at.intersects(asked))
+            shapes = tuple(shape for shape, at in pairs if at.intersects(asked))
         painter = QPainter(self)
         try:
             painter.translate(*start)
@@ -97,24 +99,22 @@ class FigureView(QWidget):
         return 0.0
 
 
-def _reaches_of(
-    figure: Figure, before: Figure | None, known: list[QRectF | None]
-) -> tuple[list[QRectF | None], QRectF | None]:
+def _reaches_of(figure: Figure, before: Figure | None, known: list[QRectF]) -> tuple[list[QRectF], QRectF | None]:
     """The boxes round a figure's shapes, and what it differs in from the drawing before it, whose boxes are known.
 
     None for the difference where it cannot be told from the shapes, as where sizes differ.
     """
     if before is None or _size(before) != _size(figure):
         return [_reach(shape) for shape in figure.shapes], None
-    reaches: list[QRectF | None] = []
-    changed: QRectF | None = QRectF()
+    reaches: list[QRectF] = []
+    changed = QRectF()
     for old, new, at in zip(before.shapes, figure.shapes, known, strict=True):
         if old is new or old == new:
             reaches.append(at)
             continue
         now = _reach(new)
         reaches.append(now)
-        changed = None if changed is None or at is None or now is None else changed.united(at).united(now)
+        changed = changed.united(at).united(now)
     return reaches, changed
 
 
@@ -122,11 +122,14 @@ def _size(figure: Figure) -> tuple[float, float, float, int]:
     return figure.width, figure.height, figure.baseline, len(figure.shapes)
 
 
-def _reach(shape: Shape) -> QRectF | None:
-    """A box round all that a shape inks, with room for whole pixels; None for a text, whose letters may reach out."""
+def _reach(shape: Shape) -> QRectF:
+    """A box round all that a shape inks, with room for whole pixels; letters and their accents may reach out by one."""
     match shape:
         case Text():
-            return None
+            width = lettering().width(shape.text, shape.size, shape.weight)
+            left = shape.left(width)
+            right, top, bottom = left + width, shape.y - shape.size, shape.y
+            around = shape.size
         case Line():
             (left, right), (top, bottom) = sorted((shape.x, shape.to_x)), sorted((shape.y, shape.to_y))
             around = shape.width / 2

@@ -38,12 +38,14 @@ def held_layouts(*widgets: QWidget) -> Iterator[None]:
     try:
         yield
     finally:
-        for widget, layout in held:
+        for _, layout in held:
             layout.setEnabled(True)
-            # what was asked for meanwhile went unheard
-            QCoreApplication.postEvent(widget, QEvent(QEvent.Type.LayoutRequest))
         for _ in range(_ROUNDS):
-            for widget, _ in reversed(held):
+            for widget, layout in reversed(held):
                 QCoreApplication.sendPostedEvents(widget, QEvent.Type.LayoutRequest.value)
+                # what was asked for meanwhile went unheard; asked for directly, since an event made in Python and
+                # posted has crashed Qt here, once in some thirty sessions
+                if widget.isVisible():
+                    layout.activate()
         # and what that asks of everything around: a paint in between would show it squeezed into its old size
         QCoreApplication.sendPostedEvents(None, QEvent.Type.LayoutRequest.value)

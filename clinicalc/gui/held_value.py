@@ -50,8 +50,8 @@ def choosable_units(field: NumberField) -> tuple[str, ...]:
 def hold(field: NumberField, text: str, unit: str) -> HeldValue:
     """What was typed, with the unit chosen beside it; a unit typed after the number goes before the chosen one."""
     reading = read_value(text)
-    if isinstance(reading, Reading) and reading.unit in choosable_units(field):
-        unit = reading.unit or unit
+    if isinstance(reading, Reading) and reading.unit and reading.unit in choosable_units(field):
+        unit = reading.unit
     typed = Typed(text, unit)
     return HeldValue(typed, typed, text, unit)
 

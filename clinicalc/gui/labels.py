@@ -7,9 +7,14 @@ from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePol
 from clinicalc.gui.tokens import LABEL_WIDTH
 from clinicalc.gui.typeface import BASE, CAPTION, UNIT, face
 
+_HIDDEN = Qt.WidgetAttribute.WA_WState_Hidden
+
 
 class Label(QLabel):
-    """A label that measures a text at a width once: layouts ask for it many times at every change around it."""
+    """A label that measures a text at a width once: layouts ask for it many times at every change around it.
+
+    Other words in the same room ask for no layout: Qt would arrange everything above them anew at every key.
+    """
 
     _asked: tuple[object, ...] = ()
     _heights: dict[int, int]
@@ -24,6 +29,24 @@ class Label(QLabel):
         if height is None:
             height = self._heights[width] = super().heightForWidth(width)
         return height
+
+    def setText(self, text: str) -> None:
+        """Show other words; only where they take another height, or in one line another size, is that told around."""
+        if text == self.text():
+            return
+        if not self.isVisible():
+            super().setText(text)
+            return
+        room = self._room()
+        # Qt hears nothing of the room that a hidden widget wants; what is painted does not go by this
+        self.setAttribute(_HIDDEN, True)
+        super().setText(text)
+        self.setAttribute(_HIDDEN, False)
+        if self._room() != room:
+            self.updateGeometry()
+
+    def _room(self) -> object:
+        return self.heightForWidth(self.width()) if self.wordWrap() else self.sizeHint()
 
 
 def make_label(text: str = "", pixels: int = BASE, *, semibold: bool = False, soft: bool = False) -> QLabel:

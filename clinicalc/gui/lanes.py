@@ -4,7 +4,7 @@ from dataclasses import dataclass
 from itertools import zip_longest
 from math import ceil
 
-from PySide6.QtCore import QSize
+from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QResizeEvent
 from PySide6.QtWidgets import QLabel, QSizePolicy, QWidget
 
@@ -70,9 +70,11 @@ class Lanes(QWidget):
         self, measured: Measured | None, within: str = "", lanes: tuple[Lane, ...] = (Lane.BAND,)
     ) -> None:
         """Show a ruler, or nothing at all where there is no model; `within` is the horizon in words."""
-        self.caption.setText(f"%{f' within {within}' if within else ''}")
+        caption = f"%{f' within {within}' if within else ''}"
+        stays = (caption, measured, lanes) == (self.caption.text(), self._measured, self._lanes)
+        self.caption.setText(caption)
         self.setVisible(measured is not None)
-        if (measured, lanes) != (self._measured, self._lanes):
+        if not stays:
             self._measured, self._lanes = measured, lanes
             self._draw()
 
@@ -113,14 +115,14 @@ class Lanes(QWidget):
         column = FIGURE_COLUMN * text_part()
         known = self._measured is not None and self._measured.probability is not None
         for row, lane in zip_longest(self.rows, ruler.lanes):
+            for label in (row.name, row.figures) if lane else ():
+                set_ink(label, "" if known or lane.detail else "soft")  # first: what is measured is polished
             row.figures.setText(lane.figures if lane else "")
             row.name.setText(_fitting(row, lane.name, column) if lane else "")
             for label in (row.name, row.figures):
                 label.setVisible(lane is not None)
             if lane is None:
                 continue
-            for label in (row.name, row.figures):
-                set_ink(label, "" if known or lane.detail else "soft")
             _stand(row.name, 0.0, lane.y)
             _stand(row.figures, column - row.figures.sizeHint().width(), lane.y)
 
@@ -149,5 +151,6 @@ def set_ink(label: QLabel, ink: str) -> None:
     """Take another ink ("soft", "accent", "" for the usual); style rules are looked up anew only where it changes."""
     if (label.property("ink") or "") != ink:
         label.setProperty("ink", ink)
-        label.style().unpolish(label)
-        label.style().polish(label)
+        if label.testAttribute(Qt.WidgetAttribute.WA_WState_Polished):  # before, they are looked up when it is shown
+            label.style().unpolish(label)
+            label.style().polish(label)

@@ -4,6 +4,7 @@ from collections.abc import Callable
 from dataclasses import replace
 from itertools import pairwise
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QSize, Qt
 from PySide6.QtGui import QKeySequence, QResizeEvent, QShortcut
@@ -16,8 +17,11 @@ from clinicalc.gui import theme
 from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.file_dialogs import ChooseOpen, ChooseSave, ask_where_to_save, ask_which_file
 from clinicalc.gui.foot_bar import FootBar
+from clinicalc.gui.hold_dialog import AskWhy, ask_why
 from clinicalc.gui.labels import make_rule
 from clinicalc.gui.model_bar import ModelBar
+from clinicalc.gui.model_desk import ModelDesk
+from clinicalc.gui.model_library import ModelLibrary
 from clinicalc.gui.outputs import Outputs, ShowPreview, show_print_preview
 from clinicalc.gui.page_bar import PageBar, page_name
 from clinicalc.gui.patient_page import PatientPage
@@ -26,6 +30,9 @@ from clinicalc.gui.refusal_view import RefusalView
 from clinicalc.gui.rows import FieldRow
 from clinicalc.operations.bedside import open_model
 from clinicalc.settings import ThemeChoice
+
+if TYPE_CHECKING:
+    from clinicalc.operations.approved import ApprovedModel
 
 SMALLEST = QSize(1024, 640)
 """The smallest window with two panes."""
@@ -36,7 +43,8 @@ NARROWEST = QSize(640, 400)
 class MainWindow(QWidget):
     """One patient, one model; `number` tells it from other windows of the program.
 
-    `state` may come with an assess verb of its own; the dialogs and the preview may be replaced.
+    `state` may come with an assess verb of its own; the dialogs and the preview may be replaced. `library` is that of
+    the practice, reading for this very `state`; None on a machine that uses none.
     """
 
     def __init__(
@@ -44,14 +52,17 @@ class MainWindow(QWidget):
         state: EntryState | None = None,
         *,
         preferences: Preferences | None = None,
+        library: ModelLibrary | None = None,
         number: int = 1,
         choose_open: ChooseOpen = ask_which_file,
         choose_save: ChooseSave = ask_where_to_save,
         show_preview: ShowPreview = show_print_preview,
+        ask_why: AskWhy = ask_why,
     ) -> None:
         super().__init__()
         self.state = state or EntryState()
         self.preferences = preferences or Preferences()
+        self.library = library
         self._number = number
         self._left_field: QWidget | None = None
         self._choose_open = choose_open
@@ -68,7 +79,11 @@ class MainWindow(QWidget):
         self.refusal = RefusalView()
         self.pages.addWidget(self.patient)
         self.pages.addWidget(self.refusal)
-        self.outputs = Outputs(self, self.state, self.foot, self.preferences, choose_save, show_preview)
+        self.outputs = Outputs(
+            self, self.state, self.foot, self.preferences, choose_save, show_preview, self._read_again
+        )
+        chooser = self.model_bar.chooser
+        self.desk = None if library is None else ModelDesk(self, library, chooser, self.foot, ask_why)
         self._connect()
         self._listen_for_keys()
         self.page_bar.tab.show_number(number)
@@ -94,18 +109,25 @@ class MainWindow(QWidget):
         try:
             model = open_model(path)
         except ClinicalcError as error:
-            self.refusal.show_refusal(path.name, error)
-            self.pages.setCurrentWidget(self.refusal)
-            self._allow_output()
-            self.refusal.problems.setFocus(Qt.FocusReason.OtherFocusReason)
+            self._show_refusal(path.name, error)
             return
         self.use_model(model)
         self.preferences.remember_file(path)
 
+    def _show_refusal(self, name: str, error: ClinicalcError, *explanation: str) -> None:
+        self.refusal.show_refusal(name, error, *explanation)
+        self.pages.setCurrentWidget(self.refusal)
+        self._allow_output()
+        self.refusal.problems.setFocus(Qt.FocusReason.OtherFocusReason)
+
     def begin_new_patient(self) -> None:
         """Clear every field and begin at the first."""
         self.pages.setCurrentIndex(0)
-        self.state.begin_new_patient()
+        if self.library is None:
+            self.state.begin_new_patient()
+        else:
+            self.library.begin_new_patient()
+            self._show_title()
         self.values.focus_first()
 
     def resizeEvent(self, event: QResizeEvent) -> None:
@@ -140,7 +162,11 @@ class MainWindow(QWidget):
         chooser = self.model_bar.chooser
         chooser.open_action.triggered.connect(self.open_file)
         chooser.file_chosen.connect(self.open_path)
-        chooser.about_to_open.connect(self._offer_recent_files)
+        chooser.about_to_open.connect(self._offer_models)
+        if self.library is not None:
+            self.library.chosen.connect(self._use_approved)
+            self.library.refused.connect(self._refuse_approved)
+            self.library.told.connect(self.sheet.invite)
         self.foot.new_patient.clicked.connect(self.begin_new_patient)
         self.refusal.closed.connect(self._close_refusal)
         self.page_bar.theme_chosen.connect(self._choose_theme)
@@ -192,10 +218,24 @@ class MainWindow(QWidget):
         view.raise_()
         view.activateWindow()
 
-    def _offer_recent_files(self) -> None:
+    def _offer_models(self) -> None:
         from clinicalc.operations.recent_titles import name_recent_files
 
-        self.model_bar.chooser.offer(name_recent_files(self.preferences.settings.recent_files))
+        offer = self.model_bar.chooser.offer if self.desk is None else self.desk.offer
+        offer(name_recent_files(self.preferences.settings.recent_files))
+
+    def _use_approved(self, approved: "ApprovedModel") -> None:
+        self.pages.setCurrentIndex(0)
+        self.state.use_model(approved.model, approved=approved)
+        self._show_title()
+        self.values.focus_first()
+
+    def _refuse_approved(self, name: str, error: ClinicalcError) -> None:
+        self._show_refusal(name, error, "Nothing was taken from it. Choose another model, or ask an approver.")
+
+    def _read_again(self) -> None:
+        if self.library is not None:
+            self.library.check()
 
     def _note_field(self, row: FieldRow | None) -> None:
         if row is None:

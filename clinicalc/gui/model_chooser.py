@@ -5,7 +5,7 @@ A menu and not a list that arrow keys turn through: another model clears the pat
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -29,6 +29,7 @@ from clinicalc.gui.tokens import RING
 from clinicalc.gui.typeface import CAPTION, UNIT, VALUE, face
 
 if TYPE_CHECKING:
+    from clinicalc.gui.model_library import OfferedModel
     from clinicalc.operations.recent_titles import RecentFile
 
 _HEIGHT = 32
@@ -36,7 +37,7 @@ _WIDTH, _NARROWEST = 322, 200
 _BEFORE_TITLE, _AFTER_TITLE = 10, 30
 _LINE_PITCH = 14
 _NONE = "No coefficient file is open"
-_LONGEST = 72
+_LONGEST, _LONGEST_END = 72, 28
 _OPENING_KEYS = (Qt.Key.Key_Return, Qt.Key.Key_Enter, Qt.Key.Key_Down, Qt.Key.Key_Up, Qt.Key.Key_Space)
 
 
@@ -47,10 +48,17 @@ class ModelChooser(QAbstractButton):
     """The menu is about to be shown: `offer` is due."""
     file_chosen = Signal(object)
     """The path of one of the files offered."""
+    model_chosen = Signal(str)
+    """The fingerprint of one of the approved models offered."""
+    hold_asked = Signal()
+    """The model in use is to be held on this machine."""
+    release_asked = Signal(str)
+    """The fingerprint of a model whose hold is to end."""
 
     def __init__(self) -> None:
         super().__init__()
         self.title = ""
+        self._before_file = ""
         self.menu = QMenu(self)
         self.menu.setFont(face(UNIT))
         self.open_action = QAction("&Open file…", self)
@@ -84,16 +92,45 @@ class ModelChooser(QAbstractButton):
 
         return f"<qt>{html.escape(self.title)}</qt>"
 
-    def offer(self, files: Sequence[RecentFile]) -> None:
-        """Replace the files in the menu."""
+    def name_trials(self) -> None:
+        """There is a library, so a file that is opened by its name is only tried out."""
+        self.open_action.setText("&Open a file to try out…")
+        self._before_file = "Try out: "
+
+    def offer(
+        self,
+        files: Sequence[RecentFile],
+        approved: Sequence[OfferedModel] = (),
+        *,
+        can_hold: bool = False,
+        held: Sequence[OfferedModel] = (),
+    ) -> None:
+        """Replace what is in the menu: the approved models, the files opened lately, hold and release."""
         self.menu.clear()
+        for model in approved:
+            self._add(model.title, lambda _=False, chosen=model.fingerprint: self.model_chosen.emit(chosen))
+        if approved:
+            self.menu.addSeparator()
         for file in files:
-            action = self.menu.addAction(show_ampersands(_shortened(file.title)))
-            action.setToolTip("")
-            action.triggered.connect(lambda _=False, path=file.path: self.file_chosen.emit(Path(path)))
+            words = f"{self._before_file}{file.title}"
+            self._add(words, lambda _=False, path=file.path: self.file_chosen.emit(Path(path)))
         if files:
             self.menu.addSeparator()
         self.menu.addAction(self.open_action)
+        if can_hold or held:
+            self.menu.addSeparator()
+        if can_hold:
+            self._add("Hold this model on this machine…", lambda _=False: self.hold_asked.emit())
+        for model in held:
+            release = f"Release on this machine: {model.title}"
+            self._add(release, lambda _=False, chosen=model.fingerprint: self.release_asked.emit(chosen))
+
+    def _add(self, words: str, verb: Callable[..., None]) -> None:
+        # made here and then added: one that Qt makes may be taken by PySide for an object that is gone
+        action = QAction(show_ampersands(_shortened(words)), self.menu)
+        self.menu.addAction(action)
+        action.setToolTip("")
+        action.triggered.connect(verb)
 
     def open_menu(self) -> None:
         """Show the menu under the frame."""
@@ -163,6 +200,9 @@ class ModelChooser(QAbstractButton):
 
 
 def _shortened(title: str) -> str:
-    """The title for one line of a menu, where a tabulator would start the column of keys."""
+    """The title for one line of a menu, where a tabulator would start the column of keys.
+
+    Of a long one the middle is left out: its version stands at the end.
+    """
     line = " ".join(title.split())
-    return line if len(line) <= _LONGEST else f"{line[: _LONGEST - 1]}…"
+    return line if len(line) <= _LONGEST else f"{line[: _LONGEST - _LONGEST_END - 1]}…{line[-_LONGEST_END:]}"

@@ -14,6 +14,7 @@ from clinicalc.assessment.not_measured import says_not_measured
 from clinicalc.assessment.result import ValueLine
 from clinicalc.coefficients.answers import NOT_MEASURED, NOT_MEASURED_WORDS
 from clinicalc.gui.averaged_entry import AveragedEntry
+from clinicalc.gui.changed_number import ChangedNumber
 from clinicalc.gui.dated_entry import DatedEntry
 from clinicalc.gui.held_value import (
     HeldValue,
@@ -44,7 +45,7 @@ class NumberRow(FieldRow):
     """
 
     def __init__(self, field: NumberField, marked_label: str, *, changeable: bool = False) -> None:
-        super().__init__(field.id, field.meaning)
+        super().__init__(field.id, field.meaning, changeable=changeable)
         self._field = field
         self._held: HeldValue = hold(field, "", field.unit)
         self._offer = ""
@@ -53,10 +54,10 @@ class NumberRow(FieldRow):
         self.edit = self.frame.edit
         self.edit.setAccessibleName(field.label)
         self.label = make_field_label(marked_label, field.label, self.edit)
-        self._side = ValueSide(field, self, changeable=changeable)
+        self._side = ValueSide(field, self)
         self.remark, self.range, self.offer = self._side.remark, self._side.range, self._side.offer
         self.not_measured = self._side.not_measured
-        self.change = self._change = self._side.change
+        self._change: ChangedNumber | None = None
         self.dated = DatedEntry(field.label) if field.valid_days is not None else None
         averaged = AveragedEntry(field.label) if field.within_person is not None else None
         self.stated = StatedEntry(averaged, self.dated) if averaged is not None or self.dated is not None else None
@@ -86,6 +87,8 @@ class NumberRow(FieldRow):
 
     def fill_change(self, typed: Typed | None) -> Typed | None:
         """Show a changed value or none, in the unit of the patient's own."""
+        if typed is not None:
+            self._have_change()
         if self._change is None:
             return typed
         self._change.fill(typed)
@@ -134,7 +137,7 @@ class NumberRow(FieldRow):
         chooser = () if self.frame.chooser is None else (self.frame.chooser,)
         stated = () if self.stated is None else self.stated.tab_stops()
         open_ = () if self.not_measured is None else (self.not_measured,)
-        change = () if self.change is None else self.change.tab_stops()
+        change = () if self._change is None else self._change.tab_stops()
         return (self.edit, *chooser, *stated, self.offer, *open_, *change, self.mark)
 
     def _connect(self) -> None:
@@ -144,9 +147,6 @@ class NumberRow(FieldRow):
         self.offer.clicked.connect(self._take_offer)
         if self.not_measured is not None:
             self.not_measured.clicked.connect(self._take_open)
-        if self._change is not None:
-            self._change.retyped.connect(self._tell_change)
-            self._change.entered.connect(self.change_entered)
         if self.stated is not None:
             self.stated.changed.connect(self._tell)
             self.stated.entered.connect(self.entered)
@@ -232,6 +232,14 @@ class NumberRow(FieldRow):
             self.both_typed.emit(self.field_id, self._as_typed(), after)
         else:
             self.typed.emit(self.field_id, self._as_typed())
+
+    def _make_change(self) -> ChangedNumber:
+        self._change = self._side.make_change()
+        self._change.retyped.connect(self._tell_change)
+        self._change.entered.connect(self.change_entered)
+        self._keep_beside()
+        self._settle_side()
+        return self._change
 
     def _tell_change(self) -> None:
         self.changed.emit(self.field_id, None if self._change is None else self._change.typed)

@@ -1,7 +1,7 @@
 """The bar at the top: the mark, the page and its number among several windows, the practice, menu and guide."""
 
 from PySide6.QtCore import QPoint, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QActionGroup, QColor, QPainter, QPaintEvent
+from PySide6.QtGui import QAction, QActionGroup, QColor, QPainter, QPaintEvent
 from PySide6.QtWidgets import QHBoxLayout, QMenu, QWidget
 
 from clinicalc.gui import theme
@@ -104,16 +104,20 @@ class PageBar(QWidget):
     def _make_menu(self, choice: ThemeChoice) -> None:
         self.menu = QMenu("Menu", self)
         self.menu.setFont(face(UNIT))
-        self.themes = self.menu.addMenu("&Theme")
+        # entries are made here and then added: one that Qt makes may be taken by PySide for an object that is gone
+        self.themes = QMenu("&Theme", self.menu)
         self.themes.setFont(face(UNIT))
+        self.menu.addMenu(self.themes)
         group = QActionGroup(self.themes)
         for option, words in _THEMES.items():
-            action = self.themes.addAction(words)
+            action = QAction(words, self.themes)
+            self.themes.addAction(action)
             action.setCheckable(True)
             action.setChecked(option is choice)
             action.triggered.connect(lambda _=False, option=option: self.theme_chosen.emit(option))
             group.addAction(action)
-        self.about = self.menu.addAction("&About")
+        self.about = QAction("&About", self.menu)
+        self.menu.addAction(self.about)
 
 
 def page_name(number: int) -> str:

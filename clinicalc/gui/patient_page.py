@@ -13,6 +13,7 @@ from clinicalc.gui.result_sheet import ResultSheet
 from clinicalc.gui.tokens import COMPACT_BELOW
 from clinicalc.gui.values_pane import ValuesPane
 from clinicalc.gui.wording import event_heading, longest_reasons
+from clinicalc.report.phrases import vetting_words
 
 ONE_COLUMN_BELOW = 900
 """Window width under which there is one column: that of the usual window at 200 % text."""
@@ -53,7 +54,7 @@ class PatientPage(QWidget):
         self.one_column.hide()
         self.sheet.comparison_opened.connect(self.values.show_changes)
         self.sheet.comparison_opened.connect(self.show_changes)
-        self.sheet.views.comparison.field_asked.connect(self.values.focus_change)
+        self.sheet.views.change_asked.connect(self.values.focus_change)
         state.assessed.connect(self.pin)
         state.blanked.connect(self.pin)
 
@@ -84,12 +85,16 @@ class PatientPage(QWidget):
     def pin(self, _: object = None) -> None:
         """Show in short what is on the sheet, which may be out of sight in one column."""
         model = self._state.model
-        if not self.is_narrow or self._state.assessment is None or model is None:
+        withheld = self._state.withheld
+        if not self.is_narrow or model is None or (self._state.assessment is None and not withheld):
             self.pinned.clear()
             return
         summary = self.sheet.pinned_summary()
-        vetted = "" if summary.vetted else "Not vetted: "
-        named = f"{vetted}{model.content.title} {model.content.version}"
+        named = f"{model.content.title} {model.content.version}"
+        if withheld:
+            named = f"Not in use: {named}"
+        else:
+            named = f"{named}. {vetting_words(self._state.vetting)}." if summary.vetted else f"Not vetted: {named}"
         self.pinned.keep_room(self._heading(model), longest_reasons(model))
         self.pinned.show_summary(summary, group_fingerprint(model.fingerprint, 3), named)
 

@@ -20,12 +20,12 @@ _COUNT = 44
 _DROP = 8.0
 """The dots stand as low as the digits beside them."""
 _GAP, _UNDER = 24, 10
+_FREE_WIDTH = 16_777_215
+"""Qt's own greatest width: none set."""
 
 
 class PeopleView(Block):
     """Under 1 % (and over 99 %) the people are 1000, and picture and counts change places: 1000 dots need the room."""
-
-    title = PEOPLE
 
     def __init__(self) -> None:
         super().__init__()
@@ -121,6 +121,8 @@ class PeopleView(Block):
         self._rows.setColumnStretch(0 if beside else 1, 0)
         self._rows.setColumnStretch(1 if beside else 0, 1)
         self.counts.setContentsMargins(0, 0, 0 if beside else _GAP, 0)
+        # long words of an outcome break: they would push the picture over the edge, and some people with it
+        self.counts.setMaximumWidth(_FREE_WIDTH if beside else round(RULER_AT * text_part()))
 
     def _draw(self) -> None:
         part = text_part()

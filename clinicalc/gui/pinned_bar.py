@@ -71,6 +71,7 @@ class PinnedBar(QWidget):
         self._marks = tuple((IndexMark(), make_line("", UNIT, semibold=True)) for _ in range(_MOST_MARKS))
         self._more = make_line("", UNIT)
         self._fields: dict[int, str] = {}
+        self._rest = 0
         for mark, _ in self._marks:
             mark.pressed_for.connect(lambda number: self.field_asked.emit(self._fields.get(number, "")))
         self._lay_out()
@@ -83,8 +84,12 @@ class PinnedBar(QWidget):
     def clear(self) -> None:
         """Take the number off, and everything that was said of it."""
         self.number.show_percentage("", vetted=False)
-        for label in (self.headline, self.sentence, self.band_name, self.band, self._more):
+        labels = (self.headline, self.sentence, self.band_name, self.band, self.fingerprint, self.model, self._more)
+        for label in labels:
             label.setText("")
+        self._rest = 0
+        self._more.setAccessibleName("")
+        self.headline.setAccessibleDescription("")  # its words name a number that is no longer there
         for mark, word in self._marks:
             mark.show_findings(())
             word.hide()
@@ -125,8 +130,18 @@ class PinnedBar(QWidget):
             button.show_mark(shown.number, shown.grade, name, leads=bool(shown.field))
             word.setText(shown.word)
             word.show()
-        rest = len(marks) - _MOST_MARKS
-        self._more.setText(f"and {rest} more" if rest > 0 else "")
+        self._rest = max(0, len(marks) - _MOST_MARKS)
+
+    def _say_rest(self, room: int) -> None:
+        """How many findings have no mark here, in words where the line has room for them beside a long band."""
+        words = f"and {self._rest} more" if self._rest else ""
+        before = (self.band_name, self.band) if self.sentence.isHidden() else (self.headline,)
+        beside = sum(label.sizeHint().width() + self._line.spacing() for label in before)
+        self._more.setAccessibleName(words)
+        for said in (words, f"+{self._rest}" if self._rest else ""):
+            self._more.setText(said)
+            if beside + self._marked.sizeHint().width() <= room:
+                return
 
     def _arrange(self, *, has_number: bool) -> None:
         """The marks stand beside the band, or beside the two or three words that there is no number."""
@@ -143,6 +158,7 @@ class PinnedBar(QWidget):
     def _fit(self) -> None:
         """As high as the longest words take at this width, so that nothing moves when they change."""
         room = max(100, self.width() - 2 * SIDE_MARGIN - self.number.width() - _BESIDE_NUMBER)
+        self._say_rest(room)
         beside = room - self.fingerprint.sizeHint().width() - _GAP
         with_number = height_of(self.headline, (*self._headings, self.headline.text()), room)
         without = max(SIDE, height_of(self.headline, (_NO_NUMBER,), room)) + _BETWEEN
@@ -152,7 +168,7 @@ class PinnedBar(QWidget):
 
     def _lay_out(self) -> None:
         self._listed = QWidget()
-        listed = QHBoxLayout(self._listed)
+        self._marked = listed = QHBoxLayout(self._listed)
         listed.setContentsMargins(8, 0, 0, 0)
         listed.setSpacing(8)
         for mark, word in self._marks:

@@ -72,13 +72,17 @@ def choose_printer(printer: QPrinter, parent: QWidget | None) -> bool:
         dialog.deleteLater()
 
 
+def _do_nothing() -> None:
+    """A file that is tried out is read again from nowhere."""
+
+
 class PrintJob:
     """One assessment on its way to paper: its pages, laid out once a sheet, for the preview and for a printer.
 
     `offered` are the parts of which there is something to print.
 
     `still_current` says whether the values on screen are still those of the assessment. `choose` lets a printer be
-    chosen and says whether one was.
+    chosen and says whether one was. `read_again` is called before anything goes to a printer.
     """
 
     def __init__(
@@ -88,12 +92,13 @@ class PrintJob:
         *,
         practice: str = "",
         choose: Callable[[QPrinter, QWidget | None], bool] = choose_printer,
+        read_again: Callable[[], None] = _do_nothing,
     ) -> None:
         self.printed_at = datetime.now().astimezone()
         self.name = suggest_pdf_name(assessment).removesuffix(".pdf")
         self.offered = offered_parts(assessment)
         self._assessment, self._practice = assessment, practice
-        self._still_current, self._choose = still_current, choose
+        self._still_current, self._choose, self._read_again = still_current, choose, read_again
         self._documents: dict[tuple[Paper, PrintParts], Document] = {}
 
     def check(self) -> None:
@@ -126,6 +131,7 @@ class PrintJob:
         printer = make_printer(paper, self.name)
         if not self._choose(printer, parent):
             return False
+        self._read_again()
         self.check()
         paint_document(printer, self.lay_out(_paper_of(printer), parts))
         return True
@@ -140,14 +146,15 @@ def preview(
     paper: Paper = Paper.A4,
     parts: PrintParts = USUAL_PARTS,
     explain: Callable[[QWidget | None, str], None] | None = None,
+    read_again: Callable[[], None] = _do_nothing,
 ) -> bool:
     """Show the print of an assessment and let it be printed; False where it was refused, which is said in a sentence.
 
     `still_current` says whether the values on screen are still those of the assessment; it is asked before every
-    painting. `explain` shows a sentence, in a message box where it is left out. Raises PrintRefused for a text that
-    could only be printed wrongly.
+    painting. `explain` shows a sentence, in a message box where it is left out. `read_again` is called before anything
+    goes to a printer. Raises PrintRefused for a text that could only be printed wrongly.
     """
-    job = PrintJob(assessment, still_current, practice=practice)
+    job = PrintJob(assessment, still_current, practice=practice, read_again=read_again)
     job.lay_out(paper, parts)  # refused here, the preview does not even open
     refusal = _show(parent, job, paper, parts)
     if refusal:

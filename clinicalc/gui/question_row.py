@@ -27,7 +27,7 @@ class QuestionRow(FieldRow):
     """A question with its answers; unanswered until somebody answers."""
 
     def __init__(self, field: QuestionField, marked_label: str, *, changeable: bool = False) -> None:
-        super().__init__(field.id, field.meaning)
+        super().__init__(field.id, field.meaning, changeable=changeable)
         self._field = field
         excludes = bool(field.excludes)
         self.segments = (
@@ -37,16 +37,14 @@ class QuestionRow(FieldRow):
         if field.meaning:
             self.segments.setAccessibleDescription(field.meaning)
         self.not_measured = NotMeasuredButton(field.label) if field.may_be_missing else None
-        self.change = self._change = ChangedAnswer(field) if changeable else None
-        self._caption = make_change_caption() if changeable else None
+        self._change: ChangedAnswer | None = None
+        self._caption: QLabel | None = None
         self._changed_beside = False
         self._answers = QBoxLayout(QBoxLayout.Direction.LeftToRight)
         self._first_line, self._under = QHBoxLayout(), QHBoxLayout()
         self._lay_out()
         if self.not_measured is not None:
             self.not_measured.clicked.connect(self._take_open)
-        if self._change is not None and self._caption is not None:
-            self._add_change(self._change, self._caption)
         self.segments.chosen.connect(self._take_answer)
         self.segments.entered.connect(self.entered)
 
@@ -62,6 +60,8 @@ class QuestionRow(FieldRow):
 
     def fill_change(self, typed: Typed | None) -> Typed | None:
         """Choose a changed answer, or none."""
+        if typed is not None:
+            self._have_change()
         if self._change is None:
             return typed
         self._change.fill(typed)
@@ -85,7 +85,7 @@ class QuestionRow(FieldRow):
     def tab_stops(self) -> tuple[QWidget, ...]:
         """All answers, of which one at a time is the stop; those of the second field; the mark of a finding."""
         open_ = () if self.not_measured is None else (self.not_measured,)
-        change = () if self.change is None else self.change.tab_stops()
+        change = () if self._change is None else self._change.tab_stops()
         if self._changed_beside:
             return (*self.segments.segments, *change, *open_, self.mark)
         return (*self.segments.segments, *open_, *change, self.mark)
@@ -117,7 +117,9 @@ class QuestionRow(FieldRow):
         lines.addLayout(row)
         lines.addLayout(self._under)
 
-    def _add_change(self, change: ChangedAnswer, caption: QLabel) -> None:
+    def _make_change(self) -> ChangedAnswer:
+        change, caption = ChangedAnswer(self._field), make_change_caption()
+        self._change, self._caption = change, caption
         caption.setFixedWidth(LABEL_WIDTH)
         self._under.setSpacing(0)
         self._under.addWidget(caption)
@@ -127,6 +129,9 @@ class QuestionRow(FieldRow):
         change.hide()
         change.retyped.connect(lambda: self.changed.emit(self.field_id, change.typed))
         change.entered.connect(self.change_entered)
+        change.stand_beside(self.segments.answer)
+        change.show_open(self.not_measured is not None and self.not_measured.isChecked())
+        return change
 
     def _fit_change(self, room: int) -> bool:
         """Show the second field beside the first where both have room, else on a line of its own; whether beside."""

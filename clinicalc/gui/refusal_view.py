@@ -7,6 +7,8 @@ from clinicalc.errors import ClinicalcError, CoefficientFileRefused
 from clinicalc.gui.labels import make_button, make_label
 from clinicalc.gui.typeface import BASE, TITLE, face
 
+_OF_A_FILE = "Nothing was taken from it. Correct the file or open another one."
+
 
 class RefusalView(QWidget):
     """Covers the patient page, so that no number stands beside a file that it does not belong to."""
@@ -18,7 +20,7 @@ class RefusalView(QWidget):
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.title = make_label("", TITLE, semibold=True)
-        self.explanation = make_label("Nothing was taken from it. Correct the file or open another one.")
+        self.explanation = make_label(_OF_A_FILE)
         self.problems = QPlainTextEdit()
         self.problems.setReadOnly(True)
         self.problems.setFont(face(BASE))
@@ -40,9 +42,10 @@ class RefusalView(QWidget):
         row.addStretch(1)
         column.addLayout(row)
 
-    def show_refusal(self, name: str, error: ClinicalcError) -> None:
-        """Show why the file called `name` was not opened."""
+    def show_refusal(self, name: str, error: ClinicalcError, explanation: str = _OF_A_FILE) -> None:
+        """Show why the file or the approved model called `name` was not opened."""
         self.title.setText(f"{name} was not opened")
+        self.explanation.setText(explanation)
         if isinstance(error, CoefficientFileRefused):
             self.problems.setPlainText("\n\n".join(str(problem) for problem in error.problems))
         else:

@@ -36,8 +36,6 @@ from clinicalc.report.measured import APPROXIMATE, Lane
 from clinicalc.report.on_the_ruler import lanes_of, measure_assessment, measure_nothing
 from clinicalc.report.phrases import NOT_VETTED, say_people
 
-_VETTED = False
-"""Until there is a model library, every file is opened by its name, and nobody has vetted it."""
 _RING = 2
 _TOP = 10
 
@@ -106,6 +104,12 @@ class ResultSheet(QWidget):
         self.findings.show_findings((), {})
         self._announce(None)
 
+    def invite(self, headline: str, sentence: str) -> None:
+        """While no model is chosen: why, and what to do."""
+        if self._state.model is None:
+            self.headline.setText(headline)
+            self.sentence.setText(sentence)
+
     def set_compact(self, compact: bool) -> None:
         """Nothing depends on the window's size but what follows from the sheet's own width."""
         self._fit()
@@ -124,15 +128,20 @@ class ResultSheet(QWidget):
             band_name=self.band_name.text().replace(APPROXIMATE, " about"),  # there is little room
             band_figures=self.band_figure.text(),
             marks=tuple(PinnedMark(n, f.grade, GRADE_WORDS[f.grade], f.field) for n, f in shown),
-            vetted=_VETTED,
+            vetted=self._is_vetted,
         )
+
+    @property
+    def _is_vetted(self) -> bool:
+        """Whether the practice approved the model; a file that is opened by its name is tried out."""
+        return self._state.vetting is not None
 
     def _listen_to_views(self) -> None:
         table = QShortcut(QKeySequence(Qt.Key.Key_T), self)
         table.setContext(Qt.ShortcutContext.WidgetWithChildrenShortcut)
         table.activated.connect(self.views.toggle_text)
         self.views.comparison_opened.connect(self.comparison_opened)
-        self.views.shares.matching_age_asked.connect(self._state.ask_matching_age)
+        self.views.matching_age_asked.connect(self._state.ask_matching_age)
         self.views.stops_changed.connect(self._tell_stops)
 
     def _lay_out(self) -> None:
@@ -203,9 +212,10 @@ class ResultSheet(QWidget):
         self.blank("")
         self.views.close_comparison()
         if model is None:
+            self._show_no_model()
             return
-        for widget in (self.strip, self.views):
-            widget.show()
+        self.strip.setVisible(not self._is_vetted)
+        self.views.show()
         event = event_in_full(model)
         self.outcome.setText(f"Event: {event}." if event else "")
         self.not_used.setText(not_used_sentence(model))
@@ -231,7 +241,7 @@ class ResultSheet(QWidget):
             headline = event_heading(assessment.model, assessment.span)
             sentence = say_people(assessment)
             percentage = shown_probability(assessment)
-            self.number.show_percentage(percentage, f"{headline}. {sentence}", vetted=_VETTED)
+            self.number.show_percentage(percentage, f"{headline}. {sentence}", vetted=self._is_vetted)
         self.headline.setText(headline)
         self.sentence.setText(sentence)
         self._show_charts(assessment)
@@ -246,7 +256,7 @@ class ResultSheet(QWidget):
         self.small_grid.show_probability(None if estimate is None else estimate.probability)
         self._show_lanes(model, assessment)
         others = [] if self.lanes.figure is None else [self.lanes.figure]
-        self.views.show_assessment(assessment, others, vetted=_VETTED)
+        self.views.show_assessment(assessment, others, vetted=self._is_vetted)
 
     def _show_lanes(self, model: Model | None, assessment: Assessment | None) -> None:
         """The ruler and the words under it."""

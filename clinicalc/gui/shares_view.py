@@ -26,7 +26,6 @@ class SharesView(Block):
 
     matching_age_asked = Signal(bool)
     """Whether the matching age is to be shown from now on."""
-    title = "Shares"
 
     def __init__(self) -> None:
         super().__init__()

@@ -41,15 +41,15 @@ class SideState:
 class ValueSide:
     """The widgets beside one value. Offer, button and second field take turns in one place, so that no row moves."""
 
-    def __init__(self, field: NumberField, parent: QWidget, *, changeable: bool) -> None:
+    def __init__(self, field: NumberField, parent: QWidget) -> None:
         self._field = field
         self._remarks = ValueRemarks(field)
         self.remark = make_label("", CAPTION, soft=True)
         self.offer = make_button("", name="offer", pixels=UNIT)
         self.range = RangeRemark()
         self.not_measured = NotMeasuredButton(field.label) if field.may_be_missing else None
-        self.change = ChangedNumber(field) if changeable else None
-        self._caption = make_change_caption() if changeable else None
+        self._change: ChangedNumber | None = None
+        self._caption: QWidget | None = None
         self._offer_place = QWidget(parent)
         self._offer_place.hide()
         beside = QHBoxLayout(self._offer_place)
@@ -67,15 +67,18 @@ class ValueSide:
     def lie_in(self, places: RowPlaces) -> None:
         """Take places in the row."""
         self._places = places
-        if self._caption is not None:
-            places.place_caption(self._caption, _UNDER_THAT)
+
+    def make_change(self) -> ChangedNumber:
+        """The second field of a comparison, which finds its place when the rest settles next."""
+        self._change, self._caption = ChangedNumber(self._field), make_change_caption()
+        self._places.place_caption(self._caption, _UNDER_THAT)
+        return self._change
 
     def show_offer(self, words: str) -> None:
         """Offer to read the value so, "" for no offer."""
-        if words:
-            words = show_ampersands(words)
-            self.offer.setText(f"Use {words}")
-            self.offer.setAccessibleName(f"{self._field.label}: use {words}")
+        words = show_ampersands(words)
+        self.offer.setText(f"Use {words}" if words else "")  # hidden, it keeps no digits of another value or patient
+        self.offer.setAccessibleName(f"{self._field.label}: use {words}" if words else "")
         self._offer_place.setVisible(bool(words))
 
     def settle(self, state: SideState) -> None:
@@ -111,17 +114,19 @@ class ValueSide:
 
     def _lies_under(self, state: SideState) -> bool:
         """Whether the second field has its place on a line of its own."""
-        return self.change is not None and (state.compact or not self.change.fits_beside())
+        return self._change is not None and (state.compact or not self._change.fits_beside())
 
     def _place_change(self, state: SideState, *, askable: bool) -> bool:
         """Show the second field or hide it; whether it is shown beside the frame."""
-        if self.change is None or self._caption is None:
+        if self._change is None or self._caption is None:
             return False
         under = self._lies_under(state)
         shown = state.changes_shown and not state.offered and (under or not askable)
-        if self._places.place(self.change, _UNDER_THAT if under else _BESIDE):
-            self.change.set_width(UNDER_WIDTH if under else BESIDE_WIDTH)
-        self.change.setVisible(shown)
+        if self._places.place(self._change, _UNDER_THAT if under else _BESIDE):
+            self._change.set_width(UNDER_WIDTH if under else BESIDE_WIDTH)
+        if shown:
+            self._change.catch_up()
+        self._change.setVisible(shown)
         self._caption.setVisible(shown and under)
         return shown and not under
 

@@ -90,13 +90,15 @@ class ValuesPane(Scroller):
         if left is not None and not shown:
             self.focus_field(left.field_id)  # what is hidden takes no keys
         self._changes_shown = shown
+        now = self._state.assessment
         for row in self.rows.values():
             row.show_changes(shown)
+            row.show_comparison(None if now is None or now.estimate is None else now.estimate.comparison)
         self._fit()
 
     @property
     def _is_changing(self) -> bool:
-        return self._changes_shown and any(row.change is not None for row in self.rows.values())
+        return self._changes_shown and any(row.is_changeable for row in self.rows.values())
 
     def focus_change(self, id: str) -> None:
         """Put the cursor in the second field of a value and bring it into view; without one nothing changes."""
@@ -140,8 +142,11 @@ class ValuesPane(Scroller):
         for part in (*self.rows.values(), self.label_row, self.widget()):
             if part is not None:
                 QCoreApplication.sendEvent(part, QEvent(QEvent.Type.LayoutRequest))
+        self._tell_stops()
+
+    def _tell_stops(self) -> None:
         stops = self.tab_stops()
-        if set(stops) == set(self._stops) and stops != self._stops:
+        if self._stops not in ((), stops):
             self.stops_moved.emit()
         self._stops = stops
 
@@ -159,6 +164,7 @@ class ValuesPane(Scroller):
         )
         if self.label_row is not None:
             self.label_row.fill(self._state.entry.label)
+        self._tell_stops()
         self._show_nothing()
 
     def _set_body(self) -> QVBoxLayout:
@@ -171,9 +177,10 @@ class ValuesPane(Scroller):
         return column
 
     def _build(self) -> None:
-        self.rows, self._headings, self._ranged, self.label_row = {}, [], None, None
+        self.rows, self._headings, self._ranged, self.label_row, self._stops = {}, [], None, None, ()
         column = self._set_body()
         if self._model is None:
+            self.rebuilt.emit()
             return
         fields = self._model.fields
         marked = mark_letters([*("" if has_no_letter(f) else f.label for f in fields), PRINT_LABEL])

@@ -1,7 +1,8 @@
 """What every window test starts from: Qt without a screen, our typeface and colours, a model, a window."""
 
+import gc
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
@@ -20,6 +21,13 @@ from clinicalc.operations.bedside import open_example
 @pytest.fixture(scope="session", autouse=True)
 def _dressed(_own_folders: None, qapp: QApplication) -> None:
     dress(qapp)
+
+
+@pytest.fixture(autouse=True)
+def _collected() -> Iterator[None]:
+    """Garbage is collected again after a test in which a library was out of reach."""
+    yield
+    gc.enable()
 
 
 @pytest.fixture(scope="session")

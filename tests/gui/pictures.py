@@ -12,6 +12,7 @@ import subprocess
 import sys
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, field
+from datetime import timedelta
 from pathlib import Path
 from tempfile import TemporaryDirectory
 
@@ -28,9 +29,12 @@ from clinicalc.operations.bedside import open_example
 from clinicalc.operations.documents import save_pdf
 from clinicalc.resources import read_shipped
 from clinicalc.settings import Paper, PracticePoint, ThemeChoice
-from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, run
+from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, WOMAN_EGFR_90, run
+from tests.gui.approving import Surgery
+from tests.library.records_kit import POINT
 
 TARNWICK, LIPIDS, REGIONAL = "tarnwick-cvd-10y", "general-cvd-2008-lipids", "cvd-2021-regional"
+TOTAL = "total-cvd-2024-base"
 SCALE = "QT_SCALE_FACTOR"
 USUAL = QSize(1280, 800)
 THEMES = (ThemeChoice.LIGHT, ThemeChoice.DARK)
@@ -118,6 +122,77 @@ def _add_practice_points(window: MainWindow) -> None:
     window.state.use_practice_points(points)
 
 
+_SURGERIES: list[tuple[Surgery, TemporaryDirectory[str]]] = []
+"""The practices whose windows are open; their folders go with the last of them."""
+
+
+def _open_alone() -> MainWindow:
+    """A window on a machine without a library."""
+    return MainWindow(choose_open=lambda _: None, choose_save=lambda *_: None)
+
+
+def _open_in_surgery() -> MainWindow:
+    """A window that works from a practice's library with one approved model."""
+    folder = TemporaryDirectory()
+    surgery = Surgery(Path(folder.name))
+    _SURGERIES.append((surgery, folder))
+    return surgery.open()
+
+
+def _open_with_choices() -> MainWindow:
+    """A window of a practice that approved two models; in one of them it chose recalibration and decision point."""
+    folder = TemporaryDirectory()
+    surgery = Surgery(Path(folder.name))
+    _SURGERIES.append((surgery, folder))
+    surgery.add_model(f"{REGIONAL}.json", recalibration="low", points=(POINT,))
+    return surgery.open()
+
+
+def _type(window: MainWindow, texts: Mapping[str, str]) -> None:
+    """A patient's values, with the approved model that is chosen."""
+    approved = window.state.approved
+    assert approved is not None
+    window.state.use_model(approved.model, entry_from_texts(texts, "F 2031"), approved)
+
+
+def _approve(window: MainWindow) -> None:
+    _type(window, DEMO)
+
+
+def _choose_regional(window: MainWindow) -> None:
+    assert window.library is not None
+    chosen = next(one for one in window.library.offered() if "A score" not in one.title)
+    window.library.choose(chosen.fingerprint)
+    _type(window, MAN_50)
+
+
+def _withdraw(window: MainWindow) -> None:
+    _type(window, DEMO)
+    _SURGERIES[-1][0].withdraw()
+    assert window.library is not None
+    window.library.check()
+
+
+def _lose_library(window: MainWindow) -> None:
+    surgery = _SURGERIES[-1][0]
+    surgery.lose()
+    surgery.now += timedelta(hours=2)
+    assert window.library is not None
+    window.library.check()
+    _type(window, DEMO)
+
+
+def _lose_library_for_long(window: MainWindow) -> None:
+    _lose_library(window)
+    _SURGERIES[-1][0].now += timedelta(hours=30)
+    assert window.library is not None
+    window.library.check()
+
+
+def _try_out(window: MainWindow) -> None:
+    window.use_model(open_example(f"{LIPIDS}.json"), entry_from_texts(WOMAN_61, "F 2031"))
+
+
 def _scroll_to(window: MainWindow, part: QWidget) -> None:
     """Bring a part of the sheet to the top of whatever scrolls it."""
     _settle()
@@ -135,11 +210,13 @@ class State:
     model: str | None
     typed: Mapping[str, str] = field(default_factory=dict)
     then: Callable[[MainWindow], None] = _leave_alone
+    make: Callable[[], MainWindow] = _open_alone
 
 
 STATES = (
     State("valid-band", TARNWICK, DEMO),
-    State("valid-no-band", LIPIDS, WOMAN_61),
+    State("rebuilt-band", LIPIDS, WOMAN_61),
+    State("valid-no-band", TOTAL, WOMAN_EGFR_90),
     State("stop", TARNWICK, DEMO | {"total_cholesterol": "5.2 mg/dL"}),
     State("excluded", TARNWICK, DEMO | {"prior_cvd": "yes"}),
     State("no-number-yet", TARNWICK, {"prior_cvd": "no", "age": "61"}),
@@ -163,6 +240,13 @@ STATES = (
     State("band-assumptions", LIPIDS, WOMAN_61, _show_assumptions),
     State("refused-file", TARNWICK, DEMO, _refuse),
     State("no-file", None),
+    State("approved", None, then=_approve, make=_open_in_surgery),
+    State("approved-none-chosen", None, make=_open_with_choices),
+    State("approved-choices", None, then=_choose_regional, make=_open_with_choices),
+    State("approved-withdrawn", None, then=_withdraw, make=_open_in_surgery),
+    State("approved-copy", None, then=_lose_library, make=_open_in_surgery),
+    State("approved-copy-too-old", None, then=_lose_library_for_long, make=_open_in_surgery),
+    State("approved-tried-out", None, then=_try_out, make=_open_in_surgery),
 )
 
 
@@ -178,7 +262,7 @@ def _settle() -> None:
 
 
 def _open(state: State, size: QSize) -> MainWindow:
-    window = MainWindow(choose_open=lambda _: None, choose_save=lambda *_: None)
+    window = state.make()
     window.resize(size)
     window.show()
     window.activateWindow()
@@ -229,7 +313,11 @@ def picture_prints(folder: Path) -> Iterator[Path]:
     tool = shutil.which("pdftoppm")
     if tool is None:
         return
-    for name, model, typed in (("valid-band", TARNWICK, DEMO), ("valid-no-band", LIPIDS, WOMAN_61)):
+    for name, model, typed in (
+        ("valid-band", TARNWICK, DEMO),
+        ("rebuilt-band", LIPIDS, WOMAN_61),
+        ("valid-no-band", TOTAL, WOMAN_EGFR_90),
+    ):
         for paper in Paper:
             pdf = folder / f"print-{name}-{paper}.pdf"
             save_pdf(pdf, run(model, typed), practice="Tarnwick Northgate", paper=paper)

@@ -264,3 +264,43 @@ def test_the_label_for_the_print_leaves_changes_alone(compared: MainWindow) -> N
     assert compared.values.label_row is not None
     type_text(compared.values.label_row.edit, "F 2031")
     assert changes(compared) == {SYSTOLIC: Typed("132", MMHG)}
+
+
+def test_a_hidden_second_field_catches_up(compared: MainWindow) -> None:
+    views = compared.sheet.views
+    change_number(compared, SYSTOLIC, "118")
+    views.open(views.people)
+    retype_number(compared, SYSTOLIC, "118")
+    views.open(views.comparison)
+    assert shown(compared, SYSTOLIC) == ("118", "118", False)
+    assert "As entered 118 mmHg." in second(compared, SYSTOLIC).edit.accessibleDescription()
+    views.open(views.people)
+    retype_number(compared, SYSTOLIC, "142")
+    views.open(views.comparison)
+    assert shown(compared, SYSTOLIC) == ("118", "142", True)
+    assert "As entered 142 mmHg." in second(compared, SYSTOLIC).edit.accessibleDescription()
+
+
+def test_a_patient_with_changes_has_them_at_once(open_window: Callable[[Model | None], MainWindow]) -> None:
+    model = open_example("tarnwick-cvd-10y.json")
+    window = open_window(model)
+    window.use_model(model, entry_from_texts(DEMO).with_change(SYSTOLIC, Typed("118")).with_change(SMOKER, Typed("no")))
+    assert set(changes(window)) == {SYSTOLIC, SMOKER}
+    window.sheet.views.open(window.sheet.views.comparison)
+    assert shown(window, SYSTOLIC) == ("118", "142", True)
+    assert second_answer(window, SMOKER).arrow.points
+    walked = [stop.accessibleName() for stop in window.values.tab_stops() if stop.isVisible()]
+    assert walked.index("Systolic blood pressure, with changes") > walked.index("Systolic blood pressure")
+
+
+def test_a_second_field_that_is_made_late_says_what_is_found(
+    open_window: Callable[[Model | None], MainWindow],
+) -> None:
+    """An entry changes one value, and what is found concerns another one too."""
+    model = open_example("tarnwick-cvd-10y.json")
+    window = open_window(model)
+    window.use_model(model, entry_from_texts(DEMO | {HDL: "3.1"}).with_change(TOTAL, Typed("2.5")))
+    [said] = [finding for finding in comparison_of(window).refused if finding.field == HDL]
+    window.sheet.views.open(window.sheet.views.comparison)
+    assert second(window, HDL).edit.accessibleDescription() == said.message
+    assert second(window, HDL).frame.is_stopped

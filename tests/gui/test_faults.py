@@ -14,6 +14,7 @@ from clinicalc.assessment.assess import assess
 from clinicalc.assessment.entry import PatientEntry, Typed, entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.result import Assessment
+from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.spans import Span
 from clinicalc.errors import ClinicalcError, UnitError
 from clinicalc.gui.entry_state import EntryState
@@ -35,6 +36,7 @@ def break_at_77(
     recalibration: str | None,
     practice_points: Sequence[PracticePoint],
     matching_age: bool,
+    vetting: Vetting | None,
 ) -> Assessment:
     """The real verb, but for one age."""
     age = entry.typed.get("age")

@@ -15,6 +15,7 @@ from clinicalc.gui.entry_state import EntryState
 from clinicalc.gui.lanes import Lanes
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.preferences import Preferences
+from clinicalc.gui.tokens import FIGURE_COLUMN
 from clinicalc.operations.bedside import open_example
 from clinicalc.report.measured import DecisionPoint, Interval, Lane, Measured
 from clinicalc.settings import PracticePoint, Settings
@@ -67,6 +68,17 @@ def test_spread_that_is_not_known_for_this_patient_is_a_dash(qtbot: QtBot) -> No
     lanes.resize(700, 100)
     lanes.show_measured(Measured("logit", 0.12, 0.88), "10 years", (Lane.BAND, Lane.SPREAD))
     assert [row.figures.text() for row in lanes.rows] == ["no band", "–"]
+
+
+def test_caption_has_room_for_a_horizon_that_is_chosen_later(qtbot: QtBot) -> None:
+    """Before there is a number only the caption changes: of the ruler nothing is another."""
+    lanes = Lanes()
+    qtbot.addWidget(lanes)
+    lanes.resize(700, 100)
+    for within in ("", "10 years", "90 days", ""):
+        lanes.show_measured(Measured("logit"), within)
+        assert lanes.caption.width() == lanes.caption.sizeHint().width()
+        assert lanes.caption.geometry().right() == FIGURE_COLUMN - 1
 
 
 def test_a_lane_with_many_decimals_has_a_shorter_name(qtbot: QtBot) -> None:

@@ -6,7 +6,7 @@ from pathlib import Path
 import pytest
 from PySide6.QtCore import QPoint, QRect, QSize, Qt
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QWidget
+from PySide6.QtWidgets import QApplication, QLabel, QWidget
 from pytestqt.qtbot import QtBot
 
 from clinicalc.assessment.entry import entry_from_texts
@@ -26,6 +26,7 @@ from tests.gui.bedside_hands import (
     retype_number,
 )
 from tests.gui.test_layout import cut_labels
+from tests.gui.walking import cut_texts
 
 pytestmark = pytest.mark.gui
 
@@ -129,6 +130,34 @@ def test_bar_is_as_high_with_every_reason(open_window: Callable[[Model | None], 
         heights.add(window.patient.pinned.height())
     assert len(heights) == 1
     assert cut_labels(window) == []
+
+
+def test_pinned_words_leave_with_the_number_and_with_the_form(narrow: MainWindow) -> None:
+    """What a screen reader says of the headline names the number too; in two panes the bar holds nothing at all."""
+    pinned = narrow.patient.pinned
+    assert "Of 100 people" in pinned.headline.accessibleDescription()
+    narrow.state.blank("")
+    assert pinned.headline.accessibleDescription() == ""
+    narrow.state.reassess()
+    assert "Of 100 people" in pinned.headline.accessibleDescription()
+    settle(narrow, USUAL)
+    assert pinned.headline.accessibleDescription() == ""
+    labels = (pinned.headline, pinned.sentence, pinned.band_name, pinned.band, pinned.fingerprint, pinned.model)
+    assert [label.text() for label in labels] == [""] * len(labels)
+    settle(narrow, NARROWEST)
+    assert pinned.model.text() == "Not vetted: General cardiovascular disease, lipid form 1.1.0"
+
+
+def test_number_of_further_findings_is_never_cut(narrow: MainWindow, lipids: Model) -> None:
+    """A long band and six findings, in the narrowest window and with room for the words."""
+    old = {"total_cholesterol": "330 on 2020-01-01", "hdl_cholesterol": "22 on 2020-01-01", "systolic_bp": "190"}
+    narrow.use_model(lipids, entry_from_texts(NUMBERS_2008 | ANSWERS_2008 | old))
+    for size, said in ((NARROWEST, "+4"), (QSize(860, 400), "and 4 more"), (NARROWEST, "+4")):
+        settle(narrow, size)
+        more = next(label for label in narrow.patient.pinned.findChildren(QLabel) if label.text() == said)
+        assert more.accessibleName() == "and 4 more"
+        assert more.isVisible()
+        assert cut_texts(narrow.patient.pinned) == []
 
 
 def test_pinned_mark_leads_to_the_field(qtbot: QtBot, narrow: MainWindow) -> None:

@@ -16,7 +16,7 @@ from clinicalc.gui import figure_view, theme
 from clinicalc.gui.exceptions import ExceptionHook
 from clinicalc.gui.figure_view import FigureView
 from clinicalc.gui.lanes import RULER_AT, overhang
-from clinicalc.gui.main_window import SMALLEST, MainWindow
+from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
 from clinicalc.gui.number_face import BASELINE, GRID_AT, NumberFace
 from clinicalc.gui.people_view import EMPTY
 from clinicalc.gui.tokens import SHEET_MARGIN, SHEET_MARGIN_RIGHT
@@ -24,6 +24,7 @@ from clinicalc.gui.wording import explain_no_number, numbered_findings
 from clinicalc.operations.bedside import open_example
 from clinicalc.report.phrases_spread import spread_sources
 from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, POOLED_2013, click, press, retype_number
+from tests.gui.walking import cut_texts
 
 pytestmark = pytest.mark.gui
 
@@ -43,6 +44,7 @@ INVENTED = {
 LOW = INVENTED | {"age": "36", "smoker": "no", "systolic_bp": "100", "hdl_cholesterol": "2.2 mmol/L"}
 SLIP = INVENTED | {"total_cholesterol": "5.2 mg/dL"}
 PRINTED = NUMBERS_2008 | ANSWERS_2008
+LOW_2008 = PRINTED | {"age": "31", "smoker": "no", "total_cholesterol": "120", "systolic_bp": "95"}
 HIGHEST = PRINTED | {
     "age": "74",
     "sex": "male",
@@ -225,6 +227,20 @@ def test_picture_and_counts_lie_beside_each_other(sheeted: MainWindow) -> None:
         assert x == SHEET_MARGIN
         assert x + width <= start == SHEET_MARGIN + RULER_AT
         assert start + room <= sheeted.sheet.width() - SHEET_MARGIN_RIGHT + 1
+
+
+@pytest.mark.parametrize("size", [USUAL, SMALLEST, NARROWEST], ids=["usual", "smallest", "one column"])
+def test_none_of_1000_people_is_cut_off(sheeted: MainWindow, lipids: Model, size: QSize) -> None:
+    """Beside long words for the outcome too, and again beside the short ones of a hundred people."""
+    people = sheeted.sheet.people
+    for typed in (LOW_2008, PRINTED, LOW_2008):
+        show(sheeted, typed, lipids, size)
+        figure = people.dots.figure_shown
+        assert figure is not None
+        assert ("1000" in figure.sentence) == (typed is LOW_2008)
+        assert figure.width <= people.dots.width() + 1
+        assert figure.height <= people.dots.height()
+        assert cut_texts(people) == []
 
 
 def test_a_number_that_went_leaves_no_words(sheeted: MainWindow) -> None:

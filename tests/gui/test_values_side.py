@@ -135,6 +135,15 @@ def test_range_gives_way_to_the_offer(qtbot: QtBot, tarnwick: MainWindow) -> Non
     assert not row.offer.isVisible()
 
 
+def test_an_offer_that_went_keeps_no_digits(qtbot: QtBot, tarnwick: MainWindow) -> None:
+    retype_number(tarnwick, "total_cholesterol", "193")
+    offer = number_row(tarnwick, "total_cholesterol").offer
+    assert "193" in offer.text()
+    assert "193" in offer.accessibleName()
+    tarnwick.begin_new_patient()
+    assert (offer.text(), offer.accessibleName()) == ("", "")
+
+
 def test_ranges_leave_the_narrow_pane_and_stand_in_the_note(qtbot: QtBot, tarnwick: MainWindow) -> None:
     tarnwick.resize(SMALLEST)
     number_row(tarnwick, "age").edit.setFocus()

@@ -56,6 +56,7 @@ class Machine:
         practice: str,
         paper: Paper,
         explain: Callable[[QWidget | None, str], None],
+        read_again: Callable[[], None],
     ) -> bool:
         self.previewed.append(assessment)
         self.seen = (practice, paper, still_current())
