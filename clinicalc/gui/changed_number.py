@@ -9,7 +9,7 @@ from clinicalc.assessment.entry import Typed
 from clinicalc.assessment.fields import NumberField
 from clinicalc.gui.changed_place import BESIDE_WIDTH, ChangedPlace
 from clinicalc.gui.held_value import HeldValue, choosable_units, digits_on_screen, hold, hold_entry, settle, switch_unit
-from clinicalc.gui.value_frame import ValueFrame
+from clinicalc.gui.value_frame import ValueFrame, show_digits
 from clinicalc.units.reading import Reading, read_value
 from clinicalc.units.unit import unit as unit_of
 
@@ -113,12 +113,7 @@ class ChangedNumber(ChangedPlace):
             self._held = switch_unit(self._field, self._held, self._own.unit, date.today())
 
     def _show_held(self) -> None:
-        if self.edit.text() != self._held.text or self.edit.isUndoAvailable() or self.edit.isRedoAvailable():
-            blocked = self.edit.blockSignals(True)
-            self.edit.setText(self._held.text)  # forgets the undo history too
-            self.edit.blockSignals(blocked)
-        if not self.edit.hasFocus():
-            self.edit.setCursorPosition(0)
+        show_digits(self.edit, self._held.text)
         self._show_state()
 
     def _show_state(self) -> None:

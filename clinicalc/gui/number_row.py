@@ -31,7 +31,7 @@ from clinicalc.gui.labels import make_field_label
 from clinicalc.gui.row_places import RowPlaces
 from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.stated_entry import StatedEntry
-from clinicalc.gui.value_frame import ValueFrame
+from clinicalc.gui.value_frame import ValueFrame, show_digits
 from clinicalc.gui.value_side import SideState, ValueSide
 from clinicalc.units.reading import Reading, read_value
 from clinicalc.units.unit import unit as unit_of
@@ -259,12 +259,7 @@ class NumberRow(FieldRow):
         return typed if self.stated is None else self.stated.with_stated(typed)
 
     def _show_held(self) -> None:
-        if self.edit.text() != self._held.text or self.edit.isUndoAvailable() or self.edit.isRedoAvailable():
-            blocked = self.edit.blockSignals(True)
-            self.edit.setText(self._held.text)  # forgets the undo history too
-            self.edit.blockSignals(blocked)
-        if not self.edit.hasFocus():
-            self.edit.setCursorPosition(0)
+        show_digits(self.edit, self._held.text)
         self._show_unit()
 
     def _show_unit(self) -> None:

@@ -28,6 +28,16 @@ _LEAST_NUMBER = 42
 _GAP, _GAP_WITHOUT_CHOICE = 4, 10
 
 
+def show_digits(edit: QLineEdit, text: str) -> None:
+    """Put `text` in a field without telling anybody, and without an undo history that would lead back."""
+    if edit.text() != text or edit.isUndoAvailable() or edit.isRedoAvailable():
+        blocked = edit.blockSignals(True)
+        edit.setText(text)  # forgets the undo history too
+        edit.blockSignals(blocked)
+    if not edit.hasFocus():
+        edit.setCursorPosition(0)
+
+
 class ValueEdit(QLineEdit):
     """The line a number is typed in."""
 

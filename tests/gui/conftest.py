@@ -12,10 +12,13 @@ os.environ["QT_QPA_PLATFORM"] = "offscreen"
 
 from PySide6.QtWidgets import QApplication
 
+from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.gui.application import dress
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.operations.bedside import open_example
+from tests.assessment.cases import DEMO
+from tests.gui.walking import settle
 
 
 @pytest.fixture(scope="session", autouse=True)
@@ -67,3 +70,18 @@ def open_window(qtbot: QtBot) -> Callable[[Model | None], MainWindow]:
 def window(open_window: Callable[[Model | None], MainWindow], lipids: Model) -> MainWindow:
     """A window on the lipid form with empty fields."""
     return open_window(lipids)
+
+
+@pytest.fixture(scope="session")
+def tarnwick() -> Model:
+    """The invented model: band, spread, a decision point, shares, values that can be changed."""
+    return open_example("tarnwick-cvd-10y.json")
+
+
+@pytest.fixture
+def viewed(open_window: Callable[[Model | None], MainWindow], tarnwick: Model) -> MainWindow:
+    """A window on the invented model with its invented patient."""
+    window = open_window(tarnwick)
+    window.use_model(tarnwick, entry_from_texts(DEMO, "Ottilie Fenn"))
+    settle()
+    return window

@@ -1,7 +1,5 @@
 """The lanes beside the ruler, the decision points they hold, and what is said and can be opened under them."""
 
-from collections.abc import Callable
-
 import pytest
 from msgspec import UnsetType
 from PySide6.QtCore import Qt
@@ -16,7 +14,6 @@ from clinicalc.gui.lanes import Lanes
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.preferences import Preferences
 from clinicalc.gui.tokens import FIGURE_COLUMN
-from clinicalc.operations.bedside import open_example
 from clinicalc.report.measured import DecisionPoint, Interval, Lane, Measured
 from clinicalc.settings import PracticePoint, Settings
 from tests.assessment.cases import DEMO, WOMAN_61
@@ -24,21 +21,6 @@ from tests.gui.bedside_hands import press
 from tests.gui.walking import settle
 
 pytestmark = pytest.mark.gui
-
-
-@pytest.fixture(scope="module")
-def tarnwick() -> Model:
-    """The invented model: band, spread, a decision point, shares, values that can be changed."""
-    return open_example("tarnwick-cvd-10y.json")
-
-
-@pytest.fixture
-def viewed(open_window: Callable[[Model | None], MainWindow], tarnwick: Model) -> MainWindow:
-    """A window on the invented model with its invented patient."""
-    window = open_window(tarnwick)
-    window.use_model(tarnwick, entry_from_texts(DEMO, "Ottilie Fenn"))
-    settle()
-    return window
 
 
 def test_lanes_keep_their_place_and_say_a_dash(viewed: MainWindow, pooled: Model, tarnwick: Model) -> None:

@@ -21,7 +21,6 @@ from clinicalc.gui.number_face import BASELINE, GRID_AT, NumberFace
 from clinicalc.gui.people_view import EMPTY
 from clinicalc.gui.tokens import SHEET_MARGIN, SHEET_MARGIN_RIGHT
 from clinicalc.gui.wording import explain_no_number, numbered_findings
-from clinicalc.operations.bedside import open_example
 from clinicalc.report.phrases_spread import spread_sources
 from tests.gui.bedside_hands import ANSWERS_2008, NUMBERS_2008, POOLED_2013, click, press, retype_number
 from tests.gui.walking import cut_texts
@@ -54,12 +53,6 @@ HIGHEST = PRINTED | {
     "bp_treated": "yes",
     "diabetes": "yes",
 }
-
-
-@pytest.fixture(scope="module")
-def tarnwick() -> Model:
-    """The invented model: a band, one horizon."""
-    return open_example("tarnwick-cvd-10y.json")
 
 
 @pytest.fixture

@@ -17,7 +17,6 @@ from clinicalc.gui.exceptions import ExceptionHook
 from clinicalc.gui.figure_view import FigureView
 from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
 from clinicalc.gui.views import View, Views
-from clinicalc.operations.bedside import open_example
 from clinicalc.report.phrases_comparison import NO_PROMISE
 from clinicalc.resources import read_shipped
 from tests.assessment.cases import DEMO, WOMAN_61
@@ -26,21 +25,6 @@ from tests.gui.test_walks import walk
 from tests.gui.walking import settle
 
 pytestmark = pytest.mark.gui
-
-
-@pytest.fixture(scope="module")
-def tarnwick() -> Model:
-    """The invented model: band, spread, a decision point, shares, values that can be changed."""
-    return open_example("tarnwick-cvd-10y.json")
-
-
-@pytest.fixture
-def viewed(open_window: Callable[[Model | None], MainWindow], tarnwick: Model) -> MainWindow:
-    """A window on the invented model with its invented patient."""
-    window = open_window(tarnwick)
-    window.use_model(tarnwick, entry_from_texts(DEMO, "Ottilie Fenn"))
-    settle()
-    return window
 
 
 def rows_of(view: View) -> tuple[tuple[str, ...], ...]:
