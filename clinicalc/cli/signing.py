@@ -124,7 +124,11 @@ def change(file: str, passphrase_file: str | None, new_passphrase_file: str | No
     return ExitStatus.ASSESSED
 
 
-@trust.command(short_help="Trust a publisher's key on this machine.")
+# one public key in 64 begins with a dash, and is no option for that; nor is it a call for help where an h follows
+@trust.command(
+    short_help="Trust a publisher's key on this machine.",
+    context_settings={"ignore_unknown_options": True, "help_option_names": ["--help"]},
+)
 @click.argument("card_or_public", metavar="CARD-OR-PUBLIC")
 @click.option("--id", "typed", required=True, help="All 64 digits, as the owner reads them aloud; spaces are allowed.")
 @click.option("--name", default="", help="Whose key it is; needed with a public key, otherwise the card's.")

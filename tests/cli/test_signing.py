@@ -6,9 +6,10 @@ from dataclasses import dataclass
 from pathlib import Path
 
 import pytest
+from cryptography.hazmat.primitives.asymmetric.ed25519 import Ed25519PrivateKey
 
 from clinicalc.coefficients.reader import read_file
-from clinicalc.library.keys import group_key_id
+from clinicalc.library.keys import decode_public, encode_public, group_key_id, key_id
 from tests.cli.calling import Ended, call, example
 from tests.library.keys_at_hand import PASSPHRASE, key_file
 
@@ -216,6 +217,18 @@ def test_a_wrong_id_trusts_nobody(bench: Bench) -> None:
         assert (ended.status, ended.out) == (6, "")
         assert "of its 64 digits do" in ended.err
     assert call("trust", "list").out == "No publisher is trusted on this machine.\n"
+
+
+def test_a_public_key_may_begin_with_a_dash() -> None:
+    public = ""
+    while not public.startswith("-"):
+        public = encode_public(Ed25519PrivateKey.generate().public_key().public_bytes_raw())
+    id = key_id(decode_public(public))
+    assert call("trust", "add", public, "--name", "The Press", "--id", id, "--json").record["id"] == id
+    for begins in ("-h", "--", "-i"):
+        ended = call("trust", "add", begins + public[2:], "--name", "The Press", "--id", id)
+        assert (ended.status, ended.out) == (6, ""), begins
+        assert "No such option" not in ended.err
 
 
 def test_words_that_are_missing_end_with_2() -> None:
