@@ -12,6 +12,7 @@
     │   ├── NotInUse            a model that the library does not let be used now: no number   exit 3
     │   ├── SignatureRefused    a signature that does not count, with the reason
     │   └── KeyRefused          a key, key file or passphrase that may not be used
+    ├── Stopped                 long work that whoever had begun it stopped; nothing half-done is left
     ├── FileNotWritten          an output file that could not be written; nothing half-written is left
     └── ShippedFileMissing      an installation that lacks a file it needs
 
@@ -147,6 +148,10 @@ class SignatureRefused(LibraryError):
 
 class KeyRefused(LibraryError):
     """A key, a key file or a passphrase that may not be used."""
+
+
+class Stopped(ClinicalcError):
+    """Long work was stopped by whoever had begun it."""
 
 
 class FileNotWritten(ClinicalcError):

@@ -48,13 +48,16 @@ def points_for(model: Model, span: Span, practice: Sequence[PracticePoint] = ())
     """The decision points that hold at a horizon, lowest first.
 
     A file states its points for every horizon that it answers for; the practice states each for one model and one
-    horizon, and it holds for no other.
+    horizon, and it holds for no other. One that the practice took over from the file letter for letter is the file's.
     """
-    file = (DecisionPoint(p.probability, p.label, p.source, PointOrigin.FILE) for p in model.content.decision_points)
+    stated = {(p.probability, p.label, p.source): None for p in model.content.decision_points}
+    file = (DecisionPoint(*point, PointOrigin.FILE) for point in stated)
     own = (
         DecisionPoint(p.probability, p.label, p.source, PointOrigin.PRACTICE)
         for p in practice
-        if p.model == model.content.id and Span(p.time, p.unit) == span
+        if p.model == model.content.id
+        and Span(p.time, p.unit) == span
+        and (p.probability, p.label, p.source) not in stated
     )
     return tuple(sorted((*file, *own), key=lambda point: point.probability))
 

@@ -20,8 +20,8 @@ from clinicalc.operations.demonstration import DemoCase, demo_case
 from clinicalc.operations.documents import save_pdf, stated_time
 from clinicalc.operations.inspection import inspect_file, write_sections
 from clinicalc.operations.summary import summarise
-from clinicalc.report.parts import USUAL_PARTS, PrintParts
-from clinicalc.settings import Paper
+from clinicalc.report.parts import PrintParts
+from clinicalc.settings import Paper, read_settings
 
 OpenWindow = Callable[[DemoCase], int]
 """Opens the window on a case and returns when it is closed; does nothing where there is no screen."""
@@ -81,6 +81,8 @@ def report(
 ) -> int:
     """Assess one patient and write the print as a PDF: pages for the clinician, and a last one for the patient.
 
+    Practice name and letterhead are those of this machine's settings.
+
     A comparison, shares and the matching age are printed where --change, --shares and --matching-age ask for them.
     No number, no print.
 
@@ -101,7 +103,9 @@ def report(
         return ExitStatus.STOPPED
     sheet = next(sheet for sheet in Paper if sheet.value.lower() == paper)
     parts = PrintParts(patient_page=not no_patient_page, shares=shares, matching_age=words["matching_age"] is True)
-    _write_print(out, assessment, paper=sheet, parts=parts)
+    chosen = read_settings().settings
+    save_pdf(Path(out), assessment, practice=chosen.practice, letterhead=chosen.letterhead, paper=sheet, parts=parts)
+    _tell_print(out, assessment, with_shares=shares)
     return ExitStatus.ASSESSED
 
 
@@ -127,15 +131,15 @@ def demo(open_window: OpenWindow, out: str, no_window: bool) -> int:
     """Assess an invented patient with a shipped file, print the result, write the PDF, open the window."""
     case = demo_case()
     assessment = assess_patient(case.model, case.entry, at=stated_time())
-    _write_print(out, assessment)
+    save_pdf(Path(out), assessment)
+    _tell_print(out, assessment)
     return ExitStatus.ASSESSED if no_window else open_window(case)
 
 
-def _write_print(out: str, assessment: Assessment, *, paper: Paper = Paper.A4, parts: PrintParts = USUAL_PARTS) -> None:
-    save_pdf(Path(out), assessment, paper=paper, parts=parts)
+def _tell_print(out: str, assessment: Assessment, *, with_shares: bool = False) -> None:
     stated = stated_time()
     dated = "" if stated is None else f", dated {stated:%Y-%m-%d %H:%M} by SOURCE_DATE_EPOCH"
-    click.echo(f"{summarise(assessment, with_shares=parts.shares)}\nPrint written to {out}{dated}")
+    click.echo(f"{summarise(assessment, with_shares=with_shares)}\nPrint written to {out}{dated}")
 
 
 def run_command(words: Sequence[str], open_window: OpenWindow) -> int:

@@ -10,6 +10,7 @@ from clinicalc.cli.library_session import (
     describe_written,
     key_options,
     library_options,
+    look_at_approver,
     now,
     open_for_reading,
     open_for_writing,
@@ -92,6 +93,7 @@ def approve(
     state = find_state(desk.models, model, (Standing.WAITING,))
     read, trust = read_installed(desk.source, state), read_trust()
     approving.settle(desk, state, read, choices, trust)  # before anybody types a passphrase
+    approving.settle_by(desk, state, read, look_at_approver(desk, key_file), choices, trust)
     sealed = approving.approve(desk, state, read, take_approver_key(desk, key_file, passphrase_file), choices, trust)
     return _tell_written(place, as_json, sealed)
 
@@ -122,8 +124,10 @@ def extend(
     desk = open_for_writing(place)
     state = find_state(desk.models, model, (Standing.IN_USE, Standing.REVIEW_OVERDUE))
     approving.approval_in_force(state)
-    read, key = read_installed(desk.source, state), take_approver_key(desk, key_file, passphrase_file)
-    sealed = approving.extend(desk, state, read, key, read_trust(), reason=reason, review_until=until)
+    read, trust, card = read_installed(desk.source, state), read_trust(), look_at_approver(desk, key_file)
+    approving.settle_extension(desk, state, read, card, trust, reason=reason, review_until=until)
+    key = take_approver_key(desk, key_file, passphrase_file)
+    sealed = approving.extend(desk, state, read, key, trust, reason=reason, review_until=until)
     return _tell_written(place, as_json, sealed)
 
 
@@ -142,6 +146,7 @@ def withdraw(
 
     desk = open_for_writing(place)
     state = find_state(desk.models, model, (Standing.IN_USE, Standing.REVIEW_OVERDUE, Standing.HELD))
+    withdrawing.settle_withdrawal(desk, state, look_at_approver(desk, key_file), reason)
     sealed = withdrawing.withdraw(desk, state, take_approver_key(desk, key_file, passphrase_file), reason)
     return _tell_written(place, as_json, sealed)
 
@@ -158,6 +163,7 @@ def comment(model: str, text: str, key_file: str, passphrase_file: str | None, p
 
     desk = open_for_writing(place)
     state = find_state(desk.models, model)
+    withdrawing.settle_comment(desk, look_at_approver(desk, key_file), text)
     sealed = withdrawing.comment(desk, state, take_approver_key(desk, key_file, passphrase_file), text)
     return _tell_written(place, as_json, sealed)
 

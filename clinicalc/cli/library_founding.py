@@ -34,19 +34,18 @@ def init(
     `clinicalc library join`, for which the key's id is read aloud.
     """
     from clinicalc.library.appointing import check_label
-    from clinicalc.library.cards import read_card_file
-    from clinicalc.library.founding import found_library
-    from clinicalc.library.records import Approver, Policy
+    from clinicalc.library.founding import check_founding, found_library
+    from clinicalc.library.key_files import read_card
+    from clinicalc.library.records import Policy
+    from clinicalc.operations.practice_founding import approver_of
 
     if len(cards) != len(roles):
         raise UsageError(
             f"{len(cards)} cards and {len(roles)} roles are given.", do="Give one --role after each --approver."
         )
-    found = [read_card_file(Path(card)) for card in cards]
-    approvers = tuple(
-        Approver(card.name, check_label(role, "role"), card.public) for card, role in zip(found, roles, strict=True)
-    )
+    approvers = tuple(approver_of(Path(card), role) for card, role in zip(cards, roles, strict=True))
     named = check_label(practice, "practice")
+    check_founding(Path(place), named, read_card(Path(key_file)), approvers)
     key = take_key(key_file, passphrase_file)
     sealed = found_library(
         Path(place),

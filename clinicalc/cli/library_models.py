@@ -7,10 +7,12 @@ from typing import TYPE_CHECKING
 import click
 
 from clinicalc.cli.library_people import describe_authority
+from clinicalc.cli.library_print import choose_print, print_options
 from clinicalc.cli.library_session import (
     describe_state,
     describe_written,
     library_options,
+    look_at_approver,
     open_for_reading,
     open_for_writing,
     state_after,
@@ -48,7 +50,7 @@ def install(
 
     What is shown is what is installed: the file is read once. It gives no number before it is approved.
     """
-    from clinicalc.library.installing import find_installed, look_at, other_versions
+    from clinicalc.library.installing import find_installed, look_at, other_versions, settle_installation
     from clinicalc.library.installing import install as put_in
     from clinicalc.library.standing import Standing
     from clinicalc.library.trust_store import read_trust
@@ -69,7 +71,9 @@ def install(
         return ExitStatus.ASSESSED
     if not as_json:
         tell(False, {}, (*shown, ""))
-    sealed = put_in(desk, candidate, take_approver_key(desk, key_file, passphrase_file), came_from or Path(file).name)
+    origin = came_from or Path(file).name
+    settle_installation(desk, candidate, look_at_approver(desk, key_file), origin)
+    sealed = put_in(desk, candidate, take_approver_key(desk, key_file, passphrase_file), origin)
     state = state_after(place, candidate.model.fingerprint)
     record = {**describe_written(sealed, state), "already": False, **_describe_candidate(candidate, others)}
     lines = [f"Installed by {sealed.record.name} ({sealed.record.role}). {say_standing(state)}"]
@@ -99,8 +103,17 @@ def list_models(place: str | None, as_json: bool) -> int:
 @click.command(short_help="Show one model: choices, signatures, history.")
 @click.argument("model", metavar="ID-or-FINGERPRINT")
 @click.option("--full", is_flag=True, help="Everything the file says as well, as `clinicalc inspect` prints it.")
+@print_options
 @library_options
-def show(model: str, full: bool, place: str | None, as_json: bool) -> int:
+def show(
+    model: str,
+    full: bool,
+    pdf_file: str | None,
+    paper: str,
+    replace: bool,
+    place: str | None,
+    as_json: bool,
+) -> int:
     """Show one model of the library: where it stands, its signatures, what was chosen, and its history."""
     from clinicalc.library.finding import find_state
     from clinicalc.library.standing import Standing
@@ -108,13 +121,17 @@ def show(model: str, full: bool, place: str | None, as_json: bool) -> int:
     from clinicalc.operations.inspection import inspect_model, write_sections
     from clinicalc.operations.library_history import tell_history
     from clinicalc.operations.library_words import say_standing
+    from clinicalc.operations.vetting_prints import write_approval_pdf
 
     opened = open_for_reading(place)
     state = find_state(opened.models, model, (Standing.IN_USE,))
     candidate, fault = _read(opened, state)
     named = f"{state.title} {state.version}  ({group_fingerprint(state.fingerprint, 3)})".strip()
     shown = (named, fault) if candidate is None else describe_candidate(candidate)
-    lines = (*shown, "", say_standing(state), "", "History", *tell_history(state))
+    lines = [*shown, "", say_standing(state), "", "History", *tell_history(state)]
+    if pdf_file is not None:
+        write_approval_pdf(Path(pdf_file), opened, state, candidate, fault, choose_print(paper), replace=replace)
+        lines += ["", f"Its approval record was printed to {pdf_file}."]
     described = {} if candidate is None else _describe_candidate(candidate, ())
     tell(as_json, {**describe_state(state), "file_fault": fault or None, **described}, lines)
     if full and candidate is not None and not as_json:

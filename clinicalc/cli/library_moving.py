@@ -5,6 +5,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from clinicalc.cli.library_print import print_difference, print_options
 from clinicalc.cli.library_session import library_options, now, open_for_reading, tell
 from clinicalc.cli.outcome import ExitStatus
 from clinicalc.coefficients.fingerprint import group_fingerprint
@@ -12,14 +13,22 @@ from clinicalc.errors import LibraryError, UsageError
 
 if TYPE_CHECKING:
     from clinicalc.assessment.model import Model
-    from clinicalc.library.opening import OpenedLibrary
 
 
 @click.command(short_help="What changed between two versions, and what that does to the numbers.")
 @click.argument("old", metavar="OLD")
 @click.argument("new", metavar="NEW")
+@print_options
 @library_options
-def diff(old: str, new: str, place: str | None, as_json: bool) -> int:
+def diff(
+    old: str,
+    new: str,
+    pdf_file: str | None,
+    paper: str,
+    replace: bool,
+    place: str | None,
+    as_json: bool,
+) -> int:
     """Say what changed between two versions of a model, and what that does to the numbers of standard patients.
 
     OLD and NEW are coefficient files, or models of the library by id or by the first digits of a fingerprint.
@@ -41,6 +50,10 @@ def diff(old: str, new: str, place: str | None, as_json: bool) -> int:
     identical = before.fingerprint == after.fingerprint
     lines = [f"old  {_name(before)}", f"new  {_name(after)}", ""]
     lines += ["The two are the same file."] if identical else [*say_difference(found), "", *say_effect(effect)]
+    if pdf_file is not None:
+        opened = None if _is_file(old) and _is_file(new) else open_for_reading(place)
+        print_difference(Path(pdf_file), (before, after), (found, effect), opened, paper, replace=replace)
+        lines += ["", f"Printed to {pdf_file}."]
     tell(as_json, record, lines)
     return ExitStatus.ASSESSED
 
@@ -72,12 +85,10 @@ def compare_entries(a: str, b: str, figures_only: bool, place: str | None, as_js
 @library_options
 def export(out: str, replace: bool, place: str | None, as_json: bool) -> int:
     """Write all models and records of the library into one file (64 MB at most), for a machine without the share."""
-    from clinicalc.library.carrying import export_library
-    from clinicalc.library.folder import LibraryFolder
+    from clinicalc.operations.library_carrying import export_opened
 
     opened = open_for_reading(place)
-    _require_sound(opened)
-    bundle = export_library(LibraryFolder(opened.place), Path(out), now(), replace=replace)
+    bundle = export_opened(opened, Path(out), now(), replace=replace)
     models, records = len(bundle.models), len(bundle.records)
     practice = opened.authority.practice
     tell(
@@ -100,25 +111,20 @@ def import_(file: str, place: str | None, as_json: bool) -> int:
     Refused, with nothing changed: another library's place, a bundle in which a record is missing or does not count, and
     one that is older than what this machine has seen.
     """
-    from clinicalc.library.bundle import read_bundle_file
-    from clinicalc.library.carrying import import_bundle
-    from clinicalc.library.machine import Machine
-    from clinicalc.library.memory import read_memory
-    from clinicalc.settings import library_place, read_settings, settings_folder
+    from clinicalc.operations.library_carrying import bring_in
+    from clinicalc.settings import library_place, read_settings
 
-    settings = read_settings().settings
-    target = library_place(settings.library, place)
+    target = library_place(read_settings().settings.library, place)
     if target is None:
         raise UsageError("it is not said where the library is to be.", do="Name a folder with --library.")
-    bundle = read_bundle_file(Path(file))
-    memory = read_memory(Machine(settings_folder(), target, settings.practice_key), bundle.library)
-    done = import_bundle(bundle, target, memory, now(), may_make=place is not None)
+    brought = bring_in(Path(file), target, now(), may_make=place is not None)
+    done = brought.carried
     lines = [
         f"{'A new library was made' if done.created else 'The library was brought up to date'} in {target}.",
         f"New: {_count(done.new_models, 'model')} and {_count(done.new_records, 'record')}. "
         f"It now holds {_count(done.models, 'model')} and {_count(done.records, 'record')}.",
     ]
-    if memory is None:
+    if not brought.known:
         lines.append(
             f"This machine does not know it yet: clinicalc library join, by the practice key of {done.practice}."
         )
@@ -139,19 +145,6 @@ def import_(file: str, place: str | None, as_json: bool) -> int:
     return ExitStatus.ASSESSED
 
 
-def _require_sound(opened: "OpenedLibrary") -> None:
-    """Nothing where nothing stops the library or one of its models on this machine. Raises LibraryError."""
-    found = (*opened.faults, *(fault for state in opened.models for fault in state.faults))
-    stops = [fault.sentence for fault in found if fault.stops]
-    if stops:
-        raise LibraryError(
-            "the library was not exported, because something is wrong with it.",
-            where=str(opened.place),
-            why=stops[0],
-            do="Settle what clinicalc library verify names first.",
-        )
-
-
 def _open(words: str, place: str | None) -> "Model":
     """The proved model of a file, or of a model of the library where no file has that name."""
     from clinicalc.assessment.proof import load_model, prove_model
@@ -159,15 +152,19 @@ def _open(words: str, place: str | None) -> "Model":
     from clinicalc.library.installing import read_canonical
     from clinicalc.library.standing import Standing
 
-    path = Path(words)
-    if path.exists() or path.suffix == ".json" or len(path.parts) > 1:
-        return load_model(path)
+    if _is_file(words):
+        return load_model(Path(words))
     opened = open_for_reading(place)
     state = find_state(opened.models, words, prefer=(Standing.IN_USE,))
     content = opened.source.model(state.fingerprint)
     if not isinstance(content, bytes):
         raise LibraryError("its file cannot be used.", where=f"{state.id} {state.version}", why=content.sentence)
     return prove_model(read_canonical(content, state))
+
+
+def _is_file(words: str) -> bool:
+    path = Path(words)
+    return path.exists() or path.suffix == ".json" or len(path.parts) > 1
 
 
 def _count(number: int, word: str) -> str:

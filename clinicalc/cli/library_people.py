@@ -1,6 +1,7 @@
 """`library appoint`, `dismiss`, `revoke-key`, `policy`: what only the practice key may say."""
 
 from collections.abc import Mapping
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -15,13 +16,11 @@ from clinicalc.cli.library_session import (
     tell,
 )
 from clinicalc.cli.outcome import ExitStatus
-from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.errors import UsageError
-from clinicalc.report.phrases import count_words
 
 if TYPE_CHECKING:
     from clinicalc.library.standing import Authority
-    from clinicalc.library.writing import Desk
+    from clinicalc.operations.practice_deeds import PracticeDeed
 
 
 @click.command(short_help="Let a person install, approve and withdraw.")
@@ -40,15 +39,15 @@ def appoint(
     as_json: bool,
 ) -> int:
     """Let a person install, approve and withdraw models. The practice key signs the new list of approvers."""
-    from clinicalc.library import appointing
     from clinicalc.library.cards import read_card_file
+    from clinicalc.operations import practice_deeds
 
-    held = read_card_file(Path(card))
+    file = Path(card)
+    read_card_file(file)  # what is no card is said before the library is reached
     desk = open_for_writing(place)
-    sealed = appointing.appoint(desk, take_practice_key(desk, key_file, passphrase_file), name or held.name, role, held)
-    opening = f"{name or held.name} ({role}) may now install, approve and withdraw models."
-    key = f"Key {group_fingerprint(held.id)}"
-    return _tell_authority(place, as_json, sealed.digest, (opening, key))
+    practice_deeds.check_appointment(desk, file, role, name or "")
+    key = take_practice_key(desk, key_file, passphrase_file)
+    return _tell_deed(place, as_json, practice_deeds.appoint(desk, key, file, role, name or ""))
 
 
 @click.command(short_help="Take a person off the list of approvers.")
@@ -61,19 +60,14 @@ def dismiss(who: str, key_file: str, passphrase_file: str | None, place: str | N
     What the person approved so far stays valid, and is named; if any of it is in doubt, use revoke-key instead, which
     keeps only what you name.
     """
-    from clinicalc.library import appointing
+    from clinicalc.library.appointing import find_approver
+    from clinicalc.operations import practice_deeds
 
     desk = open_for_writing(place)
-    appointing.find_approver(desk.authority, who)  # before anybody types a passphrase
-    done = appointing.dismiss(desk, take_practice_key(desk, key_file, passphrase_file), who)
-    gone = done.approver
-    lines = (
-        f"{gone.name} ({gone.role}) may no longer install, approve or withdraw, and that key counts no more for"
-        " anything new. To come back, the person makes another key.",
-        *_kept(desk, done.still_valid, gone.name),
-    )
-    more = {"revocation": done.revocation.digest, "still_valid": list(done.still_valid)}
-    return _tell_authority(place, as_json, done.listed.digest, lines, more)
+    find_approver(desk.authority, who)  # before anybody types a passphrase
+    done = practice_deeds.dismiss(desk, take_practice_key(desk, key_file, passphrase_file), who)
+    more = {"revocation": done.revocation, "still_valid": list(done.still_valid)}
+    return _tell_deed(place, as_json, done, more)
 
 
 @click.command("revoke-key", short_help="Say that a key is lost or stolen.")
@@ -100,14 +94,15 @@ def revoke_key(
 
     Name a model only where its approval is known to be by the key's owner: nobody else can tell.
     """
-    from clinicalc.library import appointing
+    from clinicalc.operations import practice_deeds
 
     desk = open_for_writing(place)
+    practice_deeds.check_revocation(desk, id, reason, still_valid)
     key = take_practice_key(desk, key_file, passphrase_file)
-    kept = tuple(_approval_of(desk, words) for words in still_valid)
-    whole, sealed = appointing.revoke_key(desk, key, id, reason, kept)
-    opening = f"The key {group_fingerprint(whole, 3)} counts no more."
-    return _tell_authority(place, as_json, sealed.digest, (opening, *_lost(desk, place)))
+    done = practice_deeds.revoke_key(desk, key, id, reason, still_valid)
+    after = open_for_reading(place)
+    lost = practice_deeds.say_lost(desk.models, after.models)
+    return _tell_deed(place, as_json, replace(done, says=(*done.says, *lost)))
 
 
 @click.command(short_help="Say what the practice allows by way of exception.")
@@ -130,8 +125,9 @@ def policy(
     as_json: bool,
 ) -> int:
     """Change what the practice allows. What is not named stays as it is."""
-    from clinicalc.library import appointing
+    from clinicalc.library.appointing import settle_policy
     from clinicalc.library.records import Policy
+    from clinicalc.operations import practice_deeds
 
     if author_may_approve is None and offline_hours is None:
         raise UsageError("nothing is to be changed.", do="Give --author-may-approve, its opposite, or --offline-hours.")
@@ -141,13 +137,9 @@ def policy(
         author_may_approve=held.author_may_approve if author_may_approve is None else author_may_approve,
         offline_hours=held.offline_hours if offline_hours is None else offline_hours,
     )
-    sealed = appointing.change_policy(desk, take_practice_key(desk, key_file, passphrase_file), wanted, reason)
-    may = "may" if wanted.author_may_approve else "may not"
-    lines = (
-        f"Who made or brought a file {may} approve it.",
-        f"Without the library, a machine works on for {wanted.offline_hours} hours.",
-    )
-    return _tell_authority(place, as_json, sealed.digest, lines)
+    settle_policy(desk.authority, wanted, reason)
+    key = take_practice_key(desk, key_file, passphrase_file)
+    return _tell_deed(place, as_json, practice_deeds.set_policy(desk, key, wanted, reason))
 
 
 def describe_authority(authority: "Authority") -> dict[str, object]:
@@ -169,53 +161,12 @@ def describe_authority(authority: "Authority") -> dict[str, object]:
     }
 
 
-def _tell_authority(
-    place: str | None, as_json: bool, digest: str, lines: tuple[str, ...], more: Mapping[str, object] | None = None
-) -> int:
+def _tell_deed(place: str | None, as_json: bool, done: "PracticeDeed", more: Mapping[str, object] | None = None) -> int:
     authority = open_for_reading(place).authority
     names = ", ".join(f"{approver.name} ({approver.role})" for approver in authority.approvers) or "nobody"
     tell(
         as_json,
-        {"record": digest, **(more or {}), **describe_authority(authority)},
-        (*lines, f"Approvers now: {names}."),
+        {"record": done.record.digest, **(more or {}), **describe_authority(authority)},
+        (*done.says, f"Approvers now: {names}."),
     )
     return ExitStatus.ASSESSED
-
-
-def _approval_of(desk: "Desk", words: str) -> str:
-    """The digest of the approval of a model."""
-    from clinicalc.library.approving import approval_in_force
-    from clinicalc.library.finding import find_state
-
-    return approval_in_force(find_state(desk.models, words)).digest
-
-
-def _kept(desk: "Desk", digests: tuple[str, ...], name: str) -> tuple[str, ...]:
-    """The models of which these approvals, by one person, stay valid; those approvals in force are set apart."""
-    in_force, replaced = list[str](), 0
-    for state in desk.models:
-        of_model = [sealed for sealed in state.records if sealed.digest in digests]
-        current = [one for one in of_model if state.approval is not None and one.digest == state.approval.digest]
-        in_force += [
-            f"{state.title} {state.version} (until {state.approval.review_until})" for _ in current if state.approval
-        ]
-        replaced += len(of_model) - len(current)
-    if not digests:
-        return (f"{name} had approved nothing that counts now.",)
-    said = "; ".join(in_force) or "none that is in force now"
-    earlier = f" So do {count_words(replaced, 'approval')} of former days, for the history." if replaced else ""
-    return (f"What {name} approved stays valid: {said}.{earlier}",)
-
-
-def _lost(desk: "Desk", place: str | None) -> tuple[str, ...]:
-    """The models that gave numbers before and no longer do, in a sentence."""
-    from clinicalc.library.standing import Standing
-
-    before = {state.fingerprint for state in desk.models if state.standing is Standing.IN_USE}
-    after = {state.fingerprint: state for state in open_for_reading(place).models}
-    lost = [
-        f"{after[print].title} {after[print].version}"
-        for print in sorted(before & after.keys())
-        if after[print].standing is not Standing.IN_USE
-    ]
-    return (f"No longer in use: {'; '.join(lost)}.",) if lost else ()

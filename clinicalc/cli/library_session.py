@@ -12,7 +12,7 @@ from clinicalc.cli.passphrase import ask_passphrase, passphrase_option
 from clinicalc.operations.folding import fold
 
 if TYPE_CHECKING:
-    from clinicalc.library.keys import SigningKey
+    from clinicalc.library.keys import KeyCard, SigningKey
     from clinicalc.library.opening import OpenedLibrary
     from clinicalc.library.standing import ModelState, SealedRecord
     from clinicalc.library.writing import Desk
@@ -46,28 +46,29 @@ def practice_key_options(command: _Command) -> _Command:
 
 def take_key(key_file: str, passphrase_file: str | None) -> "SigningKey":
     """The opened private key. Raises KeyRefused."""
-    from clinicalc.library.key_files import open_key, read_card
+    from clinicalc.operations.signing_keys import take_key as take
 
-    path = Path(key_file)
-    card = read_card(path)  # what is no key file is said before anybody types a passphrase
-    return open_key(path, ask_passphrase(passphrase_file, f"Passphrase of the key of {card.name}"))
+    return take(Path(key_file), lambda card: ask_passphrase(passphrase_file, f"Passphrase of the key of {card.name}"))
 
 
 def take_approver_key(desk: "Desk", key_file: str, passphrase_file: str | None) -> "SigningKey":
     """The same for a key of an approver in force. Raises LibraryError for any other before a passphrase is asked."""
-    from clinicalc.library.key_files import read_card
-    from clinicalc.library.writing import require_approver
-
-    require_approver(desk.authority, read_card(Path(key_file)))
+    look_at_approver(desk, key_file)
     return take_key(key_file, passphrase_file)
+
+
+def look_at_approver(desk: "Desk", key_file: str) -> "KeyCard":
+    """The card of an approver's key; no passphrase is asked. Raises LibraryError for any other key."""
+    from clinicalc.operations import signing_keys
+
+    return signing_keys.look_at_approver(desk.authority, Path(key_file))
 
 
 def take_practice_key(desk: "Desk", key_file: str, passphrase_file: str | None) -> "SigningKey":
     """The same for the practice's own key."""
-    from clinicalc.library.key_files import read_card
-    from clinicalc.library.writing import require_practice_key
+    from clinicalc.operations.signing_keys import look_at_practice_key
 
-    require_practice_key(desk.authority, read_card(Path(key_file)))
+    look_at_practice_key(desk.authority, Path(key_file))
     return take_key(key_file, passphrase_file)
 
 
@@ -93,7 +94,9 @@ def state_after(place: str | None, fingerprint: str) -> "ModelState":
 
 def now() -> datetime:
     """The time of this machine with its zone: a review date ends at midnight here."""
-    return datetime.now().astimezone()
+    from clinicalc.operations import library_reading
+
+    return library_reading.now()
 
 
 def tell(as_json: bool, record: Mapping[str, object], lines: Iterable[str]) -> None:
@@ -130,6 +133,7 @@ def describe_state(state: "ModelState") -> dict[str, object]:
                 for point in approval.decision_points
             ],
             "compared": [{"at": one.at, "by": one.by} for one in approval.compared],
+            "known_by": approval.known_by,
             "by_author": approval.by_author,
         },
         "faults": [{"kind": fault.kind.value, "says": fault.sentence, "stops": fault.stops} for fault in state.faults],

@@ -1,6 +1,7 @@
 """JSON Pointers (RFC 6901) to places in a coefficient file, and the words for what stands there."""
 
 import difflib
+import functools
 import re
 from collections.abc import Iterable
 
@@ -26,7 +27,15 @@ REFUSED_CHARACTERS = re.compile(
 
 def point(base: str, *parts: str | int) -> str:
     """The pointer to a place below `base`: point("/model", "equations", 0) is "/model/equations/0"."""
-    return base + "".join("/" + _shorten(visible(str(part))).replace("~", "~0").replace("/", "~1") for part in parts)
+    return base + "".join([_step(part) if len(part) <= _SHORT else _spell_step(part) for part in map(str, parts)])
+
+
+def _spell_step(part: str) -> str:
+    return "/" + _shorten(visible(part)).replace("~", "~0").replace("/", "~1")
+
+
+_SHORT = 64
+_step = functools.lru_cache(maxsize=4096)(_spell_step)  # a file says the same few names over and over
 
 
 def find_at(root: object, pointer: str) -> object:

@@ -2,7 +2,6 @@
 
 import gc
 import sys
-from functools import partial
 
 from PySide6.QtCore import QSize
 from PySide6.QtWidgets import QApplication
@@ -21,8 +20,7 @@ from clinicalc.gui.text_size import start_application
 from clinicalc.gui.typeface import face, load_typeface
 from clinicalc.gui.window_number import WindowNumber
 from clinicalc.library.machine import uses_library
-from clinicalc.operations.bedside import assess_patient
-from clinicalc.settings import read_settings, write_choices
+from clinicalc.settings import change_settings, read_settings, write_settings
 
 
 def dress(application: QApplication) -> None:
@@ -41,8 +39,10 @@ def run_window(model: Model | None = None, entry: PatientEntry | None = None) ->
     dress(application)
     number = WindowNumber()
     application.aboutToQuit.connect(number.let_go)
-    state = EntryState(partial(assess_patient, level=reading.settings.level))
-    preferences = Preferences(reading.settings, write_choices)
+    state = EntryState()
+    preferences = Preferences(
+        reading.settings, change_settings, read=read_settings, write=write_settings, problems=reading.problems
+    )
     library = ModelLibrary(state) if _uses_library() else None
     window = MainWindow(state, preferences=preferences, library=library, number=number.number)
     ExceptionHook(window.state).install()
@@ -53,7 +53,7 @@ def run_window(model: Model | None = None, entry: PatientEntry | None = None) ->
         window.foot.say(reading.problems[0])
     if library is not None:
         window.sheet.invite("The library is being read", "The models that the practice approved can then be chosen.")
-        after_first_paint(window, library.start)
+        after_first_paint(window, library.start_beside)
     window.show()
     # what there is now stays until the window is closed: no collection, whose pause a key might wait for, looks at it
     gc.freeze()

@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Protocol
 
 from PySide6.QtCore import QObject, Signal
 
+from clinicalc.assessment.choices import DEFAULT_LEVEL
 from clinicalc.assessment.decision import DecisionPoint, points_for
 from clinicalc.assessment.entry import PatientEntry, Typed
 from clinicalc.assessment.model import Model
@@ -33,6 +34,7 @@ class Assess(Protocol):
         practice_points: Sequence[PracticePoint],
         matching_age: bool,
         vetting: Vetting | None,
+        level: float,
     ) -> Assessment: ...
 
 
@@ -63,6 +65,7 @@ class EntryState(QObject):
         self.recalibration: str | None = None
         self.assessment: Assessment | None = None
         self.practice_points: tuple[PracticePoint, ...] = ()
+        self.level = DEFAULT_LEVEL
         self.matching_age = False
 
     @property
@@ -174,6 +177,12 @@ class EntryState(QObject):
             self.practice_points = tuple(points)
             self.reassess()
 
+    def use_level(self, level: float) -> None:
+        """Take another level of the band; the same one again changes nothing."""
+        if level != self.level:
+            self.level = level
+            self.reassess()
+
     def replace_values(self, typed: Mapping[str, Typed], changes: Mapping[str, Typed]) -> None:
         """Take the same values and changes in the form in which the fields show them; no new assessment."""
         self._entry = replace(self._entry, typed=MappingProxyType(dict(typed)), changes=MappingProxyType(dict(changes)))
@@ -208,6 +217,7 @@ class EntryState(QObject):
                 practice_points=self._points_in_force(),
                 matching_age=self.matching_age,
                 vetting=self.vetting,
+                level=self.level,
             )
         except BaseException:
             self.blank("")

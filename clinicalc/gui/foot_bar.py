@@ -8,6 +8,9 @@ from clinicalc.gui.labels import make_button, make_label, make_line, make_rule
 from clinicalc.gui.tokens import SIDE_MARGIN
 from clinicalc.gui.typeface import CAPTION, UNIT
 
+_AT = 3
+"""The place of a message in the row: after "New patient", a gap and the promise."""
+
 
 class FootBar(QWidget):
     """Commands and messages; it does nothing itself."""
@@ -25,7 +28,9 @@ class FootBar(QWidget):
         self.copy.setAccessibleDescription("Key: Ctrl+Shift+C")
         self.print = make_button("P&rint…")
         self.save_pdf = make_button("Sa&ve PDF…", name="primary")
-        row = QHBoxLayout()
+        self._above = QHBoxLayout()
+        self._above.setContentsMargins(SIDE_MARGIN, 8, SIDE_MARGIN, 0)
+        self._row = row = QHBoxLayout()
         row.setContentsMargins(SIDE_MARGIN, 8, SIDE_MARGIN, 8)
         row.setSpacing(10)
         row.addWidget(self.new_patient)
@@ -42,6 +47,7 @@ class FootBar(QWidget):
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(0)
         column.addWidget(make_rule())
+        column.addLayout(self._above)
         column.addLayout(row)
 
     def allow_output(self, allowed: bool) -> None:
@@ -57,7 +63,11 @@ class FootBar(QWidget):
             QAccessible.updateAccessibility(QAccessibleAnnouncementEvent(self, message))
 
     def set_narrow(self, narrow: bool) -> None:
-        """Narrow: the commands, and messages when there are any."""
+        """Narrow: the commands, and messages over them when there are any."""
+        if narrow is not self._is_narrow:
+            before, after = (self._row, self._above) if narrow else (self._above, self._row)
+            before.removeWidget(self.message)
+            after.insertWidget(_AT if after is self._row else 0, self.message, 1)
         self._is_narrow = narrow
         self._program.setVisible(not narrow)
         self._show_message_or_promise()

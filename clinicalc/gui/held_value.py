@@ -47,6 +47,11 @@ def choosable_units(field: NumberField) -> tuple[str, ...]:
     return tuple(found)
 
 
+def first_unit(field: NumberField, preferred: str) -> str:
+    """The unit beside an empty field: the one preferred where this file offers it, else the file's own."""
+    return preferred if preferred in choosable_units(field) else field.unit
+
+
 def hold(field: NumberField, text: str, unit: str) -> HeldValue:
     """What was typed, with the unit chosen beside it; a unit typed after the number goes before the chosen one."""
     reading = read_value(text)

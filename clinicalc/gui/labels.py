@@ -20,7 +20,11 @@ class Label(QLabel):
     _heights: dict[int, int]
 
     def heightForWidth(self, width: int) -> int:
-        """What Qt measures; anew for other words, letters or margins, and once style rules have been looked up."""
+        """What Qt measures; anew for other words, letters or margins, and once style rules have been looked up.
+
+        A layout asks for the room it has, which may be wider than the label may become.
+        """
+        width = min(width, self.maximumWidth())
         polished = self.testAttribute(Qt.WidgetAttribute.WA_WState_Polished)
         asked = (self.text(), self.font(), self.contentsMargins(), self.wordWrap(), polished)
         if asked != self._asked:

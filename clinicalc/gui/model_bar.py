@@ -14,7 +14,8 @@ from clinicalc.gui.labels import make_line
 from clinicalc.gui.model_chooser import ModelChooser
 from clinicalc.gui.tokens import RING, SIDE_MARGIN
 from clinicalc.gui.typeface import CAPTION
-from clinicalc.report.phrases import day_words, vetting_words
+from clinicalc.report.phrases import vetting_words
+from clinicalc.units.days import day_words
 
 _HEIGHT = 57
 _TIGHT_CAPTION = 15

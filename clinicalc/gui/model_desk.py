@@ -47,7 +47,8 @@ class ModelDesk:
         try:
             verb()
         except ClinicalcError as error:
-            words = str(error)
-            self._foot.say(f"{words[:1].upper()}{words[1:]}")
+            from clinicalc.gui.window_words import sentence_of
+
+            self._foot.say(sentence_of(error))
         else:
             self._foot.say(done)

@@ -6,7 +6,6 @@ by a timer. Where it no longer stands behind the model in use, the number goes f
 
 from __future__ import annotations
 
-import gc
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 from datetime import datetime
@@ -14,9 +13,12 @@ from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, QTimer, Signal
 
-from clinicalc.errors import ClinicalcError
+from clinicalc.errors import ClinicalcError, CoefficientFileRefused
+from clinicalc.gui.bedside_reading import PATIENCE, BedsideReading, machine_here, raise_again, time_here
 from clinicalc.gui.entry_state import EntryState
+from clinicalc.gui.errands import Errands
 from clinicalc.gui.exceptions import explain
+from clinicalc.gui.library_sentences import in_window, invite, judge_in_use, say_error
 
 if TYPE_CHECKING:
     from clinicalc.library.machine import Machine
@@ -25,12 +27,6 @@ if TYPE_CHECKING:
 
 EVERY = 30_000
 """Milliseconds between two readings; what is told is "within a minute", a slow share included."""
-_PATIENCE = 2.0
-"""Seconds: nobody can type while a share is waited for, and the copy on this machine serves meanwhile."""
-_OTHER_CHOICES = (
-    "The practice has approved this model anew, with another recalibration or other decision points. Choose it again,"
-    " or begin a new patient; it then answers as it is approved now."
-)
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,16 +35,6 @@ class OfferedModel:
 
     fingerprint: str
     title: str
-
-
-def _this_machine() -> Machine:
-    from clinicalc.library.machine import this_machine
-
-    return this_machine()
-
-
-def _now() -> datetime:
-    return datetime.now().astimezone()
 
 
 class ModelLibrary(QObject):
@@ -64,14 +50,17 @@ class ModelLibrary(QObject):
     def __init__(
         self,
         state: EntryState,
-        machine: Callable[[], Machine] = _this_machine,
-        clock: Callable[[], datetime] = _now,
+        machine: Callable[[], Machine] = machine_here,
+        clock: Callable[[], datetime] = time_here,
     ) -> None:
         super().__init__()
-        self._state, self._machine, self._clock = state, machine, clock
+        self._state = state
+        self.reading = BedsideReading(machine, clock)
         self._opened: OpenedLibrary | None = None
         self._trouble = ""
         self._last = ""
+        self.readings = 0
+        self._errands = Errands(self)
         self._timer = QTimer(self)
         self._timer.setInterval(EVERY)
         self._timer.timeout.connect(self.check)
@@ -93,29 +82,77 @@ class ModelLibrary(QObject):
         approved = self._state.approved
         return "" if approved is None else f"{approved.model.content.title}, {approved.model.content.version}"
 
+    @property
+    def machine(self) -> Callable[[], Machine]:
+        """Which machine this is, asked anew each time."""
+        return self.reading.machine
+
+    @property
+    def clock(self) -> Callable[[], datetime]:
+        """What time it is here."""
+        return self.reading.clock
+
     def start(self) -> None:
         """Read the library for the first time; a model is chosen for somebody only where it is the only one in use."""
         self.read()
         if self._state.model is None:
             self._choose_only()
 
+    def start_beside(self) -> None:
+        """The same with the first reading in a thread beside the window, which nobody has to wait for.
+
+        It takes seconds where this machine never read a large library, or where a share does not answer.
+        """
+        readings = self.readings
+
+        def take(answer: Callable[[], OpenedLibrary]) -> None:
+            if self.readings == readings:  # otherwise somebody has asked since, and that is newer
+                self._take_in(answer)
+                self.reading.rest_unless(self._opened is not None and self._opened.reachable)
+            if self._state.model is None:
+                self._choose_only()
+
+        if not self._errands.run("The library is being read", self.reading.read_beside, take, raise_again):
+            self.start()
+            return
+        self.reading.rest()  # should the share not answer, a thread outlasts the errand
+
     def check(self) -> None:
         """Read again what concerns the model in use, as the timer does and every copy, print and PDF."""
         if self._state.approved is not None:
             self.read(self._state.approved.model.fingerprint)
+
+    def leave(self) -> None:
+        """The window closes: nothing is read any more, and a reading that still goes on is waited for, but not long."""
+        self._timer.stop()
+        self._errands.leave()
+        self._errands.wait(PATIENCE)
+        self.reading.rest_unless(True)  # nobody asks again, and the window may outlive its closing for a while
+
+    def follow(self) -> None:
+        """Something was decided in the library: read again, also where no model is chosen because none was in use."""
+        if self._state.model is None:
+            self.start_beside()
+        else:
+            self.check()
 
     def read(self, fingerprint: str = "") -> None:
         """Read all again, or what concerns one model; the number goes where the library no longer stands behind it.
 
         What is wrong with the library is said; any other exception blanks before it goes on.
         """
+        self._take_in(lambda: self.reading.read(fingerprint))
+
+    def _take_in(self, answer: Callable[[], OpenedLibrary]) -> None:
+        """What a reading gave or raised, in the window's own thread."""
+        self.readings += 1
         try:
-            self._opened, self._trouble = self._open(fingerprint), ""
+            self._opened, self._trouble = answer(), ""
             self._settle()
         except ClinicalcError as error:
-            self._opened, self._trouble = None, str(error)
+            self._opened, self._trouble = None, in_window(str(error))
             if self._state.approved is not None:
-                self._state.withhold(_sentence(error))
+                self._state.withhold(say_error(error))
         except BaseException as error:
             self._opened, self._trouble = None, explain(error)
             if self._state.approved is not None:
@@ -126,7 +163,7 @@ class ModelLibrary(QObject):
         """The models in use for a menu, read afresh, by title and version."""
         self.read()
         if self._state.model is None:
-            self.told.emit(*self._invite())
+            self.told.emit(*invite(self._opened, self._trouble))
         return _by_title(self.in_use)
 
     def held(self) -> tuple[OfferedModel, ...]:
@@ -141,14 +178,14 @@ class ModelLibrary(QObject):
         from clinicalc.library.holds import hold
 
         if self._state.approved is not None:
-            hold(self._machine(), self._state.approved.model.fingerprint, why, self._clock())
+            hold(self.machine(), self._state.approved.model.fingerprint, why, self.clock())
             self.check()
 
     def release(self, fingerprint: str) -> None:
         """End a hold on this machine. Raises LibraryError or FileNotWritten where it stays."""
         from clinicalc.library.holds import release
 
-        release(self._machine(), fingerprint, self._clock())
+        release(self.machine(), fingerprint, self.clock())
         self.check()
 
     def choose(self, fingerprint: str) -> None:
@@ -157,7 +194,10 @@ class ModelLibrary(QObject):
         try:
             self._take(fingerprint)
         except ClinicalcError as error:
-            self.refused.emit(self._name(fingerprint), error)
+            from clinicalc.gui.window_words import say_in_window
+
+            said = error if isinstance(error, CoefficientFileRefused) else say_in_window(error)
+            self.refused.emit(self._name(fingerprint), said)
 
     def begin_new_patient(self) -> None:
         """Forget everything typed, leave a file that was tried out, and read again what is approved."""
@@ -173,7 +213,7 @@ class ModelLibrary(QObject):
         except ClinicalcError as error:
             if self._state.approved is None:
                 self._state.leave_model()
-                self.told.emit("No number", _sentence(error))
+                self.told.emit("No number", say_error(error))
 
     def _choose_only(self) -> None:
         """The only model in use, or none and the word to choose one."""
@@ -181,79 +221,27 @@ class ModelLibrary(QObject):
             self.choose(self.in_use[0].fingerprint)
         if self._state.approved is None:
             self._state.leave_model()
-            self.told.emit(*self._invite())
+            self.told.emit(*invite(self._opened, self._trouble))
 
     def _take(self, fingerprint: str) -> None:
         from clinicalc.operations.approved import take_approved
 
         if self._opened is None:
             raise ClinicalcError(self._trouble)
-        approved = take_approved(self._about(self._opened, fingerprint), fingerprint, self._clock())
+        approved = take_approved(self.reading.about(self._opened, fingerprint), fingerprint, self.clock())
         self._last = fingerprint
         self.chosen.emit(approved)
 
     def _settle(self) -> None:
         """What was just read, for the model in use."""
-        from clinicalc.library.bedside import vetting_of
-        from clinicalc.library.standing import Standing
-        from clinicalc.operations.library_words import say_standing
-
         approved, opened = self._state.approved, self._opened
         if approved is None or opened is None:
             return
-        fingerprint = approved.model.fingerprint
-        opened = self._about(opened, fingerprint)
-        state = opened.state(fingerprint)
-        if state is None:
-            self._state.withhold("This model is no longer in the practice’s library.")
-        elif state.standing is not Standing.IN_USE or state.approval is None:
-            of_all = [fault.sentence for fault in opened.faults if fault.stops]
-            self._state.withhold(state.reason if state.reason in of_all else say_standing(state))
+        judged = judge_in_use(approved, self.reading.about(opened, approved.model.fingerprint))
+        if isinstance(judged, str):
+            self._state.withhold(judged)
         else:
-            vetting = vetting_of(opened, fingerprint)
-            before, now = approved.vetting, (vetting.recalibration, vetting.compared, state.approval.decision_points)
-            if (before.recalibration, before.compared, approved.decision_points) != now:
-                self._state.withhold(_OTHER_CHOICES)
-            else:
-                self._state.vouch(vetting)
-
-    def _open(self, fingerprint: str = "") -> OpenedLibrary:
-        """The library as it stands now, for all models that may be chosen, or for one.
-
-        A share is asked in a thread of its own, which may outlast its answer; no widget may be collected there.
-        """
-        from clinicalc.library.opening import open_for_bedside, open_library
-
-        machine, now = self._machine(), self._clock()
-        is_reached = False
-        gc.disable()
-        try:
-            if fingerprint:
-                opened = open_library(machine, now, only=[fingerprint], patience=_PATIENCE)
-            else:
-                opened = open_for_bedside(machine, now, patience=_PATIENCE)
-            is_reached = opened.reachable
-            return opened
-        finally:
-            if is_reached:
-                gc.enable()
-            else:
-                gc.collect()  # a thread may still be waiting: by hand until the library answers again
-
-    def _about(self, opened: OpenedLibrary, fingerprint: str) -> OpenedLibrary:
-        """What was read, or a reading of this one model where it was left out because it has long not been in use."""
-        return opened if opened.state(fingerprint) is not None else self._open(fingerprint)
-
-    def _invite(self) -> tuple[str, str]:
-        """Why nothing is chosen, and what to do."""
-        if self._opened is None:
-            return "The library cannot be used", _capital(self._trouble)
-        stop = next((fault.sentence for fault in self._opened.faults if fault.stops), "")
-        count = len(self.in_use)
-        if count:
-            return "No model is chosen", f"Choose one of the {count} models in use, in the line at the top."
-        why = stop or "The practice’s library holds none that is approved for use now. An approver of the practice can."
-        return "No model is in use", why
+            self._state.vouch(judged)
 
     def _name(self, fingerprint: str) -> str:
         state = None if self._opened is None else self._opened.state(fingerprint)
@@ -263,11 +251,3 @@ class ModelLibrary(QObject):
 def _by_title(states: Iterable[ModelState]) -> tuple[OfferedModel, ...]:
     models = [OfferedModel(state.fingerprint, f"{state.title}, {state.version}") for state in states]
     return tuple(sorted(models, key=lambda model: model.title.casefold()))
-
-
-def _sentence(error: ClinicalcError) -> str:
-    return _capital(str(error))
-
-
-def _capital(words: str) -> str:
-    return f"{words[:1].upper()}{words[1:]}"

@@ -20,6 +20,7 @@ from clinicalc.gui.held_value import (
     HeldValue,
     choosable_units,
     digits_on_screen,
+    first_unit,
     hold,
     hold_entry,
     read_as,
@@ -44,13 +45,15 @@ class NumberRow(FieldRow):
     comparison, the range or words.
     """
 
-    def __init__(self, field: NumberField, marked_label: str, *, changeable: bool = False) -> None:
+    def __init__(self, field: NumberField, marked_label: str, *, changeable: bool = False, preferred: str = "") -> None:
+        """`preferred`: the unit in which the field begins while it is empty, where it is one of the field's."""
         super().__init__(field.id, field.meaning, changeable=changeable)
         self._field = field
-        self._held: HeldValue = hold(field, "", field.unit)
+        self._first_unit = first_unit(field, preferred)
+        self._held: HeldValue = hold(field, "", self._first_unit)
         self._offer = ""
         self._line: ValueLine | None = None
-        self.frame = ValueFrame(choosable_units(field), field.unit)
+        self.frame = ValueFrame(choosable_units(field), self._first_unit)
         self.edit = self.frame.edit
         self.edit.setAccessibleName(field.label)
         self.label = make_field_label(marked_label, field.label, self.edit)
@@ -74,16 +77,32 @@ class NumberRow(FieldRow):
         return self._held
 
     def fill(self, typed: Typed | None) -> Typed | None:
-        """Show a value or none in its unit (the file's own for none)."""
+        """Show a value in its unit, or none in the one that the practice prefers, else in the file's own."""
         if self.stated is not None:
             typed = self.stated.fill(typed)
         open_ = typed is not None and self._says_open(typed.text)
-        self._held = hold_entry(self._field, None if open_ else typed)
+        if typed is None or open_:
+            self._held = hold(self._field, "", self._first_unit)
+        else:
+            self._held = hold_entry(self._field, typed)
         self._show_open(open_)
         self._part_from_stated()
         self._show_held()
         self._keep_beside()
         return self._as_typed()
+
+    def prefer(self, unit: str) -> None:
+        """Another unit is preferred, "" for none: an empty field takes it at once, one with a value keeps its own."""
+        first = first_unit(self._field, unit)
+        if first == self._first_unit:
+            return
+        self._first_unit = first
+        changed = self._change is not None and self._change.typed is not None
+        if not self._held.text and not changed:
+            self._held = hold(self._field, "", first)
+            self._show_unit()
+            self._keep_beside()
+            self._settle_side()
 
     def fill_change(self, typed: Typed | None) -> Typed | None:
         """Show a changed value or none, in the unit of the patient's own."""

@@ -28,6 +28,7 @@ class ShowPreview(Protocol):
         still_current: Callable[[], bool],
         *,
         practice: str,
+        letterhead: tuple[str, ...],
         paper: Paper,
         explain: Callable[[QWidget | None, str], None],
         read_again: Callable[[], None],
@@ -40,6 +41,7 @@ def show_print_preview(
     still_current: Callable[[], bool],
     *,
     practice: str,
+    letterhead: tuple[str, ...],
     paper: Paper,
     explain: Callable[[QWidget | None, str], None],
     read_again: Callable[[], None],
@@ -53,6 +55,7 @@ def show_print_preview(
             assessment,
             still_current,
             practice=practice,
+            letterhead=letterhead,
             paper=paper,
             explain=explain,
             read_again=read_again,
@@ -101,6 +104,7 @@ class Outputs:
                 assessment,
                 lambda: self._may_print(assessment),
                 practice=settings.practice,
+                letterhead=settings.letterhead,
                 paper=settings.paper,
                 explain=lambda _, sentence: self._foot.say(f"{sentence[:1].upper()}{sentence[1:]}"),
                 read_again=self._read_again,
@@ -126,7 +130,13 @@ class Outputs:
             return
         settings = self._preferences.settings
         try:
-            save_pdf(path, assessment, practice=settings.practice, paper=settings.paper)
+            save_pdf(
+                path,
+                assessment,
+                practice=settings.practice,
+                paper=settings.paper,
+                letterhead=settings.letterhead,
+            )
         except ClinicalcError as error:
             self._foot.say(f"Not saved: {error}")
             return

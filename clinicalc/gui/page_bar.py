@@ -1,18 +1,17 @@
-"""The bar at the top: the mark, the page and its number among several windows, the practice, menu and guide."""
+"""The bar at the top: the mark, the pages, the practice, menu and guide."""
 
-from PySide6.QtCore import QPoint, QRectF, QSize, Qt, Signal
-from PySide6.QtGui import QAction, QActionGroup, QColor, QPainter, QPaintEvent
+from PySide6.QtCore import QPoint, QSize, Signal
+from PySide6.QtGui import QAction, QActionGroup, QColor, QKeySequence, QPainter, QPaintEvent
 from PySide6.QtWidgets import QHBoxLayout, QMenu, QWidget
 
 from clinicalc.gui import theme
 from clinicalc.gui.flat_button import FlatButton
 from clinicalc.gui.labels import make_line
+from clinicalc.gui.page_tabs import BAR_HEIGHT, PAD, PageTabs
 from clinicalc.gui.tokens import SIDE_MARGIN
-from clinicalc.gui.typeface import UNIT, VALUE, face
+from clinicalc.gui.typeface import UNIT, face
 from clinicalc.settings import ThemeChoice
 
-_HEIGHT = 45
-"""With the rule under it, 46."""
 _TICKS = ((0, 4), (5, 3), (10, 8), (15, 3), (20, 5))
 """Place and half height of the ticks of the mark; the tall one is this patient's."""
 _THEMES = {ThemeChoice.SYSTEM: "As the &system", ThemeChoice.LIGHT: "&Light", ThemeChoice.DARK: "&Dark"}
@@ -36,37 +35,6 @@ class TickMark(QWidget):
         painter.end()
 
 
-class PageTab(QWidget):
-    """The page on screen, underlined; one of one, so not a button."""
-
-    def __init__(self) -> None:
-        super().__init__()
-        self._words = "Patient"
-        self._fit()
-
-    def show_number(self, number: int) -> None:
-        """Tell this window from others of the program; the first has no number."""
-        self._words = page_name(number)
-        self._fit()
-
-    def paintEvent(self, event: QPaintEvent) -> None:
-        """The words and a 3 px line under them."""
-        painter = QPainter(self)
-        painter.setFont(face(VALUE, semibold=True))
-        painter.setPen(QColor(theme.tokens().ink))
-        painter.drawText(self.rect(), Qt.AlignmentFlag.AlignCenter | Qt.TextFlag.TextSingleLine, self._words)
-        painter.fillRect(QRectF(0, self.height() - 3, self.width(), 3), QColor(theme.tokens().accent))
-        painter.end()
-
-    def _fit(self) -> None:
-        self.setAccessibleName(self._words)
-        self.ensurePolished()
-        line = make_line(self._words, VALUE, semibold=True)
-        self.setFixedSize(line.fontMetrics().horizontalAdvance(self._words) + 2, _HEIGHT)
-        line.deleteLater()
-        self.update()
-
-
 class PageBar(QWidget):
     """Tells what was chosen in its menu; it changes nothing itself."""
 
@@ -76,8 +44,8 @@ class PageBar(QWidget):
     def __init__(self, choice: ThemeChoice) -> None:
         super().__init__()
         self.setObjectName("ground")
-        self.setFixedHeight(_HEIGHT)
-        self.tab = PageTab()
+        self.setFixedHeight(BAR_HEIGHT)
+        self.tabs = PageTabs()
         self.practice = make_line("", UNIT)
         self.menu_button = FlatButton("Menu", "F10")
         self.guide = FlatButton("Guide", "F1")
@@ -86,8 +54,8 @@ class PageBar(QWidget):
         row.setContentsMargins(SIDE_MARGIN, 0, SIDE_MARGIN - 3, 0)
         row.setSpacing(0)
         row.addWidget(TickMark())
-        row.addSpacing(22)
-        row.addWidget(self.tab)
+        row.addSpacing(22 - PAD)
+        row.addWidget(self.tabs)
         row.addStretch(1)
         row.addWidget(self.practice)
         row.addSpacing(14)
@@ -100,6 +68,11 @@ class PageBar(QWidget):
         """Show the menu under its button, with its first entry chosen, so that the arrow keys go on from there."""
         self.menu.setActiveAction(self.menu.actions()[0])
         self.menu.popup(self.menu_button.mapToGlobal(QPoint(0, self.menu_button.height())))
+
+    def show_theme(self, choice: ThemeChoice) -> None:
+        """Mark another theme as the chosen one, without telling anybody."""
+        self.theme = choice
+        self.themes.actions()[list(_THEMES).index(choice)].setChecked(True)
 
     def _make_menu(self, choice: ThemeChoice) -> None:
         self.menu = QMenu("Menu", self)
@@ -116,10 +89,9 @@ class PageBar(QWidget):
             action.setChecked(option is choice)
             action.triggered.connect(lambda _=False, option=option: self.theme_chosen.emit(option))
             group.addAction(action)
+        self.theme = choice
+        self.settings = QAction("&Settings…", self.menu)
+        self.settings.setShortcut(QKeySequence("Ctrl+,"))
+        self.menu.addAction(self.settings)
         self.about = QAction("&About", self.menu)
         self.menu.addAction(self.about)
-
-
-def page_name(number: int) -> str:
-    """What the window is called: "Patient", and "Patient 2" for the second that is open."""
-    return "Patient" if number == 1 else f"Patient {number}"

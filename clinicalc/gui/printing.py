@@ -91,13 +91,14 @@ class PrintJob:
         still_current: Callable[[], bool],
         *,
         practice: str = "",
+        letterhead: tuple[str, ...] = (),
         choose: Callable[[QPrinter, QWidget | None], bool] = choose_printer,
         read_again: Callable[[], None] = _do_nothing,
     ) -> None:
         self.printed_at = datetime.now().astimezone()
         self.name = suggest_pdf_name(assessment).removesuffix(".pdf")
         self.offered = offered_parts(assessment)
-        self._assessment, self._practice = assessment, practice
+        self._assessment, self._practice, self._letterhead = assessment, practice, letterhead
         self._still_current, self._choose, self._read_again = still_current, choose, read_again
         self._documents: dict[tuple[Paper, PrintParts], Document] = {}
 
@@ -119,6 +120,7 @@ class PrintJob:
                 parts=parts,
                 paper=paper,
                 printed_at=self.printed_at,
+                letterhead=self._letterhead,
             )
         return self._documents[wanted]
 
@@ -143,6 +145,7 @@ def preview(
     still_current: Callable[[], bool],
     *,
     practice: str = "",
+    letterhead: tuple[str, ...] = (),
     paper: Paper = Paper.A4,
     parts: PrintParts = USUAL_PARTS,
     explain: Callable[[QWidget | None, str], None] | None = None,
@@ -154,7 +157,7 @@ def preview(
     painting. `explain` shows a sentence, in a message box where it is left out. `read_again` is called before anything
     goes to a printer. Raises PrintRefused for a text that could only be printed wrongly.
     """
-    job = PrintJob(assessment, still_current, practice=practice, read_again=read_again)
+    job = PrintJob(assessment, still_current, practice=practice, letterhead=letterhead, read_again=read_again)
     job.lay_out(paper, parts)  # refused here, the preview does not even open
     refusal = _show(parent, job, paper, parts)
     if refusal:

@@ -266,7 +266,11 @@ class ResultSheet(QWidget):
         else:
             points = self._state.decision_points
             lanes = lanes_of(model, points)
-            known = measure_nothing(model, points) if assessment is None else measure_assessment(assessment, points)
+            known = (
+                measure_nothing(model, points, self._state.level)
+                if assessment is None
+                else measure_assessment(assessment, points)
+            )
             self.lanes.show_measured(known, "" if self._state.span is None else self._state.span.words, lanes)
         self.words.show_words(model, lanes, assessment)
 

@@ -11,11 +11,16 @@ from clinicalc.gui.rows import FieldRow
 from clinicalc.gui.worked_out_row import WorkedOutRow
 
 
-def make_row(field: Field, label: str, *, changeable: bool) -> FieldRow:
-    """A row for a field; `label` may hold one access mark, `changeable` gives it a second field for a comparison."""
+def make_row(field: Field, label: str, *, changeable: bool, preferred: str = "") -> FieldRow:
+    """A row for a field; `label` may hold one access mark, `changeable` gives it a second field for a comparison.
+
+    `preferred` is the unit in which it begins while it is empty, "" for the file's own.
+    """
     if not isinstance(field, NumberField):
         return QuestionRow(field, label, changeable=changeable)
-    return NumberRow(field, label, changeable=changeable) if field.may_be_typed else WorkedOutRow(field)
+    if not field.may_be_typed:
+        return WorkedOutRow(field)
+    return NumberRow(field, label, changeable=changeable, preferred=preferred)
 
 
 def has_no_letter(field: Field) -> bool:

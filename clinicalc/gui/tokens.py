@@ -119,6 +119,7 @@ def _words_and_panes(t: Tokens) -> str:
     QLabel[ink="soft"] {{ color: {t.soft}; }}
     QLabel[ink="accent"] {{ color: {t.accent}; }}
     QLabel#plate {{ background: {t.sheet}; padding: 0 10px; }}
+    QFrame#stop {{ border: 2px solid {t.ink}; border-radius: 3px; background: transparent; }}
     QFrame#rule {{ background: {t.rule}; border: none; }}
     QLineEdit {{ border: none; background: transparent; color: {t.ink}; placeholder-text-color: {t.soft}; }}
     QLineEdit[ink="soft"] {{ color: {t.soft}; }}

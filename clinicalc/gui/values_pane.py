@@ -21,6 +21,7 @@ from clinicalc.gui.scroller import Scroller
 from clinicalc.gui.tokens import COLUMN_GAP, LABEL_WIDTH, PANE_WIDTH, PANE_WIDTH_COMPACT, RING, SIDE_MARGIN
 from clinicalc.gui.values_heading import ValuesHeading
 from clinicalc.gui.wording import numbered_findings
+from clinicalc.settings import PreferredUnit
 
 _ABOVE_AND_BELOW = 12
 
@@ -47,6 +48,7 @@ class ValuesPane(Scroller):
         self._stops: tuple[QWidget, ...] = ()
         self._headings: list[ValuesHeading] = []
         self._ranged: ValuesHeading | None = None
+        self._units: tuple[PreferredUnit, ...] = ()
         self.rows: dict[str, FieldRow] = {}
         self.label_row: LabelRow | None = None
         self.setWidgetResizable(True)
@@ -81,6 +83,17 @@ class ValuesPane(Scroller):
         if stop is not None:
             stop.setFocus(Qt.FocusReason.ShortcutFocusReason)
             self.ensureWidgetVisible(stop)
+
+    def prefer_units(self, units: tuple[PreferredUnit, ...]) -> None:
+        """The units in which empty fields begin; what is typed keeps its own."""
+        if units == self._units or self._model is None:
+            self._units = units
+            return
+        self._units = units
+        for field in self._model.fields:
+            row = self.rows.get(field.id)
+            if isinstance(row, NumberRow):
+                row.prefer(self._preferred(field))
 
     def show_changes(self, shown: bool) -> None:
         """Show the second fields of a comparison, in which values can be changed, or hide them."""
@@ -207,8 +220,12 @@ class ValuesPane(Scroller):
         self._fit()
         self.rebuilt.emit()
 
+    def _preferred(self, field: Field) -> str:
+        quantity = field.quantity.id if isinstance(field, NumberField) else ""
+        return next((one.unit for one in self._units if one.quantity == quantity), "")
+
     def _add_row(self, field: Field, label: str, *, changeable: bool) -> FieldRow:
-        row = make_row(field, label, changeable=changeable)
+        row = make_row(field, label, changeable=changeable, preferred=self._preferred(field))
         row.typed.connect(self._state.type_value)
         row.changed.connect(self._state.type_change)
         row.both_typed.connect(self._state.type_both)

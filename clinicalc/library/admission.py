@@ -17,6 +17,7 @@ from clinicalc.library.ordering import Chain, named
 from clinicalc.library.records import Approved, Approver, Commented, Installed, Withdrawn
 from clinicalc.library.sealing import is_signed_by
 from clinicalc.library.standing import Authority, Fault, FaultKind, SealedRecord
+from clinicalc.units.days import stated_day
 
 REMOVE = "Find out who put this file there, and take it out of the library’s folder."
 RESTORE = (
@@ -92,7 +93,7 @@ class Registrar:
             return None
         sentence = (
             f"Record missing: {absent}. It is about the library and says who may approve. {named(sealed)} follows it. "
-            "Fetch it from another copy of the library."
+            "Fetch the file whose name ends in these digits from another copy of the library."
         )
         return Fault(FaultKind.MISSING_RECORD, about, sentence, absent)
 
@@ -111,8 +112,9 @@ class Registrar:
         if revocation is None:
             return None
         rest = (
-            f"does not count: its key was revoked on {revocation.record.written[:10]} ({revocation.digest[:12]}…), and "
-            "the revocation does not name it as still valid. If it is right, another approver approves it anew."
+            f"does not count: its key was revoked on {stated_day(revocation.record.written)} "
+            f"({revocation.digest[:12]}…), and the revocation does not name it as still valid. "
+            "If it is right, another approver approves it anew."
         )
         return void(FaultKind.REVOKED_SIGNER, sealed.record.about, sealed, rest, stops=False)
 

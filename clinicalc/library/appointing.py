@@ -24,7 +24,11 @@ def appoint(desk: Desk, key: SigningKey, name: str, role: str, card: KeyCard) ->
 
     Raises LibraryError for the practice's own key, one that was revoked, and one that is somebody's already.
     """
-    authority = desk.authority
+    return sign_as_practice(desk, key, settle_appointment(desk.authority, name, role, card))
+
+
+def settle_appointment(authority: Authority, name: str, role: str, card: KeyCard) -> Approvers:
+    """The list with one person more. Raises as `appoint` does."""
     grouped = group_fingerprint(card.id, 3)
     if card.id == authority.practice_key:
         raise LibraryError(
@@ -40,7 +44,7 @@ def appoint(desk: Desk, key: SigningKey, name: str, role: str, card: KeyCard) ->
             do="Appoint a person with a key of their own, or dismiss that one first.",
         )
     approver = Approver(check_label(name, "name"), check_label(role, "role"), card.public)
-    return sign_as_practice(desk, key, Approvers((*authority.approvers, approver)))
+    return Approvers((*authority.approvers, approver))
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,7 +100,12 @@ def revoke_key(
     its whole id; the library then gives nothing any more. Raises LibraryError where no one key of this library is
     meant, or one that was revoked already.
     """
-    authority = desk.authority
+    statement = settle_revocation(desk.authority, id, reason, still_valid)
+    return statement.key, sign_as_practice(desk, key, statement)
+
+
+def settle_revocation(authority: Authority, id: str, reason: str, still_valid: tuple[str, ...] = ()) -> KeyRevoked:
+    """What would be revoked, by its whole id. Raises as `revoke_key` does."""
     known = {*_ever_approvers(authority), authority.practice_key}
     told = "".join(id.split()).lower()
     found = sorted(other for other in known if len(told) >= LEAST_DIGITS and other.startswith(told))
@@ -112,19 +121,24 @@ def revoke_key(
         )
     if found[0] in revoked_keys(authority):
         raise LibraryError(f"the key {group_fingerprint(found[0], 3)} was revoked already.")
-    return found[0], sign_as_practice(desk, key, KeyRevoked(found[0], check_text(reason, "reason"), still_valid))
+    return KeyRevoked(found[0], check_text(reason, "reason"), still_valid)
 
 
 def change_policy(desk: Desk, key: SigningKey, policy: Policy, reason: str) -> SealedRecord:
-    """Another policy from here on. Raises LibraryError where it is the one in force."""
-    if policy == desk.authority.policy:
+    """Another policy from here on. Raises LibraryError where it is the one in force, UsageError for what cannot be."""
+    return sign_as_practice(desk, key, settle_policy(desk.authority, policy, reason))
+
+
+def settle_policy(authority: Authority, policy: Policy, reason: str) -> PolicyChanged:
+    """What would be changed. Raises as `change_policy` does."""
+    if policy == authority.policy:
         raise LibraryError("that is the policy in force already; nothing was written.")
     if not 0 <= policy.offline_hours <= 720:
         raise UsageError(
             f"{policy.offline_hours} hours is not possible; a copy serves for 0 to 720 hours.",
             do="Give the hours for which a machine may work without the library.",
         )
-    return sign_as_practice(desk, key, PolicyChanged(policy, check_text(reason, "reason")))
+    return PolicyChanged(policy, check_text(reason, "reason"))
 
 
 def revoked_keys(authority: Authority) -> frozenset[str]:

@@ -2,6 +2,7 @@
 
 from datetime import date
 
+from msgspec import UNSET, UnsetType
 from msgspec.structs import replace
 
 from clinicalc.coefficients.fingerprint import group_fingerprint
@@ -13,8 +14,8 @@ from clinicalc.library.cards import ID_DIGITS, compare_id
 from clinicalc.library.choices import Choices, check_points, check_recalibration, check_review, settle_comparisons
 from clinicalc.library.file_signatures import FileSignature, Worth, weigh_signatures
 from clinicalc.library.installing import installations, installers
-from clinicalc.library.keys import SigningKey
-from clinicalc.library.records import Approved
+from clinicalc.library.keys import KeyCard, SigningKey
+from clinicalc.library.records import Approved, KnownBy
 from clinicalc.library.standing import Approval, ModelState, SealedRecord, Standing
 from clinicalc.library.trust_store import TrustStore
 from clinicalc.library.writing import Desk, require_approver, require_sound, sign_as_approver
@@ -30,16 +31,23 @@ def approve(
     is required or not offered, the review date is not ahead, or the approver is the file's author and the policy does
     not allow that.
     """
+    statement = settle_by(desk, state, read, key, choices, trust)
+    return sign_as_approver(desk, key, statement, state.fingerprint, state.heads)
+
+
+def settle_by(
+    desk: Desk, state: ModelState, read: ReadFile, key: SigningKey | KeyCard, choices: Choices, trust: TrustStore
+) -> Approved:
+    """What the owner of a key would approve; its card is enough. Raises as `approve` does."""
     require_approver(desk.authority, key)
     settled = settle(desk, state, read, choices, trust)
-    statement = replace(settled, by_author=_settle_author(desk, state, read, key, trust))
-    return sign_as_approver(desk, key, statement, state.fingerprint, state.heads)
+    return replace(settled, by_author=_settle_author(desk, state, read, key, trust))
 
 
 def settle(desk: Desk, state: ModelState, read: ReadFile, choices: Choices, trust: TrustStore) -> Approved:
     """What would be approved, checked in everything for which no key is needed. Raises as `approve` does."""
     require_sound(state)
-    _require_known_bytes(state, read, choices.fingerprint, trust)
+    known_by = _require_known_bytes(state, read, choices.fingerprint, trust)
     content = read.content.model
     return Approved(
         reason=check_text(choices.reason, "reason"),
@@ -48,6 +56,7 @@ def settle(desk: Desk, state: ModelState, read: ReadFile, choices: Choices, trus
         decision_points=check_points(content, choices.decision_points),
         compared=settle_comparisons(content.unconfirmed, choices.compared),
         by_author=False,
+        known_by=known_by,
     )
 
 
@@ -60,28 +69,47 @@ def extend(
     *,
     reason: str,
     review_until: date,
+    typed: str = "",
 ) -> SealedRecord:
     """The approval in force goes on with the same choices until a later date.
 
-    Raises LibraryError where none is in force, and UsageError for a date that is not later.
+    `typed`: the fingerprint as it was read aloud, which has to agree where it is given. Raises LibraryError where no
+    approval is in force, and UsageError for a date that is not later.
     """
+    statement = settle_extension(desk, state, read, key, trust, reason=reason, review_until=review_until, typed=typed)
+    return sign_as_approver(desk, key, statement, state.fingerprint, state.heads)
+
+
+def settle_extension(
+    desk: Desk,
+    state: ModelState,
+    read: ReadFile,
+    key: SigningKey | KeyCard,
+    trust: TrustStore,
+    *,
+    reason: str,
+    review_until: date,
+    typed: str = "",
+) -> Approved:
+    """What the owner of a key would extend; its card is enough. Raises as `extend` does."""
     require_approver(desk.authority, key)
     require_sound(state)
     approval = approval_in_force(state)
+    _require_same_bytes(state, typed)
     if review_until <= approval.review_until:
         raise UsageError(
             f"{review_until} is not later than {approval.review_until}, until which it is approved already.",
             do="Give a later date, or approve it anew with other choices.",
         )
-    statement = Approved(
+    return Approved(
         reason=check_text(reason, "reason"),
         review_until=check_review(review_until, desk.now.date()).isoformat(),
         recalibration=approval.recalibration,
         decision_points=approval.decision_points,
         compared=approval.compared,
         by_author=_settle_author(desk, state, read, key, trust),
+        known_by=_known_again(state, read, typed, trust, approval),
     )
-    return sign_as_approver(desk, key, statement, state.fingerprint, state.heads)
 
 
 def approval_in_force(state: ModelState) -> Approval:
@@ -96,7 +124,8 @@ def approval_in_force(state: ModelState) -> Approval:
     )
 
 
-def _require_known_bytes(state: ModelState, read: ReadFile, typed: str, trust: TrustStore) -> None:
+def _require_same_bytes(state: ModelState, typed: str) -> None:
+    """Nothing where no fingerprint was typed, or the model's own."""
     if typed.strip() and not (found := compare_id(typed, state.fingerprint)).whole:
         raise LibraryError(
             f"the fingerprint that was typed is not that of this file: {found.digits} of its {ID_DIGITS} digits agree,"
@@ -105,9 +134,16 @@ def _require_known_bytes(state: ModelState, read: ReadFile, typed: str, trust: T
             do="Have all of it read to you again by whoever published the file. If it differs again, this is another"
             " file: do not approve it.",
         )
+
+
+def _require_known_bytes(state: ModelState, read: ReadFile, typed: str, trust: TrustStore) -> KnownBy:
+    _require_same_bytes(state, typed)
     signatures = weigh_signatures(read, trust)
-    if typed.strip() or any(signature.worth is Worth.TRUSTED for signature in signatures):
-        return
+    is_signed = any(signature.worth is Worth.TRUSTED for signature in signatures)
+    if typed.strip():
+        return "fingerprint_and_signature" if is_signed else "fingerprint"
+    if is_signed:
+        return "signature"
     raise LibraryError(
         "no publisher trusted on this machine signed this file.",
         where=f"{state.id} {state.version}",
@@ -115,6 +151,15 @@ def _require_known_bytes(state: ModelState, read: ReadFile, typed: str, trust: T
         do="Have its whole fingerprint read to you by whoever published it and type it with --fingerprint, or trust"
         " the publisher first: clinicalc trust add.",
     )
+
+
+def _known_again(
+    state: ModelState, read: ReadFile, typed: str, trust: TrustStore, approval: Approval
+) -> KnownBy | UnsetType:
+    """By what the file was known: anew where its fingerprint was typed, else as in the approval that goes on."""
+    if typed.strip():
+        return _require_known_bytes(state, read, typed, trust)
+    return approval.known_by or UNSET
 
 
 def say_signature(signature: FileSignature) -> str:
@@ -130,7 +175,7 @@ def say_signature(signature: FileSignature) -> str:
     return f"A signature that does not count: {signature.why}"
 
 
-def _settle_author(desk: Desk, state: ModelState, read: ReadFile, key: SigningKey, trust: TrustStore) -> bool:
+def _settle_author(desk: Desk, state: ModelState, read: ReadFile, key: SigningKey | KeyCard, trust: TrustStore) -> bool:
     """Whether the approver made the file, or brought one that no trusted publisher signed.
 
     Raises LibraryError where it is so and the policy forbids it.

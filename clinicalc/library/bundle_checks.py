@@ -10,6 +10,7 @@ from clinicalc.library.memory import Memory, SeenHead
 from clinicalc.library.model_chain import replay_model
 from clinicalc.library.records import ABOUT_THE_LIBRARY, Founding
 from clinicalc.library.standing import FaultKind
+from clinicalc.units.days import stated_day
 
 _MOST_SAID = 5
 _TIMELY = frozenset({FaultKind.FROM_THE_FUTURE, FaultKind.CLOCK_SET_BACK})
@@ -58,6 +59,6 @@ def require_remembered(union: Bundle, memory: Memory | None) -> None:
 def _say_lacking(whose: str, head: SeenHead) -> str:
     kind = head.kind.replace("_", " ")
     return (
-        f"It lacks the record {head.digest[:12]}… {whose} ({kind}, in the name of {head.name}, {head.written[:10]}),"
-        f" seen here on {head.seen[:10]}."
+        f"It lacks the record {head.digest[:12]}… {whose} ({kind}, in the name of {head.name},"
+        f" {stated_day(head.written)}), seen here on {stated_day(head.seen)}."
     )

@@ -89,9 +89,14 @@ def find_card(text: str, name: str) -> KeyCard:
     return make_card(text, name)
 
 
+def plain_digits(typed: str) -> str:
+    """Digits of an id or a fingerprint as they were typed, without spaces and hyphens, in small letters."""
+    return "".join(letter for letter in typed.casefold() if not letter.isspace() and letter != "-")
+
+
 def compare_id(typed: str, id: str) -> Agreement:
     """How far what was typed agrees with the id; spaces, hyphens and capital letters do not matter."""
-    letters = "".join(letter for letter in typed.casefold() if not letter.isspace() and letter != "-")
+    letters = plain_digits(typed)
     same = next(
         (place for place, (left, right) in enumerate(zip(letters, id, strict=False)) if left != right),
         min(len(letters), len(id)),

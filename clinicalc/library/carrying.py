@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from datetime import datetime
 from pathlib import Path
 
-from clinicalc.errors import FileNotWritten, LibraryError
+from clinicalc.errors import LibraryError
 from clinicalc.library.bundle import Bundle, bundle_of, write_bundle
 from clinicalc.library.bundle_checks import practice_key_of, require_remembered, require_sound
 from clinicalc.library.folder import LibraryFolder
@@ -23,7 +23,8 @@ from clinicalc.library.places import MODELS, RECORDS, RecordName, model_file
 from clinicalc.library.placing import PART_PREFIX, PART_SUFFIX, Placed, place_file
 from clinicalc.library.records import Founding
 from clinicalc.library.standing import Fault
-from clinicalc.replacement import READABLE, replace_file
+from clinicalc.library.written_files import put_file, require_free
+from clinicalc.replacement import READABLE
 
 _MOST_SAID = 5
 
@@ -46,25 +47,11 @@ def export_library(folder: LibraryFolder, path: Path, now: datetime, *, replace:
 
     Raises LibraryError where the library is not sound, and FileNotWritten; then nothing was written.
     """
-    if path.exists() and not replace:
-        raise FileNotWritten(
-            "there is a file with this name already; it was left as it is.",
-            where=str(path),
-            do="Choose another name, or give --replace.",
-        )
+    if not replace:
+        require_free(path)
     bundle = bundle_of(folder)
     require_sound(bundle, str(folder.path), practice_key_of(bundle), now, "the library was not exported")
-    content = write_bundle(bundle)
-    try:
-        replace_file(path, content, READABLE)
-    except (OSError, ValueError) as fault:
-        why = getattr(fault, "strerror", None) or "its name cannot be a file name"
-        raise FileNotWritten(
-            "the bundle could not be written.",
-            where=str(path),
-            why=f"The computer says: {why}.",
-            do="Choose another folder, or make room on this one. Nothing was left behind.",
-        ) from None
+    put_file(path, write_bundle(bundle), "the bundle", may_replace=replace, mode=READABLE)
     return bundle
 
 

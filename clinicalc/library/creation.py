@@ -73,6 +73,25 @@ def create_library(path: Path, founding: SealedRecord) -> None:
         raise out_of_reach("no library was made, and nothing was changed", target, fault) from None
 
 
+def check_free(path: Path) -> None:
+    """Nothing where `create_library` would make a library at `path` now; nothing stays of the trial.
+
+    Raises LibraryError where the folder is not empty, LibraryUnreachable where nothing can be made there.
+    """
+    target = path
+    try:
+        target = _behind_links(path)
+        is_there = os.path.lexists(target)
+        with OpenedFolder(target if is_there else target.parent) as folder:
+            if is_there:
+                _refuse_full(folder)
+            trial = f"{PART_PREFIX}{os.urandom(12).hex()}{PART_SUFFIX}"
+            folder.make_part(trial)
+            folder.remove_part(trial)
+    except OSError as fault:
+        raise out_of_reach("no library can be made here", target, fault) from None
+
+
 def _behind_links(path: Path) -> Path:
     try:
         return Path(os.path.realpath(path))

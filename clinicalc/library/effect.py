@@ -14,11 +14,12 @@ from numpy.typing import NDArray
 from clinicalc.assessment.model import Model
 from clinicalc.assessment.proof import recompute
 from clinicalc.coefficients.schema import Recalibration, WorkedExample
-from clinicalc.coefficients.spans import Span
+from clinicalc.coefficients.spans import Span, span_of
 from clinicalc.covariates.transforms import Column
 from clinicalc.library.grid_answers import GridAnswers, Mask, answer_grid
 from clinicalc.library.naming import say_values
 from clinicalc.library.standard_patients import Grid, lay_out_grid
+from clinicalc.prediction.links import Link
 
 Rows = NDArray[np.int64]
 """Places of patients in a grid."""
@@ -92,11 +93,15 @@ class Whose(StrEnum):
 class ExampleEffect:
     """A worked example of one version, answered by both; None where there is no number, and why not.
 
-    An exclusion question that the example does not answer counts as answered no, as on the grid.
+    An exclusion question that the example does not answer counts as answered no, as on the grid. `typed` are its values
+    by field id, `within` its horizon in words, "" for none, and `values` all of it in one line.
     """
 
     stated_by: Whose
     values: str
+    typed: tuple[tuple[str, str], ...]
+    within: str
+    recalibration: str
     stated: float
     old: float | None
     new: float | None
@@ -106,11 +111,15 @@ class ExampleEffect:
 
 @dataclass(frozen=True, slots=True)
 class Effect:
-    """Everything the change does; `not_compared` says which horizons or recalibrations only one version has."""
+    """Everything the change does; `not_compared` says which horizons or recalibrations only one version has.
+
+    `link` is that of the new version, on whose ruler both are drawn.
+    """
 
     grids: tuple[GridEffect, ...]
     examples: tuple[ExampleEffect, ...]
     not_compared: tuple[str, ...]
+    link: Link
 
 
 def find_effect(old: Model, new: Model) -> Effect:
@@ -122,6 +131,7 @@ def find_effect(old: Model, new: Model) -> Effect:
         grids=tuple(compare_on_grid(old, new, grid, span, id) for span, id in choices),
         examples=tuple(_examples(old, new)),
         not_compared=tuple(_not_compared(old, new)),
+        link=new.equations[0].content.link,
     )
 
 
@@ -222,7 +232,19 @@ def _examples(old: Model, new: Model) -> Iterator[ExampleEffect]:
         stated_by = Whose.BOTH if key in mine and key in yours else Whose.OLD if key in mine else Whose.NEW
         before, old_because = _answer(old, example)
         after, new_because = _answer(new, example)
-        yield ExampleEffect(stated_by, key[0], example.probability, before, after, old_because, new_because)
+        span = span_of(example)
+        yield ExampleEffect(
+            stated_by=stated_by,
+            values=key[0],
+            typed=tuple(sorted(example.values.items())),
+            within="" if span is None else span.words,
+            recalibration=example.recalibration if isinstance(example.recalibration, str) else "",
+            stated=example.probability,
+            old=before,
+            new=after,
+            old_because=old_because,
+            new_because=new_because,
+        )
 
 
 def _answer(model: Model, example: WorkedExample) -> tuple[float | None, str]:

@@ -1,6 +1,7 @@
 """The effect of a change as sentences, and as plain objects for JSON."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
+from types import MappingProxyType
 
 from clinicalc.assessment.numerals import (
     EN_DASH,
@@ -15,6 +16,7 @@ from clinicalc.library.difference_words import Json
 from clinicalc.library.effect import Crossed, Effect, ExampleEffect, GridEffect, MovedPatient, Whose
 from clinicalc.units.unit import find_unit
 
+_NO_NAMES: Mapping[str, str] = MappingProxyType({})
 _SHOWN_EXAMPLES = 12
 """Examples that are written out; the JSON has them all."""
 
@@ -22,7 +24,7 @@ _SHOWN_EXAMPLES = 12
 def say_effect(effect: Effect) -> Iterator[str]:
     """What the change does, one sentence a line."""
     for grid in effect.grids:
-        yield from _say_grid(grid)
+        yield from say_grid(grid)
         yield ""
     yield from effect.not_compared
     yield "Worked examples of both, by each"
@@ -32,20 +34,21 @@ def say_effect(effect: Effect) -> Iterator[str]:
         yield f"  and {len(effect.examples) - _SHOWN_EXAMPLES} more; --json has them all."
 
 
-def _say_grid(grid: GridEffect) -> Iterator[str]:
+def say_grid(grid: GridEffect, names: Mapping[str, str] = _NO_NAMES) -> Iterator[str]:
+    """A heading, and indented below it a sentence a line; `names` are those of values by their ids."""
     setting = grid.span.words + ("" if grid.recalibration is None else f", recalibration {grid.recalibration}")
     thinned = "" if grid.patients == grid.whole else f", evenly taken from a grid of {grid.whole}"
     yield f"Effect on {grid.patients} standard patients ({setting}{thinned})"
     neither = grid.patients - grid.both - grid.only_old - grid.only_new
     yield (
-        f"  A number from both {grid.both}, only from the old {grid.only_old}, only from the new {grid.only_new}, from"
-        f" neither {neither}."
+        f"  Both versions give a number for {grid.both} of them, only the old one for {grid.only_old}, only the new one"
+        f" for {grid.only_new}, neither for {neither}."
     )
     if not grid.both:
         return
     yield f"  The same number to the last bit: {grid.unchanged} of {grid.both}."
-    yield f"  Largest rise: {say_moved(grid.largest_rise)}"
-    yield f"  Largest fall: {say_moved(grid.largest_fall)}"
+    yield f"  Largest rise: {say_moved(grid.largest_rise, names)}"
+    yield f"  Largest fall: {say_moved(grid.largest_fall, names)}"
     for point in grid.crossed:
         yield f"  {_say_crossed(point, grid.both)}"
     if not grid.crossed:
@@ -54,19 +57,27 @@ def _say_grid(grid: GridEffect) -> Iterator[str]:
         yield "  The bands cannot be compared: one version has none, or the links differ."
     else:
         width = grid.width
-        ratios = f"{width.least:.3g}{EN_DASH}{width.most:.3g}"
-        yield (
-            f"  The new band is {ratios} times as wide as the old one on the link scale (median {width.middle:.3g},"
-            f" {width.patients} patients)."
-        )
+        least, most = f"{width.least:.3g}", f"{width.most:.3g}"
+        if least == most:
+            times = "as wide as" if least == "1" else f"{least} times as wide as"
+            yield f"  The new band is {times} the old one on the link scale ({width.patients} patients)."
+        else:
+            yield (
+                f"  The new band is {least}{EN_DASH}{most} times as wide as the old one on the link scale (median"
+                f" {width.middle:.3g}, {width.patients} patients)."
+            )
 
 
-def say_moved(moved: MovedPatient | None) -> str:
-    """Both probabilities, their distance, and the patient as typed."""
+def say_moved(moved: MovedPatient | None, names: Mapping[str, str] = _NO_NAMES) -> str:
+    """Both probabilities, their distance, and the patient as typed, without what has an empty name."""
     if moved is None:
         return "nobody."
-    typed = ", ".join(f"{id} {_spell(text)}" for id, text in moved.typed)
+    typed = ", ".join(_say_typed(id, text, names.get(id)) for id, text in moved.typed if names.get(id) != "")
     return f"{_pair(moved.old, moved.new)}: {typed}"
+
+
+def _say_typed(id: str, text: str, name: str | None) -> str:
+    return f"{id} {_spell(text)}" if name is None else f"{name} {_spell(text)}"
 
 
 def _spell(text: str) -> str:

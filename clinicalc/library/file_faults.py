@@ -8,7 +8,7 @@ from clinicalc.library.safe_reading import NotRead, Obstacle
 from clinicalc.library.sealing import unseal
 from clinicalc.library.standing import Fault, FaultKind, SealedRecord
 
-_FROM_A_COPY = "Put it back from a copy."
+_FROM_A_COPY = "Put it back from another copy of the library."
 
 
 def open_record(name: RecordName, content: bytes) -> SealedRecord | Fault:
@@ -60,7 +60,7 @@ def fault_of_model(fingerprint: str, found: bytes | NotRead) -> Fault:
 def fault_of_part(part: str, about: str, is_missing: bool) -> Fault:
     """What is said where the folder of models or records is missing, or is a link or a file."""
     if is_missing:
-        sentence = f"The library's folder {part} is missing. Put it back from a copy."
+        sentence = f"The library's folder {part} is missing. {_FROM_A_COPY}"
     else:
         sentence = f"The library's folder {part} was replaced by a link or a file. Put the folder back in its place."
     return Fault(FaultKind.MISSING_FILE if is_missing else FaultKind.NOT_A_FILE, about, sentence)

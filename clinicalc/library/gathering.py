@@ -9,12 +9,12 @@ from pathlib import Path
 from typing import Protocol, TypeVar
 
 from clinicalc.errors import ClinicalcError
-from clinicalc.library.file_faults import fault_of_model, fault_of_record, open_record
+from clinicalc.library.file_faults import fault_of_record, open_record
 from clinicalc.library.folder import LibraryFolder
 from clinicalc.library.kept_copy import KeptCopy
 from clinicalc.library.opened_folder import OpenedFolder
 from clinicalc.library.out_of_reach import out_of_reach
-from clinicalc.library.places import MOST_RECORD_BYTES, RECORDS, RecordName
+from clinicalc.library.places import MOST_RECORD_BYTES, RECORDS, RecordName, short_model
 from clinicalc.library.records import ABOUT_THE_LIBRARY
 from clinicalc.library.safe_reading import NotRead, Obstacle, read_regular
 from clinicalc.library.standing import Fault, FaultKind, SealedRecord
@@ -138,7 +138,8 @@ class KeptSource:
         """The bytes with this fingerprint."""
         content = self.kept.model(fingerprint)
         if content is None:
-            return fault_of_model(fingerprint, NotRead(Obstacle.MISSING, "no whole copy of it is on this machine"))
+            why = "was not read: no whole copy of it is on this machine. It is read again once the library is reached."
+            return Fault(FaultKind.MISSING_FILE, fingerprint, f"{short_model(fingerprint)} {why}")
         return content
 
 

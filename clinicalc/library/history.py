@@ -5,6 +5,8 @@ from collections.abc import Collection, Iterable
 from contextlib import suppress
 from dataclasses import dataclass
 
+from msgspec import UNSET
+
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.errors import KeyRefused
 from clinicalc.library.keys import decode_public, key_id
@@ -16,13 +18,21 @@ from clinicalc.library.records import (
     Founding,
     Installed,
     KeyRevoked,
+    KnownBy,
     Policy,
     PolicyChanged,
     Statement,
     Withdrawn,
 )
 from clinicalc.library.standing import Fault, SealedRecord
+from clinicalc.units.days import stated_day
 from clinicalc.units.quoting import quote
+
+_KNOWN_BY: dict[KnownBy, str] = {
+    "fingerprint": "file known by its typed fingerprint",
+    "signature": "file known by a trusted publisher’s signature",
+    "fingerprint_and_signature": "file known by its typed fingerprint and a trusted publisher’s signature",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,7 +149,7 @@ def say_statement(said: Statement) -> tuple[str, str]:
         case Installed():
             return f"installed {said.id} {said.version}, {said.title}, from {said.came_from}", ""
         case Approved():
-            return f"approved until {said.review_until}{_choices(said)}", said.reason
+            return f"approved until {stated_day(said.review_until)}{_choices(said)}", said.reason
         case Withdrawn():
             return "withdrawn", said.reason
         case Commented():
@@ -150,6 +160,7 @@ def _choices(said: Approved) -> str:
     parts = [f"recalibration {said.recalibration}"] if said.recalibration is not None else []
     parts += [f"decision point {point.probability!r} ({point.label})" for point in said.decision_points]
     parts += [f"{one.at or 'whole model'} compared by {one.by}" for one in said.compared]
+    parts += [_KNOWN_BY[said.known_by]] if said.known_by is not UNSET else []
     parts += ["by the file’s own author"] if said.by_author else []
     return "".join(f"; {part}" for part in parts)
 

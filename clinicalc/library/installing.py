@@ -1,5 +1,6 @@
 """Installing a coefficient file: what was looked at is what is installed, byte for byte."""
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -13,8 +14,9 @@ from clinicalc.errors import LibraryError
 from clinicalc.library.appointing import check_text
 from clinicalc.library.file_signatures import FileSignature, Worth, weigh_signatures
 from clinicalc.library.gathering import Source
-from clinicalc.library.keys import SigningKey
+from clinicalc.library.keys import KeyCard, SigningKey
 from clinicalc.library.labels import find_other_name
+from clinicalc.library.places import short_model
 from clinicalc.library.records import Installed
 from clinicalc.library.standing import ModelState, SealedRecord
 from clinicalc.library.trust_store import TrustStore
@@ -59,7 +61,12 @@ def find_installed(desk: Desk, candidate: Candidate) -> ModelState | None:
 
     A further trusted signature on the same bytes is worth a record of its own.
     """
-    state = _state_of(desk, candidate.model.fingerprint)
+    return find_among(desk.models, candidate)
+
+
+def find_among(models: Iterable[ModelState], candidate: Candidate) -> ModelState | None:
+    """The same among the models of a library that was only read."""
+    state = next((state for state in models if state.fingerprint == candidate.model.fingerprint), None)
     if state is None or not installations(state):
         return None
     kept = signatures_kept(state)
@@ -73,23 +80,30 @@ def install(desk: Desk, candidate: Candidate, key: SigningKey, came_from: str) -
 
     Raises LibraryError for a key that is nobody's in force, and where the same file is there already.
     """
+    statement = settle_installation(desk, candidate, key, came_from)
+    fingerprint = candidate.model.fingerprint
+    state = _state_of(desk, fingerprint)
+    desk.folder.put_model(fingerprint, candidate.read.canonical)
+    return sign_as_approver(desk, key, statement, fingerprint, () if state is None else state.heads)
+
+
+def settle_installation(desk: Desk, candidate: Candidate, key: SigningKey | KeyCard, came_from: str) -> Installed:
+    """What the owner of a key would install; its card is enough. Raises as `install` does."""
     require_approver(desk.authority, key)
     already = find_installed(desk, candidate)
     if already is not None:
         raise LibraryError("this very file is in the library already.", where=f"{already.id} {already.version}")
-    content, fingerprint = candidate.model.content, candidate.model.fingerprint
-    statement = Installed(
+    state = _state_of(desk, candidate.model.fingerprint)
+    if state is not None:
+        require_sound(state)
+    content = candidate.model.content
+    return Installed(
         id=content.id,
         version=content.version,
         title=content.title,
         came_from=check_text(came_from, "origin"),
         signatures=candidate.read.content.signatures,
     )
-    state = _state_of(desk, fingerprint)
-    if state is not None:
-        require_sound(state)
-    desk.folder.put_model(fingerprint, candidate.read.canonical)
-    return sign_as_approver(desk, key, statement, fingerprint, () if state is None else state.heads)
 
 
 def read_installed(source: Source, state: ModelState) -> ReadFile:
@@ -99,7 +113,7 @@ def read_installed(source: Source, state: ModelState) -> ReadFile:
     """
     content = source.model(state.fingerprint)
     if not isinstance(content, bytes):
-        raise LibraryError("its file cannot be used.", where=f"{state.id} {state.version}", why=content.sentence)
+        raise LibraryError("its file cannot be used.", where=_name_of(state), why=content.sentence)
     return read_canonical(content, state)
 
 
@@ -108,10 +122,19 @@ def read_canonical(content: bytes, state: ModelState) -> ReadFile:
     whole = b'%s,"signatures":%s}' % (content.removesuffix(b"}"), msgspec.json.encode(signatures_kept(state)))
     read = read_bytes(whole, f"{state.id}-{state.version}.json")
     if read.fingerprint != state.fingerprint or read.canonical != content:
-        raise LibraryError("its file is not the one that its name says.", where=f"{state.id} {state.version}")
+        raise LibraryError(
+            "its file is not the one that its records are about.",
+            where=_name_of(state),
+            do="Find out who put it there, and take it out of the library's folder, or put the right one in its place.",
+        )
     if (other := find_other_name(state, content)) is not None:
         raise LibraryError("its file has another name than its records.", where=read.name, why=other.sentence)
     return read
+
+
+def _name_of(state: ModelState) -> str:
+    """Id and version, or the name of its file where no record says them."""
+    return f"{state.id} {state.version}".strip() or short_model(state.fingerprint)
 
 
 def signatures_kept(state: ModelState) -> tuple[Signature, ...]:

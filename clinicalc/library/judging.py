@@ -1,6 +1,6 @@
 """Judging what an opening gathers: the library itself first, then each model, strictest where it gives a number."""
 
-from collections.abc import Collection, Iterable
+from collections.abc import Callable, Collection, Iterable
 from dataclasses import dataclass, replace
 from datetime import datetime
 
@@ -15,6 +15,10 @@ from clinicalc.library.model_chain import replay_model
 from clinicalc.library.recollection import find_clock_fault, find_lacking
 from clinicalc.library.records import ABOUT_THE_LIBRARY
 from clinicalc.library.standing import Authority, Fault, ModelState, SealedRecord, Standing
+
+
+def tell_nobody(done: int, of: int) -> None:
+    """Nobody asked how far the judging is."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,14 +58,22 @@ class Judging:
     is_copy: bool
     rests: bool
 
-    def judge(self) -> Judged:
-        """The library and its models. Raises LibraryUnreachable where the source goes away meanwhile."""
+    def judge(self, told: Callable[[int, int], None] = tell_nobody) -> Judged:
+        """The library and its models. Raises LibraryUnreachable where the source goes away meanwhile.
+
+        `told` hears, after each model, how many of how many are done; what it raises comes through.
+        """
         contents = self.source.contents()
         found = self.source.records(ABOUT_THE_LIBRARY, contents.records.get(ABOUT_THE_LIBRARY, ()), freshly=True)
         authority = replay_authority(found.records, self.source.library, self.machine.practice_key)
         authority = replace(authority, faults=self._where(authority.faults))
         in_use: dict[str, bytes] = {}
-        models = tuple(self._judge_model(name, contents, authority, in_use) for name in self._chosen(contents))
+        chosen = self._chosen(contents)
+        found_models: list[ModelState] = []
+        for done, name in enumerate(chosen, 1):
+            found_models.append(self._judge_model(name, contents, authority, in_use))
+            told(done, len(chosen))
+        models = tuple(found_models)
         wide = [
             *(fault for fault in contents.faults if fault.about == ABOUT_THE_LIBRARY),
             *found.faults,
@@ -131,18 +143,21 @@ class Judging:
     def _compare(self, state: ModelState, found: Gathered, contents: Contents) -> ModelState:
         """The state beside what this machine has seen of the model, and beside what was wrong with the files."""
         faults = [*found.faults, *(fault for fault in contents.faults if fault.about == state.fingerprint)]
-        state = _named_by_file(state, faults)
+        state = _named_by_fault(state, faults)
         seen = self.memory.model(state.fingerprint)
         if seen is not None:
             name = f"{seen.id} {seen.version}" if seen.id else f"model {state.fingerprint[:12]}…"
-            faults += find_lacking(seen.heads, found.records, state.fingerprint, name)
+            lacking = find_lacking(seen.heads, found.records, state.fingerprint, name)
+            faults += lacking
+            if not found.records:  # what was seen here says more than that nobody installed it
+                state = _named_by_fault(state, lacking)
             if not state.id:
                 state = replace(state, id=seen.id, version=seen.version, title=seen.title)
         return refused(state, faults)
 
 
-def _named_by_file(state: ModelState, faults: Iterable[Fault]) -> ModelState:
-    """The refused state with a damaged file as its reason: that says more than that a record is missing."""
+def _named_by_fault(state: ModelState, faults: Iterable[Fault]) -> ModelState:
+    """The refused state with the first of these as its reason: a damaged file says more than a missing record."""
     found = next((fault for fault in faults if fault.stops), None)
     if found is None or state.standing is not Standing.REFUSED:
         return state

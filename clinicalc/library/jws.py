@@ -4,6 +4,7 @@ Nothing in a signature's header is believed: the algorithm is fixed (RFC 9864 na
 among the keys this program was told of, and every name beyond the three that belong there is refused.
 """
 
+import functools
 import re
 from collections.abc import Callable
 
@@ -62,7 +63,19 @@ def read_key_id(signature: Signature, typ: str) -> str:
 
     Raises SignatureRefused for another algorithm, another type, or any header but exactly alg, kid and typ.
     """
-    header = _read_header(signature.protected)
+    kid = _kid_of(signature.protected, typ)
+    _signature_bytes(signature)
+    return kid
+
+
+def signing_input(protected: str, payload: bytes) -> bytes:
+    """What is signed (RFC 7515, section 5.1)."""
+    return f"{protected}.{base64url.encode(payload)}".encode("ascii")
+
+
+@functools.lru_cache(maxsize=256)  # a key writes the same header every time; a refusal is not remembered
+def _kid_of(protected: str, typ: str) -> str:
+    header = _read_header(protected)
     extra = [name for name in header if name not in _NAMES]
     if extra:
         raise _refused(f"its header holds {quoted(extra[0])}; only alg, kid and typ are read.")
@@ -76,15 +89,9 @@ def read_key_id(signature: Signature, typ: str) -> str:
     kid = header["kid"]
     if not isinstance(kid, str) or not re.fullmatch("[0-9a-f]{64}", kid):
         raise _refused(f"its key id {quoted(kid)} is not 64 digits of 0-9 and a-f.")
-    if rfc8785.dumps({"alg": ALGORITHM, "kid": kid, "typ": typ}) != base64url.decode(signature.protected):
+    if rfc8785.dumps({"alg": ALGORITHM, "kid": kid, "typ": typ}) != base64url.decode(protected):
         raise _refused("its header is not written in the one canonical form (RFC 8785).")
-    _signature_bytes(signature)
     return kid
-
-
-def signing_input(protected: str, payload: bytes) -> bytes:
-    """What is signed (RFC 7515, section 5.1)."""
-    return f"{protected}.{base64url.encode(payload)}".encode("ascii")
 
 
 def _read_header(protected: str) -> dict[str, object]:

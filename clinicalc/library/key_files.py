@@ -17,6 +17,7 @@ from clinicalc.errors import FileNotWritten, KeyRefused
 from clinicalc.library import base64url
 from clinicalc.library.keys import KeyCard, SigningKey, check_name, decode_public, key_id, make_private, signing_key
 from clinicalc.library.passphrases import check_passphrase, passphrase_bytes
+from clinicalc.library.places import FOUNDING_FILE
 from clinicalc.library.records import PublicKey
 from clinicalc.library.small_files import decode_strictly, read_small
 from clinicalc.replacement import create_file, replace_file
@@ -36,7 +37,6 @@ _MOST_WORK = 2**22
 """The largest n * r * p that a file may ask for, four times the usual: more would only hold the program up."""
 _MOST_BYTES = 10_000
 _WHAT = "a key file"
-_FOUNDING_FILE = "library.json"
 
 
 class Derivation(FileStruct, frozen=True):
@@ -121,17 +121,37 @@ def check_place(path: Path) -> None:
     if os.path.lexists(path):
         raise _taken(path)
     try:
-        place = Path(os.path.realpath(path.absolute().parent))
+        library = _library_round(path.absolute().parent)
     except ValueError as fault:
         raise _not_written(path, fault) from None
-    for folder in (place, *place.parents):
-        if os.path.lexists(folder / _FOUNDING_FILE):
-            raise KeyRefused(
-                "a private key is never kept inside a library's folder.",
-                where=str(path),
-                why=f"{folder} holds {_FOUNDING_FILE}, and a library is copied and shared.",
-                do="Choose a folder of your own, such as one on a stick that you carry. No key was made.",
-            )
+    if library is not None:
+        raise KeyRefused(
+            "a private key is never kept inside a library's folder.",
+            where=str(path),
+            why=f"{library} holds {FOUNDING_FILE}, and a library is copied and shared.",
+            do="Choose a folder of your own, such as one on a stick that you carry. No key was made.",
+        )
+
+
+def require_outside_library(path: Path) -> None:
+    """Nothing where the key file is in no library's folder. Raises KeyRefused: whoever reads the library has a copy."""
+    try:
+        library = _library_round(Path(os.path.realpath(path)).parent)
+    except ValueError:
+        return  # no file has such a name, which reading it says
+    if library is not None:
+        raise KeyRefused(
+            "this private key lies inside a library's folder, and is not used from there.",
+            where=str(path),
+            why="A library is copied and shared, so that others may have a copy of the key.",
+            do="Move it to a folder of your own; where others may have a copy, have it revoked.",
+        )
+
+
+def _library_round(folder: Path) -> Path | None:
+    """The library in whose folder this one lies, or which it is; None where there is none."""
+    place = Path(os.path.realpath(folder))
+    return next((one for one in (place, *place.parents) if os.path.lexists(one / FOUNDING_FILE)), None)
 
 
 def _open(path: Path, passphrase: str) -> tuple[bytes, SigningKey]:

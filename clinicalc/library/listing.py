@@ -66,7 +66,7 @@ def _not_a_file(folder: OpenedFolder, entry: os.DirEntry[str]) -> str:
     short = _DIGITS.sub(r"\1…", entry.name)
     return (
         f"{folder.path.name}/{short} is {_kind(entry)}, not a file, and was not opened. "
-        "Remove it, and put the file back from a copy."
+        "Remove it, and put the file back from another copy of the library."
     )
 
 

@@ -6,12 +6,7 @@ from pathlib import Path
 
 from clinicalc.errors import LibraryError
 from clinicalc.settings import library_place, read_settings, settings_folder
-
-_MONTHS = (
-    "January", "February", "March", "April", "May", "June",
-    "July", "August", "September", "October", "November", "December",
-)  # fmt: skip
-"""Not asked of the system: a window makes it answer in the language of the desktop."""
+from clinicalc.units.days import day_words
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,4 +72,4 @@ def read_moment(text: str) -> datetime:
 def say_moment(at: datetime) -> str:
     """A time in a sentence, on this machine's own clock: "1 December 2026, 10:00"."""
     local = at.astimezone()
-    return f"{local.day} {_MONTHS[local.month - 1]} {local.year}, {local:%H:%M}"
+    return f"{day_words(local)}, {local:%H:%M}"

@@ -40,8 +40,9 @@ def find_future(records: Iterable[SealedRecord], latest: datetime) -> Iterator[F
     """
     for sealed in records:
         if moment_written(sealed) > latest:
+            hour = f"{moment_written(sealed).astimezone():%H:%M}"  # by this machine's clock, as the day
             sentence = (
-                f"{named(sealed)} says it was written at {sealed.record.written[11:16]} UTC on that day, later "
+                f"{named(sealed)} says it was written at {hour} on that day, later "
                 "than this machine’s clock. Set the clock right, here or where it was written."
             )
             yield Fault(FaultKind.FROM_THE_FUTURE, sealed.record.about, sentence, sealed.digest)

@@ -1,6 +1,6 @@
 """Opening the library on this machine: read, replayed, compared with what was seen here, and remembered."""
 
-from collections.abc import Collection
+from collections.abc import Callable, Collection
 from dataclasses import dataclass, field
 from datetime import datetime, time, timedelta
 from pathlib import Path
@@ -8,7 +8,7 @@ from pathlib import Path
 from clinicalc.errors import LibraryError, LibraryUnreachable
 from clinicalc.library.folder import LibraryFolder
 from clinicalc.library.gathering import PATIENCE, FolderSource, KeptSource, Source, reach_library
-from clinicalc.library.judging import Judged, Judging, held, stopped
+from clinicalc.library.judging import Judged, Judging, held, stopped, tell_nobody
 from clinicalc.library.kept_copy import forgetful, keep, read_kept
 from clinicalc.library.machine import Machine, read_moment, say_moment
 from clinicalc.library.memory import Memory, change_memory, memory_of_place, new_memory, read_memory
@@ -66,16 +66,25 @@ class OpenedLibrary:
 
 @dataclass(frozen=True, slots=True)
 class _How:
-    """How an opening goes about it: all models or some, everything anew or not, those at rest left out or not."""
+    """How an opening goes about it: all models or some, everything anew or not, those at rest left out or not.
+
+    `told` hears how many of how many models are done, and may raise to end it: nothing was changed then.
+    """
 
     only: Collection[str] | None = None
     patience: float = PATIENCE
     thorough: bool = False
     rests: bool = False
+    told: Callable[[int, int], None] = tell_nobody
 
 
 def open_library(
-    machine: Machine, now: datetime, *, only: Collection[str] | None = None, patience: float = PATIENCE
+    machine: Machine,
+    now: datetime,
+    *,
+    only: Collection[str] | None = None,
+    patience: float = PATIENCE,
+    told: Callable[[int, int], None] = tell_nobody,
 ) -> OpenedLibrary:
     """The library as it stands, or the verified copy where it is out of reach; `now` carries a zone.
 
@@ -83,13 +92,14 @@ def open_library(
     compared with their names each time; what is known of models that give no number is recalled from this machine's
     copy by its digest, and its signature verified like any other (`verify_all` reads everything). `only`: the
     fingerprints of the models that matter, None for all. `patience`: the seconds that the place has for its first
-    answer; a share that falls silent later is waited for as long as the system waits.
+    answer; a share that falls silent later is waited for as long as the system waits. `told` hears how many of how many
+    models are done; what it raises ends the opening, and nothing was remembered.
 
     Raises LibraryUnreachable where the library is out of reach and was never opened here, LibraryError where there is
     no library, another one than before, or a memory that cannot be read, and FileNotWritten where what was seen cannot
     be kept. Whatever else is wrong becomes a fault, and the models concerned give no number.
     """
-    return _open(machine, now.astimezone(), _How(only, patience))
+    return _open(machine, now.astimezone(), _How(only, patience, told=told))
 
 
 def open_for_bedside(machine: Machine, now: datetime, *, patience: float = PATIENCE) -> OpenedLibrary:
@@ -97,12 +107,18 @@ def open_for_bedside(machine: Machine, now: datetime, *, patience: float = PATIE
     return _open(machine, now.astimezone(), _How(patience=patience, rests=True))
 
 
-def verify_all(machine: Machine, now: datetime, *, patience: float = PATIENCE) -> OpenedLibrary:
+def verify_all(
+    machine: Machine,
+    now: datetime,
+    *,
+    patience: float = PATIENCE,
+    told: Callable[[int, int], None] = tell_nobody,
+) -> OpenedLibrary:
     """The same with every file of the library read and every record opened anew. Raises what `open_library` raises.
 
     Where all of it is sound, this machine's copy of the records is made anew as well.
     """
-    return _open(machine, now.astimezone(), _How(patience=patience, thorough=True))
+    return _open(machine, now.astimezone(), _How(patience=patience, thorough=True, told=told))
 
 
 def _open(machine: Machine, now: datetime, how: _How) -> OpenedLibrary:
@@ -112,7 +128,7 @@ def _open(machine: Machine, now: datetime, how: _How) -> OpenedLibrary:
         kept = read_kept(machine, library)
         source = FolderSource(library, LibraryFolder(machine.place), forgetful(kept) if how.thorough else kept)
         judging = Judging(machine, memory, source, now, how.only, how.thorough, is_copy=False, rests=how.rests)
-        judged = judging.judge()
+        judged = judging.judge(how.told)
     except LibraryUnreachable as fault:
         return _open_copy(machine, now, how, fault)
     memory = _remember(machine, library, judged, now, sound=judged.stop is None and how.only is None)
@@ -132,7 +148,7 @@ def _open_copy(machine: Machine, now: datetime, how: _How, unreachable: LibraryU
         raise unreachable
     source = KeptSource(memory.library, read_kept(machine, memory.library))
     judging = Judging(machine, memory, source, now, how.only, thorough=False, is_copy=True, rests=how.rests)
-    judged = judging.judge()
+    judged = judging.judge(how.told)
     until = None
     if memory.verified and judged.stop is None:
         until = read_moment(memory.verified) + timedelta(hours=judged.authority.policy.offline_hours)

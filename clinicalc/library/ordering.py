@@ -5,6 +5,7 @@ from collections.abc import Callable, Collection, Iterable
 from dataclasses import dataclass
 
 from clinicalc.library.standing import Fault, FaultKind, SealedRecord
+from clinicalc.units.days import stated_day
 from clinicalc.units.quoting import quote
 
 MOST_RECORDS = 10_000
@@ -86,8 +87,9 @@ def missing_records(chain: Chain, counted: Collection[str], present: Collection[
         Fault(
             FaultKind.MISSING_RECORD,
             about,
-            f"Record missing: {digest}. {named(follower)} follows it, and nobody here knows what it says. Fetch it "
-            "from another copy of the library.",
+            f"Record missing: {digest}. {named(follower)} follows it, and what the missing one says, a withdrawal "
+            "perhaps, is not known here. Fetch the file whose name ends in these digits from another copy of the "
+            "library.",
             digest,
         )
         for digest, follower in missing.items()
@@ -98,7 +100,8 @@ def named(sealed: SealedRecord) -> str:
     """A record in a sentence: the beginning of its digest, what it is, in whose name, of which day; all as it says."""
     record = sealed.record
     kind = record.statement.__struct_config__.tag
-    return f"The record {sealed.digest[:12]}… ({kind}, in the name of {quote(record.name)}, {record.written[:10]})"
+    said = f"{kind}, in the name of {quote(record.name)}, {stated_day(record.written)}"
+    return f"The record {sealed.digest[:12]}… ({said})"
 
 
 def _linked(given: dict[str, SealedRecord], follows: dict[str, tuple[str, ...]], order: list[str]) -> Chain:

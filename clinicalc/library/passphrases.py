@@ -7,6 +7,8 @@ from clinicalc.errors import KeyRefused
 SHORTEST = 12
 LONGEST = 1000
 _DO = "Four or five words that nobody would guess do well."
+ASKED = f"At least {SHORTEST} characters. {_DO}"
+"""What is said beside the field of a new passphrase."""
 
 
 def check_passphrase(passphrase: str) -> None:

@@ -6,7 +6,7 @@ part of its name. The signatures cover the canonical bytes of the "record" objec
 
 from typing import Annotated, Final, Literal
 
-from msgspec import Meta
+from msgspec import UNSET, Meta, UnsetType
 
 from clinicalc.coefficients.file_types import Day, FileStruct, Id, Label, ModelId, Text, Version
 from clinicalc.coefficients.schema import DecisionPoint, Signature
@@ -22,6 +22,8 @@ DigestOrNone = Annotated[str, Meta(pattern=r"^([0-9a-f]{64})?$")]
 PublicKey = Annotated[str, Meta(pattern=r"^[A-Za-z0-9_-]{43}$")]
 """A raw Ed25519 public key, base64url without padding."""
 Moment = Annotated[str, Meta(pattern=r"^[0-9]{4}-[0-9]{2}-[0-9]{2}T[0-9]{2}:[0-9]{2}:[0-9]{2}Z$")]
+KnownBy = Literal["fingerprint", "signature", "fingerprint_and_signature"]
+"""By what an approver knew a file: its whole fingerprint typed, the signature of a publisher trusted there, or both."""
 Place = Annotated[str, Meta(max_length=400)]
 """A JSON Pointer; "" is the whole model."""
 
@@ -96,7 +98,8 @@ class Compared(FileStruct, frozen=True):
 class Approved(FileStruct, frozen=True, tag_field="kind", tag="approved"):
     """The model may be used at the bedside until the end of `review_until`, with these choices.
 
-    `by_author`: the approver's key had signed the file, or had installed a file nobody signed.
+    `by_author`: the approver's key had signed the file, or had installed a file nobody signed. `known_by` is left out
+    in records of before it was stated.
     """
 
     reason: Text
@@ -105,6 +108,7 @@ class Approved(FileStruct, frozen=True, tag_field="kind", tag="approved"):
     decision_points: tuple[DecisionPoint, ...]
     compared: tuple[Compared, ...]
     by_author: bool
+    known_by: KnownBy | UnsetType = UNSET
 
 
 class Withdrawn(FileStruct, frozen=True, tag_field="kind", tag="withdrawn"):

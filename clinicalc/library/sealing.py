@@ -89,8 +89,7 @@ def is_signed_by(sealed: SealedRecord, raw_public: bytes) -> bool:
     """
     id = key_id(raw_public)
     proved = _PROVED.get((sealed.digest, id))
-    # frozen, so that the very same object is unchanged
-    if proved is not None and proved.record is sealed.record and proved.content == sealed.content:
+    if proved is not None and proved.content == sealed.content and proved.record == sealed.record:
         return True
     opened = _decode(sealed.content, sealed.digest)
     if opened.record != sealed.record or opened.record.by != id or _digest(sealed.content) != sealed.digest:
@@ -143,7 +142,7 @@ def _fault_of_keys(keys: Iterable[str]) -> str:
         for key in keys:
             decode_public(key)
     except KeyRefused as fault:
-        return f"a key in it cannot be trusted: {fault.what}"
+        return f"a key in it cannot be trusted: {fault.what.removeprefix('this public key is refused: ')}"
     return ""
 
 

@@ -5,7 +5,7 @@ from datetime import date, datetime
 from enum import StrEnum
 
 from clinicalc.coefficients.schema import DecisionPoint
-from clinicalc.library.records import Approver, Compared, Policy, Record
+from clinicalc.library.records import Approver, Compared, KnownBy, Policy, Record
 
 
 class Standing(StrEnum):
@@ -100,6 +100,8 @@ class Approval:
     decision_points: tuple[DecisionPoint, ...]
     compared: tuple[Compared, ...]
     by_author: bool
+    known_by: KnownBy | None = None
+    """By what the approver knew the file, None where the record does not say."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -20,6 +20,7 @@ from clinicalc.library.records import Moment, PublicKey
 from clinicalc.library.small_files import decode_strictly, read_small
 from clinicalc.replacement import replace_file
 from clinicalc.settings import settings_folder
+from clinicalc.units.days import day_words
 
 FILE_NAME = "trust.json"
 _FORMAT: Final = "clinicalc.trust/1"
@@ -100,9 +101,10 @@ def trust_publisher(card: KeyCard, typed_id: str, now: datetime, *, again: bool 
     known = store.find(card.id)
     if known is not None and known.revoked is None:
         raise KeyRefused(f"this key is trusted here already, as {quoted(known.card.name)}.", do="Nothing was changed.")
-    if known is not None and not again:
+    if known is not None and known.revoked is not None and not again:
         raise KeyRefused(
-            f"this key was revoked here on {known.revoked:%Y-%m-%d}, as that of {quoted(known.card.name)}.",
+            f"this key was revoked here on {day_words(known.revoked.astimezone())}, as that of"
+            f" {quoted(known.card.name)}.",
             why="A key is revoked when others may have it.",
             do="Ask its owner for a new one; if it was revoked by mistake, say --again. Nothing was trusted.",
         )
@@ -119,7 +121,8 @@ def revoke_publisher(id: str, now: datetime) -> Publisher:
     store = read_trust()
     found = _find_by_beginning(store, id)
     if found.revoked is not None:
-        raise KeyRefused(f"this key was revoked here on {found.revoked:%Y-%m-%d} already.", do="Nothing was changed.")
+        day = day_words(found.revoked.astimezone())
+        raise KeyRefused(f"this key was revoked here on {day} already.", do="Nothing was changed.")
     revoked = replace(found, revoked=now)
     _write(TrustStore(tuple(revoked if other is found else other for other in store.publishers)))
     return revoked

@@ -4,11 +4,14 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from datetime import date
 
+from msgspec import UNSET
+
 from clinicalc.library.admission import Registrar, void
 from clinicalc.library.moments import last_day, moment_written
 from clinicalc.library.ordering import Chain
 from clinicalc.library.records import Approved, Withdrawn
 from clinicalc.library.standing import Approval, Fault, FaultKind, SealedRecord, Standing
+from clinicalc.units.days import stated_day
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +51,7 @@ def reach_verdict(registrar: Registrar, chain: Chain, counted: tuple[SealedRecor
 
 def _say_withdrawn(registrar: Registrar, sealed: SealedRecord, withdrawn: Withdrawn) -> str:
     name = _name_and_role(registrar, sealed)[0]
-    return f"Withdrawn by {name} on {sealed.record.written[:10]}: {withdrawn.reason}"
+    return f"Withdrawn by {name} on {stated_day(sealed.record.written)}: {withdrawn.reason}"
 
 
 def _revoked_keys(registrar: Registrar, withdrawals: list[tuple[SealedRecord, Withdrawn]]) -> Iterator[Fault]:
@@ -110,4 +113,5 @@ def _approval(registrar: Registrar, sealed: SealedRecord, approved: Approved) ->
         decision_points=approved.decision_points,
         compared=approved.compared,
         by_author=approved.by_author,
+        known_by=None if approved.known_by is UNSET else approved.known_by,
     )

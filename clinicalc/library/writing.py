@@ -8,6 +8,7 @@ from clinicalc.errors import LibraryError, LibraryUnreachable
 from clinicalc.library.folder import LibraryFolder
 from clinicalc.library.gathering import Source
 from clinicalc.library.keys import KeyCard, SigningKey, decode_public, key_id
+from clinicalc.library.leftovers import remove_leftovers
 from clinicalc.library.opening import OpenedLibrary
 from clinicalc.library.records import (
     ABOUT_THE_LIBRARY,
@@ -38,7 +39,8 @@ class Desk:
 def sit_down(opened: OpenedLibrary) -> Desk:
     """The library opened for writing. Raises LibraryError where it is out of reach or something is wrong with it.
 
-    Faults of one model do not stop the others; they stand in that model's own state.
+    What dead writers left long ago is taken away. Faults of one model do not stop the others; they stand in that
+    model's own state.
     """
     if not opened.reachable:
         raise LibraryUnreachable(
@@ -50,6 +52,7 @@ def sit_down(opened: OpenedLibrary) -> Desk:
     if stops:
         raise _faulty(str(opened.place), stops[0])
     folder = LibraryFolder(opened.place)
+    remove_leftovers(folder.path)
     return Desk(folder, opened.source, opened.authority, opened.models, opened.opened_at)
 
 

@@ -7,11 +7,11 @@ from clinicalc.assessment.model import Model
 from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.schema import DecisionPoint
 from clinicalc.coefficients.spans import Span
-from clinicalc.errors import NotInUse, UsageError
+from clinicalc.errors import LibraryError, NotInUse, UsageError
 from clinicalc.library.bedside import load_approved, vetting_of
 from clinicalc.library.finding import find_state
 from clinicalc.library.machine import this_machine
-from clinicalc.library.opening import OpenedLibrary, open_library
+from clinicalc.library.opening import OpenedLibrary, open_for_bedside, open_library
 from clinicalc.library.standing import ModelState, Standing
 from clinicalc.operations.library_words import say_standing
 from clinicalc.settings import PracticePoint
@@ -52,7 +52,20 @@ def open_approved(words: str, place: str | None = None, now: datetime | None = N
     cannot be used.
     """
     moment = now or datetime.now().astimezone()
-    return take_approved(open_library(this_machine(place), moment), words, moment)
+    machine = this_machine(place)
+    opened = open_for_bedside(machine, moment)
+    if not _is_in_use(opened, words):
+        # why not may stand with a model that is left out at the bedside, and so may another one of that name
+        opened = open_library(machine, moment)
+    return take_approved(opened, words, moment)
+
+
+def _is_in_use(opened: OpenedLibrary, words: str) -> bool:
+    """Whether exactly one model in use is meant; whatever else the library holds of that name, it is the one."""
+    try:
+        return find_state(opened.models, words, (Standing.IN_USE,)).standing is Standing.IN_USE
+    except LibraryError:
+        return False
 
 
 def take_approved(opened: OpenedLibrary, words: str, now: datetime) -> ApprovedModel:

@@ -25,11 +25,12 @@ def save_pdf(
     practice: str = "",
     parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
+    letterhead: tuple[str, ...] = (),
 ) -> None:
     """Write the print of an assessment. Raises PrintRefused or FileNotWritten; nothing half-written is left."""
     from clinicalc.report.pdf import save_report
 
-    save_report(path, assessment, practice=practice, parts=parts, paper=Sheet(paper.value))
+    save_report(path, assessment, practice=practice, parts=parts, paper=Sheet(paper.value), letterhead=letterhead)
 
 
 def lay_out_print(
@@ -39,11 +40,19 @@ def lay_out_print(
     parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
     printed_at: datetime | None = None,
+    letterhead: tuple[str, ...] = (),
 ) -> Document:
     """The same print as pages to be painted; `printed_at` is now where it is left out. Raises PrintRefused."""
     from clinicalc.report.document import make_document
 
-    return make_document(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=Sheet(paper.value))
+    return make_document(
+        assessment,
+        practice=practice,
+        printed_at=printed_at,
+        parts=parts,
+        paper=Sheet(paper.value),
+        letterhead=letterhead,
+    )
 
 
 def stated_time() -> datetime | None:

@@ -17,6 +17,8 @@ PAGES = (
     "printing",
     "files",
     "cautions",
+    "managers",
+    "settings",
     "keyboard",
     "commands",
     "packaging",

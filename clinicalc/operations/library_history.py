@@ -3,10 +3,21 @@
 from collections.abc import Iterator
 from datetime import date, datetime
 
+from msgspec import UNSET
+
 from clinicalc.assessment.numerals import percent
-from clinicalc.library.records import Approved, Commented, Installed, Withdrawn
+from clinicalc.library.records import Approved, Commented, Installed, KnownBy, Withdrawn
 from clinicalc.library.standing import ModelState, SealedRecord
-from clinicalc.report.phrases import day_words
+from clinicalc.units.days import day_words
+
+_TYPED = "its whole fingerprint, which was typed"
+_SIGNED = "the signature of a publisher trusted there"
+KNOWN_BY: dict[KnownBy, str] = {
+    "fingerprint": _TYPED,
+    "signature": _SIGNED,
+    "fingerprint_and_signature": f"{_TYPED}, and by {_SIGNED}",
+}
+"""By what the approver's machine knew the file for the publisher's own, to go on after "known by"."""
 
 
 def tell_history(state: ModelState) -> tuple[str, ...]:
@@ -21,7 +32,9 @@ def _tell(sealed: SealedRecord, state: ModelState) -> Iterator[str]:
     yield f"{day}, {record.name} ({record.role}): {_say(sealed)}"
     if isinstance(record.statement, Approved):
         yield from (f"    {line}" for line in _choices(record.statement))
-    yield from (f"    Does not count: {f.sentence}" for f in state.faults if f.record == sealed.digest and f.stops)
+    for fault in state.faults:
+        if fault.record == sealed.digest:  # one that does not stop the model says itself what became of the record
+            yield f"    {'Does not count: ' if fault.stops else ''}{fault.sentence}"
 
 
 def _say(sealed: SealedRecord) -> str:
@@ -45,5 +58,7 @@ def _choices(approved: Approved) -> Iterator[str]:
         yield f"Decision point {percent(point.probability)}: {point.label} ({point.source})"
     for one in approved.compared:
         yield f"{one.at or 'whole model'} was compared with its source by {one.by}"
+    if approved.known_by is not UNSET:
+        yield f"The file was known by {KNOWN_BY[approved.known_by]}"
     if approved.by_author:
-        yield "by the person who made or brought the file, as the policy of the time allowed"
+        yield "Approved by its author, who made or brought the file, as the policy of the time allowed"

@@ -13,9 +13,10 @@ from clinicalc.report.compose_beside import REBUILT_BELOW
 from clinicalc.report.matching_age_words import MATCHING_AGE_MEANING
 from clinicalc.report.paper import Paper
 from clinicalc.report.parts import PrintParts
-from clinicalc.report.phrases import NO_LABEL, NOT_VETTED, day_words
+from clinicalc.report.phrases import NO_LABEL, NOT_VETTED
 from clinicalc.report.phrases_comparison import NO_PROMISE
 from clinicalc.report.shares_figure import SHARES_MEANING
+from clinicalc.units.days import day_words
 
 _MONTHS = {day_words(datetime(2000, month, 1)).split()[1]: month for month in range(1, 13)}
 _ASSESSED = (
@@ -45,7 +46,7 @@ class PageFault:
 def compare_pages(old: OldPrint, now: Assessment) -> tuple[PageFault, ...]:
     """Every page of the print whose text is not that of the assessment's own print; then a wrong number of pages.
 
-    What the record does not hold is taken from the print as it stands: practice name, patient label, the times of
+    What the record does not hold is taken from the print as it stands: practice name, letterhead, label, the times of
     assessment and printing, the paper, and which parts were chosen.
     """
     parts = _parts(old)
@@ -81,7 +82,14 @@ def _lay_out(old: OldPrint, assessment: Assessment, parts: PrintParts) -> tuple[
     from clinicalc.report.pdf import make_report  # the layout of pages is loaded by the first print
 
     paper = Paper.LETTER if abs(old.width - Paper.LETTER.width) < 1 else Paper.A4
-    pdf = make_report(assessment, practice=old.practice, printed_at=old.made or assessment.at, parts=parts, paper=paper)
+    pdf = make_report(
+        assessment,
+        practice=old.practice,
+        printed_at=old.made or assessment.at,
+        parts=parts,
+        paper=paper,
+        letterhead=old.letterhead,
+    )
     return read_pages(pdf)
 
 

@@ -23,7 +23,8 @@ LARGEST = 32_000_000
 class OldPrint:
     """A print as it was saved. `made` is None where the file does not say when it was made.
 
-    `pages` holds the text of each page, `width` is that of the first in points, `practice` the name the file gives.
+    `pages` holds the text of each page, `width` is that of the first in points, `practice` and `letterhead` what the
+    file gives as such.
     """
 
     name: str
@@ -32,6 +33,7 @@ class OldPrint:
     pages: tuple[str, ...]
     width: float
     practice: str
+    letterhead: tuple[str, ...] = ()
 
     @property
     def text(self) -> str:
@@ -45,7 +47,7 @@ def read_old_print(path: Path) -> OldPrint:
     with _quiet():
         try:
             attached = read_attached_record(content)
-            made, practice, width = _stated(content)
+            made, practice, letterhead, width = _stated(content)
             pages = read_pages(content)
         except ClinicalcError as error:
             raise ClinicalcError(error.what, where=path.name, why=error.why, do=error.do) from error
@@ -55,7 +57,7 @@ def read_old_print(path: Path) -> OldPrint:
         record = msgspec.json.decode(attached, type=Record)
     except (msgspec.DecodeError, RecursionError) as error:
         raise _unreadable(path, f"What is attached to it is not a record of this program ({error}).") from error
-    return OldPrint(path.name, record, made, pages, width, practice)
+    return OldPrint(path.name, record, made, pages, width, practice, letterhead)
 
 
 def read_pages(pdf: bytes) -> tuple[str, ...]:
@@ -81,8 +83,8 @@ def _read_bytes(path: Path) -> bytes:
     return content
 
 
-def _stated(content: bytes) -> tuple[datetime | None, str, float]:
-    """When the file says it was made, for which practice, and how wide its first page is in points."""
+def _stated(content: bytes) -> tuple[datetime | None, str, tuple[str, ...], float]:
+    """When the file says it was made, for which practice, under which letterhead, how wide page 1 is in points."""
     from io import BytesIO
 
     from pypdf import PdfReader
@@ -97,7 +99,8 @@ def _stated(content: bytes) -> tuple[datetime | None, str, float]:
         made = made.astimezone()
     author, program = ("", "") if about is None else (about.author or "", about.creator or "")
     width = float(reader.pages[0].mediabox.width) if len(reader.pages) else 0.0
-    return made, "" if author == program else author, width
+    letterhead = tuple(((about.keywords or "") if about is not None else "").split("\n"))
+    return made, "" if author == program else author, letterhead if any(letterhead) else (), width
 
 
 @contextmanager

@@ -13,6 +13,7 @@ from clinicalc.library.standing import FaultKind, ModelState, SealedRecord
 from clinicalc.operations.differences import NOTHING, Difference, unless_same
 from clinicalc.operations.library_words import say_standing
 from clinicalc.operations.old_record import Record, RecordedVetting
+from clinicalc.units.days import stated_day
 from clinicalc.units.quoting import visible
 
 if TYPE_CHECKING:
@@ -61,7 +62,8 @@ def compare_vetting(record: Record, library: OpenedLibrary) -> Iterator[Differen
     state = next((state for state in library.models if state.fingerprint == record.model.fingerprint), None)
     approvals = [] if state is None else list(approvals_of(state))
     if not any(_is_stated(sealed, stated, record.recalibration) for sealed in approvals):
-        said = f"by {stated.by} ({stated.role}) on {stated.approved_on} until {stated.review_until}"
+        days = f"on {stated_day(stated.approved_on)} until {stated_day(stated.review_until)}"
+        said = f"by {stated.by} ({stated.role}) {days}"
         yield Difference("Approval", said, "no such approval in the library" if approvals else NOTHING)
 
 
@@ -72,13 +74,15 @@ def say_approval(record: Record, library: OpenedLibrary | None) -> list[str]:
         said = ["The print says that the file was not vetted."]
     elif library is None:
         said = [
-            f"The print says that {visible(stated.by)} approved the file until {visible(stated.review_until)}. That was"
+            f"The print says that {visible(stated.by)} approved the file until"
+            f" {visible(stated_day(stated.review_until))}. That was"
             " not compared with the library, since a file was named: leave --model out for that."
         ]
     elif list(compare_vetting(record, library)):
         said = []
     else:
-        said = [f"The library holds the approval by {stated.by} until {stated.review_until} that the print states."]
+        until = stated_day(stated.review_until)
+        said = [f"The library holds the approval by {stated.by} until {until} that the print states."]
     state = None if library is None else library.state(record.model.fingerprint)
     return said if state is None else [*said, f"Today in the library: {say_standing(state)}"]
 

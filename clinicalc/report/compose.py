@@ -34,13 +34,20 @@ from clinicalc.report.value_table import NOT_GIVEN, compose_values, mark
 _SIGNATURE = SignatureLine(("Practitioner’s signature", "Name", "Date"))
 
 
-def compose(assessment: Assessment, *, practice: str, printed_at: datetime, parts: PrintParts = USUAL_PARTS) -> Sheet:
+def compose(
+    assessment: Assessment,
+    *,
+    practice: str,
+    printed_at: datetime,
+    parts: PrintParts = USUAL_PARTS,
+    letterhead: tuple[str, ...] = (),
+) -> Sheet:
     """The whole print of one assessment; a patient's page is made only where there is a number."""
     label = assessment.label.strip() or phrases.NO_LABEL
     zone = phrases.zone_words(assessment.at)
     return Sheet(
         title=assessment.model.content.title,
-        furniture=_furniture(assessment, label, practice.strip(), printed_at),
+        furniture=_furniture(assessment, label, practice.strip(), printed_at, letterhead),
         label=label,
         person=_person(assessment),
         assessed=f"assessed {phrases.moment_words(assessment.at)}{f' {zone}' if zone else ''}",
@@ -57,7 +64,9 @@ def compose(assessment: Assessment, *, practice: str, printed_at: datetime, part
     )
 
 
-def _furniture(assessment: Assessment, label: str, practice: str, printed_at: datetime) -> Furniture:
+def _furniture(
+    assessment: Assessment, label: str, practice: str, printed_at: datetime, letterhead: tuple[str, ...]
+) -> Furniture:
     content, fingerprint = assessment.model.content, assessment.model.fingerprint
     return Furniture(
         practice=practice,
@@ -70,6 +79,7 @@ def _furniture(assessment: Assessment, label: str, practice: str, printed_at: da
         program=f"clinicalc {__version__}",
         printed=f"Printed {phrases.moment_words(printed_at)}",
         approval=phrases.vetting_words(assessment.vetting) if assessment.vetting else "",
+        letterhead=tuple(line.strip() for line in letterhead),
     )
 
 

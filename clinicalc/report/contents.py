@@ -4,6 +4,7 @@ from dataclasses import dataclass
 from enum import Enum, auto
 
 from clinicalc.report.comparison_figure import Compared
+from clinicalc.report.effect_figure import Moves
 from clinicalc.report.measured import Measured
 from clinicalc.report.range_line import RangeOfValues
 from clinicalc.report.shares_figure import Walk
@@ -98,10 +99,18 @@ class RangeCell:
     inside: bool
 
 
+@dataclass(frozen=True, slots=True)
+class NotedCell:
+    """A text, and softer under it what is to be known of it."""
+
+    text: str
+    notes: tuple[str, ...]
+
+
 NOTHING = "–"
 """In the place of a value as used, where what was typed could not be used."""
 
-Cell = str | TypedCell | MarksCell | RangeCell
+Cell = str | TypedCell | NotedCell | MarksCell | RangeCell
 
 
 class RowKind(Enum):
@@ -118,6 +127,8 @@ class Row:
 
     cells: tuple[Cell, ...]
     kind: RowKind = RowKind.NUMBER
+    keep: bool = False
+    """Whether it is held to the row after it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -138,6 +149,8 @@ class Table:
     rows: tuple[Row, ...]
     kinds_apart: bool = False
     """Whether, as long as it is short, measured values and answers stand side by side under the questions."""
+    small: bool = False
+    """Whether it is set in small type."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -168,7 +181,14 @@ class ComparisonPart:
     compared: Compared
 
 
-Block = FactList | RemarkList | Table | Prose | SignatureLine | SharesPart | ComparisonPart
+@dataclass(frozen=True, slots=True)
+class EffectPart:
+    """Patients with the numbers of two versions."""
+
+    moves: Moves
+
+
+Block = FactList | RemarkList | Table | Prose | SignatureLine | SharesPart | ComparisonPart | EffectPart
 
 
 @dataclass(frozen=True, slots=True)
@@ -207,6 +227,8 @@ class Furniture:
     printed: str
     approval: str = ""
     """Who approved the file and until when, "" for nobody."""
+    letterhead: tuple[str, ...] = ()
+    """The lines over the print in place of the practice's bare name; none where there is no letterhead."""
 
 
 @dataclass(frozen=True, slots=True)

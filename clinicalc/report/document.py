@@ -28,6 +28,7 @@ class Document:
     author: str
     program: str
     printed_at: datetime
+    letterhead: tuple[str, ...] = ()
 
 
 def make_document(
@@ -37,19 +38,22 @@ def make_document(
     printed_at: datetime | None = None,
     parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
+    letterhead: tuple[str, ...] = (),
 ) -> Document:
     """The pages of an assessment; the last one is for the patient, where it is wanted and there is a number.
 
+    `letterhead` stands in place of the practice's bare name, as far as it takes no further page.
     `printed_at` stands in the foot; left out, it is `time_of_printing()`. Raises PrintRefused for a text that could
     only be shown wrongly.
     """
     lettering = read_lettering()
     _check_name(lettering, assessment.label.strip(), "The patient label")
     _check_name(lettering, practice.strip(), "The practice name")
+    check_letterhead(lettering, letterhead)
     now = time_of_printing()  # asked for in any case: the PDF library reads the same variable
     moment = printed_at or now
-    sheet = compose(assessment, practice=practice, printed_at=moment, parts=parts)
-    check_texts(lettering, tuple(_texts(sheet)), f"A text on the print, from {assessment.model.name} or as typed,")
+    sheet = compose(assessment, practice=practice, printed_at=moment, parts=parts, letterhead=letterhead)
+    check_texts(lettering, tuple(texts_of(sheet)), f"A text on the print, from {assessment.model.name} or as typed,")
     return Document(
         pages=lay_out(lettering, sheet, paper),
         lettering=lettering,
@@ -57,6 +61,7 @@ def make_document(
         author=sheet.furniture.practice or sheet.furniture.program,
         program=sheet.furniture.program,
         printed_at=moment,
+        letterhead=sheet.furniture.letterhead,
     )
 
 
@@ -77,6 +82,12 @@ def time_of_printing() -> datetime:
         ) from error
 
 
+def check_letterhead(lettering: Lettering, lines: tuple[str, ...]) -> None:
+    """Nothing where the lines can be printed as they are. Raises PrintRefused, naming the line."""
+    for number, line in enumerate(lines, 1):
+        _check_name(lettering, line.strip(), f"Line {number} of the letterhead")
+
+
 def _check_name(lettering: Lettering, text: str, what: str) -> None:
     check_text(lettering, text, what)
     if len(text) > LONGEST_NAME:
@@ -85,17 +96,17 @@ def _check_name(lettering: Lettering, text: str, what: str) -> None:
         )
 
 
-def _texts(node: object) -> Iterator[str]:
+def texts_of(node: object) -> Iterator[str]:
     """Every text in the contents, however deep."""
     if isinstance(node, str):
         yield node
     elif isinstance(node, tuple):
         for part in node:
-            yield from _texts(part)
+            yield from texts_of(part)
     else:
         kind: type = type(node)
         for name in _field_names(kind):
-            yield from _texts(getattr(node, name))
+            yield from texts_of(getattr(node, name))
 
 
 @cache

@@ -2,7 +2,8 @@
 
 from clinicalc.report.columns import Columns
 from clinicalc.report.comparison_figure import draw_comparison
-from clinicalc.report.contents import ComparisonPart, SharesPart
+from clinicalc.report.contents import ComparisonPart, EffectPart, SharesPart
+from clinicalc.report.effect_figure import draw_effect
 from clinicalc.report.fonts import Lettering
 from clinicalc.report.ruler import RulerSize
 from clinicalc.report.shapes import move
@@ -21,11 +22,13 @@ def ruler_size(lane: float) -> RulerSize:
     return RulerSize(WIDTH - RESULT_LEFT, lane=lane, text=SMALL, line=_LINE)
 
 
-def set_figure(lettering: Lettering, part: SharesPart | ComparisonPart) -> list[Strip]:
+def set_figure(lettering: Lettering, part: SharesPart | ComparisonPart | EffectPart) -> list[Strip]:
     """The figure as one strip, which no page break parts, held to what is said under it."""
     columns = Columns(ruler_size(_LANE), FIGURES_END, RESULT_LEFT, BASE)
     if isinstance(part, SharesPart):
         figure = draw_shares(part.walk, columns, lettering.width)
+    elif isinstance(part, EffectPart):
+        figure = draw_effect(part.moves, columns, lettering.width)
     else:
         compared = draw_comparison(part.compared, columns, lettering.width)
         if compared is None:

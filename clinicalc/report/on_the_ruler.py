@@ -4,6 +4,7 @@ from collections.abc import Sequence
 
 from msgspec import UnsetType
 
+from clinicalc.assessment.choices import DEFAULT_LEVEL
 from clinicalc.assessment.decision import DecisionPoint as StatedPoint
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.model import Model, ModelEquation
@@ -46,9 +47,9 @@ def measure_assessment(assessment: Assessment, points: Sequence[StatedPoint] = (
     )
 
 
-def measure_nothing(model: Model, points: Sequence[StatedPoint]) -> Measured:
-    """What a ruler shows before there is an assessment."""
-    return Measured(model.equations[0].content.link, decisions=_decisions(points))
+def measure_nothing(model: Model, points: Sequence[StatedPoint], level: float = DEFAULT_LEVEL) -> Measured:
+    """What a ruler shows before there is an assessment; `level` names its band."""
+    return Measured(model.equations[0].content.link, level=level, decisions=_decisions(points))
 
 
 def walk_of(assessment: Assessment) -> Walk | None:

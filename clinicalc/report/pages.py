@@ -1,6 +1,6 @@
 """From strips to pages of paper: where a page ends, and what stands at its head and foot."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 
 from clinicalc.report.contents import Furniture, Sheet
@@ -21,6 +21,7 @@ FOOT_STYLE, FOOT_SOFT = Style(SMALL, SEMIBOLD), CAPTION
 SIDE = 150.0
 """Points kept free for the short text at the right of head and foot."""
 STRIP_HEIGHT = 19.0
+_FURTHER = Style(SMALL)
 _WHITE_OVER_FOOT = 6.0
 _FOR_CLINICIAN, _FOR_PATIENT = "For the clinician", "For the patient"
 
@@ -46,12 +47,59 @@ class _Part:
 
 def lay_out(lettering: Lettering, sheet: Sheet, paper: Paper = Paper.A4) -> tuple[Page, ...]:
     """The pages of a sheet: the clinician's, then the patient's where there is one."""
-    parts = list(_parts(lettering, sheet, paper))
+    furniture = sheet.furniture
+    bare = furniture.practice or "".join(furniture.letterhead[:1]) or "no practice name"
+    parts = _headed(lambda name: list(_parts(lettering, sheet, paper, name)), bare, furniture)
+    return _pages(lettering, parts, furniture.strip, paper)
+
+
+def _headed(break_under: Callable[[str], list[_Part]], bare: str, furniture: Furniture) -> list[_Part]:
+    """The pages under the letterhead, as far as it takes no further page; else under the bare name."""
+    parts = break_under(bare)
+    for name in _letterhead_forms(furniture.letterhead):
+        headed = break_under(name)
+        if len(headed) <= len(parts):
+            return headed
+    return parts
+
+
+def _letterhead_forms(lines: tuple[str, ...]) -> Iterator[str]:
+    """The letterhead line by line, then the lines after the first in one."""
+    if lines:
+        yield "\n".join(lines)
+        yield "\n".join((lines[0], *([" · ".join(lines[1:])] if lines[1:] else [])))
+
+
+def lay_out_plain(
+    lettering: Lettering, kind: str, strips: Sequence[Strip], furniture: Furniture, paper: Paper = Paper.A4
+) -> tuple[Page, ...]:
+    """The pages of a print without a result; `kind` stands at the head of each, the notes at the foot of the first."""
+    bare = furniture.practice or "".join(furniture.letterhead[:1]) or furniture.label
+    parts = _headed(lambda name: _plain_parts(lettering, kind, strips, furniture, paper, name), bare, furniture)
+    return _pages(lettering, parts, furniture.strip, paper)
+
+
+def _plain_parts(
+    lettering: Lettering, kind: str, strips: Sequence[Strip], furniture: Furniture, paper: Paper, practice: str
+) -> list[_Part]:
+    notes = tuple(note for note in (furniture.fingerprint_note, furniture.caution) if note)
+    first, later = _foot(lettering, furniture, notes), _foot(lettering, furniture)
+    names = practice, furniture.label
+    below = paper.height - BOTTOM - _WHITE_OVER_FOOT
+    rooms = [
+        below - foot[1] - _head(lettering, name, "", furniture.strip)[1]
+        for name, foot in zip(names, (first, later), strict=True)
+    ]
+    broken = break_pages(strips, (rooms[0], rooms[1]))
+    return [_Part(kind, names[place > 0], page, later if place else first) for place, page in enumerate(broken)]
+
+
+def _pages(lettering: Lettering, parts: Sequence[_Part], strip_words: str, paper: Paper) -> tuple[Page, ...]:
     pages = []
     left = (paper.width - WIDTH) / 2
     for number, part in enumerate(parts, 1):
         side = f"{part.reader}, page {number} of {len(parts)}"
-        head, y = _head(lettering, part.name, side, sheet.furniture.strip)
+        head, y = _head(lettering, part.name, side, strip_words)
         shapes = list(move(head, left, 0))
         for strip in part.strips:
             shapes += move(strip.shapes, left, y)
@@ -61,13 +109,12 @@ def lay_out(lettering: Lettering, sheet: Sheet, paper: Paper = Paper.A4) -> tupl
     return tuple(pages)
 
 
-def _parts(lettering: Lettering, sheet: Sheet, paper: Paper) -> Iterator[_Part]:
-    """The pages without their heads, which count all of them."""
+def _parts(lettering: Lettering, sheet: Sheet, paper: Paper, practice: str) -> Iterator[_Part]:
+    """The pages without their heads, which count all of them; `practice` stands over the first and the patient's."""
     furniture = sheet.furniture
     alone = _foot(lettering, furniture, (furniture.fingerprint_note,))
     first = _foot(lettering, furniture, (furniture.fingerprint_note, furniture.caution))
     later = _foot(lettering, furniture)
-    practice = furniture.practice or "no practice name"
     below = paper.height - BOTTOM - _WHITE_OVER_FOOT
 
     def room(name: str, foot: tuple[tuple[Shape, ...], float]) -> float:
@@ -141,8 +188,15 @@ def _groups(strips: Sequence[Strip]) -> Iterator[list[Strip]]:
 
 
 def _head(lettering: Lettering, name: str, side: str, strip: str) -> tuple[list[Shape], float]:
-    """The head of a page and the y below it: whose it is, which page, a rule, and the strip where there is one."""
-    shapes, y = _stacked(set_lines(lettering, name, 0, WIDTH - SIDE, HEAD_STYLE), TOP)
+    """The head of a page and the y below it: whose it is, which page, a rule, and the strip where there is one.
+
+    Lines of `name` after its first are set smaller, over the whole width.
+    """
+    first, *further = name.split("\n")
+    lines = set_lines(lettering, first, 0, WIDTH - SIDE, HEAD_STYLE)
+    shapes, y = _stacked(
+        [*lines, *(s for line in further for s in set_lines(lettering, line, 0, WIDTH, _FURTHER))], TOP
+    )
     baseline = TOP + HEAD_STYLE.baseline
     shapes.append(Text(WIDTH, baseline, side, FOOT_SOFT.size, tone=Tone.SOFT, anchor=Anchor.END))
     y += 4

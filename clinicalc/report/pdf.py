@@ -11,7 +11,7 @@ from typing import Any
 from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
 from clinicalc.errors import FileNotWritten
-from clinicalc.replacement import replace_file
+from clinicalc.replacement import create_file, replace_file
 from clinicalc.report.attachment import attach_record
 from clinicalc.report.document import Document, make_document
 from clinicalc.report.painter import paint_pages
@@ -20,6 +20,7 @@ from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.report.typefaces import Weight, make_known
 
 _PDF_BEGINS = b"%PDF-"
+_ONE_PATIENT = "Assessment of one patient with a clinical risk model"
 _KINDS = {
     stat.S_IFDIR: "a folder",
     stat.S_IFLNK: "a symbolic link",
@@ -37,6 +38,7 @@ def make_report(
     printed_at: datetime | None = None,
     parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
+    letterhead: tuple[str, ...] = (),
 ) -> bytes:
     """The PDF (1.7) of an assessment, its record attached; `parts` says which parts it has.
 
@@ -44,8 +46,10 @@ def make_report(
     else now. The same assessment, practice, time and choices give the same bytes. Raises PrintRefused for a text that
     could only be shown wrongly.
     """
-    document = make_document(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper)
-    return _write_pdf(document, write_record(assessment))
+    document = make_document(
+        assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper, letterhead=letterhead
+    )
+    return write_document(document, _ONE_PATIENT, write_record(assessment))
 
 
 def save_report(
@@ -56,6 +60,7 @@ def save_report(
     printed_at: datetime | None = None,
     parts: PrintParts = USUAL_PARTS,
     paper: Paper = Paper.A4,
+    letterhead: tuple[str, ...] = (),
 ) -> None:
     """Writes the PDF to `path`, whole or not at all; an older file stays untouched until the new one is complete.
 
@@ -64,14 +69,34 @@ def save_report(
     Raises FileNotWritten when the place cannot be written, when the name does not end in .pdf, and when anything but a
     PDF stands there already (a folder, a device, a link, a file of another kind); PrintRefused as `make_report` does.
     """
-    content = make_report(assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper)
+    content = make_report(
+        assessment, practice=practice, printed_at=printed_at, parts=parts, paper=paper, letterhead=letterhead
+    )
+    _put(path, content, may_replace=True)
+
+
+def save_document(path: Path, document: Document, subject: str, *, replace: bool = False) -> None:
+    """Writes the pages to `path` as a PDF that says what it is about, whole or not at all.
+
+    Raises FileNotWritten as `save_report` does, and where a file of this name is there already and `replace` is False.
+    """
+    _put(path, write_document(document, subject), may_replace=replace)
+
+
+def _put(path: Path, content: bytes, *, may_replace: bool) -> None:
     try:
         fault = _judge_target(path)
+        if not fault and not may_replace and os.path.lexists(path):
+            raise FileNotWritten(
+                "there is a file with this name already; it was left as it is.",
+                where=str(path),
+                do="Choose another name, or say that it is to be replaced.",
+            )
         if fault:
             raise FileNotWritten(
                 "the print was not saved.", where=str(path), why=fault, do="Choose another name. Nothing was changed."
             )
-        replace_file(path, content)
+        (replace_file if may_replace else create_file)(path, content)
     except (OSError, ValueError) as error:  # ValueError: a file name with a null character
         said = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
         raise FileNotWritten(
@@ -103,7 +128,11 @@ def _open_waiting_for_nothing(name: str, flags: int) -> int:
     return os.open(name, flags | getattr(os, "O_NONBLOCK", 0) | getattr(os, "O_NOFOLLOW", 0))
 
 
-def _write_pdf(document: Document, record: str) -> bytes:
+def write_document(document: Document, subject: str, record: str = "") -> bytes:
+    """The pages as the bytes of a PDF (1.7) that says what it is about; `record` is attached where there is one.
+
+    The same pages and time give the same bytes.
+    """
     from io import BytesIO
 
     from reportlab.pdfgen.canvas import Canvas
@@ -121,11 +150,14 @@ def _write_pdf(document: Document, record: str) -> bytes:
     canvas.setTitle(document.title)
     canvas.setAuthor(document.author)
     canvas.setCreator(document.program)
-    canvas.setSubject("Assessment of one patient with a clinical risk model")
+    if document.letterhead:  # an old print is laid out again with it; on the pages its lines may be broken
+        canvas.setKeywords("\n".join(document.letterhead))
+    canvas.setSubject(subject)
     canvas.setViewerPreference("DisplayDocTitle", "true")
     canvas.setDateFormatter(lambda *_: _pdf_date(document.printed_at))
     paint_pages(canvas, document.lettering, document.pages)
-    attach_record(canvas._doc, record)
+    if record:
+        attach_record(canvas._doc, record)
     with _bytes_as_they_are():
         canvas.save()
     return target.getvalue()

@@ -1,12 +1,13 @@
 """The sentences of a print that do not come from the coefficient file."""
 
-from datetime import date, datetime
+from datetime import datetime
 
 from clinicalc.assessment.findings import Finding
 from clinicalc.assessment.numerals import NARROW_SPACE, of_people
 from clinicalc.assessment.result import Assessment, Band, Estimate
 from clinicalc.assessment.vetting import Vetting
 from clinicalc.coefficients.schema import ModelContent, ReconstructedBand
+from clinicalc.units.days import day_words
 
 NOT_VETTED = "Not vetted: for trying out, not for a patient"
 
@@ -44,22 +45,6 @@ _BASES = {
 }
 _REBUILT = "Approximate, rebuilt from printed intervals."
 """Where a list of what was assumed stands beside it."""
-
-# not from the locale: a print reads the same everywhere
-_MONTHS = (
-    "January",
-    "February",
-    "March",
-    "April",
-    "May",
-    "June",
-    "July",
-    "August",
-    "September",
-    "October",
-    "November",
-    "December",
-)
 
 
 def vetting_words(vetting: Vetting | None) -> str:
@@ -141,11 +126,6 @@ def say_people(assessment: Assessment) -> str:
 def say_finding(finding: Finding) -> str:
     """A finding after its grade: "Caution: …"."""
     return f"{finding.grade.value.capitalize()}: {finding.message}"
-
-
-def day_words(moment: date) -> str:
-    """A day in words: "1 December 2026"."""
-    return f"{moment.day} {_MONTHS[moment.month - 1]} {moment.year}"
 
 
 def moment_words(moment: datetime) -> str:

@@ -3,7 +3,19 @@
 from collections.abc import Iterator, Sequence
 from dataclasses import replace
 
-from clinicalc.report.contents import NOTHING, Cell, Column, Mark, MarksCell, RangeCell, Row, RowKind, Table, TypedCell
+from clinicalc.report.contents import (
+    NOTHING,
+    Cell,
+    Column,
+    Mark,
+    MarksCell,
+    NotedCell,
+    RangeCell,
+    Row,
+    RowKind,
+    Table,
+    TypedCell,
+)
 from clinicalc.report.fonts import Lettering
 from clinicalc.report.range_line import draw_range
 from clinicalc.report.shapes import Anchor, Line, Rect, Shape, Text, Tone, move
@@ -12,6 +24,7 @@ from clinicalc.report.strips import (
     PLAIN,
     SEMIBOLD,
     SMALL,
+    SMALL_PRINT,
     WIDTH,
     Strip,
     Style,
@@ -38,9 +51,11 @@ def set_table(lettering: Lettering, table: Table, apart: Style = PLAIN) -> list[
     if table.kinds_apart and len(table.rows) <= _LONGEST_APART and len({row.kind for row in table.rows}) > 1:
         return hold_together(list(_kinds_apart(lettering, table, apart)))
     head = [replace(strip, keep=True) for strip in (*_headings(lettering, table.columns), _ruled())]
+    style = SMALL_PRINT if table.small else PLAIN
     strips, ends = list(head), []
     for row in table.rows:
-        strips += [replace(strip, head=tuple(head)) for strip in _row(lettering, table.columns, row)]
+        strips += [replace(strip, head=tuple(head)) for strip in _row(lettering, table.columns, row, style)]
+        strips[-1] = replace(strips[-1], keep=row.keep)
         ends.append(len(strips) - 1)
     if len(ends) > 2:
         strips[ends[-2]] = replace(strips[ends[-2]], keep=True)  # the last row never goes over alone
@@ -153,6 +168,8 @@ def _cell(lettering: Lettering, cell: Cell, column: Column, style: Style) -> lis
             return set_lines(lettering, cell, column.left, column.width, style) if cell else []
         case TypedCell():
             return _typed(lettering, cell, column, style)
+        case NotedCell():
+            return _noted(lettering, cell, column, style)
         case MarksCell():
             return list(_marks(lettering, cell, column, style))
         case RangeCell():
@@ -166,13 +183,23 @@ def _typed(lettering: Lettering, cell: TypedCell, column: Column, style: Style) 
         return set_lines(lettering, cell.after, column.left, column.width, soft)
     strong = set_lines(lettering, cell.value, column.left, column.width, firm)
     if len(strong) > 1:
-        return [*strong, *set_lines(lettering, cell.after, column.left, column.width, soft)]
+        return [*strong, *(set_lines(lettering, cell.after, column.left, column.width, soft) if cell.after else [])]
     wide = lettering.width(cell.value, firm.size, SEMIBOLD)
     # a space begins the softer text, so that both are read back as two words
     beside, below = part_words(lettering, f" {cell.after}", column.width - wide, soft.size)
     after = Text(column.left + wide, soft.baseline, beside, soft.size, tone=soft.tone)
     first = replace(strong[0], shapes=(*strong[0].shapes, *([after] if beside.strip() else [])))
     return [first, *(set_lines(lettering, below, column.left, column.width, soft) if below else [])]
+
+
+def _noted(lettering: Lettering, cell: NotedCell, column: Column, style: Style) -> list[Strip]:
+    """The text, and each note under it in soft letters."""
+    soft = replace(style, tone=Tone.SOFT)
+    notes = (set_lines(lettering, note, column.left, column.width, soft) for note in cell.notes)
+    return [
+        *set_lines(lettering, cell.text, column.left, column.width, style),
+        *(line for note in notes for line in note),
+    ]
 
 
 def _marks(lettering: Lettering, cell: MarksCell, column: Column, style: Style) -> Iterator[Strip]:

@@ -5,6 +5,7 @@ from dataclasses import dataclass, replace
 from clinicalc.report.contents import (
     Block,
     ComparisonPart,
+    EffectPart,
     Fact,
     FactList,
     Pair,
@@ -140,7 +141,7 @@ def set_block(lettering: Lettering, block: Block, style: SectionStyle = SectionS
         case Prose():
             lines = (set_lines(lettering, text, 0, style.width, style.text) for text in block.paragraphs)
             return [strip for paragraph in lines for strip in _spaced(paragraph, style.after)]
-        case SharesPart() | ComparisonPart():
+        case SharesPart() | ComparisonPart() | EffectPart():
             return set_figure(lettering, block)
         case Signature():
             return [_signature(lettering, block, style.width)]

@@ -1,13 +1,10 @@
 """The values of an assessment as a table: typed, in the file's unit, derivation range, marks of the findings."""
 
-from datetime import datetime
-
 from clinicalc.assessment.fields import NumberField
 from clinicalc.assessment.findings import Finding, FindingCode, Grade
 from clinicalc.assessment.limits import shown_limits
 from clinicalc.assessment.numerals import plain
 from clinicalc.assessment.result import Assessment, ValueLine
-from clinicalc.report import phrases
 from clinicalc.report.contents import (
     NOTHING,
     Cell,
@@ -23,6 +20,7 @@ from clinicalc.report.contents import (
 )
 from clinicalc.report.range_line import RangeOfValues
 from clinicalc.units.conversion import conversion
+from clinicalc.units.days import day_words
 from clinicalc.units.reading import Reading, read_value
 
 NOT_GIVEN = "not given"
@@ -80,7 +78,7 @@ def _typed(assessment: Assessment, line: ValueLine) -> TypedCell:
     origin = " (typed)" if line.derived else ""
     mean = f", {line.averaged.words}" if line.averaged else ""
     day = line.dated
-    dated = f", of {phrases.day_words(datetime(day.year, day.month, day.day))}" if day else ""
+    dated = f", of {day_words(day)}" if day else ""
     unused = "" if line.used else " (not used)"
     return TypedCell(value, f"{unit}{origin}{mean}{dated}{unused}".strip())
 

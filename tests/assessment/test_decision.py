@@ -67,6 +67,15 @@ def test_the_points_of_the_file_hold_for_every_horizon_and_the_practices_for_its
     assert [p.probability for p in points_for(model, Span(3), (own,))] == [0.1]
 
 
+def test_a_point_that_the_practice_took_over_from_the_file_stands_once() -> None:
+    model = shipped(TARNWICK)
+    [stated] = model.content.decision_points
+    own = PracticePoint(model.content.id, 10, "a", stated.probability, stated.label, stated.source)
+    assert [p.origin for p in points_for(model, Span(10), (own,))] == [PointOrigin.FILE]
+    other = replace(own, source="Practice meeting of May")
+    assert [p.origin for p in points_for(model, Span(10), (other,))] == [PointOrigin.FILE, PointOrigin.PRACTICE]
+
+
 def test_the_place_and_the_confidence() -> None:
     """The tiny model's worked example: eta -1.5 with variance 0.0284, Phi((-1.5 - logit(T)) / sqrt(0.0284))."""
     case = case_of(model_of(tree_of(tiny_logit_model())), TINY_TEXTS)

@@ -1,4 +1,5 @@
-"""Opening a library of 500 models and 5,000 records, of which 20 are in use: what a window waits for at its start.
+"""Opening a library of 500 models and 5,000 records, of which 20 are in use: what a window waits for at its start, and
+what one command waits for that names an approved model.
 
 Run with `--benchmark-only`. Nothing is asserted about time.
 """
@@ -15,6 +16,8 @@ from pytest_benchmark.fixture import BenchmarkFixture
 from clinicalc.library.folder import LibraryFolder
 from clinicalc.library.machine import Machine
 from clinicalc.library.opening import OpenedLibrary, open_for_bedside, open_library
+from clinicalc.operations.approved import open_approved
+from clinicalc.settings import Settings, write_settings
 from tests.library.machines import MODEL_ID, MODEL_NAMES, NOW, model_bytes
 from tests.library.records_kit import Practice, practice
 
@@ -63,4 +66,13 @@ def test_an_opening_after_the_first(
 ) -> None:
     opened = benchmark(lambda: opening(machine, NOW))
     assert len(opened.in_use()) == IN_USE
+    benchmark.extra_info["aim in seconds"] = AIM
+
+
+def test_one_model_by_name(benchmark: BenchmarkFixture, machine: Machine, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setenv("CLINICALC_SETTINGS", str(machine.folder))
+    write_settings(Settings(library=str(machine.place), practice_key=machine.practice_key))
+    fingerprint = open_for_bedside(machine, NOW).in_use()[0].fingerprint
+    approved = benchmark(lambda: open_approved(fingerprint, now=NOW))
+    assert approved.model.fingerprint == fingerprint
     benchmark.extra_info["aim in seconds"] = AIM

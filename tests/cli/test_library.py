@@ -9,6 +9,7 @@ import pytest
 
 from clinicalc.library import base64url
 from clinicalc.library.keys import key_id
+from clinicalc.units.days import day_words
 from tests.cli.calling import LIPIDS, call, example
 from tests.cli.practices import FINGERPRINT, TARNWICK, WOMAN, Desk, found_practice
 from tests.library.keys_at_hand import key_file
@@ -65,7 +66,8 @@ class TestPeople:
         gone = approved.library("dismiss", "Dr Ada Tarn", "--practice-key", approved.key("practice"))
         said = " ".join(gone.out.split())
         assert "Dr Ada Tarn (GP partner) may no longer install, approve or withdraw" in said
-        named = f"Tarnwick cardiovascular disease, invented example 1.0.0 (until {date.today() + timedelta(days=365)})"
+        until = day_words(date.today() + timedelta(days=365))
+        named = f"Tarnwick cardiovascular disease, invented example 1.0.0 (until {until})"
         assert f"What Dr Ada Tarn approved stays valid: {named}." in said
         assert "Approvers now: Cleo Fell (Practice manager)." in said
         assert approved.library("list", "--json").record["models"][0]["standing"] == "in_use"

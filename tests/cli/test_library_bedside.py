@@ -40,6 +40,17 @@ class TestOutOfUse:
         assert stopped.status == 3
         assert "12.3" not in stopped.out
 
+    def test_a_model_that_rests_says_why_all_the_same(self, desk: Desk) -> None:
+        desk.install()
+        desk.library("list")  # from here on it is left out of an opening for the bedside
+        waiting = call("assess", "--approved", TARNWICK, *WOMAN)
+        assert (waiting.status, "Waiting for approval" in waiting.out) == (3, True)
+        desk.approve("--fingerprint", FINGERPRINT)
+        desk.library("withdraw", TARNWICK, "--key", desk.key("cleo"), "--reason", "A misprint")
+        for named in (TARNWICK, FINGERPRINT[:12]):
+            withdrawn = call("assess", "--approved", named, *WOMAN)
+            assert (withdrawn.status, "Withdrawn by Cleo Fell on" in withdrawn.out) == (3, True)
+
 
 class TestAtTheBedside:
     def test_the_number_is_that_of_the_file(self, approved: Desk) -> None:

@@ -54,7 +54,7 @@ def test_diff_says_what_changed_and_what_it_does(newer: str) -> None:
     assert "Same: title and outcome (2)" in said
     assert "coefficients (12)" in said
     assert "Effect on 1296 standard patients (10 years)" in said
-    assert "A number from both 1152, only from the old 0, only from the new 0, from neither 144." in said
+    assert "Both versions give a number for 1152 of them, only the old one for 0, only the new one" in said
     assert "Largest fall: nobody." in said
     assert ", systolic_bp " in said
     assert " mmHg, bp_treated " in said
@@ -151,7 +151,7 @@ def test_a_library_that_lacks_what_was_seen_is_not_exported(shelf: Shelf, tmp_pa
 def test_history_of_everything_and_of_one_model(shelf: Shelf, tmp_path: Path) -> None:
     ended = call("library", "history")
     assert ended.status == 0
-    assert "4. 2026-12-01T10:00:00Z tarnwick-cvd-10y 1.0.0: approved until 2027-06-30" in _said(ended)
+    assert "4. 2026-12-01T10:00:00Z tarnwick-cvd-10y 1.0.0: approved until 30 June 2027" in _said(ended)
     file = tmp_path / "history.csv"
     assert call("library", "history", "tarnwick-cvd-10y", "--csv", str(file)).status == 0
     rows = list(csv.DictReader(io.StringIO(file.read_bytes().decode("utf-8-sig"), newline="")))
@@ -174,7 +174,7 @@ def test_as_of_a_day(shelf: Shelf) -> None:
         ("tarnwick-cvd-10y", True, "Dr Ada Tarn")
     ]
     said = _said(call("library", "as-of", "2026-12-01"))
-    assert "tarnwick-cvd-10y 1.0.0: answered; approved by Dr Ada Tarn (general practitioner) until 2027-06-30" in said
+    assert "tarnwick-cvd-10y 1.0.0: answered; approved by Dr Ada Tarn (general practitioner) until 30 June 2027" in said
     assert "The dates are those that the writers of the records stated" in said
     assert "There was no library yet." in call("library", "as-of", "2026-11-29").out
 

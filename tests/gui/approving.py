@@ -2,7 +2,7 @@
 
 import hashlib
 import json
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from datetime import datetime
 from pathlib import Path
@@ -38,14 +38,19 @@ class Surgery:
         self.shelf = make_shelf(self.folder / "library", offline_hours=24)
         self.machine = machine_for(self.shelf, self.folder / "machine")
 
-    def open(self, choose_save: ChooseSave = lambda *_: None, why: str | None = None) -> MainWindow:
-        """A window that has read the library; `why` is what is answered when a model is to be held."""
+    def open(
+        self,
+        choose_save: ChooseSave = lambda *_: None,
+        why: str | None = None,
+        start: Callable[[ModelLibrary], None] = ModelLibrary.start,
+    ) -> MainWindow:
+        """A window that has read the library, or as `start` does it; `why` is answered when a model is to be held."""
         state = EntryState()
         library = ModelLibrary(state, lambda: self.machine, lambda: self.now)
         window = MainWindow(
             state, library=library, choose_open=lambda _: None, choose_save=choose_save, ask_why=lambda *_: why
         )
-        library.start()
+        start(library)
         return window
 
     def add_version(self, version: str, title: str = "") -> str:

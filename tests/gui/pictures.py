@@ -31,6 +31,8 @@ from clinicalc.resources import read_shipped
 from clinicalc.settings import Paper, PracticePoint, ThemeChoice
 from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, WOMAN_EGFR_90, run
 from tests.gui.approving import Surgery
+from tests.gui.models.picture_states import MODELS_STATES
+from tests.gui.models.picture_versions import write_prints
 from tests.library.records_kit import POINT
 
 TARNWICK, LIPIDS, REGIONAL = "tarnwick-cvd-10y", "general-cvd-2008-lipids", "cvd-2021-regional"
@@ -247,6 +249,7 @@ STATES = (
     State("approved-copy", None, then=_lose_library, make=_open_in_surgery),
     State("approved-copy-too-old", None, then=_lose_library_for_long, make=_open_in_surgery),
     State("approved-tried-out", None, then=_try_out, make=_open_in_surgery),
+    *(State(name, None, then=then, make=make) for name, then, make in MODELS_STATES),
 )
 
 
@@ -309,7 +312,7 @@ def picture_windows(folder: Path, sizes: Mapping[str, QSize]) -> Iterator[Path]:
 
 
 def picture_prints(folder: Path) -> Iterator[Path]:
-    """The pages of prints with and without a band, on A4 and Letter. Nothing where there is no pdftoppm."""
+    """Prints of patients on A4 and Letter, those of the library on A4 and in grey. Nothing without pdftoppm."""
     tool = shutil.which("pdftoppm")
     if tool is None:
         return
@@ -323,6 +326,11 @@ def picture_prints(folder: Path) -> Iterator[Path]:
             save_pdf(pdf, run(model, typed), practice="Tarnwick Northgate", paper=paper)
             subprocess.run([tool, "-r", str(_DOTS_PER_INCH), "-png", str(pdf), str(pdf.with_suffix(""))], check=True)
             yield from sorted(folder.glob(f"{pdf.stem}-*.png"))
+    for pdf in write_prints(folder):
+        for ending, more in (("", ()), ("-grey", ("-gray",))):
+            stem = str(pdf.with_suffix("")) + ending
+            subprocess.run([tool, "-r", str(_DOTS_PER_INCH), "-png", *more, str(pdf), stem], check=True)
+            yield from sorted(folder.glob(f"{Path(stem).name}-[0-9]*.png"))
 
 
 def main() -> None:

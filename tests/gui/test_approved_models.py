@@ -291,7 +291,7 @@ def test_a_model_withdrawn_between_menu_and_click_is_refused_in_words(surgery: S
     offered(answered)
     surgery.withdraw()
     answered.model_bar.chooser.menu.actions()[0].trigger()
-    assert answered.pages.currentWidget() is answered.refusal
+    assert answered.bedside.views.currentWidget() is answered.refusal
     assert "Withdrawn by Dr Ben Wick" in answered.refusal.problems.toPlainText()
     answered.refusal.back.click()
     assert_no_number(answered, "Withdrawn by Dr Ben Wick")
@@ -312,7 +312,7 @@ def test_a_fault_of_our_own_blanks_before_it_is_told(surgery: Surgery, answered:
     def fail() -> None:
         raise ZeroDivisionError("told nobody")
 
-    library_of(answered)._machine = fail  # type: ignore[assignment]  # stands for a fault nobody thought of
+    library_of(answered).reading.machine = fail  # type: ignore[assignment]  # stands for a fault nobody thought of
     with pytest.raises(ZeroDivisionError):
         library_of(answered).check()
     assert_no_number(answered, "ZeroDivisionError")
@@ -324,7 +324,7 @@ def test_a_machine_that_no_longer_names_its_library_gives_no_number(surgery: Sur
     def name_none() -> Machine:
         raise LibraryError("this machine uses no model library.")
 
-    library_of(answered)._machine = name_none
+    library_of(answered).reading.machine = name_none
     tick(answered)
     assert_no_number(answered, "This machine uses no model library.")
 

@@ -37,6 +37,7 @@ def break_at_77(
     practice_points: Sequence[PracticePoint],
     matching_age: bool,
     vetting: Vetting | None,
+    level: float,
 ) -> Assessment:
     """The real verb, but for one age."""
     age = entry.typed.get("age")

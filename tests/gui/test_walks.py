@@ -146,6 +146,8 @@ def test_messages_of_the_foot(
         "Copied as text, without name or number.",
         "Saved as tarnwick-cvd-10y-2026-10-02-1415.pdf.",
         "Not saved: a value was changed while the place was chosen. Save again.",
+        "This holds until the program is closed, and is not kept: the settings file holds something that could not be"
+        " taken, and nothing is written over it unasked. settings.toml: “theme” is 5, and takes light, dark or system.",
     ):
         window.foot.say(message)
         assert walk(window, monkeypatch) == {}

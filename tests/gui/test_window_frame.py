@@ -42,7 +42,11 @@ class Machine:
         self.meanwhile: Callable[[], None] = lambda: None
         self.model = folder / "regional.json"
         self.model.write_bytes(read_shipped("example_models/cvd-2021-regional.json"))
-        self.preferences = Preferences(Settings(practice="Tarnwick Northgate", paper=Paper.LETTER), self.written.append)
+        self.preferences = Preferences(Settings(practice="Tarnwick Northgate", paper=Paper.LETTER), self.keep)
+
+    def keep(self, before: Settings, after: Settings) -> Settings:
+        self.written.append(after)
+        return after
 
     def choose_open(self, parent: QWidget) -> Path | None:
         return self.model
@@ -54,6 +58,7 @@ class Machine:
         still_current: Callable[[], bool],
         *,
         practice: str,
+        letterhead: tuple[str, ...],
         paper: Paper,
         explain: Callable[[QWidget | None, str], None],
         read_again: Callable[[], None],
@@ -194,7 +199,7 @@ def test_recent_file_that_is_gone_is_explained(framed: MainWindow, machine: Mach
 
 
 def test_settings_that_cannot_be_written_are_said_in_words(qtbot: QtBot, machine: Machine) -> None:
-    def refuse(_: Settings) -> None:
+    def refuse(before: Settings, after: Settings) -> Settings:
         raise FileNotWritten("the settings could not be written.")
 
     window = MainWindow(preferences=Preferences(keep=refuse))

@@ -66,4 +66,4 @@ def test_second_window_says_so_in_title_and_bar(qtbot: QtBot, lipids: Model) -> 
     assert window.windowTitle() == "Patient 2"
     window.use_model(lipids)
     assert window.windowTitle() == "Patient 2: General cardiovascular disease, lipid form"
-    assert window.page_bar.tab.accessibleName() == "Patient 2"
+    assert window.page_bar.tabs.accessibleTabName(0) == "Patient 2, key F2"

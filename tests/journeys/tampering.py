@@ -8,6 +8,7 @@ from datetime import UTC, date, datetime, timedelta
 from pathlib import Path
 
 import msgspec
+import pytest
 
 from clinicalc.coefficients.reader import read_file
 from clinicalc.library import base64url
@@ -16,7 +17,7 @@ from clinicalc.library.keys import SigningKey
 from clinicalc.library.records import Approved, Follows, Founding, Installed, Record, RecordFile
 from clinicalc.library.sealing import seal
 from tests.cli.calling import LIPIDS, call
-from tests.cli.practices import TARNWICK, Desk
+from tests.cli.practices import FINGERPRINT, TARNWICK, Desk, found_practice
 from tests.library.keys_at_hand import PASSPHRASE, key_file
 
 LIBRARY = "0" * 64
@@ -295,3 +296,26 @@ def _edit_header(folder: Folder, old: bytes, new: bytes) -> None:
     assert header is not None
     assert old in header
     folder.edit(path, signature.protected.encode(), base64url.encode(header.replace(old, new)).encode())
+
+
+def found_untouched(parent: Path) -> Folder:
+    """A practice with one model in use: installed, approved and remarked on; a copy of all of it lies beside it."""
+    folder = parent / "work"
+    folder.mkdir()
+    with pytest.MonkeyPatch.context() as patch:
+        desk = found_practice(folder, patch)
+        assert desk.install().status == 0
+        assert desk.approve("--fingerprint", FINGERPRINT).status == 0
+        remark = ("Read by the partners.", "--key", desk.key("cleo"))
+        assert desk.library("comment", TARNWICK, *remark).status == 0
+    shutil.copytree(folder, folder.with_name("pristine"))
+    return Folder(desk, FINGERPRINT)
+
+
+def put_back(found: Folder, patch: pytest.MonkeyPatch) -> None:
+    """The practice as `found_untouched` left it, at the same place."""
+    desk = found.desk
+    shutil.rmtree(desk.folder)
+    shutil.copytree(desk.folder.with_name("pristine"), desk.folder)
+    patch.setenv("CLINICALC_PASSPHRASE", PASSPHRASE)
+    patch.delenv("CLINICALC_LIBRARY", raising=False)

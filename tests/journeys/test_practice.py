@@ -8,7 +8,8 @@ from pathlib import Path
 import pytest
 from pypdf import PdfReader
 
-from clinicalc.report.phrases import NOT_VETTED, day_words
+from clinicalc.report.phrases import NOT_VETTED
+from clinicalc.units.days import day_words
 from tests.cli.calling import call, example
 from tests.cli.practices import FINGERPRINT, TARNWICK, WOMAN, Desk, found_practice
 
@@ -58,7 +59,7 @@ def test_from_founding_to_withdrawal(tmp_path: Path, monkeypatch: pytest.MonkeyP
     assert pages.count(says[:-1]) == 2
     checked = call("report", "--check", os.fspath(out))
     assert (checked.status, checked.err) == (0, "")
-    assert f"The library holds the approval by Dr Ada Tarn until {UNTIL.isoformat()}" in joined(checked.out)
+    assert f"The library holds the approval by Dr Ada Tarn until {day_words(UNTIL)}" in joined(checked.out)
     by_name = call("report", "--check", os.fspath(out), "--model", example(TARNWICK))
     assert by_name.status == 0
     assert "That was not compared with the library" in joined(by_name.out)
@@ -81,7 +82,8 @@ def test_from_founding_to_withdrawal(tmp_path: Path, monkeypatch: pytest.MonkeyP
     history = joined(desk.library("show", TARNWICK).out).partition("History\n")[2]
     assert [line.partition(": ")[2] for line in history.splitlines() if not line.startswith(" ")] == [
         "installed (unsigned), from tarnwick-cvd-10y.json",
-        f"approved until {day_words(UNTIL)}: Agreed Decision point 15.0\u202f%: Talk about tablets (Meeting of May)",
+        f"approved until {day_words(UNTIL)}: Agreed Decision point 15.0\u202f%: Talk about tablets (Meeting of May)"
+        " The file was known by its whole fingerprint, which was typed",
         "withdrawn: A newer version is in use.",
     ]
     assert desk.library("verify").status == 0

@@ -5,15 +5,15 @@ import shutil
 import subprocess
 import sys
 from collections.abc import Callable
-from datetime import UTC, date, datetime, timedelta
+from datetime import date, datetime, timedelta
 
 import pytest
 
+from clinicalc.units.days import day_words
 from tests.cli.calling import call
-from tests.cli.practices import FINGERPRINT, TARNWICK, WOMAN, Desk, found_practice
+from tests.cli.practices import TARNWICK, WOMAN
 from tests.journeys import tampering
 from tests.journeys.tampering import Folder
-from tests.library.keys_at_hand import PASSPHRASE
 
 LINE = "\n12.3\u202f% within 10 years\n"
 """The number as test_practice.py holds it, of a sound library."""
@@ -63,28 +63,15 @@ SETTLED = (tampering.two_histories, tampering.an_approval_by_a_revoked_key)
 
 @pytest.fixture(scope="module")
 def pristine(tmp_path_factory: pytest.TempPathFactory) -> Folder:
-    """A practice with one model in use: installed, approved and remarked on; a copy of all of it lies beside it."""
-    folder = tmp_path_factory.mktemp("practice") / "work"
-    folder.mkdir()
-    with pytest.MonkeyPatch.context() as patch:
-        desk = found_practice(folder, patch)
-        assert desk.install().status == 0
-        assert desk.approve("--fingerprint", FINGERPRINT).status == 0
-        remark = ("Read by the partners.", "--key", desk.key("cleo"))
-        assert desk.library("comment", TARNWICK, *remark).status == 0
-    shutil.copytree(folder, folder.with_name("pristine"))
-    return Folder(desk, FINGERPRINT)
+    """A practice with one model in use; a copy of all of it lies beside it."""
+    return tampering.found_untouched(tmp_path_factory.mktemp("practice"))
 
 
 @pytest.fixture
 def folder(pristine: Folder, monkeypatch: pytest.MonkeyPatch) -> Folder:
     """The same practice as it was at the beginning, at the same place, on a machine that has given its number."""
-    desk: Desk = pristine.desk
-    shutil.rmtree(desk.folder)
-    shutil.copytree(desk.folder.with_name("pristine"), desk.folder)
-    monkeypatch.setenv("CLINICALC_SETTINGS", os.fspath(desk.folder / "settings"))
-    monkeypatch.setenv("CLINICALC_PASSPHRASE", PASSPHRASE)
-    monkeypatch.delenv("CLINICALC_LIBRARY", raising=False)
+    tampering.put_back(pristine, monkeypatch)
+    monkeypatch.setenv("CLINICALC_SETTINGS", os.fspath(pristine.desk.folder / "settings"))
     assert LINE in call("assess", "--approved", TARNWICK, *WOMAN).out
     return pristine
 
@@ -157,8 +144,8 @@ def _run(*words: str) -> subprocess.CompletedProcess[str]:
 
 
 def today_in_records() -> str:
-    """The day as records state it, in UTC."""
-    return f"{datetime.now(UTC):%Y-%m-%d}"
+    """The day on which records are written, in words, by this machine's clock."""
+    return day_words(datetime.now().astimezone())
 
 
 def joined(text: str) -> str:

@@ -58,7 +58,7 @@ def test_who_approved_and_what_was_said_that_day(made: Practice) -> None:
     assert one.answered
     assert one.state.approval is not None
     assert (one.state.id, one.state.version, one.state.approval.name) == ("tarn-score", "1.0.0", ADA)
-    assert [words for _, words in one.during] == [f"{ADA}: approved until 2026-12-20"]
+    assert [words for _, words in one.during] == [f"{ADA}: approved until 20 December 2026"]
     (later,) = _look(made, "2026-12-10").models
     assert [words for _, words in later.during] == [f"{BEN}: withdrawn"]
 

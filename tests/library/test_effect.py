@@ -9,7 +9,7 @@ from clinicalc.assessment.assess import assess
 from clinicalc.assessment.entry import entry_from_texts
 from clinicalc.assessment.model import Model
 from clinicalc.library.effect import GridEffect, MovedPatient, Whose, find_effect
-from clinicalc.library.effect_words import say_moved
+from clinicalc.library.effect_words import say_grid, say_moved
 from clinicalc.library.grid_answers import answer_grid
 from clinicalc.library.standard_patients import MOST_PATIENTS, lay_out_grid
 from tests.assessment.cases import FULL, NOW, shipped
@@ -86,6 +86,7 @@ def test_a_version_does_nothing_beside_itself() -> None:
     assert grid.largest_rise is grid.largest_fall is None
     assert grid.width is not None
     assert (grid.width.least, grid.width.most) == (1.0, 1.0)
+    assert "  The new band is as wide as the old one on the link scale (1152 patients)." in tuple(say_grid(grid))
 
 
 def test_twice_the_odds_for_everybody() -> None:
@@ -126,6 +127,9 @@ def test_wider_bands_are_said_as_a_ratio() -> None:
     assert grid.unchanged == grid.both
     assert grid.width is not None
     np.testing.assert_allclose([grid.width.least, grid.width.middle, grid.width.most], 2.0, rtol=1e-9)
+    assert "  The new band is 2 times as wide as the old one on the link scale (1152 patients)." in tuple(
+        say_grid(grid)
+    )
 
 
 def test_another_unit_of_a_question_is_the_same_patient() -> None:
@@ -207,6 +211,12 @@ def test_an_example_that_a_version_cannot_answer_says_why() -> None:
 def test_two_figures_and_their_distance_add_up(old: float, new: float, said: str) -> None:
     moved = MovedPatient((("age", "61 a"),), old, new)
     assert say_moved(moved) == f"{said}: age 61 years".replace(" %", "\u202f%").replace(" points", "\u202fpoints")
+
+
+def test_a_patient_is_told_by_names_and_without_what_has_an_empty_one() -> None:
+    moved = MovedPatient((("prior_cvd", "no"), ("systolic_bp", "142 mm[Hg]"), ("smoker", "yes")), 0.1, 0.2)
+    said = say_moved(moved, {"prior_cvd": "", "systolic_bp": "blood pressure"})
+    assert said.endswith(": blood pressure 142 mmHg, smoker yes")
 
 
 def test_a_grid_that_is_too_large_is_thinned_evenly() -> None:

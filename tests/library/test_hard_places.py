@@ -2,7 +2,6 @@
 
 import json
 import os
-import shutil
 import subprocess
 import sys
 import tempfile
@@ -13,29 +12,15 @@ import pytest
 
 from clinicalc.library.folder import LibraryFolder
 from tests.library.own_mounts import Told
+from tests.library.private_mounts import run_with_own_mounts
 from tests.library.shelf import found, founding, is_whole, model
 from tests.library.two_writers import COMMON, OWN, SHARED, WRITERS, things, write_through
 from tests.packaging.checkout import ROOT
 
 
 def _with_own_mounts(what: str, folder: Path) -> Told:
-    """What the process with mounts of its own tells. Where the system allows none, skipped; on the CI, a failure."""
-    program = shutil.which("unshare")
-    allowed = program and subprocess.run([program, "-rm", "mount", "-t", "tmpfs", "tmpfs", folder]).returncode == 0
-    if not program or not allowed:
-        missing = "this system lets nobody have mounts of their own (unshare -rm)"
-        if os.environ.get("CI") == "true":
-            pytest.fail(missing)
-        pytest.skip(missing)
-    done = subprocess.run(
-        [program, "-rm", sys.executable, "-m", "tests.library.own_mounts", what, str(folder)],
-        cwd=ROOT,
-        capture_output=True,
-        text=True,
-        timeout=120,
-    )
-    assert done.returncode == 0, done.stderr
-    return Told(**json.loads(done.stdout))
+    """What the process with mounts of its own tells."""
+    return Told(**json.loads(run_with_own_mounts("tests.library.own_mounts", folder, what)))
 
 
 def _all_is_there(library: LibraryFolder) -> None:

@@ -59,7 +59,7 @@ def test_each_row_says_who_what_when_and_why(made: Practice) -> None:
     assert founding.what.startswith("founded the library of Tarnwick Practice; an author may not approve")
     assert approvers.what.startswith(f"approvers from here on: {ADA} (general practitioner), {BEN}")
     assert installed.what == "installed tarn-score 1.0.0, A score for tests, from handed over on paper"
-    assert approved.what == "approved until 2027-06-30; decision point 0.1 (offer treatment)"
+    assert approved.what == "approved until 30 June 2027; decision point 0.1 (offer treatment)"
     assert (approved.why, approved.name, approved.key) == ("read against its paper", ADA, key_of(ADA).id)
     assert commented.what == "remarked: seen"
     assert (withdrawn.what, withdrawn.why, withdrawn.name) == ("withdrawn", "the paper was corrected", BEN)

@@ -74,7 +74,7 @@ def test_a_withdrawn_model_says_who_and_why_and_can_be_approved_again() -> None:
     made.withdraw(BEN)
     state = made.replay()
     assert state.standing is Standing.WITHDRAWN
-    assert state.reason == f"Withdrawn by {BEN} on 2026-12-01: the paper was corrected"
+    assert state.reason == f"Withdrawn by {BEN} on 1 December 2026: the paper was corrected"
     assert state.approval is None
     made.approve(CLEO)
     assert made.replay().standing is Standing.WITHDRAWN, "Cleo brought the file, and nobody signed it"

@@ -262,7 +262,7 @@ def test_an_approval_from_another_library_of_the_same_people() -> None:
 def test_a_record_from_the_future() -> None:
     made = _in_use()
     made.remark(written="2027-12-01T10:00:00Z")
-    _refused(made.replay(), FaultKind.FROM_THE_FUTURE, "2027-12-01", "10:00 UTC", "Set the clock right")
+    _refused(made.replay(), FaultKind.FROM_THE_FUTURE, "1 December 2027", "at 10:00 on that day", "Set the clock right")
 
 
 @pytest.mark.parametrize("follow", [(), ("library",), ("model",)])

@@ -77,7 +77,7 @@ def test_such_a_print_agrees(vetting: Vetting, label: str, practice: str, tmp_pa
     found = checked(pdf_of(vetting, label, practice), tmp_path)
     assert found.differences == ()
     said = " ".join(report_recheck(found))
-    assert "approved the file until 2027-11-30. That was not compared with the library" in said
+    assert "approved the file until 30 November 2027. That was not compared with the library" in said
 
 
 def _nobody(record: Any) -> None:

@@ -31,7 +31,7 @@ from tests.operations.forging import (
     without_page,
     without_time,
 )
-from tests.report.printing import PRACTICE, PRINTED, printed, with_band, without_band
+from tests.report.printing import AT, PRACTICE, PRINTED, printed, with_band, without_band
 
 CASE = demo_case()
 DEMO = assess_patient(CASE.model, CASE.entry, at=PRINTED)
@@ -338,6 +338,21 @@ def test_every_way_of_printing_agrees(
     found = checked(pdf, tmp_path, assessment)
     assert found.differences == ()
     assert found.agrees
+
+
+@pytest.mark.parametrize("practice", [PRACTICE, ""])
+@pytest.mark.parametrize(
+    "letterhead", [("Tarnwick Northgate", "3 Quay Lane"), tuple(f"{n} {'Words of a line ' * 5}"[:80] for n in range(4))]
+)
+def test_a_print_with_a_letterhead_agrees_and_another_letterhead_does_not(
+    practice: str, letterhead: tuple[str, ...], tmp_path: Path
+) -> None:
+    """What this machine's settings say by now plays no part: the lines come from the print."""
+    assessment = assess_patient(CASE.model, CASE.entry, at=AT)
+    pdf = make_report(assessment, practice=practice, printed_at=PRINTED, letterhead=letterhead)
+    assert checked(pdf, tmp_path, assessment).agrees
+    other = make_report(assessment, practice=practice, printed_at=PRINTED, letterhead=("Elsewhere", *letterhead[1:]))
+    assert not checked(with_page(without_page(pdf, 0), other, 0, at=0), tmp_path, assessment).agrees
 
 
 def test_a_print_without_a_number_agrees_and_its_changed_page_does_not(tmp_path: Path) -> None:

@@ -16,11 +16,13 @@ from clinicalc.errors import FileNotWritten
 from clinicalc.settings import (
     FILE_NAME,
     Paper,
+    PreferredUnit,
     Settings,
     SettingsReading,
     ThemeChoice,
+    change_settings,
+    choosable_quantities,
     read_settings,
-    write_choices,
     write_settings,
 )
 from clinicalc.settings.folder import VARIABLE
@@ -33,6 +35,8 @@ CHOSEN = Settings(
     level=0.9,
     library="/shares/Größe/library",
     practice_key="0123456789abcdef" * 4,
+    letterhead=("Tarnwick Northgate", "3 Quay Lane, Tarnwick"),
+    units=(PreferredUnit("glucose", "mmol/L"),),
 )
 
 
@@ -65,6 +69,7 @@ def test_what_is_written_is_read_back(folder: Path) -> None:
 
 paths = st.text(st.characters(exclude_categories=["Cs"], exclude_characters="\0"), min_size=1)
 practices = st.text(st.characters(exclude_categories=["Cc", "Cf", "Cs", "Zl", "Zp"]), max_size=80)
+units = st.sampled_from([PreferredUnit(entry.id, code) for entry in choosable_quantities() for code in entry.units])
 all_settings = st.builds(
     Settings,
     theme=st.sampled_from(ThemeChoice),
@@ -74,6 +79,8 @@ all_settings = st.builds(
     level=st.floats(0.5, 0.999),
     library=practices.map(lambda name: name and f"/{name}"),
     practice_key=st.sampled_from(["", "0123456789abcdef" * 4]),
+    letterhead=st.lists(practices.filter(str.strip), max_size=4).map(tuple),
+    units=st.lists(units, max_size=4, unique_by=lambda one: one.quantity).map(tuple),
 )
 
 
@@ -81,7 +88,9 @@ all_settings = st.builds(
 @given(all_settings)
 def test_all_settings_are_read_back(settings: Settings) -> None:
     write_settings(settings)
-    assert read_settings() == SettingsReading(settings)
+    reading = read_settings()
+    assert set(reading.settings.units) == set(settings.units)  # their order says nothing
+    assert replace(reading, settings=replace(reading.settings, units=settings.units)) == SettingsReading(settings)
 
 
 def test_a_window_never_undoes_that_a_machine_joined_a_library() -> None:
@@ -89,16 +98,22 @@ def test_a_window_never_undoes_that_a_machine_joined_a_library() -> None:
     before = Settings(theme=ThemeChoice.DARK, library="/old", practice_key="f" * 64)
     write_settings(before)
     write_settings(replace(before, library=CHOSEN.library, practice_key=CHOSEN.practice_key))
-    write_choices(replace(before, paper=Paper.LETTER))
+    change_settings(before, replace(before, paper=Paper.LETTER))
     settings = read_settings().settings
     assert (settings.theme, settings.paper) == (ThemeChoice.DARK, Paper.LETTER)
     assert (settings.library, settings.practice_key) == (CHOSEN.library, CHOSEN.practice_key)
 
 
-def test_a_window_keeps_the_library_it_knows_where_the_file_was_broken_meanwhile(folder: Path) -> None:
-    put(folder, "library = \n")
-    write_choices(CHOSEN)
+def test_a_window_writes_nothing_over_a_file_that_was_broken_meanwhile(folder: Path) -> None:
+    path = put(folder, 'library = \n# by hand\npractice = "Tarnwick Northgate"\n')
+    before = path.read_bytes()
+    with pytest.raises(FileNotWritten, match="nothing is written over it unasked") as refused:
+        change_settings(Settings(), CHOSEN)
+    assert f"{FILE_NAME}, line 1: this is not TOML" in str(refused.value)
+    assert [(entry.name, entry.read_bytes()) for entry in folder.iterdir()] == [(FILE_NAME, before)]
+    write_settings(CHOSEN)  # asked for
     assert read_settings() == SettingsReading(CHOSEN)
+    assert (folder / "settings-1.toml").read_bytes() == before
 
 
 def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
@@ -107,6 +122,7 @@ def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
     assert text.splitlines()[1:] == [
         'theme = "system"',
         'practice = ""',
+        "letterhead = []",
         'paper = "A4"',
         "level = 0.95",
         'library = ""',
@@ -139,7 +155,7 @@ def test_the_file_is_toml_that_a_person_can_read(folder: Path) -> None:
         (
             'colour = "blue"',
             '"colour" is not a setting; there are theme, recent_files, practice, paper, level, library, practice_key, '
-            "decision_points.",
+            "letterhead, units, decision_points.",
         ),
         ("library = 3", "library is the full path of a folder between quotation marks."),
         ('library = "models"', "library models is not the full path of a folder; a full path begins at the drive"),
@@ -287,4 +303,6 @@ def test_the_settings_have_no_place_for_a_patient() -> None:
         "decision_points",
         "library",
         "practice_key",
+        "letterhead",
+        "units",
     }

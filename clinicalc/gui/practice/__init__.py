@@ -1,0 +1,1 @@
+"""The practice behind the models: first run, people, trust, settings."""
