@@ -37,6 +37,7 @@ def init(
     from clinicalc.library.founding import check_founding, found_library
     from clinicalc.library.key_files import read_card
     from clinicalc.library.records import Policy
+    from clinicalc.operations.founding_steps import keep_practice_name
     from clinicalc.operations.practice_founding import approver_of
 
     if len(cards) != len(roles):
@@ -55,6 +56,7 @@ def init(
         policy=Policy(author_may_approve=author_may_approve),
         now=now(),
     )
+    keep_practice_name(named)
     grouped = group_fingerprint(key.id)
     tell(
         as_json,
@@ -87,8 +89,10 @@ def join(place: str, said: str, as_json: bool) -> int:
     Hear the digits from the person who keeps the key, over the telephone or face to face, not from the folder itself.
     """
     from clinicalc.library.founding import join_library
+    from clinicalc.operations.founding_steps import keep_practice_name
 
     founding = join_library(Path(place), said, now())
+    keep_practice_name(founding.practice)
     where = str(Path(place).absolute())
     tell(
         as_json,

@@ -9,6 +9,7 @@ import pytest
 
 from clinicalc.library import base64url
 from clinicalc.library.keys import key_id
+from clinicalc.settings import read_settings
 from clinicalc.units.days import day_words
 from tests.cli.calling import LIPIDS, call, example
 from tests.cli.practices import FINGERPRINT, TARNWICK, WOMAN, Desk, found_practice
@@ -369,3 +370,10 @@ def test_what_is_refused_is_refused_before_a_passphrase_is_asked(desk: Desk, mon
     assert desk.install(LIPIDS, by="stranger").status == 6
     words = ("--role", "Visitor", "--card", desk.card("press"), "--practice-key", desk.key("ada"))
     assert desk.library("appoint", *words).status == 6
+
+
+def test_founding_names_the_practice_on_this_machines_prints_where_it_has_no_name(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    found_practice(tmp_path, monkeypatch)
+    assert read_settings().settings.practice == "Tarnwick Northgate"
