@@ -6,7 +6,9 @@
     ├── UnitError               a unit or quantity that the table does not have, or that does not convert
     ├── PrintRefused            a text that cannot be printed faithfully
     ├── DescriptionRefused      a description or fit from which no coefficient file can be made; all problems   exit 4
+    ├── TableRefused            a table of people that cannot be read as one; all its problems   exit 4
     ├── ReconstructionRefused   a band that cannot be rebuilt from what was printed; all that is lacking    exit 4
+    ├── FitRefused              a model that these people do not let be estimated: a code, the columns   exit 4
     ├── LibraryError            something about the model library, its records or its keys   exit 6
     │   ├── LibraryUnreachable  its folder cannot be read or written at this moment; nothing was changed
     │   ├── NotInUse            a model that the library does not let be used now: no number   exit 3
@@ -97,6 +99,21 @@ class DescriptionRefused(ClinicalcError):
         return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
 
 
+class TableRefused(ClinicalcError):
+    """A file that cannot be read as a table of people, with every problem found; a path names a line of it."""
+
+    exit_status = 4
+
+    def __init__(self, name: str, problems: tuple[Problem, ...]) -> None:
+        self.name = name
+        self.problems = problems
+        count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
+        super().__init__(f"this table is not read ({count}).", where=name)
+
+    def __str__(self) -> str:
+        return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
 class ReconstructionRefused(ClinicalcError):
     """A band that cannot be rebuilt from what a paper prints, with everything that is lacking or cannot be."""
 
@@ -109,6 +126,23 @@ class ReconstructionRefused(ClinicalcError):
 
     def __str__(self) -> str:
         return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
+class FitRefused(ClinicalcError):
+    """A model that cannot be estimated: `code` says why, `columns` (places from 0) which columns are at fault.
+
+    Columns have no names where it is raised; whoever knows them words the sentence anew from `code` and `columns`.
+    """
+
+    exit_status = 4
+
+    def __init__(self, code: str, what: str, columns: tuple[int, ...] = ()) -> None:
+        self.code = code
+        self.columns = columns
+        named = ", ".join(str(column + 1) for column in columns[:10])
+        more = f" and {len(columns) - 10} more" if len(columns) > 10 else ""
+        at = f" (column{'' if len(columns) == 1 else 's'} {named}{more})" if columns else ""
+        super().__init__(f"{what}{at}.")
 
 
 class UnitError(ClinicalcError):

@@ -1,4 +1,4 @@
-"""The commands: assess, report, inspect, package, demo."""
+"""The commands: assess, report, inspect, package, fit, demo."""
 
 from collections.abc import Callable, Sequence
 from pathlib import Path
@@ -10,6 +10,7 @@ from clinicalc.assessment.record import write_record
 from clinicalc.assessment.result import Assessment
 from clinicalc.cli.case import CaseWords, assess_case, case_options, tell_not_in_use
 from clinicalc.cli.checking import check_print, require_print
+from clinicalc.cli.fitting import fit
 from clinicalc.cli.library import library
 from clinicalc.cli.outcome import ExitStatus, run_guarded
 from clinicalc.cli.packaging import package
@@ -118,6 +119,7 @@ def inspect(file: str) -> int:
 
 
 clinicalc.add_command(package)
+clinicalc.add_command(fit)
 clinicalc.add_command(library)
 clinicalc.add_command(sign)
 clinicalc.add_command(trust)

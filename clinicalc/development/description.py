@@ -22,6 +22,7 @@ from clinicalc.errors import DescriptionRefused, Problem
 
 OPEN_END = "open"
 _NOT_THE_MODELS = ("fit", "patients", "reconstruct")
+_OF_A_STUDY = ("cohort", "estimate")
 _LEFT_OUT: Mapping[str, object] = {
     "unconfirmed": [],
     "derived": [],
@@ -148,6 +149,16 @@ def read_description(path: Path) -> Description:
 
 def take_description(text: str, name: str, folder: Path) -> Description:
     """The same from a text; tables are looked for in `folder`."""
+    tree, problems = parse_description(text, name)
+    for key in _OF_A_STUDY:
+        if tree.pop(key, None) is not None:
+            message = f"a table [{key}] belongs to a study, from which a model is fitted: clinicalc fit {name}."
+            problems = (*problems, Problem(f"/{key}", message))
+    return describe(tree, name, folder, problems)
+
+
+def parse_description(text: str, name: str) -> tuple[dict[str, object], tuple[Problem, ...]]:
+    """The tree of a text in TOML, with JSON's types, and what in it has no such type. Raises DescriptionRefused."""
     try:
         table = tomllib.loads(text.replace("\r\n", "\n"))
     except tomllib.TOMLDecodeError as fault:
@@ -161,10 +172,16 @@ def take_description(text: str, name: str, folder: Path) -> Description:
     problems += parsed.problems
     if not isinstance(parsed.value, dict):
         raise DescriptionRefused(name, tuple(problems))
-    beside = {key: value for key, value in parsed.value.items() if key in _NOT_THE_MODELS}
+    return parsed.value, tuple(problems)
+
+
+def describe(tree: Mapping[str, object], name: str, folder: Path, said: tuple[Problem, ...] = ()) -> Description:
+    """The description of a parsed tree; problems `said` before stand first among its own."""
+    problems = list(said)
+    beside = {key: value for key, value in tree.items() if key in _NOT_THE_MODELS}
     _spell_values(beside)
     problems += find_shape_problems(beside, _Beside)
-    model = {key: value for key, value in parsed.value.items() if key not in _NOT_THE_MODELS}
+    model = {key: value for key, value in tree.items() if key not in _NOT_THE_MODELS}
     if model.pop("worked_examples", None) is not None:
         problems.append(Problem("/worked_examples", "worked examples are made here: describe people as [[patients]]."))
     return Description(

@@ -10,8 +10,8 @@ import msgspec
 
 from clinicalc.assessment.model import Model, prepare_model
 from clinicalc.assessment.proof import load_model_bytes, number_ranges
-from clinicalc.coefficients.pointers import listed, point, quoted, suggest
-from clinicalc.coefficients.reader import ReadFile
+from clinicalc.coefficients.pointers import find_at, listed, point, quoted, suggest
+from clinicalc.coefficients.reader import ReadFile, read_bytes
 from clinicalc.coefficients.rules import RULES
 from clinicalc.coefficients.rules.catalogue import list_names
 from clinicalc.coefficients.rules.examples import check_examples
@@ -63,21 +63,32 @@ class _Making:
     misshapen: set[int] = field(default_factory=set)
     drafts: tuple[Draft, ...] = ()
 
-    def refuse_if_any(self) -> None:
-        """Raise DescriptionRefused where there are problems, each at its place in the description."""
+    def found(self) -> tuple[Problem, ...]:
+        """The problems so far, each at its place in the description."""
         kept = [problem for problem in self.problems if not self._is_of_a_stand_in(problem)]
-        if not kept and not self.placed:
-            return
         patients = [draft.patient for draft in self.drafts]
         model, fitted = self.description.model, frozenset(self.fitted)
         found = [*self.placed, *(place_problem(problem, model, fitted, patients) for problem in kept)]
-        raise DescriptionRefused(self.description.name, tuple(dict.fromkeys(found)))
+        return tuple(dict.fromkeys(found))
+
+    def refuse_if_any(self) -> None:
+        """Raise DescriptionRefused where there are problems."""
+        found = self.found()
+        if found:
+            raise DescriptionRefused(self.description.name, found)
 
     def _is_of_a_stand_in(self, problem: Problem) -> bool:
         found = re.match(
-            r"/model/equations/([0-9]+)/(?:terms/[0-9]+/(?:interval|coefficient)|uncertainty)", problem.path
+            r"/model/equations/([0-9]+)/(?:terms/([0-9]+)/(?:interval|coefficient)|uncertainty)", problem.path
         )
-        return found is not None and int(found[1]) in self.failed
+        if found is None or int(found[1]) not in self.failed:
+            return False
+        return found[2] is None or not self._is_fixed(int(found[1]), int(found[2]))
+
+    def _is_fixed(self, equation: int, term: int) -> bool:
+        """Whether the coefficient of that term is the description's own."""
+        found = find_at(self.description.model, point("", "equations", equation, "terms", term))
+        return isinstance(found, dict) and found.get("fixed") is True
 
 
 def package_model(description: Description, fits: Mapping[str, Fit] | None = None) -> Package:
@@ -97,14 +108,34 @@ def package_model(description: Description, fits: Mapping[str, Fit] | None = Non
     return _prove(making, content)
 
 
+def check_before_fits(description: Description) -> tuple[ModelContent | None, tuple[Problem, ...]]:
+    """What a description says before its fits are there (None in `fits`), and every problem with it so far.
+
+    The content has figures that break no rule in place of the fits', and is None where its shape is wrong. People need
+    not be described yet.
+    """
+    making = _Making(description, list(description.problems))
+    tree = dict(description.model)
+    tree["equations"] = _fill_equations(making, {})
+    if description.patients:
+        making.problems += find_patient_problems(description.patients)
+    content = _check_content(making, tree)
+    return content, making.found()
+
+
 def write_package(package: Package, path: Path, *, replace: bool = False) -> None:
     """Put the file at `path` whole or not at all.
 
     Raises UsageError where something stands there and `replace` is not said, and FileNotWritten.
     """
+    check_place(path, replace=replace)
+    write_file(path, package.content)
+
+
+def check_place(path: Path, *, replace: bool = False) -> None:
+    """Whether a package may be put there, before long work is done for it. Raises UsageError."""
     if os.path.lexists(path):
         _check_may_replace(path, replace)
-    write_file(path, package.content)
 
 
 def _check_may_replace(path: Path, replace: bool) -> None:
@@ -236,8 +267,10 @@ def _prove(making: _Making, content: ModelContent) -> Package:
     making.problems += misses
     making.refuse_if_any()
     file = CoefficientFile("clinicalc.coefficients/1", msgspec.structs.replace(content, worked_examples=examples), ())
-    data = write_bytes(file)
     try:
+        # read with answers in the order of the fingerprinted bytes: written so, the file is its own copy
+        file = read_bytes(write_bytes(file), name).content
+        data = write_bytes(file)
         proved = load_model_bytes(data, name)
     except CoefficientFileRefused as refused:
         making.problems += refused.problems

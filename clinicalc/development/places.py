@@ -51,7 +51,7 @@ def _fit_place(path: str, model: Mapping[str, object], fitted: frozenset[str]) -
 def spell_place(path: str, model: Mapping[str, object]) -> str:
     """A pointer into the model, or into one of the tables beside it, as a place in the description."""
     path = re.sub(r"^/model(?=/|$)", "", path)
-    if path.startswith(("/fit/", "/reconstruct/")):  # tables in tables, as their heads are written
+    if path.startswith(("/fit/", "/reconstruct/", "/cohort/", "/estimate/")):  # as heads of tables
         return path[1:].replace("/", ".").replace("~1", "/").replace("~0", "~")
     words: list[str] = []
     here: object = model

@@ -24,6 +24,10 @@ class Wanted(Enum):
     CSV = ("Save the history for a spreadsheet", "CSV (*.csv)")
     PDF = ("Save the history", "PDF (*.pdf)")
     RECORD_PDF = ("Save the approval record", "PDF (*.pdf)")
+    STUDY = ("Open a study file", "Study files (*.toml)")
+    NEW_STUDY = ("Save the study file", "Study files (*.toml)")
+    COHORT = ("Choose a file of people", "Tables (*.csv *.tsv *.parquet *.xlsx *.dta)")
+    NEW_COEFFICIENT_FILE = ("Write the coefficient file", "Coefficient files (*.json)")
     DIFFERENCE_PDF = ("Save the difference", "PDF (*.pdf)")
 
     @property

@@ -194,6 +194,7 @@ class MainWindow(QWidget):
             ("F1", self, self.page_bar.guide.click),
             ("F2", self, lambda: self.show_page(Page.PATIENT)),
             ("F3", self, lambda: self.show_page(Page.MODELS)),
+            ("F4", self, lambda: self.show_page(Page.STUDY)),
             ("F10", self, self.page_bar.open_menu),
             ("F6", self.bedside, self.bedside.go_across),
             ("Shift+F6", self.bedside, self.bedside.go_across),
@@ -211,7 +212,7 @@ class MainWindow(QWidget):
         self.setWindowTitle(title_of(self.page, self._number, "" if model is None else model.content.title))
 
     def _show_settings(self) -> None:
-        self.page_bar.practice.setText(self.preferences.settings.practice)
+        self.page_bar.show_practice(self.preferences.settings.practice)
         self.state.use_practice_points(self.preferences.settings.decision_points)
         self.state.use_level(self.preferences.settings.level)
         self.values.prefer_units(self.preferences.settings.units)

@@ -14,6 +14,7 @@ if TYPE_CHECKING:
     from clinicalc.gui.main_window import MainWindow
     from clinicalc.gui.models.models_page import ModelsPage
     from clinicalc.gui.practice.settings_page import SettingsPage
+    from clinicalc.gui.study.study_page import StudyPage
     from clinicalc.operations.library_view import LibraryView
 
 
@@ -24,6 +25,7 @@ class OtherPages:
         """`choices` are the dialogs of the Models page; those of the system where it is None."""
         self._window, self._stack, self._choices = window, stack, choices
         self._models: ModelsPage | None = None
+        self._study: StudyPage | None = None
         self._settings: SettingsPage | None = None
 
     def show_page(self, page: Page) -> None:
@@ -32,6 +34,10 @@ class OtherPages:
             models = self.models()
             self._stack.setCurrentWidget(models)
             models.enter()
+        elif page is Page.STUDY:
+            study = self.study()
+            self._stack.setCurrentWidget(study)
+            study.enter()
         elif page is Page.SETTINGS:
             settings = self.settings()
             self._stack.setCurrentWidget(settings)
@@ -52,6 +58,16 @@ class OtherPages:
             self._stack.addWidget(self._models)
         return self._models
 
+    def study(self) -> StudyPage:
+        """The Study page."""
+        if self._study is None:
+            from clinicalc.gui.study.study_page import StudyPage
+
+            self._study = StudyPage(self._choices)
+            self._study.trial_asked.connect(self._window.open_path)
+            self._stack.addWidget(self._study)
+        return self._study
+
     def settings(self) -> SettingsPage:
         """The page of settings."""
         if self._settings is None:
@@ -71,6 +87,8 @@ class OtherPages:
         """The window closes."""
         if self._models is not None:
             self._models.leave()
+        if self._study is not None:
+            self._study.leave()
         if self._settings is not None:
             self._settings.leave()
 

@@ -1,7 +1,7 @@
 """The bar at the top: the mark, the pages, the practice, menu and guide."""
 
 from PySide6.QtCore import QPoint, QSize, Signal
-from PySide6.QtGui import QAction, QActionGroup, QColor, QKeySequence, QPainter, QPaintEvent
+from PySide6.QtGui import QAction, QActionGroup, QColor, QKeySequence, QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import QHBoxLayout, QMenu, QWidget
 
 from clinicalc.gui import theme
@@ -14,6 +14,8 @@ from clinicalc.settings import ThemeChoice
 
 _TICKS = ((0, 4), (5, 3), (10, 8), (15, 3), (20, 5))
 """Place and half height of the ticks of the mark; the tall one is this patient's."""
+_BESIDE = 2 * SIDE_MARGIN + 80
+"""What mark, margins and gaps take."""
 _THEMES = {ThemeChoice.SYSTEM: "As the &system", ThemeChoice.LIGHT: "&Light", ThemeChoice.DARK: "&Dark"}
 
 
@@ -64,6 +66,16 @@ class PageBar(QWidget):
         row.addWidget(self.guide)
         self.menu_button.clicked.connect(self.open_menu)
 
+    def show_practice(self, name: str) -> None:
+        """The practice's name, where there is room for the whole of it; it stands in Settings too."""
+        self.practice.setText(name)
+        self._fit(self.width())
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """The practice gives way before the pages do."""
+        super().resizeEvent(event)
+        self._fit(event.size().width())
+
     def open_menu(self) -> None:
         """Show the menu under its button, with its first entry chosen, so that the arrow keys go on from there."""
         self.menu.setActiveAction(self.menu.actions()[0])
@@ -73,6 +85,11 @@ class PageBar(QWidget):
         """Mark another theme as the chosen one, without telling anybody."""
         self.theme = choice
         self.themes.actions()[list(_THEMES).index(choice)].setChecked(True)
+
+    def _fit(self, width: int) -> None:
+        others = (self.tabs, self.menu_button, self.guide)
+        taken = sum(part.sizeHint().width() for part in others) + _BESIDE
+        self.practice.setVisible(taken + self.practice.sizeHint().width() <= width)
 
     def _make_menu(self, choice: ThemeChoice) -> None:
         self.menu = QMenu("Menu", self)

@@ -21,11 +21,13 @@ class Page(IntEnum):
 
     PATIENT = 0
     MODELS = 1
-    SETTINGS = 2
+    STUDY = 2
+    SETTINGS = 3
 
 
-_KEYS = {Page.PATIENT: "F2", Page.MODELS: "F3"}
-_MODELS = "Models"
+_KEYS = {Page.PATIENT: "F2", Page.MODELS: "F3", Page.STUDY: "F4"}
+_NAMES = {Page.MODELS: "Models", Page.STUDY: "Study", Page.SETTINGS: "Settings"}
+"""What the pages beside the patient's are called, whichever window they are in."""
 
 
 class PageTabs(QTabBar):
@@ -44,8 +46,8 @@ class PageTabs(QTabBar):
         self.setElideMode(Qt.TextElideMode.ElideNone)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.setAccessibleName("Pages")
-        for page, words in ((Page.PATIENT, page_name(1)), (Page.MODELS, _MODELS)):
-            self.addTab(words)
+        for page in _KEYS:
+            self.addTab(_NAMES.get(page, page_name(1)))
             self._name(page)
         self.setFixedHeight(BAR_HEIGHT)
         self.currentChanged.connect(self._ask)
@@ -109,7 +111,7 @@ class PageTabs(QTabBar):
         self.setAccessibleTabName(page, f"{self.tabText(page)}, key {_KEYS[page]}")
 
     def _ask(self, index: int) -> None:
-        if index in (Page.PATIENT, Page.MODELS) and Page(index) is not self._shown:
+        if index in tuple(_KEYS) and Page(index) is not self._shown:
             self.asked.emit(Page(index))
 
 
@@ -122,5 +124,4 @@ def title_of(page: Page, number: int, model: str) -> str:
     """The title of the window: page, window, and on the patient's page the title of the model."""
     if page is Page.PATIENT:
         return f"{page_name(number)}: {model}" if model else page_name(number)
-    name = _MODELS if page is Page.MODELS else "Settings"
-    return name if number == 1 else f"{name}, window {number}"
+    return _NAMES[page] if number == 1 else f"{_NAMES[page]}, window {number}"

@@ -17,6 +17,10 @@ _WORDS = (
     ("Leave --recalibration out.", "Choose none."),
     ("Choose another name, or give --replace.", "Choose another name."),
     (
+        "Choose another name, or say --replace to replace it.",
+        "Choose another name, or name it with “Choose…”, which asks whether it is to be replaced.",
+    ),
+    (
         "or have the policy changed with the practice key: clinicalc library policy --author-may-approve.",
         "or have the policy changed with the practice key, under “Library…”, “People of the practice…”.",
     ),

@@ -21,6 +21,7 @@ PAGES = (
     "settings",
     "keyboard",
     "commands",
+    "fitting",
     "packaging",
     "signing",
     "library",

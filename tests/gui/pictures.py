@@ -33,6 +33,7 @@ from tests.assessment.cases import DEMO, MAN_50, WOMAN_61, WOMAN_EGFR_90, run
 from tests.gui.approving import Surgery
 from tests.gui.models.picture_states import MODELS_STATES
 from tests.gui.models.picture_versions import write_prints
+from tests.gui.study.picture_states import STUDY_STATES
 from tests.library.records_kit import POINT
 
 TARNWICK, LIPIDS, REGIONAL = "tarnwick-cvd-10y", "general-cvd-2008-lipids", "cvd-2021-regional"
@@ -249,7 +250,7 @@ STATES = (
     State("approved-copy", None, then=_lose_library, make=_open_in_surgery),
     State("approved-copy-too-old", None, then=_lose_library_for_long, make=_open_in_surgery),
     State("approved-tried-out", None, then=_try_out, make=_open_in_surgery),
-    *(State(name, None, then=then, make=make) for name, then, make in MODELS_STATES),
+    *(State(name, None, then=then, make=make) for name, then, make in (*MODELS_STATES, *STUDY_STATES)),
 )
 
 

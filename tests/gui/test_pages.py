@@ -60,6 +60,10 @@ def test_function_keys_lead_to_the_pages(numbered: MainWindow) -> None:
     assert shown(numbered) is Page.MODELS
     assert numbered.windowTitle() == "Models"
     assert underlined(numbered) == [1]
+    QTest.keyClick(handle, Qt.Key.Key_F4)
+    assert shown(numbered) is Page.STUDY
+    assert numbered.windowTitle() == "Study"
+    assert underlined(numbered) == [2]
     QTest.keyClick(handle, Qt.Key.Key_Comma, Qt.KeyboardModifier.ControlModifier)
     assert shown(numbered) is Page.SETTINGS
     assert numbered.windowTitle() == "Settings"
@@ -82,7 +86,8 @@ def test_the_field_that_was_left_has_the_focus_again(numbered: MainWindow) -> No
 
 def test_tabs_are_pressed_walked_and_named(numbered: MainWindow) -> None:
     tabs = numbered.page_bar.tabs
-    assert [tabs.accessibleTabName(index) for index in range(2)] == ["Patient, key F2", "Models, key F3"]
+    names = [tabs.accessibleTabName(index) for index in range(tabs.count())]
+    assert names == ["Patient, key F2", "Models, key F3", "Study, key F4"]
     QTest.mouseClick(tabs, Qt.MouseButton.LeftButton, pos=tabs.tabRect(Page.MODELS).center())
     assert shown(numbered) is Page.MODELS
     tabs.setFocus()
@@ -158,7 +163,21 @@ window.use_model(open_example("general-cvd-2008-lipids.json"))
 window.show()
 application.processEvents()
 rooms = ("clinicalc.gui.models", "clinicalc.gui.practice", "clinicalc.gui.form", "clinicalc.operations.vetting")
+rooms += ("clinicalc.gui.study", "clinicalc.operations.study", "clinicalc.cohort", "clinicalc.development")
 print([name for name in sys.modules if name.startswith(rooms)])
 """
     done = run_python(program)
     assert (done.stdout.strip(), done.returncode) == ("[]", 0), done.stderr
+
+
+def test_the_practice_gives_way_before_the_pages_do(numbered: MainWindow) -> None:
+    bar = numbered.page_bar
+    bar.show_practice("Tarnwick Northgate")
+    assert bar.practice.isVisible()
+    numbered.resize(640, 400)
+    settle()
+    assert not bar.practice.isVisible()
+    assert bar.tabs.tabRect(Page.STUDY).right() <= bar.tabs.width()
+    numbered.resize(1280, 800)
+    settle()
+    assert bar.practice.isVisible()

@@ -1,0 +1,132 @@
+"""The equations of a study fitted to its people: knots laid, terms made, screened, fitted, or all that forbids it.
+
+A Cox fit takes competing events as censored. Each fit uses the complete cases among those to whom it applies.
+"""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from clinicalc.assessment.model import Model
+from clinicalc.cohort.checked import CheckedCohort, Column
+from clinicalc.cohort.course import UNWATCHED, Course
+from clinicalc.development.description import Description
+from clinicalc.development.estimating_faults import say_refused, say_stops
+from clinicalc.development.estimating_one import Estimated, Ground, estimate_one
+from clinicalc.development.fit import Fit
+from clinicalc.development.package import check_before_fits
+from clinicalc.development.places import spell_place
+from clinicalc.development.study import Study
+from clinicalc.development.study_figures import FitFigures
+from clinicalc.development.study_knots import lay_knots
+from clinicalc.development.study_people import FitPeople, choose_people, ready_model
+from clinicalc.development.study_strata import FitPlan
+from clinicalc.development.study_terms import answers_of, write_out
+from clinicalc.errors import DescriptionRefused, FitRefused, Problem
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class FittedStudy:
+    """A study with its fits by equation id; `description` has its terms written out, knots among them.
+
+    `figures` are one a fit, in the order of the study; `people` those each fit was made from, `predictors` the linear
+    predictor of each of them, by the id of the fit.
+    """
+
+    study: Study
+    cohort: CheckedCohort
+    description: Description
+    model: Model
+    fits: Mapping[str, Fit]
+    figures: tuple[FitFigures, ...]
+    people: Mapping[str, FitPeople]
+    predictors: Mapping[str, Column]
+    remarks: tuple[str, ...]
+
+
+def estimate_study(study: Study, cohort: CheckedCohort, course: Course = UNWATCHED) -> FittedStudy:
+    """Every fit of the study. Raises DescriptionRefused with everything that forbids one, and Stopped."""
+    _refuse(study, [Problem("cohort", stop.sentence) for stop in cohort.stops])
+    model = ready_model(study.name, study.content)
+    people = {plan.id: choose_people(model, plan, cohort) for plan in study.fits}
+    _refuse(study, [problem for plan in study.fits for problem in _find_nobody(plan, people[plan.id])])
+    described = _with_knots(study, model, people)
+    content, problems = check_before_fits(described)
+    _refuse(study, problems)
+    assert content is not None  # what could not be built was refused
+    model = ready_model(study.name, content)
+    found: list[Estimated] = []
+    faults: list[Problem] = []
+    for place, plan in enumerate(study.fits):
+        course.say(f"Fitting {plan.id}", place, len(study.fits))
+        ground = Ground(plan, model, cohort, people[plan.id], course)
+        try:
+            # figures out of the range of numbers are refused by what comes of them
+            with np.errstate(all="ignore"):
+                estimated = estimate_one(ground)
+        except FitRefused as refused:
+            faults += say_refused(refused, ground)
+            continue
+        except DescriptionRefused as refused:
+            faults += refused.problems
+            continue
+        faults += say_stops(estimated.figures.screened, ground)
+        found.append(estimated)
+    _refuse(study, faults)
+    course.say("Fitting", len(study.fits), len(study.fits))
+    return FittedStudy(
+        study=study,
+        cohort=cohort,
+        description=described,
+        model=model,
+        fits={id: fit for one in found for id, fit in zip(one.figures.equations, one.fits, strict=True)},
+        figures=tuple(one.figures for one in found),
+        people=people,
+        predictors={one.figures.id: one.linear_predictor for one in found},
+        remarks=(*_remark_uncovered(cohort, people), *(remark for one in found for remark in one.remarks)),
+    )
+
+
+def _remark_uncovered(cohort: CheckedCohort, people: Mapping[str, FitPeople]) -> Iterator[str]:
+    """People to whom no equation applies: what decides it is missing, or has an answer that none is for."""
+    count = cohort.rows - sum(len(part.rows) for part in people.values())
+    if count:
+        who = "1 person is" if count == 1 else f"{count:,} people are"
+        yield f"{who} in no fit: no equation applies, because what decides which one does is missing."
+
+
+def _refuse(study: Study, problems: list[Problem] | tuple[Problem, ...]) -> None:
+    if problems:
+        raise DescriptionRefused(study.name, tuple(dict.fromkeys(problems)))
+
+
+def _find_nobody(plan: FitPlan, people: FitPeople) -> Iterator[Problem]:
+    path = f"estimate.{plan.id}"
+    if not len(people.rows):
+        yield Problem(path, "it applies to nobody in the file. Check the answers in applies_when and [cohort.columns].")
+    elif not people.complete.any():
+        yield Problem(
+            path,
+            f"of the {len(people.rows):,} people to whom it applies nobody has the outcome and every value it needs.",
+        )
+
+
+def _with_knots(study: Study, model: Model, people: Mapping[str, FitPeople]) -> Description:
+    """The description with every shorthand written out; knots lie where the people of each fit have them."""
+    answers = answers_of(study.description.model)
+    plan_of = {id: plan for plan in study.fits for id in plan.equations}
+    faults: list[Problem] = []
+    equations = []
+    for place, equation in enumerate(study.description.equations):
+        plan = plan_of[str(equation["id"])]
+        knots = lay_knots(equation, people[plan.id])
+        for number, fault in knots.faults:
+            path = spell_place(f"/equations/{place}/terms/{number}/knots", study.description.model)
+            faults.append(Problem(path, fault))
+        equations.append(write_out(equation, answers, knots.find))
+    _refuse(study, faults)
+    ids = [str(equation["id"]) for equation in equations]
+    return replace(
+        study.description, model={**study.description.model, "equations": equations}, fits=dict.fromkeys(ids)
+    )

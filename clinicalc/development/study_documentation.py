@@ -1,0 +1,105 @@
+"""The documentation of a fitted study: the figures of its fits beside what the researcher answered."""
+
+import math
+import platform
+from importlib.metadata import version
+
+import msgspec
+
+from clinicalc import __version__
+from clinicalc.coefficients.spans import Span
+from clinicalc.cohort.checked import SurvivalOutcome
+from clinicalc.development.estimating import FittedStudy
+from clinicalc.development.fit_documentation import FitDocumentation, document_fit
+from clinicalc.development.stated_fit import MinimumSize, MissingShare, StatedConcordance, StatedFit, StatedFollowUp
+from clinicalc.development.study_figures import FitFigures
+from clinicalc.development.study_terms import Tree
+from clinicalc.estimation.concordance import Concordance
+from clinicalc.estimation.sample_size import R2Origin
+
+_LEVEL_Z = 1.959963984540054  # the 97.5 % point of the normal distribution
+_METHODS = {
+    "cox": "Cox proportional hazards model by maximum partial likelihood",
+    "logistic": "Logistic regression by maximum likelihood",
+    "cloglog": "Binomial regression with complementary log-log link by maximum likelihood",
+}
+_COVARIANCES = {
+    "model": "covariance from the information",
+    "robust": "robust (sandwich) covariance",
+    "cluster": "robust (sandwich) covariance over clusters",
+}
+
+
+def document_study(fitted: FittedStudy) -> FitDocumentation:
+    """All items of the report standard that are answered, and the names of those that are not."""
+    is_timed = isinstance(fitted.cohort.outcome, SurvivalOutcome)
+    stated = [_state(fitted, figures) for figures in fitted.figures]
+    return document_fit(stated, fitted.model.content.documentation, is_timed=is_timed)
+
+
+def with_documentation(fitted: FittedStudy, model: Tree) -> Tree:
+    """The model with its documentation in full."""
+    return {**model, "documentation": [msgspec.to_builtins(item) for item in document_study(fitted).items]}
+
+
+def _state(fitted: FittedStudy, figures: FitFigures) -> StatedFit:
+    labels = {predictor.id: predictor.label for predictor in fitted.model.content.predictors}
+    missing = tuple(MissingShare(labels[id], count) for id, count in figures.left_out.missing.items() if id in labels)
+    size = figures.minimum
+    return StatedFit(
+        equation=figures.id if len(fitted.figures) > 1 else "",
+        people=figures.people,
+        events=figures.events,
+        competing=figures.competing if fitted.study.dictionary.outcome.competing else None,
+        parameters=figures.terms,
+        left_out=figures.left_out.left_out,
+        missing=missing,
+        method=_method(fitted, figures),
+        software=_software(figures),
+        follow_up=_follow_up(figures),
+        concordance=None if figures.concordance is None else _limits(figures.concordance),
+        # the likelihood is flat along the estimated terms; with fixed ones among them that says nothing of the sum
+        calibration_slope=None if _has_fixed_terms(fitted, figures) else 1.0,
+        minimum=None if size is None else MinimumSize(size, R2Origin.APPARENT),
+    )
+
+
+def _has_fixed_terms(fitted: FittedStudy, figures: FitFigures) -> bool:
+    equation = next(one for one in fitted.model.equations if one.content.id == figures.equations[0])
+    return any(term.fixed for term in equation.terms)
+
+
+def _method(fitted: FittedStudy, figures: FitFigures) -> str:
+    table = next(plan.table for plan in fitted.study.fits if plan.id == figures.id)
+    parts = [_METHODS[figures.kind]]
+    if figures.kind == "cox":
+        parts.append(f"ties by {'Breslow' if table.ties == 'breslow' else 'Efron'}")
+        if isinstance(table.strata, str):
+            parts.append(f"in strata of {table.strata}")
+    if fitted.study.dictionary.outcome.competing:
+        parts.append("competing events taken as censored")
+    return ", ".join([*parts, _COVARIANCES[table.covariance], "complete cases"])
+
+
+def _software(figures: FitFigures) -> tuple[tuple[str, str], ...]:
+    names = ("numpy",) if figures.kind == "cox" else ("numpy", "statsmodels")
+    found = tuple((name, version(name)) for name in names)
+    return (("clinicalc", __version__), ("Python", platform.python_version()), *found)
+
+
+def _follow_up(figures: FitFigures) -> StatedFollowUp | None:
+    found = figures.follow_up
+    if found is None or found.median is None:
+        return None
+    words = Span(2.0, found.unit).words.split(" ", 1)[1]
+    return StatedFollowUp(found.median, words, "reverse Kaplan\u2013Meier")
+
+
+def _limits(c: Concordance) -> StatedConcordance | None:
+    """Limits on the logit of C, so that they stay between 0 and 1."""
+    if not 0 < c.c < 1:
+        return None
+    half = _LEVEL_Z * c.se / (c.c * (1 - c.c))
+    odds = c.c / (1 - c.c)
+    low, high = odds * math.exp(-half), odds * math.exp(half)
+    return StatedConcordance(c.c, low / (1 + low), high / (1 + high))

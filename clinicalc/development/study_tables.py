@@ -1,0 +1,111 @@
+"""The tables of a study that no description has: [cohort], the people, and [estimate], how an equation is fitted.
+
+Beside them the two shorthands of terms, which are written out before anything else sees them.
+"""
+
+from typing import Annotated, Literal
+
+from msgspec import UNSET, Meta, UnsetType, field
+
+from clinicalc.coefficients.equations import Step
+from clinicalc.coefficients.file_types import FileStruct, Id, Text
+
+Cells = Text | float | tuple[Text | float, ...]
+"""What stands in cells of the file: one text or number, or several that mean the same."""
+
+
+class TimeToEventTable(FileStruct, frozen=True, tag_field="kind", tag="time_to_event"):
+    """How long each person was followed and what ended it: `time` in `unit`, or the dates `start` and `end`."""
+
+    status: Text
+    event: Cells
+    time: Text | UnsetType = UNSET
+    unit: Literal["a", "mo", "wk", "d"] | UnsetType = UNSET
+    start: Text | UnsetType = UNSET
+    end: Text | UnsetType = UNSET
+    born: Text | UnsetType = UNSET
+    censored: Cells | UnsetType = UNSET
+    competing: Cells | UnsetType = UNSET
+    entry: Text | UnsetType = UNSET
+
+
+class BinaryTable(FileStruct, frozen=True, tag_field="kind", tag="binary"):
+    """An outcome that is known of everybody."""
+
+    column: Text
+    event: Cells
+    no_event: Cells | UnsetType = UNSET
+
+
+class ColumnTable(FileStruct, frozen=True):
+    """Where a predictor stands in the file; what is left out is the predictor's own id, unit and answers."""
+
+    column: Text | UnsetType = UNSET
+    unit: Text | UnsetType = UNSET
+    missing: Cells | UnsetType = UNSET
+    levels: dict[Id, Cells] | UnsetType = UNSET
+
+
+class CohortTable(FileStruct, frozen=True):
+    """The file of people, from the study's folder, and what its columns mean."""
+
+    file: Text
+    outcome: TimeToEventTable | BinaryTable
+    person: Text | UnsetType = UNSET
+    columns: dict[Id, ColumnTable] = field(default_factory=dict)
+
+
+class EstimateTable(FileStruct, frozen=True):
+    """How one equation is fitted. `strata` is a choice or yes/no predictor: each answer becomes its own equation."""
+
+    kind: Literal["cox", "logistic", "cloglog"]
+    ties: Literal["efron", "breslow"] | UnsetType = UNSET
+    covariance: Literal["model", "robust", "cluster"] = "model"
+    cluster: Text | UnsetType = UNSET
+    strata: Id | UnsetType = UNSET
+    round_times: Annotated[int, Meta(ge=0, le=12)] | UnsetType = UNSET
+
+
+class StudyTables(FileStruct, frozen=True):
+    """Both of them, as they stand at the top of the file."""
+
+    cohort: CohortTable
+    estimate: Annotated[dict[Id, EstimateTable], Meta(min_length=1)]
+
+
+class SplineOf(FileStruct, frozen=True):
+    """A restricted cubic spline of a value: so many knots at the default quantiles, or the knots themselves.
+
+    `steps` come before the spline; the terms are called after `id`, or after the value.
+    """
+
+    spline_of: Id
+    knots: Annotated[int, Meta(ge=3, le=7)] | Annotated[tuple[float, ...], Meta(min_length=3, max_length=10)] = 4
+    steps: tuple[Step, ...] = ()
+    id: Id | UnsetType = UNSET
+
+    @property
+    def name(self) -> str:
+        """What the linear term is called."""
+        return self.spline_of if isinstance(self.id, UnsetType) else self.id
+
+
+class CategoriesOf(FileStruct, frozen=True):
+    """A term of 0 and 1 for each answer of a choice but the reference; they are called after `id`, or the choice."""
+
+    categories_of: Id
+    reference: Id
+    id: Id | UnsetType = UNSET
+
+    @property
+    def name(self) -> str:
+        """What the names of its terms begin with."""
+        return self.categories_of if isinstance(self.id, UnsetType) else self.id
+
+
+def spell_cells(cells: Cells | UnsetType) -> tuple[str, ...]:
+    """The texts of cells, numbers as they are written: 1 and 1.0 are "1"."""
+    if isinstance(cells, UnsetType):
+        return ()
+    found = cells if isinstance(cells, tuple) else (cells,)
+    return tuple(item if isinstance(item, str) else format(item, ".15g") for item in found)

@@ -1,0 +1,103 @@
+"""The columns of a fit, centred and scaled, and which of them are at fault when it cannot be made."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from clinicalc.estimation.faults import FitFault, refuse_fit
+
+Array = NDArray[np.float64]
+
+STEEPEST = 8.0
+"""Largest |b| sd(x), of what the other columns leave of x: beyond it the fit separates events from others."""
+WIDEST = 10.0
+"""Largest standard error of a coefficient, in those at b = 0."""
+FLATTEST = 1e-11
+"""Smallest eigenvalue of the information at b = 0 as a correlation: below it columns follow from one another."""
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class ScaledColumns:
+    """z = (x - centre) / spread, (n, p), column by column in memory."""
+
+    z: Array
+    centre: Array
+    spread: Array
+
+
+def scale_columns(x: Array) -> ScaledColumns:
+    """Raises FitRefused for no column, a value that is not finite, and a column of one value."""
+    if x.shape[1] == 0:
+        raise refuse_fit(FitFault.NO_COLUMNS)
+    z = np.array(x, dtype=np.float64, order="F")
+    centre, spread, faulty, constant = np.empty(x.shape[1]), np.empty(x.shape[1]), [], []
+    for place in range(x.shape[1]):
+        column = z[:, place]
+        if not np.isfinite(column).all():
+            faulty.append(place)
+            continue
+        centre[place] = column.mean()
+        size = np.abs(column).max()
+        column -= centre[place]
+        reach = np.abs(column).max()
+        # what is left of a column of one value is the rounding of its mean
+        if reach <= 1e-13 * size:
+            constant.append(place)
+            continue
+        column /= reach
+        root = np.sqrt((column * column).mean())
+        column /= root
+        spread[place] = reach * root
+    if faulty:
+        raise refuse_fit(FitFault.NOT_FINITE, tuple(faulty))
+    if constant:
+        raise refuse_fit(FitFault.CONSTANT, tuple(constant))
+    return ScaledColumns(z, centre, spread)
+
+
+def refuse_flat(information: Array, people: float) -> None:
+    """Raises FitRefused where the information at b = 0, (p, p), leaves a column or a sum of columns undetermined."""
+    flat = np.flatnonzero(~(np.diag(information) > 1e-12 * people))
+    if len(flat):
+        raise refuse_fit(FitFault.CONSTANT, tuple(flat.tolist()))
+    size = np.sqrt(np.diag(information))
+    values, vectors = np.linalg.eigh(information / np.outer(size, size))
+    if values[0] <= FLATTEST:
+        # the part of each column in the directions without information
+        part = np.sqrt((vectors[:, values <= FLATTEST] ** 2).sum(axis=1))
+        raise refuse_fit(FitFault.COLLINEAR, tuple(np.flatnonzero(part > 0.01).tolist()))
+
+
+def find_separated(scaled: Array, information: Array, null: Array) -> tuple[int, ...]:
+    """The columns whose coefficient has no limit; b of scaled columns, and the information at b and at 0, (p, p).
+
+    A coefficient is out of bounds where it is steeper than STEEPEST or its standard error wider than WIDEST times that
+    at b = 0. Steepness is judged by what the other columns leave of a column: the terms of a spline and a square have
+    large coefficients of opposite sign. Of those out of bounds the ones that went far are named, not what they pulled.
+    """
+    deviations = np.sqrt(np.diag(invert(null)))
+    # where nothing is left of the information in some direction, a trace of that at 0 shows which columns it holds
+    trace = 0.0 if has_inverse(information) else 1e-8
+    wide = np.sqrt(np.abs(np.diag(invert(information + trace * null))))
+    steep = np.abs(scaled) / (np.sqrt(np.diag(null)) * deviations)
+    wild = (steep > STEEPEST) | (wide > WIDEST * deviations)
+    far = steep >= 0.05 * steep[wild].max(initial=0.0)
+    return tuple(np.flatnonzero(wild & far).tolist())
+
+
+def has_inverse(information: Array) -> bool:
+    """Whether a symmetric matrix is finite and positive definite."""
+    if not np.isfinite(information).all():
+        return False
+    try:
+        np.linalg.cholesky(information)
+    except np.linalg.LinAlgError:
+        return False
+    return True
+
+
+def invert(information: Array) -> Array:
+    """The inverse of a symmetric matrix, with mirrored entries the same."""
+    inverse = np.linalg.inv(information)
+    return np.asarray((inverse + inverse.T) / 2, dtype=np.float64)

@@ -1,0 +1,1 @@
+"""The Study page: from a file of people to a coefficient file, in steps."""

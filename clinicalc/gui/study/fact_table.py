@@ -1,0 +1,261 @@
+"""A table of facts: as high as its rows, read with the arrow keys; texts wrap, figures stand at the right."""
+
+from PySide6.QtCore import QModelIndex, QPersistentModelIndex, QPointF, QRect, QRectF, QSize, Qt, Signal
+from PySide6.QtGui import (
+    QColor,
+    QFont,
+    QFontMetrics,
+    QGuiApplication,
+    QKeyEvent,
+    QKeySequence,
+    QMouseEvent,
+    QPainter,
+    QPaintEvent,
+    QPen,
+    QResizeEvent,
+    QTextLayout,
+    QTextOption,
+    QWheelEvent,
+)
+from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QStyledItemDelegate, QStyleOptionViewItem, QTableView
+
+from clinicalc.gui import theme
+from clinicalc.gui.study.fact_rows import FactRows
+from clinicalc.gui.typeface import CAPTION, UNIT, face
+
+_ABOVE, _UNDER, _SIDE = 4, 4, 6
+_WIDEST, _NARROWEST = 340, 44
+_APART = 24
+"""By how much a table that ends with figures is spread, at most, where there is room."""
+_HEAD_HIGH = 26
+
+
+class FactTable(QTableView):
+    """Takes no scroll bars of its own: the sheet scrolls, and is told which row is gone to."""
+
+    row_reached = Signal(int, int)
+    """Top and height of the row that an arrow key led to, from the top of the table."""
+    entered = Signal(int)
+    """Enter or a double click at a fact: its place."""
+
+    def __init__(self, rows: FactRows, name: str) -> None:
+        super().__init__()
+        self.rows = rows
+        self.setModel(rows)
+        self._delegate = _CellPaint(self)
+        self.setItemDelegate(self._delegate)
+        self._head = _HeadPaint(self)
+        self.setHorizontalHeader(self._head)
+        self.setAccessibleName(name)
+        self.setFrameShape(QTableView.Shape.NoFrame)
+        self.viewport().setAutoFillBackground(False)
+        self.setShowGrid(False)
+        self.setTabKeyNavigation(False)
+        self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
+        self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
+        self.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
+        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+        self.verticalHeader().hide()
+        self.verticalHeader().setMinimumSectionSize(1)
+        for row in range(rows.rowCount()):
+            if rows.is_note(row):
+                self.setSpan(row, 0, 1, rows.columnCount())
+        self._natural = [self._natural_width(column) for column in range(rows.columnCount())]
+        self.selectionModel().currentChanged.connect(self._tell)
+
+    @property
+    def place(self) -> int:
+        """The place of the fact that is gone to, −1 for none."""
+        return self.rows.fact_at(self.currentIndex().row()) if self.currentIndex().isValid() else -1
+
+    def go_to(self, fact: int) -> None:
+        """Go to a fact, where there is one."""
+        if 0 <= fact < len(self.rows.facts):
+            self.setCurrentIndex(self.rows.index(self.rows.row_of(fact), 0))
+
+    def fit(self, width: int) -> None:
+        """Take a width, and the height of all rows at it."""
+        widths = _share(self._natural, [column.is_figures for column in self.rows.columns], width)
+        for column, wide in enumerate(widths):
+            self.setColumnWidth(column, wide)
+        header = self.verticalHeader()
+        blocked = header.blockSignals(True)
+        total = 0
+        for row in range(self.rows.rowCount()):
+            high = self._row_height(row, widths)
+            header.resizeSection(row, high)
+            total += high
+        header.blockSignals(blocked)
+        self.setFixedHeight(total + _HEAD_HIGH)
+        self.updateGeometries()
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        """Lines break elsewhere."""
+        super().resizeEvent(event)
+        if event.size().width() != event.oldSize().width():
+            self.fit(event.size().width())
+
+    def sizeHint(self) -> QSize:
+        """As wide as there is room."""
+        return QSize(1, self.height())
+
+    def minimumSizeHint(self) -> QSize:
+        """As narrow as must be."""
+        return QSize(1, 1)
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        """Leave the wheel to the sheet."""
+        event.ignore()
+
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        """Like Enter."""
+        super().mouseDoubleClickEvent(event)
+        self._enter()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Enter is told; copy takes the row as text."""
+        if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
+            self._enter()
+        elif event.matches(QKeySequence.StandardKey.Copy) and self.currentIndex().isValid():
+            QGuiApplication.clipboard().setText(self.rows.line(self.currentIndex().row()))
+        else:
+            super().keyPressEvent(event)
+
+    def _enter(self) -> None:
+        if self.currentIndex().isValid():
+            self.entered.emit(self.place)
+
+    def _row_height(self, row: int, widths: list[int]) -> int:
+        if self.rows.is_note(row):
+            return self._delegate.height_of(self.rows.text(row, 0), sum(widths), is_note=True)
+        cells = range(self.rows.columnCount())
+        return max(self._delegate.height_of(self.rows.text(row, column), widths[column]) for column in cells)
+
+    def _natural_width(self, column: int) -> int:
+        metrics = QFontMetrics(face(UNIT))
+        texts = [fact.cells[column] for fact in self.rows.facts]
+        widest = max((metrics.horizontalAdvance(line) for text in texts for line in text.split("\n")), default=0)
+        heading = QFontMetrics(face(CAPTION)).horizontalAdvance(self.rows.columns[column].heading)
+        limit = 10_000 if self.rows.columns[column].is_figures else _WIDEST
+        return min(max(widest, heading) + 2 * _SIDE + 6, max(limit, heading + 2 * _SIDE + 6))
+
+    def _tell(self, current: QModelIndex, _: QModelIndex) -> None:
+        if current.isValid():
+            top = self.rowViewportPosition(current.row()) + _HEAD_HIGH
+            self.row_reached.emit(top, self.rowHeight(current.row()))
+
+
+class _HeadPaint(QHeaderView):
+    """Headings in small soft letters over a line."""
+
+    def __init__(self, table: FactTable) -> None:
+        super().__init__(Qt.Orientation.Horizontal, table)
+        self._table = table
+        self.setFixedHeight(_HEAD_HIGH)
+        self.setMinimumSectionSize(1)
+        self.setSectionsClickable(False)
+        self.setHighlightSections(False)
+        self.setSectionResizeMode(QHeaderView.ResizeMode.Fixed)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """The headings, and nothing beside them."""
+        super().paintEvent(event)
+        painter = QPainter(self.viewport())
+        painter.fillRect(self.viewport().rect().adjusted(self.length(), 0, 0, 0), QColor(theme.tokens().sheet))
+        painter.end()
+
+    def paintSection(self, painter: QPainter, rect: QRect, logicalIndex: int) -> None:
+        """One heading."""
+        column = self._table.rows.columns[logicalIndex]
+        side = Qt.AlignmentFlag.AlignRight if column.is_figures else Qt.AlignmentFlag.AlignLeft
+        painter.save()
+        painter.fillRect(rect, QColor(theme.tokens().sheet))
+        painter.fillRect(rect.left(), rect.bottom(), rect.width(), 1, QColor(theme.tokens().edge))
+        painter.setFont(face(CAPTION))
+        painter.setPen(QColor(theme.tokens().soft))
+        room = rect.adjusted(_SIDE, 0, -_SIDE, 0)
+        heading = painter.fontMetrics().elidedText(column.heading, Qt.TextElideMode.ElideRight, room.width())
+        painter.drawText(room, int(side) | int(Qt.AlignmentFlag.AlignVCenter), heading)
+        painter.restore()
+
+
+class _CellPaint(QStyledItemDelegate):
+    """Texts wrapped letter for letter, a thin rule under each fact, the ground of the row gone to."""
+
+    def height_of(self, text: str, width: int, *, is_note: bool = False) -> int:
+        """How high a cell has to be at a width."""
+        above = 0 if is_note else _ABOVE
+        return round(_lay_out(text, width - 2 * _SIDE, _font(is_note=is_note))[1]) + above + _UNDER
+
+    def paint(
+        self, painter: QPainter, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex
+    ) -> None:
+        """One cell."""
+        table = self.parent()
+        assert isinstance(table, FactTable)
+        tokens, rows, box = theme.tokens(), table.rows, QRectF(option.rect)
+        row, is_note = index.row(), rows.is_note(index.row())
+        is_reached = table.hasFocus() and table.place == rows.fact_at(row)
+        is_last = row + 1 == rows.rowCount() or not rows.is_note(row + 1)
+        painter.save()
+        is_chosen = table.place == rows.fact_at(row)
+        painter.fillRect(box, QColor(tokens.sel if is_reached else tokens.wash if is_chosen else tokens.sheet))
+        if is_last:
+            painter.fillRect(QRectF(box.left(), box.bottom() - 1, box.width(), 1), QColor(tokens.rule))
+        painter.setPen(QColor(tokens.soft if is_note and not is_reached else tokens.ink))
+        figures = not is_note and rows.columns[index.column()].is_figures
+        layout, _ = _lay_out(rows.text(row, index.column()), box.width() - 2 * _SIDE, _font(is_note=is_note), figures)
+        layout.draw(painter, QPointF(box.left() + _SIDE, box.top() + (0 if is_note else _ABOVE)))
+        if is_reached and not is_note and index.column() == table.currentIndex().column():
+            painter.setPen(QPen(QColor(tokens.accent), 2))
+            painter.drawRect(box.adjusted(1, 1, -1, -1))
+        painter.restore()
+
+    def sizeHint(self, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex) -> QSize:
+        """Rows are given their height by the table."""
+        return QSize(1, 1)
+
+
+def _share(natural: list[int], is_figures: list[bool], width: int) -> list[int]:
+    """A width for each column: its own where there is room, else words give way before figures do."""
+    width = max(width, len(natural))
+    spare = width - sum(natural)
+    widths = list(natural)
+    words = [place for place, figures in enumerate(is_figures) if not figures] or list(range(len(natural)))
+    if spare >= 0:
+        if not is_figures[-1]:
+            widths[-1] += spare  # figures stay near what they are of
+            return widths
+        more = min(_APART, spare // len(widths))
+        return [wide + more for wide in widths]
+    while spare < 0:
+        widest = max(words, key=lambda place: widths[place])
+        if widths[widest] <= _NARROWEST:
+            return [width // len(widths)] * len(widths)
+        cut = min(-spare, max(1, (widths[widest] - _NARROWEST) // 4))
+        widths[widest] -= cut
+        spare += cut
+    return widths
+
+
+def _lay_out(text: str, width: float, font: QFont, is_figures: bool = False) -> tuple[QTextLayout, float]:
+    """The text in lines that fit, and how high they are; a word that is too long is broken."""
+    layout = QTextLayout(text.replace("\n", "\u2028"), font)
+    option = QTextOption()
+    option.setWrapMode(QTextOption.WrapMode.WrapAtWordBoundaryOrAnywhere)
+    if is_figures:
+        option.setAlignment(Qt.AlignmentFlag.AlignRight)
+    layout.setTextOption(option)
+    layout.beginLayout()
+    height = 0.0
+    while (line := layout.createLine()).isValid():
+        line.setLineWidth(max(1.0, width))
+        line.setPosition(QPointF(0.0, height))
+        height += line.height()
+    layout.endLayout()
+    return layout, height
+
+
+def _font(*, is_note: bool) -> QFont:
+    return face(CAPTION if is_note else UNIT)

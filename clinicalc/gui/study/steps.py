@@ -1,0 +1,42 @@
+"""The steps of a study, in their order, and what is said of each in one line."""
+
+from dataclasses import dataclass
+from enum import Enum, IntEnum
+
+
+class Step(IntEnum):
+    """A step is gone to in any order; what it lacks it says itself."""
+
+    DATA = 0
+    MODEL = 1
+    FIT = 2
+    PACKAGE = 3
+
+    @property
+    def title(self) -> str:
+        """What the step is called."""
+        return self.name.capitalize()
+
+
+@dataclass(frozen=True, slots=True)
+class StepLine:
+    """What is said of a step, and whether it is done: its number then stands in ink."""
+
+    says: str = "not started"
+    is_done: bool = False
+
+
+class Ask(Enum):
+    """What can be asked for on the sheet of a step; what it is about is a place in the sheet's table."""
+
+    CHANGE = "change"
+    """The study file that is open is to be changed here."""
+    COLUMN = "column"
+    ABOUT = "about"
+    ADD_TERM = "add term"
+    REMOVE_TERM = "remove term"
+    FITTING = "fitting"
+    ANSWER = "answer"
+    """An item of the documentation is to be answered."""
+    LEAVE = "leave"
+    """What was changed is not to be kept."""

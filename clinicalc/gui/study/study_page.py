@@ -1,0 +1,267 @@
+"""The Study page: the steps at the left, the step that is shown at the right, over it a form, under both the foot."""
+
+from collections.abc import Callable
+from pathlib import Path
+
+from PySide6.QtCore import QCoreApplication, QEvent, Qt, Signal
+from PySide6.QtGui import QHideEvent, QKeySequence, QShortcut
+from PySide6.QtWidgets import QVBoxLayout, QWidget
+
+from clinicalc.gui.errands import Errands
+from clinicalc.gui.file_choosing import FileChoices, Wanted
+from clinicalc.gui.form_deed import FormDeed
+from clinicalc.gui.models.progress_strip import ProgressStrip
+from clinicalc.gui.models.right_stack import RightStack
+from clinicalc.gui.study.data_sheet import make_data_sheet
+from clinicalc.gui.study.fit_sheet import make_fit_sheet
+from clinicalc.gui.study.form_place import FormPlace
+from clinicalc.gui.study.model_sheet import make_model_sheet
+from clinicalc.gui.study.next_step import offer_of
+from clinicalc.gui.study.package_sheet import make_package_sheet
+from clinicalc.gui.study.step_lines import name_of, step_lines
+from clinicalc.gui.study.step_sheet import StepSheet
+from clinicalc.gui.study.steps import Ask, Step
+from clinicalc.gui.study.study_foot import Next, StudyFoot
+from clinicalc.gui.study.study_sides import StepsPane, StudySides
+from clinicalc.gui.study.study_state import StudyState
+from clinicalc.gui.study.study_work import StudyWork
+from clinicalc.operations.study_draft import StudyDraft
+
+_ROUNDS = 3
+"""What is inside may ask for more room once it knows its own."""
+_PATIENCE = 2.0
+"""Seconds that a closing window lets a file be written."""
+_SHEETS: dict[Step, Callable[[StudyState], StepSheet]] = {
+    Step.DATA: make_data_sheet,
+    Step.MODEL: make_model_sheet,
+    Step.FIT: make_fit_sheet,
+    Step.PACKAGE: make_package_sheet,
+}
+
+
+class StudyPage(QWidget):
+    """Shows one study, its `work`, by steps; each step is a sheet that is made anew when the study changes."""
+
+    trial_asked = Signal(object)
+    """The Path of a coefficient file that is to be tried out on the patient's page."""
+
+    def __init__(self, choices: FileChoices | None = None) -> None:
+        super().__init__()
+        self.setObjectName("sheet")
+        self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
+        self._choices = choices or FileChoices()
+        self.errands = Errands()
+        self.work = StudyWork(self.errands)
+        self.pane = StepsPane()
+        self.right = RightStack()
+        self.strip = ProgressStrip(self.errands)
+        self.foot = StudyFoot()
+        self.forms = FormPlace(self.right)
+        self.sheet = make_data_sheet(self.state)
+        self._asked: tuple[Ask | None, int] = (None, -1)
+        self.sides = StudySides(self.pane, self.right, (self.strip, self.foot))
+        column = QVBoxLayout(self)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.addWidget(self.sides)
+        self.right.show_base(self.sheet)
+        self._connect()
+        self._settle()
+
+    @property
+    def state(self) -> StudyState:
+        """How the study stands."""
+        return self.work.state
+
+    @property
+    def step(self) -> Step:
+        """The step that is shown."""
+        return self.pane.list.step
+
+    def enter(self) -> None:
+        """The page comes on screen; nothing is read anew."""
+        if self.forms.is_open:
+            self.forms.focus()
+        else:
+            self.pane.list.setFocus(Qt.FocusReason.OtherFocusReason)
+
+    def leave(self) -> None:
+        """The window closes: nobody waits for what is still being done."""
+        self.errands.leave()
+        self.errands.wait(_PATIENCE)
+
+    def hideEvent(self, event: QHideEvent) -> None:
+        """No passphrase stays typed where nobody sees it."""
+        self.forms.forget()
+        super().hideEvent(event)
+
+    def ask_study(self) -> None:
+        """Ask for a study file and open it."""
+        path = None if self.work.keeps_draft() else self._choices.which(self, Wanted.STUDY)
+        if path is not None:
+            self.work.open_study(path)
+
+    def ask_people(self) -> None:
+        """Ask for a file of people, and propose a study file for it."""
+        path = None if self.work.keeps_draft() else self._choices.which(self, Wanted.COHORT)
+        if path is not None:
+            self.work.begin_from(path)
+
+    def show_step(self, step: Step) -> None:
+        """Show a step."""
+        self.pane.list.choose(step)
+        self._show()
+
+    def go_across(self) -> None:
+        """Between the steps and what is shown; a form keeps the focus."""
+        focused = self.window().focusWidget()
+        if self.forms.is_open:
+            self.forms.focus()
+        elif focused is not None and self.pane.isAncestorOf(focused):
+            self.sheet.focus_first()
+        else:
+            self.pane.list.setFocus(Qt.FocusReason.ShortcutFocusReason)
+
+    def open_deed(self, deed: FormDeed) -> None:
+        """Show a form over the step."""
+        self.forms.open(deed)
+        self._settle()
+        self.forms.focus()
+
+    # what is shown
+
+    def _take_change(self, step: Step | None) -> None:
+        if step is not None:
+            self.pane.list.choose(step)
+        self._show()
+
+    def _show(self) -> None:
+        """Show the study in the step that is chosen; where it was chosen before, what was in sight stays so."""
+        before, had_focus = self.sheet, self.sheet.isAncestorOf(self.window().focusWidget() or self)
+        scrolled = before.verticalScrollBar().value() if before.title.text() == self.step.title else 0
+        self.sheet = _SHEETS[self.step](self.state)
+        self.sheet.asked.connect(self._ask)
+        self.right.show_base(self.sheet)
+        self.right.removeWidget(before)
+        before.hide()
+        before.deleteLater()
+        if had_focus:
+            self.sheet.focus_first()
+        if scrolled:
+            for _ in range(_ROUNDS):
+                QCoreApplication.sendPostedEvents(None, QEvent.Type.LayoutRequest.value)
+            self.sheet.verticalScrollBar().setValue(scrolled)
+        self.pane.show_name(name_of(self.state))
+        self.pane.list.show_lines(step_lines(self.state))
+        self._settle()
+        self._go_on()
+
+    def _settle(self) -> None:
+        """The foot as the study stands."""
+        is_free, offer = not self.errands.is_busy, offer_of(self.state, self.step)
+        self.foot.offer(
+            offer.what,
+            may=offer.may and is_free,
+            also=offer.also,
+            again=self.state.opened is not None,
+            opens=self.state.draft is None,
+        )
+        self.foot.allow(is_free)
+        self.foot.setVisible(not self.forms.is_open)
+        self.pane.list.setEnabled(not self.forms.is_open)
+
+    def _go_on(self) -> None:
+        """A package is made as soon as its step is looked at."""
+        if self.step is Step.PACKAGE and not self.forms.is_open:
+            self.work.package()
+
+    # what is asked for
+
+    def _do_next(self, what: Next) -> None:
+        if what is Next.TO_MODEL:
+            self.show_step(Step.MODEL)
+        elif what is Next.TO_PACKAGE:
+            self.show_step(Step.PACKAGE)
+        elif what is Next.FIT:
+            self.work.fit()
+        elif what is Next.SAVE:
+            self._open_saving()
+        elif what is Next.WRITE:
+            self._open_writing()
+        elif self.state.written is not None:
+            self.trial_asked.emit(self.state.written)
+
+    def _open_writing(self) -> None:
+        from clinicalc.gui.study.write_deed import WriteDeed
+
+        package, fit, opened = self.state.package, self.state.fit, self.state.opened
+        if package is not None and fit is not None and opened is not None:
+            self.open_deed(WriteDeed(package, fit.fitted, opened.path.parent, self.errands, self._choices))
+
+    def _open_saving(self) -> None:
+        from clinicalc.gui.study.save_deed import SaveDeed
+
+        if self.state.draft is not None:
+            self.open_deed(SaveDeed(self.state.draft, self.errands, self._choices.where))
+
+    def _ask(self, ask: Ask, place: int) -> None:
+        """Something on the sheet was asked for."""
+        draft = self.state.draft
+        if ask is Ask.CHANGE:
+            if self.step is Step.PACKAGE:  # what is said of the file is changed where the model is
+                self.show_step(Step.MODEL)
+            self.work.change_opened()
+        elif ask is Ask.LEAVE:
+            self.work.leave_draft()
+            self.sheet.focus_first()
+        elif draft is not None:
+            from clinicalc.gui.study.draft_asks import answer
+
+            came = answer(ask, place, draft, self.errands)
+            self._asked = (ask, place)
+            if isinstance(came, FormDeed):
+                self.open_deed(came)
+            elif came is not None:
+                self.work.take_draft(came)
+                self._return()
+
+    def _take_result(self, result: object) -> None:
+        """What a form brought: a coefficient file that was written, or another draft, perhaps a saved one."""
+        if isinstance(result, Path):
+            self.work.take_written(result)
+            self.foot.next.setFocus(Qt.FocusReason.OtherFocusReason)
+        elif isinstance(result, StudyDraft):
+            self.work.take_draft(result)
+            self._return()
+
+    def _leave_form(self) -> None:
+        self._settle()
+        self._return()
+
+    def _return(self) -> None:
+        """The focus back to where the form was asked for."""
+        ask, place = self._asked
+        self._asked = (None, -1)
+        if ask is Ask.COLUMN and self.sheet.tables:
+            self.sheet.tables[0].go_to(place)
+            self.sheet.tables[0].setFocus(Qt.FocusReason.OtherFocusReason)
+        elif ask is not None and ask in self.sheet.buttons:
+            self.sheet.buttons[ask].setFocus(Qt.FocusReason.OtherFocusReason)
+        else:
+            self.sheet.focus_first()
+
+    def _connect(self) -> None:
+        self.work.changed.connect(self._take_change)
+        self.work.told.connect(self.strip.say)
+        self.pane.list.chosen.connect(lambda _: self._show())
+        self.pane.list.entered.connect(lambda: self.sheet.focus_first())
+        self.forms.done.connect(self._take_result)
+        self.forms.left.connect(self._leave_form)
+        self.foot.open_asked.connect(self.ask_study)
+        self.foot.begin_asked.connect(self.ask_people)
+        self.foot.again_asked.connect(self.work.read_again)
+        self.foot.next_asked.connect(self._do_next)
+        self.errands.began.connect(lambda _: self._settle())
+        self.errands.ended.connect(self._go_on)
+        self.errands.ended.connect(self._settle)
+        for keys in ("F6", "Shift+F6"):
+            QShortcut(QKeySequence(keys), self).activated.connect(self.go_across)

@@ -1,0 +1,140 @@
+"""Walks over the Study page, each step and each form at each size: names, letters, cut texts, what is painted."""
+
+import pytest
+from PySide6.QtCore import QSize
+from PySide6.QtWidgets import QLabel, QLineEdit
+from pytestqt.qtbot import QtBot
+
+from clinicalc.gui import theme
+from clinicalc.gui.form_deed import FormDeed
+from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
+from clinicalc.gui.study.steps import Ask, Step
+from clinicalc.gui.study.study_foot import Next
+from clinicalc.gui.study.study_page import StudyPage
+from clinicalc.settings import ThemeChoice
+from tests.gui.study.conftest import rest
+from tests.gui.study.study_files import StudyFiles
+from tests.gui.test_walks import walk
+from tests.gui.walking import settle
+
+pytestmark = [
+    pytest.mark.gui,
+    pytest.mark.qt_log_ignore("This plugin does not support"),
+]
+SIZES = pytest.mark.parametrize("size", [QSize(1280, 800), SMALLEST, NARROWEST], ids=["usual", "small", "double text"])
+
+
+def walk_page(window: MainWindow, monkeypatch: pytest.MonkeyPatch) -> dict[str, list[str]]:
+    """What is wrong; the walk takes every tip for markup, and the hidden page of the patient has a walk of its own."""
+    settle()
+    for line in window.bedside.findChildren(QLabel):
+        line.setToolTip("")
+    return walk(window, monkeypatch)
+
+
+@SIZES
+def test_the_steps(
+    qtbot: QtBot,
+    study_window: MainWindow,
+    page: StudyPage,
+    files: StudyFiles,
+    monkeypatch: pytest.MonkeyPatch,
+    size: QSize,
+) -> None:
+    study_window.resize(size)
+    assert walk_page(study_window, monkeypatch) == {}
+    page.work.open_study(files.study)
+    rest(qtbot, page)
+    page.work.fit()
+    rest(qtbot, page)
+    for step in Step:
+        page.show_step(step)
+        rest(qtbot, page)
+        assert walk_page(study_window, monkeypatch) == {}, step
+    page.foot.next.click()
+    shorten(page)
+    assert walk_page(study_window, monkeypatch) == {}, "writing"
+
+
+@SIZES
+def test_what_is_refused(
+    qtbot: QtBot,
+    study_window: MainWindow,
+    page: StudyPage,
+    files: StudyFiles,
+    monkeypatch: pytest.MonkeyPatch,
+    size: QSize,
+) -> None:
+    study_window.resize(size)
+    page.work.open_study(files.study)
+    rest(qtbot, page)
+    page.work.fit()
+    rest(qtbot, page)
+    files.change_people("person,age", "person,agge")
+    page.work.read_again()
+    rest(qtbot, page)
+    for step in Step:
+        page.show_step(step)
+        assert walk_page(study_window, monkeypatch) == {}, step
+    files.change_study('kind = "cox"', 'kind = "coxx"')
+    page.work.read_again()
+    rest(qtbot, page)
+    assert walk_page(study_window, monkeypatch) == {}
+
+
+@SIZES
+def test_a_study_file_being_written(
+    qtbot: QtBot,
+    study_window: MainWindow,
+    page: StudyPage,
+    files: StudyFiles,
+    monkeypatch: pytest.MonkeyPatch,
+    size: QSize,
+) -> None:
+    study_window.resize(size)
+    page.work.begin_from(files.people)
+    rest(qtbot, page)
+    assert walk_page(study_window, monkeypatch) == {}, "data"
+    for place, ask in ((3, Ask.COLUMN), (5, Ask.COLUMN)):
+        page.sheet.tables[0].go_to(place)
+        page.sheet.buttons[ask].click()
+        assert walk_page(study_window, monkeypatch) == {}, (ask, place)
+        leave(page)
+    page.show_step(Step.MODEL)
+    assert walk_page(study_window, monkeypatch) == {}, "model"
+    for ask in (Ask.ABOUT, Ask.ADD_TERM, Ask.FITTING, Ask.ANSWER):
+        page.sheet.buttons[ask].click()
+        assert walk_page(study_window, monkeypatch) == {}, ask
+        leave(page)
+    assert page.foot.comes_next is Next.SAVE
+    page.foot.next.click()
+    shorten(page)
+    assert walk_page(study_window, monkeypatch) == {}, "saving"
+
+
+def test_in_the_dark(
+    qtbot: QtBot, study_window: MainWindow, page: StudyPage, files: StudyFiles, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    theme.choose(ThemeChoice.DARK)
+    try:
+        page.work.open_study(files.study)
+        rest(qtbot, page)
+        page.work.fit()
+        rest(qtbot, page)
+        assert walk_page(study_window, monkeypatch) == {}
+    finally:
+        theme.choose(ThemeChoice.SYSTEM)
+
+
+def leave(page: StudyPage) -> None:
+    """Leave the form that is open."""
+    form = page.right.currentWidget()
+    assert isinstance(form, FormDeed)
+    form.leave()
+
+
+def shorten(page: StudyPage) -> None:
+    """A path that has room in its field; a longer one scrolls there."""
+    form = page.right.currentWidget()
+    assert isinstance(form, FormDeed)
+    form.findChildren(QLineEdit)[0].setText("people.toml")
