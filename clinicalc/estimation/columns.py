@@ -101,3 +101,27 @@ def invert(information: Array) -> Array:
     """The inverse of a symmetric matrix, with mirrored entries the same."""
     inverse = np.linalg.inv(information)
     return np.asarray((inverse + inverse.T) / 2, dtype=np.float64)
+
+
+def add_columns(x: Array, b: Array) -> Array:
+    """The sum of the columns of x (n, p), each times its b (p,): (n,); the same bits with any number of threads."""
+    total = np.zeros(len(x))
+    for place, factor in enumerate(b):
+        total += factor * x[:, place]
+    return total
+
+
+def sum_columns(x: Array, weights: Array) -> Array:
+    """For each column of x (n, p) the sum over people of weight times value, shape (p,)."""
+    return np.array([float((weights * x[:, place]).sum()) for place in range(x.shape[1])])
+
+
+def sum_products(x: Array, weights: Array) -> Array:
+    """For each pair of columns of x (n, p) the sum over people of weight times both, shape (p, p)."""
+    size = x.shape[1]
+    found = np.empty((size, size))
+    for place in range(size):
+        weighed = weights * x[:, place]
+        for other in range(place + 1):
+            found[place, other] = found[other, place] = float((weighed * x[:, other]).sum())
+    return found

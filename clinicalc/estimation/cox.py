@@ -3,8 +3,8 @@
 Cox, J R Stat Soc B 1972;34:187; ties after Efron or Breslow. With v the hazard that each person has gathered (Efron:
 less his share at his own time), the score is the sum of x (event - v) and the information the sum of v x x' less that
 of (S1/S0)(S1/S0)' over the steps, so that no second moments are summed over those at risk. Columns are centred and
-scaled inside; answers are on the scale of the columns given. Matrix products are over columns kept in memory one after
-the other, and one thread.
+scaled inside; answers are on the scale of the columns given. Everything over people is summed column by column, so that
+the figures do not depend on the number of threads.
 """
 
 from dataclasses import dataclass
@@ -12,7 +12,17 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from clinicalc.estimation.columns import ScaledColumns, find_separated, has_inverse, invert, refuse_flat, scale_columns
+from clinicalc.estimation.columns import (
+    ScaledColumns,
+    add_columns,
+    find_separated,
+    has_inverse,
+    invert,
+    refuse_flat,
+    scale_columns,
+    sum_columns,
+    sum_products,
+)
 from clinicalc.estimation.faults import FitFault, refuse_fit
 from clinicalc.estimation.hazard_sums import Cohort, Ties, score
 from clinicalc.estimation.people_at_risk import RiskSets, find_risk_sets
@@ -184,7 +194,7 @@ def _look(parts: list[_Stratum], b: Array) -> _State:
 def _look_at(part: _Stratum, b: Array) -> _State:
     """The same for one stratum."""
     z, sets = part.cohort.x, part.sets
-    lp = z @ b
+    lp = add_columns(z, b)
     if part.cohort.offset is not None:
         lp += part.cohort.offset
     lp -= lp.max()
@@ -201,6 +211,6 @@ def _look_at(part: _Stratum, b: Array) -> _State:
     return _State(
         b,
         float((part.counted * lp).sum() - (sets.mass * np.log(left0)).sum()),
-        z.T @ (part.counted - gathered),
-        z.T @ (gathered[:, None] * z) - means.T @ means,
+        sum_columns(z, part.counted - gathered),
+        sum_products(z, gathered) - sum_products(means, np.ones(len(means))),
     )
