@@ -122,6 +122,7 @@ def _judge_times(plan: OutcomePlan, taken: TakenTimes, states: Numbers, lines: L
         happened = states >= 1.0
         yield from _tell_early(name, taken, early & happened, ProblemCode.EVENT_BEFORE_ENTRY, lines)
         yield from _tell_early(name, taken, early & ~happened, ProblemCode.EXIT_BEFORE_ENTRY, lines)
+        yield from _tell_before_nought(name, taken, (taken.times <= 0) & (taken.times > taken.entry), lines)
         return
     where = taken.times == 0 if disordered else taken.times <= 0
     if where.any():
@@ -150,6 +151,19 @@ def _tell_early(name: str, taken: TakenTimes, where: Mask, code: ProblemCode, li
         "is watched for no time cannot be counted: correct the two, or leave these people out and say so."
     )
     yield _problem(Grade.STOP, name, code, where, lines, said)
+
+
+def _tell_before_nought(name: str, taken: TakenTimes, where: Mask, lines: Lines) -> Iterator[DataProblem]:
+    """Whoever came and left before time nought: an event there would count towards every horizon."""
+    if not where.any():
+        return
+    seen = see(where, lines)
+    said = (
+        f"{name_column(name)}: a time of {quoted(float(taken.times[seen.first]))} cannot be, {seen.words}; times are "
+        "above zero, also where people come under observation before it. Time zero is the moment at which the model "
+        "will be used: correct the times, or leave these people out and say so."
+    )
+    yield _problem(Grade.STOP, name, ProblemCode.TIME_NOT_POSITIVE, where, lines, said)
 
 
 def _judge_unit(plan: OutcomePlan, taken: TakenTimes, lines: Lines) -> Iterator[DataProblem]:

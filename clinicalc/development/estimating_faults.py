@@ -48,4 +48,10 @@ def _sentence(refused: FitRefused, ground: Ground) -> str:
             return f"there are {len(ground.estimated)} terms and fewer events. Leave terms out, or gather more events."
         case FitFault.NOT_CONVERGED:
             return f"the fit does not come to rest ({names}). Are there terms that are almost the same?"
+        case FitFault.TIME_NOT_POSITIVE | FitFault.ENTRY_NOT_BEFORE_TIME:
+            # what stands so in the file was told when it was checked
+            return (
+                f"once times are rounded, {refused.what.rstrip('.')}. Say more decimals in round_times, of which 0 "
+                "makes whole units of the time, or correct the times."
+            )
     return f"{refused.what}"

@@ -14,7 +14,7 @@ from clinicalc.development.estimated_hazards import FixedTerms, HazardPlan, fit_
 from clinicalc.development.estimated_risks import fit_risks
 from clinicalc.development.fit import Fit, FitKind
 from clinicalc.development.study_figures import FitFigures, LeftOut
-from clinicalc.development.study_horizons import find_follow_up, horizon_figures, require_horizons
+from clinicalc.development.study_horizons import find_follow_up, horizon_figures, remark_few_at_risk, require_horizons
 from clinicalc.development.study_people import FitPeople, equations_of, term_columns
 from clinicalc.development.study_screening import Screening, screen_fit
 from clinicalc.development.study_strata import FitPlan
@@ -87,6 +87,8 @@ def times_of(ground: Ground, outcome: SurvivalOutcome, x: Array) -> Cohort:
     """The people of a Cox fit: times rounded, events 1 where the status is 1; competing events are censored."""
     rows, decimals = ground.people.used, ground.plan.table.round_times
     entry = None if outcome.entry is None else outcome.entry[rows]
+    if entry is not None and not (entry > 0).any():
+        entry = None  # all were there from time nought on, which is no late entry
     cohort = Cohort(outcome.times[rows], (outcome.status[rows] == 1).astype(np.float64), x, entry)
     return round_times(cohort, ROUND_TIMES if isinstance(decimals, UnsetType) else decimals)
 
@@ -179,7 +181,10 @@ def _finish(
         screened=screening.found,
         minimum=screening.minimum,
     )
-    return Estimated(made.fits, figures, made.linear_predictor, tuple(_remarks(figures)))
+    remarks = tuple(_remarks(figures))
+    if cohort is not None and isinstance(outcome, SurvivalOutcome):
+        remarks += tuple(remark_few_at_risk(ground.equations, cohort, strata, times, outcome.unit))
+    return Estimated(made.fits, figures, made.linear_predictor, remarks)
 
 
 def _remarks(figures: FitFigures) -> Iterator[str]:

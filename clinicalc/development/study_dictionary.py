@@ -6,7 +6,14 @@ from msgspec import UNSET, UnsetType
 
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
 from clinicalc.cohort.dictionary import ColumnEntry, DataDictionary, OutcomeKind, OutcomePlan
-from clinicalc.development.study_tables import BinaryTable, CohortTable, ColumnTable, TimeToEventTable, spell_cells
+from clinicalc.development.study_tables import (
+    BinaryTable,
+    Cells,
+    CohortTable,
+    ColumnTable,
+    TimeToEventTable,
+    spell_cells,
+)
 from clinicalc.errors import Problem
 
 
@@ -33,6 +40,7 @@ def find_cohort_problems(cohort: CohortTable, answers: Mapping[str, tuple[str, .
             yield Problem(path, f"there is no predictor {quoted(id)}.{suggest(id, answers)}")
         elif not isinstance(column.levels, UnsetType):
             yield from _find_level_problems(id, column.levels, answers[id], path)
+            yield from _find_double_levels(column, column.levels, path)
         if answers.get(id) is not None and not isinstance(column.unit, UnsetType):
             yield Problem(
                 point(path, "unit"), f"{quoted(id)} is a question, and its answers have no unit. Leave it out."
@@ -122,6 +130,21 @@ def _find_level_problems(
         if answer not in known:
             which = f" It has {listed(map(quoted, known))}." if len(known) > 8 else suggest(answer, known)
             yield Problem(point(path, "levels", answer), f"{quoted(answer)} is no answer to {quoted(id)}.{which}")
+
+
+def _find_double_levels(column: ColumnTable, levels: Mapping[str, Cells], path: str) -> Iterator[Problem]:
+    """Texts that stand for two answers, or for an answer and for a missing value: one of the two would be lost."""
+    missing = {text.strip().casefold() for text in spell_cells(column.missing)}
+    seen: dict[str, str] = {}
+    for answer, cells in levels.items():
+        for text in (cell.strip() for cell in spell_cells(cells)):
+            other = seen.setdefault(text, answer)
+            if other != answer:
+                what = f"{quoted(text)} stands for {quoted(other)} as well. Each text means one thing."
+                yield Problem(point(path, "levels", answer), what)
+            if text.casefold() in missing:
+                what = f"{quoted(text)} is named under missing as well. Each text means one thing."
+                yield Problem(point(path, "levels", answer), what)
 
 
 def _text(value: str | UnsetType) -> str:

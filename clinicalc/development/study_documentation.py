@@ -2,15 +2,17 @@
 
 import math
 import platform
+from dataclasses import replace
 from importlib.metadata import version
 
 import msgspec
 
 from clinicalc import __version__
+from clinicalc.coefficients.schema import Documentation
 from clinicalc.coefficients.spans import Span
 from clinicalc.cohort.checked import SurvivalOutcome
 from clinicalc.development.estimating import FittedStudy
-from clinicalc.development.fit_documentation import FitDocumentation, document_fit
+from clinicalc.development.fit_documentation import OF_THE_FIT, FitDocumentation, Item, document_fit
 from clinicalc.development.stated_fit import MinimumSize, MissingShare, StatedConcordance, StatedFit, StatedFollowUp
 from clinicalc.development.study_figures import FitFigures
 from clinicalc.development.study_terms import Tree
@@ -34,7 +36,7 @@ def document_study(fitted: FittedStudy) -> FitDocumentation:
     """All items of the report standard that are answered, and the names of those that are not."""
     is_timed = isinstance(fitted.cohort.outcome, SurvivalOutcome)
     stated = [_state(fitted, figures) for figures in fitted.figures]
-    return document_fit(stated, fitted.model.content.documentation, is_timed=is_timed)
+    return _with_uncovered(document_fit(stated, fitted.model.content.documentation, is_timed=is_timed), fitted)
 
 
 def with_documentation(fitted: FittedStudy, model: Tree) -> Tree:
@@ -42,8 +44,21 @@ def with_documentation(fitted: FittedStudy, model: Tree) -> Tree:
     return {**model, "documentation": [msgspec.to_builtins(item) for item in document_study(fitted).items]}
 
 
+def _with_uncovered(found: FitDocumentation, fitted: FittedStudy) -> FitDocumentation:
+    """The same with those to whom no equation applies, who are among the people of no fit, below what is missing."""
+    count = fitted.cohort.rows - sum(len(people.rows) for people in fitted.people.values())
+    if not count:
+        return found
+    names = (Item.MISSING.value, f"{Item.MISSING}{OF_THE_FIT}")
+    place = max(place for place, item in enumerate(found.items) if item.item in names)
+    who = "1 more person is" if count == 1 else f"{count:,} more people are"
+    text = f"{who} in no fit, of {fitted.cohort.rows:,}: what decides which equation applies is missing."
+    more = Documentation(item=found.items[place].item, text=text)
+    return replace(found, items=(*found.items[: place + 1], more, *found.items[place + 1 :]))
+
+
 def _state(fitted: FittedStudy, figures: FitFigures) -> StatedFit:
-    labels = {predictor.id: predictor.label for predictor in fitted.model.content.predictors}
+    labels = {"": "the outcome"} | {predictor.id: predictor.label for predictor in fitted.model.content.predictors}
     missing = tuple(MissingShare(labels[id], count) for id, count in figures.left_out.missing.items() if id in labels)
     size = figures.minimum
     return StatedFit(

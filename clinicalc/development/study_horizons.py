@@ -14,6 +14,7 @@ from clinicalc.estimation.hazard_sums import Cohort
 
 Codes = NDArray[np.int64]
 _DECIMALS = 9
+_FEW_AT_RISK = 10
 
 
 def require_horizons(
@@ -63,6 +64,31 @@ def find_follow_up(cohort: Cohort, unit: str) -> FollowUp:
     left = np.cumprod(1.0 - ended / (len(order) - first))
     reached = np.flatnonzero(left <= 0.5)
     return FollowUp(float(when[reached[0]]) if len(reached) else None, longest, unit)
+
+
+def remark_few_at_risk(
+    equations: Sequence[ModelEquation], cohort: Cohort, strata: Codes, times: Sequence[Sequence[float]], unit: str
+) -> Iterator[str]:
+    """Equations where people came late and an event by a horizon was counted against fewer than ten people.
+
+    The baseline hazard jumps there by the share of those at risk, and every later horizon keeps the jump.
+    """
+    if cohort.entry is None:
+        return
+    for place, equation in enumerate(equations):
+        rows = strata == place
+        counted = rows & (cohort.events == 1) & (cohort.times <= max(times[place]))
+        when = np.unique(cohort.times[counted])
+        left, came = np.sort(cohort.times[rows]), np.sort(cohort.entry[rows])
+        at_risk = np.searchsorted(came, when, side="left") - np.searchsorted(left, when, side="left")
+        if at_risk.min() < _FEW_AT_RISK:
+            thin = int(at_risk.argmin())
+            who = "1 person was" if at_risk[thin] == 1 else f"{at_risk[thin]} people were"
+            yield (
+                f"{equation.content.id}: only {who} under observation at {Span(float(when[thin]), unit).words}, when "
+                "somebody had the event. The baseline jumps there, and every later probability with it: look whether "
+                "so few can be relied on, or begin with those who were watched from time nought."
+            )
 
 
 def _in_unit(span: Span, unit: str) -> float:

@@ -12,7 +12,12 @@ from clinicalc.development.package import Package, package_model
 from clinicalc.development.study_documentation import document_study, with_documentation
 from clinicalc.development.study_patients import make_patients
 from clinicalc.development.study_population import with_populations
-from clinicalc.development.study_ranges import with_horizon_figures, with_ranges, with_source_figures
+from clinicalc.development.study_ranges import (
+    remark_other_figures,
+    with_horizon_figures,
+    with_ranges,
+    with_source_figures,
+)
 from clinicalc.errors import DescriptionRefused, Problem
 
 
@@ -38,7 +43,9 @@ def complete(fitted: FittedStudy) -> tuple[Description, tuple[str, ...]]:
     """The description with everything that its people answer, and remarks about what they could not."""
     model = with_ranges(fitted, dict(fitted.description.model))
     model = with_source_figures(fitted, with_horizon_figures(fitted, model))
+    other = tuple(remark_other_figures(fitted, model))
     model, remarks = with_populations(fitted, model)
+    remarks = (*other, *remarks)
     model = with_documentation(fitted, model)
     patients = fitted.description.patients or make_patients(fitted)
     unanswered = document_study(fitted).unanswered

@@ -1,5 +1,7 @@
 """The ranges a study leaves to its people: the lowest and highest value of those its fits were made from."""
 
+from collections.abc import Iterator, Mapping
+
 from clinicalc.development.estimating import FittedStudy
 from clinicalc.development.study_figures import HorizonFigures
 from clinicalc.development.study_terms import Tree, parts
@@ -60,6 +62,30 @@ def with_source_figures(fitted: FittedStudy, model: Tree) -> Tree:
     stated = source.get("derivation")
     figures = {"people": people, "events": events, **(stated if isinstance(stated, dict) else {})}
     return {**model, "source": {**source, "derivation": figures}}
+
+
+def remark_other_figures(fitted: FittedStudy, completed: Tree) -> Iterator[str]:
+    """Counts that the study states itself and that the fit does not bear out, such as those of an earlier file."""
+    people, events = count_people(fitted)
+    source = completed.get("source")
+    derivation = source.get("derivation") if isinstance(source, dict) else None
+    yield from _remark_counts("source, derivation", derivation, {"people": people, "events": events})
+    found = {(at.equation, at.span): at for one in fitted.figures for at in one.horizons}
+    stated = {str(equation.get("id")): parts(equation, "horizons") for equation in parts(completed, "equations")}
+    for (equation, span), at in found.items():
+        lines = [line.span for one in fitted.model.equations if one.content.id == equation for line in one.lines]
+        counts = {"people": at.people, "events": at.events, "still_at_risk": at.still_at_risk}
+        yield from _remark_counts(f"{equation}, {span.words}", stated[equation][lines.index(span)], counts)
+
+
+def _remark_counts(where: str, stated: object, counts: Mapping[str, int]) -> Iterator[str]:
+    for name, count in counts.items():
+        said = stated.get(name) if isinstance(stated, dict) else None
+        if isinstance(said, int) and said != count:
+            yield (
+                f'{where}: the study says {name} = {said}, which is kept, and the fit has {count}. Leave "{name}" out '
+                "to have the figure of the fit."
+            )
 
 
 def _is_open(part: object, kind: str) -> bool:

@@ -16,6 +16,9 @@ WIDEST = 10.0
 FLATTEST = 1e-11
 """Smallest eigenvalue of the information at b = 0 as a correlation: below it columns follow from one another."""
 
+ALIKE = 1e-4
+"""Smallest eigenvalue of a correlation below which its inverse loses too many digits: a spline of many knots."""
+
 
 @dataclass(frozen=True, slots=True, eq=False)
 class ScaledColumns:
@@ -54,6 +57,35 @@ def scale_columns(x: Array) -> ScaledColumns:
     if constant:
         raise refuse_fit(FitFault.CONSTANT, tuple(constant))
     return ScaledColumns(z, centre, spread)
+
+
+def are_alike(information: Array) -> bool:
+    """Whether the inverse of the information, (p, p), on columns as they are loses digits that a clinician sees."""
+    size = np.sqrt(np.diag(information))
+    return bool(np.linalg.eigvalsh(information / np.outer(size, size))[0] < ALIKE)
+
+
+def straighten(z: Array) -> tuple[Array, Array]:
+    """Columns q (n, p) at right angles, of mean square 1, and the triangle (p, p) with z = q triangle.
+
+    By modified Gram-Schmidt (Björck, BIT 1967;7:1-21), column by column. On q the information is far from flat, and the
+    condition of z enters the covariance once; it enters the inverse of the information on z squared.
+    """
+    q, triangle = np.array(z, order="F"), np.zeros((z.shape[1], z.shape[1]))
+    for place in range(z.shape[1]):
+        triangle[place, place] = np.sqrt((q[:, place] * q[:, place]).mean())
+        q[:, place] /= triangle[place, place]
+        for later in range(place + 1, z.shape[1]):
+            triangle[place, later] = (q[:, place] * q[:, later]).mean()
+            q[:, later] -= triangle[place, later] * q[:, place]
+    return q, triangle
+
+
+def turn_back(covariance: Array, triangle: Array) -> Array:
+    """The covariance of the coefficients of z, (p, p), from that of q, mirrored entries the same."""
+    half = np.linalg.solve(triangle, np.linalg.cholesky(covariance))
+    filled = half @ half.T
+    return np.asarray((filled + filled.T) / 2, dtype=np.float64)
 
 
 def refuse_flat(information: Array, people: float) -> None:

@@ -7,7 +7,7 @@ scaled inside; answers are on the scale of the columns given. Everything over pe
 the figures do not depend on the number of threads.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,13 +15,16 @@ from numpy.typing import NDArray
 from clinicalc.estimation.columns import (
     ScaledColumns,
     add_columns,
+    are_alike,
     find_separated,
     has_inverse,
     invert,
     refuse_flat,
     scale_columns,
+    straighten,
     sum_columns,
     sum_products,
+    turn_back,
 )
 from clinicalc.estimation.faults import FitFault, refuse_fit
 from clinicalc.estimation.hazard_sums import Cohort, Ties, score
@@ -94,7 +97,7 @@ def fit_cox(cohort: Cohort, *, ties: Ties = Ties.EFRON, strata: Codes | None = N
         raise refuse_fit(FitFault.NOT_CONVERGED)
     return CoxFit(
         coefficients=found.b / columns.spread,
-        covariance=invert(found.information) / np.outer(columns.spread, columns.spread),
+        covariance=_invert_at(found, cohort, columns, ties, strata) / np.outer(columns.spread, columns.spread),
         loglik_null=null.loglik,
         loglik=found.loglik,
         score_max=worst,
@@ -102,6 +105,15 @@ def fit_cox(cohort: Cohort, *, ties: Ties = Ties.EFRON, strata: Codes | None = N
         people=len(cohort.times),
         events=events,
     )
+
+
+def _invert_at(state: _State, cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | None) -> Array:
+    """The inverse of the information at b, (p, p), on scaled columns; where they are alike, by way of straight ones."""
+    if not are_alike(state.information):
+        return invert(state.information)
+    q, triangle = straighten(columns.z)
+    straight = _look(_split(cohort, replace(columns, z=q), ties, strata), triangle @ state.b)
+    return turn_back(invert(straight.information), triangle)
 
 
 def _check_people(cohort: Cohort) -> int:

@@ -16,7 +16,17 @@ from numpy.typing import NDArray
 
 from clinicalc.estimation.binomial import Link, find_bends, find_slopes, sum_loglik
 from clinicalc.estimation.clusters import make_sandwich, sum_clusters
-from clinicalc.estimation.columns import ScaledColumns, find_separated, has_inverse, invert, refuse_flat, scale_columns
+from clinicalc.estimation.columns import (
+    ScaledColumns,
+    are_alike,
+    find_separated,
+    has_inverse,
+    invert,
+    refuse_flat,
+    scale_columns,
+    straighten,
+    turn_back,
+)
 from clinicalc.estimation.faults import FitFault, refuse_fit
 
 __all__ = ["Link", "LogisticFit", "Sandwich", "fit_logistic", "robust_covariance"]
@@ -91,11 +101,15 @@ def fit_logistic(
     worst = float(np.abs((design * (gradient * counts)[:, None]).sum(axis=0)).max()) / people
     if not (converged and worst <= SCORE_SLACK):
         raise refuse_fit(FitFault.NOT_CONVERGED)
+    covariance = invert(information)
+    if are_alike(information):
+        q, triangle = straighten(design)
+        covariance = turn_back(invert(_information(q, curvature * counts)), triangle)
     turn = _to_own_scale(columns)
     return LogisticFit(
         link=link,
         coefficients=turn @ b,
-        covariance=turn @ invert(information) @ turn.T,
+        covariance=turn @ covariance @ turn.T,
         loglik_null=sum_loglik(design, start, y, link, counts, away),
         loglik=sum_loglik(design, b, y, link, counts, away),
         score_max=worst,

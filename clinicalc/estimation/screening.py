@@ -110,7 +110,8 @@ def _usable_r2(r2: StatedR2 | None, largest: float, people: int, parameters: int
 def _mean_follow_up(outcome: ScreenedOutcome) -> float | None:
     if outcome.times is None:
         return None
-    spent = outcome.times if outcome.entry is None else outcome.times - outcome.entry
+    # what was watched before time nought is no part of the time in which the events were counted
+    spent = outcome.times if outcome.entry is None else outcome.times - np.maximum(outcome.entry, 0.0)
     return float(spent.mean())
 
 

@@ -148,7 +148,10 @@ class MainWindow(QWidget):
         self.bedside.fit(event.size().width())
 
     def closeEvent(self, event: QCloseEvent) -> None:
-        """Nobody waits for what is still being done."""
+        """What is not saved is said once before it is lost; for what is still being done nobody waits."""
+        if not self.others.may_close():
+            event.ignore()
+            return
         self.others.leave()
         if self.library is not None:
             self.library.leave()

@@ -83,6 +83,13 @@ class OtherPages:
                 self._settings.show_library(self._models.reading.view.practice)
         return self._settings
 
+    def may_close(self) -> bool:
+        """Whether the window may close; where something would be lost that is said on its page first."""
+        if self._study is None or self._study.may_close():
+            return True
+        self._window.show_page(Page.STUDY)
+        return False
+
     def leave(self) -> None:
         """The window closes."""
         if self._models is not None:

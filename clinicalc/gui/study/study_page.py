@@ -59,6 +59,7 @@ class StudyPage(QWidget):
         self.forms = FormPlace(self.right)
         self.sheet = make_data_sheet(self.state)
         self._asked: tuple[Ask | None, int] = (None, -1)
+        self._told_of: StudyDraft | None = None
         self.sides = StudySides(self.pane, self.right, (self.strip, self.foot))
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
@@ -83,6 +84,15 @@ class StudyPage(QWidget):
             self.forms.focus()
         else:
             self.pane.list.setFocus(Qt.FocusReason.OtherFocusReason)
+
+    def may_close(self) -> bool:
+        """Whether the window may close: not at once over a study file that is not saved; asked again, it may."""
+        draft = self.state.draft
+        if draft is None or draft.is_saved or draft is self._told_of:
+            return True
+        self._told_of = draft
+        self.strip.say("The study file is not saved. Save it, or close the window again: then it is lost.")
+        return False
 
     def leave(self) -> None:
         """The window closes: nobody waits for what is still being done."""

@@ -12,6 +12,8 @@ from clinicalc.cohort.dictionary import Role
 from clinicalc.gui.chooser import Chooser as Box
 from clinicalc.gui.file_choosing import Wanted
 from clinicalc.gui.form_deed import FormDeed
+from clinicalc.gui.main_window import MainWindow
+from clinicalc.gui.page_tabs import Page
 from clinicalc.gui.study.about_deed import AboutDeed
 from clinicalc.gui.study.answer_deed import AnswerDeed
 from clinicalc.gui.study.column_deed import ColumnDeed
@@ -303,3 +305,16 @@ def test_a_file_of_people_that_cannot_be_read_changes_nothing(qtbot: QtBot, page
 def saved_tree(page: StudyPage) -> dict[str, Any]:
     """The tree that would be saved."""
     return tomllib.loads(spell_toml(draft_of(page).tree))
+
+
+def test_a_window_is_not_closed_over_a_study_file_that_is_not_saved_before_that_was_said(
+    qtbot: QtBot, begun: StudyPage
+) -> None:
+    window = begun.window()
+    assert isinstance(window, MainWindow)
+    window.show_page(Page.PATIENT)
+    assert not window.close()
+    assert window.page is Page.STUDY
+    assert "not saved" in begun.strip.words.text()
+    form(begun, Ask.COLUMN, "sbp")
+    assert window.close()
