@@ -14,9 +14,9 @@ from clinicalc.gui.errands import Errands
 from clinicalc.gui.main_window import NARROWEST, MainWindow
 from clinicalc.gui.models.deeds.given import LibraryDeed
 from clinicalc.gui.models.models_page import ModelsPage
-from clinicalc.gui.models.progress_strip import PATIENCE, ProgressStrip
 from clinicalc.gui.page_focus import PageFocus
 from clinicalc.gui.page_tabs import Page
+from clinicalc.gui.progress_strip import PATIENCE, ProgressStrip
 from clinicalc.operations.model_card import Deed
 from tests.gui.models.conftest import wait_until_read
 from tests.gui.models.shelves import IN_USE, FullShelf, page_of

@@ -9,7 +9,7 @@ from clinicalc.gui.models.card_view import CardView
 from clinicalc.gui.models.deeds.given import Given
 from clinicalc.gui.models.library_reading import LibraryReading
 from clinicalc.gui.models.right_note import RightNote
-from clinicalc.gui.models.right_stack import RightStack
+from clinicalc.gui.right_stack import RightStack
 from clinicalc.gui.window_words import replace_commands, sentence_of
 from clinicalc.operations.library_view import ModelRow
 from clinicalc.operations.model_card import ModelCard

@@ -1,23 +1,19 @@
 """The table of what differs: as high as its rows, read with the arrow keys, painted where it is in sight."""
 
-from PySide6.QtCore import QModelIndex, QPersistentModelIndex, QPointF, QRectF, QSize, Qt, Signal
+from PySide6.QtCore import QModelIndex, QPersistentModelIndex, QPointF, QRectF, QSize
 from PySide6.QtGui import (
     QColor,
     QFont,
-    QGuiApplication,
-    QKeyEvent,
-    QKeySequence,
     QPainter,
     QPen,
-    QResizeEvent,
     QTextLayout,
     QTextOption,
-    QWheelEvent,
 )
-from PySide6.QtWidgets import QAbstractItemView, QStyledItemDelegate, QStyleOptionViewItem, QTableView
+from PySide6.QtWidgets import QStyledItemDelegate, QStyleOptionViewItem
 
 from clinicalc.gui import theme
 from clinicalc.gui.models.change_rows import Cell, ChangeRows, Column
+from clinicalc.gui.still_table import StillTable
 from clinicalc.gui.typeface import BASE, CAPTION, face
 
 _SHARES = (0.40, 0.28, 0.32)
@@ -26,89 +22,40 @@ _FIRST_INSET, _INSET = 3.0, 6.0
 _LINE_BREAK = "\u2028"
 
 
-class ChangeTable(QTableView):
-    """Takes no scroll bars of its own: the card scrolls, and is told which row is gone to."""
-
-    row_reached = Signal(int, int)
-    """Top and height of the row that an arrow key led to, from the top of the table."""
+class ChangeTable(StillTable):
+    """Old beside new; what stands alone in its row goes over the whole width."""
 
     def __init__(self, rows: ChangeRows, name: str) -> None:
-        super().__init__()
+        super().__init__(rows, name)
         self._rows = rows
         self._heights: dict[int, list[int]] = {}
-        self.setModel(rows)
         self._delegate = CellPainter(self)
         self.setItemDelegate(self._delegate)
-        self.setAccessibleName(name)
-        self.setFrameShape(QTableView.Shape.NoFrame)
-        self.setShowGrid(False)
-        self.setTabKeyNavigation(False)
-        self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        self.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.horizontalHeader().hide()
-        self.verticalHeader().hide()
         self.horizontalHeader().setMinimumSectionSize(1)
-        self.verticalHeader().setMinimumSectionSize(1)
         self.setWordWrap(True)
         for place, row in enumerate(rows.rows):
             if len(row) == 1:
                 self.setSpan(place, 0, 1, len(Column))
-        self.selectionModel().currentChanged.connect(self._tell)
 
     def fit(self, width: int) -> None:
-        """Take a width, and the height of all rows at it."""
+        """Take a width, and the height of all rows at it, worked out once."""
         width = max(width, 3)
         first, second = (round(width * share) for share in _SHARES[:2])
         widths = (first, second, width - first - second)
-        for column, wide in enumerate(widths):
-            self.setColumnWidth(column, wide)
         heights = self._heights.get(width)
         if heights is None:
             heights = self._heights[width] = [self._height(place, widths) for place in range(len(self._rows.rows))]
-        header = self.verticalHeader()
-        blocked = header.blockSignals(True)
-        for place, height in enumerate(heights):
-            header.resizeSection(place, height)
-        header.blockSignals(blocked)
-        self.setFixedHeight(sum(heights))
-        self.updateGeometries()
+        self.take_sizes(widths, heights)
 
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        """Lines break elsewhere."""
-        super().resizeEvent(event)
-        if event.size().width() != event.oldSize().width():
-            self.fit(event.size().width())
-
-    def sizeHint(self) -> QSize:
-        """As wide as there is room."""
-        return QSize(1, self.height())
-
-    def minimumSizeHint(self) -> QSize:
-        """As narrow as must be."""
-        return QSize(1, 1)
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        """Leave the wheel to the card."""
-        event.ignore()
-
-    def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Copy takes the row as text."""
-        if event.matches(QKeySequence.StandardKey.Copy) and self.currentIndex().isValid():
-            QGuiApplication.clipboard().setText(self._rows.line(self.currentIndex().row()))
-            return
-        super().keyPressEvent(event)
+    def line(self, row: int) -> str:
+        """A row as text."""
+        return self._rows.line(row)
 
     def _height(self, place: int, widths: tuple[int, ...]) -> int:
         row = self._rows.rows[place]
         room = [sum(widths)] if len(row) == 1 else widths
         return max(self._delegate.height_of(cell, wide) for cell, wide in zip(row, room, strict=True))
-
-    def _tell(self, current: QModelIndex, _: QModelIndex) -> None:
-        if current.isValid():
-            self.row_reached.emit(self.rowViewportPosition(current.row()), self.rowHeight(current.row()))
 
 
 class CellPainter(QStyledItemDelegate):

@@ -4,8 +4,8 @@ from PySide6.QtCore import QObject, Signal
 
 from clinicalc.gui.errands import Errands
 from clinicalc.gui.file_choosing import FileChoices
-from clinicalc.gui.models.right_stack import RightStack
 from clinicalc.gui.practice.first_run import FirstRun
+from clinicalc.gui.right_stack import RightStack
 
 
 class FirstPlace(QObject):

@@ -9,7 +9,7 @@ from clinicalc.gui.errands import Errands
 from clinicalc.gui.form_fields import TextField
 from clinicalc.gui.labels import make_label, make_line
 from clinicalc.gui.models.models_list import ModelsList
-from clinicalc.gui.models.progress_strip import ProgressStrip
+from clinicalc.gui.progress_strip import ProgressStrip
 from clinicalc.gui.scroller import Scroller
 from clinicalc.gui.tokens import RING, SIDE_MARGIN
 from clinicalc.gui.typeface import TITLE, UNIT

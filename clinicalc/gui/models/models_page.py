@@ -20,8 +20,8 @@ from clinicalc.gui.models.first_place import FirstPlace
 from clinicalc.gui.models.library_reading import LibraryReading
 from clinicalc.gui.models.library_side import LibrarySide
 from clinicalc.gui.models.models_foot import ModelsFoot
-from clinicalc.gui.models.right_stack import RightStack
 from clinicalc.gui.models.two_sides import TwoSides
+from clinicalc.gui.right_stack import RightStack
 from clinicalc.gui.window_words import sentence_of
 from clinicalc.library.opening import OpenedLibrary
 from clinicalc.operations.library_view import LibraryView, ModelRow
@@ -131,7 +131,7 @@ class ModelsPage(QWidget):
             self.foot.until.edit.setFocus(Qt.FocusReason.OtherFocusReason)
             return
         given = Given() if card is None else replace(self.card.given(), review_until=until)
-        self.deeds.open(deed, card, given)
+        self.deeds.begin(deed, card, given)
         self._settle()
         self.sides.turn(is_right=True)
 

@@ -5,7 +5,7 @@ from PySide6.QtWidgets import QFrame, QHBoxLayout, QVBoxLayout, QWidget
 
 from clinicalc.gui.models.library_side import LibrarySide
 from clinicalc.gui.models.models_foot import ModelsFoot
-from clinicalc.gui.models.right_stack import RightStack
+from clinicalc.gui.right_stack import RightStack
 from clinicalc.gui.tokens import COMPACT_BELOW
 
 LIST_WIDTH, LIST_WIDTH_COMPACT = 400, 320

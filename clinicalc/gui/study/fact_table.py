@@ -5,21 +5,18 @@ from PySide6.QtGui import (
     QColor,
     QFont,
     QFontMetrics,
-    QGuiApplication,
     QKeyEvent,
-    QKeySequence,
     QMouseEvent,
     QPainter,
     QPaintEvent,
     QPen,
-    QResizeEvent,
     QTextLayout,
     QTextOption,
-    QWheelEvent,
 )
-from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QStyledItemDelegate, QStyleOptionViewItem, QTableView
+from PySide6.QtWidgets import QHeaderView, QStyledItemDelegate, QStyleOptionViewItem
 
 from clinicalc.gui import theme
+from clinicalc.gui.still_table import StillTable
 from clinicalc.gui.study.fact_rows import FactRows
 from clinicalc.gui.typeface import CAPTION, UNIT, face
 
@@ -30,39 +27,24 @@ _APART = 24
 _HEAD_HIGH = 26
 
 
-class FactTable(QTableView):
-    """Takes no scroll bars of its own: the sheet scrolls, and is told which row is gone to."""
+class FactTable(StillTable):
+    """Texts as wide as they need where there is room; a note goes over the whole width."""
 
-    row_reached = Signal(int, int)
-    """Top and height of the row that an arrow key led to, from the top of the table."""
     entered = Signal(int)
     """Enter or a double click at a fact: its place."""
 
     def __init__(self, rows: FactRows, name: str) -> None:
-        super().__init__()
+        super().__init__(rows, name)
         self.rows = rows
-        self.setModel(rows)
         self._delegate = _CellPaint(self)
         self.setItemDelegate(self._delegate)
         self._head = _HeadPaint(self)
         self.setHorizontalHeader(self._head)
-        self.setAccessibleName(name)
-        self.setFrameShape(QTableView.Shape.NoFrame)
         self.viewport().setAutoFillBackground(False)
-        self.setShowGrid(False)
-        self.setTabKeyNavigation(False)
-        self.setEditTriggers(QAbstractItemView.EditTrigger.NoEditTriggers)
-        self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
-        self.setSelectionMode(QAbstractItemView.SelectionMode.SingleSelection)
-        self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
-        self.verticalHeader().hide()
-        self.verticalHeader().setMinimumSectionSize(1)
         for row in range(rows.rowCount()):
             if rows.is_note(row):
                 self.setSpan(row, 0, 1, rows.columnCount())
         self._natural = [self._natural_width(column) for column in range(rows.columnCount())]
-        self.selectionModel().currentChanged.connect(self._tell)
 
     @property
     def place(self) -> int:
@@ -77,36 +59,12 @@ class FactTable(QTableView):
     def fit(self, width: int) -> None:
         """Take a width, and the height of all rows at it."""
         widths = _share(self._natural, [column.is_figures for column in self.rows.columns], width)
-        for column, wide in enumerate(widths):
-            self.setColumnWidth(column, wide)
-        header = self.verticalHeader()
-        blocked = header.blockSignals(True)
-        total = 0
-        for row in range(self.rows.rowCount()):
-            high = self._row_height(row, widths)
-            header.resizeSection(row, high)
-            total += high
-        header.blockSignals(blocked)
-        self.setFixedHeight(total + _HEAD_HIGH)
-        self.updateGeometries()
+        heights = [self._row_height(row, widths) for row in range(self.rows.rowCount())]
+        self.take_sizes(widths, heights, _HEAD_HIGH)
 
-    def resizeEvent(self, event: QResizeEvent) -> None:
-        """Lines break elsewhere."""
-        super().resizeEvent(event)
-        if event.size().width() != event.oldSize().width():
-            self.fit(event.size().width())
-
-    def sizeHint(self) -> QSize:
-        """As wide as there is room."""
-        return QSize(1, self.height())
-
-    def minimumSizeHint(self) -> QSize:
-        """As narrow as must be."""
-        return QSize(1, 1)
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        """Leave the wheel to the sheet."""
-        event.ignore()
+    def line(self, row: int) -> str:
+        """A row as text."""
+        return self.rows.line(row)
 
     def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
         """Like Enter."""
@@ -114,11 +72,9 @@ class FactTable(QTableView):
         self._enter()
 
     def keyPressEvent(self, event: QKeyEvent) -> None:
-        """Enter is told; copy takes the row as text."""
+        """Enter is told."""
         if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter):
             self._enter()
-        elif event.matches(QKeySequence.StandardKey.Copy) and self.currentIndex().isValid():
-            QGuiApplication.clipboard().setText(self.rows.line(self.currentIndex().row()))
         else:
             super().keyPressEvent(event)
 
@@ -139,11 +95,6 @@ class FactTable(QTableView):
         heading = QFontMetrics(face(CAPTION)).horizontalAdvance(self.rows.columns[column].heading)
         limit = 10_000 if self.rows.columns[column].is_figures else _WIDEST
         return min(max(widest, heading) + 2 * _SIDE + 6, max(limit, heading + 2 * _SIDE + 6))
-
-    def _tell(self, current: QModelIndex, _: QModelIndex) -> None:
-        if current.isValid():
-            top = self.rowViewportPosition(current.row()) + _HEAD_HIGH
-            self.row_reached.emit(top, self.rowHeight(current.row()))
 
 
 class _HeadPaint(QHeaderView):

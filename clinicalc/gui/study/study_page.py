@@ -10,11 +10,11 @@ from PySide6.QtWidgets import QVBoxLayout, QWidget
 from clinicalc.gui.errands import Errands
 from clinicalc.gui.file_choosing import FileChoices, Wanted
 from clinicalc.gui.form_deed import FormDeed
-from clinicalc.gui.models.progress_strip import ProgressStrip
-from clinicalc.gui.models.right_stack import RightStack
+from clinicalc.gui.form_place import FormPlace
+from clinicalc.gui.progress_strip import ProgressStrip
+from clinicalc.gui.right_stack import RightStack
 from clinicalc.gui.study.data_sheet import make_data_sheet
 from clinicalc.gui.study.fit_sheet import make_fit_sheet
-from clinicalc.gui.study.form_place import FormPlace
 from clinicalc.gui.study.model_sheet import make_model_sheet
 from clinicalc.gui.study.next_step import offer_of
 from clinicalc.gui.study.package_sheet import make_package_sheet

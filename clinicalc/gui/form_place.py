@@ -1,9 +1,9 @@
-"""The place of the forms over the step that is shown: one at a time, which is gone when it is done or left."""
+"""The place of the forms on the right side of a page: one at a time, which is gone when it is done or left."""
 
 from PySide6.QtCore import QObject, Signal
 
-from clinicalc.gui.form_deed import FormDeed
-from clinicalc.gui.models.right_stack import RightStack
+from clinicalc.gui.deedlike import Deedlike
+from clinicalc.gui.right_stack import RightStack
 
 
 class FormPlace(QObject):
@@ -17,15 +17,15 @@ class FormPlace(QObject):
     def __init__(self, stack: RightStack) -> None:
         super().__init__()
         self._stack = stack
-        self._deed: FormDeed | None = None
+        self._deed: Deedlike | None = None
 
     @property
     def is_open(self) -> bool:
         """Whether a form is on screen, or would be if its page were."""
         return self._deed is not None
 
-    def open(self, deed: FormDeed) -> None:
-        """Show a form over the step."""
+    def open(self, deed: Deedlike) -> None:
+        """Show a form in place of what the stack shows; one that is open already is left."""
         self.close()
         self._deed = deed
         deed.done.connect(self._finish)
@@ -33,9 +33,13 @@ class FormPlace(QObject):
         self._stack.cover(deed)
 
     def focus(self) -> None:
-        """The focus into the form."""
+        """The focus back into the form, where it was."""
         if self._deed is not None:
-            self._deed.focus_first()
+            inside = self._deed.focusWidget()
+            if inside is not None and inside.isVisible() and inside.isEnabled():
+                inside.setFocus()
+            else:
+                self._deed.focus_first()
 
     def forget(self) -> None:
         """The passphrases typed in an open form go: it is out of sight."""
