@@ -4,16 +4,17 @@ from collections.abc import Callable
 
 import pytest
 from PySide6.QtCore import QSize
-from PySide6.QtWidgets import QLabel, QMenu
+from PySide6.QtWidgets import QMenu
 from pytestqt.qtbot import QtBot
 
-from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
+from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.models.deeds.given import LibraryDeed
 from clinicalc.gui.models.models_page import ModelsPage
 from clinicalc.operations.model_card import Deed
 from tests.gui.models.conftest import wait_until_read
 from tests.gui.models.shelves import HELD, IN_USE, REFUSED, WAITING, FullShelf
-from tests.gui.test_walks import walk
+from tests.gui.page_walks import walk_page
+from tests.gui.test_walks import SIZES
 from tests.gui.walking import settle
 
 pytestmark = [
@@ -21,15 +22,6 @@ pytestmark = [
     # the screenless platform says so when a menu or a window beside ours opens
     pytest.mark.qt_log_ignore("This plugin does not support"),
 ]
-SIZES = pytest.mark.parametrize("size", [QSize(1280, 800), SMALLEST, NARROWEST], ids=["usual", "small", "double text"])
-
-
-def walk_page(window: MainWindow, monkeypatch: pytest.MonkeyPatch) -> dict[str, list[str]]:
-    """What is wrong; the walk takes every tip for markup, and the hidden page of the patient has a walk of its own."""
-    settle()
-    for line in window.bedside.findChildren(QLabel):
-        line.setToolTip("")
-    return walk(window, monkeypatch)
 
 
 @SIZES

@@ -2,34 +2,25 @@
 
 import pytest
 from PySide6.QtCore import QSize
-from PySide6.QtWidgets import QLabel, QLineEdit
+from PySide6.QtWidgets import QLineEdit
 from pytestqt.qtbot import QtBot
 
 from clinicalc.gui import theme
 from clinicalc.gui.form_deed import FormDeed
-from clinicalc.gui.main_window import NARROWEST, SMALLEST, MainWindow
+from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_foot import Next
 from clinicalc.gui.study.study_page import StudyPage
 from clinicalc.settings import ThemeChoice
+from tests.gui.page_walks import walk_page
 from tests.gui.study.conftest import rest
 from tests.gui.study.study_files import StudyFiles
-from tests.gui.test_walks import walk
-from tests.gui.walking import settle
+from tests.gui.test_walks import SIZES
 
 pytestmark = [
     pytest.mark.gui,
     pytest.mark.qt_log_ignore("This plugin does not support"),
 ]
-SIZES = pytest.mark.parametrize("size", [QSize(1280, 800), SMALLEST, NARROWEST], ids=["usual", "small", "double text"])
-
-
-def walk_page(window: MainWindow, monkeypatch: pytest.MonkeyPatch) -> dict[str, list[str]]:
-    """What is wrong; the walk takes every tip for markup, and the hidden page of the patient has a walk of its own."""
-    settle()
-    for line in window.bedside.findChildren(QLabel):
-        line.setToolTip("")
-    return walk(window, monkeypatch)
 
 
 @SIZES
