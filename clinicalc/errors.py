@@ -60,10 +60,14 @@ class UsageError(ClinicalcError):
 
 @dataclass(frozen=True, slots=True)
 class Problem:
-    """One fault of a coefficient file: `path` is a JSON Pointer into it ("" for the file itself)."""
+    """One fault of a coefficient file: `path` is a JSON Pointer into it ("" for the file itself).
+
+    `offers` are the penalties that would give a fit which has no estimate without one, for a window to offer.
+    """
 
     path: str
     message: str
+    offers: tuple[str, ...] = ()
 
     def __str__(self) -> str:
         return f"{self.path}: {self.message}" if self.path else self.message

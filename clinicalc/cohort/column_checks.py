@@ -31,7 +31,7 @@ def check_values(raw: RawColumn, label: str, values: Numbers, missing: Mask, lin
         yield DataProblem(Grade.STOP, raw.name, ProblemCode.CONSTANT, int(known.sum()), (), said)
     if count:
         many = count >= MANY_MISSING * people
-        said = f"{named}: missing in {count} of {people} lines ({share_words(count, people)})."
+        said = f"{named}: missing in {count:,} of {people:,} lines ({share_words(count, people)})."
         said += " A fit of complete cases leaves so many out, and holds only if they differ in nothing else." * many
         gravity = Grade.CAUTION if many else Grade.NOTE
         yield DataProblem(gravity, raw.name, ProblemCode.MISSING, count, see(missing, lines).lines, said)

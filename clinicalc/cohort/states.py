@@ -34,8 +34,8 @@ def take_states(raw: RawColumn, plan: OutcomePlan, lines: Lines) -> tuple[Number
 
 def tell_missing_outcome(column: str, count: int, of: int, lines: tuple[int, ...]) -> DataProblem:
     """What is said where the outcome of some people is not known."""
-    said = f"{name_column(column)} says nothing in {count} of {of} lines ({share_words(count, of)}): without an outcome"
-    said += " these people cannot be used in a fit."
+    said = f"{name_column(column)} says nothing in {count:,} of {of:,} lines ({share_words(count, of)}): without an"
+    said += " outcome these people cannot be used in a fit."
     gravity = Grade.CAUTION if count >= _MANY_MISSING * of else Grade.NOTE
     return DataProblem(gravity, column, ProblemCode.OUTCOME_MISSING, count, lines, said)
 

@@ -1,5 +1,7 @@
 """A term of an equation in words: what its coefficient is multiplied with, and figures as the file has them."""
 
+from collections.abc import Callable
+
 from msgspec import UnsetType
 
 from clinicalc.coefficients.products import products_of
@@ -20,29 +22,33 @@ _WORDS = {
 }
 
 
-def say_term(term: Term) -> str:
-    """The products of a term in words: "age x (systolic_bp: natural logarithm, minus 4.8)"."""
-    products = [" x ".join(_factor(factor) for factor in product) for product in products_of(term)]
+def say_term(term: Term, say: Callable[[float], str] | None = None) -> str:
+    """The products of a term in words: "age x (systolic_bp: natural logarithm, minus 4.8)".
+
+    `say` writes its figures, where they are to be other than as the file has them.
+    """
+    say = say or say_figure
+    products = [" x ".join(_factor(factor, say) for factor in product) for product in products_of(term)]
     return products[0] if len(products) == 1 else f"sum of [{'; '.join(products)}]"
 
 
-def _factor(factor: Factor) -> str:
+def _factor(factor: Factor, say: Callable[[float], str]) -> str:
     if isinstance(factor.steps, UnsetType) or not factor.steps:
         return factor.of
-    return f"({factor.of}: {', '.join(_step(step) for step in factor.steps)})"
+    return f"({factor.of}: {', '.join(_step(step, say) for step in factor.steps)})"
 
 
-def _step(step: Step) -> str:
+def _step(step: Step, say: Callable[[float], str]) -> str:
     kind = kind_of(step)
     if not isinstance(step.spline, UnsetType):
-        knots = say_figures(step.spline.knots)
+        knots = " ".join(say(knot) for knot in step.spline.knots)
         return f"restricted cubic spline basis {step.spline.basis}, knots {knots}"
     if not isinstance(step.is_, UnsetType):
         return f"is {' or '.join(step.is_)}"
     if kind is StepKind.LOG:
         return "natural logarithm"
     value = getattr(step, "from_" if kind is StepKind.FROM else kind.value)
-    return _WORDS[kind].format(say_figure(value))
+    return _WORDS[kind].format(say(value))
 
 
 def say_figure(value: float) -> str:

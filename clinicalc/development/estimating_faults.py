@@ -2,30 +2,51 @@
 
 from collections.abc import Iterator, Sequence
 
+from msgspec import UnsetType
+
 from clinicalc.assessment.findings import Grade
 from clinicalc.coefficients.pointers import listed, quoted
-from clinicalc.development.estimating_one import Ground
+from clinicalc.development.estimated_penalised import SEPARATION, ease_separation
+from clinicalc.development.fit_ground import Ground
 from clinicalc.development.study_screening import screen_fit
 from clinicalc.errors import FitRefused, Problem
 from clinicalc.estimation.faults import FitFault
 from clinicalc.estimation.screened import Screened
 from clinicalc.estimation.screening_words import word_screened
 
+_PENALTIES = {"logistic": ("firth", "ridge"), "cox": ("ridge",)}
+
 
 def say_stops(screened: Sequence[Screened], ground: Ground) -> Iterator[Problem]:
     """What a screening says against a fit, at the table of the fit."""
     for one in screened:
         if one.gravity is Grade.STOP:
-            yield Problem(f"estimate.{ground.plan.id}", word_screened(one))
+            offers = penalties_for(ground) if one.code in SEPARATION else ()
+            yield Problem(f"estimate.{ground.plan.id}", f"{word_screened(one)}{_offer(offers, ground)}", offers)
 
 
 def say_refused(refused: FitRefused, ground: Ground) -> tuple[Problem, ...]:
     """The refusal of the engine in the words of the study; what screening finds comes first, as it says more."""
     screening = screen_fit(ground.model, ground.equations, ground.people, ground.cohort)
-    stops = tuple(say_stops(screening.found, ground))
+    stops = tuple(say_stops(ease_separation(screening.found, ground.plan.table), ground))
     if stops:
         return stops
-    return (Problem(f"estimate.{ground.plan.id}", _sentence(refused, ground)),)
+    offers = penalties_for(ground) if refused.code == FitFault.SEPARATED else ()
+    return (Problem(f"estimate.{ground.plan.id}", f"{_sentence(refused, ground)}{_offer(offers, ground)}", offers),)
+
+
+def penalties_for(ground: Ground) -> tuple[str, ...]:
+    """The penalties with which a fit that has no estimate has one; none where it has a penalty already."""
+    table = ground.plan.table
+    return _PENALTIES.get(table.kind, ()) if isinstance(table.penalty, UnsetType) else ()
+
+
+def _offer(penalties: Sequence[str], ground: Ground) -> str:
+    """What may be written instead; nothing is switched without its being written."""
+    if not penalties:
+        return ""
+    lines = " or ".join(f'penalty = "{penalty}"' for penalty in penalties)
+    return f" Or say {lines} in [estimate.{ground.plan.id}]: with a penalty every coefficient is finite."
 
 
 def _sentence(refused: FitRefused, ground: Ground) -> str:

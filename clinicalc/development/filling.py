@@ -62,7 +62,7 @@ def find_said_twice(equation: Mapping[str, object], kind: FitKind, base: str) ->
     competing = equation.get("competing_events")
     handled = competing.get("handled") if isinstance(competing, dict) else None
     if isinstance(handled, str) and (handled == "subdistribution") != (kind is FitKind.FINE_GRAY):
-        wrong = 'a Fine-Gray fit handles competing events as "subdistribution"'
+        wrong = 'a Fine–Gray fit handles competing events as "subdistribution"'
         if kind is not FitKind.FINE_GRAY:
             wrong = f'a {kind} fit is not of a subdistribution; say "censored" or "not_applicable"'
         yield Problem(point(base, "competing_events", "handled"), f"{wrong}, and {quoted(handled)} stands here.")

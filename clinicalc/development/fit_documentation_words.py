@@ -2,8 +2,17 @@
 
 from collections.abc import Callable, Sequence
 
-from clinicalc.assessment.numerals import NARROW_SPACE, join_words, plain
+from clinicalc.assessment.numerals import NARROW_SPACE, plain
 from clinicalc.coefficients.pointers import visible
+from clinicalc.development.fit_method_words import (
+    percent,
+    say_corrected,
+    say_counted,
+    say_filled,
+    say_incidences,
+    say_missing,
+    say_optimism,
+)
 from clinicalc.development.stated_fit import MinimumSize, StatedFit
 from clinicalc.estimation.sample_size import ASSUMED_SHARE, R2Origin
 
@@ -11,8 +20,6 @@ Texts = tuple[str, ...]
 """One text for each item that is needed, none where there is nothing to say."""
 
 _LONGEST = 4000  # of a text in a coefficient file
-_MOST_NAMED = 20
-"""Columns with missing values that are named for one equation; a label has up to 120 characters."""
 
 
 def word_people(figures: Sequence[StatedFit]) -> Texts:
@@ -48,6 +55,11 @@ def word_discrimination(figures: Sequence[StatedFit]) -> Texts:
 def word_calibration(figures: Sequence[StatedFit]) -> Texts:
     """The apparent calibration slope, and what it does not say."""
     return _join(figures, _calibration)
+
+
+def word_internal(figures: Sequence[StatedFit]) -> Texts:
+    """What the bootstrap made of the figures of performance; nothing where there was none."""
+    return _join(figures, say_optimism)
 
 
 def word_specification(figures: Sequence[StatedFit]) -> Texts:
@@ -90,7 +102,8 @@ def _people(fit: StatedFit) -> str:
         each = " for 1 coefficient"
     elif fit.parameters:
         each = f"; {plain(fit.events / fit.parameters)} events for each of {fit.parameters} coefficients"
-    return f"{_counted(fit.people)}, {_counted(fit.events, 'event', 'events')} ({share}){competing}{each}."
+    counted = f"{say_counted(fit.people)}, {say_counted(fit.events, 'event', 'events')} ({share}){competing}{each}."
+    return " ".join([counted, *say_incidences(fit)])
 
 
 def _needed(fit: StatedFit) -> str:
@@ -123,18 +136,7 @@ def _follow_up(fit: StatedFit) -> str:
 
 
 def _missing(fit: StatedFit) -> str:
-    holes = sorted((hole for hole in fit.missing if hole.people), key=lambda hole: -hole.people)
-    whole = fit.people + fit.left_out
-    if not holes and not fit.left_out:
-        return "None."
-    left = f"{_counted(fit.left_out)} of {whole:,} were left out" if fit.left_out else "Nobody was left out"
-    if not holes:
-        return f"{left}; no predictor is missing for anybody."
-    named = [f"{visible(hole.label)} {hole.people:,} ({_percent(hole.people, whole)})" for hole in holes[:_MOST_NAMED]]
-    more = len(holes) - len(named)
-    others = f", and {more} more with fewer each" if more else ""
-    listed = ", ".join(named) if more else join_words(named)
-    return f"{left}; only complete cases were used. Missing: {listed}{others}."
+    return say_missing(fit) if fit.filling is None else say_filled(fit, fit.filling)
 
 
 def _discrimination(fit: StatedFit) -> str:
@@ -143,30 +145,26 @@ def _discrimination(fit: StatedFit) -> str:
         return ""
     return (
         f"C statistic {c.value:.3f} ({100 * c.level:g}{NARROW_SPACE}% interval {c.lower:.3f} to {c.upper:.3f}) in the"
-        " people the model was fitted to, not corrected for optimism."
+        f" people the model was fitted to, {say_corrected(fit)}."
     )
 
 
 def _calibration(fit: StatedFit) -> str:
-    if fit.calibration_slope is None:
-        return ""
-    return (
-        f"Slope {fit.calibration_slope:.2f} in the people the model was fitted to, where maximum likelihood makes it 1;"
-        " it says nothing about other people."
-    )
+    texts = []
+    if fit.calibration_slope is not None:
+        slope = fit.calibration_slope
+        why = "where maximum likelihood makes it 1" if slope.is_exact else "as the penalty left it"
+        texts.append(
+            f"Slope {slope.value:.2f} in the people the model was fitted to, {why}; it says nothing about other people."
+        )
+    if fit.mean is not None:
+        texts.append(f"Mean predicted there {percent(fit.mean.predicted)}, observed {percent(fit.mean.observed)}.")
+    return " ".join(texts)
 
 
 def _software(fit: StatedFit) -> str:
     named = [f"{visible(name)} {visible(version)}".strip() for name, version in fit.software]
     return f"{', '.join(named)}." if named else ""
-
-
-def _counted(count: int, one: str = "person", many: str = "people") -> str:
-    return f"{count:,} {one if count == 1 else many}"
-
-
-def _percent(part: int, whole: int) -> str:
-    return f"{100.0 * part / whole:.1f}{NARROW_SPACE}%"
 
 
 def _closed(text: str) -> str:

@@ -78,7 +78,7 @@ def _check_covariance_kind(reading: FitReading, kind: FitKind) -> None:
     elif kind is FitKind.FINE_GRAY and covariance_kind != "robust":
         reading.say(
             "covariance_kind",
-            "the covariance of a Fine-Gray fit must be robust: its weights make the model-based one wrong. In R:"
+            "the covariance of a Fine–Gray fit must be robust: its weights make the model-based one wrong. In R:"
             " coxph(..., weights = fgwt, data = finegray(...)) with cluster(id); vcov(fit) is then the robust one.",
         )
 

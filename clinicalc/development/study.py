@@ -4,29 +4,30 @@ import os
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 from pathlib import Path
+from typing import TypeVar
 
 import msgspec
-from msgspec import UNSET, UnsetType
+from msgspec import UnsetType
 
 from clinicalc.coefficients.pointers import point, quoted, suggest
 from clinicalc.coefficients.schema import ModelContent
 from clinicalc.coefficients.shape import find_shape_problems
 from clinicalc.cohort.dictionary import DataDictionary
 from clinicalc.development.description import Description, describe, parse_description
-from clinicalc.development.filling import find_said_twice
 from clinicalc.development.fit import FitKind
 from clinicalc.development.package import check_before_fits
 from clinicalc.development.places import spell_place
 from clinicalc.development.study_dictionary import find_cohort_problems, make_dictionary
+from clinicalc.development.study_equations import find_equation_problems
 from clinicalc.development.study_strata import FitPlan, find_strata_problems, spread_strata
 from clinicalc.development.study_tables import (
     BinaryTable,
+    BootstrapTable,
     CohortTable,
     ColumnTable,
     EstimateTable,
+    ImputationTable,
     StudyTables,
-    TimeToEventTable,
-    spell_cells,
 )
 from clinicalc.development.study_terms import (
     Tree,
@@ -39,7 +40,9 @@ from clinicalc.development.study_terms import (
 from clinicalc.development.tables import Fault, read_text
 from clinicalc.errors import DescriptionRefused, Problem
 
-_TABLES = ("cohort", "estimate")
+_TABLES = ("cohort", "estimate", "imputation", "bootstrap")
+
+_Table = TypeVar("_Table", ImputationTable, BootstrapTable)
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -57,6 +60,8 @@ class Study:
     dictionary: DataDictionary
     cohort_file: Path
     fits: tuple[FitPlan, ...]
+    imputation: ImputationTable | None = None
+    bootstrap: BootstrapTable | None = None
 
 
 def read_study(path: Path) -> Study:
@@ -80,7 +85,7 @@ def take_study(text: str, name: str, folder: Path) -> Study:
     shorthands = list(find_shorthand_problems(description.model))
     said += shorthands
     answers = answers_of(description.model)
-    said += _find_equation_problems(description.model, tables, cohort, beside)
+    said += find_equation_problems(description.model, tables, cohort, beside)
     said += find_strata_problems(description.model, tables, answers)
     said += find_cohort_problems(cohort or _take_columns(beside), _all_answers(description.model))
     placed = [Problem(spell_place(problem.path, description.model), problem.message) for problem in said]
@@ -93,7 +98,16 @@ def take_study(text: str, name: str, folder: Path) -> Study:
         raise DescriptionRefused(name, tuple(dict.fromkeys(placed)))
     ids = tuple(predictor.id for predictor in content.predictors)
     dictionary = make_dictionary(cohort, ids, _cluster_of(tables))
-    return Study(name, description, content, dictionary, folder / cohort.file, plans)
+    return Study(
+        name=name,
+        description=description,
+        content=content,
+        dictionary=dictionary,
+        cohort_file=folder / cohort.file,
+        fits=plans,
+        imputation=_take_table(beside, "imputation", ImputationTable),
+        bootstrap=_take_table(beside, "bootstrap", BootstrapTable),
+    )
 
 
 def _stood_in(description: Description, answers: Mapping[str, tuple[str, ...]]) -> Description:
@@ -133,6 +147,11 @@ def _take_cohort(beside: Mapping[str, object]) -> CohortTable | None:
         return None
 
 
+def _take_table(beside: Mapping[str, object], name: str, kind: type[_Table]) -> _Table | None:
+    """A table that may be left out; its faults have been said."""
+    return msgspec.convert(beside[name], kind) if name in beside else None
+
+
 def _take_columns(beside: Mapping[str, object]) -> CohortTable:
     """The columns of a [cohort] that has another fault, with no outcome that anything could be said of."""
     cohort = beside.get("cohort")
@@ -170,73 +189,6 @@ def _with_links(model: Mapping[str, object], tables: Mapping[str, EstimateTable]
         table = tables.get(str(equation.get("id"))) if isinstance(equation, dict) else None
         filled.append(equation if table is None else {**equation, "link": FitKind(table.kind).link})
     return {**model, "equations": filled}
-
-
-def _find_equation_problems(
-    model: Mapping[str, object],
-    tables: Mapping[str, EstimateTable],
-    cohort: CohortTable | None,
-    beside: Mapping[str, object],
-) -> Iterator[Problem]:
-    equations = {str(equation.get("id")): equation for equation in parts(model, "equations")}
-    stated = beside.get("estimate")
-    stated = stated if isinstance(stated, dict) else {}
-    for id in stated:
-        if id not in equations:
-            yield Problem(point("/estimate", id), f"there is no equation {quoted(id)}.{suggest(id, equations)}")
-    clusters = {table.cluster for table in tables.values()} - {UNSET}
-    for place, (id, equation) in enumerate(equations.items()):
-        if id not in stated:
-            yield Problem(
-                point("/model/equations", place), f"there is no table [estimate.{id}] that says how to fit it."
-            )
-        if id not in tables:
-            continue
-        yield from find_said_twice(equation, FitKind(tables[id].kind), point("/model/equations", place))
-        yield from _judge_table(tables[id], point("/estimate", id), len(clusters))
-        if cohort is not None:
-            yield from _judge_outcome(tables[id], cohort, equation, place)
-
-
-def _judge_table(table: EstimateTable, path: str, clusters: int) -> Iterator[Problem]:
-    if table.kind != "cox":
-        for name in ("ties", "strata", "round_times"):
-            if getattr(table, name) is not UNSET:
-                yield Problem(
-                    point(path, name), f"this is for kind = {quoted('cox')} only, and here stands {table.kind}."
-                )
-    if (table.covariance == "cluster") != (table.cluster is not UNSET):
-        yield Problem(
-            path, 'covariance = "cluster" and cluster = "..." (a column of the file) are said together, or neither.'
-        )
-    elif clusters > 1 and table.cluster is not UNSET:
-        yield Problem(point(path, "cluster"), "all equations of a study take the same column of clusters.")
-
-
-def _judge_outcome(table: EstimateTable, cohort: CohortTable, equation: Tree, place: int) -> Iterator[Problem]:
-    timed = isinstance(cohort.outcome, TimeToEventTable)
-    if table.kind != "cox" and len(parts(equation, "horizons")) > 1:
-        yield Problem(
-            point("/model/equations", place, "horizons"), f"a {table.kind} fit has one horizon, and several stand here."
-        )
-    path = point("/estimate", str(equation.get("id")), "kind")
-    if table.kind == "cox" and not timed:
-        yield Problem(path, 'a Cox fit needs a time: outcome = {kind = "time_to_event", ...} in [cohort].')
-    elif table.kind != "cox" and timed:
-        yield Problem(
-            path,
-            f'a {table.kind} fit needs an outcome known of everybody, outcome = {{kind = "binary", ...}}; with times '
-            'say kind = "cox", because people whose follow-up ended early are neither with nor without the event.',
-        )
-    if isinstance(cohort.outcome, TimeToEventTable) and spell_cells(cohort.outcome.competing):
-        stated = equation.get("competing_events")
-        if isinstance(stated, dict) and stated.get("handled") == "not_applicable":
-            yield Problem(
-                point("/model/equations", place, "competing_events", "handled"),
-                "the cohort names competing events, and a Cox fit takes them as censored: say "
-                'competing_events = {handled = "censored", which = "..."}. Its probability is then that of a world '
-                "without them, which is higher than the share of people who will have the event.",
-            )
 
 
 def _cluster_of(tables: Mapping[str, EstimateTable]) -> str:

@@ -15,6 +15,9 @@ from clinicalc.development.estimating import FittedStudy
 from clinicalc.development.fit_documentation import OF_THE_FIT, FitDocumentation, Item, document_fit
 from clinicalc.development.stated_fit import MinimumSize, MissingShare, StatedConcordance, StatedFit, StatedFollowUp
 from clinicalc.development.study_figures import FitFigures
+from clinicalc.development.study_method_figures import Penalty, PenaltyFigures
+from clinicalc.development.study_methods_stated import state_filling, state_incidences, state_mean, state_optimism
+from clinicalc.development.study_slopes import find_slope
 from clinicalc.development.study_terms import Tree
 from clinicalc.estimation.concordance import Concordance
 from clinicalc.estimation.sample_size import R2Origin
@@ -22,6 +25,7 @@ from clinicalc.estimation.sample_size import R2Origin
 _LEVEL_Z = 1.959963984540054  # the 97.5 % point of the normal distribution
 _METHODS = {
     "cox": "Cox proportional hazards model by maximum partial likelihood",
+    "fine-gray": "Fine\u2013Gray subdistribution hazards model by maximum weighted partial likelihood",
     "logistic": "Logistic regression by maximum likelihood",
     "cloglog": "Binomial regression with complementary log-log link by maximum likelihood",
 }
@@ -29,6 +33,10 @@ _COVARIANCES = {
     "model": "covariance from the information",
     "robust": "robust (sandwich) covariance",
     "cluster": "robust (sandwich) covariance over clusters",
+}
+_PENALISED_COVARIANCES = {
+    Penalty.FIRTH: "covariance from the information at the estimate",
+    Penalty.RIDGE: "covariance by Gray (J Am Stat Assoc 1992;87:942), which holds nothing of what shrinking moves",
 }
 
 
@@ -73,31 +81,52 @@ def _state(fitted: FittedStudy, figures: FitFigures) -> StatedFit:
         software=_software(figures),
         follow_up=_follow_up(figures),
         concordance=None if figures.concordance is None else _limits(figures.concordance),
-        # the likelihood is flat along the estimated terms; with fixed ones among them that says nothing of the sum
-        calibration_slope=None if _has_fixed_terms(fitted, figures) else 1.0,
+        calibration_slope=find_slope(fitted, figures),
         minimum=None if size is None else MinimumSize(size, R2Origin.APPARENT),
+        filling=state_filling(figures, labels),
+        optimism=state_optimism(figures),
+        incidences=tuple(state_incidences(figures)),
+        mean=state_mean(figures),
     )
-
-
-def _has_fixed_terms(fitted: FittedStudy, figures: FitFigures) -> bool:
-    equation = next(one for one in fitted.model.equations if one.content.id == figures.equations[0])
-    return any(term.fixed for term in equation.terms)
 
 
 def _method(fitted: FittedStudy, figures: FitFigures) -> str:
     table = next(plan.table for plan in fitted.study.fits if plan.id == figures.id)
-    parts = [_METHODS[figures.kind]]
+    penalty = figures.penalty
+    parts = [_METHODS[figures.kind] if penalty is None else _penalised(figures.kind, penalty)]
     if figures.kind == "cox":
         parts.append(f"ties by {'Breslow' if table.ties == 'breslow' else 'Efron'}")
         if isinstance(table.strata, str):
             parts.append(f"in strata of {table.strata}")
-    if fitted.study.dictionary.outcome.competing:
+    if figures.kind == "fine-gray":
+        parts.append(f"ties by {'Efron' if table.ties == 'efron' else 'Breslow'}")
+        parts.append(
+            "people with a competing event weighted by the Kaplan\u2013Meier estimate of not being censored, an event "
+            "before a censoring at the same time"
+        )
+    elif fitted.study.dictionary.outcome.competing:
         parts.append("competing events taken as censored")
-    return ", ".join([*parts, _COVARIANCES[table.covariance], "complete cases"])
+    covariance = _COVARIANCES[table.covariance_kind]
+    if penalty is not None and table.covariance_kind == "model":
+        covariance = _PENALISED_COVARIANCES[penalty.kind]
+    values = "complete cases" if figures.imputed is None else "missing values filled in by multiple imputation"
+    return ", ".join([*parts, covariance, values])
+
+
+def _penalised(kind: str, penalty: PenaltyFigures) -> str:
+    if penalty.kind is Penalty.FIRTH:
+        return "Logistic regression by Firth’s penalised likelihood (Biometrika 1993;80:27)"
+    how = f"chosen by 10-fold cross-validation{penalty.chosen_anew}" if penalty.chosen else "stated beforehand"
+    strength = "" if penalty.strength is None else f" of strength {penalty.strength:.6g}, {how}"
+    model = "Cox proportional hazards model by partial likelihood" if kind == "cox" else "Logistic regression"
+    return (
+        f"{model} with a ridge penalty{strength}, on the coefficients per standard deviation, which leaves"
+        f" {penalty.degrees:.1f} effective degrees of freedom"
+    )
 
 
 def _software(figures: FitFigures) -> tuple[tuple[str, str], ...]:
-    names = ("numpy",) if figures.kind == "cox" else ("numpy", "statsmodels")
+    names = ("numpy",) if figures.kind in ("cox", "fine-gray") else ("numpy", "statsmodels")
     found = tuple((name, version(name)) for name in names)
     return (("clinicalc", __version__), ("Python", platform.python_version()), *found)
 

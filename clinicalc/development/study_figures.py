@@ -4,6 +4,12 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from clinicalc.coefficients.spans import Span
+from clinicalc.development.study_method_figures import (
+    CompetingFigures,
+    ImputationFigures,
+    OptimismFigures,
+    PenaltyFigures,
+)
 from clinicalc.estimation.concordance import Concordance
 from clinicalc.estimation.sample_size import SampleSize
 from clinicalc.estimation.screened import Screened
@@ -45,9 +51,12 @@ class FollowUp:
 class FitFigures:
     """One fit of a study, by its id there; `terms` counts the estimated ones, without an intercept.
 
-    `competing` counts competing events, taken as censored. `follow_up` and `horizons` are those of a Cox fit;
-    `concordance` is apparent, in the people of the fit, None where people came under observation late. `minimum` is the
-    sample needed with the fit's own R2, adjusted for optimism; None where it cannot be worked out.
+    `competing` counts competing events, which a Cox fit takes as censored and a Fine–Gray fit counts as such.
+    `follow_up` and `horizons` are those of a fit to times; `concordance` is apparent, in the people of the fit, None
+    where people came under observation late. `minimum` is the sample needed with the fit's own R2, adjusted for
+    optimism; None where it cannot be worked out. `incidences` are one a horizon and equation where there are competing
+    events. With `imputed` the log likelihoods are means over the
+    sets, coefficients and C are pooled.
     """
 
     id: str
@@ -65,6 +74,10 @@ class FitFigures:
     horizons: tuple[HorizonFigures, ...]
     screened: tuple[Screened, ...]
     minimum: SampleSize | None = None
+    penalty: PenaltyFigures | None = None
+    imputed: ImputationFigures | None = None
+    optimism: OptimismFigures | None = None
+    incidences: tuple[CompetingFigures, ...] = ()
 
     @property
     def events_per_term(self) -> float:

@@ -40,7 +40,8 @@ def lay_knots(equation: Mapping[str, object], people: FitPeople) -> LaidKnots:
 
 
 def _values_of(spline: SplineOf, people: FitPeople) -> Column:
-    values = np.ascontiguousarray(people.columns[spline.spline_of][people.complete])
+    values = people.columns[spline.spline_of][people.complete]
+    values = np.ascontiguousarray(values[~np.isnan(values)])  # where values are filled in, of those who have them
     with np.errstate(all="ignore"):
         for step in spline.steps:
             values = apply_transform(compile_step(step, {}), values)

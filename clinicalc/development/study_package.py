@@ -9,6 +9,7 @@ from clinicalc.cohort.course import UNWATCHED, Course
 from clinicalc.development.description import Description
 from clinicalc.development.estimating import FittedStudy
 from clinicalc.development.package import Package, package_model
+from clinicalc.development.study_cautions import with_cautions
 from clinicalc.development.study_documentation import document_study, with_documentation
 from clinicalc.development.study_patients import make_patients
 from clinicalc.development.study_population import with_populations
@@ -46,10 +47,14 @@ def complete(fitted: FittedStudy) -> tuple[Description, tuple[str, ...]]:
     other = tuple(remark_other_figures(fitted, model))
     model, remarks = with_populations(fitted, model)
     remarks = (*other, *remarks)
-    model = with_documentation(fitted, model)
+    model = with_cautions(fitted, with_documentation(fitted, model))
     patients = fitted.description.patients or make_patients(fitted)
     unanswered = document_study(fitted).unanswered
     if unanswered:
-        told = f"The documentation does not answer: {', '.join(unanswered)}. Answers go into [[documentation]]."
-        remarks = (*remarks, told)
+        remarks = (*remarks, say_unanswered(unanswered))
     return replace(fitted.description, model=model, patients=patients, fits={}), remarks
+
+
+def say_unanswered(items: tuple[str, ...]) -> str:
+    """The remark that names the items of the documentation which nobody answered."""
+    return f"The documentation does not answer: {', '.join(items)}. Answers go into [[documentation]]."

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 from clinicalc.assessment.model import Model, ModelEquation, prepare_model
 from clinicalc.assessment.worked_out import work_out
 from clinicalc.coefficients.reader import ReadFile
-from clinicalc.coefficients.schema import CoefficientFile, ModelContent
+from clinicalc.coefficients.schema import ChoicePredictor, CoefficientFile, ModelContent
 from clinicalc.cohort.checked import BinaryOutcome, CheckedCohort, SurvivalOutcome
 from clinicalc.covariates.design import DesignTerm, answer_codes
 from clinicalc.development.study_strata import FitPlan
@@ -25,7 +25,8 @@ class FitPeople:
 
     `stratum` (m,) is the place of each one's equation among those of the fit. `columns` has, with NaN where missing,
     the predictors used and the values worked out from them. `complete` are the n of them that have every value and the
-    outcome: a fit is made from these.
+    outcome, or lack only values that are filled in: a fit is made from these. Columns have what people had; what was
+    filled in stands in the people of each set, who lack nothing.
     """
 
     rows: Codes
@@ -49,8 +50,11 @@ def equations_of(model: Model, plan: FitPlan) -> tuple[ModelEquation, ...]:
     return tuple(equation for equation in model.equations if equation.content.id in plan.equations)
 
 
-def choose_people(model: Model, plan: FitPlan, cohort: CheckedCohort) -> FitPeople:
-    """Those to whom one of the fit's equations applies, with everything its terms are made of."""
+def choose_people(model: Model, plan: FitPlan, cohort: CheckedCohort, *, fill: bool = False) -> FitPeople:
+    """Those to whom one of the fit's equations applies, with everything its terms are made of.
+
+    With `fill`, those who lack only what can be filled in are `complete` too.
+    """
     equations = equations_of(model, plan)
     stratum = np.full(cohort.rows, -1, dtype=np.int64)
     codes = answer_codes(model.content)
@@ -62,9 +66,10 @@ def choose_people(model: Model, plan: FitPlan, cohort: CheckedCohort) -> FitPeop
     rows = np.flatnonzero(stratum >= 0)
     columns = _columns_of(model, equations, cohort, rows)
     complete = ~_outcome_missing(cohort)[rows]
-    for column in columns.values():
-        complete &= np.isfinite(column)
-    if cohort.cluster is not None and plan.table.covariance == "cluster":
+    gaps = _gaps_of(model, equations, columns) if fill else {}
+    for id, column in columns.items():
+        complete &= np.isfinite(column) | gaps.get(id, False)
+    if cohort.cluster is not None and plan.table.covariance_kind == "cluster":
         complete &= cohort.cluster[rows] >= 0
     return FitPeople(rows, stratum[rows], columns, complete)
 
@@ -93,10 +98,42 @@ def term_columns(terms: tuple[DesignTerm, ...], people: FitPeople) -> tuple[Colu
         return tuple(term.values(columns) for term in terms)
 
 
+def fillable_of(model: Model, equations: tuple[ModelEquation, ...]) -> tuple[str, ...]:
+    """Ids of the predictors used whose missing values can be filled in: numbers, and yes or no.
+
+    A choice of several answers is not, and neither is what decides which equation applies.
+    """
+    used = predictors_of(model, equations)
+    deciding = {id for equation in equations for id in equation.content.applies_when}
+    return tuple(
+        predictor.id
+        for predictor in model.content.predictors
+        if predictor.id in used and predictor.id not in deciding and not isinstance(predictor, ChoicePredictor)
+    )
+
+
+def _gaps_of(model: Model, equations: tuple[ModelEquation, ...], columns: Mapping[str, Column]) -> dict[str, Mask]:
+    """Where each column lacks what can be filled in, or what is worked out from something that can, (m,)."""
+    gaps = {id: np.isnan(columns[id]) for id in fillable_of(model, equations)}
+    for derived in model.content.derived:
+        if derived.id in columns:
+            masks = [gaps[id] for id in derived.inputs.values() if id in gaps]
+            gaps[derived.id] = np.logical_or.reduce(masks) if masks else np.zeros(len(columns[derived.id]), np.bool_)
+    return gaps
+
+
 def _columns_of(
     model: Model, equations: tuple[ModelEquation, ...], cohort: CheckedCohort, rows: Codes
 ) -> dict[str, Column]:
     columns = {id: np.ascontiguousarray(cohort.columns[id][rows]) for id in predictors_of(model, equations)}
+    return work_out_columns(model, equations, columns)
+
+
+def work_out_columns(
+    model: Model, equations: tuple[ModelEquation, ...], predictors: Mapping[str, Column]
+) -> dict[str, Column]:
+    """The columns of the predictors used, and with them the values that the equations work out from them."""
+    columns = dict(predictors)
     for derived in model.derived:
         if any(derived.id in equation.uses for equation in equations):
             found = work_out(model, derived, columns)

@@ -60,7 +60,7 @@ def _describe(fitted: FittedStudy, fit: str, place: int, equation: ModelEquation
     rows = people.complete & (people.stratum == place)
     predictors = fitted.model.content.predictors
     used = predictors_of(fitted.model, equations_of(fitted.model, next(p for p in fitted.study.fits if p.id == fit)))
-    values = {id: people.columns[id][rows] for id in used}
+    values = {id: _whole(fitted, fit, rows, id) for id in used}
     numbers = [_scale(p.id, values[p.id]) for p in predictors if isinstance(p, NumberPredictor) and p.id in values]
     numbers = [number for number in numbers if np.ptp(number.values) > 0]
     answers = [p.id for p in predictors if isinstance(p, YesNoPredictor) and p.id in values]
@@ -68,13 +68,22 @@ def _describe(fitted: FittedStudy, fit: str, place: int, equation: ModelEquation
     correlations = _correlate(numbers)
     if numbers and judge_matrix(rows_of(correlations), len(numbers), "numbers"):
         return f"The people of {equation.content.id} are not described: two of their numbers follow from one another."
+    filled = f", over {len(fitted.sets[fit])} sets of filled-in values" if fitted.sets[fit] else ""
     return {
-        "source": f"The {int(rows.sum()):,} people this was fitted to, described when it was packaged.",
+        "source": f"The {int(rows.sum()):,} people this was fitted to, described when it was packaged{filled}.",
         "numbers": [_moments(number) for number in numbers],
         "correlations": [list(row) for row in rows_of(correlations)],
         "yes_no": _answer_rows(answers, values, numbers),
         "choices": [_shares(choice, values[choice.id]) for choice in choices],
     }
+
+
+def _whole(fitted: FittedStudy, fit: str, rows: NDArray[np.bool_], id: str) -> Array:
+    """The values of these people; where some were filled in, those of all sets one after the other."""
+    people = fitted.people[fit]
+    if not fitted.sets[fit]:
+        return people.columns[id][rows]
+    return np.concatenate([each.columns[id][rows[people.complete]] for each in fitted.sets[fit]])
 
 
 def _scale(id: str, values: Array) -> _Number:

@@ -2,6 +2,8 @@
 
 from collections.abc import Iterator, Mapping
 
+import numpy as np
+
 from clinicalc.development.estimating import FittedStudy
 from clinicalc.development.study_figures import HorizonFigures
 from clinicalc.development.study_terms import Tree, parts
@@ -20,9 +22,9 @@ def with_ranges(fitted: FittedStudy, model: Tree) -> Tree:
 def observed(fitted: FittedStudy, id: str) -> tuple[float, float] | None:
     """Lowest and highest value of a predictor or derived value among those used; None where no fit uses it."""
     ends = [
-        (float(used.min()), float(used.max()))
+        (float(np.nanmin(used)), float(np.nanmax(used)))  # of those who have it, where values are filled in
         for people in fitted.people.values()
-        if id in people.columns and len(used := people.columns[id][people.complete])
+        if id in people.columns and np.isfinite(used := people.columns[id][people.complete]).any()
     ]
     if not ends:
         return None

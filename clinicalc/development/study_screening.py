@@ -38,7 +38,8 @@ def screen_fit(
 
     Columns are named after terms; where values are missing or levels rare, after predictors.
     """
-    whole = _outcome_of(cohort, people.rows, horizon)
+    waiting = equations[0].content.competing_events.handled == "subdistribution"
+    whole = _outcome_of(cohort, people.rows, horizon, waiting)
     terms = [term for term in equations[0].terms if not term.fixed]
     levels = _levels(model)
     values = [
@@ -54,7 +55,7 @@ def screen_fit(
     )
     missing = {column.name: int(np.isnan(column.values).sum()) for column in values}
     missing[""] = int((~np.isfinite(whole.events)).sum())
-    minimum = minimum_size(len(terms), _outcome_of(cohort, people.used, horizon), stated)
+    minimum = minimum_size(len(terms), _outcome_of(cohort, people.used, horizon, waiting), stated)
     return Screening(found, {id: count for id, count in missing.items() if count}, minimum)
 
 
@@ -96,11 +97,18 @@ def _answer_of(term: Term, choice: str) -> str:
     return steps[0].is_[0]
 
 
-def _outcome_of(cohort: CheckedCohort, rows: Codes, horizon: float | None) -> ScreenedOutcome:
+def _outcome_of(cohort: CheckedCohort, rows: Codes, horizon: float | None, waiting: bool) -> ScreenedOutcome:
+    """The outcome of these rows; where the fit is of a subdistribution, whoever had a competing event stays, `waiting`.
+
+    He stays until the last event, so that events for each person's time come to the share who have the event.
+    """
     outcome = cohort.outcome
     if isinstance(outcome, BinaryOutcome):
         return ScreenedOutcome(outcome.y[rows])
     status = outcome.status[rows]
     events: Column = np.where(np.isnan(status), np.nan, status == 1)
     entry = None if outcome.entry is None else outcome.entry[rows]
-    return ScreenedOutcome(events, outcome.times[rows], entry, horizon)
+    times = outcome.times[rows]
+    if waiting:
+        times = np.where(status == 2, np.maximum(times, times[status == 1].max(initial=0.0)), times)
+    return ScreenedOutcome(events, times, entry, horizon)

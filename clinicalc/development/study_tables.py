@@ -1,4 +1,5 @@
-"""The tables of a study that no description has: [cohort], the people, and [estimate], how an equation is fitted.
+"""The tables of a study that no description has: [cohort], the people, [estimate], how an equation is fitted, and
+[imputation] and [bootstrap], what is done about missing values and about optimism.
 
 Beside them the two shorthands of terms, which are written out before anything else sees them.
 """
@@ -58,19 +59,45 @@ class CohortTable(FileStruct, frozen=True):
 class EstimateTable(FileStruct, frozen=True):
     """How one equation is fitted. `strata` is a choice or yes/no predictor: each answer becomes its own equation."""
 
-    kind: Literal["cox", "logistic", "cloglog"]
+    kind: Literal["cox", "logistic", "cloglog", "fine-gray"]
     ties: Literal["efron", "breslow"] | UnsetType = UNSET
-    covariance: Literal["model", "robust", "cluster"] = "model"
+    covariance: Literal["model", "robust", "cluster"] | UnsetType = UNSET
     cluster: Text | UnsetType = UNSET
     strata: Id | UnsetType = UNSET
     round_times: Annotated[int, Meta(ge=0, le=12)] | UnsetType = UNSET
+    penalty: Literal["firth", "ridge"] | UnsetType = UNSET
+    ridge_strength: Annotated[float, Meta(gt=0)] | UnsetType = UNSET
+
+    @property
+    def covariance_kind(self) -> Literal["model", "robust", "cluster"]:
+        """The covariance that is meant: robust for a Fine–Gray fit, whose model covariance is not valid."""
+        if not isinstance(self.covariance, UnsetType):
+            return self.covariance
+        return "robust" if self.kind == "fine-gray" else "model"
+
+
+class ImputationTable(FileStruct, frozen=True):
+    """How values that are missing are filled in: so many sets of them, each after so many rounds over the columns."""
+
+    sets: Annotated[int, Meta(ge=2, le=200)] = 20
+    rounds: Annotated[int, Meta(ge=1, le=200)] = 10
+    seed: Annotated[int, Meta(ge=0)] = 1
+
+
+class BootstrapTable(FileStruct, frozen=True):
+    """How the optimism of a fit is found: so many samples drawn from its own people, from a fixed seed."""
+
+    replicates: Annotated[int, Meta(ge=20, le=5000)] = 500
+    seed: Annotated[int, Meta(ge=0)] = 1
 
 
 class StudyTables(FileStruct, frozen=True):
-    """Both of them, as they stand at the top of the file."""
+    """All of them, as they stand at the top of the file."""
 
     cohort: CohortTable
     estimate: Annotated[dict[Id, EstimateTable], Meta(min_length=1)]
+    imputation: ImputationTable | UnsetType = UNSET
+    bootstrap: BootstrapTable | UnsetType = UNSET
 
 
 class SplineOf(FileStruct, frozen=True):

@@ -119,11 +119,13 @@ def find_separated(scaled: Array, information: Array, null: Array) -> tuple[int,
 
 
 def has_inverse(information: Array) -> bool:
-    """Whether a symmetric matrix is finite and positive definite."""
+    """Whether a symmetric matrix is finite, positive definite, and can be solved."""
     if not np.isfinite(information).all():
         return False
     try:
         np.linalg.cholesky(information)
+        # at the end of a separation one factorisation may still pass where another meets a nought
+        np.linalg.inv(information)
     except np.linalg.LinAlgError:
         return False
     return True
@@ -157,3 +159,16 @@ def sum_products(x: Array, weights: Array) -> Array:
         for other in range(place + 1):
             found[place, other] = found[other, place] = float((weighed * x[:, other]).sum())
     return found
+
+
+def to_own_scale(columns: ScaledColumns) -> Array:
+    """The matrix that takes coefficients of scaled columns to those of the columns given, intercept first."""
+    turn = np.diag(np.append(1.0, 1 / columns.spread))
+    turn[0, 1:] = -columns.centre / columns.spread
+    return turn
+
+
+def to_scaled(columns: ScaledColumns, coefficients: Array) -> Array:
+    """Coefficients (p + 1,) of the columns given as those of the scaled ones, intercept first."""
+    slopes = coefficients[1:]
+    return np.append(coefficients[0] + (columns.centre * slopes).sum(), columns.spread * slopes)

@@ -57,7 +57,7 @@ class CoxFit:
 
 
 @dataclass(frozen=True, slots=True, eq=False)
-class _Stratum:
+class Stratum:
     """One stratum with scaled columns, in the order of time, and its risk sets."""
 
     cohort: Cohort
@@ -67,7 +67,7 @@ class _Stratum:
 
 
 @dataclass(frozen=True, slots=True, eq=False)
-class _State:
+class State:
     """The log partial likelihood and its derivatives at b, all on scaled columns."""
 
     b: Array
@@ -83,14 +83,14 @@ def fit_cox(cohort: Cohort, *, ties: Ties = Ties.EFRON, strata: Codes | None = N
     proves the score once more by the sums of `hazard_sums`. Times are compared exactly: where near-ties shall merge,
     pass `round_times(cohort, decimals)`, here and to every later sum.
     """
-    events = _check_people(cohort)
+    events = check_times(cohort)
     columns = scale_columns(cohort.x)
     if len(columns.centre) > events:
         raise refuse_fit(FitFault.MORE_COLUMNS_THAN_EVENTS)
-    parts = _split(cohort, columns, ties, strata)
-    null = _look(parts, np.zeros(len(columns.centre)))
+    parts = split_strata(cohort, columns, ties, strata)
+    null = look(parts, np.zeros(len(columns.centre)))
     refuse_flat(null.information, len(cohort.times))
-    found, steps = _climb(parts, null, tol)
+    found, steps = climb(parts, null, tol)
     left = sum((score(part.cohort, found.b, ties) for part in parts), np.zeros(len(found.b)))
     worst = float(np.abs(left).max()) / len(cohort.times)
     if not worst <= SCORE_SLACK:
@@ -107,16 +107,16 @@ def fit_cox(cohort: Cohort, *, ties: Ties = Ties.EFRON, strata: Codes | None = N
     )
 
 
-def _invert_at(state: _State, cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | None) -> Array:
+def _invert_at(state: State, cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | None) -> Array:
     """The inverse of the information at b, (p, p), on scaled columns; where they are alike, by way of straight ones."""
     if not are_alike(state.information):
         return invert(state.information)
     q, triangle = straighten(columns.z)
-    straight = _look(_split(cohort, replace(columns, z=q), ties, strata), triangle @ state.b)
+    straight = look(split_strata(cohort, replace(columns, z=q), ties, strata), triangle @ state.b)
     return turn_back(invert(straight.information), triangle)
 
 
-def _check_people(cohort: Cohort) -> int:
+def check_times(cohort: Cohort) -> int:
     """The number of events; raises FitRefused for what no fit can be made from."""
     if not len(cohort.times):
         raise refuse_fit(FitFault.NO_PEOPLE)
@@ -137,7 +137,7 @@ def _check_people(cohort: Cohort) -> int:
     return events
 
 
-def _split(cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | None) -> list[_Stratum]:
+def split_strata(cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | None) -> list[Stratum]:
     """The strata in which there are events, each in the order of time."""
     codes = np.zeros(len(cohort.times), dtype=np.int64) if strata is None else strata
     order = np.lexsort((cohort.times, codes))
@@ -156,18 +156,18 @@ def _split(cohort: Cohort, columns: ScaledColumns, ties: Ties, strata: Codes | N
         for place in range(len(columns.centre)):
             part.x[:, place] = columns.z[rows, place]
         weights = np.ones(len(rows)) if part.weights is None else part.weights
-        parts.append(_Stratum(part, find_risk_sets(part, ties), weights, weights * part.events))
+        parts.append(Stratum(part, find_risk_sets(part, ties), weights, weights * part.events))
     return parts
 
 
-def _climb(parts: list[_Stratum], null: _State, tol: float) -> tuple[_State, int]:
-    """The maximum and the number of Newton steps to it; raises FitRefused where there is none."""
-    state = null
+def climb(parts: list[Stratum], null: State, tol: float, start: State | None = None) -> tuple[State, int]:
+    """The maximum and the number of Newton steps to it from `start`; raises FitRefused where there is none."""
+    state = null if start is None else start
     for steps in range(1, MOST_STEPS + 1):
         step: Array = np.asarray(np.linalg.solve(state.information, state.score), dtype=np.float64)
         distance = float((step * state.score).sum())
         there = abs(distance) <= tol
-        after = _look(parts, state.b + step) if there else _step(parts, state, step)
+        after = look(parts, state.b + step) if there else _step(parts, state, step)
         if after is None or not has_inverse(after.information):
             break
         state = after
@@ -181,10 +181,10 @@ def _climb(parts: list[_Stratum], null: _State, tol: float) -> tuple[_State, int
     raise refuse_fit(FitFault.SEPARATED if wild else FitFault.NOT_CONVERGED, wild)
 
 
-def _step(parts: list[_Stratum], state: _State, step: Array) -> _State | None:
+def _step(parts: list[Stratum], state: State, step: Array) -> State | None:
     """The state after the step, halved until the likelihood does not fall; None where it always does."""
     for _ in range(MOST_HALVINGS):
-        after = _look(parts, state.b + step)
+        after = look(parts, state.b + step)
         # where r underflows for all at risk the likelihood is without limit
         if np.isfinite(after.loglik) and after.loglik >= state.loglik - 1e-12 * abs(state.loglik):
             return after
@@ -192,7 +192,7 @@ def _step(parts: list[_Stratum], state: _State, step: Array) -> _State | None:
     return None
 
 
-def _look(parts: list[_Stratum], b: Array) -> _State:
+def look(parts: list[Stratum], b: Array) -> State:
     """The log partial likelihood, its score and information at b, over all strata."""
     loglik, total, information = 0.0, np.zeros(len(b)), np.zeros((len(b), len(b)))
     # an overlong step may overflow; it is then halved
@@ -200,10 +200,10 @@ def _look(parts: list[_Stratum], b: Array) -> _State:
         for part in parts:
             own = _look_at(part, b)
             loglik, total, information = loglik + own.loglik, total + own.score, information + own.information
-    return _State(b, loglik, total, information)
+    return State(b, loglik, total, information)
 
 
-def _look_at(part: _Stratum, b: Array) -> _State:
+def _look_at(part: Stratum, b: Array) -> State:
     """The same for one stratum."""
     z, sets = part.cohort.x, part.sets
     lp = add_columns(z, b)
@@ -220,7 +220,7 @@ def _look_at(part: _Stratum, b: Array) -> _State:
     root = np.sqrt(sets.mass)
     for place in range(len(b)):
         means[:, place] = root * sets.sum_left(r * z[:, place]) / left0
-    return _State(
+    return State(
         b,
         float((part.counted * lp).sum() - (sets.mass * np.log(left0)).sum()),
         sum_columns(z, part.counted - gathered),

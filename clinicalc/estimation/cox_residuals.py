@@ -26,7 +26,7 @@ def score_residuals(cohort: Cohort, coefficients: Array, ties: Ties, *, strata: 
         entry = None if cohort.entry is None else cohort.entry[rows]
         offset = None if cohort.offset is None else cohort.offset[rows]
         part = Cohort(cohort.times[rows], cohort.events[rows], cohort.x[rows], entry, weights, offset)
-        residuals[rows] = _residuals_of(part, coefficients, find_risk_sets(part, ties))
+        residuals[rows] = residuals_over(find_risk_sets(part, ties), part, coefficients)
     return residuals
 
 
@@ -48,8 +48,8 @@ def _strata(codes: Codes) -> list[NDArray[np.intp]]:
     return np.split(order, np.flatnonzero(np.diff(codes[order])) + 1)
 
 
-def _residuals_of(cohort: Cohort, coefficients: Array, sets: RiskSets) -> Array:
-    """The residuals of one stratum."""
+def residuals_over(sets: RiskSets, cohort: Cohort, coefficients: Array) -> Array:
+    """The residuals (n, p) of one stratum, of which `sets` are those at risk."""
     # a mean taken off a column changes no residual and keeps its digits
     x = cohort.x - cohort.x.mean(axis=0)
     lp = np.zeros(len(cohort.times)) if cohort.offset is None else cohort.offset.copy()

@@ -17,6 +17,7 @@ class FitFault(StrEnum):
     NO_OTHERS = "no_others"
     NOBODY_COMPARED = "nobody_compared"
     OUTCOME_NOT_BINARY = "outcome_not_binary"
+    STATUS_UNKNOWN = "status_unknown"
     NOT_FINITE = "not_finite"
     TIME_NOT_POSITIVE = "time_not_positive"
     ENTRY_NOT_BEFORE_TIME = "entry_not_before_time"
@@ -36,6 +37,7 @@ _WORDS = {
     FitFault.NO_OTHERS: "everybody has the event",
     FitFault.NOBODY_COMPARED: "no two people can be compared: no event with somebody still there after it",
     FitFault.OUTCOME_NOT_BINARY: "the outcome has values other than 0 and 1",
+    FitFault.STATUS_UNKNOWN: "a status is other than 0, 1 and 2",
     FitFault.NOT_FINITE: "a value is missing or not a number",
     FitFault.TIME_NOT_POSITIVE: "a time is 0 or below",
     FitFault.ENTRY_NOT_BEFORE_TIME: "somebody enters at or after the time at which he leaves",

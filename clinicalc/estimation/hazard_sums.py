@@ -12,9 +12,9 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from clinicalc.estimation.people_at_risk import Cohort, Ties, find_risk_sets
+from clinicalc.estimation.people_at_risk import Cohort, RiskSets, Ties, find_risk_sets
 
-__all__ = ["Cohort", "RunningSums", "Ties", "score", "sum_hazards"]
+__all__ = ["Cohort", "RunningSums", "Ties", "score", "score_over", "sum_hazards", "sums_over"]
 
 Array = NDArray[np.float64]
 
@@ -31,7 +31,11 @@ class RunningSums:
 
 def sum_hazards(cohort: Cohort, coefficients: Array, at: Sequence[float], ties: Ties) -> tuple[RunningSums, ...]:
     """The sums at each of the times `at`, in their order; x as it stands in the cohort."""
-    sets = find_risk_sets(cohort, ties)
+    return sums_over(find_risk_sets(cohort, ties), cohort, coefficients, at)
+
+
+def sums_over(sets: RiskSets, cohort: Cohort, coefficients: Array, at: Sequence[float]) -> tuple[RunningSums, ...]:
+    """The same where those at risk are known."""
     r = _weigh(cohort, coefficients)
     left0 = sets.sum_left(r)
     # how many steps lie at or before each time; the jump at the time itself counts
@@ -50,7 +54,11 @@ def sum_hazards(cohort: Cohort, coefficients: Array, at: Sequence[float], ties: 
 
 def score(cohort: Cohort, coefficients: Array, ties: Ties) -> Array:
     """The derivative of the log partial likelihood, shape (p,): zero at the maximum."""
-    sets = find_risk_sets(cohort, ties)
+    return score_over(find_risk_sets(cohort, ties), cohort, coefficients)
+
+
+def score_over(sets: RiskSets, cohort: Cohort, coefficients: Array) -> Array:
+    """The same where those at risk are known."""
     r = _weigh(cohort, coefficients)
     weights = cohort.events == 1 if cohort.weights is None else cohort.weights * (cohort.events == 1)
     left0 = sets.sum_left(r)

@@ -17,7 +17,6 @@ from numpy.typing import NDArray
 from clinicalc.estimation.binomial import Link, find_bends, find_slopes, sum_loglik
 from clinicalc.estimation.clusters import make_sandwich, sum_clusters
 from clinicalc.estimation.columns import (
-    ScaledColumns,
     are_alike,
     find_separated,
     has_inverse,
@@ -25,6 +24,7 @@ from clinicalc.estimation.columns import (
     refuse_flat,
     scale_columns,
     straighten,
+    to_own_scale,
     turn_back,
 )
 from clinicalc.estimation.faults import FitFault, refuse_fit
@@ -83,19 +83,19 @@ def fit_logistic(
     """
     counts = np.ones(len(y)) if weights is None else np.asarray(weights, dtype=np.float64)
     away: Array | float = 0.0 if offset is None else offset
-    people, events = _check_people(y, counts, away)
+    people, events = check_answers(y, counts, away)
     columns = scale_columns(x)
     if len(columns.centre) > min((y == 1).sum(), (y == 0).sum()):
         raise refuse_fit(FitFault.MORE_COLUMNS_THAN_EVENTS)
     design = np.column_stack([np.ones(len(y)), columns.z])
-    start = _begin(design, y, link, counts, away)
-    null = _information(design, find_slopes(design, start, y, link, away)[1] * counts)
-    refuse_flat(_without_intercept(null), people)
+    start = begin(design, y, link, counts, away)
+    null = sum_information(design, find_slopes(design, start, y, link, away)[1] * counts)
+    refuse_flat(without_intercept(null), people)
     b, iterations = _estimate(design, y, link, weights, start, offset)
     b, steps, converged = _climb(design, b, y, link, counts, away)
     gradient, curvature = find_slopes(design, b, y, link, away)
-    information = _information(design, curvature * counts)
-    wild = find_separated(b[1:], _without_intercept(information), _without_intercept(null))
+    information = sum_information(design, curvature * counts)
+    wild = find_separated(b[1:], without_intercept(information), without_intercept(null))
     if wild:
         raise refuse_fit(FitFault.SEPARATED, wild)
     worst = float(np.abs((design * (gradient * counts)[:, None]).sum(axis=0)).max()) / people
@@ -104,8 +104,8 @@ def fit_logistic(
     covariance = invert(information)
     if are_alike(information):
         q, triangle = straighten(design)
-        covariance = turn_back(invert(_information(q, curvature * counts)), triangle)
-    turn = _to_own_scale(columns)
+        covariance = turn_back(invert(sum_information(q, curvature * counts)), triangle)
+    turn = to_own_scale(columns)
     return LogisticFit(
         link=link,
         coefficients=turn @ b,
@@ -149,7 +149,7 @@ def robust_covariance(
     return factor * make_sandwich(fit.covariance, rows)
 
 
-def _check_people(y: Array, counts: Array, away: Array | float) -> tuple[float, float]:
+def check_answers(y: Array, counts: Array, away: Array | float) -> tuple[float, float]:
     """People and events; raises FitRefused for what no fit can be made from."""
     if not len(y):
         raise refuse_fit(FitFault.NO_PEOPLE)
@@ -167,7 +167,7 @@ def _check_people(y: Array, counts: Array, away: Array | float) -> tuple[float, 
     return people, events
 
 
-def _begin(design: Array, y: Array, link: Link, counts: Array, away: Array | float) -> Array:
+def begin(design: Array, y: Array, link: Link, counts: Array, away: Array | float) -> Array:
     """The coefficients with the intercept alone that is best beside the offset."""
     start = np.zeros(design.shape[1])
     share = float((counts * y).sum() / counts.sum())
@@ -204,7 +204,12 @@ def _estimate(
                 steps, rests = results.fit_history["iteration"], results.converged
         except (np.linalg.LinAlgError, ValueError):
             return start, 0
-    return (results.params, int(steps)) if rests and np.isfinite(results.params).all() else (start, 0)
+    if not (rests and np.isfinite(results.params).all()):
+        return start, 0
+    # GLM may say that it rests far beyond the maximum, where no likelihood is left
+    counts, away = np.ones(len(y)) if weights is None else weights, 0.0 if offset is None else offset
+    found, begun = (sum_loglik(design, b, y, link, counts, away) for b in (results.params, start))
+    return (results.params, int(steps)) if found >= begun else (start, 0)
 
 
 def _climb(
@@ -217,7 +222,7 @@ def _climb(
     loglik = sum_loglik(design, b, y, link, counts, away)
     for steps in range(MOST_STEPS):
         slope = design.T @ (find_slopes(design, b, y, link, away)[0] * counts)
-        information = _information(design, find_bends(design, b, y, link, away) * counts)
+        information = sum_information(design, find_bends(design, b, y, link, away) * counts)
         if not has_inverse(information):
             return b, steps, False
         step = np.linalg.solve(information, slope)
@@ -233,18 +238,12 @@ def _climb(
     return b, MOST_STEPS, False
 
 
-def _information(design: Array, curvature: Array) -> Array:
+def sum_information(design: Array, curvature: Array) -> Array:
+    """The sum over people of curvature times x x', (k, k)."""
     return np.asarray(design.T @ (design * curvature[:, None]), dtype=np.float64)
 
 
-def _without_intercept(information: Array) -> Array:
+def without_intercept(information: Array) -> Array:
     """The information on the slopes once the intercept is estimated too."""
     cross = information[0, 1:]
     return np.asarray(information[1:, 1:] - np.outer(cross, cross) / information[0, 0], dtype=np.float64)
-
-
-def _to_own_scale(columns: ScaledColumns) -> Array:
-    """The matrix that takes coefficients of scaled columns to those of the columns given, intercept first."""
-    turn = np.diag(np.append(1.0, 1 / columns.spread))
-    turn[0, 1:] = -columns.centre / columns.spread
-    return turn

@@ -23,6 +23,7 @@ class Screen(StrEnum):
     LEVEL_ONLY_EVENTS = "level_only_events"
     SEPARATED = "separated"
     NEARLY_SEPARATED = "nearly_separated"
+    HELD_BY_PENALTY = "held_by_penalty"
     SPARSE_LEVEL = "sparse_level"
     DEPENDENT = "dependent"
     COLLINEAR = "collinear"
@@ -37,6 +38,11 @@ class Screen(StrEnum):
     NO_COMPLETE_CASES = "no_complete_cases"
     MISSING_TOGETHER = "missing_together"
     MISSING_WITH_OUTCOME = "missing_with_outcome"
+    COMPETING_CENSORED = "competing_censored"
+    COMPETING_COUNTED = "competing_counted"
+    FILLED_IN = "filled_in"
+    NOT_FILLED_IN = "not_filled_in"
+    NOT_MIXED = "not_mixed"
 
 
 class Figure(StrEnum):
@@ -60,6 +66,8 @@ class Figure(StrEnum):
     MINIMUM = "minimum"
     MINIMUM_EVENTS = "minimum_events"
     MINIMUM_PER_PARAMETER = "minimum_per_parameter"
+    SETS = "sets"
+    ROUNDS = "rounds"
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +75,8 @@ class Screened:
     """One finding: the columns it is about, and its figures by name.
 
     `level` is the level of a category in words, or a value in digits where `detail` is "value". Otherwise `detail` is a
-    code that some findings need: the origin of an R2, "order" or "timed" for a time to an event.
+    code that some findings need: the origin of an R2, "order" or "timed" for a time to an event. For competing events
+    `level` is the horizon in words, `detail` "late" where people came late.
     """
 
     gravity: Grade

@@ -27,7 +27,8 @@ from clinicalc.estimation.screening_columns import count_outliers, screen_column
 from clinicalc.estimation.screening_missing import find_complete, screen_missing
 
 _OF_LEVELS = frozenset({Screen.LEVEL_WITHOUT_EVENTS, Screen.LEVEL_ONLY_EVENTS, Screen.SPARSE_LEVEL})
-_ORDER = {Grade.STOP: 0, Grade.CAUTION: 1, Grade.NOTE: 2}
+GRAVEST_FIRST = {Grade.STOP: 0, Grade.CAUTION: 1, Grade.NOTE: 2}
+"""The order in which findings are said."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -174,4 +175,4 @@ def _outcome_at(outcome: ScreenedOutcome, rows: NDArray[np.bool_]) -> ScreenedOu
 
 
 def _in_order(found: Sequence[Screened]) -> tuple[Screened, ...]:
-    return tuple(sorted(found, key=lambda each: _ORDER[each.gravity]))
+    return tuple(sorted(found, key=lambda each: GRAVEST_FIRST[each.gravity]))

@@ -3,7 +3,6 @@
 from collections.abc import Iterator, Sequence
 from dataclasses import replace
 from math import sqrt
-from statistics import NormalDist
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,6 +16,7 @@ from clinicalc.estimation.screened import (
     ScreenedColumn,
     ScreenedOutcome,
 )
+from clinicalc.estimation.wilson import wilson_limits
 
 MUCH = 0.05
 """Share missing in a column from which it is a caution."""
@@ -64,12 +64,7 @@ def difference_with_limits(first: tuple[int, int], second: tuple[int, int], leve
 
 
 def _wilson(events: int, people: int, level: float) -> tuple[float, float, float]:
-    z = NormalDist().inv_cdf(0.5 + level / 2.0)
-    share, square = events / people, z * z
-    centre = (share + square / (2.0 * people)) / (1.0 + square / people)
-    spread = share * (1.0 - share) / people + square / (4.0 * people * people)
-    half = z / (1.0 + square / people) * sqrt(spread)
-    return share, max(0.0, centre - half), min(1.0, centre + half)
+    return events / people, *wilson_limits(events, people, level)
 
 
 def _column_missing(name: str, count: int, people: int) -> Screened:

@@ -8,6 +8,8 @@ from clinicalc.coefficients.pointers import listed, quoted
 from clinicalc.estimation.screened import Figure, Screen, Screened
 from clinicalc.estimation.screening_collinearity import ILL_CONDITIONED, INFLATED
 from clinicalc.estimation.screening_columns import FAR, SPARSE
+from clinicalc.estimation.screening_competing_words import word_competing_censored, word_competing_counted
+from clinicalc.estimation.screening_imputed_words import word_filled_in, word_not_filled_in, word_not_mixed
 from clinicalc.estimation.screening_people_words import (
     word_all_events,
     word_below_minimum,
@@ -111,6 +113,15 @@ def _nearly_separated(found: Screened, name: Name) -> str:
     )
 
 
+def _held_by_penalty(found: Screened, name: Name) -> str:
+    level = f", people {word_with_level(found)}" if found.level else ""
+    return (
+        f"{word_column(found, name)}{level}: without the penalty the coefficient would run off without end"
+        " (separation). It is finite because of the penalty, which decides how large it is. Check that the column"
+        " is not made from the outcome, and how many people this rests on."
+    )
+
+
 def _sparse_level(found: Screened, name: Name) -> str:
     return (
         f"{word_column(found, name)}: of the {word_people(found)} {word_with_level(found)},"
@@ -202,6 +213,7 @@ _WORDS: Mapping[Screen, Callable[[Screened, Name], str]] = {
     Screen.LEVEL_ONLY_EVENTS: _level_only_events,
     Screen.SEPARATED: _separated,
     Screen.NEARLY_SEPARATED: _nearly_separated,
+    Screen.HELD_BY_PENALTY: _held_by_penalty,
     Screen.SPARSE_LEVEL: _sparse_level,
     Screen.DEPENDENT: _dependent,
     Screen.COLLINEAR: _collinear,
@@ -216,4 +228,9 @@ _WORDS: Mapping[Screen, Callable[[Screened, Name], str]] = {
     Screen.NO_COMPLETE_CASES: word_no_complete_cases,
     Screen.MISSING_TOGETHER: _missing_together,
     Screen.MISSING_WITH_OUTCOME: _missing_with_outcome,
+    Screen.COMPETING_CENSORED: word_competing_censored,
+    Screen.COMPETING_COUNTED: word_competing_counted,
+    Screen.FILLED_IN: word_filled_in,
+    Screen.NOT_FILLED_IN: word_not_filled_in,
+    Screen.NOT_MIXED: word_not_mixed,
 }

@@ -28,6 +28,7 @@ class Wanted(Enum):
     NEW_STUDY = ("Save the study file", "Study files (*.toml)")
     COHORT = ("Choose a file of people", "Tables (*.csv *.tsv *.parquet *.xlsx *.dta)")
     NEW_COEFFICIENT_FILE = ("Write the coefficient file", "Coefficient files (*.json)")
+    REPORT_PDF = ("Save the report of the fit", "PDF (*.pdf)")
     DIFFERENCE_PDF = ("Save the difference", "PDF (*.pdf)")
 
     @property

@@ -135,6 +135,13 @@ class Form(QWidget):
         for part in self._parts[field]:
             part.setVisible(shown)
 
+    def say_under(self, field: TextField, says: str) -> None:
+        """Other words under a field that has some."""
+        under = self._parts[field][-1]
+        assert isinstance(under, QLabel)
+        under.setText(says)
+        field.edit.setAccessibleDescription(says)
+
     def refuse(self, error: ClinicalcError, field: QWidget | None = None) -> None:
         """Say why it was not done, with the focus at the field concerned, or at the deed."""
         self.settle()

@@ -22,6 +22,7 @@ PAGES = (
     "keyboard",
     "commands",
     "fitting",
+    "methods",
     "packaging",
     "signing",
     "library",

@@ -16,7 +16,8 @@ from clinicalc.errors import DescriptionRefused, Problem
 from clinicalc.operations.course import Course
 from clinicalc.operations.study_draft_model import begin_model, predictor_of, which_competes, with_competing
 from clinicalc.operations.study_proposal import propose_study
-from clinicalc.operations.study_toml import has_comments, write_study
+from clinicalc.operations.study_revision import find_lost_comments, revise_toml
+from clinicalc.operations.study_toml import spell_toml, write_study
 
 Tree = dict[str, object]
 
@@ -25,8 +26,9 @@ Tree = dict[str, object]
 class StudyDraft:
     """`folder` is where file names are looked for, `path` the study file it was read from or saved to, if any.
 
-    `columns` are the names in the file of people, `reasons` why each was proposed to be what it is. `has_comments` says
-    that the file has comments, which a saving loses; `is_saved` that nothing was changed since it was read or saved.
+    `columns` are the names in the file of people, `reasons` why each was proposed to be what it is. `text` is the study
+    file as it was read or saved, of which a saving keeps what is not changed; `is_saved` says that nothing was changed
+    since.
     """
 
     tree: Tree
@@ -34,13 +36,18 @@ class StudyDraft:
     columns: tuple[str, ...]
     reasons: Mapping[str, str]
     path: Path | None = None
-    has_comments: bool = False
+    text: str = ""
     is_saved: bool = False
 
     @property
     def file(self) -> str:
         """The name of the file of people."""
         return str(table_of(self.tree, "cohort").get("file", ""))
+
+    @property
+    def lost_comments(self) -> tuple[str, ...]:
+        """The parts of the study file whose comments a saving loses, because they are changed."""
+        return find_lost_comments(self.text, self.tree)
 
 
 def begin_draft(people: Path, course: Course) -> StudyDraft:
@@ -65,13 +72,17 @@ def draft_study(path: Path, columns: tuple[str, ...]) -> StudyDraft:
         tree = tomllib.loads(text)
     except (OSError, ValueError) as fault:
         raise DescriptionRefused(path.name, (Problem("", f"the study file cannot be read: {fault}."),)) from None
-    return StudyDraft(tree, path.parent, columns, {}, path, has_comments(text), is_saved=True)
+    return StudyDraft(tree, path.parent, columns, {}, path, text, is_saved=True)
 
 
 def save_draft(draft: StudyDraft, path: Path, *, replace_file: bool) -> StudyDraft:
-    """Put the study file in place whole or not at all. Raises FileNotWritten."""
-    write_study(path, draft.tree, replace=replace_file)
-    return replace(draft, path=path, has_comments=False, is_saved=True)
+    """Put the study file in place whole or not at all; parts that are the same keep their comments.
+
+    Raises FileNotWritten.
+    """
+    text = revise_toml(draft.text, draft.tree) if draft.text else spell_toml(draft.tree)
+    write_study(path, text, replace=replace_file)
+    return replace(draft, path=path, text=text, is_saved=True)
 
 
 def changed(draft: StudyDraft, tree: Tree) -> StudyDraft:
@@ -166,7 +177,7 @@ def with_column(draft: StudyDraft, entry: ColumnEntry, predictor: Tree | None = 
 
 
 def with_outcome(draft: StudyDraft, outcome: Tree) -> StudyDraft:
-    """The draft with another table of the outcome; a Cox fit takes its competing events as censored, and says so."""
+    """The draft with another table of the outcome; how its competing events are handled follows the kind of fit."""
     tree = deepcopy(draft.tree)
     cohort = tree.setdefault("cohort", {})
     assert isinstance(cohort, dict)

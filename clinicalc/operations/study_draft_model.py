@@ -14,6 +14,11 @@ EQUATION = "all"
 """The id of the one equation that a draft has from the beginning."""
 _NOT_ID = re.compile(r"[^a-z0-9]+")
 _YES_NO = frozenset({"yes", "no"})
+FIT_FIELDS = ("kind", "ties", "covariance", "cluster", "penalty", "ridge_strength")
+"""What is said of a fit in one form, so that what is left out there is gone."""
+_ONLY_OF = {"strata": ("cox",), "round_times": ("cox", "fine-gray")}
+_ANY = ("cox", "fine-gray", "logistic", "cloglog")
+_NO_OTHERS = "not_applicable"
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +44,7 @@ def make_id(text: str, *, dash: str = "_") -> str:
 
 def begin_model(name: str, *, is_timed: bool) -> Tree:
     """The tree of a model of which nothing is known but the name of the file of people."""
-    equation: Tree = {"id": EQUATION, "competing_events": {"handled": "not_applicable"}}
+    equation: Tree = {"id": EQUATION, "competing_events": {"handled": _NO_OTHERS}}
     equation["horizons"] = [{"years": 5}] if is_timed else [{"time": 90, "unit": "d"}]
     equation["terms"] = []
     return {
@@ -151,25 +156,52 @@ def which_competes(tree: Mapping[str, object], equation: int = 0) -> str:
 
 
 def with_competing(tree: Tree, which: str) -> Tree:
-    """The tree with competing events taken as censored in every equation, and what they are; none for ""."""
+    """The tree with competing events handled in every equation as its kind of fit does; none for ""."""
     made = deepcopy(tree)
     equations = made.get("equations")
-    handled: Tree = {"handled": "censored", "which": which} if which else {"handled": "not_applicable"}
     for equation in equations if isinstance(equations, list) else []:
-        equation["competing_events"] = dict(handled)
+        handled: Tree = {"handled": _handled(made, equation), "which": which} if which else {"handled": _NO_OTHERS}
+        equation["competing_events"] = handled
     return made
+
+
+def equation_of(tree: Mapping[str, object], equation: int = 0) -> Tree:
+    """An equation as the tree has it, empty where there is none; to be read only."""
+    equations = tree.get("equations")
+    found = equations[equation] if isinstance(equations, list) and equation < len(equations) else {}
+    return dict(found) if isinstance(found, dict) else {}
+
+
+def fit_of(tree: Mapping[str, object], equation: int = 0) -> Tree:
+    """How the tree has an equation fitted; to be read only."""
+    return _table(tree, "estimate", str(equation_of(tree, equation).get("id", "")))
 
 
 def with_fit(tree: Tree, estimate: Tree, horizons: list[object], equation: int = 0) -> Tree:
-    """The tree with another way of fitting an equation, and other horizons."""
+    """The tree with another way of fitting an equation, and other horizons; competing events follow the kind of it.
+
+    What `estimate` does not speak of stays: strata and rounded times, unless they are for another kind of fit.
+    """
     made = deepcopy(tree)
     equations = made["equations"]
     assert isinstance(equations, list)
+    before = fit_of(tree, equation)
+    kept = {name: before[name] for name in before if name not in FIT_FIELDS}
+    kept = {name: value for name, value in kept.items() if estimate.get("kind") in _ONLY_OF.get(name, _ANY)}
     equations[equation]["horizons"] = horizons
     estimates = made.setdefault("estimate", {})
     assert isinstance(estimates, dict)
-    estimates[str(equations[equation]["id"])] = estimate
+    estimates[str(equations[equation]["id"])] = {**estimate, **kept}
+    stated = equations[equation].get("competing_events")
+    if isinstance(stated, dict) and stated.get("handled") != _NO_OTHERS:
+        equations[equation]["competing_events"] = {**stated, "handled": _handled(made, equations[equation])}
     return made
+
+
+def _handled(tree: Tree, equation: Mapping[str, object]) -> str:
+    """How the fit of an equation handles competing events."""
+    kind = _table(tree, "estimate", str(equation.get("id", ""))).get("kind")
+    return "subdistribution" if kind == "fine-gray" else "censored"
 
 
 def _table(tree: Mapping[str, object], *path: str) -> Tree:

@@ -10,6 +10,12 @@ from clinicalc.development.package import Package
 from clinicalc.development.study_figures import FitFigures
 from clinicalc.estimation.screened import Screened
 from clinicalc.estimation.screening_words import word_screened
+from clinicalc.operations.study_method_record import (
+    record_imputation,
+    record_incidence,
+    record_optimism,
+    record_penalty,
+)
 
 Tree = dict[str, object]
 
@@ -76,6 +82,10 @@ def _fit(figures: FitFigures, fit: Fit) -> Tree:
             }
             for at in figures.horizons
         ],
+        "penalty": record_penalty(figures.penalty),
+        "imputation": record_imputation(figures.imputed),
+        "bootstrap": record_optimism(figures.optimism),
+        "incidences": [record_incidence(one) for one in figures.incidences],
         "minimum_people": None if figures.minimum is None else figures.minimum.people,
         "findings": [_finding(one) for one in figures.screened],
     }

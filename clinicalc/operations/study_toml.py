@@ -18,7 +18,7 @@ Tree = Mapping[str, object]
 
 
 def has_comments(text: str) -> bool:
-    """Whether a TOML text has comments, which are lost when the program writes the file."""
+    """Whether a TOML text has comments."""
     return any(found[1] for found in _TOKENS.finditer(text))
 
 
@@ -27,12 +27,12 @@ def spell_toml(tree: Tree) -> str:
     return "".join(_table(tree, ())).lstrip("\n")
 
 
-def write_study(path: Path, tree: Tree, *, replace: bool) -> None:
-    """Put the study file in place whole or not at all.
+def write_study(path: Path, text: str, *, replace: bool) -> None:
+    """Put a study file in place whole or not at all.
 
     Raises FileNotWritten where it cannot be written, or where something stands there and `replace` is not said.
     """
-    content = spell_toml(tree).encode()
+    content = text.encode()
     try:
         (replace_file if replace else create_file)(path, content, READABLE)
     except FileExistsError:
@@ -50,22 +50,23 @@ def write_study(path: Path, tree: Tree, *, replace: bool) -> None:
 
 def _table(tree: Tree, path: tuple[str, ...]) -> Iterator[str]:
     for key, value in tree.items():
-        if not isinstance(value, dict) and not _is_tables(value):
+        if not isinstance(value, dict) and not is_tables(value):
             yield f"{_key(key)} = {_value(value)}\n"
     for key, value in tree.items():
         inner = (*path, key)
         if isinstance(value, dict):
-            singles = any(not isinstance(item, dict) and not _is_tables(item) for item in value.values())
+            singles = any(not isinstance(item, dict) and not is_tables(item) for item in value.values())
             if singles or not value:
                 yield f"\n[{'.'.join(map(_key, inner))}]\n"
             yield from _table(value, inner)
-        elif isinstance(value, list) and _is_tables(value):
+        elif isinstance(value, list) and is_tables(value):
             for item in value:
                 yield f"\n[[{'.'.join(map(_key, inner))}]]\n"
                 yield from (f"{_key(name)} = {_value(part)}\n" for name, part in item.items())
 
 
-def _is_tables(value: object) -> bool:
+def is_tables(value: object) -> bool:
+    """Whether a value is written as a list of tables."""
     return isinstance(value, list) and bool(value) and all(isinstance(item, dict) for item in value)
 
 
@@ -83,6 +84,6 @@ def _value(value: object) -> str:
     if isinstance(value, list):
         items = [_value(item) for item in value]
         line = f"[{', '.join(items)}]"
-        several = _is_tables(value) and len(value) > 1
+        several = is_tables(value) and len(value) > 1
         return line if len(line) <= _WIDE and not several else "[\n" + "".join(f"    {item},\n" for item in items) + "]"
     return repr(value)

@@ -56,7 +56,7 @@ def set_row(row: RowWords, columns: Columns, measure: Measure) -> SetRow:
     size = small if row.soft else columns.base
     room = columns.figures_end - measure(row.figure, size, weight) - _GAP * columns.ruler.part
     texts = [Text(columns.figures_end, 0.0, row.figure, size, weight, tone, Anchor.END)]
-    lines = list(_wrap(row.label, room, columns.base, measure))
+    lines = list(wrap_words(row.label, room, columns.base, measure))
     pitch = _LEADING * columns.base
     texts += [Text(0.0, pitch * place, line, columns.base) for place, line in enumerate(lines)]
     last = pitch * (len(lines) - 1)
@@ -65,7 +65,7 @@ def set_row(row: RowWords, columns: Columns, measure: Measure) -> SetRow:
     after = measure(lines[-1], columns.base) + _BETWEEN * columns.ruler.part
     if after + measure(row.detail, small) <= room:
         return SetRow((*texts, Text(after, last, row.detail, small, tone=Tone.SOFT)), last)
-    for line in _wrap(row.detail, room, small, measure):
+    for line in wrap_words(row.detail, room, small, measure):
         last += pitch
         texts.append(Text(0.0, last, line, small, tone=Tone.SOFT))
     return SetRow(tuple(texts), last)
@@ -76,7 +76,7 @@ def place_row(row: SetRow, baseline: float) -> Iterator[Shape]:
     return (text.moved(0.0, baseline) for text in row.texts)
 
 
-def _wrap(text: str, room: float, size: float, measure: Measure) -> Iterator[str]:
+def wrap_words(text: str, room: float, size: float, measure: Measure) -> Iterator[str]:
     """Lines no wider than the room; a word that is wider stands broken."""
     line = ""
     for word in text.split(" "):

@@ -3,11 +3,14 @@
 from dataclasses import dataclass
 from enum import Enum, auto
 
+from clinicalc.report.calibration_figure import ShownCalibration
 from clinicalc.report.comparison_figure import Compared
 from clinicalc.report.effect_figure import Moves
+from clinicalc.report.flow_figure import Flow
 from clinicalc.report.measured import Measured
 from clinicalc.report.range_line import RangeOfValues
 from clinicalc.report.shares_figure import Walk
+from clinicalc.report.spread_figure import ShownSpread
 
 
 @dataclass(frozen=True, slots=True)
@@ -155,9 +158,10 @@ class Table:
 
 @dataclass(frozen=True, slots=True)
 class Prose:
-    """Plain paragraphs."""
+    """Plain paragraphs; `keep` holds them to what follows, the table they explain."""
 
     paragraphs: tuple[str, ...]
+    keep: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -188,7 +192,29 @@ class EffectPart:
     moves: Moves
 
 
-Block = FactList | RemarkList | Table | Prose | SignatureLine | SharesPart | ComparisonPart | EffectPart
+@dataclass(frozen=True, slots=True)
+class FlowPart:
+    """The way of people into a fit."""
+
+    flow: Flow
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class CalibrationPart:
+    """Predicted risks against what happened."""
+
+    shown: ShownCalibration
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class SpreadPart:
+    """How predictions lie."""
+
+    shown: ShownSpread
+
+
+FigurePart = SharesPart | ComparisonPart | EffectPart | FlowPart | CalibrationPart | SpreadPart
+Block = FactList | RemarkList | Table | Prose | SignatureLine | FigurePart
 
 
 @dataclass(frozen=True, slots=True)

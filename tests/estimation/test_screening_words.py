@@ -1,12 +1,14 @@
 """Every finding has its sentence: the column by name, the figure, and what to do."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from numpy.typing import NDArray
 
 from clinicalc.assessment.findings import Grade
 from clinicalc.estimation.sample_size import R2Origin
-from clinicalc.estimation.screened import Screen, Screened, ScreenedColumn, ScreenedOutcome
+from clinicalc.estimation.screened import Figure, Screen, Screened, ScreenedColumn, ScreenedOutcome
 from clinicalc.estimation.screening import StatedR2, screen
 from clinicalc.estimation.screening_words import word_screened
 
@@ -69,7 +71,19 @@ CASES: dict[Screen, tuple[list[ScreenedColumn], ScreenedOutcome, StatedR2 | None
     ),
 }
 
+COMPETING = ((Figure.SHARE, 0.1), (Figure.OTHER_SHARE, 0.7), (Figure.VALUE, 0.13), (Figure.DIFFERENCE, 0.3))
+MANY = ((Figure.PEOPLE, 120.0), (Figure.OF_PEOPLE, 400.0), (Figure.SHARE, 0.3))
+FOUND_ELSEWHERE = {
+    Screen.COMPETING_CENSORED: Screened(Grade.CAUTION, (), Screen.COMPETING_CENSORED, COMPETING, level="10 years"),
+    Screen.COMPETING_COUNTED: Screened(Grade.NOTE, (), Screen.COMPETING_COUNTED, COMPETING, level="10 years"),
+    Screen.HELD_BY_PENALTY: Screened(Grade.CAUTION, ("x",), Screen.HELD_BY_PENALTY, level="1", detail="value"),
+    Screen.FILLED_IN: Screened(Grade.CAUTION, ("x",), Screen.FILLED_IN, (*MANY, (Figure.SETS, 20.0))),
+    Screen.NOT_FILLED_IN: Screened(Grade.CAUTION, (), Screen.NOT_FILLED_IN, MANY),
+    Screen.NOT_MIXED: Screened(Grade.CAUTION, ("x",), Screen.NOT_MIXED, ((Figure.VALUE, 1.31), (Figure.ROUNDS, 30.0))),
+}
+
 OF_NO_COLUMN = {
+    *(FOUND_ELSEWHERE.keys() - {Screen.HELD_BY_PENALTY, Screen.FILLED_IN, Screen.NOT_MIXED}),
     Screen.NO_PEOPLE,
     Screen.NO_EVENTS,
     Screen.ALL_EVENTS,
@@ -83,6 +97,8 @@ OF_NO_COLUMN = {
 
 
 def find(code: Screen) -> Screened:
+    if code in FOUND_ELSEWHERE:
+        return FOUND_ELSEWHERE[code]
     columns, outcome, r2 = CASES[code]
     return next(each for each in screen(columns, outcome, r2=r2) if each.code is code)
 
@@ -160,3 +176,18 @@ def test_follow_up_of_different_length_is_not_passed_over() -> None:
         sentence = next(word_screened(each) for each in found if each.code is Screen.MISSING_WITH_OUTCOME)
         assert ("follow-up left aside" in sentence) is said
         assert "not a test" in sentence
+
+
+def test_how_far_one_minus_kaplan_meier_is_above() -> None:
+    censored = FOUND_ELSEWHERE[Screen.COMPETING_CENSORED]
+    assert word_screened(censored) == (
+        "By 10 years, 10.0\u202f% have had the event and 70.0\u202f% a competing event first (Aalen–Johansen). With"
+        " competing events taken as censored it is 13.0\u202f% (one minus Kaplan–Meier): 30.0\u202f% more, and the"
+        " probabilities of this Cox fit are likewise above the share of people who will have the event. Where that"
+        ' share is what a patient is to be told, fit kind = "fine-gray".'
+    )
+    twice = replace(censored, figures=(*COMPETING[:3], (Figure.DIFFERENCE, 1.25)))
+    assert "2.2 times as much" in word_screened(twice)
+    none = replace(censored, gravity=Grade.NOTE, figures=(*COMPETING[:3], (Figure.DIFFERENCE, 0.0)))
+    assert "): no more, and" in word_screened(none)
+    assert "fine-gray" not in word_screened(none)

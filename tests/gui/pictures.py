@@ -297,19 +297,25 @@ def _picture_dialogs(folder: Path, suffix: str) -> Iterator[Path]:
     window.deleteLater()
 
 
-def picture_windows(folder: Path, sizes: Mapping[str, QSize]) -> Iterator[Path]:
-    """Every state in every size, light and dark, then guide and about; yields the files as they are written."""
+def picture_windows(folder: Path, sizes: Mapping[str, QSize], beginning: str = "") -> Iterator[Path]:
+    """Every state in every size, light and dark, then guide and about; yields the files as they are written.
+
+    With a `beginning` only the states whose names begin with it.
+    """
     for choice in THEMES:
         theme.choose(choice)
         for label, size in sizes.items():
             for state in STATES:
+                if not state.name.startswith(beginning):
+                    continue
                 window = _open(state, size)
                 path = folder / f"{state.name}-{choice}-{label}.png"
                 _keep(window, path)
                 yield path
                 window.close()
                 window.deleteLater()
-        yield from _picture_dialogs(folder, f"{choice}-{next(iter(sizes))}")
+        if not beginning:
+            yield from _picture_dialogs(folder, f"{choice}-{next(iter(sizes))}")
 
 
 def picture_prints(folder: Path) -> Iterator[Path]:
@@ -339,28 +345,32 @@ def main() -> None:
     parser = argparse.ArgumentParser(prog="python -m tests.gui.pictures", description="Pictures of every state.")
     parser.add_argument("folder", type=Path, help="where the pictures go; made if need be")
     parser.add_argument("--doubled-only", action="store_true", help="only the windows at 200 %% text")
+    parser.add_argument(
+        "--states", default="", metavar="BEGINNING", help="only windows whose names begin so; no prints"
+    )
     words = parser.parse_args()
     folder: Path = words.folder
     folder.mkdir(parents=True, exist_ok=True)
     if words.doubled_only and os.environ.get(SCALE) != "2":
-        raise SystemExit(subprocess.run(_again(folder), env=os.environ | {SCALE: "2"}, check=False).returncode)
+        again = _again(folder, words.states)
+        raise SystemExit(subprocess.run(again, env=os.environ | {SCALE: "2"}, check=False).returncode)
     os.environ["QT_QPA_PLATFORM"] = "offscreen"
     qInstallMessageHandler(_pass_on)
     dress(QApplication([]))
     if words.doubled_only:
-        made = list(picture_windows(folder, {"200": NARROWEST}))
+        made = list(picture_windows(folder, {"200": NARROWEST}, words.states))
     else:
-        made = list(picture_windows(folder, {"1280": USUAL, "1024": SMALLEST}))
-        prints = list(picture_prints(folder))
+        made = list(picture_windows(folder, {"1280": USUAL, "1024": SMALLEST}, words.states))
+        prints = [] if words.states else list(picture_prints(folder))
         made += prints
-        if not prints:
+        if not prints and not words.states:
             sys.stdout.write("no pictures of prints: pdftoppm is not installed (Debian package poppler-utils)\n")
-        subprocess.run(_again(folder), env=os.environ | {SCALE: "2"}, check=True)
+        subprocess.run(_again(folder, words.states), env=os.environ | {SCALE: "2"}, check=True)
     sys.stdout.write(f"{len(made)} pictures in {folder}\n")
 
 
-def _again(folder: Path) -> list[str]:
-    return [sys.executable, "-m", "tests.gui.pictures", str(folder), "--doubled-only"]
+def _again(folder: Path, beginning: str) -> list[str]:
+    return [sys.executable, "-m", "tests.gui.pictures", str(folder), "--doubled-only", "--states", beginning]
 
 
 if __name__ == "__main__":

@@ -114,6 +114,8 @@ def write_study(qtbot: QtBot, page: StudyPage) -> None:
     assert focused_name() == "Ties"
     hit(Qt.Key.Key_Down)
     hit(ENTER)
+    assert focused_name() == "Penalty"
+    hit(ENTER)
     hit(ENTER)
     assert focused_name() == "Horizons"
     retype("3")

@@ -51,15 +51,15 @@ def test_comments_are_found(text: str, expected: bool) -> None:
 
 def test_a_file_that_is_there_is_replaced_only_where_that_is_said(tmp_path: Path) -> None:
     path = tmp_path / "study.toml"
-    write_study(path, {"a": 1}, replace=False)
+    write_study(path, "a = 1\n", replace=False)
     with pytest.raises(FileNotWritten, match="is there already"):
-        write_study(path, {"a": 2}, replace=False)
+        write_study(path, "a = 2\n", replace=False)
     assert tomllib.loads(path.read_text(encoding="utf-8")) == {"a": 1}
-    write_study(path, {"a": 2}, replace=True)
+    write_study(path, "a = 2\n", replace=True)
     assert tomllib.loads(path.read_text(encoding="utf-8")) == {"a": 2}
     assert [one.name for one in tmp_path.iterdir()] == ["study.toml"]
 
 
 def test_a_folder_that_is_not_there_is_named(tmp_path: Path) -> None:
     with pytest.raises(FileNotWritten, match="could not be written"):
-        write_study(tmp_path / "nowhere" / "study.toml", {"a": 1}, replace=False)
+        write_study(tmp_path / "nowhere" / "study.toml", "a = 1\n", replace=False)

@@ -27,7 +27,12 @@ ROLES = {
     Role.BORN: "date of birth",
     Role.IGNORED: "not used",
 }
-KINDS = {"cox": "Cox", "logistic": "logistic", "cloglog": "binomial with the complementary log-log link"}
+KINDS = {
+    "cox": "Cox",
+    "logistic": "logistic",
+    "cloglog": "binomial with the complementary log-log link",
+    "fine-gray": "Fine–Gray (subdistribution hazard)",
+}
 COVARIANCES = {"model": "of the model", "robust": "robust (sandwich)", "cluster": "robust, by groups of people"}
 _MOST_LEVELS = 6
 _SPANS = {"a": "years", "mo": "months", "wk": "weeks", "d": "days"}

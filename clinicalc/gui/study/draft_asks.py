@@ -6,6 +6,7 @@ from clinicalc.gui.study.about_deed import AboutDeed
 from clinicalc.gui.study.answer_deed import AnswerDeed
 from clinicalc.gui.study.column_deed import ColumnDeed
 from clinicalc.gui.study.fitting_deed import FittingDeed
+from clinicalc.gui.study.methods_deed import MethodsDeed
 from clinicalc.gui.study.steps import Ask
 from clinicalc.gui.study.term_deed import TermDeed
 from clinicalc.operations.study_draft import StudyDraft, changed
@@ -24,6 +25,10 @@ def answer(ask: Ask, place: int, draft: StudyDraft, errands: Errands) -> FormDee
         return AnswerDeed(draft, place, errands)
     if ask is Ask.FITTING:
         return FittingDeed(draft, errands)
+    if ask in (Ask.FIRTH, Ask.RIDGE):
+        return FittingDeed(draft, errands, equation=max(0, place), penalty=ask.value)
+    if ask is Ask.METHODS:
+        return MethodsDeed(draft, errands)
     if ask is Ask.REMOVE_TERM:
         terms = terms_of(draft.tree)
         if 0 <= place < len(terms):

@@ -2,25 +2,25 @@
 
 from collections.abc import Mapping
 
+from clinicalc.assessment.numerals import join_words
 from clinicalc.cohort.dictionary import DataDictionary
 from clinicalc.gui.study.data_words import COLUMNS, COVARIANCES, KINDS, column_facts, count, outcome_lines, span_words
 from clinicalc.gui.study.fact_rows import Fact, FactColumn
+from clinicalc.gui.study.fitting_kinds import usual_ties
+from clinicalc.gui.study.method_words import HANDLED, draft_lines, penalty_line
 from clinicalc.gui.study.refusal_words import state_refusal
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask
 from clinicalc.gui.study.study_state import Refusal
 from clinicalc.gui.study.term_words import describe_term, name_term
 from clinicalc.operations.study_draft import StudyDraft, entry_of, plan_of, table_of
+from clinicalc.operations.study_draft_methods import methods_of
 from clinicalc.operations.study_draft_model import about_of, answers_of, terms_of, which_competes
 
 _TERMS = (FactColumn("Term"), FactColumn("What it is"))
 _ANSWERS = (FactColumn("Item"), FactColumn("Answer"))
 _SAVE_FIRST = (
     "It is not saved yet. When it is saved it is read like any study file, and everything wrong with it is said."
-)
-_COMMENTS = (
-    "The study file has comments. The program writes a file without them: they are lost when it is saved under the same"
-    " name."
 )
 
 
@@ -70,7 +70,7 @@ def make_draft_model_sheet(draft: StudyDraft, refusal: Refusal | None) -> StepSh
     sheet.add_asks(asks, table)
     sheet.add_heading("How it is fitted")
     sheet.add_lines(tuple(_fitting_lines(draft)))
-    sheet.add_asks((("&How it is fitted…", Ask.FITTING),))
+    sheet.add_asks((("&How it is fitted…", Ask.FITTING), ("M&issing values and optimism…", Ask.METHODS)))
     sheet.add_heading("Documentation")
     answers = [Fact(answer) for answer in answers_of(draft.tree)]
     sheet.add_words("What the fit itself answers is filled in when the file is made.", soft=True)
@@ -88,6 +88,12 @@ def add_refusal(sheet: StepSheet, refusal: Refusal) -> None:
     sheet.add_stated(stated)
 
 
+def say_lost_comments(draft: StudyDraft) -> str:
+    """Which comments a saving under the same name loses."""
+    parts = join_words([f"“{name}”" for name in draft.lost_comments])
+    return f"The study file has comments in {parts}, which is changed: they are lost when it is saved."
+
+
 def _begin(title: str, draft: StudyDraft, refusal: Refusal | None) -> StepSheet:
     name = "a new study file" if draft.path is None else draft.path.name
     sheet = StepSheet(title, f"{name}, people from {draft.file}, being written")
@@ -95,10 +101,13 @@ def _begin(title: str, draft: StudyDraft, refusal: Refusal | None) -> StepSheet:
         add_refusal(sheet, refusal)
     if not draft.is_saved:
         sheet.add_words(_SAVE_FIRST, semibold=True)
-    if draft.has_comments:
-        sheet.add_words(_COMMENTS)
+    if draft.lost_comments:
+        sheet.add_words(say_lost_comments(draft))
     if len(_equations(draft)) > 1:
-        sheet.add_words("It has several equations: only the first is changed here, the others in an editor.")
+        sheet.add_words(
+            "It has several equations. The first is changed here; of the others only a penalty that was offered, and "
+            "all else in an editor."
+        )
     return sheet
 
 
@@ -108,17 +117,24 @@ def _fitting_lines(draft: StudyDraft) -> list[tuple[str, str]]:
     table = table_of(draft.tree, "estimate", str(equation.get("id", "")))
     horizons = equation.get("horizons")
     spans = [_span(one) for one in horizons if isinstance(one, Mapping)] if isinstance(horizons, list) else []
-    kind, covariance = str(table.get("kind", "")), str(table.get("covariance", "model"))
+    kind = str(table.get("kind", ""))
+    covariance = str(table.get("covariance", "robust" if kind == "fine-gray" else "model"))
     lines = [("Fit", KINDS.get(kind, kind or "not said yet"))]
-    if kind == "cox":
-        lines.append(("Ties", str(table.get("ties", "efron")).capitalize()))
+    if usual_ties(kind):
+        lines.append(("Ties", str(table.get("ties", usual_ties(kind))).capitalize()))
+    if "penalty" in table:
+        lines.append(("Penalty", penalty_line(str(table["penalty"]), table.get("ridge_strength"))))
     by = f": column {table['cluster']}" if "cluster" in table else ""
     lines.append(("Covariance", f"{COVARIANCES.get(covariance, covariance)}{by}"))
     which = which_competes(draft.tree)
     if which:
-        lines.append(("Competing events", f"{which}; taken as censored"))
+        handled = str(table_of(equation, "competing_events").get("handled", ""))
+        lines.append(("Competing events", f"{which}; {HANDLED.get(handled, handled)}"))
+    elif kind == "fine-gray":
+        lines.append(("Competing events", "none yet, and this fit needs them: change the column of what ended it"))
     lines.append(("Horizons", ", ".join(spans) or "not said yet"))
-    return lines
+    methods = methods_of(draft.tree)
+    return [*lines, *draft_lines(methods.imputation, methods.bootstrap)]
 
 
 def _span(horizon: Mapping[str, object]) -> str:

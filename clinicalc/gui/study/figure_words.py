@@ -10,4 +10,12 @@ def figure(value: float, digits: int = 6) -> str:
 
 def share(part: float) -> str:
     """A share of a whole in per cent."""
-    return f"{100 * part:.1f}\u202f%"
+    return f"{signed(100 * part, 1, plus=False)}\u202f%"
+
+
+def signed(value: float, decimals: int, *, plus: bool = True) -> str:
+    """A figure with so many decimals and the true minus; with a plus where it lies above nought, unless not wanted."""
+    text = f"{value:{'+' if plus else ''}.{decimals}f}"
+    if not float(text):
+        return text.lstrip("+-")
+    return text.replace("-", MINUS)

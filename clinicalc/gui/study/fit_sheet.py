@@ -1,41 +1,33 @@
-"""The step Fit: coefficients, baselines, figures of each fit, what the screening found, whether people are enough."""
+"""The step Fit: coefficients, baselines, figures of each fit, what its methods came to, what the screening found."""
 
-from collections.abc import Iterator
-
-import numpy as np
+from collections.abc import Sequence
 
 from clinicalc.assessment.findings import Grade
-from clinicalc.coefficients.schema import Equation
 from clinicalc.development.estimating import FittedStudy
-from clinicalc.development.fit import Fit, FitKind
 from clinicalc.development.study_figures import FitFigures
+from clinicalc.development.study_remarks import name_only_fit_nowhere
 from clinicalc.estimation.screened import Screened
 from clinicalc.estimation.screening_words import word_screened
-from clinicalc.gui.study.data_words import count, span_words
-from clinicalc.gui.study.fact_rows import Fact, FactColumn
-from clinicalc.gui.study.figure_words import figure, share
+from clinicalc.gui.study.data_words import count
+from clinicalc.gui.study.figure_words import figure
+from clinicalc.gui.study.fit_lines import (
+    BASELINES,
+    COEFFICIENTS,
+    baseline_facts,
+    coefficient_facts,
+    figure_lines,
+    ratio_column,
+)
+from clinicalc.gui.study.fit_method_parts import add_calibrations, add_imputation, add_incidences, add_optimism
+from clinicalc.gui.study.penalty_offers import add_offers
 from clinicalc.gui.study.problem_list import Stated, count_stated
 from clinicalc.gui.study.refusal_words import state_refusal
 from clinicalc.gui.study.step_sheet import StepSheet
+from clinicalc.gui.study.steps import Ask
 from clinicalc.gui.study.study_state import MadeFit, StudyState
-from clinicalc.gui.study.term_words import say_per
 
-_Z = 1.959963984540054
-"""The 0.975 quantile of the normal distribution."""
 _GRADES = {Grade.STOP: Grade.STOP, Grade.CAUTION: Grade.CAUTION, Grade.NOTE: Grade.NOTE}
-_COEFFICIENTS = (
-    FactColumn("Term"),
-    FactColumn("Per"),
-    FactColumn("Coefficient", is_figures=True),
-    FactColumn("Standard error", is_figures=True),
-)
-_RATIOS = {FitKind.COX: "Hazard ratio", FitKind.LOGISTIC: "Odds ratio"}
-_BASELINES = (
-    FactColumn("Horizon"),
-    FactColumn("Events by then", is_figures=True),
-    FactColumn("Still followed", is_figures=True),
-    FactColumn("Log cumulative hazard", is_figures=True),
-)
+SAVE_REPORT = "Save a r&eport…"
 
 
 def make_fit_sheet(state: StudyState) -> StepSheet:
@@ -47,9 +39,11 @@ def make_fit_sheet(state: StudyState) -> StepSheet:
         stated = state_refusal(state.not_fitted)
         sheet.add_heading(f"The study was not fitted: {count(len(stated), 'problem')}")
         sheet.add_stated(stated)
+        add_offers(sheet, state.opened, state.not_fitted)
     if state.fit is not None:
         _add_standing(sheet, state, state.fit)
-        _add_fits(sheet, state.fit.fitted)
+        sheet.add_asks(((SAVE_REPORT, Ask.REPORT),))
+        _add_fits(sheet, state.fit)
     return sheet
 
 
@@ -76,82 +70,40 @@ def _add_standing(sheet: StepSheet, state: StudyState, fit: MadeFit) -> None:
         sheet.add_words("What follows is the fit before, of the same study file and people.", semibold=True)
 
 
-def _add_fits(sheet: StepSheet, fitted: FittedStudy) -> None:
+def _add_fits(sheet: StepSheet, fit: MadeFit) -> None:
+    fitted = fit.fitted
     for figures in fitted.figures:
-        first = fitted.fits[figures.equations[0]]
-        equations = {one.id: one for one in fitted.model.content.equations}
-        sheet.add_heading(f"Equation {figures.id}")
-        sheet.add_lines(tuple(_figure_lines(figures)))
-        facts = tuple(_coefficient_facts(first, equations[figures.equations[0]], fitted))
-        ratio = FactColumn(f"{_RATIOS.get(first.kind, 'Ratio')}, 95\u202f% interval", is_figures=True)
-        sheet.add_table(f"Coefficients of the equation {figures.id}", (*_COEFFICIENTS, ratio), facts)
-        baselines = tuple(_baseline_facts(figures, fitted))
-        if figures.horizons:
-            sheet.add_table(f"Baselines of the equation {figures.id}", _BASELINES, baselines)
-            sheet.add_words("The log cumulative hazard holds with every term at zero.", soft=True)
-        else:
-            sheet.add_lines((("Intercept", figure(first.baselines[0].lp0)),))
-        stated = tuple(_state(found) for found in figures.screened)
-        sheet.add_heading(f"What was looked for: {count_stated(stated)}" if stated else "Nothing to be remarked")
-        if stated:
-            sheet.add_stated(stated)
+        sheet.add_heading(f"Equation {figures.id}" if len(fitted.figures) > 1 else "What was fitted")
+        _add_plain(sheet, figures, fitted)
+        add_imputation(sheet, figures)
+        add_incidences(sheet, figures)
+        add_optimism(sheet, figures)
+        _add_found(sheet, figures.screened)
+        add_calibrations(sheet, figures, fit.calibrations)
     if fitted.remarks:
         sheet.add_heading("Remarks")
-        for remark in fitted.remarks:
+        for remark in name_only_fit_nowhere(fitted.remarks, fitted.figures):
             sheet.add_words(remark)
 
 
-def _figure_lines(figures: FitFigures) -> Iterator[tuple[str, str]]:
-    yield "People", _people(figures)
-    competing = f", and {count(figures.competing, 'competing event')} taken as censored" if figures.competing else ""
-    yield "Events", f"{figures.events:,}{competing}"
-    yield "Events for each term", f"{figure(figures.events_per_term, 3)}, {count(figures.terms, 'term')}"
-    if figures.concordance is not None:
-        at = figures.concordance
-        yield "C, in these people", f"{at.c:.3f}, standard error {at.se:.3f}, not corrected for optimism"
-    yield "Log likelihood", f"{figure(figures.loglik, 8)}; without the terms {figure(figures.loglik_null, 8)}"
-    if figures.follow_up is not None:
-        median = figures.follow_up.median
-        unit = span_words(figures.follow_up.unit)
-        reached = "not reached" if median is None else f"{median:,.6g} {unit}"
-        yield "Follow-up", f"median {reached}, longest {figures.follow_up.longest:,.6g} {unit}"
+def _add_plain(sheet: StepSheet, figures: FitFigures, fitted: FittedStudy) -> None:
+    """People and events, coefficients, baselines."""
+    first = fitted.fits[figures.equations[0]]
+    equations = {one.id: one for one in fitted.model.content.equations}
+    sheet.add_lines(tuple(figure_lines(figures)))
+    facts = tuple(coefficient_facts(first, equations[figures.equations[0]], figures, fitted))
+    columns = (*COEFFICIENTS, ratio_column(first.kind))
+    sheet.add_table(f"Coefficients of the equation {figures.id}", columns, facts)
+    if figures.horizons:
+        baselines = tuple(baseline_facts(figures, fitted))
+        sheet.add_table(f"Baselines of the equation {figures.id}", BASELINES, baselines)
+        sheet.add_words("The log cumulative hazard holds with every term at zero.", soft=True)
+    else:
+        sheet.add_lines((("Intercept", figure(first.baselines[0].lp0)),))
 
 
-def _people(figures: FitFigures) -> str:
-    left = figures.left_out
-    if not left.left_out:
-        return f"{figures.people:,}, all to whom the equation applies"
-    lacking = ", ".join(f"{id or 'the outcome'} {number:,}" for id, number in left.missing.items())
-    out_of = share(left.left_out / left.applicable)
-    return f"{figures.people:,} of {left.applicable:,}; {left.left_out:,} ({out_of}) left out. Missing: {lacking}"
-
-
-def _coefficient_facts(fit: Fit, equation: Equation, fitted: FittedStudy) -> Iterator[Fact]:
-    terms = {term.id: term for term in equation.terms}
-    for place, (name, coefficient) in enumerate(zip(fit.names, fit.coefficients, strict=True)):
-        error = None if fit.covariance is None else float(np.sqrt(fit.covariance[place][place]))
-        per = say_per(terms[name], fitted.model.content.predictors) if name in terms else ""
-        yield Fact((name, per, figure(coefficient), "" if error is None else figure(error), _ratio(coefficient, error)))
-
-
-def _ratio(coefficient: float, error: float | None) -> str:
-    """The exponential of the coefficient with its 95 % interval."""
-    if error is None:
-        return figure(float(np.exp(coefficient)), 3)
-    low, middle, high = np.exp([coefficient - _Z * error, coefficient, coefficient + _Z * error])
-    return f"{figure(float(middle), 3)}, {figure(float(low), 3)}–{figure(float(high), 3)}"
-
-
-def _baseline_facts(figures: FitFigures, fitted: FittedStudy) -> Iterator[Fact]:
-    seen: dict[str, int] = {}
-    for horizon in figures.horizons:
-        place = seen.get(horizon.equation, 0)
-        seen[horizon.equation] = place + 1
-        baseline = fitted.fits[horizon.equation].baselines[place]
-        of = f", {horizon.equation}" if len(figures.equations) > 1 else ""
-        cells = (f"{horizon.span.words}{of}", f"{horizon.events:,}", f"{horizon.still_at_risk:,}")
-        yield Fact((*cells, figure(baseline.lp0)))
-
-
-def _state(found: Screened) -> Stated:
-    return Stated(_GRADES[found.gravity], word_screened(found))
+def _add_found(sheet: StepSheet, screened: Sequence[Screened]) -> None:
+    stated = tuple(Stated(_GRADES[found.gravity], word_screened(found)) for found in screened)
+    sheet.add_heading(f"What was looked for: {count_stated(stated)}" if stated else "Nothing to be remarked")
+    if stated:
+        sheet.add_stated(stated)

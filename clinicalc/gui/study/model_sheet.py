@@ -10,6 +10,8 @@ from clinicalc.development.study_strata import FitPlan
 from clinicalc.gui.study.data_words import COVARIANCES, KINDS
 from clinicalc.gui.study.draft_sheets import make_draft_model_sheet
 from clinicalc.gui.study.fact_rows import Fact, FactColumn
+from clinicalc.gui.study.fitting_kinds import usual_ties
+from clinicalc.gui.study.method_words import HANDLED, method_lines, table_penalty
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask
 from clinicalc.gui.study.study_state import OpenedStudy, StudyState
@@ -32,12 +34,14 @@ def make_model_sheet(state: StudyState) -> StepSheet:
     sheet.add_lines(tuple(_head_lines(opened)))
     equations = {str(tree.get("id")): tree for tree in opened.study.description.equations}
     for plan in opened.study.fits:
-        sheet.add_heading(f"Equation {plan.id}")
+        sheet.add_heading(f"Equation {plan.id}" if len(opened.study.fits) > 1 else "How it is fitted")
         sheet.add_lines(tuple(_plan_lines(plan, opened)))
         terms = equations.get(plan.equations[0], {}).get("terms") if plan.equations else None
         listed = terms if isinstance(terms, list) else []
         facts = [Fact((name_term(term, place), describe_term(term))) for place, term in enumerate(listed)]
         sheet.add_table(f"Terms of the equation {plan.id}", _TERMS, facts)
+    sheet.add_heading("Missing values and optimism")
+    sheet.add_lines(tuple(method_lines(opened.study.imputation, opened.study.bootstrap)))
     sheet.add_heading("Values that are asked for")
     derivations = _derivations(opened)
     facts = [_predictor_fact(predictor, derivations) for predictor in content.predictors]
@@ -69,10 +73,12 @@ def _head_lines(opened: OpenedStudy) -> Iterator[tuple[str, str]]:
 def _plan_lines(plan: FitPlan, opened: OpenedStudy) -> Iterator[tuple[str, str]]:
     table = plan.table
     yield "Fit", KINDS[table.kind]
-    if table.kind == "cox":
-        yield "Ties", "Efron" if isinstance(table.ties, UnsetType) else table.ties.capitalize()
+    if usual_ties(table.kind):
+        yield "Ties", (usual_ties(table.kind) if isinstance(table.ties, UnsetType) else table.ties).capitalize()
+    if table_penalty(table):
+        yield "Penalty", table_penalty(table)
     by = "" if isinstance(table.cluster, UnsetType) else f": column {table.cluster}"
-    yield "Covariance", f"{COVARIANCES[table.covariance]}{by}"
+    yield "Covariance", f"{COVARIANCES[table.covariance_kind]}{by}"
     if not isinstance(table.strata, UnsetType):
         yield "Strata", f"a baseline for each answer of {table.strata}"
     equation = next(one for one in opened.study.content.equations if one.id in plan.equations)
@@ -82,7 +88,9 @@ def _plan_lines(plan: FitPlan, opened: OpenedStudy) -> Iterator[tuple[str, str]]
     if len(plan.equations) == 1 and equation.applies_when:
         conditions = [f"{id} is {' or '.join(answers)}" for id, answers in equation.applies_when.items()]
         yield "People", "; ".join(conditions)
-    yield "Competing events", equation.competing_events.handled.replace("_", " ")
+    competing = equation.competing_events
+    which = "" if isinstance(competing.which, UnsetType) else f"{competing.which}; "
+    yield "Competing events", f"{which}{HANDLED[competing.handled]}"
 
 
 def _derivations(opened: OpenedStudy) -> Mapping[str, object]:

@@ -12,6 +12,7 @@ from clinicalc.development.study_documentation import document_study
 from clinicalc.gui.study.data_words import count
 from clinicalc.gui.study.fact_rows import Fact, FactColumn
 from clinicalc.gui.study.figure_words import share
+from clinicalc.gui.study.fit_sheet import SAVE_REPORT
 from clinicalc.gui.study.refusal_words import state_refusal
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask
@@ -53,6 +54,7 @@ def make_package_sheet(state: StudyState) -> StepSheet:
         sheet.add_heading("Remarks")
         for remark in package.remarks:
             sheet.add_words(remark)
+    sheet.add_asks(((SAVE_REPORT, Ask.REPORT),))
     return sheet
 
 

@@ -9,6 +9,7 @@ from clinicalc.gui.errands import Errands
 from clinicalc.gui.file_choosing import ChooseSave, Wanted
 from clinicalc.gui.form import Form
 from clinicalc.gui.form_deed import FormDeed, read_field, refuse_at
+from clinicalc.gui.study.draft_sheets import say_lost_comments
 from clinicalc.operations.course import Course
 from clinicalc.operations.study_draft import StudyDraft, save_draft
 
@@ -22,10 +23,8 @@ class SaveDeed(FormDeed):
             f"It stands beside {draft.file}, which it names. It is put in place whole or not at all, and then read.",
             "&Save",
         )
-        if draft.has_comments:
-            form.add_words(
-                "The comments of the study file are lost when it is saved under the same name.", semibold=True
-            )
+        if draft.lost_comments:
+            form.add_words(say_lost_comments(draft), semibold=True)
         self._draft, self._choose = draft, choose
         self._confirmed = draft.path
         self.place = form.add_place("Study &file", self._ask_where)

@@ -87,17 +87,19 @@ class StepSheet(Scroller):
         self._rows.addWidget(table)
         return table
 
-    def add_asks(self, asks: Sequence[tuple[str, Ask]], table: FactTable | None = None) -> None:
-        """Buttons beside each other that ask for something; about the row of the table that was gone to, if any."""
+    def add_asks(self, asks: Sequence[tuple[str, Ask]], table: FactTable | None = None, place: int = -1) -> None:
+        """Buttons beside each other that ask for something; about the row of the table that was gone to, or `place`."""
         holder = QWidget()
         row = QHBoxLayout(holder)
         row.setContentsMargins(0, 2, 0, 2)
         row.setSpacing(10)
         for words, ask in asks:
             button = make_button(words, pixels=UNIT)
-            button.clicked.connect(lambda _=False, ask=ask: self.asked.emit(ask, -1 if table is None else table.place))
+            button.clicked.connect(
+                lambda _=False, ask=ask: self.asked.emit(ask, place if table is None else table.place)
+            )
             row.addWidget(button)
-            self.buttons[ask] = button
+            self.buttons.setdefault(ask, button)
         row.addStretch(1)
         self._rows.addWidget(holder)
 

@@ -38,12 +38,15 @@ def open_and_check(path: Path, course: Course) -> OpenedStudy:
 
 def fit_opened(opened: OpenedStudy, course: Course) -> MadeFit:
     """The study fitted to the people that were checked. Raises DescriptionRefused, UsageError and Stopped."""
+    from clinicalc.development.study_calibration import calibrate_fit
     from clinicalc.operations.study import fit_study
 
     if opened.cohort is None:
         raise UsageError("there are no people to fit to.", do="See to the data first.")
     course.say("Fitting")
-    return MadeFit(fit_study(opened.study, opened.cohort, course), opened.digest, opened.path.name)
+    fitted = fit_study(opened.study, opened.cohort, course)
+    course.say("Comparing what is predicted with what happened")
+    return MadeFit(fitted, opened.digest, opened.path.name, calibrate_fit(fitted))
 
 
 def package_fit(fit: MadeFit, course: Course) -> Package:

@@ -18,6 +18,7 @@ from clinicalc.gui.study.fit_sheet import make_fit_sheet
 from clinicalc.gui.study.model_sheet import make_model_sheet
 from clinicalc.gui.study.next_step import offer_of
 from clinicalc.gui.study.package_sheet import make_package_sheet
+from clinicalc.gui.study.report_deed import ReportDeed, SavedReport
 from clinicalc.gui.study.step_lines import name_of, step_lines
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask, Step
@@ -135,7 +136,7 @@ class StudyPage(QWidget):
         """Show a form over the step."""
         self.forms.open(deed)
         self._settle()
-        self.forms.focus()
+        deed.focus_first()
 
     # what is shown
 
@@ -220,19 +221,44 @@ class StudyPage(QWidget):
             if self.step is Step.PACKAGE:  # what is said of the file is changed where the model is
                 self.show_step(Step.MODEL)
             self.work.change_opened()
+        elif ask in (Ask.FIRTH, Ask.RIDGE):
+            self._offer_penalty(ask, place)
+        elif ask is Ask.REPORT:
+            self._open_report()
         elif ask is Ask.LEAVE:
             self.work.leave_draft()
             self.sheet.focus_first()
         elif draft is not None:
-            from clinicalc.gui.study.draft_asks import answer
+            self._answer(ask, place, draft)
 
-            came = answer(ask, place, draft, self.errands)
-            self._asked = (ask, place)
-            if isinstance(came, FormDeed):
-                self.open_deed(came)
-            elif came is not None:
-                self.work.take_draft(came)
-                self._return()
+    def _answer(self, ask: Ask, place: int, draft: StudyDraft) -> None:
+        """What is asked for about the study file that is being written."""
+        from clinicalc.gui.study.draft_asks import answer
+
+        came = answer(ask, place, draft, self.errands)
+        self._asked = (Ask.FITTING if ask in (Ask.FIRTH, Ask.RIDGE) else ask, place)
+        if isinstance(came, FormDeed):
+            self.open_deed(came)
+        elif came is not None:
+            self.work.take_draft(came)
+            self._return()
+
+    def _offer_penalty(self, ask: Ask, place: int) -> None:
+        """The form of a fit with a penalty chosen, in the study file that is being written, or else that is open."""
+        if self.errands.is_busy:
+            return
+        self.show_step(Step.MODEL)
+        if self.state.draft is not None:
+            self._answer(ask, place, self.state.draft)
+        else:
+            self.work.change_opened(lambda draft: self._answer(ask, place, draft))
+
+    def _open_report(self) -> None:
+        fit, opened = self.state.fit, self.state.opened
+        if fit is not None and opened is not None:
+            self._asked = (Ask.REPORT, -1)
+            package = self.state.package
+            self.open_deed(ReportDeed(fit, package, opened.path.parent, self.errands, self._choices.where))
 
     def _take_result(self, result: object) -> None:
         """What a form brought: a coefficient file that was written, or another draft, perhaps a saved one."""
@@ -242,6 +268,11 @@ class StudyPage(QWidget):
         elif isinstance(result, StudyDraft):
             self.work.take_draft(result)
             self._return()
+        else:
+            self._settle()
+            self._return()
+            if isinstance(result, SavedReport):
+                self.strip.say(f"The report was written to {result.path}.")
 
     def _leave_form(self) -> None:
         self._settle()

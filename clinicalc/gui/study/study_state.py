@@ -17,6 +17,7 @@ if TYPE_CHECKING:
     from clinicalc.development.estimating import FittedStudy
     from clinicalc.development.package import Package
     from clinicalc.development.study import Study
+    from clinicalc.development.study_calibration import FitCalibration
     from clinicalc.operations.study_draft import StudyDraft
 
 
@@ -36,11 +37,15 @@ class OpenedStudy:
 
 @dataclass(frozen=True, slots=True, eq=False)
 class MadeFit:
-    """A fit, and what it was made from: the digest at that time, and the name of the study file."""
+    """A fit, and what it was made from: the digest at that time, and the name of the study file.
+
+    `calibrations` are those in its own people, one a fit and horizon.
+    """
 
     fitted: FittedStudy
     digest: str
     name: str
+    calibrations: tuple[FitCalibration, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, eq=False)

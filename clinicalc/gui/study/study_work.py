@@ -63,14 +63,19 @@ class StudyWork(QObject):
             lambda error: self._fail_to_open(path, error),
         )
 
-    def change_opened(self) -> None:
-        """Begin to change the study file that is open."""
+    def change_opened(self, then: Callable[[StudyDraft], None] = lambda _: None) -> None:
+        """Begin to change the study file that is open; `then` is called with the draft once it is shown."""
         opened = self.state.opened
+
+        def take(draft: StudyDraft) -> None:
+            self.take_draft(draft)
+            then(draft)
+
         if opened is not None:
             self._run(
                 "Reading the study file",
                 lambda course: change_opened(opened, course),
-                self.take_draft,
+                take,
                 lambda error: self._fail_to_open(opened.path, error),
             )
 

@@ -204,7 +204,7 @@ def test_the_first_file_is_chosen_from_what_ships_or_from_a_file_of_ones_own(
         page.own.setFocus()
         person.press(Qt.Key.Key_Return)
     assert asked.args == [tmp_path / "own.json"]
-    assert len([button for button in buttons_in(page) if "Look at it" in button.text()]) == len(page.buttons) == 7
+    assert len([button for button in buttons_in(page) if "Look at it" in button.text()]) == len(page.buttons) == 8
 
 
 def test_a_machine_with_a_library_is_led_to_another_one_and_back(person: Person, tmp_path: Path, shelf: Shelf) -> None:

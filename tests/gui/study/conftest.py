@@ -9,6 +9,7 @@ from pytestqt.qtbot import QtBot
 from clinicalc.gui.file_choosing import FileChoices, Wanted
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.page_tabs import Page
+from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_page import StudyPage
 from tests.gui.study.study_files import StudyFiles, write_study_files
 
@@ -66,6 +67,15 @@ def opened(qtbot: QtBot, page: StudyPage, files: StudyFiles) -> StudyPage:
     page.work.open_study(files.study)
     rest(qtbot, page)
     return page
+
+
+@pytest.fixture
+def changing(qtbot: QtBot, opened: StudyPage) -> StudyPage:
+    """The small study being changed, at the step Model."""
+    opened.show_step(Step.MODEL)
+    opened.sheet.buttons[Ask.CHANGE].click()
+    rest(qtbot, opened)
+    return opened
 
 
 def rest(qtbot: QtBot, page: StudyPage) -> None:

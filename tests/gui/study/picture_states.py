@@ -6,13 +6,24 @@ from pathlib import Path
 from tempfile import TemporaryDirectory
 from time import monotonic
 
+from PySide6.QtCore import QPoint
 from PySide6.QtTest import QTest
 
+from clinicalc.gui.labels import Heading
 from clinicalc.gui.main_window import MainWindow
 from clinicalc.gui.page_tabs import Page
+from clinicalc.gui.study.fitting_deed import FittingDeed
+from clinicalc.gui.study.methods_deed import MethodsDeed
 from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_page import StudyPage
-from tests.gui.study.study_files import StudyFiles, write_study_files
+from tests.gui.study.study_files import (
+    StudyFiles,
+    let_others_die,
+    make_binary,
+    plan_methods,
+    separate,
+    write_study_files,
+)
 
 _PATIENCE = 60.0
 _FOLDERS: list[TemporaryDirectory[str]] = []
@@ -57,6 +68,11 @@ def _step(step: Step, window: MainWindow) -> StudyPage:
 
 def _write(window: MainWindow) -> None:
     _step(Step.PACKAGE, window).foot.next.click()
+
+
+def _report(window: MainWindow) -> None:
+    """The form in which a report is saved."""
+    _step(Step.FIT, window).sheet.buttons[Ask.REPORT].click()
 
 
 def _spoil(window: MainWindow) -> None:
@@ -104,6 +120,58 @@ def _ask(step: Step, ask: Ask, window: MainWindow) -> None:
     page.sheet.buttons[ask].click()
 
 
+def _refuse_separated(window: MainWindow) -> None:
+    """A fit that has no estimate without a penalty."""
+    files = _files()
+    make_binary(files)
+    separate(files)
+    page = _page(window)
+    page.work.open_study(files.study)
+    _rest(page)
+    page.work.fit()
+    _rest(page)
+
+
+def _offer_firth(window: MainWindow) -> None:
+    _refuse_separated(window)
+    page = window.others.study()
+    page.sheet.buttons[Ask.FIRTH].click()
+    _rest(page)
+
+
+def _fit_with_methods(heading: str, window: MainWindow) -> None:
+    """A Fine–Gray fit with values filled in and a bootstrap, scrolled to one of its parts."""
+    files = _files()
+    let_others_die(files)
+    plan_methods(files)
+    page = _page(window)
+    page.work.open_study(files.study)
+    _rest(page)
+    page.work.fit()
+    _rest(page)
+    inside = page.sheet.widget()
+    for part in page.sheet.findChildren(Heading):
+        if inside is not None and part.label.text().startswith(heading):
+            page.sheet.verticalScrollBar().setValue(part.mapTo(inside, QPoint(0, 0)).y() - 12)
+            return
+
+
+def _choose_methods(window: MainWindow) -> None:
+    """Both methods chosen in their form, so that all of its fields are there."""
+    _ask(Step.MODEL, Ask.METHODS, window)
+    deed = window.others.study().right.currentWidget()
+    if isinstance(deed, MethodsDeed):
+        for field in (deed.missing, deed.optimism):
+            field.chooser.setCurrentIndex(1)
+
+
+def _choose_ridge(window: MainWindow) -> None:
+    _ask(Step.MODEL, Ask.FITTING, window)
+    deed = window.others.study().right.currentWidget()
+    if isinstance(deed, FittingDeed):
+        deed.penalty.chooser.setCurrentIndex(deed.penalty.chooser.findData("ridge"))
+
+
 _DONE: dict[str, Callable[[MainWindow], object]] = {
     "study-begin": _page,
     **{f"study-{step.name.lower()}": partial(_step, step) for step in Step},
@@ -118,6 +186,15 @@ _DONE: dict[str, Callable[[MainWindow], object]] = {
     "study-draft-about": partial(_ask, Step.MODEL, Ask.ABOUT),
     "study-draft-answer": partial(_ask, Step.MODEL, Ask.ANSWER),
     "study-draft-fitting": partial(_ask, Step.MODEL, Ask.FITTING),
+    "study-draft-ridge": _choose_ridge,
+    "study-draft-methods": _choose_methods,
+    "study-fit-separated": _refuse_separated,
+    "study-fit-offered": _offer_firth,
+    "study-fit-filled": partial(_fit_with_methods, "Values filled in"),
+    "study-fit-optimism": partial(_fit_with_methods, "Optimism"),
+    "study-fit-others": partial(_fit_with_methods, "Where other events"),
+    "study-fit-calibration": partial(_fit_with_methods, "Predicted and observed at 3"),
+    "study-report": _report,
 }
 
 

@@ -123,6 +123,40 @@ def people_csv() -> str:
     return "\n".join(lines) + "\n"
 
 
+def plan_methods(files: StudyFiles, *, sets: int = 3, replicates: int = 20) -> None:
+    """Have missing values filled in and optimism found, with few sets and samples."""
+    said = f"\n[imputation]\nsets = {sets}\nrounds = 5\n\n[bootstrap]\nreplicates = {replicates}\n"
+    files.study.write_text(files.study.read_text(encoding="utf-8") + said, encoding="utf-8")
+
+
+def let_others_die(files: StudyFiles, kind: str = "fine-gray") -> None:
+    """Every fifth person without the event ends with another one; the fit is of that kind."""
+    lines = files.people.read_text(encoding="utf-8").splitlines()
+    changed = [f"{line[:-1]}2" if place % 5 == 0 and line.endswith(",0") else line for place, line in enumerate(lines)]
+    files.people.write_text("\n".join(changed) + "\n", encoding="utf-8")
+    handled = "subdistribution" if kind == "fine-gray" else "censored"
+    files.change_study('censored = "0"}', 'censored = "0", competing = "2"}')
+    files.change_study('handled = "not_applicable"', f'handled = "{handled}", which = "death from another cause"')
+    files.change_study('kind = "cox"', f'kind = "{kind}"')
+
+
+def make_binary(files: StudyFiles) -> None:
+    """An outcome that is known of everybody, and a logistic fit to it."""
+    files.change_study(
+        '{kind = "time_to_event", time = "days", unit = "d", status = "status", event = "1", censored = "0"}',
+        '{kind = "binary", column = "status", event = "1", no_event = "0"}',
+    )
+    files.change_study('kind = "cox"', 'kind = "logistic"')
+    files.change_study("horizons = [{years = 1}, {years = 3}]", "horizons = [{years = 3}]")
+
+
+def separate(files: StudyFiles) -> None:
+    """No woman has the event, so that no logistic or Cox fit has an estimate for men."""
+    lines = files.people.read_text(encoding="utf-8").splitlines()
+    changed = [f"{line[:-1]}0" if ",F," in line else line for line in lines]
+    files.people.write_text("\n".join(changed) + "\n", encoding="utf-8")
+
+
 def _change(path: Path, old: str, new: str) -> None:
     text = path.read_text(encoding="utf-8")
     assert old in text

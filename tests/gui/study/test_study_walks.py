@@ -6,15 +6,17 @@ from PySide6.QtWidgets import QLineEdit
 from pytestqt.qtbot import QtBot
 
 from clinicalc.gui import theme
+from clinicalc.gui.chooser import Chooser
 from clinicalc.gui.form_deed import FormDeed
 from clinicalc.gui.main_window import MainWindow
+from clinicalc.gui.study.calibration_view import CalibrationView
 from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_foot import Next
 from clinicalc.gui.study.study_page import StudyPage
 from clinicalc.settings import ThemeChoice
 from tests.gui.page_walks import walk_page
 from tests.gui.study.conftest import rest
-from tests.gui.study.study_files import StudyFiles
+from tests.gui.study.study_files import StudyFiles, let_others_die, make_binary, plan_methods, separate
 from tests.gui.test_walks import SIZES
 
 pytestmark = [
@@ -93,14 +95,67 @@ def test_a_study_file_being_written(
         leave(page)
     page.show_step(Step.MODEL)
     assert walk_page(study_window, monkeypatch) == {}, "model"
-    for ask in (Ask.ABOUT, Ask.ADD_TERM, Ask.FITTING, Ask.ANSWER):
+    for ask in (Ask.ABOUT, Ask.ADD_TERM, Ask.FITTING, Ask.METHODS, Ask.ANSWER):
         page.sheet.buttons[ask].click()
         assert walk_page(study_window, monkeypatch) == {}, ask
+        for box in page.right.findChildren(Chooser):
+            box.setCurrentIndex(box.count() - 1)  # what was hidden comes out
+        assert walk_page(study_window, monkeypatch) == {}, (ask, "last entries")
         leave(page)
     assert page.foot.comes_next is Next.SAVE
     page.foot.next.click()
     shorten(page)
     assert walk_page(study_window, monkeypatch) == {}, "saving"
+
+
+@SIZES
+def test_every_method(
+    qtbot: QtBot,
+    study_window: MainWindow,
+    page: StudyPage,
+    files: StudyFiles,
+    monkeypatch: pytest.MonkeyPatch,
+    size: QSize,
+) -> None:
+    """A Fine–Gray fit with values filled in and a bootstrap; the form in which a report is saved."""
+    let_others_die(files)
+    plan_methods(files)
+    study_window.resize(size)
+    page.work.open_study(files.study)
+    rest(qtbot, page)
+    page.work.fit()
+    rest(qtbot, page)
+    for step in (Step.MODEL, Step.FIT):
+        page.show_step(step)
+        assert walk_page(study_window, monkeypatch) == {}, step
+    for view in page.sheet.findChildren(CalibrationView):
+        view.as_text.click()
+    assert walk_page(study_window, monkeypatch) == {}, "charts as text"
+    page.sheet.buttons[Ask.REPORT].click()
+    shorten(page)
+    assert walk_page(study_window, monkeypatch) == {}, "report"
+
+
+@SIZES
+def test_penalties_offered(
+    qtbot: QtBot,
+    study_window: MainWindow,
+    page: StudyPage,
+    files: StudyFiles,
+    monkeypatch: pytest.MonkeyPatch,
+    size: QSize,
+) -> None:
+    make_binary(files)
+    separate(files)
+    study_window.resize(size)
+    page.work.open_study(files.study)
+    rest(qtbot, page)
+    page.work.fit()
+    rest(qtbot, page)
+    assert walk_page(study_window, monkeypatch) == {}
+    page.sheet.buttons[Ask.RIDGE].click()
+    rest(qtbot, page)
+    assert walk_page(study_window, monkeypatch) == {}
 
 
 def test_in_the_dark(
