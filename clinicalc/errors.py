@@ -6,6 +6,7 @@
     ├── UnitError               a unit or quantity that the table does not have, or that does not convert
     ├── PrintRefused            a text that cannot be printed faithfully
     ├── DescriptionRefused      a description or fit from which no coefficient file can be made; all problems   exit 4
+    ├── ValidationRefused       a validation file, or people, from which no validation is made; all problems   exit 4
     ├── TableRefused            a table of people that cannot be read as one; all its problems   exit 4
     ├── ReconstructionRefused   a band that cannot be rebuilt from what was printed; all that is lacking    exit 4
     ├── FitRefused              a model that these people do not let be estimated: a code, the columns   exit 4
@@ -98,6 +99,21 @@ class DescriptionRefused(ClinicalcError):
         self.problems = problems
         count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
         super().__init__(f"no coefficient file is made from this ({count}); nothing was written.", where=name)
+
+    def __str__(self) -> str:
+        return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])
+
+
+class ValidationRefused(ClinicalcError):
+    """A validation file, or people, from which no validation is made, with every problem found."""
+
+    exit_status = 4
+
+    def __init__(self, name: str, problems: tuple[Problem, ...]) -> None:
+        self.name = name
+        self.problems = problems
+        count = "1 problem" if len(problems) == 1 else f"{len(problems)} problems"
+        super().__init__(f"no validation is made from this ({count}).", where=name)
 
     def __str__(self) -> str:
         return "\n".join([super().__str__(), *(str(problem) for problem in self.problems)])

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from clinicalc.replacement import OWNER_ONLY, READABLE, create_file, replace_file
+from clinicalc.replacement import OWNER_ONLY, READABLE, create_file, hold_alone, replace_file
 
 
 @pytest.mark.parametrize("mode", [OWNER_ONLY, READABLE])
@@ -96,3 +96,11 @@ def test_a_new_file_stopped_on_the_way_leaves_nothing(
     with pytest.raises(KeyboardInterrupt):
         create_file(tmp_path / "file", b"new")
     assert list(tmp_path.iterdir()) == []
+
+
+def test_an_open_file_is_held_by_one_alone_until_it_is_closed(tmp_path: Path) -> None:
+    with (tmp_path / "file").open("wb") as first, (tmp_path / "file").open("r+b") as second:
+        assert hold_alone(first.fileno())
+        assert not hold_alone(second.fileno())
+        first.close()
+        assert hold_alone(second.fileno())

@@ -24,5 +24,10 @@ def equation_cautions(model: Model, basis: Basis) -> Iterator[Finding]:
             f"{ages[0].field.label} {ages[0].shown}: the fit censored other events ({which}). Above"
             f" {COMPETING_AGE:g} years that makes the number higher than the share of people who have the event.",
         )
+    yield from say_own_cautions(model)
+
+
+def say_own_cautions(model: Model) -> Iterator[Finding]:
+    """What the file itself says with every number."""
     for caution in model.content.use.cautions:
         yield Finding(Grade.NOTE, FindingCode.MODEL, "", f"About this model: {caution}")

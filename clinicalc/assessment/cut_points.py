@@ -21,7 +21,7 @@ from clinicalc.units.conversion import conversion
 from clinicalc.units.unit import unit
 
 # the rounded-up end itself is no longer what was typed; far enough inside for comparing at 9 significant digits
-_INSIDE = 0.9999
+INSIDE = 0.9999
 
 Rows = NDArray[np.bool_]
 
@@ -91,7 +91,7 @@ def _shift(
     wide = {id: np.full(1 + 2 * len(near), column[0]) for id, column in columns.items()}
     moved = []
     for place, number in enumerate(near):
-        low, high = number.value - _INSIDE * number.half, number.value + _INSIDE * number.half
+        low, high = number.value - INSIDE * number.half, number.value + INSIDE * number.half
         wide[number.field.id][1 + 2 * place], wide[number.field.id][2 + 2 * place] = low, high
         moved.append((low, high))
     outside = np.zeros(1 + 2 * len(near), dtype=np.bool_)

@@ -103,7 +103,7 @@ def _said_beside(
     )
     imprecise = band and case.adjustment and case.adjustment.covariance is None
     near = find_near_cuts(case.model, case.equation, case.line, case.adjustment, case.columns, case.numbers, result_at)
-    return [*near, *equation_cautions(case.model, basis), *([_imprecise_recalibration()] if imprecise else [])]
+    return [*near, *equation_cautions(case.model, basis), *([say_imprecise_recalibration()] if imprecise else [])]
 
 
 def _not_computable() -> Finding:
@@ -111,6 +111,7 @@ def _not_computable() -> Finding:
     return Finding(Grade.STOP, FindingCode.NOT_COMPUTABLE, "", message)
 
 
-def _imprecise_recalibration() -> Finding:
+def say_imprecise_recalibration() -> Finding:
+    """The note that goes with a band in which the recalibration's own imprecision is missing."""
     message = "The imprecision of the recalibration is not in the band: its source prints none."
     return Finding(Grade.NOTE, FindingCode.RECALIBRATION_PRECISION, "recalibration", message)

@@ -4,6 +4,7 @@ from collections.abc import Callable
 from math import ceil, floor, log10
 
 import numpy as np
+from numpy.typing import NDArray
 
 from clinicalc.assessment.fields import OPEN, NumberField
 from clinicalc.assessment.numerals import plain_range
@@ -15,6 +16,9 @@ from clinicalc.units.unit import unit
 _DIGITS = 9
 """Significant digits to which a value and a limit are compared: a limit met exactly in another unit is met."""
 
+_DOUBTFUL = 1e-7
+"""Of a limit: far more than comparing at 9 digits can move a value, far less than two values typed apart."""
+
 _SHOWN_DIGITS = 3
 
 
@@ -23,6 +27,26 @@ def is_within(value: float, limits: Limits) -> bool:
     low, high = limits
     rounded = _round(value)
     return (low is None or rounded >= _round(low)) and (high is None or rounded <= _round(high))
+
+
+def within_column(column: Column, limits: Limits) -> NDArray[np.bool_]:
+    """Whether each value lies inside, both ends included, compared to 9 significant digits, shape (n,).
+
+    Rounding keeps the order of values, so only one that misses a limit by very little needs to be rounded.
+    """
+    low, high = limits
+    inside = np.ones(len(column), dtype=np.bool_)
+    doubtful = np.zeros(len(column), dtype=np.bool_)
+    with np.errstate(invalid="ignore"):
+        if low is not None:
+            inside &= column >= low
+            doubtful |= (column < low) & (column >= low - _DOUBTFUL * abs(low))
+        if high is not None:
+            inside &= column <= high
+            doubtful |= (column > high) & (column <= high + _DOUBTFUL * abs(high))
+    for row in np.flatnonzero(doubtful):
+        inside[row] = is_within(float(column[row]), limits)
+    return inside
 
 
 def clamp(value: float, limits: Limits) -> float:

@@ -2,6 +2,8 @@
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from importlib import import_module
+from typing import Any
 
 from clinicalc.assessment.fields import Field, NumberField, QuestionField, fields_of
 from clinicalc.coefficients.reader import ReadFile
@@ -59,6 +61,11 @@ class Model:
     def exclusions(self) -> tuple[QuestionField, ...]:
         """The questions that stop the model when answered yes."""
         return tuple(f for f in self.fields if isinstance(f, QuestionField) and f.excludes)
+
+    def score(self, frame: Any, **choices: Any) -> Any:
+        """The rows of a pandas frame with their numbers, bands and findings: `scoring.score_frame.score_frame`."""
+        # a room above this one, with pandas behind it: loaded by whoever scores a table, and by no start
+        return import_module("clinicalc.scoring.score_frame").score_frame(self, frame, **choices)
 
     def recalibrations_at(self, span: Span) -> tuple[Recalibration, ...]:
         """The recalibrations that the file offers for one horizon."""

@@ -47,6 +47,11 @@ def percent_in_full(probability: float) -> str:
     return f"{text}{'0' if text.endswith('.') else ''}{NARROW_SPACE}%"
 
 
+def percent_of(share: float) -> str:
+    """A share of people, or a mean risk, as a percentage with one decimal, "0.0 %" and "100.0 %" included."""
+    return f"{100.0 * share:.1f}{NARROW_SPACE}%"
+
+
 def percent_range(lower: float, upper: float, points: Sequence[float] = ()) -> str:
     """A range of probabilities, the percent sign once where both ends are plain figures.
 

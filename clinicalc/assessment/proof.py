@@ -22,9 +22,9 @@ from clinicalc.errors import CoefficientFileRefused, Problem
 _SLACK = 1e-12
 
 
-def load_model(path: Path) -> Model:
+def load_model(path: Path | str) -> Model:
     """The proved model of the file at `path`. Raises CoefficientFileRefused with every problem found."""
-    return prove_model(read_file(path))
+    return prove_model(read_file(Path(path)))
 
 
 def load_model_bytes(data: bytes, name: str) -> Model:

@@ -12,8 +12,8 @@ RARE = 0.01
 """Combinations at least so far out are met in fewer than this share of the people described."""
 
 _RANGE_CODES = frozenset({FindingCode.UNUSUAL, FindingCode.OUTSIDE_DERIVATION})
-_FEWEST = 2
-_WORTH_NAMING = 0.1
+FEWEST = 2
+WORTH_NAMING = 0.1
 """The share of the distance that the second value must carry to be named beside the first."""
 
 
@@ -25,14 +25,14 @@ def find_rare(people: People, numbers: Mapping[str, TakenNumber], findings: Sequ
     out of its range: that says more.
     """
     known = people.scaled({id: taken.value for id, taken in numbers.items()})
-    if len(known) < _FEWEST or any(f.code in _RANGE_CODES and f.field in known for f in findings):
+    if len(known) < FEWEST or any(f.code in _RANGE_CODES and f.field in known for f in findings):
         return None
     carried = people.carried_distance(known)
     whole = sum(carried)
     if chi_square_beyond(whole, len(known)) >= RARE:
         return None
     first, second, *_ = sorted(range(len(carried)), key=lambda place: -carried[place])
-    most = (first, second) if carried[second] >= _WORTH_NAMING * whole else (first,)
+    most = (first, second) if carried[second] >= WORTH_NAMING * whole else (first,)
     ids = list(known)
     named = [numbers[ids[place]] for place in sorted(most)]
     values = join_words([f"{taken.field.label} {taken.shown}" for taken in named])

@@ -1,4 +1,4 @@
-"""The commands: assess, report, inspect, package, fit, demo."""
+"""The commands: assess, report, inspect, package, fit, score, demo."""
 
 from collections.abc import Callable, Sequence
 from pathlib import Path
@@ -14,7 +14,10 @@ from clinicalc.cli.fitting import fit
 from clinicalc.cli.library import library
 from clinicalc.cli.outcome import ExitStatus, run_guarded
 from clinicalc.cli.packaging import package
+from clinicalc.cli.scoring import score
 from clinicalc.cli.signing import sign, trust
+from clinicalc.cli.updating import update
+from clinicalc.cli.validating import validate
 from clinicalc.errors import NotInUse
 from clinicalc.operations.bedside import assess_patient
 from clinicalc.operations.demonstration import DemoCase, demo_case
@@ -120,7 +123,10 @@ def inspect(file: str) -> int:
 
 clinicalc.add_command(package)
 clinicalc.add_command(fit)
+clinicalc.add_command(validate)
+clinicalc.add_command(update)
 clinicalc.add_command(library)
+clinicalc.add_command(score)
 clinicalc.add_command(sign)
 clinicalc.add_command(trust)
 

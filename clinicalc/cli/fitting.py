@@ -3,7 +3,6 @@
 import json
 import shlex
 from collections.abc import Iterator
-from contextlib import contextmanager, nullcontext, suppress
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -12,11 +11,11 @@ import click
 
 from clinicalc.cli.outcome import ExitStatus
 from clinicalc.cli.passphrase import ask_passphrase, passphrase_option
+from clinicalc.cli.undone import undone_if_refused
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.operations.course import Course
 from clinicalc.operations.folding import fold
 from clinicalc.operations.inspection import count_examples
-from clinicalc.replacement import replace_file
 
 if TYPE_CHECKING:
     from clinicalc.cohort.checked import CheckedCohort
@@ -66,7 +65,7 @@ def fit(
         return _tell_checked(read.dictionary.file, cohort, as_json)
     fitted = fit_study(read, cohort, course)
     package = package_study(fitted, course, key)
-    with nullcontext() if report_place is None else _undone_if_refused(report_place):
+    with undone_if_refused(report_place):
         # first, because what cannot be printed is only found now, and then nothing is to be written
         if report_place is not None:
             _write_report(report_place, fitted, package, course, replace)
@@ -107,21 +106,6 @@ def _write_report(path: Path, fitted: "FittedStudy", package: "Package", course:
     from clinicalc.operations.study_prints import write_study_report
 
     write_study_report(path, fitted, package, course, replace=replace)
-
-
-@contextmanager
-def _undone_if_refused(report: Path) -> Iterator[None]:
-    """What stood at the report's place stands there again where the file that it tells of could not be written."""
-    before = report.read_bytes() if report.is_file() else None
-    try:
-        yield
-    except BaseException:
-        with suppress(OSError):
-            if before is None:
-                report.unlink(missing_ok=True)
-            elif report.read_bytes() != before:
-                replace_file(report, before)
-        raise
 
 
 def _open_key(key_file: Path, passphrase_file: str | None) -> "SigningKey":

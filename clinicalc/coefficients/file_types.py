@@ -4,11 +4,15 @@ from typing import Annotated
 
 from msgspec import Meta, Struct
 
-Text = Annotated[str, Meta(min_length=1, max_length=4000)]
+LONGEST_TEXT = 4000
+"""Letters of a text of the file."""
+
+Text = Annotated[str, Meta(min_length=1, max_length=LONGEST_TEXT)]
 Label = Annotated[str, Meta(min_length=1, max_length=120)]
 Id = Annotated[str, Meta(pattern=r"^[a-z][a-z0-9_-]{0,63}$")]
 ModelId = Annotated[str, Meta(pattern=r"^[a-z][a-z0-9-]{0,63}$")]
 Version = Annotated[str, Meta(pattern=r"^[0-9]{1,6}\.[0-9]{1,6}\.[0-9]{1,6}$")]
+Fingerprint = Annotated[str, Meta(pattern=r"^[0-9a-f]{64}$")]
 Day = Annotated[str, Meta(pattern=r"^[0-9]{4}-[0-9]{2}-[0-9]{2}$")]
 Probability = Annotated[float, Meta(ge=0, le=1)]
 Level = Annotated[float, Meta(gt=0, lt=1)]

@@ -4,7 +4,7 @@ from typing import Literal
 
 from msgspec import UNSET, UnsetType, field
 
-from clinicalc.coefficients.file_types import Count, FileStruct, Label, Text
+from clinicalc.coefficients.file_types import Count, FileStruct, Fingerprint, Label, ModelId, Text, Version
 
 
 class Derivation(FileStruct, frozen=True):
@@ -50,3 +50,28 @@ class Use(FileStruct, frozen=True):
     not_used: tuple[Text, ...]
     cautions: tuple[Text, ...]
     plain: Plain
+
+
+class AncestryCohort(FileStruct, frozen=True):
+    """The people to whom an earlier version was updated: who they were in words, and how many."""
+
+    words: Text
+    people: Count
+    events: Count | UnsetType = UNSET
+    from_: Text | UnsetType = field(default=UNSET, name="from")
+    to: Text | UnsetType = UNSET
+
+
+class Ancestry(FileStruct, frozen=True):
+    """The version that this one was updated from, by its fingerprint, and how; `figures` are sentences.
+
+    Whatever the parent itself came from stands in the parent.
+    """
+
+    fingerprint: Fingerprint
+    id: ModelId
+    version: Version
+    title: Label
+    cohort: AncestryCohort
+    method: Literal["intercept", "intercept_slope", "refit", "two_scale"]
+    figures: tuple[Text, ...]

@@ -45,6 +45,8 @@ from clinicalc.coefficients.file_types import (
 )
 from clinicalc.coefficients.population import Population, PopulationAnswer, PopulationChoice, PopulationNumber
 from clinicalc.coefficients.provenance import (
+    Ancestry,
+    AncestryCohort,
     Derivation,
     Plain,
     Source,
@@ -66,6 +68,8 @@ from clinicalc.coefficients.questions import (
 
 __all__ = [
     "FORMAT",
+    "Ancestry",
+    "AncestryCohort",
     "AtCentre",
     "Choice",
     "ChoicePredictor",
@@ -200,6 +204,7 @@ class ModelContent(FileStruct, frozen=True):
     worked_examples: Annotated[tuple[WorkedExample, ...], Meta(min_length=1, max_length=1000)]
     population: Population | None
     documentation: tuple[Documentation, ...]
+    ancestry: Ancestry | UnsetType = UNSET
 
 
 class Signature(FileStruct, frozen=True):

@@ -24,6 +24,11 @@ _PATTERN_WORDS = {
 }
 
 
+_SPANS = {"year": "a", "years": "a", "y": "a", "month": "mo", "months": "mo", "week": "wk", "weeks": "wk"}
+_SPANS |= {"day": "d", "days": "d"}
+"""What units of time are called by people, and their codes."""
+
+
 def find_shape_problems(parsed: object, kind: type[FileStruct] = CoefficientFile) -> Iterator[Problem]:
     """Every place where the parsed value does not have the shape of a coefficient file (or of another struct)."""
     return _walk(parsed, _shape_of(kind), "")
@@ -148,7 +153,7 @@ def _check_literal(value: object, shape: inspect.LiteralType, path: str) -> Iter
         must = (
             f"must be {quoted(words[0])}." if len(words) == 1 else f"is not one of {listed(map(quoted, words), 'or')}."
         )
-        hint = suggest(value, words) if len(words) > 1 else ""
+        hint = suggest(_SPANS.get(value.casefold(), value), words) if len(words) > 1 else ""
         yield Problem(path, f"{quoted(value)} {must}{hint if 'Did you' in hint else ''}")
 
 

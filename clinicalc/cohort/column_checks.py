@@ -32,6 +32,6 @@ def check_values(raw: RawColumn, label: str, values: Numbers, missing: Mask, lin
     if count:
         many = count >= MANY_MISSING * people
         said = f"{named}: missing in {count:,} of {people:,} lines ({share_words(count, people)})."
-        said += " A fit of complete cases leaves so many out, and holds only if they differ in nothing else." * many
+        said += " Complete cases leave so many out, and serve only if they differ in nothing else." * many
         gravity = Grade.CAUTION if many else Grade.NOTE
         yield DataProblem(gravity, raw.name, ProblemCode.MISSING, count, see(missing, lines).lines, said)

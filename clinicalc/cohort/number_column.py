@@ -152,7 +152,7 @@ def _tell_unusual(column: str, numbers: Numbers, where: Mask, measure: Measure, 
     many = seen.count > _MANY_UNUSUAL * int(np.isfinite(numbers).sum())
     sentence = (
         f"{name_column(column, measure.field.label)}: {quoted(float(numbers[seen.first]))} lies outside the usual "
-        f"range {measure.limit_words(measure.field.usual)}, {seen.words}. Such values carry far in a fit: look at them."
+        f"range {measure.limit_words(measure.field.usual)}, {seen.words}. Such values carry far: look at them."
     )
     gravity = Grade.CAUTION if many else Grade.NOTE
     return DataProblem(gravity, column, ProblemCode.UNUSUAL, seen.count, seen.lines, sentence)

@@ -35,7 +35,7 @@ def take_states(raw: RawColumn, plan: OutcomePlan, lines: Lines) -> tuple[Number
 def tell_missing_outcome(column: str, count: int, of: int, lines: tuple[int, ...]) -> DataProblem:
     """What is said where the outcome of some people is not known."""
     said = f"{name_column(column)} says nothing in {count:,} of {of:,} lines ({share_words(count, of)}): without an"
-    said += " outcome these people cannot be used in a fit."
+    said += " outcome these people cannot be used."
     gravity = Grade.CAUTION if count >= _MANY_MISSING * of else Grade.NOTE
     return DataProblem(gravity, column, ProblemCode.OUTCOME_MISSING, count, lines, said)
 
@@ -85,7 +85,7 @@ def _find_absent(column: str, plan: OutcomePlan, matched: Matched) -> Iterator[D
     elif not (known == 1.0).any():
         texts = " or ".join(quoted(text) for text in plan.event or _EVENT_WORDS[:1])
         said = f"{named}: nobody had the event ({texts} stands in no line); it holds {count_words(matched.found)}."
-        said += " Without events nothing can be fitted: check which text means the event."
+        said += " Without events nothing can be worked out: check which text means the event."
         yield DataProblem(Grade.STOP, column, ProblemCode.NO_EVENTS, 0, (), said)
     elif plan.kind is OutcomeKind.BINARY and not (known == 0.0).any():
         said = f"{named}: everybody had the event (100{NARROW_SPACE}%), so that nothing tells people apart."

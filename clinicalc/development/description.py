@@ -1,11 +1,8 @@
 """The description of a model in TOML: the coefficient file's own fields, and tables for what comes from elsewhere."""
 
-import json
 import os
-import tomllib
 from collections.abc import Mapping
 from dataclasses import dataclass
-from datetime import date, datetime, time
 from decimal import Decimal
 from pathlib import Path
 from typing import Annotated, Literal, TypeVar
@@ -14,10 +11,8 @@ import msgspec
 from msgspec import UNSET, Meta, UnsetType
 
 from clinicalc.coefficients.file_types import Count, FileStruct, Id, Label, Level, Positive, Text
-from clinicalc.coefficients.pointers import point
 from clinicalc.coefficients.shape import find_shape_problems
-from clinicalc.coefficients.strict_json import parse
-from clinicalc.development.tables import Fault, read_text
+from clinicalc.coefficients.toml_reading import Fault, parse_toml, read_text
 from clinicalc.errors import DescriptionRefused, Problem
 
 OPEN_END = "open"
@@ -159,20 +154,10 @@ def take_description(text: str, name: str, folder: Path) -> Description:
 
 def parse_description(text: str, name: str) -> tuple[dict[str, object], tuple[Problem, ...]]:
     """The tree of a text in TOML, with JSON's types, and what in it has no such type. Raises DescriptionRefused."""
-    try:
-        table = tomllib.loads(text.replace("\r\n", "\n"))
-    except tomllib.TOMLDecodeError as fault:
-        message = f"this is not TOML: {fault}. Texts stand between quotation marks, and each [table] once."
-        raise DescriptionRefused(name, (Problem("", message),)) from None
-    except (RecursionError, ValueError):
-        raise DescriptionRefused(name, (Problem("", "this is not a description: it is nested too deep."),)) from None
-    problems: list[Problem] = []
-    tree = _with_json_types(table, "", problems)
-    parsed = parse(json.dumps(tree, ensure_ascii=False).encode("utf-8", "surrogatepass"))
-    problems += parsed.problems
-    if not isinstance(parsed.value, dict):
-        raise DescriptionRefused(name, tuple(problems))
-    return parsed.value, tuple(problems)
+    parsed = parse_toml(text, "a description")
+    if parsed.tree is None:
+        raise DescriptionRefused(name, parsed.problems)
+    return parsed.tree, parsed.problems
 
 
 def describe(tree: Mapping[str, object], name: str, folder: Path, said: tuple[Problem, ...] = ()) -> Description:
@@ -245,15 +230,3 @@ def _spell_value(value: object) -> object:
     if isinstance(value, bool):
         return "yes" if value else "no"
     return format(Decimal(repr(value)), "f") if isinstance(value, int | float) else value
-
-
-def _with_json_types(value: object, path: str, problems: list[Problem]) -> object:
-    """The value without TOML's dates, which stand in a coefficient file as texts."""
-    if isinstance(value, dict):
-        return {key: _with_json_types(item, point(path, key), problems) for key, item in value.items()}
-    if isinstance(value, list):
-        return [_with_json_types(item, point(path, index), problems) for index, item in enumerate(value)]
-    if isinstance(value, date | datetime | time):
-        problems.append(Problem(path, f'this is a date of TOML; write it as a text: "{value}".'))
-        return str(value)
-    return value

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Sequence
 
 from clinicalc.assessment.numerals import NARROW_SPACE, plain
+from clinicalc.coefficients.file_types import LONGEST_TEXT
 from clinicalc.coefficients.pointers import visible
 from clinicalc.development.fit_method_words import (
     percent,
@@ -18,8 +19,6 @@ from clinicalc.estimation.sample_size import ASSUMED_SHARE, R2Origin
 
 Texts = tuple[str, ...]
 """One text for each item that is needed, none where there is nothing to say."""
-
-_LONGEST = 4000  # of a text in a coefficient file
 
 
 def word_people(figures: Sequence[StatedFit]) -> Texts:
@@ -88,7 +87,7 @@ def _join(figures: Sequence[StatedFit], word: Callable[[StatedFit], str]) -> Tex
     texts: list[str] = [""]
     for equation, text in said:
         named = f"{visible(equation)}: {text or 'not stated.'}"
-        if len(texts[-1]) + len(named) >= _LONGEST:
+        if len(texts[-1]) + len(named) >= LONGEST_TEXT:
             texts.append("")
         texts[-1] = f"{texts[-1]} {named}".lstrip()
     return tuple(text for text in texts if text)

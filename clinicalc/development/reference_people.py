@@ -13,13 +13,13 @@ from msgspec import UnsetType
 from numpy.typing import NDArray
 
 from clinicalc.assessment.fields import NumberField, QuestionField
-from clinicalc.assessment.limits import giving_limits
+from clinicalc.assessment.limits import giving_limits, within_column
 from clinicalc.assessment.model import Model, ModelEquation
 from clinicalc.assessment.worked_out import work_out
 from clinicalc.coefficients.described import list_described
 from clinicalc.coefficients.pointers import listed, quoted
 from clinicalc.coefficients.rules.matrices import judge_matrix
-from clinicalc.coefficients.schema import Limits, Population
+from clinicalc.coefficients.schema import Population
 from clinicalc.covariates.transforms import Column, round_significant
 from clinicalc.errors import Problem, ReconstructionRefused, UnitError
 from clinicalc.units.conversion import conversion
@@ -147,7 +147,7 @@ def keep_people(model: Model, equation: ModelEquation, columns: Mapping[str, Col
     for id, column in whole.items():
         found = model.by_id.get(id)
         if isinstance(found, NumberField):
-            inside &= _within(column, giving_limits(found))
+            inside &= np.isfinite(column) & within_column(column, giving_limits(found))
     return inside & _agreeing(model, whole, size)
 
 
@@ -200,17 +200,6 @@ def _with_worked_out(model: Model, equation: ModelEquation, columns: Mapping[str
             if column is not None:
                 whole[field.id] = column
     return whole
-
-
-def _within(column: Column, limits: Limits) -> Mask:
-    rounded = round_significant(column)
-    low, high = limits
-    inside = np.isfinite(column)
-    if low is not None:
-        inside &= rounded >= round_significant(np.array([low]))[0]
-    if high is not None:
-        inside &= rounded <= round_significant(np.array([high]))[0]
-    return inside
 
 
 def _agreeing(model: Model, columns: Mapping[str, Column], size: int) -> Mask:

@@ -12,19 +12,17 @@ from msgspec import UnsetType
 from clinicalc.coefficients.pointers import point, quoted, suggest
 from clinicalc.coefficients.schema import ModelContent
 from clinicalc.coefficients.shape import find_shape_problems
+from clinicalc.cohort.cohort_tables import BinaryTable, CohortTable, ColumnTable
 from clinicalc.cohort.dictionary import DataDictionary
+from clinicalc.cohort.dictionary_tables import find_cohort_problems, make_dictionary
 from clinicalc.development.description import Description, describe, parse_description
 from clinicalc.development.fit import FitKind
 from clinicalc.development.package import check_before_fits
 from clinicalc.development.places import spell_place
-from clinicalc.development.study_dictionary import find_cohort_problems, make_dictionary
 from clinicalc.development.study_equations import find_equation_problems
 from clinicalc.development.study_strata import FitPlan, find_strata_problems, spread_strata
 from clinicalc.development.study_tables import (
-    BinaryTable,
     BootstrapTable,
-    CohortTable,
-    ColumnTable,
     EstimateTable,
     ImputationTable,
     StudyTables,

@@ -48,10 +48,12 @@ def _say_filled(fitted: FittedStudy) -> Iterator[str]:
     for one in imputed:
         if one.imputed is not None:
             filled.update(one.imputed.filled)
-    people = sum(one.people for one in imputed)
+    people = {
+        id: sum(one.people for one in imputed if id in fitted.people[one.id].columns) for id in filled
+    }  # a value counts among those whose fit uses it
     labels = {predictor.id: predictor.label for predictor in fitted.model.content.predictors}
     named = [
-        f"{visible(labels.get(id, id))} ({percent(count / people)})" for id, count in filled.most_common() if count
+        f"{visible(labels.get(id, id))} ({percent(count / people[id])})" for id, count in filled.most_common() if count
     ]
     if not named:
         return

@@ -5,9 +5,10 @@ from collections.abc import Iterator, Mapping
 from msgspec import UNSET
 
 from clinicalc.coefficients.pointers import point, quoted, suggest
+from clinicalc.cohort.cohort_tables import CohortTable, TimeToEventTable, spell_cells
 from clinicalc.development.filling import find_said_twice
 from clinicalc.development.fit import FitKind
-from clinicalc.development.study_tables import CohortTable, EstimateTable, TimeToEventTable, spell_cells
+from clinicalc.development.study_tables import EstimateTable
 from clinicalc.development.study_terms import Tree, parts
 from clinicalc.errors import Problem
 

@@ -16,7 +16,7 @@ MOST_NAMED = 3
 
 _REASONS: Mapping[str, str] = {
     FitFault.SEPARATED: "separation",
-    FitFault.CONSTANT: "an answer that nobody drawn has",
+    FitFault.CONSTANT: "one and the same value",
     FitFault.COLLINEAR: "terms that follow from one another",
     FitFault.NO_EVENTS: "no event",
     FitFault.NO_OTHERS: "nobody without the event",

@@ -6,54 +6,11 @@ Beside them the two shorthands of terms, which are written out before anything e
 
 from typing import Annotated, Literal
 
-from msgspec import UNSET, Meta, UnsetType, field
+from msgspec import UNSET, Meta, UnsetType
 
 from clinicalc.coefficients.equations import Step
 from clinicalc.coefficients.file_types import FileStruct, Id, Text
-
-Cells = Text | float | tuple[Text | float, ...]
-"""What stands in cells of the file: one text or number, or several that mean the same."""
-
-
-class TimeToEventTable(FileStruct, frozen=True, tag_field="kind", tag="time_to_event"):
-    """How long each person was followed and what ended it: `time` in `unit`, or the dates `start` and `end`."""
-
-    status: Text
-    event: Cells
-    time: Text | UnsetType = UNSET
-    unit: Literal["a", "mo", "wk", "d"] | UnsetType = UNSET
-    start: Text | UnsetType = UNSET
-    end: Text | UnsetType = UNSET
-    born: Text | UnsetType = UNSET
-    censored: Cells | UnsetType = UNSET
-    competing: Cells | UnsetType = UNSET
-    entry: Text | UnsetType = UNSET
-
-
-class BinaryTable(FileStruct, frozen=True, tag_field="kind", tag="binary"):
-    """An outcome that is known of everybody."""
-
-    column: Text
-    event: Cells
-    no_event: Cells | UnsetType = UNSET
-
-
-class ColumnTable(FileStruct, frozen=True):
-    """Where a predictor stands in the file; what is left out is the predictor's own id, unit and answers."""
-
-    column: Text | UnsetType = UNSET
-    unit: Text | UnsetType = UNSET
-    missing: Cells | UnsetType = UNSET
-    levels: dict[Id, Cells] | UnsetType = UNSET
-
-
-class CohortTable(FileStruct, frozen=True):
-    """The file of people, from the study's folder, and what its columns mean."""
-
-    file: Text
-    outcome: TimeToEventTable | BinaryTable
-    person: Text | UnsetType = UNSET
-    columns: dict[Id, ColumnTable] = field(default_factory=dict)
+from clinicalc.cohort.cohort_tables import CohortTable
 
 
 class EstimateTable(FileStruct, frozen=True):
@@ -128,11 +85,3 @@ class CategoriesOf(FileStruct, frozen=True):
     def name(self) -> str:
         """What the names of its terms begin with."""
         return self.categories_of if isinstance(self.id, UnsetType) else self.id
-
-
-def spell_cells(cells: Cells | UnsetType) -> tuple[str, ...]:
-    """The texts of cells, numbers as they are written: 1 and 1.0 are "1"."""
-    if isinstance(cells, UnsetType):
-        return ()
-    found = cells if isinstance(cells, tuple) else (cells,)
-    return tuple(item if isinstance(item, str) else format(item, ".15g") for item in found)

@@ -2,29 +2,29 @@
 
 import csv
 import io
-import os
 import re
-import stat
 from dataclasses import dataclass
-from pathlib import Path
 
 import numpy as np
 from numpy.typing import NDArray
 
 from clinicalc.coefficients.pointers import quoted
 from clinicalc.coefficients.strict_json import LARGEST, parse
+from clinicalc.coefficients.toml_reading import Fault, read_text
+
+__all__ = [
+    "Fault",
+    "NumberTable",
+    "count_digits",
+    "read_json",
+    "read_number",
+    "read_number_table",
+    "read_text",
+]
 
 Array = NDArray[np.float64]
 
-MOST_BYTES = 4_000_000
 _NUMBER = re.compile(r"[-+]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][-+]?[0-9]+)?")
-
-
-@dataclass(frozen=True, slots=True)
-class Fault:
-    """Why a table cannot be taken: a sentence for the person who wrote it."""
-
-    message: str
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -41,25 +41,6 @@ class NumberTable:
     def column(self, name: str) -> Array:
         """One column by its name, shape (rows,)."""
         return self.values[:, self.columns.index(name)]
-
-
-def read_text(path: Path) -> str | Fault:
-    """The text of a regular file of at most 4 MB, a byte order mark left out."""
-    try:
-        if path.exists() and not stat.S_ISREG(path.stat().st_mode):  # a pipe would be waited for
-            return Fault("this is not a file.")
-        with path.open("rb") as stream:
-            data = stream.read(MOST_BYTES + 1)
-    except FileNotFoundError:
-        return Fault(f"there is no such file in the folder {os.fspath(path.parent)}.")
-    except (OSError, ValueError) as fault:
-        return Fault(f"the file could not be read: {getattr(fault, 'strerror', None) or 'no file can have this name'}.")
-    if len(data) > MOST_BYTES:
-        return Fault("the file is larger than 4 MB; no table of a fit is.")
-    try:
-        return data.decode("utf-8-sig")
-    except UnicodeDecodeError as fault:
-        return Fault(f"byte {fault.start + 1} is not UTF-8 text. Save it as UTF-8.")
 
 
 def read_number_table(text: str) -> NumberTable | Fault:

@@ -86,6 +86,35 @@ class CalibrationIndices:
     emax: float
 
 
+@dataclass(frozen=True, slots=True)
+class Limits:
+    """Where a figure lies with 95 %."""
+
+    lower: float
+    upper: float
+
+    def holding(self, value: float) -> "Limits":
+        """The same, widened where a value lies outside."""
+        return Limits(min(self.lower, value), max(self.upper, value))
+
+
+@dataclass(frozen=True, slots=True)
+class IndexLimits:
+    """Limits of each index: percentiles over so many `draws` of the curve, widened to hold it; predictions as known.
+
+    No index is below 0, and none is 0 even where the predictions are right, so that limits never hold 0. `chance` is
+    the ICI of such predictions in as many people on average, `chance_bound` what it exceeds in 5 of 100 such samples.
+    """
+
+    ici: Limits
+    e50: Limits
+    e90: Limits
+    emax: Limits
+    draws: int
+    chance: float
+    chance_bound: float
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class PredictionSpread:
     """How predictions lie: all of them ascending, shape (n,).
@@ -112,7 +141,7 @@ class Calibration:
     """Predicted risks against what happened, by `horizon` (in the unit of the times; None for a binary outcome).
 
     `overall` is everybody as one group, `groups` are tenths of the predictions or fewer where they tie. `curve` and
-    `indices` are both there or both None, and then `no_curve` says why.
+    `indices` are both there or both None, and then `no_curve` says why. `limits` are of the indices, where asked for.
     """
 
     horizon: float | None
@@ -123,3 +152,4 @@ class Calibration:
     curve: SmoothCurve | None
     indices: CalibrationIndices | None
     no_curve: NoCurve | None = None
+    limits: IndexLimits | None = None

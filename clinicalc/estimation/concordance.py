@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from clinicalc.estimation.clusters import sum_clusters
 from clinicalc.estimation.faults import FitFault, refuse_fit
-from clinicalc.estimation.ranks import RankCounter
+from clinicalc.estimation.ranks import RankCounter, rank
 
 Array = NDArray[np.float64]
 Codes = NDArray[np.int64]
@@ -42,20 +42,28 @@ class _PairCounts:
 
 
 def find_concordance(
-    times: Array, events: Array, predictions: Array, *, strata: Codes | None = None, cluster: Codes | None = None
+    times: Array,
+    events: Array,
+    predictions: Array,
+    *,
+    strata: Codes | None = None,
+    cluster: Codes | None = None,
+    ranks: Places | None = None,
 ) -> Concordance:
     """C of predictions that are higher for those with earlier events; people of different strata are not compared.
 
-    With `cluster` the standard error sums what each cluster adds. Times and predictions are compared exactly. Raises
-    FitRefused where a value is not finite, or no two people can be compared.
+    With `cluster` the standard error sums what each cluster adds. `ranks` are those of the predictions, where they have
+    been found already. Times and predictions are compared exactly. Raises FitRefused where a value is not finite, or no
+    two people can be compared.
     """
     if not (np.isfinite(times).all() and np.isfinite(predictions).all()):
         raise refuse_fit(FitFault.NOT_FINITE)
     codes = np.zeros(len(times), dtype=np.int64) if strata is None else strata
+    ranks = rank(predictions) if ranks is None else ranks
     counts = np.zeros((3, len(times)), dtype=np.int64)
     order = np.argsort(codes, kind="stable")
     for rows in np.split(order, np.flatnonzero(np.diff(codes[order])) + 1):
-        found = _count_pairs(times[rows], events[rows], predictions[rows])
+        found = _count_pairs(times[rows], events[rows], ranks[rows])
         counts[:, rows] = found.concordant, found.discordant, found.tied
     concordant, discordant, tied = (int(each) // 2 for each in counts.sum(axis=1))
     pairs = concordant + discordant + tied
@@ -68,11 +76,10 @@ def find_concordance(
     return Concordance(c, float(np.sqrt((influence * influence).sum())), concordant, discordant, tied)
 
 
-def _count_pairs(times: Array, events: Array, predictions: Array) -> _PairCounts:
+def _count_pairs(times: Array, events: Array, ranks: Places) -> _PairCounts:
     """The pairs of each person of one stratum, in the order given."""
     dead = events == 1
     order = np.lexsort((~dead, times))
-    _, ranks = np.unique(predictions, return_inverse=True)
     ranks, dead, times = ranks[order], dead[order], times[order]
     places = np.flatnonzero(dead)
     # as the earlier of a pair: an event against everybody after the events of its own time

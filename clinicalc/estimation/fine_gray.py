@@ -27,7 +27,12 @@ from clinicalc.estimation.cox import SCORE_SLACK, State, Stratum, climb, look
 from clinicalc.estimation.cox_residuals import residuals_over
 from clinicalc.estimation.faults import FitFault, refuse_fit
 from clinicalc.estimation.hazard_sums import RunningSums, Ties, score_over, sums_over
-from clinicalc.estimation.subdistribution import CensoringTies, CompetingCohort, find_subdistribution_sets
+from clinicalc.estimation.subdistribution import (
+    CensoringTies,
+    CompetingCohort,
+    SubdistributionSets,
+    find_subdistribution_sets,
+)
 
 __all__ = [
     "CensoringTies",
@@ -68,18 +73,20 @@ def fit_fine_gray(
     censoring: CensoringTies = CensoringTies.EVENT_FIRST,
     start: Array | None = None,
     tol: float = 1e-16,
+    sets: SubdistributionSets | None = None,
 ) -> FineGrayFit:
     """The fit; raises FitRefused (code of FitFault, places of the columns).
 
     `start` are coefficients (p,) from which the steps begin, such as those of a like fit; the answer does not depend on
     them. Weights may be counts of rows drawn again, but not 0: leave such rows out. Under Breslow's rule that is the
-    same as rows repeated; under Efron's it is not. Without a competing event it is the Cox fit.
+    same as rows repeated; under Efron's it is not. Without a competing event it is the Cox fit. `sets` are those of
+    these people and rules, who must then stand in the order of time.
     """
     events = _check_people(cohort)
     columns = scale_columns(cohort.x)
     if len(columns.centre) > events:
         raise refuse_fit(FitFault.MORE_COLUMNS_THAN_EVENTS)
-    part = _sort(cohort, columns, ties, censoring)
+    part = _sort(cohort, columns, ties, censoring, sets)
     null = look([part], np.zeros(len(columns.centre)))
     refuse_flat(null.information, len(cohort.times))
     found, steps = climb([part], null, tol, _begin(part, start, columns))
@@ -106,12 +113,14 @@ def robust_subdistribution_covariance(
     ties: Ties = Ties.BRESLOW,
     censoring: CensoringTies = CensoringTies.EVENT_FIRST,
     cluster: Codes | None = None,
+    sets: SubdistributionSets | None = None,
 ) -> Array:
     """The covariance (p, p) of Lin & Wei; with `cluster`, a code for each person, residuals are first summed.
 
-    No correction for few clusters, as R's coxph has none. Refuses fewer than two clusters.
+    No correction for few clusters, as R's coxph has none. Refuses fewer than two clusters. `sets` are those of these
+    people and rules, where they have been found already.
     """
-    sets = find_subdistribution_sets(cohort, ties, censoring)
+    sets = find_subdistribution_sets(cohort, ties, censoring) if sets is None else sets
     rows = residuals_over(sets, cohort.as_cohort, fit.coefficients)
     return make_sandwich(fit.inverse_information, rows if cluster is None else sum_clusters(rows, cluster))
 
@@ -123,12 +132,15 @@ def sum_subdistribution(
     *,
     ties: Ties = Ties.BRESLOW,
     censoring: CensoringTies = CensoringTies.EVENT_FIRST,
+    sets: SubdistributionSets | None = None,
 ) -> tuple[RunningSums, ...]:
     """H, A and q of the subdistribution at each of the times `at`: the incidence at x = 0 is 1 - exp(-H).
 
-    As R's survfit of coxph has them: the sums of a Cox fit over those who count.
+    As R's survfit of coxph has them: the sums of a Cox fit over those who count. `sets` are those of these people and
+    rules, where they have been found already.
     """
-    return sums_over(find_subdistribution_sets(cohort, ties, censoring), cohort.as_cohort, coefficients, at)
+    sets = find_subdistribution_sets(cohort, ties, censoring) if sets is None else sets
+    return sums_over(sets, cohort.as_cohort, coefficients, at)
 
 
 def _check_people(cohort: CompetingCohort) -> int:
@@ -150,7 +162,13 @@ def _check_people(cohort: CompetingCohort) -> int:
     return events
 
 
-def _sort(cohort: CompetingCohort, columns: ScaledColumns, ties: Ties, censoring: CensoringTies) -> Stratum:
+def _sort(
+    cohort: CompetingCohort,
+    columns: ScaledColumns,
+    ties: Ties,
+    censoring: CensoringTies,
+    sets: SubdistributionSets | None,
+) -> Stratum:
     """The people with scaled columns, in the order of time."""
     rows = np.argsort(cohort.times, kind="stable")
     z = np.empty((len(rows), len(columns.centre)), order="F")
@@ -164,7 +182,7 @@ def _sort(cohort: CompetingCohort, columns: ScaledColumns, ties: Ties, censoring
         None if cohort.offset is None else cohort.offset[rows],
     )
     weights = np.ones(len(rows)) if there.weights is None else there.weights
-    sets = find_subdistribution_sets(there, ties, censoring)
+    sets = find_subdistribution_sets(there, ties, censoring) if sets is None else sets
     return Stratum(there.as_cohort, sets, weights, weights * (there.status == 1))
 
 

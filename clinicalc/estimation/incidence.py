@@ -13,6 +13,8 @@ from statistics import NormalDist
 import numpy as np
 from numpy.typing import NDArray
 
+from clinicalc.estimation.ranks import part_values
+
 Array = NDArray[np.float64]
 Places = NDArray[np.intp]
 
@@ -131,7 +133,7 @@ def _followed(times: Array, entry: Array | None, time: float) -> int:
 
 def _count(times: Array, status: Array, entry: Array | None) -> _Counts:
     happened = status != 0
-    when, place = np.unique(times[happened], return_inverse=True)
+    when, place = part_values(times[happened])
     at_risk = len(times) - np.searchsorted(np.sort(times), when, side="left")
     if entry is not None:
         at_risk -= len(times) - np.searchsorted(np.sort(entry), when, side="left")

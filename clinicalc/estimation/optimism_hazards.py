@@ -14,7 +14,6 @@ from numpy.typing import NDArray
 
 from clinicalc.errors import FitRefused
 from clinicalc.estimation.bootstrap_hazards import HazardRefits, pick_people, ready_hazards
-from clinicalc.estimation.censored_brier import find_brier, weigh_watched
 from clinicalc.estimation.drawing import repeat_rows
 from clinicalc.estimation.drawn_concordance import ComparedStratum, find_drawn_c, order_people
 from clinicalc.estimation.drawn_times import Codes, SortedStratum, sort_strata
@@ -23,7 +22,9 @@ from clinicalc.estimation.fine_gray import fit_fine_gray
 from clinicalc.estimation.hazard_views import CompetingView, Curve, HazardView, pick_competing, view_drawn
 from clinicalc.estimation.optimism import Compared, Measures, Replicate, lose
 from clinicalc.estimation.people_at_risk import Cohort, Ties
+from clinicalc.estimation.squared_errors import find_brier
 from clinicalc.estimation.subdistribution import CensoringTies, CompetingCohort
+from clinicalc.estimation.watching_weights import know_times
 
 Array = NDArray[np.float64]
 
@@ -50,18 +51,18 @@ class Scene:
             gathered[1, own] = curve.at(np.minimum(self.times[own], self.horizon))
             if self.entry is not None:
                 gathered[1, own] -= curve.at(np.minimum(self.entry[own], self.horizon))
-        happened = ((self.status == 1) & (self.times <= self.horizon)).astype(np.float64)
         intercept = None
         if not self.competing:
             expected = float((counts * gathered[1] * np.exp(lp)).sum())
-            seen = float((counts * happened).sum())
+            seen = float(counts[(self.status == 1) & (self.times <= self.horizon)].sum())
             if not (seen > 0 and 0 < expected < np.inf):
                 raise refuse_fit(FitFault.NO_EVENTS)
             intercept = float(np.log(seen / expected))
         if self.entry is not None:
             return Measures(None, slope, intercept, None)
-        weights = weigh_watched(self.times, self.status, self.horizon, counts)
-        brier = find_brier(weights, happened, -np.expm1(-gathered[0] * np.exp(lp)), float(counts.sum()))
+        rows = repeat_rows(counts)
+        known = know_times(self.times[rows], self.status[rows], self.horizon)
+        brier = find_brier(known, -np.expm1(-gathered[0] * np.exp(lp))[rows])
         return Measures(find_drawn_c(self.compared, lp, counts), slope, intercept, brier)
 
 

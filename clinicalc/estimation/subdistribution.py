@@ -13,6 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from clinicalc.estimation.people_at_risk import Cohort, Places, RiskSets, Ties, find_risk_sets
+from clinicalc.estimation.ranks import part_values
 
 Array = NDArray[np.float64]
 
@@ -91,11 +92,12 @@ def find_subdistribution_sets(cohort: CompetingCohort, ties: Ties, censoring: Ce
     order = np.argsort(cohort.times, kind="stable")
     waiting = order[cohort.status[order] == 2]
     since = cohort.times[waiting]
+    still, held = np.split(stay_uncensored(cohort, np.concatenate([sets.when, since]), censoring), [len(sets.when)])
     return SubdistributionSets(
         **{field.name: getattr(sets, field.name) for field in fields(RiskSets)},
-        still=stay_uncensored(cohort, sets.when, censoring),
+        still=still,
         waiting=waiting,
-        lent=1.0 / stay_uncensored(cohort, since, censoring),
+        lent=1.0 / held,
         joined=np.searchsorted(since, sets.when, side="left"),
     )
 
@@ -103,7 +105,7 @@ def find_subdistribution_sets(cohort: CompetingCohort, ties: Ties, censoring: Ce
 def stay_uncensored(cohort: CompetingCohort, at: Array, ties: CensoringTies) -> Array:
     """G just before each of the times `at`: Kaplan-Meier with the end of watching as the event, same shape."""
     weights = np.ones(len(cohort.times)) if cohort.weights is None else cohort.weights
-    when, place = np.unique(cohort.times, return_inverse=True)
+    when, place = part_values(cohort.times)
     ended = np.bincount(place, weights=weights * (cohort.status == 0), minlength=len(when))
     events = np.bincount(place, weights=weights * (cohort.status != 0), minlength=len(when))
     left = np.cumsum((ended + events)[::-1])[::-1]

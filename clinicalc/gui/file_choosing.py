@@ -24,11 +24,12 @@ class Wanted(Enum):
     CSV = ("Save the history for a spreadsheet", "CSV (*.csv)")
     PDF = ("Save the history", "PDF (*.pdf)")
     RECORD_PDF = ("Save the approval record", "PDF (*.pdf)")
-    STUDY = ("Open a study file", "Study files (*.toml)")
+    STUDY = ("Open a study or validation file", "Study and validation files (*.toml)")
     NEW_STUDY = ("Save the study file", "Study files (*.toml)")
     COHORT = ("Choose a file of people", "Tables (*.csv *.tsv *.parquet *.xlsx *.dta)")
     NEW_COEFFICIENT_FILE = ("Write the coefficient file", "Coefficient files (*.json)")
     REPORT_PDF = ("Save the report of the fit", "PDF (*.pdf)")
+    VALIDATION_PDF = ("Save the report of the validation", "PDF (*.pdf)")
     DIFFERENCE_PDF = ("Save the difference", "PDF (*.pdf)")
 
     @property

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from PySide6.QtWidgets import QStackedWidget
@@ -63,8 +64,9 @@ class OtherPages:
         if self._study is None:
             from clinicalc.gui.study.study_page import StudyPage
 
-            self._study = StudyPage(self._choices)
+            self._study = StudyPage(self._choices, lambda: self._window.preferences.settings.decision_points)
             self._study.trial_asked.connect(self._window.open_path)
+            self._study.install_asked.connect(self._look_at_new)
             self._stack.addWidget(self._study)
         return self._study
 
@@ -98,6 +100,11 @@ class OtherPages:
             self._study.leave()
         if self._settings is not None:
             self._settings.leave()
+
+    def _look_at_new(self, path: Path) -> None:
+        """A coefficient file that was written on the Study page, looked at as one that is to be installed."""
+        self._window.show_page(Page.MODELS)
+        self.models().look_at(path)
 
     def _in_use(self) -> Sequence[tuple[str, str]]:
         library = self._window.library

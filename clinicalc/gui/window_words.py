@@ -5,6 +5,8 @@ import copy
 from clinicalc.errors import ClinicalcError, CoefficientFileRefused
 
 _WORDS = (
+    # studies
+    ('Say model = "FILE.json" in it, or --model FILE.json.', 'Say model = "FILE.json" in it, and open it again.'),
     # deeds
     (
         "or trust the publisher first: clinicalc trust add.",

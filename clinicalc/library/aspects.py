@@ -28,6 +28,7 @@ class Aspect(StrEnum):
     CAUTIONS = "cautions"
     USE = "use"
     SOURCE = "source"
+    ANCESTRY = "ancestry"
     UNCONFIRMED = "unconfirmed figures"
     EXAMPLES = "worked examples"
     POPULATION = "population"
@@ -44,6 +45,7 @@ _LISTS = {
     "decision_points": Aspect.DECISION_POINTS,
     "use": Aspect.USE,
     "source": Aspect.SOURCE,
+    "ancestry": Aspect.ANCESTRY,
     "unconfirmed": Aspect.UNCONFIRMED,
     "worked_examples": Aspect.EXAMPLES,
     "population": Aspect.POPULATION,
@@ -83,6 +85,8 @@ _BY_TYPE: dict[str, dict[str, Aspect]] = {
 }
 
 _WORDS: dict[str, str] = {
+    "ModelContent.ancestry": "updated from",
+    "AncestryCohort.words": "who they were",
     "ModelContent.predictors": "questions",
     "ModelContent.derived": "values worked out",
     "ModelContent.recalibration_required": "no number without a recalibration",

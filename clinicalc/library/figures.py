@@ -101,6 +101,7 @@ _PAGE_ORDER = (
     "decision_points",
     "use",
     "source",
+    "ancestry",
     "unconfirmed",
     "worked_examples",
     "population",

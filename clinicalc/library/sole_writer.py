@@ -1,11 +1,12 @@
 """One process at a time: a lock on a small file of this machine, for what is read, changed and written back."""
 
 import os
-import sys
 import time
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
+
+from clinicalc.replacement import hold_alone
 
 LONGEST_WAIT = 5.0
 """Seconds; what is done under the lock takes milliseconds."""
@@ -29,22 +30,7 @@ def sole_writer(path: Path) -> Iterator[None]:
 
 def _wait_for(handle: int, path: Path) -> None:
     end = time.monotonic() + LONGEST_WAIT
-    while not _is_ours(handle):
+    while not hold_alone(handle):
         if time.monotonic() > end:
             raise TimeoutError(f"another window or command has held {path.name} for {LONGEST_WAIT:g} seconds")
         time.sleep(_PAUSE)
-
-
-def _is_ours(handle: int) -> bool:
-    try:
-        if sys.platform == "win32":
-            import msvcrt
-
-            msvcrt.locking(handle, msvcrt.LK_NBLCK, 1)
-        else:
-            import fcntl
-
-            fcntl.flock(handle, fcntl.LOCK_EX | fcntl.LOCK_NB)
-    except OSError:
-        return False
-    return True

@@ -23,6 +23,7 @@ PAGES = (
     "commands",
     "fitting",
     "methods",
+    "validation",
     "packaging",
     "signing",
     "library",

@@ -11,11 +11,19 @@ from clinicalc.assessment.numerals import percent
 from clinicalc.assessment.proof import prove_model, recompute
 from clinicalc.coefficients.fingerprint import group_fingerprint
 from clinicalc.coefficients.reader import read_file
-from clinicalc.coefficients.schema import Derivation, Population, WorkedExample
+from clinicalc.coefficients.schema import Ancestry, Derivation, Population, WorkedExample
 from clinicalc.coefficients.spans import span_of
 from clinicalc.operations.folding import fold
 from clinicalc.operations.inspection_equations import equation_sections
 from clinicalc.operations.inspection_fields import field_sections
+
+UPDATE_WORDS = {
+    "intercept": "the baseline anew, every coefficient as it was",
+    "intercept_slope": "the baseline anew, every coefficient times one slope",
+    "refit": "baseline and every coefficient estimated anew, terms as they were",
+    "two_scale": "baseline and slope from predicted and observed risks of groups, on the scale of the link",
+}
+"""How an earlier version was updated."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,6 +85,8 @@ def _sections(model: Model) -> Iterator[tuple[str, list[str]]]:
         ],
     )
     yield "Source", _source(model)
+    if isinstance(content.ancestry, Ancestry):
+        yield "Updated from", list(_ancestry(content.ancestry))
     yield "For whom", [f"Population: {content.use.population}", f"Setting: {content.use.setting}"]
     yield "Not for", list(content.use.not_for)
     yield "Not used by the model", list(content.use.not_used)
@@ -108,6 +118,17 @@ def _source(model: Model) -> list[str]:
         dates = " to ".join(d for d in (people.from_, people.to) if isinstance(d, str))
         lines.append(f"Made from {people.people} people{events}{f', {dates}' if dates else ''}")
     return [*lines, *(() if isinstance(source.notes, UnsetType) else source.notes)]
+
+
+def _ancestry(ancestry: Ancestry) -> Iterator[str]:
+    yield f"{ancestry.title}, id {ancestry.id}, version {ancestry.version}"
+    yield f"Its fingerprint: {group_fingerprint(ancestry.fingerprint)}"
+    cohort = ancestry.cohort
+    events = "" if isinstance(cohort.events, UnsetType) else f", {cohort.events} events"
+    dates = " to ".join(d for d in (cohort.from_, cohort.to) if isinstance(d, str))
+    yield f"Updated to: {cohort.words} ({cohort.people} people{events}{f', {dates}' if dates else ''})"
+    yield f"How: {UPDATE_WORDS[ancestry.method]}"
+    yield from ancestry.figures
 
 
 def _examples(model: Model) -> Iterator[str]:

@@ -6,7 +6,8 @@ from dataclasses import dataclass
 from msgspec import UnsetType
 
 from clinicalc.assessment.model import Model
-from clinicalc.coefficients.schema import Derivation, DrawsBand, Equation, NoBand, Source
+from clinicalc.coefficients.fingerprint import group_fingerprint
+from clinicalc.coefficients.schema import Ancestry, Derivation, DrawsBand, Equation, NoBand, Source
 from clinicalc.library.file_signatures import FileSignature, Worth
 from clinicalc.library.installing import Candidate
 from clinicalc.library.keys import group_key_id
@@ -40,6 +41,7 @@ def list_checks(candidate: Candidate) -> tuple[Check, ...]:
         _documentation([entry.item for entry in content.documentation]),
         Check("Source", _source(content.source), True),
         _made_from(content.source),
+        *_updated_from(content.ancestry),
     )
 
 
@@ -104,6 +106,18 @@ def _made_from(source: Source) -> Check:
     if not isinstance(source.derivation, Derivation):
         return Check("Made from", "not stated", False)
     return Check("Made from", ", ".join(_people(source.derivation)), True)
+
+
+def _updated_from(ancestry: Ancestry | UnsetType) -> Iterator[Check]:
+    """A line of its own only for a version that was updated from another."""
+    if isinstance(ancestry, Ancestry):
+        cohort = ancestry.cohort
+        events = "" if isinstance(cohort.events, UnsetType) else f", {cohort.events} events"
+        said = (
+            f"{ancestry.title} {ancestry.version}, fingerprint {group_fingerprint(ancestry.fingerprint, 4)}…; to "
+            f"{cohort.words}, {cohort.people} people{events}"
+        )
+        yield Check("Updated from", said, True)
 
 
 def _people(people: Derivation) -> Iterator[str]:

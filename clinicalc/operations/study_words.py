@@ -80,7 +80,4 @@ def _tell_coefficients(figures: FitFigures, fitted: FittedStudy) -> Iterator[str
 
 
 def _item(gravity: str, sentence: str) -> Iterator[str]:
-    head = f"  {gravity.capitalize()}: "
-    lines = fold(f"{gravity.capitalize()}: {sentence}")
-    yield f"{head}{lines[0][len(gravity) + 2 :]}"
-    yield from (f"    {line}" for line in lines[1:])
+    yield from fold(f"  {gravity.capitalize()}: {sentence}", hanging=4)

@@ -4,7 +4,7 @@ Numbers are jointly normal on the scale described (their own, or the natural log
 given the numbers and the answers before it; a choice has its shares, independent of the rest.
 """
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from math import log
 
@@ -75,10 +75,16 @@ class People:
             (value - float(self.mean[place])) / float(self.sd[place])
             for place, value in zip(at, known.values(), strict=True)
         ]
-        whole = len(at) == len(self.numbers)
-        # all of them are known in almost every case, and this is asked at every key
-        precision = self.precision if whole else _inverse(self.correlation[np.ix_(at, at)])
+        precision = self.precision_of(tuple(known))
         return [own * sum(a * b for a, b in zip(row, z, strict=True)) for own, row in zip(z, precision, strict=True)]
+
+    def precision_of(self, known: Sequence[str]) -> tuple[tuple[float, ...], ...]:
+        """The inverse of the correlations of some of the numbers, in their order here."""
+        # all of them are known in almost every case, and this is asked at every key
+        if len(known) == len(self.numbers):
+            return self.precision
+        at = [self.numbers.index(id) for id in known]
+        return _inverse(self.correlation[np.ix_(at, at)])
 
     def given(self, open: tuple[str, ...], known: Mapping[str, float]) -> tuple[Array, Array]:
         """Mean, shape (m,), and covariance, shape (m, m), of the `open` numbers given the known ones, on their scale.

@@ -65,7 +65,7 @@ def points_words(share: float) -> str:
 def group_noun(calibration: Calibration) -> str:
     """What the groups are: tenths, or fewer where predictions tie."""
     count = len(calibration.groups)
-    return "tenths of the people" if count == _TENTHS else f"{count} groups of like predictions"
+    return "tenths of the people" if count == _TENTHS else f"{count_words(count, 'group')} of like predictions"
 
 
 def smoother_words(curve: SmoothCurve) -> str:

@@ -7,7 +7,10 @@ from clinicalc.report.calibration_figure import ShownCalibration
 from clinicalc.report.comparison_figure import Compared
 from clinicalc.report.effect_figure import Moves
 from clinicalc.report.flow_figure import Flow
+from clinicalc.report.group_figure import ShownGroups
+from clinicalc.report.key_figures import KeyFigures
 from clinicalc.report.measured import Measured
+from clinicalc.report.net_benefit_words import ShownNetBenefit
 from clinicalc.report.range_line import RangeOfValues
 from clinicalc.report.shares_figure import Walk
 from clinicalc.report.spread_figure import ShownSpread
@@ -132,11 +135,13 @@ class Row:
     kind: RowKind = RowKind.NUMBER
     keep: bool = False
     """Whether it is held to the row after it."""
+    marked: bool = False
+    """Whether it stands on wash, in semibold."""
 
 
 @dataclass(frozen=True, slots=True)
 class Column:
-    """A column of a table: its heading, its left edge and its width in points; `at_end` sets the heading right."""
+    """A column of a table: its heading, left edge and width in points; `at_end` sets heading and words right."""
 
     heading: str
     left: float
@@ -213,7 +218,30 @@ class SpreadPart:
     shown: ShownSpread
 
 
-FigurePart = SharesPart | ComparisonPart | EffectPart | FlowPart | CalibrationPart | SpreadPart
+@dataclass(frozen=True, slots=True)
+class KeyFiguresPart:
+    """A few figures in a row."""
+
+    shown: KeyFigures
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class NetBenefitPart:
+    """What acting by a model is worth over decision points."""
+
+    shown: ShownNetBenefit
+
+
+@dataclass(frozen=True, slots=True)
+class GroupsPart:
+    """Groups of people side by side."""
+
+    shown: ShownGroups
+
+
+StudyPart = FlowPart | CalibrationPart | SpreadPart | KeyFiguresPart | NetBenefitPart | GroupsPart
+"""Figures of people, which stand for themselves."""
+FigurePart = SharesPart | ComparisonPart | EffectPart | StudyPart
 Block = FactList | RemarkList | Table | Prose | SignatureLine | FigurePart
 
 

@@ -123,9 +123,22 @@ def _headings(lettering: Lettering, columns: tuple[Column, ...], end: float = WI
 def _heading(lettering: Lettering, column: Column, end: float) -> list[Strip]:
     if not column.at_end:
         return set_lines(lettering, column.heading, column.left, end - column.left, CAPTION)
+    return _set_right(set_lines(lettering, column.heading, column.left, column.width, CAPTION), column)
+
+
+def _set_right(strips: list[Strip], column: Column) -> list[Strip]:
+    """The same lines, ending where the column ends."""
     right = column.left + column.width
-    text = Text(right, CAPTION.baseline, column.heading, SMALL, tone=CAPTION.tone, anchor=Anchor.END)
-    return [Strip(CAPTION.height, (text,))]
+    return [
+        replace(
+            strip,
+            shapes=tuple(
+                replace(shape, x=right, anchor=Anchor.END) if isinstance(shape, Text) else shape
+                for shape in strip.shapes
+            ),
+        )
+        for strip in strips
+    ]
 
 
 def _row(
@@ -137,11 +150,17 @@ def _row(
     end: float = WIDTH,
 ) -> list[Strip]:
     widths = _widths(columns, row, end)
+    style = replace(style, weight=SEMIBOLD) if row.marked else style
     cells = [
         _cell(lettering, cell, column if width == column.width else replace(column, width=width), style)
         for column, cell, width in zip(columns, row.cells, widths, strict=True)
     ]
-    return hold_together([Strip(_ABOVE), *join_beside(cells), _ruled(start, end)])
+    strips = hold_together([Strip(_ABOVE), *join_beside(cells), _ruled(start, end)])
+    return [_on_wash(strip, start, end) for strip in strips] if row.marked else strips
+
+
+def _on_wash(strip: Strip, start: float, end: float) -> Strip:
+    return replace(strip, shapes=(Rect(start, 0.0, end - start, strip.height, fill=Tone.WASH), *strip.shapes))
 
 
 def _widths(columns: Sequence[Column], row: Row, end: float) -> list[float]:
@@ -165,11 +184,13 @@ def _ruled(start: float = 0.0, end: float = WIDTH) -> Strip:
 def _cell(lettering: Lettering, cell: Cell, column: Column, style: Style) -> list[Strip]:
     match cell:
         case str():
-            return set_lines(lettering, cell, column.left, column.width, style) if cell else []
+            lines = set_lines(lettering, cell, column.left, column.width, style) if cell else []
+            return _set_right(lines, column) if column.at_end else lines
         case TypedCell():
             return _typed(lettering, cell, column, style)
         case NotedCell():
-            return _noted(lettering, cell, column, style)
+            noted = _noted(lettering, cell, column, style)
+            return _set_right(noted, column) if column.at_end else noted
         case MarksCell():
             return list(_marks(lettering, cell, column, style))
         case RangeCell():

@@ -1,7 +1,7 @@
 """Quantities: what is measured, in which units, within which limits, and how its units convert."""
 
-from collections.abc import Mapping
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, fields
 from difflib import get_close_matches
 from fractions import Fraction
 from functools import cache
@@ -90,6 +90,12 @@ class Quantity:
     apart: tuple[RangesApart, ...]
     refused: tuple[RefusedUnit, ...]
     no_conversion: str
+
+    def __reduce__(self) -> tuple[Callable[..., "Quantity"], tuple[object, ...]]:
+        """One of the table's stays the table's own in another process, where its conversions are kept."""
+        if _by_id().get(self.id) is self:
+            return quantity, (self.id,)
+        return Quantity, tuple(getattr(self, part.name) for part in fields(self))
 
 
 @dataclass(frozen=True, slots=True)

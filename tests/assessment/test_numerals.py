@@ -11,6 +11,7 @@ from clinicalc.assessment.numerals import (
     percent,
     percent_beside,
     percent_in_full,
+    percent_of,
     percent_range,
     plain,
     plain_range,
@@ -116,3 +117,8 @@ def test_ranges_and_lists() -> None:
     assert plain_range(None, 126, "mg/dL") == "up to 126 mg/dL"
     assert plain_range(5, None) == "5 and above"
     assert join_words(["a", "b", "c"]) == "a, b and c"
+
+
+@pytest.mark.parametrize(("share", "text"), [(0.0, "0.0 %"), (0.06913, "6.9 %"), (0.9996, "100.0 %"), (1.0, "100.0 %")])
+def test_a_share_of_people_may_be_none_or_all(share: float, text: str) -> None:
+    assert percent_of(share).replace(NARROW_SPACE, " ") == text

@@ -1,10 +1,11 @@
 """A file proves itself at every load."""
 
 import json
+from pathlib import Path
 
 import pytest
 
-from clinicalc.assessment.proof import load_model_bytes
+from clinicalc.assessment.proof import load_model, load_model_bytes
 from clinicalc.errors import CoefficientFileRefused, Problem
 from clinicalc.resources import list_example_models, read_shipped
 
@@ -69,3 +70,9 @@ def test_an_example_may_carry_dates() -> None:
     values = tree["model"]["worked_examples"][0]["values"]
     values["total_cholesterol"] = "180 mg/dL on 2015-01-01"
     assert load_model_bytes(json.dumps(tree).encode(), "dated.json").content.worked_examples
+
+
+def test_a_path_may_be_a_text(tmp_path: Path) -> None:
+    file = tmp_path / "tarnwick-cvd-10y.json"
+    file.write_bytes(read_shipped("example_models/tarnwick-cvd-10y.json"))
+    assert load_model(str(file)).fingerprint == load_model(file).fingerprint

@@ -68,9 +68,10 @@ def test_every_exit_status_is_explained() -> None:
     assert re.findall(r"^- ([0-9]):", text, re.MULTILINE) == ["0", "2", "3", "4", "5", "6"]
 
 
-OWN_TEST = ("fitting", "methods", "packaging", "signing", "library", "managers")
+OWN_TEST = ("fitting", "methods", "validation", "packaging", "signing", "library", "managers")
 """Pages run by tests of their own, with what they need: development/test_fitting_page, test_methods_page and
-test_packaging_page, cli/test_signing_page, cli/test_library_page and cli/test_page_for_practices."""
+test_packaging_page, validation/test_validation_page, cli/test_signing_page, cli/test_library_page and
+cli/test_page_for_practices."""
 
 
 @pytest.mark.parametrize("name", [name for name in PAGES if commands_on(name) and name not in OWN_TEST])

@@ -182,6 +182,8 @@ def test_what_cannot_be_drawn_is_said() -> None:
     ties = drawn(tied())
     assert "3 groups of like predictions" in " ".join(written(ties))
     assert "ICI" not in ties.sentence
+    alone = " ".join(written(drawn(replace(tied(), groups=tied().groups[:1]))))
+    assert "Circles: 1 group of like predictions," in alone
     lost = drawn(timed(longest=4.0))
     count = sum(group.observed is None for group in KINDS["lost"].groups)
     assert count

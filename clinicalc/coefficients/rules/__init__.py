@@ -5,6 +5,7 @@ Nothing here repairs, warns or computes a probability; a file that breaks a rule
 
 from collections.abc import Callable, Iterator
 
+from clinicalc.coefficients.rules.ancestry import check_ancestry
 from clinicalc.coefficients.rules.bands import check_bands
 from clinicalc.coefficients.rules.catalogue import Catalogue, list_names
 from clinicalc.coefficients.rules.coverage import check_coverage
@@ -49,6 +50,7 @@ RULES: tuple[Rule, ...] = (
     check_populations,
     check_unconfirmed,
     check_decision_points,
+    check_ancestry,
 )
 
 

@@ -110,9 +110,11 @@ def _check_order(equation: Equation, base: str) -> Iterator[Problem]:
         if low is None or high is None:
             continue
         if equation.link == "cloglog" and high <= low:
-            yield Problem(
-                here, f"the cumulative hazard must rise with time, and at {late.words} it is not above {early.words}."
+            said = (
+                f"the cumulative hazard must rise with time, and at {late.words} it is not above that at {early.words}."
+                " If nobody had the event in between, leave one of them out."
             )
+            yield Problem(here, said)
         if equation.link == "logit" and high < low:
             yield Problem(
                 here, f"the intercept must not fall with time, and at {late.words} it is below that of {early.words}."

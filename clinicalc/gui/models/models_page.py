@@ -311,6 +311,17 @@ class ModelsPage(QWidget):
         self.card.leave_candidate()
         self._show_model(fingerprint)
 
+    def look_at(self, path: Path) -> None:
+        """A file that may be installed is looked at; a form that is open, or the lack of a library, comes first."""
+        try:
+            self._desk.machine()
+        except ClinicalcError:  # what is to be done about it is on the page
+            return
+        if self.deeds.is_open:
+            self.side.strip.say(f"{path.name} is looked at once the form is left: “Install file…”.")
+            return
+        self._look_at(path)
+
     def _look_at(self, path: Path) -> None:
         self.first.leave()
         self.reading.look_at(path)

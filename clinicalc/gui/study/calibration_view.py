@@ -1,4 +1,6 @@
-"""What a fit predicts for its own people and what happened to them, as a figure with its table as text behind it."""
+"""Plots as large as there is room, each with its table as text behind it."""
+
+from collections.abc import Callable
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QResizeEvent
@@ -8,18 +10,20 @@ from clinicalc.gui.figure_view import FigureView, lettering, table_lines, text_p
 from clinicalc.gui.text_link import OpenedText, TextLink
 from clinicalc.report.calibration_figure import ShownCalibration, draw_calibration
 from clinicalc.report.plot_frame import PlotSize
+from clinicalc.report.shapes import Figure, Measure
 
 AS_TEXT, CLOSE = "Chart as text", "Close the text"
 _WIDEST, _NARROWEST, _TEXT = 720.0, 200.0, 13.0
 """Width of the plot with what is written under it, at the usual text size."""
 
 
-class CalibrationView(QWidget):
+class PlotView(QWidget):
     """As wide as there is room, up to the width at which lines are still read with ease."""
 
-    def __init__(self, shown: ShownCalibration) -> None:
+    def __init__(self, draw: Callable[[PlotSize, Measure], Figure]) -> None:
+        """`draw` makes the figure at a size, with the lettering's measure of widths."""
         super().__init__()
-        self._shown = shown
+        self._draw = draw
         self._drawn: PlotSize | None = None
         self.view = FigureView()
         self.as_text = TextLink(AS_TEXT)
@@ -50,7 +54,7 @@ class CalibrationView(QWidget):
         if size == self._drawn:
             return
         self._drawn = size
-        self.view.show_figure(draw_calibration(self._shown, size, lettering().width))
+        self.view.show_figure(self._draw(size, lettering().width))
         self.view.setFixedHeight(self.view.sizeHint().height())  # the width stays free, or no window could shrink
 
     def _toggle(self) -> None:
@@ -59,3 +63,10 @@ class CalibrationView(QWidget):
         self.as_text.say(CLOSE if opens else AS_TEXT)
         figure = self.view.figure_shown
         self.text.show_lines(table_lines([figure]) if opens and figure is not None else [])
+
+
+class CalibrationView(PlotView):
+    """Predicted and observed."""
+
+    def __init__(self, shown: ShownCalibration) -> None:
+        super().__init__(lambda size, measure: draw_calibration(shown, size, measure))

@@ -20,10 +20,14 @@ class FactColumn:
 
 @dataclass(frozen=True, slots=True)
 class Fact:
-    """A row: a text for each column, and a note over the whole width under them, "" for none."""
+    """A row: a text for each column, and a note over the whole width under them, "" for none.
+
+    `is_marked` sets it off from the others: semibold, on a ground of its own.
+    """
 
     cells: tuple[str, ...]
     note: str = ""
+    is_marked: bool = False
 
 
 class FactRows(QAbstractTableModel):
@@ -50,6 +54,10 @@ class FactRows(QAbstractTableModel):
     def is_note(self, row: int) -> bool:
         """Whether a row of the table is a note."""
         return self._rows[row][1]
+
+    def is_marked(self, row: int) -> bool:
+        """Whether a row of the table is set off."""
+        return self.facts[self._rows[row][0]].is_marked
 
     def text(self, row: int, column: int) -> str:
         """What stands in a cell; a note stands in the first."""

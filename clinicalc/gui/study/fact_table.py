@@ -84,14 +84,14 @@ class FactTable(StillTable):
 
     def _row_height(self, row: int, widths: list[int]) -> int:
         if self.rows.is_note(row):
-            return self._delegate.height_of(self.rows.text(row, 0), sum(widths), is_note=True)
-        cells = range(self.rows.columnCount())
-        return max(self._delegate.height_of(self.rows.text(row, column), widths[column]) for column in cells)
+            return self._delegate.height_of(self.rows.text(row, 0), sum(widths), _font(is_note=True))
+        cells, font = range(self.rows.columnCount()), _font(is_marked=self.rows.is_marked(row))
+        return max(self._delegate.height_of(self.rows.text(row, column), widths[column], font) for column in cells)
 
     def _natural_width(self, column: int) -> int:
-        metrics = QFontMetrics(face(UNIT))
-        texts = [fact.cells[column] for fact in self.rows.facts]
-        widest = max((metrics.horizontalAdvance(line) for text in texts for line in text.split("\n")), default=0)
+        metrics = {marked: QFontMetrics(_font(is_marked=marked)) for marked in (False, True)}
+        texts = [(metrics[fact.is_marked], fact.cells[column]) for fact in self.rows.facts]
+        widest = max((by.horizontalAdvance(line) for by, text in texts for line in text.split("\n")), default=0)
         heading = QFontMetrics(face(CAPTION)).horizontalAdvance(self.rows.columns[column].heading)
         limit = 10_000 if self.rows.columns[column].is_figures else _WIDEST
         return min(max(widest, heading) + 2 * _SIDE + 6, max(limit, heading + 2 * _SIDE + 6))
@@ -134,10 +134,10 @@ class _HeadPaint(QHeaderView):
 class _CellPaint(QStyledItemDelegate):
     """Texts wrapped letter for letter, a thin rule under each fact, the ground of the row gone to."""
 
-    def height_of(self, text: str, width: int, *, is_note: bool = False) -> int:
+    def height_of(self, text: str, width: int, font: QFont) -> int:
         """How high a cell has to be at a width."""
-        above = 0 if is_note else _ABOVE
-        return round(_lay_out(text, width - 2 * _SIDE, _font(is_note=is_note))[1]) + above + _UNDER
+        above = 0 if font == _font(is_note=True) else _ABOVE
+        return round(_lay_out(text, width - 2 * _SIDE, font)[1]) + above + _UNDER
 
     def paint(
         self, painter: QPainter, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex
@@ -150,13 +150,15 @@ class _CellPaint(QStyledItemDelegate):
         is_reached = table.hasFocus() and table.place == rows.fact_at(row)
         is_last = row + 1 == rows.rowCount() or not rows.is_note(row + 1)
         painter.save()
-        is_chosen = table.place == rows.fact_at(row)
+        is_marked = rows.is_marked(row)
+        is_chosen = is_marked or table.place == rows.fact_at(row)
         painter.fillRect(box, QColor(tokens.sel if is_reached else tokens.wash if is_chosen else tokens.sheet))
         if is_last:
             painter.fillRect(QRectF(box.left(), box.bottom() - 1, box.width(), 1), QColor(tokens.rule))
         painter.setPen(QColor(tokens.soft if is_note and not is_reached else tokens.ink))
         figures = not is_note and rows.columns[index.column()].is_figures
-        layout, _ = _lay_out(rows.text(row, index.column()), box.width() - 2 * _SIDE, _font(is_note=is_note), figures)
+        font = _font(is_note=is_note, is_marked=is_marked)
+        layout, _ = _lay_out(rows.text(row, index.column()), box.width() - 2 * _SIDE, font, figures)
         layout.draw(painter, QPointF(box.left() + _SIDE, box.top() + (0 if is_note else _ABOVE)))
         if is_reached and not is_note and index.column() == table.currentIndex().column():
             painter.setPen(QPen(QColor(tokens.accent), 2))
@@ -208,5 +210,5 @@ def _lay_out(text: str, width: float, font: QFont, is_figures: bool = False) -> 
     return layout, height
 
 
-def _font(*, is_note: bool) -> QFont:
-    return face(CAPTION if is_note else UNIT)
+def _font(*, is_note: bool = False, is_marked: bool = False) -> QFont:
+    return face(CAPTION if is_note else UNIT, semibold=is_marked and not is_note)

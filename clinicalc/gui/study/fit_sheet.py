@@ -28,14 +28,15 @@ from clinicalc.gui.study.study_state import MadeFit, StudyState
 
 _GRADES = {Grade.STOP: Grade.STOP, Grade.CAUTION: Grade.CAUTION, Grade.NOTE: Grade.NOTE}
 SAVE_REPORT = "Save a r&eport…"
+_NOTHING = "A validation file is open: a model that was made elsewhere is held against its people, and none is fitted."
 
 
 def make_fit_sheet(state: StudyState) -> StepSheet:
     """The sheet as the study stands."""
-    if state.opened is None:
-        return StepSheet("Fit", "Open a study file first.")
+    if state.opened is None and (state.people_only is None or state.fit is None):
+        return StepSheet("Fit", _NOTHING if state.people_only is not None else "Open a study file first.")
     sheet = StepSheet("Fit", _head(state))
-    if state.not_fitted is not None:
+    if state.not_fitted is not None and state.opened is not None:
         stated = state_refusal(state.not_fitted)
         sheet.add_heading(f"The study was not fitted: {count(len(stated), 'problem')}")
         sheet.add_stated(stated)
@@ -50,7 +51,7 @@ def make_fit_sheet(state: StudyState) -> StepSheet:
 def _head(state: StudyState) -> str:
     opened = state.opened
     if state.fit is not None or state.not_fitted is not None or opened is None:
-        return "" if opened is None else opened.study.content.title
+        return _NOTHING if opened is None else opened.study.content.title
     if opened.cohort is None:
         return "The people were not read: see the step Data."
     if opened.cohort.stops:
@@ -62,6 +63,8 @@ def _add_standing(sheet: StepSheet, state: StudyState, fit: MadeFit) -> None:
     """Whose fit it is, where that is not what is open."""
     if state.is_stale:
         then = "Fit again." if state.may_fit else "What is open now cannot be fitted yet: see the step Data."
+        if state.people_only is not None:
+            then = "A validation file is open, and nothing is fitted."
         sheet.add_words(
             f"This fit is of {fit.name} and its people as they were then, not of what is open now. {then}",
             semibold=True,

@@ -11,6 +11,7 @@ from clinicalc.gui.study.data_words import COVARIANCES, KINDS
 from clinicalc.gui.study.draft_sheets import make_draft_model_sheet
 from clinicalc.gui.study.fact_rows import Fact, FactColumn
 from clinicalc.gui.study.fitting_kinds import usual_ties
+from clinicalc.gui.study.held_sheet import make_held_sheet
 from clinicalc.gui.study.method_words import HANDLED, method_lines, table_penalty
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask
@@ -26,6 +27,8 @@ def make_model_sheet(state: StudyState) -> StepSheet:
     """The sheet as the study stands."""
     if state.draft is not None:
         return make_draft_model_sheet(state.draft, state.not_opened)
+    if state.people_only is not None:
+        return make_held_sheet(state.people_only)
     opened = state.opened
     if opened is None:
         return StepSheet("Model", "Open a study file first: it says which terms the model has.")

@@ -24,6 +24,8 @@ _EXAMPLES = (FactColumn("Worked example"), FactColumn("Horizon"), FactColumn("Pr
 
 def make_package_sheet(state: StudyState) -> StepSheet:
     """The sheet as the study stands."""
+    if state.people_only is not None:
+        return StepSheet("Package", "The new version of a model that is updated is written in the step Update.")
     if not state.is_fitted:
         words = "This fit is of earlier data. Fit the model again first." if state.is_stale else "Fit the model first."
         return StepSheet("Package", words)

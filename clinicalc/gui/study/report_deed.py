@@ -17,9 +17,10 @@ from clinicalc.operations.course import Course
 
 @dataclass(frozen=True, slots=True)
 class SavedReport:
-    """What the form brings: where the report was put."""
+    """What the form brings: where the report was put, and what was put there, as the head of a sentence."""
 
     path: Path
+    what: str = "The report was"
 
 
 class ReportDeed(FormDeed):

@@ -6,6 +6,7 @@ from clinicalc.gui.study.data_words import count, counts_line
 from clinicalc.gui.study.model_sheet import count_terms, plan_words
 from clinicalc.gui.study.steps import Step, StepLine
 from clinicalc.gui.study.study_state import StudyState
+from clinicalc.gui.study.validation_lines import update_line, validation_line
 from clinicalc.operations.study_draft_model import terms_of
 
 
@@ -15,6 +16,8 @@ def step_lines(state: StudyState) -> Mapping[Step, StepLine]:
         Step.DATA: _data(state),
         Step.MODEL: _model(state),
         Step.FIT: _fit(state),
+        Step.VALIDATION: validation_line(state.validating),
+        Step.UPDATE: update_line(state.validating),
         Step.PACKAGE: _package(state),
     }
 
@@ -22,9 +25,12 @@ def step_lines(state: StudyState) -> Mapping[Step, StepLine]:
 def _data(state: StudyState) -> StepLine:
     if state.draft is not None:
         return StepLine(f"being written, {count(len(state.draft.columns), 'column')}")
-    if state.opened is None:
+    people_only = state.people_only
+    if state.opened is None and people_only is None:
         return StepLine("not opened" if state.not_opened else "not started")
-    cohort = state.opened.cohort
+    cohort = None if state.opened is None else state.opened.cohort
+    if people_only is not None and people_only.people is not None:
+        cohort = people_only.people.cohort
     if cohort is None:
         return StepLine("people not read")
     if cohort.stops:
@@ -35,6 +41,9 @@ def _data(state: StudyState) -> StepLine:
 def _model(state: StudyState) -> StepLine:
     if state.draft is not None:
         return StepLine(f"being written, {count(len(terms_of(state.draft.tree)), 'term')}")
+    if state.people_only is not None:
+        content = state.people_only.model.content
+        return StepLine(f"{content.id} {content.version}", is_done=True)
     opened = state.opened
     if opened is None:
         return StepLine()
@@ -43,6 +52,8 @@ def _model(state: StudyState) -> StepLine:
 
 
 def _fit(state: StudyState) -> StepLine:
+    if state.people_only is not None and state.fit is None:
+        return StepLine("none here")
     if state.not_fitted is not None:
         return StepLine("refused" if state.fit is None else "refused; the fit before stays")
     if state.fit is None:
@@ -62,4 +73,4 @@ def name_of(state: StudyState) -> str:
     """What the study is called: its file's name."""
     if state.draft is not None:
         return "a new study file" if state.draft.path is None else f"{state.draft.path.name}, being changed"
-    return "" if state.opened is None else state.opened.path.name
+    return "" if state.path is None else state.path.name

@@ -16,20 +16,22 @@ LINE_HIGH = 40
 _LEFT, _RIGHT, _BAR = 12, 20, 3
 _CENTRE, _RADIUS = 33, 10.5
 _TEXT_LEFT = 58
+_BESIDE_CENTRE, _BESIDE_TEXT, _BESIDE_END = 22, 38, 8
+_BESIDE_LETTERS = 15
 _LEVEL = Qt.AlignmentFlag.AlignVCenter | Qt.TextFlag.TextSingleLine
 
 
 class StepPaint(QStyledItemDelegate):
-    """`size` is that of every step, `is_row` whether they stand side by side."""
+    """`sizes` are those of the steps, `is_row` says whether they stand side by side."""
 
     def __init__(self) -> None:
         super().__init__()
-        self.size = QSize(256, STEP_HIGH)
+        self.sizes = [QSize(256, STEP_HIGH)] * len(Step)
         self.is_row = False
 
     def sizeHint(self, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex) -> QSize:
         """As the list says."""
-        return self.size
+        return self.sizes[index.row()]
 
     def paint(
         self, painter: QPainter, option: QStyleOptionViewItem, index: QModelIndex | QPersistentModelIndex
@@ -79,11 +81,19 @@ class StepPaint(QStyledItemDelegate):
         tokens = theme.tokens()
         if chosen:
             _paint_choice(painter, rect.adjusted(4, 2, -4, -2), focused=focused)
-        middle = QPointF(rect.left() + 24.0, rect.center().y() + 0.5)
+        middle = QPointF(rect.left() + _BESIDE_CENTRE, rect.center().y() + 0.5)
         _paint_number(painter, middle, step, line, chosen=chosen)
-        painter.setFont(face(VALUE, semibold=chosen))
+        painter.setFont(face(_BESIDE_LETTERS, semibold=chosen))
         painter.setPen(QColor(tokens.ink))
-        painter.drawText(rect.adjusted(44, 0, -6, 0), _LEVEL, step.title)
+        painter.drawText(rect.adjusted(_BESIDE_TEXT, 0, -_BESIDE_END, 0), _LEVEL, step.title)
+
+
+def share_row(width: int) -> list[QSize]:
+    """Sizes of the steps side by side over a width: each as wide as its name needs, and what is left shared."""
+    metrics = QFontMetrics(face(_BESIDE_LETTERS, semibold=True))
+    needs = [_BESIDE_TEXT + metrics.horizontalAdvance(step.title) + _BESIDE_END for step in Step]
+    more = max(0, width - sum(needs)) // len(needs)
+    return [QSize(need + more, LINE_HIGH) for need in needs]
 
 
 def _paint_number(painter: QPainter, middle: QPointF, step: Step, line: StepLine, *, chosen: bool) -> None:

@@ -53,7 +53,8 @@ class StepSheet(Scroller):
     def words(self) -> str:
         """Everything that stands in it as text, for whoever reads rather than sees."""
         said = [label.text() for label in self._inside.findChildren(QLabel)]
-        cells = [cell for table in self.tables for fact in table.rows.facts for cell in (*fact.cells, fact.note)]
+        tables = self._inside.findChildren(FactTable)
+        cells = [cell for table in tables for fact in table.rows.facts for cell in (*fact.cells, fact.note)]
         return "\n".join((*said, *cells))
 
     def add_heading(self, words: str) -> None:
@@ -82,10 +83,14 @@ class StepSheet(Scroller):
     def add_table(self, name: str, columns: Sequence[FactColumn], facts: Sequence[Fact]) -> FactTable:
         """A table of facts."""
         table = FactTable(FactRows(columns, facts), name)
-        table.row_reached.connect(lambda top, high: self._follow(table, top, high))
+        self.watch_table(table)
         self.tables.append(table)
         self._rows.addWidget(table)
         return table
+
+    def watch_table(self, table: FactTable) -> None:
+        """A table within a part that is added: its rows are kept in sight too."""
+        table.row_reached.connect(lambda top, high: self._follow(table, top, high))
 
     def add_asks(self, asks: Sequence[tuple[str, Ask]], table: FactTable | None = None, place: int = -1) -> None:
         """Buttons beside each other that ask for something; about the row of the table that was gone to, or `place`."""

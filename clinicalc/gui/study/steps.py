@@ -10,7 +10,9 @@ class Step(IntEnum):
     DATA = 0
     MODEL = 1
     FIT = 2
-    PACKAGE = 3
+    VALIDATION = 3
+    UPDATE = 4
+    PACKAGE = 5
 
     @property
     def title(self) -> str:
@@ -47,3 +49,15 @@ class Ask(Enum):
     """An item of the documentation is to be answered."""
     LEAVE = "leave"
     """What was changed is not to be kept."""
+    HOLD_MODEL = "hold model"
+    """A coefficient file is to be chosen that is held against these people."""
+    UPDATE = "update"
+    """The form in which an update is asked for."""
+    VALIDATION_REPORT = "validation report"
+    UPDATE_REPORT = "update report"
+    TABLES = "tables"
+    """The figures of a validation are to be saved as tables."""
+    DRAWINGS = "drawings"
+    """Its drawings are to be saved, each as a file."""
+    HORIZON = "horizon"
+    """Another horizon is shown: its place."""

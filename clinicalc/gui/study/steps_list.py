@@ -15,7 +15,7 @@ from PySide6.QtCore import (
 from PySide6.QtGui import QKeyEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractItemView, QFrame, QListView
 
-from clinicalc.gui.study.step_paint import LINE_HIGH, STEP, STEP_HIGH, StepPaint
+from clinicalc.gui.study.step_paint import LINE_HIGH, STEP, STEP_HIGH, StepPaint, share_row
 from clinicalc.gui.study.steps import Step, StepLine
 
 _Index = QModelIndex | QPersistentModelIndex
@@ -113,9 +113,9 @@ class StepsList(QListView):
 
     def _fit(self) -> None:
         wide = max(1, self.viewport().width())
-        size = QSize(wide // len(Step), LINE_HIGH) if self._is_row else QSize(wide, STEP_HIGH)
-        if size != self._paint.size:
-            self._paint.size, self._paint.is_row = size, self._is_row
+        sizes = share_row(wide) if self._is_row else [QSize(wide, STEP_HIGH)] * len(Step)
+        if sizes != self._paint.sizes:
+            self._paint.sizes, self._paint.is_row = sizes, self._is_row
             self.doItemsLayout()
 
     def _tell(self, now: QModelIndex, _: QModelIndex) -> None:

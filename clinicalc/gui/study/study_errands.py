@@ -2,19 +2,35 @@
 
 from __future__ import annotations
 
-import hashlib
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from clinicalc.errors import ClinicalcError, Stopped, UsageError
+from clinicalc.gui.study.file_digest import digest_files
 from clinicalc.gui.study.study_state import MadeFit, OpenedStudy
 from clinicalc.operations.course import Course
 
 if TYPE_CHECKING:
+    from clinicalc.development.estimating import FittedStudy
     from clinicalc.development.package import Package
+    from clinicalc.gui.study.validation_state import OpenedValidation
+    from clinicalc.library.keys import SigningKey
     from clinicalc.operations.study_draft import StudyDraft
+    from clinicalc.settings import PracticePoint
 
-_BLOCK = 1 << 20
+
+def open_file(
+    path: Path, model_file: Path | None, points: Sequence[PracticePoint], course: Course
+) -> OpenedStudy | OpenedValidation:
+    """A study file or a validation file, whichever it is, with its people. Raises what either does when it is opened.
+
+    A validation file takes `model_file` in the place of its own model where one is named, and `points` are the
+    practice's decision points.
+    """
+    from clinicalc.gui.study.validation_errands import is_validation_file, open_people
+
+    return open_people(path, model_file, points, course) if is_validation_file(path) else open_and_check(path, course)
 
 
 def open_and_check(path: Path, course: Course) -> OpenedStudy:
@@ -33,7 +49,7 @@ def open_and_check(path: Path, course: Course) -> OpenedStudy:
         raise
     except ClinicalcError as error:
         cohort, fault = None, error
-    return OpenedStudy(path, study, _digest(path, study.cohort_file, course), cohort, fault)
+    return OpenedStudy(path, study, digest_files((path, study.cohort_file), course), cohort, fault)
 
 
 def fit_opened(opened: OpenedStudy, course: Course) -> MadeFit:
@@ -55,6 +71,13 @@ def package_fit(fit: MadeFit, course: Course) -> Package:
 
     course.say("Working the examples")
     return package_study(fit.fitted, course)
+
+
+def sign_study(fitted: FittedStudy, key: SigningKey, course: Course) -> Package:
+    """The coefficient file of a fit once more, signed. Raises as `package_fit` does."""
+    from clinicalc.operations.study import package_study
+
+    return package_study(fitted, course, key)
 
 
 def begin_from_people(path: Path, course: Course) -> StudyDraft:
@@ -79,18 +102,3 @@ def change_opened(opened: OpenedStudy, course: Course) -> StudyDraft:
     except TableRefused:
         columns = tuple(entry.column for entry in opened.study.dictionary.columns)
     return draft_study(opened.path, columns)
-
-
-def _digest(study: Path, cohort: Path, course: Course) -> str:
-    """A digest of the bytes of both files; one that cannot be read counts as empty."""
-    digest = hashlib.sha256()
-    for path in (study, cohort):
-        try:
-            with path.open("rb") as stream:
-                while block := stream.read(_BLOCK):
-                    course.go_on()
-                    digest.update(block)
-        except OSError:
-            pass
-        digest.update(b"|")
-    return digest.hexdigest()

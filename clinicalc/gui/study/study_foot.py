@@ -18,6 +18,12 @@ class Next(Enum):
     FIT = "&Fit the model"
     TO_PACKAGE = "On to the &package"
     SAVE = "&Save the study file…"
+    VALIDATE = "&Validate"
+    TO_VALIDATION = "On to the &validation"
+    TO_UPDATE = "On to the &update"
+    UPDATE = "&Update the model…"
+    WRITE_VERSION = "&Write the new version…"
+    INSTALL = "&Install it on the Models page"
     WRITE = "&Write file…"
     TRY = "&Try it on the Patient page"
 

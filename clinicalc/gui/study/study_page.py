@@ -1,9 +1,9 @@
 """The Study page: the steps at the left, the step that is shown at the right, over it a form, under both the foot."""
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from pathlib import Path
 
-from PySide6.QtCore import QCoreApplication, QEvent, Qt, Signal
+from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QHideEvent, QKeySequence, QShortcut
 from PySide6.QtWidgets import QVBoxLayout, QWidget
 
@@ -13,31 +13,24 @@ from clinicalc.gui.form_deed import FormDeed
 from clinicalc.gui.form_place import FormPlace
 from clinicalc.gui.progress_strip import ProgressStrip
 from clinicalc.gui.right_stack import RightStack
-from clinicalc.gui.study.data_sheet import make_data_sheet
-from clinicalc.gui.study.fit_sheet import make_fit_sheet
-from clinicalc.gui.study.model_sheet import make_model_sheet
-from clinicalc.gui.study.next_step import offer_of
-from clinicalc.gui.study.package_sheet import make_package_sheet
-from clinicalc.gui.study.report_deed import ReportDeed, SavedReport
+from clinicalc.gui.study.next_step import GOES_TO, offer_of
+from clinicalc.gui.study.report_deed import SavedReport
+from clinicalc.gui.study.shown_step import ShownStep
 from clinicalc.gui.study.step_lines import name_of, step_lines
 from clinicalc.gui.study.step_sheet import StepSheet
 from clinicalc.gui.study.steps import Ask, Step
+from clinicalc.gui.study.study_deeds import report_fit, save_study, write_file
 from clinicalc.gui.study.study_foot import Next, StudyFoot
 from clinicalc.gui.study.study_sides import StepsPane, StudySides
 from clinicalc.gui.study.study_state import StudyState
 from clinicalc.gui.study.study_work import StudyWork
+from clinicalc.gui.study.validating_asks import VALIDATING, ValidatingAsks
+from clinicalc.gui.study.validation_state import MadeUpdate
 from clinicalc.operations.study_draft import StudyDraft
+from clinicalc.settings import PracticePoint
 
-_ROUNDS = 3
-"""What is inside may ask for more room once it knows its own."""
 _PATIENCE = 2.0
 """Seconds that a closing window lets a file be written."""
-_SHEETS: dict[Step, Callable[[StudyState], StepSheet]] = {
-    Step.DATA: make_data_sheet,
-    Step.MODEL: make_model_sheet,
-    Step.FIT: make_fit_sheet,
-    Step.PACKAGE: make_package_sheet,
-}
 
 
 class StudyPage(QWidget):
@@ -45,27 +38,32 @@ class StudyPage(QWidget):
 
     trial_asked = Signal(object)
     """The Path of a coefficient file that is to be tried out on the patient's page."""
+    install_asked = Signal(object)
+    """The Path of a coefficient file that is to be looked at on the page of models."""
 
-    def __init__(self, choices: FileChoices | None = None) -> None:
+    def __init__(
+        self, choices: FileChoices | None = None, points: Callable[[], Sequence[PracticePoint]] = tuple
+    ) -> None:
+        """`points` says which decision points the practice has."""
         super().__init__()
         self.setObjectName("sheet")
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self._choices = choices or FileChoices()
         self.errands = Errands()
-        self.work = StudyWork(self.errands)
+        self.work = StudyWork(self.errands, points)
+        self.validating = ValidatingAsks(self.work, self.errands, self._choices)
         self.pane = StepsPane()
         self.right = RightStack()
         self.strip = ProgressStrip(self.errands)
         self.foot = StudyFoot()
         self.forms = FormPlace(self.right)
-        self.sheet = make_data_sheet(self.state)
         self._asked: tuple[Ask | None, int] = (None, -1)
         self._told_of: StudyDraft | None = None
         self.sides = StudySides(self.pane, self.right, (self.strip, self.foot))
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.addWidget(self.sides)
-        self.right.show_base(self.sheet)
+        self._shown = ShownStep(self.right, self.state, self._ask)
         self._connect()
         self._settle()
 
@@ -73,6 +71,11 @@ class StudyPage(QWidget):
     def state(self) -> StudyState:
         """How the study stands."""
         return self.work.state
+
+    @property
+    def sheet(self) -> StepSheet:
+        """The sheet of the step that is shown."""
+        return self._shown.sheet
 
     @property
     def step(self) -> Step:
@@ -146,21 +149,8 @@ class StudyPage(QWidget):
         self._show()
 
     def _show(self) -> None:
-        """Show the study in the step that is chosen; where it was chosen before, what was in sight stays so."""
-        before, had_focus = self.sheet, self.sheet.isAncestorOf(self.window().focusWidget() or self)
-        scrolled = before.verticalScrollBar().value() if before.title.text() == self.step.title else 0
-        self.sheet = _SHEETS[self.step](self.state)
-        self.sheet.asked.connect(self._ask)
-        self.right.show_base(self.sheet)
-        self.right.removeWidget(before)
-        before.hide()
-        before.deleteLater()
-        if had_focus:
-            self.sheet.focus_first()
-        if scrolled:
-            for _ in range(_ROUNDS):
-                QCoreApplication.sendPostedEvents(None, QEvent.Type.LayoutRequest.value)
-            self.sheet.verticalScrollBar().setValue(scrolled)
+        """Show the study in the step that is chosen."""
+        self._shown.show(self.step, self.state)
         self.pane.show_name(name_of(self.state))
         self.pane.list.show_lines(step_lines(self.state))
         self._settle()
@@ -173,7 +163,7 @@ class StudyPage(QWidget):
             offer.what,
             may=offer.may and is_free,
             also=offer.also,
-            again=self.state.opened is not None,
+            again=self.state.path is not None,
             opens=self.state.draft is None,
         )
         self.foot.allow(is_free)
@@ -188,31 +178,27 @@ class StudyPage(QWidget):
     # what is asked for
 
     def _do_next(self, what: Next) -> None:
-        if what is Next.TO_MODEL:
-            self.show_step(Step.MODEL)
-        elif what is Next.TO_PACKAGE:
-            self.show_step(Step.PACKAGE)
+        step, deed = GOES_TO.get(what), self.validating.begin(what)
+        if step is not None:
+            self.show_step(step)
+        elif deed is not None:
+            self.open_deed(deed)
+        elif what is Next.INSTALL:
+            self.install_asked.emit(self.state.validating.written)
         elif what is Next.FIT:
             self.work.fit()
         elif what is Next.SAVE:
-            self._open_saving()
+            self._open_if_any(save_study(self.state, self.errands, self._choices))
         elif what is Next.WRITE:
-            self._open_writing()
-        elif self.state.written is not None:
+            self._open_if_any(write_file(self.state, self.errands, self._choices))
+        elif what is Next.TRY and self.state.written is not None:
             self.trial_asked.emit(self.state.written)
 
-    def _open_writing(self) -> None:
-        from clinicalc.gui.study.write_deed import WriteDeed
-
-        package, fit, opened = self.state.package, self.state.fit, self.state.opened
-        if package is not None and fit is not None and opened is not None:
-            self.open_deed(WriteDeed(package, fit.fitted, opened.path.parent, self.errands, self._choices))
-
-    def _open_saving(self) -> None:
-        from clinicalc.gui.study.save_deed import SaveDeed
-
-        if self.state.draft is not None:
-            self.open_deed(SaveDeed(self.state.draft, self.errands, self._choices.where))
+    def _open_if_any(self, deed: FormDeed | None, asked: Ask | None = None, place: int = -1) -> None:
+        """Show a form, where there is one; the focus comes back to where it was asked for."""
+        if deed is not None:
+            self._asked = (asked, place)
+            self.open_deed(deed)
 
     def _ask(self, ask: Ask, place: int) -> None:
         """Something on the sheet was asked for."""
@@ -224,7 +210,9 @@ class StudyPage(QWidget):
         elif ask in (Ask.FIRTH, Ask.RIDGE):
             self._offer_penalty(ask, place)
         elif ask is Ask.REPORT:
-            self._open_report()
+            self._open_if_any(report_fit(self.state, self.errands, self._choices), ask)
+        elif ask in VALIDATING:
+            self._open_if_any(self.validating.answer(self, ask, place), ask, place)
         elif ask is Ask.LEAVE:
             self.work.leave_draft()
             self.sheet.focus_first()
@@ -253,17 +241,16 @@ class StudyPage(QWidget):
         else:
             self.work.change_opened(lambda draft: self._answer(ask, place, draft))
 
-    def _open_report(self) -> None:
-        fit, opened = self.state.fit, self.state.opened
-        if fit is not None and opened is not None:
-            self._asked = (Ask.REPORT, -1)
-            package = self.state.package
-            self.open_deed(ReportDeed(fit, package, opened.path.parent, self.errands, self._choices.where))
-
     def _take_result(self, result: object) -> None:
         """What a form brought: a coefficient file that was written, or another draft, perhaps a saved one."""
-        if isinstance(result, Path):
-            self.work.take_written(result)
+        if isinstance(result, MadeUpdate):
+            self.validating.work.take_update(result)
+            self.foot.next.setFocus(Qt.FocusReason.OtherFocusReason)
+        elif isinstance(result, Path):
+            if self.step is Step.UPDATE:
+                self.validating.work.take_written(result)
+            else:
+                self.work.take_written(result)
             self.foot.next.setFocus(Qt.FocusReason.OtherFocusReason)
         elif isinstance(result, StudyDraft):
             self.work.take_draft(result)
@@ -272,7 +259,7 @@ class StudyPage(QWidget):
             self._settle()
             self._return()
             if isinstance(result, SavedReport):
-                self.strip.say(f"The report was written to {result.path}.")
+                self.strip.say(f"{result.what} written to {result.path}.")
 
     def _leave_form(self) -> None:
         self._settle()
@@ -282,13 +269,7 @@ class StudyPage(QWidget):
         """The focus back to where the form was asked for."""
         ask, place = self._asked
         self._asked = (None, -1)
-        if ask is Ask.COLUMN and self.sheet.tables:
-            self.sheet.tables[0].go_to(place)
-            self.sheet.tables[0].setFocus(Qt.FocusReason.OtherFocusReason)
-        elif ask is not None and ask in self.sheet.buttons:
-            self.sheet.buttons[ask].setFocus(Qt.FocusReason.OtherFocusReason)
-        else:
-            self.sheet.focus_first()
+        self._shown.go_back(ask, place)
 
     def _connect(self) -> None:
         self.work.changed.connect(self._take_change)

@@ -6,11 +6,12 @@ study file, which is so only where the bytes of one of the two are others now.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from clinicalc.errors import ClinicalcError
+from clinicalc.gui.study.validation_state import OpenedValidation, ValidationState
 
 if TYPE_CHECKING:
     from clinicalc.cohort.checked import CheckedCohort
@@ -69,11 +70,25 @@ class StudyState:
     written: Path | None = None
     draft: StudyDraft | None = None
     """The study file that is being written here; Data and Model then show it, and not what is open."""
+    validating: ValidationState = field(default_factory=ValidationState)
 
     @property
     def is_stale(self) -> bool:
-        """Whether the fit that is shown belongs to other data, or to another study file, than those that are open."""
-        return self.fit is not None and self.opened is not None and self.fit.digest != self.opened.digest
+        """Whether the fit that is shown belongs to other data, or to another file, than those that are open."""
+        if self.fit is None or self.opened is None:
+            return self.fit is not None and self.people_only is not None
+        return self.fit.digest != self.opened.digest
+
+    @property
+    def people_only(self) -> OpenedValidation | None:
+        """The validation file that is open, None where a study file is, or nothing."""
+        return self.validating.opened if self.opened is None else None
+
+    @property
+    def path(self) -> Path | None:
+        """The file that is open, of either kind."""
+        opened = self.opened or self.people_only
+        return None if opened is None else opened.path
 
     @property
     def may_fit(self) -> bool:
@@ -88,8 +103,18 @@ class StudyState:
 
     def with_opened(self, opened: OpenedStudy) -> StudyState:
         """The study was opened, or read again; the fit stays, and where the bytes are the same its package does too."""
+        before = self.validating.opened
+        kept = before if before is not None and before.path == opened.path else None
+        validating = self.validating.with_opened(kept)
         now = replace(self, opened=opened, not_opened=None, not_fitted=None, not_packaged=None, draft=None)
+        now = replace(now, validating=validating)
         return replace(now, package=None, written=None) if now.is_stale else now
+
+    def with_people_only(self, opened: OpenedValidation) -> StudyState:
+        """A validation file was opened, or read again; a fit that was made before stays."""
+        now = replace(self, opened=None, not_opened=None, not_fitted=None, not_packaged=None, draft=None)
+        validating = self.validating.with_opened(opened)
+        return replace(now, package=None, written=None, validating=validating)
 
     def with_fit(self, fit: MadeFit) -> StudyState:
         """It was fitted anew; what was packaged before is of the fit before."""

@@ -1,26 +1,28 @@
 """The coefficient file is written: where, and with whose signature, if any."""
 
+from collections.abc import Callable
 from pathlib import Path
 
 from PySide6.QtWidgets import QWidget
 
-from clinicalc.development.estimating import FittedStudy
 from clinicalc.development.package import Package
 from clinicalc.errors import ClinicalcError, FileNotWritten, KeyRefused, UsageError
 from clinicalc.gui.errands import Errands
 from clinicalc.gui.file_choosing import FileChoices, Wanted
 from clinicalc.gui.form import Form
 from clinicalc.gui.form_deed import FormDeed, read_field, refuse_at
+from clinicalc.library.keys import SigningKey
 from clinicalc.operations.course import Course
 from clinicalc.operations.signing_keys import Signer
+
+Sign = Callable[[SigningKey, Course], Package]
+"""Makes the same file once more, signed."""
 
 
 class WriteDeed(FormDeed):
     """`done` has the Path that was written. A file that is there is replaced only where the dialog asked about it."""
 
-    def __init__(
-        self, package: Package, fitted: FittedStudy, folder: Path, errands: Errands, choices: FileChoices
-    ) -> None:
+    def __init__(self, package: Package, sign: Sign, folder: Path, errands: Errands, choices: FileChoices) -> None:
         form = Form(
             "Write the coefficient file",
             "It is put in place whole or not at all. A signature says that these are the coefficients you publish; it"
@@ -28,7 +30,7 @@ class WriteDeed(FormDeed):
             "&Write",
         )
         self._confirmed: Path | None = None
-        self._package, self._fitted, self._choices = package, fitted, choices
+        self._package, self._sign, self._choices = package, sign, choices
         self.place = form.add_place("&File to write", self._ask_where)
         self.place.edit.setText(str(folder / f"{package.model.content.id}.json"))
         self.key = form.add_place(
@@ -41,15 +43,15 @@ class WriteDeed(FormDeed):
         """Write the file."""
         path = read_field(self.place.path, self.place.edit)
         signer = self._signer()
-        package, fitted, replace = self._package, self._fitted, path == self._confirmed
+        package, sign, replace = self._package, self._sign, path == self._confirmed
 
         def work(course: Course) -> Path:
             from clinicalc.operations.signing_keys import open_signer
-            from clinicalc.operations.study import package_study, require_place, write_study
+            from clinicalc.operations.study import require_place, write_study
 
             require_place(path, replace=replace)
             key = None if signer is None else open_signer(signer)
-            made = package if key is None else package_study(fitted, course, key)
+            made = package if key is None else sign(key, course)
             course.go_on()
             write_study(made, path, replace=replace)
             return path

@@ -12,6 +12,7 @@ from clinicalc.gui.page_tabs import Page
 from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_page import StudyPage
 from tests.gui.study.study_files import StudyFiles, write_study_files
+from tests.gui.study.validation_files import ValidationFiles, write_validation_files
 
 
 class Chooser:
@@ -76,6 +77,33 @@ def changing(qtbot: QtBot, opened: StudyPage) -> StudyPage:
     opened.sheet.buttons[Ask.CHANGE].click()
     rest(qtbot, opened)
     return opened
+
+
+@pytest.fixture
+def held_files(tmp_path: Path) -> ValidationFiles:
+    """A validation file with its model and people, in a folder of their own."""
+    folder = tmp_path / "held"
+    folder.mkdir()
+    return write_validation_files(folder)
+
+
+@pytest.fixture
+def held(qtbot: QtBot, page: StudyPage, held_files: ValidationFiles) -> StudyPage:
+    """The page with the validation file open."""
+    page.work.open_study(held_files.validation)
+    rest(qtbot, page)
+    assert page.state.people_only is not None, page.sheet.words
+    return page
+
+
+@pytest.fixture
+def validated(qtbot: QtBot, held: StudyPage) -> StudyPage:
+    """The page with the validation made."""
+    held.show_step(Step.VALIDATION)
+    held.foot.next.click()
+    rest(qtbot, held)
+    assert held.state.validating.made is not None, held.sheet.words
+    return held
 
 
 def rest(qtbot: QtBot, page: StudyPage) -> None:

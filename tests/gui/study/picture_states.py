@@ -16,6 +16,7 @@ from clinicalc.gui.study.fitting_deed import FittingDeed
 from clinicalc.gui.study.methods_deed import MethodsDeed
 from clinicalc.gui.study.steps import Ask, Step
 from clinicalc.gui.study.study_page import StudyPage
+from clinicalc.gui.study.update_deed import UpdateDeed
 from tests.gui.study.study_files import (
     StudyFiles,
     let_others_die,
@@ -24,6 +25,7 @@ from tests.gui.study.study_files import (
     separate,
     write_study_files,
 )
+from tests.gui.study.validation_files import write_validation_files
 
 _PATIENCE = 60.0
 _FOLDERS: list[TemporaryDirectory[str]] = []
@@ -149,6 +151,11 @@ def _fit_with_methods(heading: str, window: MainWindow) -> None:
     _rest(page)
     page.work.fit()
     _rest(page)
+    _scroll_to(page, heading)
+
+
+def _scroll_to(page: StudyPage, heading: str) -> None:
+    """Scrolled to one of the headings of the sheet."""
     inside = page.sheet.widget()
     for part in page.sheet.findChildren(Heading):
         if inside is not None and part.label.text().startswith(heading):
@@ -170,6 +177,67 @@ def _choose_ridge(window: MainWindow) -> None:
     deed = window.others.study().right.currentWidget()
     if isinstance(deed, FittingDeed):
         deed.penalty.chooser.setCurrentIndex(deed.penalty.chooser.findData("ridge"))
+
+
+def _hold(step: Step, window: MainWindow, *, hurt: bool = False) -> StudyPage:
+    """A validation file that was opened and looked at, at one of its steps."""
+    folder = TemporaryDirectory()
+    _FOLDERS.append(folder)
+    files = write_validation_files(Path(folder.name))
+    page = _page(window)
+    page.work.open_study(files.validation)
+    _rest(page)
+    if step in (Step.VALIDATION, Step.UPDATE):
+        page.validating.work.validate()
+        _rest(page)
+    if hurt:
+        files.change_people("person,age", "person,agge")
+        page.work.read_again()
+        _rest(page)
+    page.show_step(step)
+    _rest(page)
+    return page
+
+
+def _hold_ready(window: MainWindow) -> None:
+    _hold(Step.DATA, window).show_step(Step.VALIDATION)
+
+
+def _hold_lower(heading: str, window: MainWindow) -> None:
+    _scroll_to(_hold(Step.VALIDATION, window), heading)
+
+
+def _hold_other(window: MainWindow) -> None:
+    """Another model held against the people of a study."""
+    page = _step(Step.VALIDATION, window)
+    folder = TemporaryDirectory()
+    _FOLDERS.append(folder)
+    page.validating.work.hold_model(write_validation_files(Path(folder.name)).model)
+    _rest(page)
+
+
+def _ask_update(window: MainWindow) -> UpdateDeed:
+    _hold(Step.UPDATE, window).foot.next.click()
+    deed = window.others.study().right.currentWidget()
+    assert isinstance(deed, UpdateDeed)
+    return deed
+
+
+def _update(heading: str, window: MainWindow) -> None:
+    deed, page = _ask_update(window), window.others.study()
+    deed.ask()
+    _rest(page)
+    if heading:
+        _scroll_to(page, heading)
+
+
+def _write_version(window: MainWindow) -> None:
+    _update("", window)
+    window.others.study().foot.next.click()
+
+
+def _save_validation(ask: Ask, window: MainWindow) -> None:
+    _hold(Step.VALIDATION, window).sheet.buttons[ask].click()
 
 
 _DONE: dict[str, Callable[[MainWindow], object]] = {
@@ -195,6 +263,22 @@ _DONE: dict[str, Callable[[MainWindow], object]] = {
     "study-fit-others": partial(_fit_with_methods, "Where other events"),
     "study-fit-calibration": partial(_fit_with_methods, "Predicted and observed at 3"),
     "study-report": _report,
+    "study-held-data": partial(_hold, Step.DATA),
+    "study-held-model": partial(_hold, Step.MODEL),
+    "study-held-ready": _hold_ready,
+    "study-held": partial(_hold, Step.VALIDATION),
+    "study-held-figures": partial(_hold_lower, "Every figure"),
+    "study-held-groups": partial(_hold_lower, "Groups"),
+    "study-held-stale": partial(_hold, Step.VALIDATION, hurt=True),
+    "study-held-other": _hold_other,
+    "study-update-begin": partial(_hold, Step.UPDATE),
+    "study-update-form": _ask_update,
+    "study-update-made": partial(_update, ""),
+    "study-update-lower": partial(_update, "Coefficients"),
+    "study-update-write": _write_version,
+    "study-held-report": partial(_save_validation, Ask.VALIDATION_REPORT),
+    "study-held-tables": partial(_save_validation, Ask.TABLES),
+    "study-held-drawings": partial(_save_validation, Ask.DRAWINGS),
 }
 
 

@@ -69,7 +69,7 @@ def test_the_page_is_empty_at_first_and_says_what_it_is_for(study_window: MainWi
     assert study_window.windowTitle() == "Study"
     assert "Open one, or begin from a file of people" in page.sheet.words
     assert page.foot.comes_next is None
-    assert [page.pane.list.says(step) for step in Step] == ["not started"] * 4
+    assert [page.pane.list.says(step) for step in Step] == ["not started"] * len(Step)
 
 
 def test_people_and_events_are_counted(opened: StudyPage, files: StudyFiles) -> None:

@@ -1,12 +1,11 @@
-"""The data dictionary of a study: its [cohort] tables as the cohort room takes them, and what is wrong with them."""
+"""The data dictionary that the [cohort] tables of a file give, and what is wrong with them."""
 
 from collections.abc import Iterator, Mapping
 
 from msgspec import UNSET, UnsetType
 
 from clinicalc.coefficients.pointers import listed, point, quoted, suggest
-from clinicalc.cohort.dictionary import ColumnEntry, DataDictionary, OutcomeKind, OutcomePlan
-from clinicalc.development.study_tables import (
+from clinicalc.cohort.cohort_tables import (
     BinaryTable,
     Cells,
     CohortTable,
@@ -14,6 +13,7 @@ from clinicalc.development.study_tables import (
     TimeToEventTable,
     spell_cells,
 )
+from clinicalc.cohort.dictionary import ColumnEntry, DataDictionary, OutcomeKind, OutcomePlan
 from clinicalc.errors import Problem
 
 
