@@ -11,6 +11,7 @@ from clinicalc.assessment.model import Model
 from clinicalc.assessment.numerals import EN_DASH, MINUS, NARROW_SPACE, percent_of, plain
 from clinicalc.coefficients.pointers import listed
 from clinicalc.units.unit import unit
+from clinicalc.validation.coarse_faults import say_range
 from clinicalc.validation.intervals import Z
 from clinicalc.validation.search import Finding, GroupSight, Search
 from clinicalc.validation.suspected_units import find_ordinary
@@ -39,18 +40,21 @@ def write_verdict(search: Search, faults: tuple[Fault, ...], horizon: HorizonVal
     whom = f"{horizon.people:,} people, {horizon.events:,} of them with the event{_by(horizon)}"
     if search.why:
         return (f"It could not be seen whether anything is wrong. {search.why} ({whom}.)", _say_limits())
+    coarse = () if search.coarse is None else (say_range(search.coarse, horizon, named=bool(faults)),)
     if faults:
         more = "What else may be wrong is judged best when this is put right." if len(faults) == 1 else ""
         everybody = [fault.sentence for fault in faults if fault.kind not in _OF_GROUPS]
         groups = [fault.sentence for fault in faults if fault.kind in _OF_GROUPS]
-        return (*everybody, *_say_over_all(search, horizon), *groups, *((more,) if more else ()))
+        return (*everybody, *_say_over_all(search, horizon), *groups, *coarse, *((more,) if more else ()))
+    if search.coarse is not None and search.coarse.unsure:
+        return (*coarse, *_say_looked(search, horizon), _say_limits())
     first = f"Nothing that was looked for was found to be wrong in {whom}."
     if search.shift_factor > _UNSEEN:
         first = (
             f"With {whom}, there are too few to tell: predictions up to {_factor(search.shift_factor)} too high or too"
             f" low throughout, counted in {_scale(horizon)}, could have passed unseen, and nothing was found."
         )
-    return (first, *_say_looked(search, horizon), _say_limits())
+    return (first, *coarse, *_say_looked(search, horizon), _say_limits())
 
 
 def _say_looked(search: Search, horizon: HorizonValidation) -> tuple[str, ...]:
@@ -95,7 +99,7 @@ def _say(finding: Finding, search: Search, horizon: HorizonValidation, model: Mo
             return _say_unit(finding, model)
         case FaultKind.GROUP_TOO_LOW | FaultKind.GROUP_TOO_HIGH:
             alone = sum(one.kind in _OF_GROUPS for one in search.findings) == 1
-            return _say_group(finding, horizon, alone=alone)
+            return _say_group(finding, horizon, alone=alone, coarse=search.coarse is not None)
         case FaultKind.TOO_EXTREME | FaultKind.TOO_MODERATE:
             return _say_slope(finding, horizon, as_is=_rests_on_no_unit(search))
         case _:
@@ -117,10 +121,10 @@ def _say_over_all(search: Search, horizon: HorizonValidation) -> Iterator[str]:
 def _say_seen(horizon: HorizonValidation) -> str:
     observed = horizon.observed.value
     assert observed is not None
-    had = "had"
+    had = f"had the event{_by(horizon)}"
     if horizon.outcomes is Outcomes.TIMES and horizon.competing:  # what was observed is then no share of these people
-        had = "would, but for other events that came first, have had"
-    seen = f"{percent_of(observed)} {had} the event{_by(horizon)}, {percent_of(horizon.expected)} were predicted"
+        had = f"would have had the event{_by(horizon)} if no other event came first"
+    seen = f"{percent_of(observed)} {had}, {percent_of(horizon.expected)} were predicted"
     return f"{seen} (observed over expected {_measure(horizon.observed_to_expected)})"
 
 
@@ -153,11 +157,11 @@ def _say_slope(finding: Finding, horizon: HorizonValidation, *, as_is: bool) -> 
     return said
 
 
-def _say_group(finding: Finding, horizon: HorizonValidation, *, alone: bool) -> str:
-    """A group beside the others, never as too high or low by itself where everybody's predictions are off."""
+def _say_group(finding: Finding, horizon: HorizonValidation, *, alone: bool, coarse: bool) -> str:
+    """A group beside the others, never as too high or low by itself where everybody's predictions are off or may be."""
     word = "low" if finding.kind is FaultKind.GROUP_TOO_LOW else "high"
     who = f"{finding.label}: {finding.level} ({finding.people:,} people)"
-    if alone and not finding.rest:
+    if alone and not finding.rest and not coarse:
         said = f"{_ratio(finding, horizon)}, in the others as predicted"
         return f"The predictions are too {word} in one group, {who}: {said}."
     others = "the others" if alone else "others who are alike in what else is said here"

@@ -38,12 +38,25 @@ class GroupSight:
     factor: float
 
 
+@dataclass(frozen=True, slots=True)
+class CoarseRange:
+    """The observed risk at both ends of what coarse times leave open; `times` names these.
+
+    `unsure` says that something was found that does not hold at both ends and as recorded, and is not among findings.
+    """
+
+    times: str
+    low: float
+    high: float
+    unsure: bool
+
+
 @dataclass(frozen=True, slots=True, eq=False)
 class Search:
     """`shift` and `slope` are what would be found nine times of ten: log factor for everybody, distance from 1.
 
     `units` are labels of the numbers that could be held against the model's own people, `blind` of those that could
-    not. `why` says why nothing was looked for, "" where it was.
+    not. `why` says why nothing was looked for, "" where it was. `coarse` stands where times are coarse.
     """
 
     findings: tuple[Finding, ...] = ()
@@ -54,6 +67,7 @@ class Search:
     units: tuple[str, ...] = ()
     blind: tuple[str, ...] = ()
     why: str = ""
+    coarse: CoarseRange | None = None
 
     @property
     def shift_factor(self) -> float:

@@ -11,6 +11,7 @@ from clinicalc.cohort.checked import BinaryOutcome, CheckedCohort
 from clinicalc.cohort.course import UNWATCHED, Course
 from clinicalc.estimation.calibration_groups import Watched
 from clinicalc.estimation.incidence import aalen_johansen
+from clinicalc.validation.coarse_faults import search_within_bounds
 from clinicalc.validation.coarse_times import suspect_coarse_times
 from clinicalc.validation.doubted_people import suspect_same_people, suspect_survivors
 from clinicalc.validation.fault_groups import gather_groups
@@ -46,10 +47,7 @@ def validate_model(model: Model, cohort: CheckedCohort, plan: ValidationPlan, co
     )
     last = max(spans, key=lambda span: span.days)
     predicted, outcome = seen[last]
-    search = find_faults(
-        model, people, predicted, outcome, last, groups=plan.groups, recalibration=plan.recalibration, course=course
-    )
-    search = _with_refused(search, model, cohort, people)
+    search = _with_refused(_search(model, people, plan, seen[last], last, course), model, cohort, people)
     horizon = horizons[spans.index(last)]
     faults = write_faults(search, horizon, model)
     course.say("Looking at groups")
@@ -70,6 +68,23 @@ def validate_model(model: Model, cohort: CheckedCohort, plan: ValidationPlan, co
 
 def _see(model: Model, people: UsedPeople, span: Span, plan: ValidationPlan) -> tuple[PredictedPeople, Outcome]:
     return predict_people(model, people, span, plan.recalibration), outcome_at(model, people, span)
+
+
+def _search(
+    model: Model,
+    people: UsedPeople,
+    plan: ValidationPlan,
+    seen: tuple[PredictedPeople, Outcome],
+    span: Span,
+    course: Course,
+) -> Search:
+    predicted, as_recorded = seen
+
+    def look(outcome: Outcome) -> Search:
+        named, by = plan.groups, plan.recalibration
+        return find_faults(model, people, predicted, outcome, span, groups=named, recalibration=by, course=course)
+
+    return search_within_bounds(look, as_recorded, span)
 
 
 def _with_refused(search: Search, model: Model, cohort: CheckedCohort, people: UsedPeople) -> Search:
